@@ -1,0 +1,346 @@
+/**
+ * The shapes that travel through the measuring core, from a read capture to a verdict.
+ *
+ * Everything here is plain JSON-able data (typed arrays only in `Spectrum`, which never leaves the
+ * core's own process). A name ending in `Nm`, `Px`, `Counts` carries that unit; `...Unc...` is a
+ * standard uncertainty (k = 1) in the unit of the value; `...ExpandedUnc...` comes with a coverage factor.
+ * `position`, `positionUnc` and `fwhm` of a line are in the capture's own axis unit (`axisUnit`).
+ */
+
+/** What the first column of a capture counts. A pixel axis counts samples from 0, centre of the first. */
+export type AxisKind = "pixel" | "wavelength" | "wavenumber" | "step";
+export type AxisUnit = "px" | "nm" | "Å" | "µm" | "cm-1" | "step";
+export type Medium = "air" | "vacuum";
+/** What a wavelength axis means: vacuum, standard air (15 °C, 101 325 Pa, dry) or the air of the room. */
+export type AxisMeaning = "vacuum" | "standard-air" | "room-air";
+export type Verdict = "pass" | "inconclusive" | "fail";
+export type Outcome = "identified" | "ambiguous" | "unidentified" | "refused";
+
+/** One recorded spectrum as columns, strictly monotonic in `positions`, sorted ascending. */
+export interface Spectrum {
+  axisKind: AxisKind;
+  /** Unit of `positions`; wavelengths are always converted to nm on reading (`Å`, `µm` stay in `FileFacts`). */
+  axisUnit: AxisUnit;
+  /** True when the file's own order ran downwards and the samples were turned round. */
+  wasDescending: boolean;
+  /** Sample centres in `axisUnit`, ascending, length n. */
+  positions: Float64Array;
+  /** Intensity as written (counts or the maker's unit), length n; NaN where the cell was blank. */
+  counts: Float64Array;
+  /** Known full scale of the detector in counts for one scan (12 bit: 4095), or null. */
+  fullScaleCounts: number | null;
+  /** Number of scans that were summed (not averaged) into each sample. */
+  scansSummed: number;
+}
+
+/** What a file said, as read: shown to the person, printed by `analyse`. */
+export interface FileFacts {
+  name: string;
+  /** SHA-256 of the bytes, lower-case hex, when the caller computed it (the core has no crypto); else null. */
+  sha256: string | null;
+  rows: number;
+  axis: AxisKind;
+  axisUnit: AxisUnit;
+  /** Axis value of the first and last data row, in file order. */
+  first: number;
+  last: number;
+  intensitySum: number;
+  intensityMax: number;
+  metadata: Record<string, string>;
+  delimiter: "," | ";" | "\t" | " ";
+  decimal: "." | ",";
+  /** Blank or NaN cells in the chosen columns. */
+  missing: number;
+  encoding: "utf-8" | "utf-16le" | "utf-16be" | "latin-1";
+  headerLines: number;
+  /** Column headings in file order (`column 1`… where there are none) and which were chosen. */
+  columns: string[];
+  axisColumn: number | null;
+  intensityColumn: number;
+  /** Lines that could not be read, at most 20, with the reason. */
+  damagedLines: { line: number; reason: string }[];
+  /** Plain sentences about guesses a person should see. */
+  remarks: string[];
+}
+
+/** Corrections of the reader's guesses. */
+export interface ReadOptions {
+  axisColumn?: number | null;
+  intensityColumn?: number;
+  axisKind?: AxisKind;
+  axisUnit?: AxisUnit;
+  delimiter?: FileFacts["delimiter"];
+  decimal?: FileFacts["decimal"];
+  fullScaleCounts?: number;
+  scansSummed?: number;
+}
+
+/** A refusal while reading or analysing: typed, with a sentence for people. */
+export interface Refusal {
+  outcome: "refused";
+  code:
+    | "empty-file" | "binary-file" | "no-numbers" | "one-column-text" | "too-few-rows" | "non-monotonic-axis"
+    | "duplicate-positions" | "ambiguous-number-format" | "no-such-column" | "different-axes" | "no-lines" | "bad-settings";
+  /** What happened and what to do, one or two sentences. */
+  reason: string;
+  /** 1-based line of the file where it was seen, when there is one. */
+  line: number | null;
+}
+
+export type ReadCapture = { outcome: "read"; spectrum: Spectrum; facts: FileFacts } | Refusal;
+
+export type LineFlag =
+  | "saturated" | "blend" | "spike" | "edge" | "poor-fit" | "weak" | "outlier" | "second-order" | "smoothed" | "room-light";
+
+/** A line found and fitted, before it has a name. Positions in the axis unit of the spectrum. */
+export interface FittedLine {
+  position: number;
+  positionUnc: number;
+  fwhm: number;
+  fwhmUnc: number;
+  areaCounts: number;
+  peakHeightCounts: number;
+  /** Height over the local noise. */
+  signalToNoise: number;
+  reducedChiSquare: number;
+  degreesOfFreedom: number;
+  /** First and last sample index of the window that was fitted. */
+  windowFirst: number;
+  windowLast: number;
+  /** Index of the lines that were fitted together share this group number. */
+  group: number;
+  flags: LineFlag[];
+}
+
+/** One published line. */
+export interface ReferenceLine {
+  element: string;
+  /** Spectrum in spectroscopic notation, e.g. `Hg I`. */
+  spectrum: string;
+  /** Standard air; null below 200 nm. */
+  wavelengthAirNm: number | null;
+  wavelengthVacuumNm: number;
+  /** Standard uncertainty, nm; null where the source gives none (then 0.001 nm is assumed and marked). */
+  uncertaintyNm: number | null;
+  /** Qualitative, scale differs between spectra: evidence, never proof. null where the source gives none. */
+  relativeIntensity: number | null;
+  source: string;
+  note: string;
+}
+export interface LineList { version: string; title: string; lines: readonly ReferenceLine[] }
+
+/** A polynomial axis: nm in ascending powers of the pixel, with covariance for honest uncertainties. */
+export interface PixelAxis {
+  /** nm, ascending powers of the pixel: c0 + c1 p + c2 p² + … */
+  coefficients: number[];
+  /** First and last pixel that the axis was fitted on (its outermost lines). */
+  firstPx: number;
+  lastPx: number;
+  /** Covariance of the coefficients of T_j(t), t = (2p - firstPx - lastPx)/(lastPx - firstPx), in nm²; row-major (n+1)². null when unknown (typed in by hand). */
+  chebyshevCovariance: number[] | null;
+  degreesOfFreedom: number | null;
+  /** What its wavelengths mean. */
+  meaning: AxisMeaning;
+}
+
+export type IdentificationMode =
+  /** The file's own wavelength axis (axisKind wavelength) or an earlier pixel axis. */
+  | { kind: "earlier-axis"; axis: PixelAxis | "own" }
+  /** First and last wavelength of the capture, each good to 5 % of the span. */
+  | { kind: "range"; firstNm: number; lastNm: number };
+
+export interface ToleranceSegment { fromNm: number; toNm: number; toleranceNm: number }
+export type DecisionRule = { kind: "simple" } | { kind: "guarded"; r: number };
+
+export type LeaveOutReason = "saturated" | "blended" | "spike" | "too-weak" | "disturbed";
+export interface LeftOutLine { wavelengthNm: number; reason: LeaveOutReason; note: string }
+
+/** Conditions of the room; each null when it was not recorded. */
+export interface RoomConditions {
+  temperatureC: number | null;
+  temperatureUncC: number;
+  pressurePa: number | null;
+  altitudeM: number | null;
+  relativeHumidity: number | null;
+}
+
+/** Everything the analysis is told. Echoed whole in the result, so that it can be repeated. */
+export interface AnalysisSetup {
+  /** Elements of the source, e.g. ["Hg","Ar"]. */
+  elements: string[];
+  /** Only these lines are expected (a procedure's list); empty = every line of the elements. Air nm above 200, vacuum below. */
+  expectedLinesNm: number[];
+  /** Lines of which each must be judged, else the check is inconclusive. Air nm above 200, vacuum below. */
+  requiredLinesNm: number[];
+  lineListVersion: string;
+  mode: IdentificationMode;
+  reading: ReadOptions;
+  axisMeaning: AxisMeaning;
+  room: RoomConditions | null;
+  /** px for pixel axes, else nm; null = leave it out and say so (`practice`, the command line). */
+  setupReproducibility: { value: number; unit: "px" | "nm"; basis: "history" | "stated" | "assumed"; degreesOfFreedom: number | null } | null;
+  /** Shift of the axis per kelvin and the spread of the room's temperature that it is multiplied with; null = none. */
+  temperatureEffect: { coefficientNmPerK: number; spreadK: number } | null;
+  tolerance: ToleranceSegment[];
+  decisionRule: DecisionRule;
+  /** Share of the tolerance above which a pass is called near limit. */
+  warningShare: number;
+  leftOut: LeftOutLine[];
+  /** Saturated lines are never used unless asked for. */
+  useSaturated: boolean;
+  /** Polynomial degree of the axis when it is known from earlier calibrations; null = chosen by leave-one-out. */
+  degree: number | null;
+  /** False-alarm rate of detection, expected false lines per capture (default 0.01). */
+  falseLinesPerCapture: number;
+}
+
+export interface BudgetEntry {
+  contribution: "reference" | "fit" | "repeatability" | "set-up" | "resolution" | "dispersion" | "air" | "temperature" | "blend";
+  uncNm: number;
+  /** null = infinite. */
+  degreesOfFreedom: number | null;
+  sensitivity: number;
+  shareOfVariance: number;
+  /** True where the figure is an assumption (shown so, oblique). */
+  assumed: boolean;
+  note: string;
+}
+
+export type LineStatus = "judged" | "left-out" | "refused" | "not-judged" | "unnamed";
+
+export interface LineResult extends Omit<FittedLine, "windowFirst" | "windowLast" | "group"> {
+  /** null: found but not named. */
+  wavelengthNm: number | null;
+  medium: Medium;
+  element: string | null;
+  species: string | null;
+  /** Wavelengths of a blend's components (two or more), else empty. */
+  blendOfNm: number[];
+  order: number;
+  referenceUncNm: number | null;
+  referenceUncAssumed: boolean;
+  referenceSource: string | null;
+  indicatedNm: number | null;
+  /** indicated - reference */
+  errorNm: number | null;
+  errorUncNm: number | null;
+  errorExpandedUncNm: number | null;
+  coverageFactor: number | null;
+  effectiveDegreesOfFreedom: number | null;
+  budget: BudgetEntry[];
+  toleranceNm: number | null;
+  guardBandNm: number | null;
+  toleranceUsed: number | null;
+  conformanceProbability: number | null;
+  verdict: Verdict | null;
+  nearLimit: boolean;
+  status: LineStatus;
+  /** Why it was left out, refused, or is not judged: a sentence. */
+  reason: string | null;
+  leftOut: LeftOutLine | null;
+  required: boolean;
+  /** Used in the dispersion fit. */
+  usedInAxis: boolean;
+  residualNm: number | null;
+}
+
+export interface VerdictSummary {
+  verdict: Verdict;
+  nearLimit: boolean;
+  /** Index in `lines` of the line that decided; null when no line was judged. */
+  worstLine: number | null;
+  toleranceUsed: number | null;
+  judgedCount: number;
+  namedCount: number;
+  /** Sentences: missing required lines, ambiguity. Empty when verdict is plain. */
+  reasons: string[];
+}
+
+export interface SegmentResult extends ToleranceSegment {
+  judgedCount: number;
+  /** Largest |error| + U in the segment; null = not judged. */
+  largestErrorForUseNm: number | null;
+  worstLine: number | null;
+  notJudgedBecause: string | null;
+}
+
+export interface Dispersion {
+  family: "polynomial";
+  degree: number;
+  degreeChosenBy: "given" | "leave-one-out" | "earlier-axis";
+  /** nm, ascending powers of the pixel (or of the axis unit on a step axis). */
+  coefficients: number[];
+  axis: PixelAxis;
+  rmsPx: number;
+  rmsNm: number;
+  leaveOneOutRmsNm: number;
+  /** 11 equally spaced pixels, first to last. */
+  samples: { px: number; nm: number; uncNm: number }[];
+  rejected: { line: number; reason: string }[];
+}
+
+/** One check as a point of its drift series. Straight line of error against wavelength, weighted. */
+export interface DriftPoint {
+  midNm: number;
+  /** Last minus first judged wavelength. */
+  rangeNm: number;
+  midErrorNm: number;
+  midErrorUncNm: number;
+  /** Slope times the range. */
+  scaleErrorNm: number;
+  scaleErrorUncNm: number;
+  covarianceNm2: number;
+  /** Largest |offset + scale| within the judged range, signed, with U (k = 2). */
+  largestErrorNm: number;
+  largestErrorUncNm: number;
+  largestAtNm: number;
+}
+
+export interface Analysis {
+  format: 1;
+  coreVersion: string;
+  outcome: Outcome;
+  /** Why it is not identified, in a sentence; null when it is. */
+  reason: string | null;
+  setup: AnalysisSetup;
+  files: FileFacts[];
+  axisKind: AxisKind;
+  axisUnit: AxisUnit;
+  noiseCounts: number;
+  /** Lag-one correlation of the quiet samples; > 0.2 is said as *smoothed*. */
+  noiseCorrelation: number;
+  medianFwhm: number | null;
+  lines: LineResult[];
+  /** Published lines of the lamp inside the range that were expected (required or strong) and not found. */
+  missingLinesNm: number[];
+  /** The verdict as asked for; null without tolerance or when nothing can be judged and outcome is refused. */
+  verdict: VerdictSummary | null;
+  /** The verdict with every line that could be judged, none left out by a person. */
+  verdictWithEveryLine: VerdictSummary | null;
+  segments: SegmentResult[];
+  dispersion: Dispersion | null;
+  driftPoint: DriftPoint | null;
+  confidence: { chanceProbability: number; margin: number; note: string };
+  /** Components that U does not hold, as words: e.g. "set-up reproducibility". */
+  notIncluded: string[];
+  warnings: { code: string; text: string }[];
+}
+
+/** What the spectrum bench draws, thinned to at most 4,096 minimum/maximum pairs. */
+export interface SpectrumDrawing {
+  /** Wavelength in nm of each drawn sample; the position where nothing was identified (then `axisLabel` says so). */
+  x: number[];
+  counts: number[];
+  axisLabel: string;
+  axisUnit: AxisUnit;
+  ceilingCounts: number | null;
+  /** Fitted curves, one a line of `Analysis.lines` (empty arrays where it was not fitted). */
+  fits: { line: number; x: number[]; counts: number[]; baseline: number[] }[];
+  /** Fit residuals over their standard uncertainty, within fitted windows only. */
+  residuals: { x: number; ratio: number; line: number }[];
+}
+
+export interface AnalysedCheck { analysis: Analysis; drawing: SpectrumDrawing | null }
+
+/** One file as the caller has it. */
+export interface CaptureInput { name: string; bytes: Uint8Array; sha256: string | null; part: "lamp" | "dark" }

@@ -1,0 +1,2 @@
+/** Version of the measuring core; results keep it. A change that moves any number raises it. */
+export const coreVersion = "1.0.0";
