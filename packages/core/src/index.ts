@@ -1,0 +1,3 @@
+/** The measuring core's front door. */
+export * from "./analysis/types.ts";
+export { coreVersion } from "./version.ts";
