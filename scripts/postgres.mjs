@@ -75,11 +75,11 @@ export async function installDebianPackages(packages, advice) {
   // Two commands may install at the same moment: the later one waits for apt's lock.
   const wait = ["-o", "DPkg::Lock::Timeout=300"];
   try {
-    await runProgram("apt-get", [...wait, "update", "-q"], { env });
+    await runProgram("apt-get", [...wait, "update", "-q"], { env, sheltered: true });
     await runProgram(
       "apt-get",
       [...wait, "install", "-y", "-q", "--no-install-recommends", "-o", "Dpkg::Options::=--force-confold", ...packages],
-      { env },
+      { env, sheltered: true },
     );
   } catch (error) {
     throw new PlainError(
@@ -208,8 +208,7 @@ export async function openCluster({ dataDir, fast = false, say = () => {} }) {
   const env = { PATH: process.env.PATH, LC_ALL: "C.UTF-8", TZ: "UTC" };
   /** @param {string} program @param {string[]} args @param {object} [extra] */
   const run = (program, args, extra = {}) =>
-    // A session of its own: Ctrl-C in the terminal must not reach it half-way.
-    runProgram(path.join(programFolder(major), program), args, { ...user, cwd: "/", env, detached: true, ...extra });
+    runProgram(path.join(programFolder(major), program), args, { ...user, cwd: "/", env, sheltered: true, ...extra });
 
   if (made) await makeCluster({ run, folder, user, passwordFile, fast });
   if (!fs.existsSync(passwordFile)) {

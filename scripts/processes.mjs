@@ -45,7 +45,7 @@ export class ProgramFailed extends Error {
 /** Children that are running now; killed together when the outer command is stopped. @type {Set<import("node:child_process").ChildProcess>} */
 const running = new Set();
 
-/** Ask every child that still runs to end. */
+/** Ask every child that still runs to end, save the sheltered ones. */
 export function stopChildren() {
   for (const child of running) child.kill("SIGTERM");
 }
@@ -55,16 +55,17 @@ export function stopChildren() {
  *
  * @param {string} program
  * @param {string[]} args
- * @param {import("node:child_process").SpawnOptions & { onLine?: (line: string) => void, allowFailure?: boolean }} [options]
- *   `onLine` receives each line of output as it comes; `allowFailure` returns the exit instead of throwing
+ * @param {import("node:child_process").SpawnOptions & { onLine?: (line: string) => void, allowFailure?: boolean, sheltered?: boolean }} [options]
+ *   `onLine` receives each line of output as it comes; `allowFailure` returns the exit instead of throwing;
+ *   `sheltered` keeps it out of the reach of Ctrl-C, for what must not be cut off half-way and is soon over
  * @returns {Promise<{ exit: number | NodeJS.Signals | null, output: string }>}
  * @throws {ProgramFailed} on an exit code other than 0
  */
 export function runProgram(program, args, options = {}) {
-  const { onLine, allowFailure = false, ...spawnOptions } = options;
+  const { onLine, allowFailure = false, sheltered = false, ...spawnOptions } = options;
   return new Promise((resolve, reject) => {
-    const child = spawn(program, args, { stdio: ["ignore", "pipe", "pipe"], ...spawnOptions });
-    running.add(child);
+    const child = spawn(program, args, { stdio: ["ignore", "pipe", "pipe"], detached: sheltered, ...spawnOptions });
+    if (!sheltered) running.add(child);
     let output = "";
     let partial = "";
     /** @param {Buffer} chunk */

@@ -1,0 +1,88 @@
+/**
+ * The production build, one folder per state of the sources: `packages/api/dist/<fingerprint>` and
+ * `packages/web/dist/<fingerprint>`. A finished build never changes, so commands that run side by side, also on
+ * different states of the sources, do not disturb each other.
+ */
+import { createHash } from "node:crypto";
+import fs from "node:fs";
+import path from "node:path";
+import { cleanEnvironment, processIdentity, projectDir, runProgram } from "./processes.mjs";
+
+const distOf = { api: path.join(projectDir, "packages/api/dist"), web: path.join(projectDir, "packages/web/dist") };
+
+/** Folders that hold nothing written by a person. */
+const notSources = new Set(["node_modules", "dist", "generated"]);
+
+/** @param {string} folder @returns {string[]} every source file below, relative to the project, sorted */
+function sourceFiles(folder) {
+  return fs
+    .readdirSync(path.join(projectDir, folder), { withFileTypes: true })
+    .flatMap((entry) => {
+      const relative = `${folder}/${entry.name}`;
+      if (entry.isDirectory()) return notSources.has(entry.name) ? [] : sourceFiles(relative);
+      return /\.test\.tsx?$/.test(entry.name) ? [] : [relative];
+    })
+    .sort();
+}
+
+/** Fingerprint of everything that decides what a build holds. */
+export function buildFingerprint() {
+  const files = [
+    ...sourceFiles("packages"),
+    "scripts/build.mjs",
+    "scripts/build-packages.mjs",
+    "pnpm-lock.yaml",
+    "package.json",
+  ];
+  const hash = createHash("sha256").update(process.versions.node.split(".")[0] ?? "");
+  for (const file of files) hash.update(`\0${file}\0`).update(fs.readFileSync(path.join(projectDir, file)));
+  return hash.digest("hex").slice(0, 16);
+}
+
+/**
+ * The build of the sources as they stand, made when it is not there yet.
+ *
+ * @param {(line: string) => void} [say]
+ * @returns {Promise<{ api: string, web: string, built: boolean, release: () => void }>} folders; `release` when they
+ *   are no longer used by this process
+ */
+export async function ensureBuild(say = () => {}) {
+  const fingerprint = buildFingerprint();
+  const folders = { api: path.join(distOf.api, fingerprint), web: path.join(distOf.web, fingerprint) };
+  const built = !fs.existsSync(folders.api) || !fs.existsSync(folders.web);
+  if (built) {
+    removeOldBuilds();
+    await runProgram(
+      process.execPath,
+      [path.join(projectDir, "scripts/build-packages.mjs"), folders.api, folders.web],
+      {
+        cwd: projectDir,
+        env: cleanEnvironment({ NODE_ENV: "production" }),
+        onLine: say,
+      },
+    );
+  }
+  return { ...folders, built, release: markUse(folders.api) };
+}
+
+/** @param {string} folder */
+function markUse(folder) {
+  const mark = path.join(folder, `.used-by-${process.pid}`);
+  fs.writeFileSync(mark, processIdentity(process.pid) ?? "");
+  return () => fs.rmSync(mark, { force: true });
+}
+
+/** Builds that no process uses and that are older than a day are removed. */
+function removeOldBuilds() {
+  const dayMs = 86_400_000;
+  for (const name of fs.existsSync(distOf.api) ? fs.readdirSync(distOf.api) : []) {
+    const folder = path.join(distOf.api, name);
+    const inUse = fs.readdirSync(folder).some((file) => {
+      const pid = /^\.used-by-(\d+)$/.exec(file)?.[1];
+      return pid !== undefined && processIdentity(Number(pid)) === fs.readFileSync(path.join(folder, file), "utf8");
+    });
+    if (inUse || Date.now() - fs.statSync(folder).mtimeMs < dayMs) continue;
+    fs.rmSync(folder, { recursive: true, force: true });
+    fs.rmSync(path.join(distOf.web, name), { recursive: true, force: true });
+  }
+}

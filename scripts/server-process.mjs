@@ -1,0 +1,114 @@
+/** The server's own process: started with its environment, awaited until it answers, ended in order. */
+import { spawn } from "node:child_process";
+import { generateKeyPairSync, randomBytes } from "node:crypto";
+import fs from "node:fs";
+import path from "node:path";
+import { keptSecret } from "./postgres.mjs";
+import { cleanEnvironment, projectDir } from "./processes.mjs";
+import { PlainError } from "./setup.mjs";
+
+const largestLogBytes = 20_000_000;
+
+/**
+ * Where the session key and the key that signs the head of the trail come from: the environment, else 0600 files in
+ * the data folder, made once. The database never holds them.
+ *
+ * @param {string} dataDir
+ * @param {NodeJS.ProcessEnv} env
+ */
+export function keyVariables(dataDir, env) {
+  /** @type {Record<string, string>} */
+  const variables = {};
+  if (!env["WAVEKEEP_SESSION_KEY"] && !env["WAVEKEEP_SESSION_KEY_FILE"]) {
+    const file = path.join(dataDir, "session.key");
+    keptSecret(file, () => randomBytes(32).toString("base64url"));
+    variables["WAVEKEEP_SESSION_KEY_FILE"] = file;
+  }
+  if (!env["WAVEKEEP_SIGNING_KEY_FILE"]) {
+    const file = path.join(dataDir, "signing.key");
+    keptSecret(file, () =>
+      generateKeyPairSync("ed25519").privateKey.export({ type: "pkcs8", format: "pem" }).toString(),
+    );
+    variables["WAVEKEEP_SIGNING_KEY_FILE"] = file;
+  }
+  return variables;
+}
+
+/**
+ * @typedef {object} Server
+ * @property {Promise<string>} ended resolves with how it ended
+ * @property {(hard?: boolean) => Promise<void>} stop asks it to end, waits 10 s, then kills it
+ */
+
+/**
+ * Start the server and wait until it answers.
+ *
+ * @param {{ program: string, dataDir: string, address: string, variables: Record<string, string>, giveUp: Promise<void> }} options
+ *   `variables` are added to the environment; the owner's database address never is; `giveUp` ends the waiting
+ * @returns {Promise<Server>}
+ * @throws {PlainError} with the end of its log, when it ends or stays silent
+ */
+export async function startServer({ program, dataDir, address, variables, giveUp }) {
+  const logFile = path.join(dataDir, "server.log");
+  if ((fs.statSync(logFile, { throwIfNoEntry: false })?.size ?? 0) > largestLogBytes)
+    fs.renameSync(logFile, `${logFile}.1`);
+  const log = fs.openSync(logFile, "a", 0o600);
+  const child = spawn(
+    process.execPath,
+    ["--enable-source-maps", "--import", path.join(projectDir, "scripts/stop-with-parent.mjs"), program],
+    {
+      cwd: projectDir,
+      // A group of its own: Ctrl-C reaches start.mjs alone, which ends the server before its database.
+      detached: true,
+      stdio: ["ignore", log, log, "ipc"],
+      env: cleanEnvironment({ ...variables, NODE_ENV: "production", DATABASE_OWNER_URL: undefined }),
+    },
+  );
+  fs.closeSync(log);
+  /** @type {Promise<string>} */
+  const ended = new Promise((resolve) => {
+    child.once("error", (error) => resolve(error.message));
+    child.once("exit", (code, signal) => resolve(`exit ${code ?? signal}`));
+  });
+  const stop = async (hard = false) => {
+    if (child.exitCode !== null || child.signalCode !== null) return;
+    child.kill(hard ? "SIGKILL" : "SIGTERM");
+    const patience = setTimeout(() => child.kill("SIGKILL"), 10_000);
+    await ended;
+    clearTimeout(patience);
+  };
+  const outcome = await Promise.race([ended, answers(address, 60_000), giveUp]);
+  if (outcome === undefined) await stop();
+  else if (outcome !== true) {
+    await stop(true);
+    const how = outcome === false ? "did not answer within 60 s" : `ended while starting (${outcome})`;
+    throw new PlainError(`The server ${how}. The end of its log, ${logFile}:\n${tail(logFile)}`);
+  }
+  return { ended, stop };
+}
+
+/**
+ * Whether a Wavekeep answers at an address.
+ *
+ * @param {string} address
+ * @param {number} withinMs how long to go on asking
+ * @returns {Promise<boolean>}
+ */
+export async function answers(address, withinMs) {
+  const until = performance.now() + withinMs;
+  do {
+    try {
+      const reply = await fetch(`${address}/api/health`, { signal: AbortSignal.timeout(2_000) });
+      if (reply.status === 200) return true;
+    } catch {
+      // Not listening yet.
+    }
+    await new Promise((resolve) => setTimeout(resolve, 50));
+  } while (performance.now() < until);
+  return false;
+}
+
+/** @param {string} file */
+export function tail(file) {
+  return fs.existsSync(file) ? fs.readFileSync(file, "utf8").trimEnd().split("\n").slice(-15).join("\n") : "";
+}
