@@ -1,14 +1,18 @@
 import tailwindcss from "@tailwindcss/vite";
 import react from "@vitejs/plugin-react";
 import { defineConfig } from "vite";
+import { robotoFlex } from "./build/roboto-flex.mjs";
 
 export default defineConfig({
-  plugins: [react(), tailwindcss()],
+  plugins: [react(), tailwindcss(), ...(process.env["VITEST"] ? [] : [robotoFlex()])],
   build: {
     // scripts/build.mjs names a folder per state of the sources.
     outDir: process.env["WAVEKEEP_WEB_OUT"] ?? "dist/dev",
     emptyOutDir: true,
     sourcemap: false,
+    target: "es2022",
+    // Fonts stay files of their own: fetched before the first drawing, cached apart from the style sheet.
+    assetsInlineLimit: 0,
   },
   worker: { format: "es" },
   server: {
