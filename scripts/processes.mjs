@@ -126,6 +126,23 @@ export function portProblem(host, port) {
 }
 
 /**
+ * State, parent and start tick of a process, on Linux.
+ *
+ * @param {number} pid
+ * @returns {{ state: string, parent: number, begunAt: string } | null} null elsewhere, or when there is no such process
+ */
+function processFacts(pid) {
+  try {
+    const stat = fs.readFileSync(`/proc/${pid}/stat`, "utf8");
+    // After the program's name in brackets, which may hold spaces: field 3 (state), 4 (parent), ... 22 (start tick).
+    const fields = stat.slice(stat.lastIndexOf(")") + 2).split(" ");
+    return { state: fields[0] ?? "", parent: Number(fields[1]), begunAt: fields[19] ?? "" };
+  } catch {
+    return null;
+  }
+}
+
+/**
  * What tells this process from a later one with the same number: its pid and, on Linux, the tick it began at.
  *
  * @param {number} pid
@@ -137,14 +154,22 @@ export function processIdentity(pid) {
   } catch (error) {
     if (/** @type {NodeJS.ErrnoException} */ (error).code !== "EPERM") return null;
   }
-  try {
-    const stat = fs.readFileSync(`/proc/${pid}/stat`, "utf8");
-    const fields = stat.slice(stat.lastIndexOf(")") + 2).split(" ");
-    // Field 3 is the state (Z: ended, not yet collected), field 22 the start tick; the slice starts at field 3.
-    return fields[0] === "Z" ? null : `${pid}@${fields[19]}`;
-  } catch {
-    return String(pid);
-  }
+  const facts = processFacts(pid);
+  if (facts === null) return String(pid);
+  // Z: ended, not yet collected by its parent.
+  return facts.state === "Z" ? null : `${pid}@${facts.begunAt}`;
+}
+
+/**
+ * A process and the one that started it: for a package script the shell and npm.
+ *
+ * @param {number} pid
+ */
+export function callersOf(pid) {
+  const parent = processFacts(pid)?.parent;
+  return [pid, parent]
+    .filter((number) => number !== undefined && number > 1)
+    .map((number) => ({ pid: Number(number), identity: processIdentity(Number(number)) }));
 }
 
 /**

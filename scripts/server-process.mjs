@@ -37,7 +37,7 @@ export function keyVariables(dataDir, env) {
 /**
  * @typedef {object} Server
  * @property {Promise<string>} ended resolves with how it ended
- * @property {(hard?: boolean) => Promise<void>} stop asks it to end, waits 10 s, then kills it
+ * @property {() => Promise<void>} stop asks it to end, waits 10 s, then kills it
  */
 
 /**
@@ -70,9 +70,9 @@ export async function startServer({ program, dataDir, address, variables, giveUp
     child.once("error", (error) => resolve(error.message));
     child.once("exit", (code, signal) => resolve(`exit ${code ?? signal}`));
   });
-  const stop = async (hard = false) => {
+  const stop = async () => {
     if (child.exitCode !== null || child.signalCode !== null) return;
-    child.kill(hard ? "SIGKILL" : "SIGTERM");
+    child.kill("SIGTERM");
     const patience = setTimeout(() => child.kill("SIGKILL"), 10_000);
     await ended;
     clearTimeout(patience);
@@ -80,7 +80,7 @@ export async function startServer({ program, dataDir, address, variables, giveUp
   const outcome = await Promise.race([ended, answers(address, 60_000), giveUp]);
   if (outcome === undefined) await stop();
   else if (outcome !== true) {
-    await stop(true);
+    await stop();
     const how = outcome === false ? "did not answer within 60 s" : `ended while starting (${outcome})`;
     throw new PlainError(`The server ${how}. The end of its log, ${logFile}:\n${tail(logFile)}`);
   }

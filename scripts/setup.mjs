@@ -72,7 +72,11 @@ export async function ensureInstall(onLine = () => {}) {
       const stamp = path.join(projectDir, "node_modules", ".install-stamp");
       fs.rmSync(stamp, { force: true });
       try {
-        await pnpm(["install", "--frozen-lockfile", "--prefer-offline", "--reporter=append-only"], { onLine });
+        await pnpm(["install", "--frozen-lockfile", "--prefer-offline", "--reporter=append-only"], {
+          onLine: (line) => {
+            if (/^\s*(Progress|Downloading|Done|WARN|ERR|✓|\?)/.test(line)) onLine(line);
+          },
+        });
       } catch (error) {
         throw new PlainError(
           `The packages could not be installed. Nothing else was changed. Check that npm can reach its registry and run the command again.\n${/** @type {Error} */ (error).message}`,

@@ -7,7 +7,7 @@ import path from "node:path";
 import { ensureBuild } from "./build.mjs";
 import { appUrl, finishDatabase, migrateDatabase, prepareDatabase, seedDemoLab } from "./local-database.mjs";
 import { ensureDataDir, openCluster } from "./postgres.mjs";
-import { freePort, portProblem, stopChildren, takeLock } from "./processes.mjs";
+import { callersOf, freePort, portProblem, processIdentity, stopChildren, takeLock } from "./processes.mjs";
 import { step } from "./progress.mjs";
 import { answers, keyVariables, startServer } from "./server-process.mjs";
 import { addressOf, readStartSettings, version } from "./settings.mjs";
@@ -15,25 +15,38 @@ import { PlainError, ensureInstall, runCommand } from "./setup.mjs";
 
 /** What must be undone at the end, in reverse order. @type {(() => Promise<void> | void)[]} */
 const undo = [];
-let stopRequests = 0;
+let stopping = false;
 /** @type {() => void} */
 let requestStop = () => {};
 /** @type {Promise<void>} */
 const stopRequested = new Promise((resolve) => (requestStop = resolve));
 
 function onStop() {
-  stopRequests += 1;
-  if (stopRequests === 1) process.stdout.write("\nStopping…\n");
+  // The terminal and npm may both pass on one Ctrl-C.
+  if (stopping) return;
+  stopping = true;
+  process.stdout.write("\nStopping…\n");
   stopChildren();
   requestStop();
 }
 for (const signal of /** @type {const} */ (["SIGINT", "SIGTERM", "SIGHUP"])) process.on(signal, onStop);
 // Started by another program with a channel (the browser tests): end with it.
 process.once("disconnect", onStop);
+// npm does not pass on every signal that ends it: without npm nobody could stop this start any more.
+if (process.env["npm_lifecycle_event"] !== undefined) {
+  const parent = process.ppid;
+  const callers = callersOf(parent);
+  setInterval(() => {
+    const gone = process.ppid !== parent || callers.some(({ pid, identity }) => processIdentity(pid) !== identity);
+    if (gone) onStop();
+  }, 300).unref();
+}
+// The terminal may be gone before everything is stopped.
+for (const stream of [process.stdout, process.stderr]) stream.on("error", () => {});
 
 /** @throws when a stop was asked for meanwhile */
 function goOn() {
-  if (stopRequests > 0) throw new Stopped();
+  if (stopping) throw new Stopped();
 }
 class Stopped extends Error {}
 
@@ -42,11 +55,11 @@ await runCommand(async () => {
   try {
     await start();
   } catch (error) {
-    if (stopRequests === 0) throw error;
+    if (!stopping) throw error;
     exitCode = 130;
   } finally {
     for (const action of undo.reverse()) await action();
-    if (stopRequests > 0) process.stdout.write("Stopped.\n");
+    if (stopping) process.stdout.write("Stopped.\n");
     if (process.connected) process.disconnect();
   }
   return exitCode;
@@ -79,7 +92,7 @@ async function start() {
       },
     }),
   );
-  undo.push(() => server.stop(stopRequests > 1));
+  undo.push(() => server.stop());
   goOn();
   announce(settings, address);
 
@@ -143,7 +156,7 @@ async function prepare(settings) {
     opening.catch(() => {});
     undo.push(async () => {
       const [cluster] = await Promise.allSettled([opening]);
-      if (cluster.status === "fulfilled") await cluster.value.stop(stopRequests > 1 ? "immediate" : "fast");
+      if (cluster.status === "fulfilled") await cluster.value.stop();
     });
   }
 
@@ -211,7 +224,9 @@ async function prepareData(settings, cluster, apiBuild) {
 }
 
 /** @param {string} dataDir */
-const signInsFileOf = (dataDir) => path.join(dataDir, "demo-sign-ins.json");
+function signInsFileOf(dataDir) {
+  return path.join(dataDir, "demo-sign-ins.json");
+}
 
 /**
  * @param {import("./settings.mjs").StartSettings} settings
