@@ -44,6 +44,8 @@ export interface Minimum {
 }
 
 const EPSILON = 2.220446049250313e-16;
+/** Keeps the damped triangle solvable where the Jacobian is singular. */
+const SMALLEST_DAMPING = 1e-200;
 
 /** Minimise from `start` (not changed). @throws {RangeError} caller bugs: wrong length, fewer residuals than parameters */
 export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>, options: MinimiseOptions = {}): Minimum {
@@ -82,7 +84,8 @@ export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>,
   for (let iteration = 0; ; iteration++) {
     work.set(residuals);
     triangularise(jacobian, m, n, work, r);
-    for (let j = 0; j < n; j++) projected[j] = -work[j]!;
+    // A column without effect explains nothing, whatever stands in its row.
+    for (let j = 0; j < n; j++) projected[j] = r[j * n + j] === 0 ? 0 : -work[j]!;
     for (let j = 0; j < n; j++) {
       let square = 0;
       for (let i = 0; i <= j; i++) square += r[i * n + j]! * r[i * n + j]!;
@@ -125,8 +128,8 @@ export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>,
         break;
       }
       // The promised gain is below what the sum can show: the minimum is reached as well as doubles allow.
-      if (predicted <= 16 * EPSILON * sum) return finish("converged", sum, iteration);
-      if (radius < EPSILON * scaledLength(parameters, scale)) return finish("stalled", sum, iteration);
+      if (!(predicted > 16 * EPSILON * sum)) return finish("converged", sum, iteration);
+      if (!(radius > EPSILON * scaledLength(parameters, scale))) return finish("stalled", sum, iteration);
     }
     problem.evaluate(parameters, residuals, jacobian);
   }
@@ -241,8 +244,8 @@ class DampedSolver {
       gradient += (sum / scale[j]!) * (sum / scale[j]!);
     }
     let high = Math.sqrt(gradient) / radius;
-    if (!(high > 0)) high = 1e-300;
-    let lambda = Math.max(low, 0.001 * high, 1e-300);
+    if (!(high > SMALLEST_DAMPING)) high = SMALLEST_DAMPING;
+    let lambda = Math.max(low, 0.001 * high, SMALLEST_DAMPING);
     for (let k = 0; k < 20; k++) {
       this.substitute(r, q, lambda, scale, step);
       const length = scaledLength(step, scale);
@@ -254,7 +257,7 @@ class DampedSolver {
       const slope = this.slope(scale, step, length);
       let next = lambda + excess / radius / slope;
       if (!(next > low && next < high)) next = Math.max(Math.sqrt(low * high), 0.001 * high);
-      lambda = next;
+      lambda = Math.max(next, SMALLEST_DAMPING);
     }
     this.predict(r, scale, step);
   }
