@@ -99,9 +99,6 @@ export const configurations = pgTable(
   (t): PgTableExtraConfigValue[] => [
     ...tenant(t),
     unique("configurations_ordinal").on(t.labId, t.instrumentId, t.ordinal),
-    uniqueIndex("configurations_one_current")
-      .on(t.labId, t.instrumentId)
-      .where(sql`${t.toOn} is null`),
     check("configurations_axis_kind", sql`${t.axisKind} in ('pixel', 'wavelength', 'step')`),
     check("configurations_axis_meaning", sql`${t.axisMeaning} in ('vacuum', 'standard-air', 'room-air')`),
     check("configurations_range", sql`${t.rangeFirstNm} < ${t.rangeLastNm}`),
