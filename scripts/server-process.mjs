@@ -1,38 +1,11 @@
 /** The server's own process: started with its environment, awaited until it answers, ended in order. */
 import { spawn } from "node:child_process";
-import { generateKeyPairSync, randomBytes } from "node:crypto";
 import fs from "node:fs";
 import path from "node:path";
-import { keptSecret } from "./postgres.mjs";
 import { cleanEnvironment, projectDir } from "./processes.mjs";
 import { PlainError } from "./setup.mjs";
 
 const largestLogBytes = 20_000_000;
-
-/**
- * Where the session key and the key that signs the head of the trail come from: the environment, else 0600 files in
- * the data folder, made once. The database never holds them.
- *
- * @param {string} dataDir
- * @param {NodeJS.ProcessEnv} env
- */
-export function keyVariables(dataDir, env) {
-  /** @type {Record<string, string>} */
-  const variables = {};
-  if (!env["WAVEKEEP_SESSION_KEY"] && !env["WAVEKEEP_SESSION_KEY_FILE"]) {
-    const file = path.join(dataDir, "session.key");
-    keptSecret(file, () => randomBytes(32).toString("base64url"));
-    variables["WAVEKEEP_SESSION_KEY_FILE"] = file;
-  }
-  if (!env["WAVEKEEP_SIGNING_KEY_FILE"]) {
-    const file = path.join(dataDir, "signing.key");
-    keptSecret(file, () =>
-      generateKeyPairSync("ed25519").privateKey.export({ type: "pkcs8", format: "pem" }).toString(),
-    );
-    variables["WAVEKEEP_SIGNING_KEY_FILE"] = file;
-  }
-  return variables;
-}
 
 /**
  * @typedef {object} Server

@@ -9,7 +9,7 @@ import { appUrl, finishDatabase, migrateDatabase, prepareDatabase, seedDemoLab }
 import { ensureDataDir, openCluster } from "./postgres.mjs";
 import { callersOf, freePort, portProblem, processIdentity, stopChildren, takeLock } from "./processes.mjs";
 import { step } from "./progress.mjs";
-import { answers, keyVariables, startServer } from "./server-process.mjs";
+import { answers, startServer } from "./server-process.mjs";
 import { addressOf, readStartSettings, version } from "./settings.mjs";
 import { PlainError, ensureInstall, runCommand } from "./setup.mjs";
 
@@ -82,7 +82,6 @@ async function start() {
       address,
       giveUp: stopRequested,
       variables: {
-        ...keyVariables(settings.dataDir, process.env),
         PORT: String(port),
         HOST: settings.host,
         DATABASE_URL: database,
@@ -194,13 +193,15 @@ async function prepare(settings) {
  * @returns {Promise<string>}
  */
 async function prepareData(settings, cluster, apiBuild) {
+  const signInsFile = signInsFileOf(settings.dataDir);
   if (settings.server !== null || cluster === null) {
     const addresses = /** @type {NonNullable<typeof settings.server>} */ (settings.server);
     await step("schema", (say) => migrateDatabase(addresses, say));
+    goOn();
+    if (settings.demo && !fs.existsSync(signInsFile)) await seed(addresses.ownerUrl, apiBuild, signInsFile);
     return addresses.appUrl;
   }
   const { name, isNew } = await prepareDatabase(cluster);
-  const signInsFile = signInsFileOf(settings.dataDir);
   if (!isNew && !settings.demo && fs.existsSync(signInsFile)) {
     throw new PlainError(
       `The data folder ${settings.dataDir} holds the demo lab, whose sign-ins anybody can read: it is shown on this machine alone. Set HOST=127.0.0.1, or WAVEKEEP_DATA_DIR to a folder for your own lab, or WAVEKEEP_DEMO=1 if others may see it.`,
@@ -211,16 +212,21 @@ async function prepareData(settings, cluster, apiBuild) {
   goOn();
   if (isNew) {
     fs.rmSync(signInsFile, { force: true });
-    if (settings.demo) {
-      const signIns = await step("demo lab", (say) =>
-        seedDemoLab({ ownerUrl: addresses.ownerUrl, program: path.join(apiBuild, "seed-demo.js"), say }),
-      );
-      goOn();
-      fs.writeFileSync(signInsFile, `${JSON.stringify(signIns, null, 2)}\n`, { mode: 0o600 });
-    }
+    if (settings.demo) await seed(addresses.ownerUrl, apiBuild, signInsFile);
     await finishDatabase(cluster);
   }
   return appUrl(cluster, settings.dataDir);
+}
+
+/**
+ * @param {string} ownerUrl
+ * @param {string} apiBuild
+ * @param {string} signInsFile
+ */
+async function seed(ownerUrl, apiBuild, signInsFile) {
+  const program = path.join(apiBuild, "seed-demo.js");
+  const signIns = await step("demo lab", (say) => seedDemoLab({ ownerUrl, program, say }));
+  fs.writeFileSync(signInsFile, `${JSON.stringify(signIns, null, 2)}\n`, { mode: 0o600 });
 }
 
 /** @param {string} dataDir */
