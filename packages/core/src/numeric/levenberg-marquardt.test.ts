@@ -8,7 +8,7 @@ const valley: LeastSquaresProblem = {
   evaluate(p, r, j) {
     r[0] = 10 * (p[1]! - p[0]! * p[0]!);
     r[1] = 1 - p[0]!;
-    if (j) j.set([-20 * p[0]!, 10, -1, 0]);
+    j.set([-20 * p[0]!, 10, -1, 0]);
     return true;
   },
 };
@@ -25,7 +25,7 @@ describe("minimise", () => {
     const fit = minimise({
       parameterCount: 1, residualCount: 3,
       evaluate(p, r, j) {
-        values.forEach((v, i) => { r[i] = p[0]! - v; if (j) j[i] = 1; });
+        values.forEach((v, i) => { r[i] = p[0]! - v; j[i] = 1; });
         return true;
       },
     }, [100]);
@@ -42,7 +42,7 @@ describe("minimise", () => {
         const root = Math.sqrt(p[0]!);
         r[0] = root - 2;
         r[1] = 2 * (root - 2);
-        if (j) j.set([0.5 / root, 1 / root]);
+        j.set([0.5 / root, 1 / root]);
         return true;
       },
     }, [100]);
@@ -52,7 +52,7 @@ describe("minimise", () => {
     const fit = minimise({
       parameterCount: 2, residualCount: 3,
       evaluate(p, r, j) {
-        [1, 2, 3].forEach((v, i) => { r[i] = p[0]! - v; if (j) { j[2 * i] = 1; j[2 * i + 1] = 0; } });
+        [1, 2, 3].forEach((v, i) => { r[i] = p[0]! - v; j[2 * i] = 1; j[2 * i + 1] = 0; });
         return true;
       },
     }, [10, 7]);

@@ -13,11 +13,11 @@ export interface LeastSquaresProblem {
   parameterCount: number;
   residualCount: number;
   /**
-   * Fills residuals (fitted minus observed, over the uncertainty) and, when given, the Jacobian: row-major
-   * residualCount x parameterCount, derivative of each residual.
+   * Fills residuals (fitted minus observed, over the uncertainty) and the Jacobian: row-major
+   * residualCount x parameterCount, derivative of each residual; every cell is written anew.
    * @returns false when the parameters are not allowed (the step is then shortened)
    */
-  evaluate(parameters: Float64Array, residuals: Float64Array, jacobian: Float64Array | null): boolean;
+  evaluate(parameters: Float64Array, residuals: Float64Array, jacobian: Float64Array): boolean;
 }
 
 export interface MinimiseOptions {
@@ -112,7 +112,8 @@ export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>,
         if (Math.abs(step[j]!) > 4 * EPSILON * Math.abs(parameters[j]!)) isTiny = false;
       }
       if (isTiny) return finish(explained <= 1e-10 * sum ? "converged" : "stalled", sum, iteration);
-      const allowed = problem.evaluate(trial, trialResiduals, null);
+      // The Jacobian's triangle is kept in r, so its room is free: most trials are accepted and need the new one.
+      const allowed = problem.evaluate(trial, trialResiduals, jacobian);
       const trialSum = allowed ? sumOfSquares(trialResiduals) : Infinity;
       const length = scaledLength(step, scale);
       // What the linear model promises: |Jp|² + 2 lambda |Dp|² of Moré.
@@ -131,7 +132,6 @@ export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>,
       if (!(predicted > 16 * EPSILON * sum)) return finish("converged", sum, iteration);
       if (!(radius > EPSILON * scaledLength(parameters, scale))) return finish("stalled", sum, iteration);
     }
-    problem.evaluate(parameters, residuals, jacobian);
   }
 }
 
