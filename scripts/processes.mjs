@@ -202,6 +202,17 @@ export function takeLock(file, about = {}) {
 }
 
 /**
+ * Who holds a lock now.
+ *
+ * @param {string} file
+ * @returns {(Record<string, unknown> & { pid: number }) | null} null when nobody that still runs
+ */
+export function lockHolder(file) {
+  const holder = readLock(file);
+  return holder !== null && processIdentity(holder.pid) === holder.identity ? holder : null;
+}
+
+/**
  * @param {string} file
  * @returns {(Record<string, unknown> & { pid: number, identity: string | null }) | null}
  */

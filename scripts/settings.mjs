@@ -22,6 +22,9 @@ export const isLoopback = (host) => host === "localhost" || host === "::1" || /^
 /** Folder of the local cluster, passwords, keys and log. @param {NodeJS.ProcessEnv} env */
 export const dataDirOf = (env) => path.resolve(projectDir, env["WAVEKEEP_DATA_DIR"] || ".wavekeep");
 
+/** Held by the start that runs on a data folder; holds the address where it answers. @param {string} dataDir */
+export const startLockOf = (dataDir) => path.join(dataDir, "start.lock");
+
 /**
  * @param {NodeJS.ProcessEnv} env
  * @returns {StartSettings}
@@ -41,8 +44,14 @@ export function readStartSettings(env) {
   return { host, port, dataDir: dataDirOf(env), server, demo };
 }
 
-/** @param {NodeJS.ProcessEnv} env */
-function readServer(env) {
+/**
+ * A PostgreSQL server of the lab's own, as the environment names it.
+ *
+ * @param {NodeJS.ProcessEnv} env
+ * @returns {{ appUrl: string, ownerUrl: string } | null} null: the local cluster
+ * @throws {PlainError} when only one address is given, or they name the same role
+ */
+export function readServer(env) {
   const appUrl = env["DATABASE_URL"] || null;
   const ownerUrl = env["DATABASE_OWNER_URL"] || null;
   if (appUrl === null && ownerUrl === null) return null;

@@ -10,7 +10,7 @@ import { ensureDataDir, openCluster } from "./postgres.mjs";
 import { callersOf, freePort, portProblem, processIdentity, stopChildren, takeLock } from "./processes.mjs";
 import { step } from "./progress.mjs";
 import { answers, startServer } from "./server-process.mjs";
-import { addressOf, readStartSettings, version } from "./settings.mjs";
+import { addressOf, readStartSettings, startLockOf, version } from "./settings.mjs";
 import { PlainError, ensureInstall, runCommand } from "./setup.mjs";
 
 /** What must be undone at the end, in reverse order. @type {(() => Promise<void> | void)[]} */
@@ -110,7 +110,7 @@ async function start() {
  * @param {string} address of this start
  */
 async function runsAlready(dataDir, address) {
-  const lock = takeLock(path.join(dataDir, "start.lock"), { address });
+  const lock = takeLock(startLockOf(dataDir), { address });
   if (lock.taken) {
     undo.push(lock.release);
     return false;
