@@ -111,8 +111,7 @@ export function fitLines(window: LineWindow, starts: readonly LineStart[], optio
     expectedChiSquare = correlated.expectedChiSquare;
   }
   const reducedChiSquare = result.sumOfSquares / expectedChiSquare;
-  const isBeyondChance = reducedChiSquare > 1 + Math.sqrt(2 / degreesOfFreedom);
-  const growth = isBeyondChance ? Math.sqrt(reducedChiSquare) : 1;
+  const growth = isBeyondChance(reducedChiSquare, degreesOfFreedom) ? Math.sqrt(reducedChiSquare) : 1;
   const lines: FittedShape[] = starts.map((_, k) => {
     const at = PER_LINE * k;
     const std = p[at + 1]!;
@@ -137,6 +136,11 @@ export function fitLines(window: LineWindow, starts: readonly LineStart[], optio
     degreesOfFreedom,
     fittedCounts: model.curve(p),
   };
+}
+
+/** True where the scatter about a fit is more than chance, so that the uncertainties were made to grow with it. */
+export function isBeyondChance(reducedChiSquare: number, degreesOfFreedom: number): boolean {
+  return degreesOfFreedom > 0 && reducedChiSquare > 1 + Math.sqrt(2 / degreesOfFreedom);
 }
 
 function checkWindow(window: LineWindow, starts: readonly LineStart[]): void {
