@@ -1,8 +1,8 @@
 /** Bundles the server's programs (esbuild) and the client (Vite) into the two folders named on the command line. */
 import fs from "node:fs";
 import path from "node:path";
-import { build } from "esbuild";
 import { build as buildWithVite } from "vite";
+import { bundleServerPrograms } from "./bundle.mjs";
 import { projectDir } from "./processes.mjs";
 
 /** Program in the build -> source. */
@@ -14,29 +14,7 @@ const programs = {
   "analysis-worker": "checks/analysis-worker.ts",
 };
 
-const apiDir = path.join(projectDir, "packages/api");
 const webDir = path.join(projectDir, "packages/web");
-
-/** @param {string} outdir */
-async function buildServer(outdir) {
-  const { dependencies } = JSON.parse(fs.readFileSync(path.join(apiDir, "package.json"), "utf8"));
-  // The api's own dependencies stay packages; the core is bundled, and whatever only the core depends on with it.
-  const external = Object.keys(dependencies)
-    .filter((name) => !name.startsWith("@wavekeep/"))
-    .flatMap((name) => [name, `${name}/*`]);
-  await build({
-    absWorkingDir: apiDir,
-    entryPoints: Object.fromEntries(Object.entries(programs).map(([name, file]) => [name, path.join("src", file)])),
-    outdir,
-    bundle: true,
-    platform: "node",
-    target: "node20",
-    format: "esm",
-    external,
-    sourcemap: true,
-    logLevel: "warning",
-  });
-}
 
 /** @param {string} outdir */
 async function buildClient(outdir) {
@@ -65,4 +43,7 @@ async function buildInto(make, folder) {
 
 const [apiOut, webOut] = process.argv.slice(2);
 if (apiOut === undefined || webOut === undefined) throw new Error("build-packages.mjs <api folder> <web folder>");
-await Promise.all([buildInto(buildServer, apiOut), buildInto(buildClient, webOut)]);
+await Promise.all([
+  buildInto((outdir) => bundleServerPrograms(programs, outdir), apiOut),
+  buildInto(buildClient, webOut),
+]);

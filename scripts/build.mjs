@@ -31,9 +31,15 @@ export function buildFingerprint() {
     ...sourceFiles("packages"),
     "scripts/build.mjs",
     "scripts/build-packages.mjs",
+    "scripts/bundle.mjs",
     "pnpm-lock.yaml",
     "package.json",
   ];
+  return fingerprintOf(files);
+}
+
+/** @param {string[]} files relative to the project */
+function fingerprintOf(files) {
   const hash = createHash("sha256").update(process.versions.node.split(".")[0] ?? "");
   for (const file of files) hash.update(`\0${file}\0`).update(fs.readFileSync(path.join(projectDir, file)));
   return hash.digest("hex").slice(0, 16);
@@ -63,6 +69,32 @@ export async function ensureBuild(say = () => {}) {
     );
   }
   return { ...folders, built, release: markUse(folders.api) };
+}
+
+/**
+ * One command-line program of packages/api/src, bundled alone when it or the core changed.
+ *
+ * @param {string} source relative to packages/api/src
+ * @returns {Promise<string>} the bundle
+ */
+export async function ensureCommand(source) {
+  const folder = path.posix.dirname(source);
+  const files = [...sourceFiles("packages/core"), ...sourceFiles(`packages/api/src/${folder}`), "pnpm-lock.yaml"];
+  const bundle = path.join(distOf.api, `command-${fingerprintOf(files)}`, `${path.basename(source, ".ts")}.js`);
+  if (!fs.existsSync(bundle)) {
+    removeOldBuilds();
+    const { bundleServerPrograms } = await import("./bundle.mjs");
+    const unfinished = path.join(distOf.api, `.unfinished-command-${process.pid}`);
+    await bundleServerPrograms({ [path.basename(source, ".ts")]: source }, unfinished);
+    try {
+      fs.renameSync(unfinished, path.dirname(bundle));
+    } catch (error) {
+      // Another command finished the same bundle first: that one stands.
+      fs.rmSync(unfinished, { recursive: true, force: true });
+      if (!fs.existsSync(bundle)) throw error;
+    }
+  }
+  return bundle;
 }
 
 /** @param {string} folder */
