@@ -90,7 +90,7 @@ export function fitLines(window: LineWindow, starts: readonly LineStart[], optio
     return { outcome: "refused", reason: "too-few-samples", detail: `${m} samples cannot show ${starts.length} line(s): at least ${n + 1} are needed.` };
   }
   const model = new GaussianLines(window, starts.length);
-  const result = minimise(model, model.startParameters(starts), { maxIterations: options.maxIterations ?? 60, tolerance: 1e-5 });
+  const result = minimise(model, model.startParameters(starts), { maxIterations: options.maxIterations ?? 60, tolerance: 1e-4 });
   if (result.outcome === "iterations" || result.outcome === "bad-start" || result.covariance === null) {
     return { outcome: "refused", reason: "not-converged", detail: `The fit did not settle after ${result.iterations} steps.` };
   }
