@@ -35,6 +35,10 @@ const narrowestToJudge = 1.9;
 /** Broader than this many lines is a band, not a line. */
 const bandShare = 5;
 const strongSigmas = 10;
+const wingShare = 0.02;
+const wingWidths = 5;
+/** With narrower lines a single high sample may be a line's top. */
+const narrowestWithSpikes = 2.5;
 
 /**
  * @param counts    counts with gaps already filled by the baseline
@@ -53,6 +57,7 @@ export function detectLines(
   const typicalWidth = findTypicalWidth(residual, base, saturated);
   const threshold = normalQuantile(1 - Math.min(0.4, falseLinesPerCapture / n));
   const width = typicalWidth ?? 3;
+  const candidates = width >= narrowestWithSpikes ? takeLoneSamples(residual, base, saturated) : [];
 
   // Narrow smoothing keeps neighbours apart; broad smoothing, matched to the line, finds the weak ones between them.
   const narrow = smooth(residual, oddAtLeastOne(width / 2));
@@ -64,23 +69,28 @@ export function detectLines(
   }
   tops.sort((a, b) => a - b);
 
-  const candidates: Candidate[] = [];
   for (const top of tops) {
     const one = describe(narrow, residual, top, saturated, tops);
     if (typicalWidth !== null && one.width > bandShare * typicalWidth && !one.saturated) continue;
-    const sharp = describe(residual, residual, sharpestNear(residual, top, 1 + Math.round(width / 2)), saturated, tops);
-    const lone = isLoneSample(residual, sharp.top);
+    const others = tops.filter((other) => Math.abs(other - top) > width / 2);
+    const sharp = describe(
+      residual,
+      residual,
+      sharpestNear(residual, top, 1 + Math.round(width / 2)),
+      saturated,
+      others,
+    );
     if (
       typicalWidth !== null &&
       typicalWidth >= narrowestToJudge &&
       !one.saturated &&
       sharp.height > strongSigmas * base.noiseCounts[sharp.top]! &&
-      (lone || sharp.width < spikeShare * typicalWidth)
+      sharp.width < spikeShare * typicalWidth
     ) {
       candidates.push({ ...sharp, spike: true });
     } else candidates.push(one);
   }
-  return { candidates: dropTwins(candidates), typicalWidth };
+  return { candidates: dropWings(dropTwins(candidates), width).sort((a, b) => a.centre - b.centre), typicalWidth };
 }
 
 function oddAtLeastOne(width: number): number {
@@ -172,10 +182,21 @@ function sharpestNear(residual: Float64Array, top: number, reach: number): numbe
   return best;
 }
 
-/** One sample that carries everything: both neighbours below a fifth of it. */
-function isLoneSample(residual: Float64Array, top: number): boolean {
-  const limit = 0.2 * residual[top]!;
-  return top > 0 && top + 1 < residual.length && residual[top - 1]! < limit && residual[top + 1]! < limit;
+/**
+ * Single samples that stand out of both neighbours by more than half of their own height: hot pixels, also on the flank of a line. They
+ * are taken out of the residual, so that what is left of a line is seen as it is.
+ */
+function takeLoneSamples(residual: Float64Array, base: Baseline, saturated: Uint8Array): Candidate[] {
+  const spikes: Candidate[] = [];
+  for (let i = 1; i + 1 < residual.length; i += 1) {
+    const height = residual[i]!;
+    const higherNeighbour = Math.max(residual[i - 1]!, residual[i + 1]!);
+    const out = height - higherNeighbour;
+    if (saturated[i] === 1 || out < strongSigmas * base.noiseCounts[i]! || out < 0.5 * height) continue;
+    spikes.push({ top: i, centre: i, width: 1, height, spike: true, saturated: false });
+    residual[i] = (residual[i - 1]! + residual[i + 1]!) / 2;
+  }
+  return spikes;
 }
 
 /** Half-height crossings on both sides of a top, not beyond the neighbouring tops. */
@@ -246,5 +267,19 @@ function dropTwins(candidates: Candidate[]): Candidate[] {
   return candidates.filter(
     (one, k) =>
       !candidates.some((other, m) => m < k && Math.abs(other.top - one.top) <= 1 && other.spike === one.spike),
+  );
+}
+
+/** What stands on the wing of a line fifty times as high is its wing, its ghost or the detector's ringing. */
+function dropWings(candidates: Candidate[], width: number): Candidate[] {
+  return candidates.filter(
+    (one) =>
+      one.spike ||
+      !candidates.some(
+        (other) =>
+          !other.spike &&
+          one.height < wingShare * other.height &&
+          Math.abs(other.centre - one.centre) < wingWidths * width,
+      ),
   );
 }

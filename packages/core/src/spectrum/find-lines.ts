@@ -1,15 +1,15 @@
 /**
  * A spectrum to fitted lines: baseline and noise, saturation, detection, then each line, or group of lines that overlap, fitted.
  *
- * Weights   read noise from the quiet samples; photon noise from the scatter about the first fits of the strong lines (counts per
- *           electron: the lower quartile over the lines, because a shape that does not fit looks like more noise)
+ * Weights   read noise from the quiet samples; photon noise from the scatter about first fits of the single lines (`photon-gain`)
  * Flags     saturated, blend, edge, spike, poor fit, weak, smoothed: kept, marked, left to the caller
  */
 import type { FittedLine, LineFlag, Spectrum } from "../analysis/types.ts";
-import { fitLines, type LineStart } from "../lineshape/fit-line.ts";
+import { fitLines, type FittedShape, type LineStart } from "../lineshape/fit-line.ts";
 import { estimateBaseline } from "./baseline.ts";
 import { detectLines, type Candidate } from "./detect.ts";
-import { median, selectInPlace } from "./median.ts";
+import { median } from "./median.ts";
+import { estimatePhotonGain, type LineScatter } from "./photon-gain.ts";
 import { findSaturation } from "./saturation.ts";
 
 export interface FindLinesOptions {
@@ -51,7 +51,7 @@ export interface FoundLines {
 /** Lag-one correlation above which a capture is said to be smoothed. */
 export const smoothedAbove = 0.2;
 /** The window reaches this many widths from the outermost tops of a group. */
-const windowWidths = 2.2;
+const windowWidths = 1.8;
 const leastReach = 4;
 /** Tops nearer than this many widths are fitted together. */
 const groupWidths = 2.6;
@@ -59,6 +59,9 @@ const mostTogether = 6;
 const blendWidths = 1.5;
 const poorFitShare = 0.12;
 const weakSigmas = 6;
+/** Lines that tell the photon noise: this far above the noise, and at most so many. */
+const gainSigmas = 12;
+const mostForGain = 10;
 /** Share of the width that stands in for an uncertainty where no fit was possible. Common practice, no source. */
 const unfittedUncShare = 0.25;
 
@@ -113,10 +116,11 @@ export function findLines(spectrum: Spectrum, options: FindLinesOptions = {}): F
   const lines: FittedLine[] = [];
   const windows: (FittedWindow | null)[] = [];
   for (const group of groups) {
-    const fitted = fitGroup(prepared, group, gain, windows.length);
-    if (fitted.lines.length === 0) continue;
-    lines.push(...fitted.lines);
-    windows.push(fitted.window);
+    for (const fitted of fitGroup(prepared, group, gain)) {
+      if (fitted.lines.length === 0) continue;
+      for (const line of fitted.lines) lines.push({ ...line, group: windows.length });
+      windows.push(fitted.window);
+    }
   }
   for (const spike of candidates) {
     if (!spike.spike) continue;
@@ -227,15 +231,16 @@ function startsOf(prepared: Prepared, group: Group): LineStart[] {
   });
 }
 
-/** Counts per electron from the scatter about first fits of the strong single lines; 0 when they show none. */
+/** Counts per electron, from first fits of single lines of all heights. */
 function estimateGain(prepared: Prepared, groups: Group[]): number {
-  const strong = groups
+  const single = groups
     .filter(({ members }) => members.length === 1 && !members[0]!.saturated)
-    .filter(({ members }) => members[0]!.height > 15 * prepared.readNoise[members[0]!.top]!)
-    .sort((a, b) => b.members[0]!.height - a.members[0]!.height)
-    .slice(0, 12);
-  const gains: number[] = [];
-  for (const group of strong) {
+    .filter(({ members }) => members[0]!.height > gainSigmas * prepared.readNoise[members[0]!.top]!)
+    .sort((a, b) => b.members[0]!.height - a.members[0]!.height);
+  const scatters: LineScatter[] = [];
+  const step = Math.max(1, single.length / mostForGain);
+  for (let at = 0; at < single.length; at += step) {
+    const group = single[Math.floor(at)]!;
     const { samples, positions, values, unc } = windowOf(prepared, group, 0);
     if (samples.length < 7) continue;
     const fit = fitLines(
@@ -244,33 +249,35 @@ function estimateGain(prepared: Prepared, groups: Group[]): number {
         counts: values,
         countsUnc: unc,
         pixelIntegrated: prepared.pixelIntegrated,
-        noiseCorrelation: prepared.correlation,
+        noiseCorrelation: 0,
       },
       startsOf(prepared, group),
     );
     if (fit.outcome === "refused") continue;
-    let excess = 0;
-    let signal = 0;
-    for (let k = 0; k < samples.length; k += 1) {
+    const m = samples.length;
+    const scatter = { excess: 0, readVariance: 0, meanSignal: 0, meanSquareSignal: 0, degreesOfFreedom: m - 5 };
+    for (let k = 0; k < m; k += 1) {
       const residual = values[k]! - fit.fittedCounts[k]!;
-      excess += residual * residual;
-      signal += Math.max(0, fit.fittedCounts[k]! - prepared.baseline[samples[k]!]!);
+      const offset = positions[k]! - fit.windowCentre;
+      const signal = Math.max(0, fit.fittedCounts[k]! - fit.baseline[0] - fit.baseline[1] * offset);
+      scatter.excess += (residual * residual) / (m - 5);
+      scatter.readVariance += (unc[k]! * unc[k]!) / m;
+      scatter.meanSignal += signal / m;
+      scatter.meanSquareSignal += (signal * signal) / m;
     }
-    // Fitted parameters take their share of the scatter: per sample it is down by dof / samples.
-    excess *= samples.length / Math.max(1, fit.degreesOfFreedom);
-    for (let k = 0; k < samples.length; k += 1) excess -= unc[k]! * unc[k]!;
-    if (signal > 0) gains.push(Math.max(0, excess / signal));
+    scatter.excess -= scatter.readVariance;
+    scatters.push(scatter);
   }
-  if (gains.length === 0) return 0;
-  return selectInPlace(Float64Array.from(gains), gains.length, Math.floor((gains.length - 1) / 4));
+  return estimatePhotonGain(scatters);
 }
 
-function fitGroup(
-  prepared: Prepared,
-  group: Group,
-  gain: number,
-  number: number,
-): { lines: FittedLine[]; window: FittedWindow | null } {
+interface FittedGroup {
+  /** Group number still to be set. */
+  lines: FittedLine[];
+  window: FittedWindow | null;
+}
+
+function fitGroup(prepared: Prepared, group: Group, gain: number): FittedGroup[] {
   const { samples, positions, values, unc } = windowOf(prepared, group, gain);
   const starts = startsOf(prepared, group);
   const fit =
@@ -286,31 +293,20 @@ function fitGroup(
           starts,
         )
       : null;
-  if (fit === null || fit.outcome === "refused") {
-    const lines = group.members.map((one, k) => unfittedLine(prepared, group, one, starts[k]!, number));
-    return { lines: lines.filter((line): line is FittedLine => line !== null), window: null };
+  const isFitted = fit !== null && fit.outcome === "fitted" && fit.lines.every((line, k) => isSane(line, starts[k]!));
+  if (!isFitted) {
+    // Lines that can't be told apart together are tried one by one, each on its own side of the valley.
+    if (group.members.length > 1) return splitGroup(group).flatMap((part) => fitGroup(prepared, part, gain));
+    const line = unfittedLine(prepared, group, group.members[0]!, starts[0]!);
+    return [{ lines: line === null ? [] : [line], window: null }];
   }
-  const lines: FittedLine[] = [];
-  for (let k = 0; k < starts.length; k += 1) {
-    const line = fit.lines[k]!;
-    const start = starts[k]!;
-    const one = group.members[k]!;
-    const sane =
-      Math.abs(line.centre - start.centre) < 1.5 * start.fwhm &&
-      line.fwhm > 0.2 * start.fwhm &&
-      line.fwhm < 5 * start.fwhm &&
-      line.peakHeightCounts > 0;
-    if (!sane) {
-      const plain = unfittedLine(prepared, group, one, start, number);
-      if (plain !== null) lines.push(plain);
-      continue;
-    }
-    const noise = prepared.readNoise[one.top]!;
+  const lines = fit.lines.map((line, k): FittedLine => {
+    const noise = prepared.readNoise[group.members[k]!.top]!;
     const flags = flagsOf(prepared, group, k, starts);
     const misfit = Math.sqrt(Math.max(0, fit.reducedChiSquare - 1)) * rootMeanSquare(unc);
     if (misfit > poorFitShare * line.peakHeightCounts) flags.push("poor-fit");
     if (line.peakHeightCounts < weakSigmas * noise) flags.push("weak");
-    lines.push({
+    return {
       position: line.centre,
       positionUnc: line.centreUnc,
       fwhm: line.fwhm,
@@ -322,22 +318,34 @@ function fitGroup(
       degreesOfFreedom: fit.degreesOfFreedom,
       windowFirst: group.first,
       windowLast: group.last,
-      group: number,
+      group: -1,
       flags,
-    });
-  }
+    };
+  });
   const baselineCounts = positions.map((at) => fit.baseline[0] + fit.baseline[1] * (at - fit.windowCentre));
-  return {
-    lines,
-    window: {
-      first: group.first,
-      last: group.last,
-      samples,
-      fittedCounts: fit.fittedCounts,
-      baselineCounts,
-      countsUnc: unc,
-    },
-  };
+  const { first, last } = group;
+  return [{ lines, window: { first, last, samples, fittedCounts: fit.fittedCounts, baselineCounts, countsUnc: unc } }];
+}
+
+function isSane(line: FittedShape, start: LineStart): boolean {
+  return (
+    Math.abs(line.centre - start.centre) < 1.5 * start.fwhm &&
+    line.fwhm > 0.2 * start.fwhm &&
+    line.fwhm < 5 * start.fwhm &&
+    line.peakHeightCounts > 0
+  );
+}
+
+function splitGroup(group: Group): Group[] {
+  return group.members.map((one, k) => {
+    const before = group.members[k - 1];
+    const after = group.members[k + 1];
+    return {
+      members: [one],
+      first: before === undefined ? group.first : Math.ceil((before.centre + one.centre) / 2),
+      last: after === undefined ? group.last : Math.floor((one.centre + after.centre) / 2),
+    };
+  });
 }
 
 function rootMeanSquare(values: Float64Array): number {
@@ -361,13 +369,7 @@ function flagsOf(prepared: Prepared, group: Group, k: number, starts: LineStart[
 }
 
 /** A strong line that no fit describes keeps its half-height centre, with a wide uncertainty; a weak one is dropped. */
-function unfittedLine(
-  prepared: Prepared,
-  group: Group,
-  one: Candidate,
-  start: LineStart,
-  number: number,
-): FittedLine | null {
+function unfittedLine(prepared: Prepared, group: Group, one: Candidate, start: LineStart): FittedLine | null {
   const noise = prepared.readNoise[one.top]!;
   if (one.height < 2 * weakSigmas * noise && !one.saturated) return null;
   const index = group.members.indexOf(one);
@@ -383,7 +385,7 @@ function unfittedLine(
     degreesOfFreedom: 0,
     windowFirst: group.first,
     windowLast: group.last,
-    group: number,
+    group: -1,
     flags: [...flagsOf(prepared, group, index, startsOf(prepared, group)), "poor-fit"],
   };
 }
