@@ -28,6 +28,14 @@ export default defineConfig({
       },
       {
         test: {
+          name: "scripts",
+          root: at("scripts"),
+          include: ["**/*.test.ts"],
+          testTimeout: 30_000,
+        },
+      },
+      {
+        test: {
           name: "api",
           root: at("."),
           include: [
@@ -35,7 +43,6 @@ export default defineConfig({
             "tests/api/**/*.test.ts",
             "tests/security/**/*.test.ts",
             "tests/support/**/*.test.ts",
-            "scripts/**/*.test.ts",
           ],
           globalSetup: [at("tests/support/database-setup.ts")],
           testTimeout: 30_000,

@@ -10,6 +10,8 @@ import { cleanEnvironment, processIdentity, projectDir, runProgram } from "./pro
 
 const distOf = { api: path.join(projectDir, "packages/api/dist"), web: path.join(projectDir, "packages/web/dist") };
 
+const dayMs = 86_400_000;
+
 /** Folders that hold nothing written by a person. */
 const notSources = new Set(["node_modules", "dist", "generated"]);
 
@@ -72,29 +74,31 @@ export async function ensureBuild(say = () => {}) {
 }
 
 /**
- * One command-line program of packages/api/src, bundled alone when it or the core changed.
+ * A command-line program written in TypeScript on the core, bundled when it or the core changed.
  *
- * @param {string} source relative to packages/api/src
+ * @param {string} folder relative to the project; its main.ts is the entry
  * @returns {Promise<string>} the bundle
  */
-export async function ensureCommand(source) {
-  const folder = path.posix.dirname(source);
-  const files = [...sourceFiles("packages/core"), ...sourceFiles(`packages/api/src/${folder}`), "pnpm-lock.yaml"];
-  const bundle = path.join(distOf.api, `command-${fingerprintOf(files)}`, `${path.basename(source, ".ts")}.js`);
+export async function ensureCommand(folder) {
+  const files = [...sourceFiles("packages/core"), ...sourceFiles(folder), "pnpm-lock.yaml"];
+  const bundles = path.join(projectDir, folder, "dist");
+  const bundle = path.join(bundles, `${fingerprintOf(files)}.mjs`);
   if (!fs.existsSync(bundle)) {
-    removeOldBuilds();
-    const { bundleServerPrograms } = await import("./bundle.mjs");
-    const unfinished = path.join(distOf.api, `.unfinished-command-${process.pid}`);
-    await bundleServerPrograms({ [path.basename(source, ".ts")]: source }, unfinished);
-    try {
-      fs.renameSync(unfinished, path.dirname(bundle));
-    } catch (error) {
-      // Another command finished the same bundle first: that one stands.
-      fs.rmSync(unfinished, { recursive: true, force: true });
-      if (!fs.existsSync(bundle)) throw error;
-    }
+    removeOldBundles(bundles);
+    const unfinished = path.join(bundles, `${process.pid}.unfinished.mjs`);
+    const { bundleCommand } = await import("./bundle.mjs");
+    await bundleCommand(path.join(folder, "main.ts"), unfinished);
+    fs.renameSync(unfinished, bundle);
   }
   return bundle;
+}
+
+/** Bundles older than a day; a younger one may be another command's, about to be loaded. @param {string} folder */
+function removeOldBundles(folder) {
+  for (const name of fs.existsSync(folder) ? fs.readdirSync(folder) : []) {
+    const file = path.join(folder, name);
+    if (Date.now() - fs.statSync(file).mtimeMs > dayMs) fs.rmSync(file, { force: true });
+  }
 }
 
 /** @param {string} folder */
@@ -106,7 +110,6 @@ function markUse(folder) {
 
 /** Builds that no process uses and that are older than a day are removed. */
 function removeOldBuilds() {
-  const dayMs = 86_400_000;
   for (const name of fs.existsSync(distOf.api) ? fs.readdirSync(distOf.api) : []) {
     const folder = path.join(distOf.api, name);
     const inUse = fs.readdirSync(folder).some((file) => {

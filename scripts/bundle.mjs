@@ -1,12 +1,16 @@
-/** Bundles programs of packages/api with esbuild. */
+/** Bundles programs that run in Node, with esbuild. */
 import fs from "node:fs";
 import path from "node:path";
 import { build } from "esbuild";
 import { projectDir } from "./processes.mjs";
 
+/** @type {import("esbuild").BuildOptions} */
+const forNode = { bundle: true, platform: "node", target: "node20", format: "esm", logLevel: "warning" };
 const apiDir = path.join(projectDir, "packages/api");
 
 /**
+ * Programs of packages/api.
+ *
  * @param {Record<string, string>} programs name in the build -> source relative to packages/api/src
  * @param {string} outdir below packages/api, where the api's packages are found at run time
  */
@@ -17,15 +21,21 @@ export async function bundleServerPrograms(programs, outdir) {
     .filter((name) => !name.startsWith("@wavekeep/"))
     .flatMap((name) => [name, `${name}/*`]);
   await build({
+    ...forNode,
     absWorkingDir: apiDir,
     entryPoints: Object.fromEntries(Object.entries(programs).map(([name, file]) => [name, path.join("src", file)])),
     outdir,
-    bundle: true,
-    platform: "node",
-    target: "node20",
-    format: "esm",
     external,
     sourcemap: true,
-    logLevel: "warning",
   });
+}
+
+/**
+ * One program that stands on the core alone, with everything it needs in one file.
+ *
+ * @param {string} entry relative to the project
+ * @param {string} outfile
+ */
+export async function bundleCommand(entry, outfile) {
+  await build({ ...forNode, absWorkingDir: projectDir, entryPoints: [entry], outfile });
 }

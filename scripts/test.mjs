@@ -67,7 +67,7 @@ async function runEverything(variables) {
     runStaticChecks(),
     runVitest(
       "unit and API",
-      ["--project", "core", "--project", "external", "--project", "api", "--project", "web"],
+      ["--project", "scripts", "--project", "core", "--project", "external", "--project", "api", "--project", "web"],
       variables,
     ),
   ]);
