@@ -1,7 +1,8 @@
 /** Who is signed in and what they may do, read from the one permission table that the server enforces. */
 import { permissions, type Action, type Me, type Permission } from "@wavekeep/api/contract";
 import { queryOptions, useQuery } from "@tanstack/react-query";
-import { createContext, useContext } from "react";
+import { createContext, useContext, useState } from "react";
+import { dayOf } from "../ui/format.ts";
 import { api, keepCsrfToken } from "./api.ts";
 
 export const sessionQuery = queryOptions({
@@ -32,6 +33,13 @@ export function useMe(): Member {
 /** Time zone of the lab, or of this device before a lab is known. */
 export const useZone = (): string =>
   useContext(MemberContext)?.lab.zone ?? Intl.DateTimeFormat().resolvedOptions().timeZone;
+
+/** Today's date in the lab's zone, `yyyy-mm-dd`: as the server said it, else by this device's clock. */
+export function useToday(given?: string): string {
+  const zone = useZone();
+  const [byClock] = useState(() => new Date());
+  return given ?? dayOf(byClock, zone);
+}
 
 /** What an action is about, as far as the page knows it. */
 export interface About {

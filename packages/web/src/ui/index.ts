@@ -37,4 +37,4 @@ export {
   type RouteReply,
 } from "../shared/api.ts";
 export { ApiProblem, problemOf } from "../shared/problem.ts";
-export { mayDo, useMay, useMe, useZone, type Member } from "../shared/session.ts";
+export { mayDo, useMay, useMe, useToday, useZone, type Member } from "../shared/session.ts";

@@ -1,0 +1,128 @@
+/** Geometry of the spectrum bench: its registers top to bottom, and the counts' ruler. Pure. */
+import type { StripLine } from "@wavekeep/api/contract";
+import type { Analysis, LineResult, SpectrumDrawing } from "@wavekeep/core";
+import { countsTicks, countsTransform, type CountsScale } from "./scale.ts";
+
+export interface Registers {
+  half: number;
+  /** y of the upper limit of the strip. */
+  stripTop: number;
+  /** Below the strip: where leaders up end, where flags stand, where leaders down end. */
+  leaderTop: number;
+  flagsTop: number;
+  leaderBottom: number;
+  /** y of the spectrum's top and of its zero. */
+  spectrumTop: number;
+  zero: number;
+  spectrumHeight: number;
+  /** y of residual zero; null where there is no room for them (a phone). */
+  residualZero: number | null;
+  /** y of the wavelength ruler. */
+  rulerTop: number;
+  height: number;
+}
+
+/** px a standard deviation of the residuals: ±2 sigma stand 26 px apart. */
+export const SIGMA_PX = 6.5;
+
+export function benchRegisters(isNarrow: boolean): Registers {
+  const half = isNarrow ? 46 : 52;
+  const spectrumHeight = isNarrow ? 220 : 280;
+  const stripTop = 20;
+  const leaderTop = stripTop + 2 * half + 3;
+  const flagsTop = leaderTop + (isNarrow ? 18 : 19);
+  const leaderBottom = flagsTop + 31 + (isNarrow ? 14 : 24);
+  const spectrumTop = leaderBottom;
+  const zero = spectrumTop + spectrumHeight;
+  const residualZero = isNarrow ? null : zero + 44;
+  const rulerTop = residualZero === null ? zero + 10 : residualZero + 38;
+  return {
+    half,
+    stripTop,
+    leaderTop,
+    flagsTop,
+    leaderBottom,
+    spectrumTop,
+    zero,
+    spectrumHeight,
+    residualZero,
+    rulerTop,
+    height: rulerTop + 24,
+  };
+}
+
+export interface CountsRuler {
+  /** Counts to px above zero. */
+  up: (counts: number) => number;
+  ticks: number[];
+  max: number;
+}
+
+/** The counts' ruler for one spectrum: the highest sample (and the detector's ceiling, where it is near) fits. */
+export function countsRuler(
+  kind: CountsScale,
+  drawing: SpectrumDrawing,
+  height: number,
+  noiseCounts: number,
+): CountsRuler {
+  const top = drawing.counts.reduce((most, value) => (Number.isFinite(value) && value > most ? value : most), 0);
+  const ceiling = drawing.ceilingCounts;
+  const max =
+    Math.max(ceiling !== null && ceiling < top * 2.5 ? Math.max(ceiling, top) : top, 1) *
+    (ceiling === null ? 1.04 : 1.01);
+  const floor = Math.max(noiseCounts > 0 ? noiseCounts : max / 1e5, max / 1e7);
+  const transform = countsTransform(kind, floor);
+  const low = kind === "log" ? transform(floor) : 0;
+  const span = transform(max) - low || 1;
+  return {
+    up: (counts) => ((transform(counts) - low) / span) * height,
+    ticks: countsTicks(kind, max, height, floor),
+    max,
+  };
+}
+
+/** A line of an analysis as the strip draws it; null where it has no name and so no place among published lines. */
+export function stripLineOf(line: LineResult): StripLine | null {
+  if (line.wavelengthNm === null) return null;
+  return {
+    wavelengthNm: line.wavelengthNm,
+    species: line.species,
+    errorNm: line.errorNm,
+    expandedUncNm: line.errorExpandedUncNm,
+    toleranceNm: line.toleranceNm,
+    status: line.status,
+    verdict: line.verdict,
+    nearLimit: line.nearLimit,
+    flags: line.flags,
+    blend: line.blendOfNm.length > 1 || line.flags.includes("blend"),
+  };
+}
+
+/** The named lines of an analysis in order of wavelength; `index` counts in `analysis.lines`. */
+export function namedLines(analysis: Analysis): { index: number; line: StripLine; peakHeightCounts: number }[] {
+  return analysis.lines
+    .map((line, index) => ({ index, line: stripLineOf(line), peakHeightCounts: line.peakHeightCounts }))
+    .filter((entry): entry is { index: number; line: StripLine; peakHeightCounts: number } => entry.line !== null)
+    .sort((a, b) => a.line.wavelengthNm - b.line.wavelengthNm);
+}
+
+/** Zooms about a place that stays where it is; never beyond the whole, never below a thousandth of it. */
+export function zoomAbout(
+  view: [number, number],
+  whole: [number, number],
+  about: number,
+  factor: number,
+): [number, number] {
+  const least = (whole[1] - whole[0]) / 1000;
+  const span = Math.min(Math.max((view[1] - view[0]) * factor, least), whole[1] - whole[0]);
+  const share = (about - view[0]) / (view[1] - view[0] || 1);
+  const from = Math.min(Math.max(about - share * span, whole[0]), whole[1] - span);
+  return [from, from + span];
+}
+
+/** Moves the view by a share of its span, held within the whole. */
+export function panBy(view: [number, number], whole: [number, number], share: number): [number, number] {
+  const span = view[1] - view[0];
+  const from = Math.min(Math.max(view[0] + share * span, whole[0]), whole[1] - span);
+  return [from, from + span];
+}
