@@ -22,11 +22,11 @@ const environment = z.object({
   PUBLIC_URL: z.url().optional(),
   /** How many proxies stand before the server: whose X-Forwarded-For is believed. */
   TRUST_PROXY: z.coerce.number().int().min(0).max(5).default(0),
-  SESSION_SECRET: z.string().min(32, "SESSION_SECRET needs at least 32 characters.").optional(),
-  /** PEM text of an Ed25519 private key, instead of the file in the data folder. */
-  SIGNING_KEY: z.string().min(40).optional(),
+  WAVEKEEP_SESSION_KEY: z.string().min(32, "needs at least 32 characters").optional(),
+  WAVEKEEP_SESSION_KEY_FILE: z.string().min(1).optional(),
+  WAVEKEEP_SIGNING_KEY_FILE: z.string().min(1).optional(),
   LOG_LEVEL: z.enum(["silent", "error", "warn", "info", "debug"]).default("info"),
-  WEB_DIR: z.string().optional(),
+  WAVEKEEP_WEB_DIR: z.string().optional(),
   NODE_ENV: z.string().default("production"),
 });
 
@@ -39,14 +39,16 @@ export interface Config {
   mailFrom: string;
   role: "all" | "web" | "worker";
   dataDir: string;
-  /** A local demo on loopback: sign-ins are named on the sign-in page, mail is read at /dev/mail. */
+  /** A demo: sign-ins are named on the sign-in page, mail is read at /dev/mail. On loopback, or where WAVEKEEP_DEMO=1 asks for it. */
   demo: boolean;
   publicUrl: string;
   secureCookies: boolean;
   trustProxy: number;
-  sessionSecret: string;
-  signingKeyPem: string | null;
+  sessionKey: string;
+  /** PEM file of the Ed25519 key that signs the heads of the trail; made at the first start. */
   signingKeyFile: string;
+  /** Written by the start that seeded the demo lab. */
+  demoSignInsFile: string;
   logLevel: string;
   /** Folder of the built client; null: the API alone. */
   webDir: string | null;
@@ -79,11 +81,7 @@ export function loadConfig(env: NodeJS.ProcessEnv): Config {
   }
   const e = parsed.data;
   const dataDir = path.resolve(e.WAVEKEEP_DATA_DIR);
-  const loopback = ["127.0.0.1", "::1", "localhost"].includes(e.HOST);
-  if (e.WAVEKEEP_DEMO && !loopback) {
-    throw new ConfigError(`WAVEKEEP_DEMO shows sign-ins and mail to everybody who can open the page, so it runs on loopback only; HOST is ${e.HOST}.`);
-  }
-  const publicUrl = (e.PUBLIC_URL ?? `http://${e.HOST === "0.0.0.0" ? "127.0.0.1" : e.HOST}:${e.PORT}`).replace(/\/$/, "");
+    const publicUrl = (e.PUBLIC_URL ?? `http://${e.HOST === "0.0.0.0" ? "127.0.0.1" : e.HOST}:${e.PORT}`).replace(/\/$/, "");
   return {
     port: e.PORT,
     host: e.HOST,
@@ -96,11 +94,11 @@ export function loadConfig(env: NodeJS.ProcessEnv): Config {
     publicUrl,
     secureCookies: publicUrl.startsWith("https://"),
     trustProxy: e.TRUST_PROXY,
-    sessionSecret: e.SESSION_SECRET ?? keptSecret(path.join(dataDir, "keys", "session.secret")),
-    signingKeyPem: e.SIGNING_KEY ?? null,
-    signingKeyFile: path.join(dataDir, "keys", "trail-signing.pem"),
+    sessionKey: e.WAVEKEEP_SESSION_KEY ?? keptSecret(e.WAVEKEEP_SESSION_KEY_FILE ?? path.join(dataDir, "session.key")),
+    signingKeyFile: e.WAVEKEEP_SIGNING_KEY_FILE ?? path.join(dataDir, "signing.key"),
+    demoSignInsFile: path.join(dataDir, "demo-sign-ins.json"),
     logLevel: e.LOG_LEVEL,
-    webDir: e.WEB_DIR === undefined ? null : path.resolve(e.WEB_DIR),
+    webDir: e.WAVEKEEP_WEB_DIR === undefined ? null : path.resolve(e.WAVEKEEP_WEB_DIR),
     test: e.NODE_ENV === "test",
     version: VERSION,
   };
