@@ -1,0 +1,57 @@
+/** The fitted axis: coefficients, what the fit leaves, and its uncertainty across the range. */
+import type { Dispersion } from "@wavekeep/core";
+import { Decimal, FactList, formatNumber, MINUS, NARROW_SPACE, Section, Table } from "../ui/index.ts";
+
+const degreeWords = ["constant", "linear", "quadratic", "cubic"];
+const chosenBy = { given: "as given", "leave-one-out": "chosen by leaving each line out in turn", "earlier-axis": "as the earlier axis" } as const;
+
+/** A coefficient with nine significant digits, in powers of ten as people write them. */
+function Coefficient({ value }: { value: number }) {
+  const [mantissa = "", exponent] = value.toExponential(8).split("e");
+  const power = Number(exponent ?? 0);
+  const digits = mantissa.replace("-", MINUS);
+  if (power >= -3 && power <= 4) return <>{formatNumber(value, { decimals: Math.max(0, 8 - power) })}</>;
+  return (
+    <>
+      {digits} × 10<sup>{String(power).replace("-", MINUS)}</sup>
+    </>
+  );
+}
+
+export function DispersionSection({ dispersion, axisUnit }: { dispersion: Dispersion; axisUnit: string }) {
+  const { degree, coefficients, samples, rejected } = dispersion;
+  return (
+    <Section title="Dispersion" note="Wavelength as a polynomial of the position, weighted by each line’s uncertainty; u is standard.">
+      <div className="grid gap-x-10 gap-y-6 wide:grid-cols-[minmax(0,1fr)_316px]">
+        <Table
+          caption="The axis at eleven places, first to last"
+          compact
+          rows={samples}
+          rowKey={(sample) => String(sample.px)}
+          columns={[
+            { key: "px", head: `Position, ${axisUnit}`, numbers: true, cell: (sample) => <Decimal value={sample.px} decimals={1} columnDecimals={1} /> },
+            { key: "nm", head: "Wavelength, nm", numbers: true, cell: (sample) => <Decimal value={sample.nm} decimals={4} columnDecimals={4} /> },
+            { key: "u", head: "u, nm", numbers: true, cell: (sample) => <Decimal value={sample.uncNm} decimals={4} columnDecimals={4} /> },
+          ]}
+        />
+        <div>
+          <FactList
+            items={[
+              { label: "Degree", value: `${degreeWords[degree] ?? degree}, ${chosenBy[dispersion.degreeChosenBy]}` },
+              ...coefficients.map((value, power) => ({ label: `c${power}`, value: <Coefficient value={value} /> })),
+              { label: "Left by the fit, rms", value: `${formatNumber(dispersion.rmsPx, { decimals: 3 })}${NARROW_SPACE}${axisUnit}, ${formatNumber(dispersion.rmsNm, { decimals: 4 })}${NARROW_SPACE}nm` },
+              { label: "Leaving each out, rms", value: `${formatNumber(dispersion.leaveOneOutRmsNm, { decimals: 4 })}${NARROW_SPACE}nm` },
+            ]}
+          />
+          {rejected.length > 0 && (
+            <ul className="type-note mt-2">
+              {rejected.map((item) => (
+                <li key={item.line}>{item.reason}</li>
+              ))}
+            </ul>
+          )}
+        </div>
+      </div>
+    </Section>
+  );
+}
