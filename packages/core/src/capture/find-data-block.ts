@@ -34,8 +34,8 @@ const candidates: RowFormat[] = [
   { delimiter: " ", decimal: "," },
 ];
 
-const sampledFromStart = 300;
-const sampledAcross = 300;
+const sampledFromStart = 60;
+const sampledAcross = 100;
 /** Among the lines after the first data line, this many of the next `followers` must be data too (a header may hold a number). */
 const followers = 6;
 const followersWanted = 3;

@@ -55,16 +55,18 @@ export function detectLines(
   const residual = new Float64Array(n);
   for (let i = 0; i < n; i += 1) residual[i] = counts[i]! - base.baseline[i]!;
   const typicalWidth = findTypicalWidth(residual, base, saturated);
-  const threshold = normalQuantile(1 - Math.min(0.4, falseLinesPerCapture / n));
+  // Two searches, each a chance of a false line at every sample.
+  const threshold = normalQuantile(1 - Math.min(0.4, falseLinesPerCapture / (2 * n)));
   const width = typicalWidth ?? 3;
   const candidates = width >= narrowestWithSpikes ? takeLoneSamples(residual, base, saturated) : [];
 
   // Narrow smoothing keeps neighbours apart; broad smoothing, matched to the line, finds the weak ones between them.
-  const narrow = smooth(residual, oddAtLeastOne(width / 2));
-  const tops = findTops(narrow, noiseOf(narrow, base), threshold, residual, base);
+  const narrowBox = oddAtLeastOne(width / 2);
+  const narrow = smooth(residual, narrowBox);
+  const tops = findTops(narrow, noiseOf(narrow, base), threshold, residual, base, narrowBox >> 1);
   const broadBox = oddAtLeastOne(0.8 * width);
   const broad = smooth(smooth(residual, broadBox), broadBox);
-  for (const top of findTops(broad, noiseOf(broad, base), threshold, residual, base)) {
+  for (const top of findTops(broad, noiseOf(broad, base), threshold, residual, base, broadBox)) {
     if (tops.every((other) => Math.abs(other - top) > 1.2 * width)) tops.push(top);
   }
   tops.sort((a, b) => a - b);
@@ -142,6 +144,7 @@ function findTops(
   threshold: number,
   residual: Float64Array,
   base: Baseline,
+  ends: number,
 ): number[] {
   const n = values.length;
   const tops: number[] = [];
@@ -171,7 +174,8 @@ function findTops(
   }
   if (top >= 0) tops.push(top);
   // A top must stand out in the samples themselves, not only in their running mean over a step.
-  return tops.filter((at) => residual[at]! > base.noiseCounts[at]!);
+  // At the ends the running mean is over fewer samples, and a line is cut off.
+  return tops.filter((at) => residual[at]! > base.noiseCounts[at]! && at >= ends && at < n - ends);
 }
 
 function sharpestNear(residual: Float64Array, top: number, reach: number): number {

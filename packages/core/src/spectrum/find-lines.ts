@@ -55,7 +55,7 @@ const windowWidths = 1.8;
 const leastReach = 4;
 /** Tops nearer than this many widths are fitted together. */
 const groupWidths = 2.6;
-const mostTogether = 6;
+const mostTogether = 4;
 const blendWidths = 1.5;
 const poorFitShare = 0.12;
 const weakSigmas = 6;
@@ -216,7 +216,9 @@ function windowOf(prepared: Prepared, group: Group, gain: number) {
     samples[k] = i;
     positions[k] = spectrum.positions[i]!;
     values[k] = counts[i]!;
-    const signal = counts[i]! - baseline[i]!;
+    // Mean of three: a sample's own noise must not make its weight.
+    const beside = (i > 0 ? counts[i - 1]! : counts[i]!) + (i + 1 < counts.length ? counts[i + 1]! : counts[i]!);
+    const signal = (beside + counts[i]!) / 3 - baseline[i]!;
     unc[k] = Math.sqrt(readNoise[i]! * readNoise[i]! + (signal > 0 ? gain * signal : 0));
     k += 1;
   }

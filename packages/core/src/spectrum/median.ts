@@ -31,9 +31,15 @@ export function selectInPlace(values: Float64Array, length: number, k: number): 
   return values[k]!;
 }
 
-/** Median of the first `length` values (the lower of the two middle ones when even); reorders the array. */
+/** Median of the first `length` values, the mean of the two middle ones when their number is even; reorders the array. */
 export function medianInPlace(values: Float64Array, length: number): number {
-  return selectInPlace(values, length, (length - 1) >> 1);
+  const middle = length >> 1;
+  const upper = selectInPlace(values, length, middle);
+  if ((length & 1) === 1) return upper;
+  // Selection leaves the smaller half below the middle.
+  let lower = values[0]!;
+  for (let i = 1; i < middle; i += 1) if (values[i]! > lower) lower = values[i]!;
+  return (lower + upper) / 2;
 }
 
 /** Median of any list of numbers, NaN when it is empty; the list is left as it is. */

@@ -3,8 +3,9 @@
  *
  * Model   variance of a sample about a first, evenly weighted fit = read noise² + gain x signal + (misfit x signal)²; photon noise grows
  *         with the signal, a wrong shape with its square, so that lines of different height part the two
- * Solved  iterated weighted least squares over lines, both terms kept from going below zero; the weight of a line takes in the scatter
- *         of its own variance estimate (2 / degrees of freedom) and that misfit differs from line to line
+ * Solved  iterated weighted least squares over lines, neither term below zero; the weight of a line takes in the scatter of its own
+ *         variance estimate (2 / degrees of freedom) and that misfit differs from line to line; a term that can't be told from none is
+ *         left out, because it could only take from the other or widen every interval
  */
 
 export interface LineScatter {
@@ -20,13 +21,28 @@ export interface LineScatter {
 }
 
 const rounds = 8;
-/** Misfit variance differs from line to line by about as much as it is. Seen on real captures. */
-const misfitSpread = 1;
+const misfitSigmas = 2;
+
+interface Terms {
+  gain: number;
+  gainUnc: number;
+  misfit: number;
+  misfitUnc: number;
+}
 
 /** Counts per electron; 0 where the lines show no photon noise (or there is none to judge by). */
 export function estimatePhotonGain(lines: readonly LineScatter[]): number {
+  if (lines.length === 0) return 0;
+  let terms = solve(lines, true);
+  if (terms.misfit < misfitSigmas * terms.misfitUnc) terms = solve(lines, false);
+  return terms.gain > terms.gainUnc ? terms.gain : 0;
+}
+
+function solve(lines: readonly LineScatter[], withMisfit: boolean): Terms {
   let gain = 0;
   let misfit = 0;
+  let gainUnc = 0;
+  let misfitUnc = 0;
   for (let round = 0; round < rounds; round += 1) {
     let a11 = 0;
     let a12 = 0;
@@ -36,7 +52,8 @@ export function estimatePhotonGain(lines: readonly LineScatter[]): number {
     for (const line of lines) {
       const { meanSignal: s, meanSquareSignal: q } = line;
       const variance = line.readVariance + gain * s + misfit * q;
-      const spread = misfitSpread * misfit * q;
+      // Misfit varies from line to line by about as much as it is (seen on real captures).
+      const spread = misfit * q;
       const weight = 1 / ((2 / line.degreesOfFreedom) * variance * variance + spread * spread);
       a11 += weight * s * s;
       a12 += weight * s * q;
@@ -45,16 +62,19 @@ export function estimatePhotonGain(lines: readonly LineScatter[]): number {
       b2 += weight * q * line.excess;
     }
     const determinant = a11 * a22 - a12 * a12;
-    if (!(a11 > 0) || !(a22 > 0)) return 0;
-    gain = determinant > 1e-9 * a11 * a22 ? (a22 * b1 - a12 * b2) / determinant : b1 / a11;
-    misfit = determinant > 1e-9 * a11 * a22 ? (a11 * b2 - a12 * b1) / determinant : 0;
+    if (!(a11 > 0) || !(a22 > 0)) return { gain: 0, gainUnc: 0, misfit: 0, misfitUnc: 0 };
+    const both = withMisfit && determinant > 1e-9 * a11 * a22;
+    gain = both ? (a22 * b1 - a12 * b2) / determinant : b1 / a11;
+    misfit = both ? (a11 * b2 - a12 * b1) / determinant : 0;
+    gainUnc = both ? Math.sqrt(a22 / determinant) : 1 / Math.sqrt(a11);
+    misfitUnc = both ? Math.sqrt(a11 / determinant) : 0;
     if (gain < 0) {
       gain = 0;
-      misfit = Math.max(0, b2 / a22);
+      misfit = both ? Math.max(0, b2 / a22) : 0;
     } else if (misfit < 0) {
       misfit = 0;
       gain = Math.max(0, b1 / a11);
     }
   }
-  return gain;
+  return { gain, gainUnc, misfit, misfitUnc };
 }
