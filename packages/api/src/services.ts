@@ -1,5 +1,6 @@
 /** What services are given: made once at start, handed to every capability's mount function. */
 import type { Logger } from "pino";
+import type { Analyser } from "./checks/analyser.ts";
 import type { Config } from "./config.ts";
 import type { Database } from "./db/connection.ts";
 import type { Jobs } from "./jobs/jobs.ts";
@@ -11,4 +12,5 @@ export interface Services {
   logger: Logger;
   jobs: Jobs;
   signer: HeadSigner;
+  analyser: Analyser;
 }

@@ -1,5 +1,6 @@
 /** Sending jobs inside the transaction that causes them; workers are started by jobs/workers.ts. */
 import { sql, type SQL } from "drizzle-orm";
+import pg from "pg";
 import PgBoss from "pg-boss";
 import type { Tx } from "../db/tenancy.ts";
 import type { QueueName } from "./queues.ts";
@@ -44,8 +45,17 @@ export function openBoss(databaseUrl: string, options: { worker: boolean }): PgB
   });
 }
 
-/** SQL text with $1, $2 … as a query of the transaction. */
+/**
+ * SQL text with $1, $2 … as a query of the transaction, values written in as quoted literals: the query builder would give
+ * a value that is used twice two numbers, and PostgreSQL could then not tell the type of each.
+ */
 function fromNumbered(text: string, values: readonly unknown[]): SQL {
-  const chunks = text.split(/\$(\d+)/);
-  return sql.join(chunks.map((chunk, index) => (index % 2 === 0 ? sql.raw(chunk) : sql`${values[Number(chunk) - 1]}`)));
+  return sql.raw(text.replace(/\$(\d+)/g, (_, number: string) => literal(values[Number(number) - 1])));
+}
+
+function literal(value: unknown): string {
+  if (value === null || value === undefined) return "null";
+  if (value instanceof Date) return pg.escapeLiteral(value.toISOString());
+  if (typeof value === "object") return pg.escapeLiteral(JSON.stringify(value));
+  return typeof value === "number" || typeof value === "boolean" ? String(value) : pg.escapeLiteral(String(value));
 }

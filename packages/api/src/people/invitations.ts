@@ -2,15 +2,22 @@
 import { password as passwordShape } from "../contract/people.ts";
 import { assertNotLocked, assertRate, countTry, forgetTries, limits } from "../auth/counters.ts";
 import { hashSecret, secretFits, tokenHash } from "../auth/passwords.ts";
-import { inNoLab, type Context } from "../db/tenancy.ts";
+import { asWavekeep, inLab, inNoLab, type Context } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
 import { writeTrail } from "../records/trail.ts";
 import type { Services } from "../services.ts";
 import { knownRoles } from "./present.ts";
 import * as queries from "./queries.ts";
 
-async function findOpenOffer({ db }: Services, token: string): Promise<queries.OfferedRow> {
-  const offer = await inNoLab(db, null, (tx) => queries.findOffer(tx, tokenHash(token)));
+/** A demo lab is seeded under a stated clock, by which its invitations are open. */
+export interface StatedClock {
+  labId: string;
+  statedNow: Date;
+}
+
+async function findOpenOffer({ db }: Pick<Services, "db">, token: string, clock?: StatedClock): Promise<queries.OfferedRow> {
+  const look = (tx: Parameters<typeof queries.findOffer>[0]) => queries.findOffer(tx, tokenHash(token));
+  const offer = await (clock === undefined ? inNoLab(db, null, look) : inLab(db, asWavekeep({ ...clock, isDemo: true, zone: "Etc/UTC" }), look));
   if (offer === null) throw problem("not-found", "There is no such invitation. Check that the whole link was opened, or ask for a new one.");
   if (offer.state === "open") return offer;
   const sentences = {
@@ -33,13 +40,14 @@ export async function readInvitation(services: Services, token: string, host: st
  * @returns who, and the lab they are now a member of
  */
 export async function acceptInvitation(
-  services: Services,
+  services: Pick<Services, "db">,
   token: string,
   input: { name: string; password: string; host: string },
+  clock?: StatedClock,
 ): Promise<{ personId: string; labId: string }> {
   const { db } = services;
   await assertRate(db, limits.tokenFromHost(input.host));
-  const offer = await findOpenOffer(services, token);
+  const offer = await findOpenOffer(services, token, clock);
   let newHash: string | null = null;
   if (offer.person_id === null) {
     const fit = passwordShape.safeParse(input.password);
@@ -59,18 +67,15 @@ export async function acceptInvitation(
     }
     await forgetTries(db, limit);
   }
-  return inNoLab(db, null, async (tx) => {
+  const inItsLab = asWavekeep({ labId: offer.lab_id, isDemo: offer.is_demo, zone: offer.zone, statedNow: clock?.statedNow });
+  return inLab(db, inItsLab, async (tx) => {
     const accepted = await queries.acceptOffer(tx, tokenHash(token), input.name, newHash);
     if (accepted === null) throw problem("gone", "This invitation is not open any more. Nothing was changed.");
     const ctx: Context = {
-      labId: accepted.labId,
+      ...inItsLab,
       personId: accepted.personId,
       personName: offer.person_name ?? input.name,
       roles: knownRoles(offer.roles),
-      isApprover: false,
-      ownedInstrumentIds: [],
-      isDemo: offer.is_demo,
-      zone: offer.zone,
       actingRole: "new member",
     };
     await writeTrail(tx, ctx, {
