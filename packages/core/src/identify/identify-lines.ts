@@ -1,0 +1,439 @@
+/**
+ * Lines to names: which published line is each found line, or why that can't be said.
+ *
+ * Modes      earlier axis (an earlier calibration, or the file's own axis): 4 FWHM in offset, 1 % in scale; asked again with
+ *            7 % of the span at either end when that finds nothing. Range: first and last wavelength each good to 5 % of the
+ *            span; their order says whether the wavelength rises or falls with the pixel
+ * Answers    identified, ambiguous (two axes explain the lines about as well: both are told), unidentified (with what speaks
+ *            against it: too few lines, chance, another lamp). A wrong name is worse than none
+ * Confidence chanceProbability bounds the probability that lines scattered evenly over the window agree as well with any
+ *            axis allowed (null model and bound: `score`); margin is the natural logarithm by which the best axis beats the
+ *            best one that names lines differently. Identified asks for at most 0.05 (a
+ *            generous bound: no capture of lines placed at random ever came near it) and a margin of 4
+ */
+import type {
+  AxisKind,
+  AxisMeaning,
+  FittedLine,
+  IdentificationMode,
+  LineList,
+  Medium,
+  PixelAxis,
+  ReferenceLine,
+} from "../analysis/types.ts";
+import { assumedReferenceUncNm, lineWavelengthNm } from "../linelist/built-in.ts";
+import { namedAxis } from "./named-axis.ts";
+import { type Naming, nameLines } from "./name-lines.ts";
+import { findOtherGases, findOtherLamp, nameOfElement, type OtherGas } from "./other-lamps.ts";
+import { buildProblem, type Problem } from "./problem.ts";
+import { type ReferenceTable, referenceTable } from "./reference-table.ts";
+import { correctedNm, endNm, type Evidence, evidenceFor, type Odds, oddsFor, strongCount } from "./score.ts";
+import { findSecondOrder } from "./second-order.ts";
+import { type Hypothesis, searchAxes } from "./search.ts";
+
+/** Largest chance probability of an identification. */
+export const largestChance = 0.05;
+/** Least margin over an axis that names the lines differently (natural logarithm of the ratio of likelihoods). */
+export const leastMargin = 4;
+const leastStrongShare = 0.6;
+/** With a second gas seen between them, the lamp's own lines may be fewer. */
+const leastOwnShare = 0.4;
+const leastNamed = 3;
+/** Axes looked at closely. */
+const polished = 6;
+/** Two axes that agree at this share of the explained lines are one identification, less the lines they differ in. */
+const samePlaceShare = 0.7;
+const agreementShare = 0.3;
+const prominentStrength = 0.3;
+
+export interface LineName {
+  /** By which the line is known: air above 200 nm, vacuum below; of a blend its centroid, or the component that carries it. */
+  wavelengthNm: number;
+  medium: Medium;
+  element: string;
+  species: string;
+  /** Grating order; a line of order 2 is seen at twice its wavelength and is not used as a line of the axis. */
+  order: number;
+  /** Components of a blend (two or more), else empty. */
+  blendOf: ReferenceLine[];
+  /** Standard uncertainty of the wavelength from a blend or from weak companions of a plain line, nm. */
+  blendUncNm: number;
+  referenceUncNm: number;
+  referenceUncAssumed: boolean;
+  referenceSource: string;
+  relativeIntensity: number | null;
+}
+
+export interface IdentifyInput {
+  lines: FittedLine[];
+  firstPosition: number;
+  lastPosition: number;
+  axisKind: AxisKind;
+  /** Median FWHM of the lines in the unit of the axis. */
+  medianFwhm: number;
+  elements: string[];
+  /** A procedure's lines, taken to be well visible and reported when missing; every line of the elements may be named. */
+  expectedLinesNm: number[];
+  lineList: LineList;
+  mode: IdentificationMode;
+  axisMeaning: AxisMeaning;
+  /** Smallest tolerance that will be judged with, or null: blends open by more than a fifth of it are told in the warnings. */
+  toleranceNm: number | null;
+}
+
+export interface IdentifiedLines {
+  outcome: "identified" | "ambiguous" | "unidentified";
+  /** Why it is not identified, in a sentence; null when it is. */
+  reason: string | null;
+  /** Same order as the lines; null where a line has no name. All null unless identified. */
+  names: (LineName | null)[];
+  /** The axis as identified (earlier axis or range, corrected), null unless identified or where it is no polynomial. */
+  axis: PixelAxis | null;
+  chanceProbability: number;
+  margin: number;
+  note: string;
+  warnings: { code: string; text: string }[];
+  missingLinesNm: number[];
+  /** Other gases seen between the lamp's lines, with the indices of their lines. */
+  otherGases: OtherGas[];
+}
+
+interface Candidate {
+  correction: Float64Array;
+  naming: Naming;
+  evidence: Evidence;
+  namedCount: number;
+}
+
+interface Question {
+  problem: Problem;
+  table: ReferenceTable;
+  odds: Odds;
+}
+
+/**
+ * Name the lines of a capture.
+ *
+ * @returns always an answer; names are given only when the outcome is identified
+ */
+export function identifyLines(input: IdentifyInput): IdentifiedLines {
+  const spanOk = Math.abs(input.lastPosition - input.firstPosition) > 0 && input.medianFwhm > 0;
+  const usable = input.lines.filter((line) => !line.flags.includes("spike")).length;
+  if (!spanOk || usable < leastNamed) {
+    return unidentified(
+      input,
+      `${usable === 0 ? "No usable line was" : usable === 1 ? "Only one usable line was" : `Only ${usable} usable lines were`} ` +
+        `found; at least ${leastNamed} are needed to name any. Expose longer, or use a lamp with more lines in this range.`,
+    );
+  }
+  const question = ask(input, input.elements, false);
+  if (question.table.nm.length === 0) {
+    return unidentified(input, `The line list has no line of ${lampOf(input.elements)} in this range.`);
+  }
+  const narrow = answer(input, question);
+  if (narrow.outcome === "identified" || input.mode.kind === "range") return narrow;
+  // An axis further off than it should be: worth following, as long as the evidence pays for the wider search.
+  const wide = answer(input, ask(input, input.elements, true));
+  if (wide.outcome !== "identified") return narrow.outcome === "ambiguous" ? narrow : orOtherLamp(input, wide, narrow);
+  wide.warnings.unshift({
+    code: "axis-far-off",
+    text: "The earlier axis is off by more than four line widths and one per cent of scale; the lines were found all the same. Was the instrument moved or its grating changed?",
+  });
+  return wide;
+}
+
+function orOtherLamp(input: IdentifyInput, wide: IdentifiedLines, narrow: IdentifiedLines): IdentifiedLines {
+  return wide.outcome === "ambiguous" && narrow.chanceProbability > wide.chanceProbability ? wide : narrow;
+}
+
+function ask(input: IdentifyInput, elements: readonly string[], wide: boolean): Question {
+  const problem = buildProblem(input, wide);
+  const reach = problem.bounds.endNm + problem.fwhmNm;
+  const low = Math.min(problem.baseFirstNm, problem.baseLastNm) - reach;
+  const high = Math.max(problem.baseFirstNm, problem.baseLastNm) + reach;
+  const table = referenceTable(input.lineList, elements, input.expectedLinesNm, low, high, problem.meaning);
+  return { problem, table, odds: oddsFor(table, high - low) };
+}
+
+/** Candidates of one question, best first. */
+function candidatesOf({ problem, table, odds }: Question): Candidate[] {
+  const found: Candidate[] = [];
+  const hypotheses: Hypothesis[] = searchAxes(problem, table, odds);
+  for (const hypothesis of hypotheses.slice(0, polished)) {
+    const naming = nameLines(problem, table, hypothesis.correction);
+    if (naming === null) continue;
+    const { correction } = naming.fit;
+    const refined = evidenceFor(problem, table, odds, correction);
+    let namedCount = 0;
+    for (const reference of naming.reference) if (reference >= 0) namedCount += 1;
+    found.push({ correction, naming, evidence: refined, namedCount });
+  }
+  return found.sort((a, b) => b.evidence.value - a.evidence.value);
+}
+
+function answer(input: IdentifyInput, question: Question): IdentifiedLines {
+  const { problem } = question;
+  const candidates = candidatesOf(question);
+  const best = candidates[0];
+  if (best === undefined) {
+    return refuse(input, question, 1, 0, "No axis within the bounds brings the lines onto published ones.");
+  }
+  let margin = Number.POSITIVE_INFINITY;
+  let rival: Candidate | null = null;
+  for (const other of candidates.slice(1)) {
+    const lead = best.evidence.value - other.evidence.value;
+    if (sharedPlaces(problem, best, other) >= samePlaceShare) {
+      if (lead < leastMargin) dropDisputed(problem, best, other);
+      continue;
+    }
+    if (lead < margin) {
+      margin = lead;
+      rival = other;
+    }
+  }
+  // No rival among the axes looked at: the margin is at least what separates the best from pure chance.
+  if (!Number.isFinite(margin)) margin = Math.max(best.evidence.value, 0);
+  const chance = best.evidence.chanceProbability;
+  const { explained, strong } = strongShare(problem, best);
+  if (chance > largestChance) {
+    return refuse(
+      input,
+      question,
+      chance,
+      margin,
+      `${best.namedCount} of ${problem.byHeight.length} lines agree with ${lampOf(input.elements)}, ` +
+        "which so many published lines would also do by accident.",
+    );
+  }
+  const otherGases = findOtherGases(input, problem, best.naming);
+  const byOthers = otherGases.reduce((sum, gas) => sum + gas.strongLines, 0);
+  const enough = explained >= leastStrongShare * strong;
+  const enoughWithOthers = explained >= leastOwnShare * strong && explained + byOthers >= leastStrongShare * strong;
+  if (!enough && !enoughWithOthers) {
+    return refuse(
+      input,
+      question,
+      chance,
+      margin,
+      `Only ${explained} of the ${strong} strongest lines belong to ${lampOf(input.elements)}.`,
+    );
+  }
+  if (rival !== null && margin < leastMargin) {
+    return {
+      ...unidentified(input, ambiguityOf(problem, best, rival)),
+      outcome: "ambiguous",
+      chanceProbability: chance,
+      margin,
+      note: noteOf(chance, margin),
+    };
+  }
+  if (best.namedCount < leastNamed) {
+    const sentence = `The lines fit ${lampOf(input.elements)}, but only ${best.namedCount} of them can be told from their neighbours for sure.`;
+    return refuse(input, question, chance, margin, sentence);
+  }
+  return accept(input, question, best, otherGases, chance, margin);
+}
+
+function accept(
+  input: IdentifyInput,
+  question: Question,
+  best: Candidate,
+  otherGases: OtherGas[],
+  chance: number,
+  margin: number,
+): IdentifiedLines {
+  const { problem, table } = question;
+  const { naming } = best;
+  const warnings: { code: string; text: string }[] = [];
+  for (const gas of otherGases) {
+    for (const i of gas.disputed) {
+      naming.reference[i] = -1;
+      naming.components[i] = [];
+    }
+    warnings.push({ code: gas.element === "Hg" ? "mercury-light" : "second-gas", text: gas.text });
+  }
+  const names: (LineName | null)[] = input.lines.map((_, i) => nameOf(problem, table, naming, i));
+  for (const { line, reference } of findSecondOrder(input, problem, table, naming)) {
+    names[line] = { ...plainName(reference), order: 2 };
+  }
+  const open = names.filter(
+    (name) => name !== null && input.toleranceNm !== null && name.blendUncNm > 0.2 * input.toleranceNm,
+  );
+  if (open.length > 0) {
+    const list = open.map((name) => (name as LineName).wavelengthNm.toFixed(2)).join(", ");
+    warnings.push({
+      code: "blends",
+      text: `Lines closer than the instrument resolves, open by more than a fifth of the tolerance: ${list} nm. They are not judged.`,
+    });
+  }
+  return {
+    outcome: "identified",
+    reason: null,
+    names,
+    axis: namedAxis(input, problem, naming),
+    chanceProbability: chance,
+    margin,
+    note: noteOf(chance, margin),
+    warnings,
+    missingLinesNm: missingLines(input, problem, table, naming),
+    otherGases,
+  };
+}
+
+function refuse(
+  input: IdentifyInput,
+  question: Question,
+  chance: number,
+  margin: number,
+  sentence: string,
+): IdentifiedLines {
+  const other = findOtherLamp(input, question.problem, (elements) => {
+    const asked = ask({ ...input, expectedLinesNm: [] }, elements, false);
+    const best = candidatesOf(asked)[0];
+    if (best === undefined || best.evidence.chanceProbability > largestChance) return null;
+    const share = strongShare(asked.problem, best);
+    return { evidence: best.evidence.value, ...share };
+  });
+  return {
+    ...unidentified(input, other ?? `${sentence} Check the lamp, the range and the exposure.`),
+    chanceProbability: chance,
+    margin,
+    note: noteOf(chance, margin),
+  };
+}
+
+function unidentified(input: IdentifyInput, reason: string): IdentifiedLines {
+  return {
+    outcome: "unidentified",
+    reason,
+    names: input.lines.map(() => null),
+    axis: null,
+    chanceProbability: 1,
+    margin: 0,
+    note: noteOf(1, 0),
+    warnings: [],
+    missingLinesNm: [],
+    otherGases: [],
+  };
+}
+
+/** Strong lines, and how many of them lie on a published line. */
+function strongShare(problem: Problem, candidate: Candidate): { explained: number; strong: number } {
+  const strong = strongCount(problem);
+  let explained = 0;
+  for (let rank = 0; rank < strong; rank++) {
+    explained += candidate.naming.explained[problem.byHeight[rank] as number] as number;
+  }
+  return { explained, strong };
+}
+
+/** Whether two axes say the same of a line, to a fraction of its width. */
+function agreeAt(problem: Problem, a: Candidate, b: Candidate, i: number): boolean {
+  const apart = Math.abs(correctedNm(problem, a.correction, i) - correctedNm(problem, b.correction, i));
+  return apart <= agreementShare * problem.fwhmNm;
+}
+
+/** Share of the lines that the better axis explains where the other one says the same. */
+function sharedPlaces(problem: Problem, best: Candidate, other: Candidate): number {
+  let same = 0;
+  let all = 0;
+  for (let i = 0; i < problem.count; i++) {
+    if (best.naming.explained[i] === 0) continue;
+    all += 1;
+    if (agreeAt(problem, best, other, i)) same += 1;
+  }
+  return all === 0 ? 0 : same / all;
+}
+
+/** Lines on which two nearly equal axes disagree stay without a name. */
+function dropDisputed(problem: Problem, best: Candidate, other: Candidate): void {
+  for (let i = 0; i < problem.count; i++) {
+    if ((best.naming.reference[i] as number) < 0 || agreeAt(problem, best, other, i)) continue;
+    best.naming.reference[i] = -1;
+    best.naming.components[i] = [];
+    best.namedCount -= 1;
+  }
+}
+
+function ambiguityOf(problem: Problem, best: Candidate, rival: Candidate): string {
+  const end = (candidate: Candidate): string => {
+    const first = problem.byHeight.reduce((a, b) => ((problem.t[a] as number) <= (problem.t[b] as number) ? a : b));
+    const last = problem.byHeight.reduce((a, b) => ((problem.t[a] as number) >= (problem.t[b] as number) ? a : b));
+    const from = correctedNm(problem, candidate.correction, first).toFixed(1);
+    const to = correctedNm(problem, candidate.correction, last).toFixed(1);
+    return `${candidate.namedCount} lines named with the outermost at ${from} and ${to} nm`;
+  };
+  return (
+    `Two axes explain the lines about as well: ${end(best)}, or ${end(rival)}. ` +
+    "A longer exposure, a second lamp or a closer range would decide it."
+  );
+}
+
+function noteOf(chance: number, margin: number): string {
+  const probability = chance >= 0.01 ? chance.toFixed(2) : chance.toExponential(0);
+  return (
+    `Lines scattered at random would agree as well with a probability of at most ${probability}; ` +
+    `the next axis that names them differently is less likely by a factor of e^${margin.toFixed(1)}.`
+  );
+}
+
+function plainName(line: ReferenceLine): LineName {
+  return {
+    ...lineWavelengthNm(line),
+    element: line.element,
+    species: line.spectrum,
+    order: 1,
+    blendOf: [],
+    blendUncNm: 0,
+    referenceUncNm: line.uncertaintyNm ?? assumedReferenceUncNm,
+    referenceUncAssumed: line.uncertaintyNm === null,
+    referenceSource: line.source,
+    relativeIntensity: line.relativeIntensity,
+  };
+}
+
+function nameOf(problem: Problem, table: ReferenceTable, naming: Naming, i: number): LineName | null {
+  const reference = naming.reference[i] as number;
+  if (reference < 0) return null;
+  const line = table.lines[reference] as ReferenceLine;
+  const name = plainName(line);
+  const components = naming.components[i] as number[];
+  if (components.length < 2) return { ...name, blendUncNm: naming.blendUncNm[i] as number };
+  const parts = components.map((j) => table.lines[j] as ReferenceLine);
+  // The centroid was taken on the axis' medium; the name is given in the one the line is known by.
+  const shift = (naming.nm[i] as number) - (table.nm[reference] as number);
+  return {
+    ...name,
+    wavelengthNm: name.wavelengthNm + shift,
+    species: [...new Set(parts.map((part) => part.spectrum))].join(" + "),
+    blendOf: parts,
+    blendUncNm: naming.blendUncNm[i] as number,
+  };
+}
+
+/** Prominent (of a procedure: expected) lines inside the capture that no found line stands for. */
+function missingLines(input: IdentifyInput, problem: Problem, table: ReferenceTable, naming: Naming): number[] {
+  const ends = [-1, 1].map((t) => endNm(problem, naming.fit.correction, t));
+  const low = Math.min(...ends) + problem.fwhmNm;
+  const high = Math.max(...ends) - problem.fwhmNm;
+  const missing: number[] = [];
+  for (let j = 0; j < table.nm.length; j++) {
+    const nm = table.nm[j] as number;
+    if (nm < low || nm > high) continue;
+    const wanted =
+      input.expectedLinesNm.length > 0 ? table.expected[j] : (table.strength[j] as number) >= prominentStrength;
+    if (!wanted) continue;
+    let seen = false;
+    for (let i = 0; i < problem.count && !seen; i++) {
+      seen =
+        (naming.components[i] as number[]).includes(j) ||
+        Math.abs(correctedNm(problem, naming.fit.correction, i) - nm) < 0.75 * problem.fwhmNm;
+    }
+    if (!seen) missing.push(lineWavelengthNm(table.lines[j] as ReferenceLine).wavelengthNm);
+  }
+  return missing;
+}
+
+function lampOf(elements: readonly string[]): string {
+  return elements.length === 0 ? "no element" : elements.map(nameOfElement).join(" and ");
+}

@@ -1,0 +1,86 @@
+/** The identified axis in the shape others use: powers of the pixel, covariance in Chebyshev terms between its outermost lines. */
+import type { PixelAxis } from "../analysis/types.ts";
+import { chebyshevArgument, chebyshevBasis, chebyshevToPowers } from "../numeric/chebyshev.ts";
+import type { Naming } from "./name-lines.ts";
+import { orderCount, type Problem, type ProblemInput } from "./problem.ts";
+import { cos, PI } from "../numeric/elementary.ts";
+
+/**
+ * Believed axis plus correction.
+ *
+ * @returns null on a wavenumber axis, whose wavelength is no polynomial, and with fewer than two named lines
+ */
+export function namedAxis(input: ProblemInput, problem: Problem, naming: Naming): PixelAxis | null {
+  if (input.axisKind === "wavenumber") return null;
+  const { firstPosition, lastPosition } = problem;
+  const base = basePowers(input);
+  const correction = chebyshevToPowers(naming.fit.correction, firstPosition, lastPosition);
+  const coefficients = Array.from(
+    { length: Math.max(base.length, orderCount) },
+    (_, k) => (base[k] ?? 0) + (correction[k] ?? 0),
+  );
+  let first = Number.POSITIVE_INFINITY;
+  let last = Number.NEGATIVE_INFINITY;
+  let named = 0;
+  for (let i = 0; i < problem.count; i++) {
+    if ((naming.reference[i] as number) < 0) continue;
+    const position = (input.lines[i] as { position: number }).position;
+    first = Math.min(first, position);
+    last = Math.max(last, position);
+    named += 1;
+  }
+  if (named < 2) return null;
+  return {
+    coefficients,
+    firstPx: first,
+    lastPx: last,
+    chebyshevCovariance: movedCovariance(naming.fit.covariance, problem, first, last, coefficients.length),
+    degreesOfFreedom: Math.max(named - orderCount, 1),
+    meaning: problem.meaning,
+  };
+}
+
+function basePowers(input: ProblemInput): number[] {
+  const { mode } = input;
+  if (mode.kind === "earlier-axis") return mode.axis === "own" ? [0, 1] : mode.axis.coefficients.slice();
+  const slope = (mode.lastNm - mode.firstNm) / (input.lastPosition - input.firstPosition);
+  return [mode.firstNm - slope * input.firstPosition, slope];
+}
+
+/** Covariance of the Chebyshev terms over the capture, rewritten for terms over [first, last]; zero for higher terms. */
+function movedCovariance(
+  covariance: Float64Array,
+  problem: Problem,
+  first: number,
+  last: number,
+  size: number,
+): number[] {
+  const n = orderCount;
+  // Column j: T_j over the capture as a sum of T_k over [first, last], by the discrete orthogonality at the nodes of T_n.
+  const moved = new Float64Array(n * n);
+  for (let m = 0; m < n; m++) {
+    const node = cos((PI * (m + 0.5)) / n);
+    const position = (first + last) / 2 + (node * (last - first)) / 2;
+    const wide = chebyshevBasis(n - 1, chebyshevArgument(position, problem.firstPosition, problem.lastPosition));
+    const narrow = chebyshevBasis(n - 1, node);
+    for (let k = 0; k < n; k++) {
+      for (let j = 0; j < n; j++) {
+        const share = ((k === 0 ? 1 : 2) / n) * (narrow[k] as number) * (wide[j] as number);
+        moved[k * n + j] = (moved[k * n + j] as number) + share;
+      }
+    }
+  }
+  const result = new Array<number>(size * size).fill(0);
+  for (let r = 0; r < n; r++) {
+    for (let c = 0; c < n; c++) {
+      let sum = 0;
+      for (let i = 0; i < n; i++) {
+        for (let j = 0; j < n; j++) {
+          sum += (moved[r * n + i] as number) * (covariance[i * n + j] as number) * (moved[c * n + j] as number);
+        }
+      }
+      result[r * size + c] = sum;
+    }
+  }
+  return result;
+}
