@@ -21,7 +21,7 @@ export interface LineScatter {
 }
 
 const rounds = 8;
-const misfitSigmas = 2;
+const misfitSigmas = 1;
 
 interface Terms {
   gain: number;

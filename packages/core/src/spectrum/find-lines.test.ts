@@ -1,0 +1,208 @@
+import { describe, expect, it } from "vitest";
+import type { Spectrum } from "../analysis/types.ts";
+import { builtInLineList } from "../linelist/built-in.ts";
+import { arraySpectrometer, createRandom, simulateCapture, type SimulatedInstrument } from "../testing/index.ts";
+import { estimateBaseline } from "./baseline.ts";
+import { findLines } from "./find-lines.ts";
+import { median, selectInPlace } from "./median.ts";
+import { estimatePhotonGain, type LineScatter } from "./photon-gain.ts";
+import { findSaturation } from "./saturation.ts";
+
+const axis = { kind: "polynomial", coefficients: [200, 0.345, -1.4e-5] } as const;
+const wanted = [253.6521, 296.7283, 404.6565, 435.8335, 546.075, 576.961, 579.067];
+const mercury = builtInLineList.lines.filter((line) => wanted.includes(line.wavelengthAirNm ?? 0));
+
+function spectrumOf(counts: Float64Array, changes: Partial<Spectrum> = {}): Spectrum {
+  return {
+    axisKind: "pixel",
+    axisUnit: "px",
+    wasDescending: false,
+    positions: Float64Array.from(counts, (_, i) => i),
+    counts,
+    fullScaleCounts: null,
+    scansSummed: 1,
+    ...changes,
+  };
+}
+
+function simulate(seed: number, changes: Partial<SimulatedInstrument> = {}, heightCounts = 20000, extra = {}) {
+  const heightsCounts = Object.fromEntries(mercury.map((line) => [line.wavelengthAirNm!.toFixed(4), heightCounts]));
+  return simulateCapture({
+    seed,
+    instrument: arraySpectrometer({ trueAxis: axis, ...changes }),
+    lamp: { lines: mercury, strongestCounts: heightCounts, intensityScatter: 1, heightsCounts },
+    ...extra,
+  });
+}
+
+describe("findLines", () => {
+  it("finds each line of a clean capture once, where it is", () => {
+    const sim = simulate(1);
+    const { lines, noiseCorrelation, medianFwhm } = findLines(spectrumOf(sim.counts));
+    expect(lines).toHaveLength(wanted.length);
+    sim.truth.forEach((truth, i) => {
+      expect(Math.abs(lines[i]!.position - truth.position)).toBeLessThan(5 * lines[i]!.positionUnc);
+      expect(Math.abs(lines[i]!.fwhm - truth.fwhm)).toBeLessThan(5 * lines[i]!.fwhmUnc);
+    });
+    expect(Math.abs(noiseCorrelation)).toBeLessThan(0.1);
+    expect(medianFwhm).toBeCloseTo(3.6, 1);
+  });
+
+  it("finds nothing in noise more often than it says (0.01 a capture, 300 captures)", () => {
+    const random = createRandom(11);
+    let found = 0;
+    for (let k = 0; k < 300; k += 1) {
+      const counts = Float64Array.from({ length: 2048 }, (_, i) => 900 + 0.01 * i + 12 * random.normal());
+      found += findLines(spectrumOf(counts)).lines.length;
+    }
+    // 3 expected; more than 12 has a chance of 2e-5.
+    expect(found).toBeLessThanOrEqual(12);
+  });
+
+  it("finds a line of six noise deviations nearly always", () => {
+    let found = 0;
+    for (let seed = 1; seed <= 40; seed += 1) {
+      const sim = simulate(seed, { countsPerElectron: 0 }, 18 * 6);
+      const { lines } = findLines(spectrumOf(sim.counts));
+      for (const truth of sim.truth)
+        if (lines.some((line) => Math.abs(line.position - truth.position) < 1.5)) found += 1;
+    }
+    expect(found / (40 * wanted.length)).toBeGreaterThan(0.9);
+  });
+
+  it("flags lines at the ceiling, known or seen, and keeps the others unflagged", () => {
+    for (const fullScaleCounts of [30000, null]) {
+      const heightsCounts = Object.fromEntries(
+        mercury.map((l, i) => [l.wavelengthAirNm!.toFixed(4), i < 3 ? 90000 : 9000]),
+      );
+      const sim = simulateCapture({
+        seed: 3,
+        instrument: arraySpectrometer({ trueAxis: axis, ceilingCounts: 30000 }),
+        lamp: { lines: mercury, strongestCounts: 90000, intensityScatter: 1, heightsCounts },
+      });
+      const found = findLines(spectrumOf(sim.counts, { fullScaleCounts }));
+      expect(found.ceilingCounts).toBe(30000);
+      for (const truth of sim.truth) {
+        const line = found.lines.find((one) => Math.abs(one.position - truth.position) < 1)!;
+        expect(line.flags.includes("saturated")).toBe(truth.isSaturated);
+      }
+    }
+  });
+
+  it("tells hot pixels from lines", () => {
+    for (let seed = 1; seed <= 10; seed += 1) {
+      const sim = simulate(seed, {}, 20000, { hotPixels: 6 });
+      const { lines } = findLines(spectrumOf(sim.counts));
+      const real = lines.filter((line) => !line.flags.includes("spike"));
+      for (const line of real) {
+        expect(sim.truth.some((truth) => Math.abs(truth.position - line.position) < 1)).toBe(true);
+      }
+      expect(real.length).toBeGreaterThanOrEqual(wanted.length - 1);
+    }
+  });
+
+  it("says when the noise was smoothed, and carries it", () => {
+    const sim = simulate(5, { smoothingSamples: 3 });
+    const found = findLines(spectrumOf(sim.counts));
+    expect(found.noiseCorrelation).toBeGreaterThan(0.5);
+    expect(found.lines.every((line) => line.flags.includes("smoothed"))).toBe(true);
+    expect(found.notes.join(" ")).toContain("smoothed");
+  });
+
+  it("fits neighbours together and marks them", () => {
+    const sim = simulate(6, { fwhm: { value: 5.5, unit: "px" } });
+    const { lines } = findLines(spectrumOf(sim.counts));
+    const pair = sim.truth
+      .slice(-2)
+      .map((truth) => lines.find((line) => Math.abs(line.position - truth.position) < 0.5)!);
+    expect(pair[0]!.group).toBe(pair[1]!.group);
+    expect(pair.every((line) => line.flags.includes("blend"))).toBe(true);
+  });
+
+  it("leaves gaps out and answers on degenerate captures", () => {
+    const sim = simulate(7);
+    const at = Math.round(sim.truth[3]!.position);
+    sim.counts[at - 3] = NaN;
+    sim.counts[100] = NaN;
+    const line = findLines(spectrumOf(sim.counts)).lines.find(
+      (one) => Math.abs(one.position - sim.truth[3]!.position) < 1,
+    )!;
+    expect(Math.abs(line.position - sim.truth[3]!.position)).toBeLessThan(5 * line.positionUnc);
+    for (const counts of [
+      new Float64Array(8),
+      new Float64Array(300).fill(7),
+      new Float64Array(50).fill(NaN),
+      Float64Array.from({ length: 60 }, (_, i) => (i === 30 ? 1e9 : 0)),
+    ]) {
+      const found = findLines(spectrumOf(counts));
+      for (const one of found.lines) expect(Number.isFinite(one.position) && one.positionUnc > 0).toBe(true);
+    }
+  });
+});
+
+describe("estimateBaseline", () => {
+  it("is unbiased in level and noise on white noise, and not lifted by lines", () => {
+    const random = createRandom(3);
+    let noise = 0;
+    let level = 0;
+    for (let k = 0; k < 50; k += 1) {
+      const counts = Float64Array.from(
+        { length: 2048 },
+        (_, i) => 1000 + 10 * random.normal() + (i % 100 < 8 ? 4000 : 0),
+      );
+      const base = estimateBaseline(counts);
+      noise += base.medianNoiseCounts / 50;
+      level += median(base.baseline) / 50;
+    }
+    expect(Math.abs(noise - 10)).toBeLessThan(0.3);
+    expect(Math.abs(level - 1000)).toBeLessThan(0.5);
+  });
+});
+
+describe("estimatePhotonGain", () => {
+  const line = (height: number, gain: number, misfit: number): LineScatter => {
+    const meanSignal = 0.3 * height;
+    const meanSquareSignal = 0.2 * height * height;
+    return {
+      excess: gain * meanSignal + misfit * meanSquareSignal,
+      readVariance: 100,
+      meanSignal,
+      meanSquareSignal,
+      degreesOfFreedom: 12,
+    };
+  };
+  const heights = [300, 600, 1200, 2500, 5000, 10000, 20000, 40000];
+
+  it("finds photon noise alone, none, and photon noise beside a shape that does not fit", () => {
+    expect(estimatePhotonGain(heights.map((h) => line(h, 0.6, 0)))).toBeCloseTo(0.6, 6);
+    expect(estimatePhotonGain(heights.map((h) => line(h, 0, 0)))).toBe(0);
+    expect(estimatePhotonGain(heights.map((h) => line(h, 0.6, 0.0004)))).toBeCloseTo(0.6, 6);
+    expect(estimatePhotonGain([])).toBe(0);
+  });
+});
+
+describe("findSaturation", () => {
+  it("takes no flat top for a ceiling in weak whole counts", () => {
+    const counts = Float64Array.from([3, 4, 5, 5, 5, 4, 3, 2, 3]);
+    expect(findSaturation(counts, null, 1, 100).ceilingCounts).toBeNull();
+    expect(findSaturation(counts, null, 1, 4).mask.reduce((a, b) => a + b, 0)).toBe(3);
+  });
+
+  it("multiplies the full scale by the scans summed", () => {
+    const counts = Float64Array.from([10, 8190, 100]);
+    expect(findSaturation(counts, 4095, 2, 1e9)).toMatchObject({ ceilingCounts: 8190 });
+    expect(findSaturation(counts, 4095, 4, 1e9).mask[1]).toBe(0);
+  });
+});
+
+describe("selectInPlace", () => {
+  it("agrees with sorting", () => {
+    const random = createRandom(9);
+    for (let n = 1; n < 60; n += 1) {
+      const values = Float64Array.from({ length: n }, () => Math.floor(10 * random.uniform()));
+      const sorted = [...values].sort((a, b) => a - b);
+      for (let k = 0; k < n; k += 1) expect(selectInPlace(values.slice(), n, k)).toBe(sorted[k]);
+      expect(median(values)).toBe((sorted[(n - 1) >> 1]! + sorted[n >> 1]!) / 2);
+    }
+  });
+});
