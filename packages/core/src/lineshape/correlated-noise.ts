@@ -39,55 +39,55 @@ export function correlatedCovariance(
   for (let i = 1; i < m; i++) step = Math.min(step, positions[i]! - positions[i - 1]!);
   const reach = lagOne > 0 ? Math.ceil(1 / (1 - lagOne)) : 1;
 
-  const correlation = new Float64Array(m * m);
+  // RJ, with R's few diagonals only; the sum of R's squares on the way.
+  const rj = Float64Array.from(jacobian);
+  let squares = m;
   for (let i = 0; i < m; i++) {
-    for (let j = i; j < m; j++) {
+    for (let j = i + 1; j < m; j++) {
       const lag = Math.round((positions[j]! - positions[i]!) / step);
       if (lag > reach) break;
       const value = correlationAt(lag, lagOne);
-      correlation[i * m + j] = value;
-      correlation[j * m + i] = value;
+      squares += 2 * value * value;
+      for (let a = 0; a < n; a++) {
+        rj[i * n + a] = rj[i * n + a]! + value * jacobian[j * n + a]!;
+        rj[j * n + a] = rj[j * n + a]! + value * jacobian[i * n + a]!;
+      }
     }
   }
-  // G = J (J'J)^-1, so that H = G J' and the covariance is G' R G.
-  const g = multiply(jacobian, covariance, m, n, n);
-  const rg = multiply(correlation, g, m, m, n);
-  const result = new Float64Array(n * n);
+  // With C = (J'J)^-1, H = J C J' and B = J'R J: covariance C B C, trace HR = trace BC, trace HRHR = trace BCBC,
+  // trace HRR = trace (RJ)'(RJ) C. The mean of chi-squared is trace (1 - H) R, its variance twice trace ((1 - H) R)².
+  const bc = multiply(transposeProduct(jacobian, rj, m, n), covariance, n);
+  const doubled = transposeProduct(rj, rj, m, n);
+  let mean = m;
+  let square = squares;
   for (let a = 0; a < n; a++) {
+    mean -= bc[a * n + a]!;
     for (let b = 0; b < n; b++) {
-      let sum = 0;
-      for (let i = 0; i < m; i++) sum += g[i * n + a]! * rg[i * n + b]!;
-      result[a * n + b] = sum;
+      square += bc[a * n + b]! * bc[b * n + a]! - 2 * doubled[a * n + b]! * covariance[a * n + b]!;
     }
   }
-  // P = (1 - H) R = R - G (J'R); trace P and trace P² give mean and variance of chi-squared.
-  const jr = new Float64Array(n * m);
-  for (let i = 0; i < m; i++) {
-    for (let j = 0; j < m; j++) {
-      const value = correlation[i * m + j]!;
-      if (value === 0) continue;
-      for (let a = 0; a < n; a++) jr[a * m + j] = jr[a * m + j]! + jacobian[i * n + a]! * value;
-    }
-  }
-  const p = multiply(g, jr, m, n, m);
-  for (let k = 0; k < m * m; k++) p[k] = correlation[k]! - p[k]!;
-  let mean = 0;
-  let square = 0;
-  for (let i = 0; i < m; i++) {
-    mean += p[i * m + i]!;
-    for (let j = 0; j < m; j++) square += p[i * m + j]! * p[j * m + i]!;
-  }
-  return { covariance: result, expectedChiSquare: mean, degreesOfFreedom: (mean * mean) / square };
+  return { covariance: multiply(covariance, bc, n), expectedChiSquare: mean, degreesOfFreedom: (mean * mean) / square };
 }
 
-/** a (rows x inner) times b (inner x columns), row-major. */
-function multiply(a: Float64Array, b: Float64Array, rows: number, inner: number, columns: number): Float64Array {
-  const product = new Float64Array(rows * columns);
-  for (let i = 0; i < rows; i++) {
-    for (let k = 0; k < inner; k++) {
-      const value = a[i * inner + k]!;
-      if (value === 0) continue;
-      for (let j = 0; j < columns; j++) product[i * columns + j] = product[i * columns + j]! + value * b[k * columns + j]!;
+/** a'b of two m x n matrices, row-major: n x n. */
+function transposeProduct(a: Float64Array, b: Float64Array, m: number, n: number): Float64Array {
+  const product = new Float64Array(n * n);
+  for (let i = 0; i < m; i++) {
+    for (let p = 0; p < n; p++) {
+      const value = a[i * n + p]!;
+      for (let q = 0; q < n; q++) product[p * n + q] = product[p * n + q]! + value * b[i * n + q]!;
+    }
+  }
+  return product;
+}
+
+/** a times b, both n x n, row-major. */
+function multiply(a: Float64Array, b: Float64Array, n: number): Float64Array {
+  const product = new Float64Array(n * n);
+  for (let i = 0; i < n; i++) {
+    for (let k = 0; k < n; k++) {
+      const value = a[i * n + k]!;
+      for (let j = 0; j < n; j++) product[i * n + j] = product[i * n + j]! + value * b[k * n + j]!;
     }
   }
   return product;

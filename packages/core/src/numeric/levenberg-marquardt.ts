@@ -120,8 +120,10 @@ export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>,
       const predicted = damped.predictedReduction;
       const actual = sum - trialSum;
       const ratio = predicted > 0 && Number.isFinite(actual) ? actual / predicted : -1;
-      if (ratio < 0.25) radius = Math.min(radius, length) * (Number.isFinite(actual) && ratio > -1 ? 0.5 : 0.1);
-      else if (ratio > 0.75 || damped.lambda === 0) radius = Math.max(radius, 2 * length);
+      // The first step tells the scale of the problem better than the length of the start does.
+      if (iteration === 0) radius = Math.min(radius, length);
+      if (ratio < 0.25) radius = Math.min(radius, 10 * length) * shrinkage(actual, damped.descent);
+      else if (ratio > 0.75 || damped.lambda === 0) radius = 2 * length;
       if (ratio > 1e-4) {
         [parameters, trial] = [trial, parameters];
         [residuals, trialResiduals] = [trialResiduals, residuals];
@@ -133,6 +135,12 @@ export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>,
       if (!(radius > EPSILON * scaledLength(parameters, scale))) return finish("stalled", sum, iteration);
     }
   }
+}
+
+/** Factor of the radius after a step that gained too little: the minimum of the parabola along it, 0.1 to 0.5 (Moré). */
+function shrinkage(actual: number, descent: number): number {
+  if (actual >= 0) return 0.5;
+  return Number.isFinite(actual) ? Math.max(0.1, (0.5 * descent) / (descent - 0.5 * actual)) : 0.1;
 }
 
 function sumOfSquares(values: Float64Array): number {
@@ -210,6 +218,8 @@ class DampedSolver {
   lambda = 0;
   /** Fall of the sum of squares that the linear model promises for the step. */
   predictedReduction = 0;
+  /** Half of its slope along the step at the start of the step. */
+  descent = 0;
   private readonly triangle: Float64Array;
   private readonly right: Float64Array;
   private readonly row: Float64Array;
@@ -286,6 +296,7 @@ class DampedSolver {
     }
     const length = scaledLength(step, scale);
     this.predictedReduction = model + 2 * this.lambda * length * length;
+    this.descent = model + this.lambda * length * length;
   }
 
   /** Rotates sqrt(lambda) D into R (Givens) and solves; the damped triangle stays in `triangle`. */
