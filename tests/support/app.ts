@@ -9,14 +9,15 @@ import { openDatabase } from "@wavekeep/api/db/connection";
 import { makeJobs, openBoss } from "@wavekeep/api/jobs/jobs";
 import { openSigningKey } from "@wavekeep/api/records/signing";
 import type { Services } from "@wavekeep/api/services";
-import type { Express } from "express";
 import { pino } from "pino";
 import supertest, { type Test } from "supertest";
 import { afterAll, beforeAll } from "vitest";
 import { useTestDatabase, type TestDatabase } from "./database.ts";
 
+type App = ReturnType<typeof createApp>;
+
 export interface TestApp {
-  app: Express;
+  app: App;
   services: Services;
   database: TestDatabase;
   /** A browser nobody has signed in with yet. */
@@ -25,24 +26,26 @@ export interface TestApp {
 
 /** One browser: keeps its cookies, and sends the token that every change must carry. Paths are below `/api`. */
 export class Client {
-  #agent: ReturnType<typeof supertest.agent>;
-  #csrfToken = "";
+  /** For requests without the token, or with another's. */
+  readonly agent: ReturnType<typeof supertest.agent>;
+  /** Sent back in `x-csrf-token` with every change. */
+  csrfToken = "";
 
-  constructor(app: Express) {
-    this.#agent = supertest.agent(app);
+  constructor(app: App) {
+    this.agent = supertest.agent(app);
   }
 
   get(route: string): Test {
-    return this.#agent.get(`/api${route}`);
+    return this.agent.get(`/api${route}`);
   }
   post(route: string, body?: object): Test {
-    return this.#change(this.#agent.post(`/api${route}`), body);
+    return this.#change(this.agent.post(`/api${route}`), body);
   }
   put(route: string, body?: object): Test {
-    return this.#change(this.#agent.put(`/api${route}`), body);
+    return this.#change(this.agent.put(`/api${route}`), body);
   }
   delete(route: string): Test {
-    return this.#change(this.#agent.delete(`/api${route}`));
+    return this.#change(this.agent.delete(`/api${route}`));
   }
   /** Files as a form sends them. */
   upload(
@@ -51,7 +54,7 @@ export class Client {
     files: { name: string; bytes: Uint8Array | string }[],
     fields: Record<string, string> = {},
   ): Test {
-    let request = this.#agent.post(`/api${route}`).set("x-csrf-token", this.#csrfToken);
+    let request = this.agent.post(`/api${route}`).set("x-csrf-token", this.csrfToken);
     for (const [name, value] of Object.entries(fields)) request = request.field(name, value);
     for (const { name, bytes } of files) request = request.attach(field, Buffer.from(bytes), name);
     return request;
@@ -60,25 +63,25 @@ export class Client {
   /** Read who is signed in, and with it the token for this session. */
   async readSession() {
     const reply = await this.get("/session").expect(200);
-    this.#csrfToken = reply.body.csrfToken as string;
+    this.csrfToken = reply.body.csrfToken as string;
     return reply.body;
   }
 
   async signIn(email: string, password: string) {
     const reply = await this.post("/session", { email, password }).expect(200);
-    this.#csrfToken = reply.body.csrfToken as string;
+    this.csrfToken = reply.body.csrfToken as string;
     return reply.body;
   }
 
   #change(request: Test, body?: object): Test {
-    return request.set("x-csrf-token", this.#csrfToken).send(body);
+    return request.set("x-csrf-token", this.csrfToken).send(body);
   }
 }
 
 /**
  * The app for this test file, on a database of its own. Call it once at the top level.
  *
- * @example const wavekeep = useTestApp();  test("…", async () => { const client = await wavekeep.visit(); … });
+ * @example const server = useTestApp();  test("…", async () => { const client = await server.visit(); … });
  */
 export function useTestApp(env: NodeJS.ProcessEnv = {}): TestApp {
   const database = useTestDatabase();
