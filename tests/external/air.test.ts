@@ -8,7 +8,13 @@
 import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
 import {
-  airIndex, airToVacuumNm, ciddorIndex, modifiedEdlenIndex, pressureFromAltitudePa, vacuumToAirNm, vapourShareOf,
+  airIndex,
+  airToVacuumNm,
+  ciddorIndex,
+  modifiedEdlenIndex,
+  pressureFromAltitudePa,
+  vacuumToAirNm,
+  vapourShareOf,
 } from "../../packages/core/src/light/air.ts";
 
 interface Row {
@@ -22,15 +28,22 @@ function readRows(): Row[] {
   const [header, ...lines] = text.trim().split("\n");
   const names = header!.split(",");
   return lines.map((line) => {
-    const cells = [...line.matchAll(/("([^"]*)"|[^,]*)(,|$)/g)].slice(0, names.length).map((match) => match[2] ?? match[1]!);
+    const cells = [...line.matchAll(/("([^"]*)"|[^,]*)(,|$)/g)]
+      .slice(0, names.length)
+      .map((match) => match[2] ?? match[1]!);
     return Object.fromEntries(names.map((name, i) => [name, cells[i]!])) as Row;
   });
 }
 
 function indexOf(row: Row): number {
   const vacuumNm = Number(row["wavelengthVacuumNm"]);
-  const air = { temperatureC: Number(row["temperatureC"]), pressurePa: Number(row["pressurePa"]), co2Ppm: Number(row["co2Ppm"]) };
-  if (row.formula === "birch-downs-1994") return modifiedEdlenIndex(vacuumNm, { ...air, relativeHumidity: Number(row["relativeHumidity"]) });
+  const air = {
+    temperatureC: Number(row["temperatureC"]),
+    pressurePa: Number(row["pressurePa"]),
+    co2Ppm: Number(row["co2Ppm"]),
+  };
+  if (row.formula === "birch-downs-1994")
+    return modifiedEdlenIndex(vacuumNm, { ...air, relativeHumidity: Number(row["relativeHumidity"]) });
   if (row.formula !== "ciddor-1996") return airIndex(vacuumNm, row.formula);
   if (row["vapourPressurePa"] !== "") {
     return ciddorIndex(vacuumNm, air, vapourShareOf(Number(row["vapourPressurePa"]), air.temperatureC, air.pressurePa));
@@ -46,7 +59,10 @@ function indexOf(row: Row): number {
 const heldToTheListsDigit = ["594.48342", "633.44279"];
 const unitOfLastDigit = (printed: string): number => 1 / 10 ** (printed.split(".")[1]?.length ?? 0);
 const rows = readRows();
-const named = (row: Row, i: number): [string, Row] => [`${i + 1}: ${row.formula} ${row["wavelengthVacuumNm"]} nm, ${row["temperatureC"]} °C, ${row["pressurePa"]} Pa`, row];
+const named = (row: Row, i: number): [string, Row] => [
+  `${i + 1}: ${row.formula} ${row["wavelengthVacuumNm"]} nm, ${row["temperatureC"]} °C, ${row["pressurePa"]} Pa`,
+  row,
+];
 // Ciddor's table 2, second row: the printed value equals the measured one beside it, his equation gives 0.33e-8 more.
 const isSuspect = (row: Row): boolean => row["note"]!.startsWith("suspect");
 
@@ -69,7 +85,11 @@ describe("refractive index", () => {
 });
 
 describe("wavelengths printed in vacuum and in air", () => {
-  test.each(rows.filter((row) => row.kind === "published pair").map((row): [string, Row] => [`${row["wavelengthVacuumNm"]} / ${row["wavelengthAirNm"]}`, row]))("%s", (_, row) => {
+  test.each(
+    rows
+      .filter((row) => row.kind === "published pair")
+      .map((row): [string, Row] => [`${row["wavelengthVacuumNm"]} / ${row["wavelengthAirNm"]}`, row]),
+  )("%s", (_, row) => {
     const [vacuum, air] = [row["wavelengthVacuumNm"]!, row["wavelengthAirNm"]!];
     const formula = row.formula as "peck-reeder-1972" | "edlen-1966";
     const unit = heldToTheListsDigit.includes(air) ? 1e-4 : Math.max(unitOfLastDigit(vacuum), unitOfLastDigit(air));
@@ -79,9 +99,14 @@ describe("wavelengths printed in vacuum and in air", () => {
 });
 
 test("vacuum to air and back returns the wavelength to 1e-6 nm, from 185 to 2,500 nm, in every air", () => {
-  const airs = ["edlen-1966", "peck-reeder-1972", { temperatureC: 30, pressurePa: 84000, relativeHumidity: 0.8 }] as const;
+  const airs = [
+    "edlen-1966",
+    "peck-reeder-1972",
+    { temperatureC: 30, pressurePa: 84000, relativeHumidity: 0.8 },
+  ] as const;
   for (const air of airs) {
-    for (let nm = 185; nm <= 2500; nm += 7.3) expect(Math.abs(airToVacuumNm(vacuumToAirNm(nm, air), air) - nm)).toBeLessThan(1e-9);
+    for (let nm = 185; nm <= 2500; nm += 7.3)
+      expect(Math.abs(airToVacuumNm(vacuumToAirNm(nm, air), air) - nm)).toBeLessThan(1e-9);
   }
 });
 

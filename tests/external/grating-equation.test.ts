@@ -8,7 +8,13 @@
 import { describe, expect, test } from "vitest";
 import * as grating from "../../packages/core/src/grating/equation.ts";
 
-const state = { order: 1, wavelengthNm: 500, grooveDensityPerMm: 1200, incidenceDeg: 30, diffractionDeg: 5.739170477266787 };
+const state = {
+  order: 1,
+  wavelengthNm: 500,
+  grooveDensityPerMm: 1200,
+  incidenceDeg: 30,
+  diffractionDeg: 5.739170477266787,
+};
 const value = (answer: grating.GratingAnswer): number => {
   if (answer.outcome === "refused") throw new Error(answer.detail);
   return answer.value;
@@ -33,7 +39,12 @@ describe("each unknown", () => {
     expect(value(grating.gratingOrder({ ...state, wavelengthNm: 250 }))).toBeCloseTo(2, 12);
   });
   test("both angles at 40° between the beams: sin phi = 0.6 / (2 cos 20°) = 0.3 / 0.939692621 = 0.319253332, phi = 18.617565°", () => {
-    const both = grating.anglesForIncludedAngle({ order: 1, wavelengthNm: 500, grooveDensityPerMm: 1200, includedAngleDeg: 40 });
+    const both = grating.anglesForIncludedAngle({
+      order: 1,
+      wavelengthNm: 500,
+      grooveDensityPerMm: 1200,
+      includedAngleDeg: 40,
+    });
     if (both.outcome === "refused") throw new Error(both.detail);
     expect(Math.sin((both.rotationDeg * Math.PI) / 180)).toBeCloseTo(0.319253332, 9);
     expect(both.incidenceDeg - both.diffractionDeg).toBeCloseTo(40, 12);
@@ -60,16 +71,25 @@ describe("what follows", () => {
     expect(grating.resolvingPower(2, 1200, 50)).toBe(120000);
   });
   test("slit 100 µm: its image is cos 30° / cos beta = 0.866025404 / 0.994987437 = 0.870388 as wide, 87.0388 µm; times 2.763854 nm/mm = 0.240563 nm", () => {
-    expect(grating.slitLimitedBandwidthNm({ ...state, focalLengthMm: 300, slitUm: 100, exitUm: 14 })).toBeCloseTo(0.240563, 6);
+    expect(grating.slitLimitedBandwidthNm({ ...state, focalLengthMm: 300, slitUm: 100, exitUm: 14 })).toBeCloseTo(
+      0.240563,
+      6,
+    );
   });
   test("where 600 nm falls in order 1, 300 nm falls in order 2 and 200 nm in order 3", () => {
-    expect(grating.overlappingOrders(600, 1, 190, 1100)).toEqual([{ order: 2, wavelengthNm: 300 }, { order: 3, wavelengthNm: 200 }]);
+    expect(grating.overlappingOrders(600, 1, 190, 1100)).toEqual([
+      { order: 2, wavelengthNm: 300 },
+      { order: 3, wavelengthNm: 200 },
+    ]);
   });
 });
 
 describe("no answer is said to be none", () => {
   test("1 200 nm in order 2: 2 x 1200 / 833.3333 - 0.5 = 2.38, no such sine", () => {
-    expect(grating.diffractionAngleDeg({ ...state, order: 2, wavelengthNm: 1200 })).toMatchObject({ outcome: "refused", reason: "evanescent" });
+    expect(grating.diffractionAngleDeg({ ...state, order: 2, wavelengthNm: 1200 })).toMatchObject({
+      outcome: "refused",
+      reason: "evanescent",
+    });
   });
   test("order 0 fixes no wavelength and no groove density", () => {
     expect(grating.gratingWavelengthNm({ ...state, order: 0 })).toMatchObject({ reason: "undetermined" });

@@ -55,7 +55,16 @@ function boundPx(one: Case, centre: number): number {
     const area = height / peakDensity(fwhm);
     const at = (c: number, w: number): number => area * densityOverPixel(shape, w, i - c);
     const h = 1e-4;
-    design.set([(at(centre + h, fwhm) - at(centre - h, fwhm)) / (2 * h), (at(centre, fwhm + h) - at(centre, fwhm - h)) / (2 * h), at(centre, fwhm) / height, 1, i - middle], 5 * i);
+    design.set(
+      [
+        (at(centre + h, fwhm) - at(centre - h, fwhm)) / (2 * h),
+        (at(centre, fwhm + h) - at(centre, fwhm - h)) / (2 * h),
+        at(centre, fwhm) / height,
+        1,
+        i - middle,
+      ],
+      5 * i,
+    );
     unc[i] = uncertaintyAt(signalAt(i, centre, fwhm, height, middle), one.photonKnee);
   }
   return Math.sqrt(solveLeastSquares(design, samples, 5, new Float64Array(samples), unc).covariance[0]!);
@@ -87,7 +96,15 @@ describe("white and photon noise, 20,000 windows a case", () => {
       // Phases on a grid of 32 within the pixel, so that the bound is worked out once for each.
       const phase = (k % 32) / 32 - 0.5;
       const centre = (one.samples - 1) / 2 + phase;
-      const fit = fitted(fitLines(makeWindow(one, centre, random), [{ centre: centre + random.between(-0.4, 0.4), fwhm: one.fwhm * random.between(0.75, 1.35), peakHeightCounts: one.signalToNoise * noiseCounts * random.between(0.8, 1.2) }]));
+      const fit = fitted(
+        fitLines(makeWindow(one, centre, random), [
+          {
+            centre: centre + random.between(-0.4, 0.4),
+            fwhm: one.fwhm * random.between(0.75, 1.35),
+            peakHeightCounts: one.signalToNoise * noiseCounts * random.between(0.8, 1.2),
+          },
+        ]),
+      );
       const error = fit.lines[0]!.centre - centre;
       bias += error;
       variance += error * error;
@@ -96,7 +113,9 @@ describe("white and photon noise, 20,000 windows a case", () => {
     for (let j = 0; j < 32; j++) bound += boundPx(one, (one.samples - 1) / 2 + j / 32 - 0.5) ** 2 / 32;
     const ratio = variance / runs / bound;
     const coverage = (100 * covered) / runs;
-    table.push(`FWHM ${one.fwhm} px  ${one.signalToNoise}:1  variance / bound ${ratio.toFixed(3)}  bias ${(bias / runs).toExponential(1)} px  covered by ±2 u ${coverage.toFixed(2)} %`);
+    table.push(
+      `FWHM ${one.fwhm} px  ${one.signalToNoise}:1  variance / bound ${ratio.toFixed(3)}  bias ${(bias / runs).toExponential(1)} px  covered by ±2 u ${coverage.toFixed(2)} %`,
+    );
     expect(ratio).toBeLessThan(1.05);
     expect(ratio).toBeGreaterThan(0.95);
     expect(Math.abs(bias / runs)).toBeLessThan(0.01);
@@ -129,7 +148,9 @@ describe("noise averaged over neighbours, 10,000 windows a case", () => {
       if (error <= 2 * fitted(fitLines(window, start)).lines[0]!.centreUnc) withoutCorrelation += 1;
       chiSquare += fit.reducedChiSquare / runs;
     }
-    table.push(`mean of ${width}: covered by ±2 u ${((100 * covered) / runs).toFixed(2)} %, were the correlation ignored ${((100 * withoutCorrelation) / runs).toFixed(2)} %; mean reduced chi² ${chiSquare.toFixed(3)}`);
+    table.push(
+      `mean of ${width}: covered by ±2 u ${((100 * covered) / runs).toFixed(2)} %, were the correlation ignored ${((100 * withoutCorrelation) / runs).toFixed(2)} %; mean reduced chi² ${chiSquare.toFixed(3)}`,
+    );
     expect((100 * covered) / runs).toBeGreaterThan(93);
     expect((100 * covered) / runs).toBeLessThan(98);
     expect(Math.abs(chiSquare - 1)).toBeLessThan(0.05);
@@ -146,7 +167,11 @@ test("noise stated a quarter too small: the fit's own scatter widens the interva
     const window = makeWindow(one, centre, random);
     window.countsUnc.fill(noiseCounts * 0.75);
     const fit = fitted(fitLines(window, [{ centre: 10, fwhm: 4, peakHeightCounts: 450 }]));
-    if (Math.abs(fit.lines[0]!.centre - centre) <= studentQuantile(0.97725, fit.degreesOfFreedom) * fit.lines[0]!.centreUnc) covered += 1;
+    if (
+      Math.abs(fit.lines[0]!.centre - centre) <=
+      studentQuantile(0.97725, fit.degreesOfFreedom) * fit.lines[0]!.centreUnc
+    )
+      covered += 1;
   }
   table.push(`noise stated at 75 %: covered by Student's factor ${((100 * covered) / runs).toFixed(2)} %`);
   expect((100 * covered) / runs).toBeGreaterThan(93);

@@ -8,7 +8,10 @@ import { createRequire } from "node:module";
 import { createRandom } from "../../packages/core/src/testing/index.ts";
 import { chebyshevToPowers, fillChebyshevBasis, solveLeastSquares } from "../../packages/core/src/numeric/index.ts";
 
-interface Regression { predict(x: number): number; coefficients: number[] }
+interface Regression {
+  predict(x: number): number;
+  coefficients: number[];
+}
 // The package has no types and its meaning here is these two members.
 const { PolynomialRegression } = createRequire(import.meta.url)("ml-regression") as {
   PolynomialRegression: new (x: number[], y: number[], degree: number) => Regression;

@@ -12,12 +12,20 @@ import { exp, minimise, solveLeastSquares, type LeastSquaresProblem } from "../.
 interface Set {
   about: { set: string; reachedInDoublePrecision: { start1: number; start2: number; rawPowers: number } };
   starts: number[][];
-  certified: { estimates: number[]; standardDeviations: number[]; residualSumOfSquares: number; residualStandardDeviation: number; degreesOfFreedom: number };
+  certified: {
+    estimates: number[];
+    standardDeviations: number[];
+    residualSumOfSquares: number;
+    residualStandardDeviation: number;
+    degreesOfFreedom: number;
+  };
   x: number[];
   y: number[];
 }
-const read = (name: string): Set => JSON.parse(readFileSync(new URL(`../fixtures/strd/${name}.json`, import.meta.url), "utf8")) as Set;
-const digits = (value: number, certified: number): number => Math.min(15, -Math.log10(Math.abs(value / certified - 1) || 1e-16));
+const read = (name: string): Set =>
+  JSON.parse(readFileSync(new URL(`../fixtures/strd/${name}.json`, import.meta.url), "utf8")) as Set;
+const digits = (value: number, certified: number): number =>
+  Math.min(15, -Math.log10(Math.abs(value / certified - 1) || 1e-16));
 
 /** Fills value and gradient of the model at x. */
 type Model = (b: Float64Array, x: number, gradient: Float64Array) => number;
@@ -66,7 +74,12 @@ const table: string[] = [];
 afterAll(() => process.stdout.write(`\nDigits agreed with NIST StRD\n${table.join("\n")}\n`));
 
 describe("nonlinear", () => {
-  const sets: [string, Model][] = [["gauss1", twoPeaksOnDecay], ["gauss2", twoPeaksOnDecay], ["gauss3", twoPeaksOnDecay], ["eckerle4", onePeakByArea]];
+  const sets: [string, Model][] = [
+    ["gauss1", twoPeaksOnDecay],
+    ["gauss2", twoPeaksOnDecay],
+    ["gauss3", twoPeaksOnDecay],
+    ["eckerle4", onePeakByArea],
+  ];
   for (const [name, model] of sets) {
     const set = read(name);
     test.each([1, 2] as const)(`${set.about.set} from start %d`, (start) => {
@@ -75,11 +88,17 @@ describe("nonlinear", () => {
       const n = estimates.length;
       const variance = fit.sumOfSquares / fit.degreesOfFreedom;
       const reached = estimates.map((certified, j) => digits(fit.parameters[j]!, certified));
-      const errors = standardDeviations.map((certified, j) => digits(Math.sqrt(fit.covariance![j * n + j]! * variance), certified));
-      table.push(`${set.about.set.padEnd(9)} start ${start}  parameters ${reached.map((d) => d.toFixed(1)).join(" ")}  standard errors ${Math.min(...errors).toFixed(1)} or more  ${fit.outcome} after ${fit.iterations}`);
+      const errors = standardDeviations.map((certified, j) =>
+        digits(Math.sqrt(fit.covariance![j * n + j]! * variance), certified),
+      );
+      table.push(
+        `${set.about.set.padEnd(9)} start ${start}  parameters ${reached.map((d) => d.toFixed(1)).join(" ")}  standard errors ${Math.min(...errors).toFixed(1)} or more  ${fit.outcome} after ${fit.iterations}`,
+      );
       expect(["converged", "stalled"]).toContain(fit.outcome);
       expect(fit.degreesOfFreedom).toBe(degreesOfFreedom);
-      expect(Math.min(...reached)).toBeGreaterThanOrEqual(Math.min(8, set.about.reachedInDoublePrecision[`start${start}`]));
+      expect(Math.min(...reached)).toBeGreaterThanOrEqual(
+        Math.min(8, set.about.reachedInDoublePrecision[`start${start}`]),
+      );
       expect(Math.min(...errors)).toBeGreaterThanOrEqual(6);
       expect(digits(fit.sumOfSquares, residualSumOfSquares)).toBeGreaterThanOrEqual(9);
     });
@@ -91,8 +110,12 @@ test("Norris, a straight line: 11 digits of both coefficients, 9 of the residual
   const m = set.x.length;
   const fit = solveLeastSquares(Float64Array.from(set.x.flatMap((x) => [1, x])), m, 2, set.y, null);
   const reached = set.certified.estimates.map((certified, j) => digits(fit.coefficients[j]!, certified));
-  const errors = set.certified.standardDeviations.map((certified, j) => digits(Math.sqrt(fit.covariance[3 * j]!), certified));
-  table.push(`Norris             parameters ${reached.map((d) => d.toFixed(1)).join(" ")}  standard errors ${Math.min(...errors).toFixed(1)} or more`);
+  const errors = set.certified.standardDeviations.map((certified, j) =>
+    digits(Math.sqrt(fit.covariance[3 * j]!), certified),
+  );
+  table.push(
+    `Norris             parameters ${reached.map((d) => d.toFixed(1)).join(" ")}  standard errors ${Math.min(...errors).toFixed(1)} or more`,
+  );
   expect(Math.min(...reached)).toBeGreaterThanOrEqual(Math.min(11, set.about.reachedInDoublePrecision.rawPowers));
   expect(digits(fit.residualSd!, set.certified.residualStandardDeviation)).toBeGreaterThanOrEqual(9);
   expect(Math.min(...errors)).toBeGreaterThanOrEqual(9);

@@ -29,11 +29,13 @@ function solved(value: number): GratingAnswer {
 }
 
 function checkFinite(values: readonly number[]): void {
-  if (values.some((value) => !Number.isFinite(value))) throw new RangeError("Every quantity of the grating equation must be a finite number");
+  if (values.some((value) => !Number.isFinite(value)))
+    throw new RangeError("Every quantity of the grating equation must be a finite number");
 }
 
 function checkGrooves(grooveDensityPerMm: number): void {
-  if (!(grooveDensityPerMm > 0)) throw new RangeError(`Groove density must be above 0 per mm; got ${grooveDensityPerMm}`);
+  if (!(grooveDensityPerMm > 0))
+    throw new RangeError(`Groove density must be above 0 per mm; got ${grooveDensityPerMm}`);
 }
 
 /** sin alpha + sin beta. */
@@ -48,7 +50,11 @@ function pathInGrooves(state: Pick<GratingState, "order" | "wavelengthNm" | "gro
 
 function angleOf(sine: number, what: string): GratingAnswer {
   if (Math.abs(sine) > 1) {
-    return { outcome: "refused", reason: "evanescent", detail: `The ${what} would need a sine of ${sine.toFixed(4)}: light of this order does not leave the grating.` };
+    return {
+      outcome: "refused",
+      reason: "evanescent",
+      detail: `The ${what} would need a sine of ${sine.toFixed(4)}: light of this order does not leave the grating.`,
+    };
   }
   return solved(asin(sine) / DEGREE);
 }
@@ -90,7 +96,11 @@ export function grooveDensityPerMm(state: Omit<GratingState, "grooveDensityPerMm
   checkFinite([state.order, state.wavelengthNm, state.incidenceDeg, state.diffractionDeg]);
   const density = (sineSum(state) * 1e6) / (state.order * state.wavelengthNm);
   if (!(density > 0 && density < Infinity)) {
-    return { outcome: "refused", reason: "undetermined", detail: "No groove density sends this order of this wavelength between these angles." };
+    return {
+      outcome: "refused",
+      reason: "undetermined",
+      detail: "No groove density sends this order of this wavelength between these angles.",
+    };
   }
   return solved(density);
 }
@@ -103,13 +113,20 @@ export function grooveDensityPerMm(state: Omit<GratingState, "grooveDensityPerMm
  */
 export function anglesForIncludedAngle(
   state: Pick<GratingState, "order" | "wavelengthNm" | "grooveDensityPerMm"> & { includedAngleDeg: number },
-): { outcome: "solved"; incidenceDeg: number; diffractionDeg: number; rotationDeg: number } | Extract<GratingAnswer, { outcome: "refused" }> {
+):
+  | { outcome: "solved"; incidenceDeg: number; diffractionDeg: number; rotationDeg: number }
+  | Extract<GratingAnswer, { outcome: "refused" }> {
   checkFinite([state.order, state.wavelengthNm, state.includedAngleDeg]);
   checkGrooves(state.grooveDensityPerMm);
   const half = state.includedAngleDeg / 2;
   const rotation = angleOf(pathInGrooves(state) / (2 * cos(half * DEGREE)), "grating's rotation");
   if (rotation.outcome === "refused") return rotation;
-  return { outcome: "solved", incidenceDeg: rotation.value + half, diffractionDeg: rotation.value - half, rotationDeg: rotation.value };
+  return {
+    outcome: "solved",
+    incidenceDeg: rotation.value + half,
+    diffractionDeg: rotation.value - half,
+    rotationDeg: rotation.value,
+  };
 }
 
 /**
@@ -119,12 +136,15 @@ export function anglesForIncludedAngle(
  * @throws {RangeError} wavelength not above 0, order 0
  */
 export function freeSpectralRangeNm(wavelengthNm: number, order: number): number {
-  if (!(wavelengthNm > 0) || order === 0 || !Number.isFinite(order)) throw new RangeError("Free spectral range needs a wavelength above 0 and an order other than 0");
+  if (!(wavelengthNm > 0) || order === 0 || !Number.isFinite(order))
+    throw new RangeError("Free spectral range needs a wavelength above 0 and an order other than 0");
   return wavelengthNm / Math.abs(order);
 }
 
 /** Angular dispersion d beta / d lambda at fixed alpha, rad/nm: m / (d cos beta). @throws {RangeError} not finite, no grooves */
-export function angularDispersionRadPerNm(state: Pick<GratingState, "order" | "grooveDensityPerMm" | "diffractionDeg">): number {
+export function angularDispersionRadPerNm(
+  state: Pick<GratingState, "order" | "grooveDensityPerMm" | "diffractionDeg">,
+): number {
   checkFinite([state.order, state.diffractionDeg]);
   checkGrooves(state.grooveDensityPerMm);
   return (state.order * state.grooveDensityPerMm) / (1e6 * cos(state.diffractionDeg * DEGREE));
@@ -134,13 +154,17 @@ export function angularDispersionRadPerNm(state: Pick<GratingState, "order" | "g
 export function reciprocalDispersionNmPerMm(
   state: Pick<GratingState, "order" | "grooveDensityPerMm" | "diffractionDeg"> & { focalLengthMm: number },
 ): number {
-  if (state.order === 0 || !(state.focalLengthMm > 0)) throw new RangeError("Dispersion needs an order other than 0 and a focal length above 0");
+  if (state.order === 0 || !(state.focalLengthMm > 0))
+    throw new RangeError("Dispersion needs an order other than 0 and a focal length above 0");
   return 1 / (angularDispersionRadPerNm(state) * state.focalLengthMm);
 }
 
 /** The same per pixel, nm/px. @throws {RangeError} as above */
 export function dispersionNmPerPx(
-  state: Pick<GratingState, "order" | "grooveDensityPerMm" | "diffractionDeg"> & { focalLengthMm: number; pixelPitchUm: number },
+  state: Pick<GratingState, "order" | "grooveDensityPerMm" | "diffractionDeg"> & {
+    focalLengthMm: number;
+    pixelPitchUm: number;
+  },
 ): number {
   return (reciprocalDispersionNmPerMm(state) * state.pixelPitchUm) / 1000;
 }
@@ -172,7 +196,12 @@ export function slitLimitedBandwidthNm(
 }
 
 /** Wavelengths of other orders that fall where `wavelengthNm` of `order` falls: m lambda = m' lambda', within [firstNm, lastNm]. */
-export function overlappingOrders(wavelengthNm: number, order: number, firstNm: number, lastNm: number): { order: number; wavelengthNm: number }[] {
+export function overlappingOrders(
+  wavelengthNm: number,
+  order: number,
+  firstNm: number,
+  lastNm: number,
+): { order: number; wavelengthNm: number }[] {
   if (!(wavelengthNm > 0 && firstNm > 0) || !Number.isInteger(order) || order < 1) {
     throw new RangeError("Overlapping orders need wavelengths above 0 and a whole order from 1");
   }

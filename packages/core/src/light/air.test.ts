@@ -22,7 +22,9 @@ describe("air", () => {
   test("refuses what no room has", () => {
     expect(() => airIndex(546, { temperatureC: 20, pressurePa: 1013.25, relativeHumidity: 0.5 })).not.toThrow();
     expect(() => airIndex(546, { temperatureC: 20, pressurePa: 101.3, relativeHumidity: 0.5 })).toThrow(/Pressure/);
-    expect(() => airIndex(546, { temperatureC: 20, pressurePa: 101325, relativeHumidity: 50 })).toThrow(/share from 0 to 1/);
+    expect(() => airIndex(546, { temperatureC: 20, pressurePa: 101325, relativeHumidity: 50 })).toThrow(
+      /share from 0 to 1/,
+    );
     expect(() => airIndex(-1)).toThrow(RangeError);
     expect(() => pressureFromAltitudePa(30000)).toThrow(RangeError);
   });

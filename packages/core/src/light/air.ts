@@ -53,9 +53,12 @@ export function airIndex(vacuumNm: number, air: Air = "peck-reeder-1972"): numbe
 
 function checkConditions(air: AirConditions): void {
   const { temperatureC, pressurePa, relativeHumidity, co2Ppm = DEFAULT_CO2_PPM } = air;
-  if (!(temperatureC >= -60 && temperatureC <= 100)) throw new RangeError(`Temperature must lie within -60 and 100 °C; got ${temperatureC}`);
-  if (!(pressurePa >= 1000 && pressurePa <= 200000)) throw new RangeError(`Pressure must lie within 1 000 and 200 000 Pa; got ${pressurePa}`);
-  if (!(relativeHumidity >= 0 && relativeHumidity <= 1)) throw new RangeError(`Relative humidity is a share from 0 to 1; got ${relativeHumidity}`);
+  if (!(temperatureC >= -60 && temperatureC <= 100))
+    throw new RangeError(`Temperature must lie within -60 and 100 °C; got ${temperatureC}`);
+  if (!(pressurePa >= 1000 && pressurePa <= 200000))
+    throw new RangeError(`Pressure must lie within 1 000 and 200 000 Pa; got ${pressurePa}`);
+  if (!(relativeHumidity >= 0 && relativeHumidity <= 1))
+    throw new RangeError(`Relative humidity is a share from 0 to 1; got ${relativeHumidity}`);
   if (!(co2Ppm >= 0 && co2Ppm <= 100000)) throw new RangeError(`CO2 must lie within 0 and 100 000 ppm; got ${co2Ppm}`);
 }
 
@@ -81,7 +84,11 @@ export function vapourShareOf(vapourPressurePa: number, temperatureC: number, pr
 }
 
 function vapourShare(air: AirConditions): number {
-  return vapourShareOf(air.relativeHumidity * saturationVapourPressurePa(air.temperatureC), air.temperatureC, air.pressurePa);
+  return vapourShareOf(
+    air.relativeHumidity * saturationVapourPressurePa(air.temperatureC),
+    air.temperatureC,
+    air.pressurePa,
+  );
 }
 
 /** Moles per volume times the gas constant: p / (Z T), with Ciddor's compressibility Z; the constant cancels in his ratios. */
@@ -89,7 +96,11 @@ function molarDensity(pressurePa: number, temperatureC: number, share: number): 
   const kelvin = temperatureC + ZERO_CELSIUS_K;
   const t = temperatureC;
   const ratio = pressurePa / kelvin;
-  const first = 1.58123e-6 + t * (-2.9331e-8 + 1.1043e-10 * t) + (5.707e-6 - 2.051e-8 * t) * share + (1.9898e-4 - 2.376e-6 * t) * share * share;
+  const first =
+    1.58123e-6 +
+    t * (-2.9331e-8 + 1.1043e-10 * t) +
+    (5.707e-6 - 2.051e-8 * t) * share +
+    (1.9898e-4 - 2.376e-6 * t) * share * share;
   const z = 1 - ratio * first + ratio * ratio * (1.83e-11 - 0.765e-8 * share * share);
   return pressurePa / (z * kelvin);
 }
@@ -146,7 +157,8 @@ export function airToVacuumNm(airNm: number, air: Air = "peck-reeder-1972"): num
  * @throws {RangeError} an altitude outside that range
  */
 export function pressureFromAltitudePa(altitudeM: number): { pressurePa: number; pressureUncPa: number } {
-  if (!(altitudeM >= -500 && altitudeM <= 11000)) throw new RangeError(`Altitude must lie within -500 and 11 000 m; got ${altitudeM}`);
+  if (!(altitudeM >= -500 && altitudeM <= 11000))
+    throw new RangeError(`Altitude must lie within -500 and 11 000 m; got ${altitudeM}`);
   // p = 101325 (1 - L h / T0)^(g / (R L)), L = 6.5 K/km, T0 = 288.15 K, g = 9.80665 m/s², R = 287.05287 J/(kg K)
   const exponent = 9.80665 / (287.05287 * 0.0065);
   return { pressurePa: 101325 * pow(1 - (0.0065 * altitudeM) / 288.15, exponent), pressureUncPa: 1000 };

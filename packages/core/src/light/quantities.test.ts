@@ -1,6 +1,13 @@
 import { describe, expect, test } from "vitest";
 import {
-  frequencyTHz, photonEnergyEv, ramanShift, scatteredWavelengthNm, wavelengthFromEnergyNm, wavelengthFromFrequencyNm, wavelengthFromWavenumberNm, wavenumberPerCm,
+  frequencyTHz,
+  photonEnergyEv,
+  ramanShift,
+  scatteredWavelengthNm,
+  wavelengthFromEnergyNm,
+  wavelengthFromFrequencyNm,
+  wavelengthFromWavenumberNm,
+  wavenumberPerCm,
 } from "./quantities.ts";
 
 describe("light in vacuum", () => {
@@ -14,7 +21,9 @@ describe("light in vacuum", () => {
     expect(wavelengthFromWavenumberNm(wavenumberPerCm(546.2268))).toBeCloseTo(546.2268, 12);
     expect(wavelengthFromFrequencyNm(frequencyTHz(546.2268))).toBeCloseTo(546.2268, 12);
     expect(wavelengthFromEnergyNm(photonEnergyEv(546.2268))).toBeCloseTo(546.2268, 12);
-    expect(scatteredWavelengthNm(532.1, ramanShift({ vacuumNm: 532.1, vacuumUncNm: 0 }, 562.7, 0).shiftPerCm)).toBeCloseTo(562.7, 11);
+    expect(
+      scatteredWavelengthNm(532.1, ramanShift({ vacuumNm: 532.1, vacuumUncNm: 0 }, 562.7, 0).shiftPerCm),
+    ).toBeCloseTo(562.7, 11);
   });
   test("Raman shift from 500 to 520 nm: 20000 - 19230.769 = 769.231 cm-1; a laser 0.1 nm wrong moves it by 4 cm-1", () => {
     const shift = ramanShift({ vacuumNm: 500, vacuumUncNm: 0.1 }, 520, 0);
@@ -24,7 +33,10 @@ describe("light in vacuum", () => {
     expect(shift.shiftUncPerCm).toBeCloseTo(4, 12);
   });
   test("uncertainties of laser and line add in quadrature: 40 x 0.1 and (1e7 / 520²) x 0.1", () => {
-    expect(ramanShift({ vacuumNm: 500, vacuumUncNm: 0.1 }, 520, 0.1).shiftUncPerCm).toBeCloseTo(Math.sqrt(16 + (1e7 / 520 / 520 / 10) ** 2), 10);
+    expect(ramanShift({ vacuumNm: 500, vacuumUncNm: 0.1 }, 520, 0.1).shiftUncPerCm).toBeCloseTo(
+      Math.sqrt(16 + (1e7 / 520 / 520 / 10) ** 2),
+      10,
+    );
   });
   test("refuses what is no wavelength", () => {
     expect(() => wavenumberPerCm(0)).toThrow(RangeError);

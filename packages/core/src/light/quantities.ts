@@ -82,6 +82,7 @@ export function ramanShift(laser: LaserLine, scatteredVacuumNm: number, scattere
 /** Vacuum wavelength, nm, at which a Raman shift, cm-1, of a laser is seen. @throws {RangeError} shift at or beyond the laser's wavenumber */
 export function scatteredWavelengthNm(laserVacuumNm: number, shiftPerCm: number): number {
   const laser = wavenumberPerCm(laserVacuumNm);
-  if (!(shiftPerCm < laser)) throw new RangeError(`A shift must be smaller than the laser's ${laser} cm-1; got ${shiftPerCm}`);
+  if (!(shiftPerCm < laser))
+    throw new RangeError(`A shift must be smaller than the laser's ${laser} cm-1; got ${shiftPerCm}`);
   return 1e7 / (laser - shiftPerCm);
 }

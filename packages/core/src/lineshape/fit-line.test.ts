@@ -19,7 +19,11 @@ function windowOf(lines: LineStart[], samples: number, pixelIntegrated: boolean,
   });
   return { positions, counts, countsUnc: new Float64Array(samples).fill(unc), pixelIntegrated, noiseCorrelation: 0 };
 }
-const line = (centre: number, fwhm: number, peakHeightCounts: number): LineStart => ({ centre, fwhm, peakHeightCounts });
+const line = (centre: number, fwhm: number, peakHeightCounts: number): LineStart => ({
+  centre,
+  fwhm,
+  peakHeightCounts,
+});
 
 describe("gaussian and its integral", () => {
   test("agree with exp and erf to 1e-14 everywhere", () => {
@@ -31,7 +35,13 @@ describe("gaussian and its integral", () => {
 });
 
 describe("fitLines without noise returns what was put in", () => {
-  test.each([[2, true], [2, false], [4.3, true], [1.2, true], [9, false]])("fwhm %d, pixel-integrated %s", (fwhm, pixel) => {
+  test.each([
+    [2, true],
+    [2, false],
+    [4.3, true],
+    [1.2, true],
+    [9, false],
+  ])("fwhm %d, pixel-integrated %s", (fwhm, pixel) => {
     const truth = line(10.237, fwhm, 1000);
     const fit = fitLines(windowOf([truth], 24, pixel), [line(10.8, fwhm * 1.3, 700)]);
     if (fit.outcome !== "fitted") throw new Error(fit.detail);
@@ -63,7 +73,10 @@ describe("fitLines without noise returns what was put in", () => {
 
 describe("fitLines refuses", () => {
   test("too few samples", () => {
-    expect(fitLines(windowOf([line(2, 2, 100)], 5, true), [line(2, 2, 100)])).toMatchObject({ outcome: "refused", reason: "too-few-samples" });
+    expect(fitLines(windowOf([line(2, 2, 100)], 5, true), [line(2, 2, 100)])).toMatchObject({
+      outcome: "refused",
+      reason: "too-few-samples",
+    });
   });
   test("a flat window", () => {
     const flat = windowOf([], 20, true);
@@ -73,7 +86,9 @@ describe("fitLines refuses", () => {
     const good = windowOf([line(10, 3, 100)], 20, true);
     expect(() => fitLines(good, [])).toThrow(RangeError);
     expect(() => fitLines({ ...good, countsUnc: new Float64Array(20) }, [line(10, 3, 100)])).toThrow(/above 0/);
-    expect(() => fitLines({ ...good, counts: good.counts.map((v, i) => (i === 3 ? NaN : v)) }, [line(10, 3, 100)])).toThrow(/not finite/);
+    expect(() =>
+      fitLines({ ...good, counts: good.counts.map((v, i) => (i === 3 ? NaN : v)) }, [line(10, 3, 100)]),
+    ).toThrow(/not finite/);
   });
 });
 

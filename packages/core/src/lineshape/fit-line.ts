@@ -87,12 +87,23 @@ export function fitLines(window: LineWindow, starts: readonly LineStart[], optio
   const m = window.positions.length;
   const n = PER_LINE * starts.length + 2;
   if (m < n + 1) {
-    return { outcome: "refused", reason: "too-few-samples", detail: `${m} samples cannot show ${starts.length} line(s): at least ${n + 1} are needed.` };
+    return {
+      outcome: "refused",
+      reason: "too-few-samples",
+      detail: `${m} samples cannot show ${starts.length} line(s): at least ${n + 1} are needed.`,
+    };
   }
   const model = new GaussianLines(window, starts.length);
-  const result = minimise(model, model.startParameters(starts), { maxIterations: options.maxIterations ?? 60, tolerance: 1e-4 });
+  const result = minimise(model, model.startParameters(starts), {
+    maxIterations: options.maxIterations ?? 60,
+    tolerance: 1e-4,
+  });
   if (result.outcome === "iterations" || result.outcome === "bad-start" || result.covariance === null) {
-    return { outcome: "refused", reason: "not-converged", detail: `The fit did not settle after ${result.iterations} steps.` };
+    return {
+      outcome: "refused",
+      reason: "not-converged",
+      detail: `The fit did not settle after ${result.iterations} steps.`,
+    };
   }
   const p = result.parameters;
   const refusal = model.findRefusal(p, starts.length);
@@ -124,8 +135,16 @@ export function fitLines(window: LineWindow, starts: readonly LineStart[], optio
       areaCounts: p[at + 2]! * std * SQRT_TWO_PI,
     };
   });
-  if (lines.some((line) => !(line.centreUnc > 0 && line.centreUnc < Infinity && line.fwhmUnc > 0 && line.fwhmUnc < Infinity))) {
-    return { outcome: "refused", reason: "not-converged", detail: "The samples do not fix the line's position: its uncertainty has no finite value." };
+  if (
+    lines.some(
+      (line) => !(line.centreUnc > 0 && line.centreUnc < Infinity && line.fwhmUnc > 0 && line.fwhmUnc < Infinity),
+    )
+  ) {
+    return {
+      outcome: "refused",
+      reason: "not-converged",
+      detail: "The samples do not fix the line's position: its uncertainty has no finite value.",
+    };
   }
   return {
     outcome: "fitted",
@@ -147,15 +166,24 @@ function checkWindow(window: LineWindow, starts: readonly LineStart[]): void {
   const { positions, counts, countsUnc, noiseCorrelation } = window;
   const m = positions.length;
   if (starts.length === 0) throw new RangeError("fitLines needs at least one start");
-  if (counts.length !== m || countsUnc.length !== m) throw new RangeError(`Lengths differ: ${m} positions, ${counts.length} counts, ${countsUnc.length} uncertainties`);
+  if (counts.length !== m || countsUnc.length !== m)
+    throw new RangeError(`Lengths differ: ${m} positions, ${counts.length} counts, ${countsUnc.length} uncertainties`);
   for (let i = 0; i < m; i++) {
-    if (!Number.isFinite(positions[i]) || !Number.isFinite(counts[i])) throw new RangeError(`Sample ${i} is not finite`);
-    if (!(countsUnc[i]! > 0 && countsUnc[i]! < Infinity)) throw new RangeError(`countsUnc[${i}] must be above 0 and finite; got ${countsUnc[i]}`);
-    if (i > 0 && !(positions[i]! > positions[i - 1]!)) throw new RangeError(`Positions must increase; they do not at sample ${i}`);
+    if (!Number.isFinite(positions[i]) || !Number.isFinite(counts[i]))
+      throw new RangeError(`Sample ${i} is not finite`);
+    if (!(countsUnc[i]! > 0 && countsUnc[i]! < Infinity))
+      throw new RangeError(`countsUnc[${i}] must be above 0 and finite; got ${countsUnc[i]}`);
+    if (i > 0 && !(positions[i]! > positions[i - 1]!))
+      throw new RangeError(`Positions must increase; they do not at sample ${i}`);
   }
-  if (!(noiseCorrelation > -1 && noiseCorrelation < 1)) throw new RangeError(`noiseCorrelation must lie between -1 and 1; got ${noiseCorrelation}`);
+  if (!(noiseCorrelation > -1 && noiseCorrelation < 1))
+    throw new RangeError(`noiseCorrelation must lie between -1 and 1; got ${noiseCorrelation}`);
   for (const start of starts) {
-    if (!Number.isFinite(start.centre) || !(start.fwhm > 0 && start.fwhm < Infinity) || !Number.isFinite(start.peakHeightCounts)) {
+    if (
+      !Number.isFinite(start.centre) ||
+      !(start.fwhm > 0 && start.fwhm < Infinity) ||
+      !Number.isFinite(start.peakHeightCounts)
+    ) {
       throw new RangeError("A start needs a finite centre and height and a width above 0");
     }
   }
@@ -171,7 +199,10 @@ class GaussianLines implements LeastSquaresProblem {
   private readonly first: number;
   private readonly last: number;
 
-  constructor(private readonly window: LineWindow, private readonly lineCount: number) {
+  constructor(
+    private readonly window: LineWindow,
+    private readonly lineCount: number,
+  ) {
     const { positions } = window;
     const m = positions.length;
     this.parameterCount = PER_LINE * lineCount + 2;
@@ -308,13 +339,21 @@ class GaussianLines implements LeastSquaresProblem {
       const centre = p[PER_LINE * k]!;
       const std = p[PER_LINE * k + 1]!;
       if (!(centre >= positions[0]! && centre <= positions[positions.length - 1]!)) {
-        return { outcome: "refused", reason: "centre-outside-window", detail: "The fitted centre lies outside the fitted samples." };
+        return {
+          outcome: "refused",
+          reason: "centre-outside-window",
+          detail: "The fitted centre lies outside the fitted samples.",
+        };
       }
       if (!(p[PER_LINE * k + 2]! > 0)) {
         return { outcome: "refused", reason: "not-a-line", detail: "The fitted height is not above the background." };
       }
       if (std <= 1.01 * this.leastStd || std >= this.span) {
-        return { outcome: "refused", reason: "not-a-line", detail: "The fitted width is not one that these samples can show." };
+        return {
+          outcome: "refused",
+          reason: "not-a-line",
+          detail: "The fitted width is not one that these samples can show.",
+        };
       }
     }
     return null;

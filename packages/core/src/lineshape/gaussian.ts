@@ -54,8 +54,12 @@ export function gaussian(u: number): number {
   const h = a - row / (STRIDE * STEPS_PER_UNIT);
   const t = table;
   return (
-    t[row + 1]! + h * (t[row + 2]! + h * (t[row + 3]! + h * (t[row + 4]! + h * (t[row + 5]! + h * (t[row + 6]! +
-    h * (t[row + 7]! + h * t[row + 8]!))))))
+    t[row + 1]! +
+    h *
+      (t[row + 2]! +
+        h *
+          (t[row + 3]! +
+            h * (t[row + 4]! + h * (t[row + 5]! + h * (t[row + 6]! + h * (t[row + 7]! + h * t[row + 8]!))))))
   );
 }
 
@@ -67,7 +71,15 @@ export function gaussianIntegral(u: number): number {
   const h = a - row / (STRIDE * STEPS_PER_UNIT);
   const t = table;
   const integral =
-    t[row]! + h * (t[row + 1]! + h * (t[row + 2]! / 2 + h * (t[row + 3]! / 3 + h * (t[row + 4]! / 4 + h * (t[row + 5]! / 5 +
-    h * (t[row + 6]! / 6 + h * (t[row + 7]! / 7 + (h * t[row + 8]!) / 8)))))));
+    t[row]! +
+    h *
+      (t[row + 1]! +
+        h *
+          (t[row + 2]! / 2 +
+            h *
+              (t[row + 3]! / 3 +
+                h *
+                  (t[row + 4]! / 4 +
+                    h * (t[row + 5]! / 5 + h * (t[row + 6]! / 6 + h * (t[row + 7]! / 7 + (h * t[row + 8]!) / 8)))))));
   return u < 0 ? -integral : integral;
 }

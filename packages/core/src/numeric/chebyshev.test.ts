@@ -1,5 +1,11 @@
 import { expect, test } from "vitest";
-import { chebyshevArgument, chebyshevBasis, chebyshevToPowers, differentiateChebyshev, evaluateChebyshev } from "./chebyshev.ts";
+import {
+  chebyshevArgument,
+  chebyshevBasis,
+  chebyshevToPowers,
+  differentiateChebyshev,
+  evaluateChebyshev,
+} from "./chebyshev.ts";
 
 test("T_0 … T_3 at t = 0.5 are 1, 0.5, -0.5, -1", () => {
   expect(Array.from(chebyshevBasis(3, 0.5))).toEqual([1, 0.5, -0.5, -1]);

@@ -1,19 +1,36 @@
 import { describe, expect, test } from "vitest";
 import {
-  binomialUpperTail, chiSquareCdf, chiSquareUpperTail, normalCdf, normalQuantile, poissonUpperTail, studentCdf, studentQuantile,
+  binomialUpperTail,
+  chiSquareCdf,
+  chiSquareUpperTail,
+  normalCdf,
+  normalQuantile,
+  poissonUpperTail,
+  studentCdf,
+  studentQuantile,
 } from "./distributions.ts";
 
 describe("distributions", () => {
   // Exact values computed with mpmath 1.3.0 at 40 digits.
   test.each([
-    [0.97725, 2.0000024438996027], [0.025, -1.9599639845400542], [1e-300, -37.0470962993612], [0.3, -0.52440051270804078],
+    [0.97725, 2.0000024438996027],
+    [0.025, -1.9599639845400542],
+    [1e-300, -37.0470962993612],
+    [0.3, -0.52440051270804078],
   ])("normal quantile of %d is %d", (p, z) => {
     expect(Math.abs(normalQuantile(p) / z - 1)).toBeLessThan(1e-12);
     expect(Math.abs(normalCdf(z) / p - 1)).toBeLessThan(1e-12);
   });
   // GUM (JCGM 100:2008) table G.2, t for 95.45 %: printed to two decimals.
-  test.each([[1, 13.97], [2, 4.53], [5, 2.65], [10, 2.28], [20, 2.13], [50, 2.05], [100, 2.025]])(
-    "Student t for 95.45 %% and %d degrees of freedom is %d", (dof, printed) => {
+  test.each([
+    [1, 13.97],
+    [2, 4.53],
+    [5, 2.65],
+    [10, 2.28],
+    [20, 2.13],
+    [50, 2.05],
+    [100, 2.025],
+  ])("Student t for 95.45 %% and %d degrees of freedom is %d", (dof, printed) => {
     expect(Math.abs(studentQuantile(0.5 + 0.9545 / 2, dof) - printed)).toBeLessThan(0.0051);
   });
   test("Student with one degree of freedom is Cauchy: t(0.75) = 1, cdf(1) = 3/4", () => {

@@ -29,7 +29,8 @@ const LOWEST_EXPONENT = -1074;
 const POWERS_OF_TWO = new Float64Array(1023 - LOWEST_EXPONENT + 1);
 POWERS_OF_TWO[-LOWEST_EXPONENT] = 1;
 for (let e = 1; e <= 1023; e++) POWERS_OF_TWO[e - LOWEST_EXPONENT] = 2 * POWERS_OF_TWO[e - 1 - LOWEST_EXPONENT]!;
-for (let e = -1; e >= LOWEST_EXPONENT; e--) POWERS_OF_TWO[e - LOWEST_EXPONENT] = POWERS_OF_TWO[e + 1 - LOWEST_EXPONENT]! / 2;
+for (let e = -1; e >= LOWEST_EXPONENT; e--)
+  POWERS_OF_TWO[e - LOWEST_EXPONENT] = POWERS_OF_TWO[e + 1 - LOWEST_EXPONENT]! / 2;
 
 const float = new Float64Array(1);
 const words = new Uint32Array(float.buffer);
@@ -71,8 +72,20 @@ export function expm1(x: number): number {
   if (x > 40) return exp(x);
   if (Math.abs(x) < 0.35) {
     const tail =
-      1 / 6 + x * (1 / 24 + x * (1 / 120 + x * (1 / 720 + x * (1 / 5040 + x * (1 / 40320 + x * (1 / 362880 +
-      x * (1 / 3628800 + x * (1 / 39916800 + x * (1 / 479001600 + x / 6227020800)))))))));
+      1 / 6 +
+      x *
+        (1 / 24 +
+          x *
+            (1 / 120 +
+              x *
+                (1 / 720 +
+                  x *
+                    (1 / 5040 +
+                      x *
+                        (1 / 40320 +
+                          x *
+                            (1 / 362880 +
+                              x * (1 / 3628800 + x * (1 / 39916800 + x * (1 / 479001600 + x / 6227020800)))))))));
     return x + (0.5 * x * x + x * x * x * tail);
   }
   const k = Math.round(x * INVERSE_LN2_32);
@@ -113,8 +126,17 @@ function logOfSum(k: number, f: number, tail: number): number {
   const s = f / (2 + f);
   const z = s * s;
   const series =
-    z * (2 / 3 + z * (2 / 5 + z * (2 / 7 + z * (2 / 9 + z * (2 / 11 + z * (2 / 13 + z * (2 / 15 + z * (2 / 17 +
-    z * (2 / 19 + z * (2 / 21 + z * (2 / 23)))))))))));
+    z *
+    (2 / 3 +
+      z *
+        (2 / 5 +
+          z *
+            (2 / 7 +
+              z *
+                (2 / 9 +
+                  z *
+                    (2 / 11 +
+                      z * (2 / 13 + z * (2 / 15 + z * (2 / 17 + z * (2 / 19 + z * (2 / 21 + z * (2 / 23)))))))))));
   const half = 0.5 * f * f;
   if (k === 0) return f - (half - (s * (half + series) + tail));
   return k * LN2_HI - (half - (s * (half + series) + (k * LN2_LO + tail)) - f);
@@ -186,8 +208,14 @@ function logDouble(x: number): number {
   const thirdLow = low;
   const z = zHigh;
   const rest =
-    cubeHigh * z * (2 / 5 + z * (2 / 7 + z * (2 / 9 + z * (2 / 11 + z * (2 / 13 + z * (2 / 15 + z * (2 / 17 +
-    z * (2 / 19 + z * (2 / 21 + z * (2 / 23))))))))));
+    cubeHigh *
+    z *
+    (2 / 5 +
+      z *
+        (2 / 7 +
+          z *
+            (2 / 9 +
+              z * (2 / 11 + z * (2 / 13 + z * (2 / 15 + z * (2 / 17 + z * (2 / 19 + z * (2 / 21 + z * (2 / 23))))))))));
   let high = twoSum(2 * sHigh, thirdHigh);
   let rounded = low + (2 * sLow + thirdLow + rest);
   high = twoSum(k * LN2_HI, high);

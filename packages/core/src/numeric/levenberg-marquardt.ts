@@ -48,28 +48,38 @@ const EPSILON = 2.220446049250313e-16;
 const SMALLEST_DAMPING = 1e-200;
 
 /** Minimise from `start` (not changed). @throws {RangeError} caller bugs: wrong length, fewer residuals than parameters */
-export function minimise(problem: LeastSquaresProblem, start: ArrayLike<number>, options: MinimiseOptions = {}): Minimum {
+export function minimise(
+  problem: LeastSquaresProblem,
+  start: ArrayLike<number>,
+  options: MinimiseOptions = {},
+): Minimum {
   const n = problem.parameterCount;
   const m = problem.residualCount;
-  if (start.length !== n || m < n || n < 1) throw new RangeError(`Cannot fit ${n} parameters (${start.length} given) to ${m} residuals`);
+  if (start.length !== n || m < n || n < 1)
+    throw new RangeError(`Cannot fit ${n} parameters (${start.length} given) to ${m} residuals`);
   const maxIterations = options.maxIterations ?? 100;
   const tolerance = options.tolerance ?? 1e-9;
 
-  let parameters = Float64Array.from(start);
-  let trial = new Float64Array(n);
-  let residuals = new Float64Array(m);
-  let trialResiduals = new Float64Array(m);
-  const jacobian = new Float64Array(m * n);
-  const work = new Float64Array(m);
-  const r = new Float64Array(n * n);
-  const projected = new Float64Array(n);
-  const scale = new Float64Array(n);
-  const step = new Float64Array(n);
-  const damped = new DampedSolver(n);
+  // One block for everything: many small fits are made, and memory asked for piece by piece costs more than they do.
+  const room = new Float64Array(m * n + 3 * m + 2 * n * n + 8 * n);
+  let used = 0;
+  const take = (length: number): Float64Array => room.subarray(used, (used += length));
+  let parameters = take(n);
+  parameters.set(start);
+  let trial = take(n);
+  let residuals = take(m);
+  let trialResiduals = take(m);
+  const jacobian = take(m * n);
+  const work = take(m);
+  const r = take(n * n);
+  const projected = take(n);
+  const scale = take(n);
+  const step = take(n);
+  const damped = new DampedSolver(n, take);
 
   const finish = (outcome: Minimum["outcome"], sumOfSquares: number, iterations: number): Minimum => ({
     outcome,
-    parameters,
+    parameters: parameters.slice(),
     covariance: outcome === "bad-start" ? null : invertNormal(r, n),
     sumOfSquares,
     degreesOfFreedom: m - n,
@@ -225,11 +235,14 @@ class DampedSolver {
   private readonly row: Float64Array;
   private readonly helper: Float64Array;
 
-  constructor(private readonly n: number) {
-    this.triangle = new Float64Array(n * n);
-    this.right = new Float64Array(n);
-    this.row = new Float64Array(n);
-    this.helper = new Float64Array(n);
+  constructor(
+    private readonly n: number,
+    take: (length: number) => Float64Array,
+  ) {
+    this.triangle = take(n * n);
+    this.right = take(n);
+    this.row = take(n);
+    this.helper = take(n);
   }
 
   solve(r: Float64Array, q: Float64Array, scale: Float64Array, radius: number, step: Float64Array): void {

@@ -92,17 +92,27 @@ export function solveLeastSquares(
   };
 }
 
-function checkInput(design: Float64Array, m: number, n: number, y: ArrayLike<number>, unc: ArrayLike<number> | null): void {
+function checkInput(
+  design: Float64Array,
+  m: number,
+  n: number,
+  y: ArrayLike<number>,
+  unc: ArrayLike<number> | null,
+): void {
   if (!(Number.isInteger(m) && Number.isInteger(n) && n >= 1 && m >= n)) {
     throw new RangeError(`Needs at least as many observations as coefficients; got ${m} and ${n}`);
   }
   if (design.length !== m * n || y.length !== m || (unc && unc.length !== m)) {
-    throw new RangeError(`Lengths differ: design ${design.length}, y ${y.length}, unc ${unc?.length ?? "none"} for ${m} x ${n}`);
+    throw new RangeError(
+      `Lengths differ: design ${design.length}, y ${y.length}, unc ${unc?.length ?? "none"} for ${m} x ${n}`,
+    );
   }
-  for (let i = 0; i < design.length; i++) if (!Number.isFinite(design[i])) throw new RangeError(`design[${i}] is not finite`);
+  for (let i = 0; i < design.length; i++)
+    if (!Number.isFinite(design[i])) throw new RangeError(`design[${i}] is not finite`);
   for (let i = 0; i < m; i++) {
     if (!Number.isFinite(y[i])) throw new RangeError(`y[${i}] is not finite`);
-    if (unc && !(unc[i]! > 0 && unc[i]! < Infinity)) throw new RangeError(`unc[${i}] must be above 0 and finite; got ${unc[i]}`);
+    if (unc && !(unc[i]! > 0 && unc[i]! < Infinity))
+      throw new RangeError(`unc[${i}] must be above 0 and finite; got ${unc[i]}`);
   }
 }
 
@@ -164,7 +174,13 @@ function applyTranspose(columns: Float64Array, m: number, rank: number, vector: 
   return result;
 }
 
-function solveTriangular(columns: Float64Array, m: number, rank: number, diagonal: Float64Array, right: Float64Array): Float64Array {
+function solveTriangular(
+  columns: Float64Array,
+  m: number,
+  rank: number,
+  diagonal: Float64Array,
+  right: Float64Array,
+): Float64Array {
   const solution = new Float64Array(rank);
   for (let k = rank - 1; k >= 0; k--) {
     let sum = right[k]!;
@@ -175,8 +191,14 @@ function solveTriangular(columns: Float64Array, m: number, rank: number, diagona
 }
 
 function covarianceOf(
-  columns: Float64Array, m: number, n: number, rank: number, diagonal: Float64Array,
-  order: Int32Array, scales: Float64Array, variance: number,
+  columns: Float64Array,
+  m: number,
+  n: number,
+  rank: number,
+  diagonal: Float64Array,
+  order: Int32Array,
+  scales: Float64Array,
+  variance: number,
 ): Float64Array {
   const inverse = new Float64Array(rank * rank);
   for (let c = 0; c < rank; c++) {

@@ -62,8 +62,12 @@ export function erfc(x: number): number {
 function stirlingSeries(x: number): number {
   const z = 1 / (x * x);
   return (
-    (1 / 12 - z * (1 / 360 - z * (1 / 1260 - z * (1 / 1680 - z * (1 / 1188 - z * (691 / 360360 - z * (1 / 156 -
-    z * (3617 / 122400)))))))) / x
+    (1 / 12 -
+      z *
+        (1 / 360 -
+          z *
+            (1 / 1260 - z * (1 / 1680 - z * (1 / 1188 - z * (691 / 360360 - z * (1 / 156 - z * (3617 / 122400)))))))) /
+    x
   );
 }
 

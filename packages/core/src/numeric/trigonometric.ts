@@ -58,8 +58,14 @@ function reduce(x: number): number {
 function sinKernel(r: number, low: number): number {
   const z = r * r;
   const series =
-    -1 / 6 + z * (1 / 120 + z * (-1 / 5040 + z * (1 / 362880 + z * (-1 / 39916800 + z * (1 / 6227020800 +
-    z * (-1 / 1307674368000 + z * (1 / 355687428096000)))))));
+    -1 / 6 +
+    z *
+      (1 / 120 +
+        z *
+          (-1 / 5040 +
+            z *
+              (1 / 362880 +
+                z * (-1 / 39916800 + z * (1 / 6227020800 + z * (-1 / 1307674368000 + z * (1 / 355687428096000)))))));
   return r + (z * r * series + low * (1 - 0.5 * z));
 }
 
@@ -67,8 +73,10 @@ function sinKernel(r: number, low: number): number {
 function cosKernel(r: number, low: number): number {
   const z = r * r;
   const series =
-    1 / 24 + z * (-1 / 720 + z * (1 / 40320 + z * (-1 / 3628800 + z * (1 / 479001600 + z * (-1 / 87178291200 +
-    z * (1 / 20922789888000))))));
+    1 / 24 +
+    z *
+      (-1 / 720 +
+        z * (1 / 40320 + z * (-1 / 3628800 + z * (1 / 479001600 + z * (-1 / 87178291200 + z * (1 / 20922789888000))))));
   const half = 0.5 * z;
   const leading = 1 - half;
   return leading + (1 - leading - half + (z * z * series - r * low));

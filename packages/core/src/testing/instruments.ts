@@ -9,8 +9,20 @@ import { focalLengthForRange, type GratingOptics } from "./true-axis.ts";
 type Changes = Partial<SimulatedInstrument>;
 
 /** Optics of a fixed grating that spread [firstNm, lastNm] over so many pixels. */
-export function opticsForRange(firstNm: number, lastNm: number, samples: number, grooveDensityPerMm: number, pixelPitchUm = 14): GratingOptics {
-  const geometry = { grooveDensityPerMm, incidenceDeg: 12, pixelPitchUm, centreNm: 0.5 * (firstNm + lastNm), centrePx: 0.5 * (samples - 1) };
+export function opticsForRange(
+  firstNm: number,
+  lastNm: number,
+  samples: number,
+  grooveDensityPerMm: number,
+  pixelPitchUm = 14,
+): GratingOptics {
+  const geometry = {
+    grooveDensityPerMm,
+    incidenceDeg: 12,
+    pixelPitchUm,
+    centreNm: 0.5 * (firstNm + lastNm),
+    centrePx: 0.5 * (samples - 1),
+  };
   return { kind: "grating", ...geometry, focalLengthMm: focalLengthForRange(geometry, lastNm - firstNm, samples) };
 }
 

@@ -111,7 +111,8 @@ const HOT_PIXEL_SHARE = [0.02, 0.4] as const;
 /** Simulate one capture; the same options give the same bits. @throws {RangeError} settings that no instrument has */
 export function simulateCapture(options: SimulationOptions): SimulatedCapture {
   const { instrument, lamp } = options;
-  if (!(instrument.samples >= 16 && Number.isInteger(instrument.samples))) throw new RangeError("A capture needs at least 16 samples");
+  if (!(instrument.samples >= 16 && Number.isInteger(instrument.samples)))
+    throw new RangeError("A capture needs at least 16 samples");
   const random = createRandom(options.seed);
   const placed = placeLines(instrument, lamp, random);
   const light = lightOf(instrument, placed);
@@ -120,7 +121,8 @@ export function simulateCapture(options: SimulationOptions): SimulatedCapture {
   disturb(counts, options, random, disturbedSamples);
   counts = smooth(counts, instrument.smoothingSamples);
   for (let i = 0; i < counts.length; i++) {
-    if (instrument.ceilingCounts !== null && counts[i]! > instrument.ceilingCounts) counts[i] = instrument.ceilingCounts;
+    if (instrument.ceilingCounts !== null && counts[i]! > instrument.ceilingCounts)
+      counts[i] = instrument.ceilingCounts;
     if (instrument.isDigitised) counts[i] = Math.max(0, Math.round(counts[i]!));
   }
   return present(options, placed, light, counts, disturbedSamples);
@@ -132,7 +134,9 @@ function publishedNm(line: ReferenceLine, lamp: SimulatedLamp): number {
 
 function fwhmInSamples(instrument: SimulatedInstrument, px: number): number {
   if (instrument.fwhm.unit === "px") return instrument.fwhm.value;
-  const nmPerSample = Math.abs(wavelengthAt(instrument.trueAxis, px + 0.5) - wavelengthAt(instrument.trueAxis, px - 0.5));
+  const nmPerSample = Math.abs(
+    wavelengthAt(instrument.trueAxis, px + 0.5) - wavelengthAt(instrument.trueAxis, px - 0.5),
+  );
   return instrument.fwhm.value / nmPerSample;
 }
 
@@ -188,7 +192,8 @@ function offsetAt(instrument: SimulatedInstrument, i: number): number {
 function detect(instrument: SimulatedInstrument, light: Float64Array, random: Random): Float64Array {
   const { countsPerElectron, readNoiseCounts } = instrument;
   return light.map((signal, i) => {
-    const seen = countsPerElectron > 0 ? countsPerElectron * random.poisson(Math.max(0, signal) / countsPerElectron) : signal;
+    const seen =
+      countsPerElectron > 0 ? countsPerElectron * random.poisson(Math.max(0, signal) / countsPerElectron) : signal;
     return seen + offsetAt(instrument, i) + readNoiseCounts * random.normal();
   });
 }
@@ -238,7 +243,11 @@ export function printedPosition(instrument: SimulatedInstrument, px: number): nu
 }
 
 function present(
-  options: SimulationOptions, placed: readonly PlacedLine[], light: Float64Array, counts: Float64Array, disturbedSamples: number[],
+  options: SimulationOptions,
+  placed: readonly PlacedLine[],
+  light: Float64Array,
+  counts: Float64Array,
+  disturbedSamples: number[],
 ): SimulatedCapture {
   const { instrument, lamp } = options;
   const n = instrument.samples;
@@ -249,7 +258,9 @@ function present(
   const truth = placed.map(({ line, wavelengthNm, px, fwhmPx, height }): TrueLine => {
     const unit = Math.abs(printedPosition(instrument, px + 0.5) - printedPosition(instrument, px - 0.5));
     const top = light[Math.round(px)]!;
-    const noise = Math.sqrt(instrument.readNoiseCounts * instrument.readNoiseCounts + instrument.countsPerElectron * top);
+    const noise = Math.sqrt(
+      instrument.readNoiseCounts * instrument.readNoiseCounts + instrument.countsPerElectron * top,
+    );
     const ceiling = instrument.ceilingCounts ?? Infinity;
     return {
       element: line.element,
@@ -264,7 +275,12 @@ function present(
     };
   });
   const table = {
-    axisHeading: instrument.fileAxis === "pixel" ? "Pixel" : lamp.medium === "vacuum" ? "Vacuum wavelength (nm)" : "Wavelength (nm)",
+    axisHeading:
+      instrument.fileAxis === "pixel"
+        ? "Pixel"
+        : lamp.medium === "vacuum"
+          ? "Vacuum wavelength (nm)"
+          : "Wavelength (nm)",
     axisDecimals: decimals,
     positions,
     countsDecimals: instrument.isDigitised ? 0 : 3,

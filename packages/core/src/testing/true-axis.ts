@@ -76,11 +76,18 @@ export function sampleIndexOf(axis: TrueAxis, wavelengthNm: number, first: numbe
 }
 
 /** Focal length, mm, that spreads a range over the samples: for building optics that fit a wanted range. */
-export function focalLengthForRange(optics: Omit<GratingOptics, "focalLengthMm" | "kind">, rangeNm: number, samples: number): number {
+export function focalLengthForRange(
+  optics: Omit<GratingOptics, "focalLengthMm" | "kind">,
+  rangeNm: number,
+  samples: number,
+): number {
   const grooveNm = 1e6 / optics.grooveDensityPerMm;
   const order = optics.order ?? 1;
   const sine = (order * optics.centreNm) / grooveNm - sin(optics.incidenceDeg * RADIAN);
   // Half the range on each side in angle; exact for a symmetric spread, near enough for any other.
-  const half = 0.5 * (asin(Math.min(0.999, sine + (order * rangeNm) / (2 * grooveNm))) - asin(Math.max(-0.999, sine - (order * rangeNm) / (2 * grooveNm))));
+  const half =
+    0.5 *
+    (asin(Math.min(0.999, sine + (order * rangeNm) / (2 * grooveNm))) -
+      asin(Math.max(-0.999, sine - (order * rangeNm) / (2 * grooveNm))));
   return (samples * optics.pixelPitchUm) / 2000 / tan(half);
 }

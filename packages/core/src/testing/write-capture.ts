@@ -24,7 +24,13 @@ export interface CaptureTable {
 
 export function writeCapture(table: CaptureTable, dialect: CaptureDialect): string {
   const { positions, counts } = table;
-  const separator = { comma: ",", "tab-with-metadata": "\t", "semicolon-decimal-comma": ";", spaces: " ", "comma-descending": "," }[dialect];
+  const separator = {
+    comma: ",",
+    "tab-with-metadata": "\t",
+    "semicolon-decimal-comma": ";",
+    spaces: " ",
+    "comma-descending": ",",
+  }[dialect];
   const lines: string[] = [];
   if (dialect === "tab-with-metadata") {
     for (const [key, value] of Object.entries(table.metadata)) lines.push(`${key}: ${value}`);
