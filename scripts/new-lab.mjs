@@ -27,7 +27,7 @@ await runCommand(async () => {
         env: cleanEnvironment({
           NODE_ENV: "production",
           DATABASE_URL: addresses.appUrl,
-          DATABASE_OWNER_URL: addresses.ownerUrl,
+          DATABASE_OWNER_URL: addresses.ownerUrl ?? undefined,
           ...(publicUrl === undefined ? {} : { PUBLIC_URL: process.env["PUBLIC_URL"] ?? publicUrl }),
         }),
       },

@@ -16,7 +16,8 @@ const largestLogBytes = 20_000_000;
 /**
  * Start the server and wait until it answers.
  *
- * @param {{ program: string, dataDir: string, address: string, variables: Record<string, string>, giveUp: Promise<void> }} options
+ * @param {{ program: string, dataDir: string, address: string | null, variables: Record<string, string>, giveUp: Promise<void> }} options
+ *   `address` null: a worker, which answers nobody: it runs when it has not ended within 3 s;
  *   `variables` are added to the environment; the owner's database address never is; `giveUp` ends the waiting
  * @returns {Promise<Server>}
  * @throws {PlainError} with the end of its log, when it ends or stays silent
@@ -50,7 +51,7 @@ export async function startServer({ program, dataDir, address, variables, giveUp
     await ended;
     clearTimeout(patience);
   };
-  const outcome = await Promise.race([ended, answers(address, 60_000), giveUp]);
+  const outcome = await Promise.race([ended, address === null ? staysUp(3_000) : answers(address, 60_000), giveUp]);
   if (outcome === undefined) await stop();
   else if (outcome !== true) {
     await stop();
@@ -59,6 +60,9 @@ export async function startServer({ program, dataDir, address, variables, giveUp
   }
   return { ended, stop };
 }
+
+/** @param {number} ms */
+const staysUp = (ms) => new Promise((resolve) => setTimeout(() => resolve(true), ms));
 
 /**
  * Whether a Wavekeep answers at an address.

@@ -10,11 +10,21 @@ test("without any variable: the local database with the demo lab, on loopback, p
   expect(readStartSettings({})).toMatchObject({ host: "127.0.0.1", port: 4310, server: null, demo: true });
 });
 
-test.each([
-  ["DATABASE_URL", "DATABASE_OWNER_URL"],
-  ["DATABASE_OWNER_URL", "DATABASE_URL"],
-] as const)("%s alone is refused with a sentence that names %s", (given, missing) => {
-  expect(() => readStartSettings({ [given]: own[given] })).toThrow(`${given} is set, but ${missing} is not.`);
+test("DATABASE_OWNER_URL alone is refused with a sentence that names what is missing", () => {
+  expect(() => readStartSettings({ DATABASE_OWNER_URL: own.DATABASE_OWNER_URL })).toThrow("but DATABASE_URL is not");
+});
+
+test("DATABASE_URL alone is used as it stands: without the owner nothing is migrated", () => {
+  expect(readStartSettings({ DATABASE_URL: own.DATABASE_URL }).server).toEqual({
+    appUrl: own.DATABASE_URL,
+    ownerUrl: null,
+  });
+});
+
+test("an address that is none is refused and its variable named", () => {
+  expect(() => readStartSettings({ ...own, DATABASE_URL: "db.example" })).toThrow(
+    "DATABASE_URL must be an address like",
+  );
 });
 
 test("the app must not sign in as the role that migrates", () => {

@@ -71,15 +71,17 @@ async function start() {
   ensureDataDir(settings.dataDir);
   const port = settings.port === 0 ? await freePort(settings.host) : settings.port;
   const address = addressOf(settings.host, port);
-  if (await runsAlready(settings.dataDir, address)) return;
-  await checkPort(settings.host, port);
+  if (settings.listens) {
+    if (await runsAlready(settings.dataDir, address)) return;
+    await checkPort(settings.host, port);
+  }
 
   const { database, build } = await prepare(settings);
   const server = await step("server", () =>
     startServer({
       program: path.join(build.api, "main.js"),
       dataDir: settings.dataDir,
-      address,
+      address: settings.listens ? address : null,
       giveUp: stopRequested,
       variables: {
         PORT: String(port),
@@ -196,10 +198,14 @@ async function prepareData(settings, cluster, apiBuild) {
   const signInsFile = signInsFileOf(settings.dataDir);
   if (settings.server !== null || cluster === null) {
     const addresses = /** @type {NonNullable<typeof settings.server>} */ (settings.server);
-    await step("schema", (say) => migrateDatabase(addresses, say));
+    const { appUrl: url, ownerUrl } = addresses;
+    await step("schema", async (say, outcome) => {
+      if (ownerUrl === null) outcome("taken as it is: DATABASE_OWNER_URL is not set, so nothing is migrated");
+      else await migrateDatabase({ appUrl: url, ownerUrl }, say);
+    });
     goOn();
-    if (settings.demo && !fs.existsSync(signInsFile)) await seed(addresses.ownerUrl, apiBuild, signInsFile);
-    return addresses.appUrl;
+    if (settings.demo && ownerUrl !== null && !fs.existsSync(signInsFile)) await seed(ownerUrl, apiBuild, signInsFile);
+    return url;
   }
   const { name, isNew } = await prepareDatabase(cluster);
   if (!isNew && !settings.demo && fs.existsSync(signInsFile)) {
@@ -239,12 +245,16 @@ function signInsFileOf(dataDir) {
  * @param {string} address
  */
 function announce(settings, address) {
+  if (!settings.listens) {
+    process.stdout.write("\nWavekeep's worker is running.\nCtrl-C stops it.\n");
+    return;
+  }
   process.stdout.write(`\nWavekeep is ready: ${address}\n`);
   const file = signInsFileOf(settings.dataDir);
   if (settings.demo && fs.existsSync(file)) {
     process.stdout.write("\nSign in to the demo lab as\n");
-    for (const { email, password, who } of JSON.parse(fs.readFileSync(file, "utf8"))) {
-      process.stdout.write(`  ${email.padEnd(32)} ${password.padEnd(24)} ${who}\n`);
+    for (const { email, password, name, role } of JSON.parse(fs.readFileSync(file, "utf8"))) {
+      process.stdout.write(`  ${email.padEnd(28)} ${password.padEnd(24)} ${name}, ${role}\n`);
     }
     process.stdout.write(`\nMail sent by the demo lab: ${address}/dev/mail\n`);
   } else {

@@ -14,7 +14,8 @@ import { cleanEnvironment, projectDir } from "../../scripts/processes.mjs";
 export interface DemoSignIn {
   email: string;
   password: string;
-  who: string;
+  name: string;
+  role: string;
 }
 export interface RunningWavekeep {
   address: string;

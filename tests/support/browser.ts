@@ -54,10 +54,10 @@ export function useBrowser(): BrowserHandle {
 /**
  * Sign in as one of the demo lab's people.
  *
- * @param who part of what `npm start` prints beside the e-mail, e.g. "technician"
+ * @param who part of the name or the role that `npm start` prints beside the e-mail, e.g. "technician"
  */
 export async function signIn(page: Page, who: string): Promise<void> {
-  const person = inject("wavekeep").signIns.find((signInOf) => signInOf.who.includes(who));
+  const person = inject("wavekeep").signIns.find(({ name, role }) => `${name}, ${role}`.includes(who));
   if (person === undefined) throw new Error(`The demo lab prints no sign-in for "${who}".`);
   await page.getByLabel("E-mail").fill(person.email);
   await page.getByLabel("Password", { exact: true }).fill(person.password);
