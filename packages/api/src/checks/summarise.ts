@@ -23,7 +23,7 @@ export function holdToProcedure(analysis: Analysis, least: number, procedureCode
       );
     if (reasons.length === 0) return summary;
     const verdict = summary.verdict === "pass" ? "inconclusive" : summary.verdict;
-    return { ...summary, verdict, nearLimit: verdict === "pass" && summary.nearLimit, reasons: [...summary.reasons, ...reasons] };
+    return { ...summary, verdict, nearLimit: false, reasons: [...summary.reasons, ...reasons] };
   };
   return {
     ...analysis,

@@ -3,28 +3,22 @@
  *
  * Units follow a narrow no-break space (U+202F); the minus is U+2212; errors carry their sign.
  */
+import { roundResult } from "@wavekeep/core";
 import type { StoredResult } from "../db/schema/analyses.ts";
-import { decimalsFor } from "./rounding.ts";
 
 export const narrowSpace = "\u202f";
 const minus = "\u2212";
 
-/** A number with so many decimals and a true minus. */
-export function numberText(value: number, decimals: number): string {
-  const text = Math.abs(value).toFixed(decimals);
-  return value < 0 && Number(text) !== 0 ? `${minus}${text}` : text;
-}
-
-/** The same with its sign always shown: an error. */
-export function signedText(value: number, decimals: number): string {
-  const text = numberText(value, decimals);
-  return text.startsWith(minus) || Number(text) === 0 ? text : `+${text}`;
+/** A number's text with its sign always shown, as errors are: a true minus, no sign on zero. */
+export function withSign(text: string): string {
+  if (Number(text) === 0) return text.replace("-", "");
+  return text.startsWith("-") ? `${minus}${text.slice(1)}` : `+${text}`;
 }
 
 /** `+0.545 ± 0.037 nm`: U to two digits, the error to the same place. */
 export function errorText(errorNm: number, expandedUncNm: number): string {
-  const { decimals, rounded } = decimalsFor(expandedUncNm);
-  return `${signedText(errorNm, decimals)} ± ${rounded}${narrowSpace}nm`;
+  const { value, expandedUnc } = roundResult(errorNm, expandedUncNm);
+  return `${withSign(value)} ± ${expandedUnc}${narrowSpace}nm`;
 }
 
 /** A tolerance with its own digits, at least two decimals: `0.50 nm`. */

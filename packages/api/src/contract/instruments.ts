@@ -50,6 +50,9 @@ export const moveDueDateInput = z.object({ dueOn: date, assignedToId: id.nullabl
 /** A manager confirms a hold (out of service, restricted) or lifts it; also quarantine and back. */
 export const changeStandingInput = z.object({ standing: z.enum(["in-service", "on-hold", "restricted", "out-of-service", "quarantined"]), restriction: z.string().trim().max(400).nullable(), reason, version });
 
+/** The axis that a submitted check has fitted is put in force: an adjustment of a configuration that counts pixels. */
+export const adoptAxisInput = z.object({ checkId: id, reason, version });
+
 export const eventKind = z.enum(["moved", "serviced", "lamp-changed", "slit-changed", "adjusted", "firmware", "environment", "other"]);
 export const instrumentEvent = z.object({
   id, configurationId: id, kind: eventKind, title: z.string(), happenedOn: date, note: z.string(), breaksDrift: z.boolean(), recordedAt: instant, recordedBy: personRef,

@@ -45,6 +45,7 @@ export const permissions = {
   "tolerance.change": { roles: ["manager"] },
   "standing.change": { roles: ["manager"] },
   "due.change": { roles: ["manager"] },
+  "axis.change": { roles: ["manager"] },
   "event.log": { roles: ["technician", "manager"], relation: "owns-instrument" },
   "source.read": { member: true },
   "source.change": { roles: ["manager"] },

@@ -74,6 +74,7 @@ export const routes = {
   changeTolerance: { method: "post", path: "/configurations/:configurationId/tolerance", policy: "tolerance.change", summary: "Set a new tolerance", body: instruments.changeToleranceInput, reply: instruments.configuration },
   changeStanding: { method: "post", path: "/configurations/:configurationId/standing", policy: "standing.change", summary: "Confirm or lift a hold", body: instruments.changeStandingInput, reply: instruments.configuration },
   moveDueDate: { method: "post", path: "/configurations/:configurationId/due", policy: "due.change", summary: "Move the due date, assign", body: instruments.moveDueDateInput, reply: instruments.configuration },
+  adoptAxis: { method: "post", path: "/configurations/:configurationId/axes", policy: "axis.change", summary: "Put the axis fitted by a check in force", body: instruments.adoptAxisInput, reply: instruments.configuration },
   readDrift: { method: "get", path: "/configurations/:configurationId/drift", policy: "instrument.read", summary: "The drift series", reply: instruments.driftReply },
   logEvent: { method: "post", path: "/events", policy: "event.log", summary: "Log an event of an instrument", body: instruments.logEventInput, reply: instruments.instrumentEvent },
 

@@ -6,7 +6,6 @@ import {
   checks,
   configurations,
   instruments,
-  labs,
   memberships,
   people,
   procedures,
@@ -21,7 +20,6 @@ export type ConfigurationRow = typeof configurations.$inferSelect;
 export type ToleranceRow = typeof toleranceVersions.$inferSelect;
 export type StandingRow = typeof standingEntries.$inferSelect;
 export type AxisRow = typeof axes.$inferSelect;
-export type LabRow = typeof labs.$inferSelect;
 
 /** @throws problem "not-found" */
 export async function findInstrument(tx: Tx, instrumentId: string): Promise<{ instrument: InstrumentRow; ownerName: string }> {
@@ -143,13 +141,6 @@ export async function countChecks(tx: Tx, instrumentId: string): Promise<{ count
     .from(checks)
     .where(eq(checks.instrumentId, instrumentId));
   return row!;
-}
-
-/** The lab's own settings. */
-export async function findLab(tx: Tx, ctx: Pick<Context, "labId">): Promise<LabRow> {
-  const [row] = await tx.select().from(labs).where(eq(labs.id, ctx.labId));
-  if (row === undefined) throw notFound("This lab");
-  return row;
 }
 
 /** A current member, or null. */

@@ -1,7 +1,7 @@
 /** Impact reviews: the exposure window of a failing check, and what was decided about it. Insert-only. */
 import { sql } from "drizzle-orm";
-import { boolean, check, doublePrecision, index, pgTable, primaryKey, text, unique, uuid } from "drizzle-orm/pg-core";
-import { id, instant, labId, tenant, tenantKey, tenantPolicy } from "../columns.ts";
+import { boolean, check, doublePrecision, index, pgTable, text, unique, uuid } from "drizzle-orm/pg-core";
+import { id, instant, labId, tenant, tenantKey } from "../columns.ts";
 import { checks } from "./checks.ts";
 import { configurations, instruments } from "./instruments.ts";
 import { memberKey } from "./people.ts";
@@ -38,7 +38,7 @@ export const impactDecisions = pgTable(
   "impact_decisions",
   {
     labId: labId(),
-    /** Its own key: a review is decided once, and the key decides between two who do it at once. */
+    id: id(),
     reviewId: uuid("review_id").notNull(),
     affected: text("affected").notNull(),
     affectedWork: text("affected_work").notNull(),
@@ -49,10 +49,11 @@ export const impactDecisions = pgTable(
     forOwner: boolean("for_owner").notNull(),
   },
   (t) => [
-    primaryKey({ columns: [t.labId, t.reviewId] }),
+    ...tenant(t),
+    // A review is decided once: the key decides between two who do it at once.
+    unique("impact_decisions_once").on(t.labId, t.reviewId),
     check("impact_decisions_affected", sql`${t.affected} in ('none', 'some', 'unknown')`),
     tenantKey([t.labId, t.reviewId], [impactReviews.labId, impactReviews.id]),
     memberKey(t, t.decidedBy),
-    tenantPolicy(),
   ],
 );

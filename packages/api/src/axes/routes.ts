@@ -1,0 +1,7 @@
+import { routes } from "../contract/routes.ts";
+import { mount, type Api } from "../http/mount.ts";
+import { adoptAxis } from "./adopt.ts";
+
+export function mountAxes(api: Api): void {
+  mount(api, routes.adoptAxis, ({ ctx, params, body }) => adoptAxis(api.db, ctx, params.configurationId, body));
+}
