@@ -635,6 +635,7 @@ CREATE TABLE "alerts" (
 ALTER TABLE "alerts" ENABLE ROW LEVEL SECURITY;--> statement-breakpoint
 CREATE TABLE "impact_decisions" (
 	"lab_id" uuid NOT NULL,
+	"id" uuid NOT NULL,
 	"review_id" uuid NOT NULL,
 	"affected" text NOT NULL,
 	"affected_work" text NOT NULL,
@@ -642,7 +643,8 @@ CREATE TABLE "impact_decisions" (
 	"decided_at" timestamp (3) with time zone NOT NULL,
 	"decided_by" uuid NOT NULL,
 	"for_owner" boolean NOT NULL,
-	CONSTRAINT "impact_decisions_lab_id_review_id_pk" PRIMARY KEY("lab_id","review_id"),
+	CONSTRAINT "impact_decisions_lab_id_id_pk" PRIMARY KEY("lab_id","id"),
+	CONSTRAINT "impact_decisions_once" UNIQUE("lab_id","review_id"),
 	CONSTRAINT "impact_decisions_affected" CHECK ("impact_decisions"."affected" in ('none', 'some', 'unknown'))
 );
 --> statement-breakpoint

@@ -1,6 +1,6 @@
 -- The role that owns the functions above cannot log in; it sees the few tables they need, across labs.
 grant usage, create on schema public to wavekeep_definer;
-grant select on labs, people, credentials, memberships, invitations, bench_devices, password_resets to wavekeep_definer;
+grant select on labs, people, credentials, memberships, invitations, bench_devices, password_resets, instruments, checks to wavekeep_definer;
 grant insert on labs, people, credentials, memberships, password_resets to wavekeep_definer;
 grant update on credentials, memberships, invitations, password_resets to wavekeep_definer;
 --> statement-breakpoint
@@ -18,6 +18,10 @@ drop policy if exists definer on bench_devices;
 create policy definer on bench_devices to wavekeep_definer using (true) with check (true);
 drop policy if exists definer on password_resets;
 create policy definer on password_resets to wavekeep_definer using (true) with check (true);
+drop policy if exists definer on instruments;
+create policy definer on instruments for select to wavekeep_definer using (true);
+drop policy if exists definer on checks;
+create policy definer on checks for select to wavekeep_definer using (true);
 drop policy if exists seeds_demo_labs on labs;
 create policy seeds_demo_labs on labs as restrictive to wavekeep_seeder using (is_demo) with check (is_demo);
 --> statement-breakpoint
@@ -31,7 +35,7 @@ begin
   foreach f in array array[
     'sign_in_lookup(text)', 'own_credentials()', 'set_own_password(text)', 'set_own_pin(text)', 'my_labs()', 'labs_of_email(text)',
     'begin_reset(text, text)', 'finish_reset(text, text)', 'invitation_of(text)', 'accept_invitation(text, text, text)',
-    'bench_device_of(text)', 'bench_credentials(text, uuid)', 'labs_to_visit()'
+    'bench_device_of(text)', 'bench_credentials(text, uuid)', 'labs_to_visit()', 'search_lab(text)'
   ]::regprocedure[] loop
     execute format('alter function %s owner to wavekeep_definer', f);
     execute format('grant execute on function %s to wavekeep_app', f);
