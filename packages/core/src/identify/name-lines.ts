@@ -2,17 +2,16 @@
  * Line by line: which published line is this one, once the axis is known?
  *
  * A name needs a place and odds.
- * Place   within 3.5 standard uncertainties (line, axis without that line, scatter) and 0.35 FWHM of a published line, with
+ * Place   within 3.5 standard uncertainties (line, axis without that line, scatter) and 0.22 FWHM of a published line, with
  *         no other published line that the axis could not tell from it
- * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 100, or 400 where its class was
- *         mostly not found: density of the place times s/(1 - s), s the share of its class (published lines of about its
- *         strength) that was found, against strays spread evenly over the capture;
+ * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 100: density of the place times s/(1 - s), s the share of its class (published lines of about its
+ *         strength) that was found, against strays of its brightness spread evenly over the capture;
  *         a height far from what its published intensity leads to expect counts against it, by no more than a factor of 90
  * Blends  published lines that no other found line claims and that lie within three quarters of a FWHM belong to one found
- *         line. Companions below 5 % of the strongest of the group give no name; what they may pull stays as uncertainty. If the place, judged by the other lines' axis,
- *         fits one strong component alone and contradicts the common centroid, the capture itself shows the lamp's ratio and
- *         the component's name is given with what is left open as its uncertainty; else the centroid, whatever the published
- *         intensities, with half the spread / sqrt 3
+ *         line. Companions below 5 % of the strongest of the group give no name; what they may pull stays as uncertainty. If
+ *         the place, judged by the other lines' axis, makes one component alone likelier than a mixture,
+ *         the capture itself shows the lamp's ratio and that component gives the name, with what is left open as its
+ *         uncertainty; else the centroid, whatever the published intensities, with half the spread / sqrt 3
  */
 import { exp, log } from "../numeric/elementary.ts";
 import { fitCorrection, type CorrectionFit } from "./correction.ts";
@@ -21,24 +20,29 @@ import { lowerBound, type ReferenceTable } from "./reference-table.ts";
 import { correctedNm } from "./score.ts";
 
 const gateSds = 3.5;
-const gateShare = 0.35;
-const saturatedGateShare = 0.5;
+const gateShare = 0.22;
+const saturatedGateShare = 0.35;
+const holdingGateShare = 0.3;
 const leastGateShare = 0.05;
 const rivalSds = 4;
+const rivalShare = 0.1;
 const blendReachShare = 0.75;
 const companionShare = 0.05;
 /** Published ratios are good to a factor of three: an ignored companion pulls by up to this times its published share. */
 const companionFactor = 2;
 const negligiblePullNm = 0.0003;
-/** A component that may carry a blend alone: at least this share of the group's strongest. */
-const carrierShare = 0.2;
-/** Odds asked of a line whose class was mostly found, and of one whose class was mostly not. */
+/** From this many lines on their common agreement tells more than stated uncertainties, which may be generous. */
+const fewestForAgreement = 7;
+const leastShrink = 0.3;
+/** How much likelier one component alone must be than a mixture, published brightness included. */
+const carrierOdds = 1;
+const carrierSds = 2.5;
 const leastOdds = 100;
-const leastOddsOfRare = 400;
-const commonShare = 0.35;
 const largestHeightPenalty = 4.5;
 /** Smallest scatter of ln(height/strength) believed: lamps differ from the tables by a factor of three (1 sd) and more. */
 const leastHeightScatter = 1.2;
+/** Unexplained lines at least this bright beside a line count as strays that it might be one of. */
+const strayHeightShare = 0.3;
 const leastScatterShare = 0.008;
 
 export interface Naming {
@@ -67,7 +71,7 @@ export function nameLines(problem: Problem, table: ReferenceTable, start: Float6
   for (let round = 0; round < 4; round++) {
     for (let i = 0; i < count; i++) places[i] = correctedNm(problem, correction, i);
     const { shares } = shareReferences(problem, table, places);
-    const gate = (round === 0 ? 0.4 : round === 1 ? 0.3 : gateShare) * fwhmNm;
+    const gate = (round === 0 ? 0.4 : holdingGateShare) * fwhmNm;
     let clean = pickTargets(problem, table, places, shares, fit, gate, target, unc, false);
     if (clean < 4) clean = pickTargets(problem, table, places, shares, fit, gate, target, unc, true);
     if (clean < 3) return null;
@@ -215,81 +219,103 @@ function decide(
     explained: new Uint8Array(count),
     fit,
   };
+  const agreement = agreementOf(problem, target, fit);
   for (let i = 0; i < count; i++) {
     const share = shares[i] as number[];
     if (share.length === 0 || problem.usable[i] === 0) continue;
-    const own = problem.lineUncNm[i] as number;
+    const own = agreement.shrink * (problem.lineUncNm[i] as number);
     const axis = fit.axisUncNm[i] as number;
     const sd = Math.sqrt(own * own + axis * axis + fit.scatterNm * fit.scatterNm);
     const most = (problem.saturated[i] === 1 ? saturatedGateShare : gateShare) * fwhmNm;
-    const gate = Math.min(most, Math.max(gateSds * sd, leastGateShare * fwhmNm));
+    const spread = Math.max(sd, agreement.scatterNm);
+    const gate = Math.max(gateSds * spread, leastGateShare * fwhmNm);
     // Where the line itself held the axis, its place on an axis without it.
-    const place = Number.isNaN(target[i] as number)
-      ? (places[i] as number)
-      : (target[i] as number) - (fit.leaveOneOutNm[i] as number);
-    const name = share.length === 1 ? plainName(table, share, place, gate) : blendName(table, share, place, gate, sd);
-    if (name === null) continue;
+    const here = places[i] as number;
+    const place = Number.isNaN(target[i] as number) ? here : (target[i] as number) - (fit.leaveOneOutNm[i] as number);
+    const name = share.length === 1 ? plainName(table, share) : blendName(table, share, place, sd);
+    const reach = name.isCentroid ? Math.max(gate, 1.6 * name.blendUncNm) : gate;
+    if (Math.abs(name.nm - here) > most || Math.abs(name.nm - place) > reach) continue;
     naming.explained[i] = 1;
-    if (hasRival(table, share, name.nm, Math.max(rivalSds * sd, gate), place)) continue;
+    if (hasRival(table, share, name.nm, Math.max(rivalSds * sd, Math.min(gate, most)), place)) continue;
     naming.reference[i] = name.reference;
     naming.components[i] = share;
     naming.nm[i] = name.nm;
     const pull = pulls[i] as number;
     naming.blendUncNm[i] = Math.sqrt(name.blendUncNm * name.blendUncNm + pull * pull);
-    naming.logOdds[i] = log(0.4 / sd) - 0.5 * ((place - name.nm) / sd) * ((place - name.nm) / sd);
-    if (name.blendUncNm > 0) naming.logOdds[i] = -log(2 * Math.max(gate, 2 * name.blendUncNm));
+    const off = (place - name.nm) / spread;
+    naming.logOdds[i] = name.isCentroid ? -log(2 * reach) : log(0.4 / spread) - 0.5 * off * off;
   }
   keepLikely(problem, table, places, naming);
   return naming;
+}
+
+/** How well the lines that hold the axis agree with it, beside what their uncertainties say. */
+function agreementOf(
+  problem: Problem,
+  target: Float64Array,
+  fit: CorrectionFit,
+): { shrink: number; scatterNm: number } {
+  const sizes: number[] = [];
+  let sum = 0;
+  for (let i = 0; i < problem.count; i++) {
+    if (Number.isNaN(target[i] as number)) continue;
+    const own = problem.lineUncNm[i] as number;
+    const axis = fit.axisUncNm[i] as number;
+    const miss = fit.leaveOneOutNm[i] as number;
+    sizes.push(Math.abs(miss));
+    sum += (miss * miss) / (own * own + axis * axis + fit.scatterNm * fit.scatterNm);
+  }
+  if (sizes.length < fewestForAgreement) return { shrink: 1, scatterNm: 0 };
+  sizes.sort((a, b) => a - b);
+  return {
+    shrink: Math.min(1, Math.max(leastShrink, Math.sqrt(sum / sizes.length))),
+    scatterNm: 1.4826 * medianOf(sizes),
+  };
 }
 
 interface Name {
   reference: number;
   nm: number;
   blendUncNm: number;
+  /** The centroid of a blend, rather than one line. */
+  isCentroid: boolean;
 }
 
-function plainName(table: ReferenceTable, share: readonly number[], place: number, gate: number): Name | null {
+function plainName(table: ReferenceTable, share: readonly number[]): Name {
   const reference = share[0] as number;
-  const nm = table.nm[reference] as number;
-  return Math.abs(nm - place) <= gate ? { reference, nm, blendUncNm: 0 } : null;
+  return { reference, nm: table.nm[reference] as number, blendUncNm: 0, isCentroid: false };
 }
 
-function blendName(
-  table: ReferenceTable,
-  share: readonly number[],
-  place: number,
-  gate: number,
-  sd: number,
-): Name | null {
+function blendName(table: ReferenceTable, share: readonly number[], place: number, sd: number): Name {
   let strongest = share[0] as number;
-  for (const j of share) if ((table.strength[j] as number) > (table.strength[strongest] as number)) strongest = j;
+  for (const j of share) if ((table.brightness[j] as number) > (table.brightness[strongest] as number)) strongest = j;
   const first = table.nm[share[0] as number] as number;
   const last = table.nm[share[share.length - 1] as number] as number;
-  const middle = centroid(table, share);
   const open = (last - first) / 2 / Math.sqrt(3);
-  const carrier = onlyNear(table, share, place, gate);
-  if (carrier >= 0 && (table.strength[carrier] as number) >= carrierShare * (table.strength[strongest] as number)) {
+  const carrier = onlyNear(table, share, place, carrierSds * sd);
+  if (carrier >= 0) {
     const nm = table.nm[carrier] as number;
     const off = Math.abs(nm - place);
-    if (off <= 2 * sd && Math.abs(middle - place) >= 2.5 * sd) {
-      return { reference: carrier, nm, blendUncNm: Math.min(open, Math.sqrt(off * off + sd * sd)) };
+    // Alone: its place is the line's, to sd. Mixed: anywhere between the outermost components.
+    const alone = ((0.4 * (last - first)) / sd) * exp(-0.5 * (off / sd) * (off / sd));
+    let others = 0;
+    for (const j of share) if (j !== carrier) others = Math.max(others, table.brightness[j] as number);
+    if ((alone * (table.brightness[carrier] as number)) / others >= carrierOdds) {
+      return { reference: carrier, nm, blendUncNm: Math.min(open, Math.sqrt(off * off + sd * sd)), isCentroid: false };
     }
   }
-  // Any mixture lies between its components; one that hardly any mixture makes is left to a person.
-  if (Math.abs(place - middle) > Math.min((last - first) / 2, 1.5 * open) + gate) return null;
-  return { reference: strongest, nm: middle, blendUncNm: open };
+  return { reference: strongest, nm: centroid(table, share), blendUncNm: open, isCentroid: true };
 }
 
 /** Whether the axis leaves open which of two published lines it is: another one, not of this group, within reach. */
 function hasRival(table: ReferenceTable, share: readonly number[], nm: number, reach: number, place: number): boolean {
   let strongest = 0;
-  for (const j of share) strongest = Math.max(strongest, table.strength[j] as number);
+  for (const j of share) strongest = Math.max(strongest, table.brightness[j] as number);
   for (let j = lowerBound(table.nm, place - reach); j < table.nm.length; j++) {
     const other = table.nm[j] as number;
     if (other > place + reach) return false;
     if (share.includes(j) || other === nm) continue;
-    if ((table.strength[j] as number) >= 0.1 * strongest) return true;
+    if ((table.brightness[j] as number) >= rivalShare * strongest) return true;
   }
   return false;
 }
@@ -299,16 +325,16 @@ function keepLikely(problem: Problem, table: ReferenceTable, places: Float64Arra
   const { count } = problem;
   let low = Number.POSITIVE_INFINITY;
   let high = Number.NEGATIVE_INFINITY;
-  let strays = 0.5;
+  const strayHeights: number[] = [];
   const heights: number[] = [];
   for (let i = 0; i < count; i++) {
     low = Math.min(low, places[i] as number);
     high = Math.max(high, places[i] as number);
     const reference = naming.reference[i] as number;
-    if (naming.explained[i] === 0) strays += 1;
+    if (naming.explained[i] === 0 && problem.usable[i] === 1) strayHeights.push(problem.heightCounts[i] as number);
     if (reference >= 0) heights.push(brightness(problem, table, i, reference));
   }
-  const strayDensity = strays / Math.max(problem.spanNm, high - low);
+  const range = Math.max(problem.spanNm, high - low);
   heights.sort((a, b) => a - b);
   const usual = medianOf(heights);
   const deviations = heights.map((value) => Math.abs(value - usual)).sort((a, b) => a - b);
@@ -320,14 +346,20 @@ function keepLikely(problem: Problem, table: ReferenceTable, places: Float64Arra
   for (let i = 0; i < count; i++) {
     const reference = naming.reference[i] as number;
     if (reference < 0) continue;
+    const height = problem.heightCounts[i] as number;
+    let strays = 0.5;
+    for (const other of strayHeights) if (other >= strayHeightShare * height) strays += 1;
     const brighter = (brightness(problem, table, i, reference) - usual) / scatter;
     // The top of a saturated line is cut off: that it looks dim says nothing.
     const z = problem.saturated[i] === 1 ? Math.max(brighter, 0) : brighter;
     const share = shareFound(table, found, reference, low, high);
     const odds =
-      (naming.logOdds[i] as number) + log(share) - log(strayDensity) - Math.min(0.5 * z * z, largestHeightPenalty);
+      (naming.logOdds[i] as number) +
+      log(share / (1 - share)) -
+      log(strays / range) -
+      Math.min(0.5 * z * z, largestHeightPenalty);
     naming.logOdds[i] = odds;
-    if (exp(odds) >= (share >= commonShare ? leastOdds : leastOddsOfRare)) continue;
+    if (exp(odds) >= leastOdds) continue;
     naming.reference[i] = -1;
     naming.components[i] = [];
   }

@@ -66,7 +66,7 @@ export interface ProblemInput {
 const saturatedShare = 0.1;
 const poorFitShare = 0.06;
 const broadFactor = 1.3;
-const broadShare = 0.25;
+const broadShare = 0.12;
 /** Unmodelled asymmetry and pixel response, share of the FWHM. Common practice, no source. */
 const floorShare = 0.01;
 
