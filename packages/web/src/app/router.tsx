@@ -45,6 +45,8 @@ export const router = createBrowserRouter([
   {
     path: "/",
     Component: Shell,
+    // Nothing is shown before the first page: the server sends the ground in its theme.
+    HydrateFallback: () => null,
     ErrorBoundary: PageFailed,
     children: [{ ErrorBoundary: PageFailed, children: inside }],
   },

@@ -1,14 +1,115 @@
-import { Outlet } from "react-router";
-import { isMember, MemberProvider, useSession } from "../shared/session.ts";
+/**
+ * The frame around every page, and who may see it. A session that ends by itself leaves the page where it is, covered:
+ * the same person signs in again and goes on with what was typed; another person starts afresh.
+ */
+import { useQueryClient } from "@tanstack/react-query";
+import type { Me } from "@wavekeep/api/contract";
+import { lazy, Suspense, useEffect, useRef, useState } from "react";
+import { Outlet, ScrollRestoration, useLocation } from "react-router";
+import { api, onSessionLost } from "../shared/api.ts";
+import { isMember, MemberProvider, sessionQuery, useSession, type Member } from "../shared/session.ts";
+import { Button } from "../ui/button.tsx";
+import { ProblemNote } from "../ui/problem-note.tsx";
+import { Header, Rail } from "./header.tsx";
+import { useIdle } from "./use-idle.ts";
+
+const SignIn = lazy(async () => ({ default: (await import("../auth/sign-in-page.tsx")).SignInPage }));
+const ChooseLab = lazy(async () => ({ default: (await import("../auth/choose-lab.tsx")).ChooseLab }));
+
+const memberKey = (me: Member) => `${me.person.id} ${me.lab.id}`;
 
 export function Shell() {
   const session = useSession();
-  if (!isMember(session.data)) return null;
+  const client = useQueryClient();
+  const [kept, setKept] = useState<Member | null>(null);
+  const me = session.data;
+  if (isMember(me) && kept !== me) setKept(me);
+  const shownKey = kept === null ? null : memberKey(kept);
+  const lastKey = useRef<string | null>(null);
+
+  // Another person at this PC: nothing that the last one fetched may be seen.
+  useEffect(() => {
+    if (lastKey.current !== null && shownKey !== null && lastKey.current !== shownKey) {
+      client.removeQueries({ predicate: (query) => query.queryKey[0] !== "session" });
+    }
+    lastKey.current = shownKey;
+  }, [shownKey, client]);
+
+  useEffect(() => {
+    const forget = () => {
+      client.setQueryData<Me>(sessionQuery.queryKey, (old) =>
+        old === undefined ? old : { ...old, person: null, lab: null, roles: [], ownedInstrumentIds: [], labs: [] },
+      );
+      void client.invalidateQueries({ queryKey: sessionQuery.queryKey });
+    };
+    onSessionLost(forget);
+    return () => onSessionLost(() => undefined);
+  }, [client]);
+
+  useIdle(kept?.bench?.lockAfterSeconds ?? kept?.idleSeconds ?? 0, isMember(me), () => {
+    const bench = kept?.bench !== null && kept?.bench !== undefined;
+    client.setQueryData<Me>(sessionQuery.queryKey, (old) =>
+      old === undefined ? old : { ...old, person: null, lab: null, roles: [], ownedInstrumentIds: [], labs: [] },
+    );
+    void (bench ? api.delete("benchLock") : api.delete("signOut"))
+      .catch(() => undefined)
+      .finally(() => void client.invalidateQueries({ queryKey: sessionQuery.queryKey }));
+  });
+
+  if (kept === null) return <BeforeSignIn me={me} error={session.error} retry={() => void session.refetch()} />;
+  const isLocked = !isMember(me);
   return (
-    <MemberProvider value={session.data}>
-      <main className="page-frame">
+    <>
+      <MemberProvider value={kept}>
+        <Frame key={memberKey(kept)} isLocked={isLocked} />
+      </MemberProvider>
+      {isLocked && (
+        <div className="lock-cover">
+          <Suspense>{me !== undefined && <SignIn me={me} lastPerson={kept.person} />}</Suspense>
+        </div>
+      )}
+      <ScrollRestoration />
+    </>
+  );
+}
+
+function BeforeSignIn({ me, error, retry }: { me: Me | undefined; error: Error | null; retry: () => void }) {
+  if (me === undefined) {
+    return (
+      <main className="page-frame" aria-busy={error === null}>
+        {error !== null && (
+          <>
+            <ProblemNote error={error} />
+            <Button filled className="mt-4" onClick={retry}>
+              Try again
+            </Button>
+          </>
+        )}
+      </main>
+    );
+  }
+  return <Suspense>{me.person === null ? <SignIn me={me} lastPerson={null} /> : <ChooseLab me={me} />}</Suspense>;
+}
+
+function Frame({ isLocked }: { isLocked: boolean }) {
+  const { pathname } = useLocation();
+  const main = useRef<HTMLElement>(null);
+  const before = useRef(pathname);
+  // A new page begins at its start for those who listen, as it does for those who look.
+  useEffect(() => {
+    if (before.current !== pathname) main.current?.focus({ preventScroll: true });
+    before.current = pathname;
+  }, [pathname]);
+  return (
+    <div className="shell" inert={isLocked}>
+      <a href="#page" className="skip-link">
+        To the page
+      </a>
+      <Header />
+      <Rail />
+      <main id="page" ref={main} tabIndex={-1} className="page-frame">
         <Outlet />
       </main>
-    </MemberProvider>
+    </div>
   );
 }

@@ -37,6 +37,8 @@ export function BenchPlot({ drawing, analysis, registers, ruler, view, width, pa
         borderColor: palette.colour.ink,
         borderWidth: 1,
         pointRadius: 0,
+        // The trace lies below what was fitted to it.
+        order: 1,
       },
     ];
     const isFilled = palette.theme === "paper" || palette.theme === "ink";

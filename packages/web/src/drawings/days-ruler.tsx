@@ -110,7 +110,7 @@ export function DaysRuler({ items, todayOn, before = 9, after = 38, handle }: Da
                   x1={x}
                   x2={x}
                   y1={axis}
-                  y2={axis + (isFirst ? 18 : isMonday ? 6 : 3)}
+                  y2={axis + (isMonday ? 6 : isFirst ? 18 : 3)}
                   stroke={isFirst && !isMonday ? "var(--graph)" : "var(--ink)"}
                 />
                 {isMonday && (

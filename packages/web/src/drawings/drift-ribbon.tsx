@@ -7,7 +7,16 @@ import type { ChartData, ChartOptions, Plugin } from "chart.js";
 import { useMemo, useState } from "react";
 import { Scatter } from "react-chartjs-2";
 import { useToday, useZone } from "../shared/session.ts";
-import { formatDate, formatDay, formatLimit, formatNumber, formatQuantity, MINUS, NARROW_SPACE } from "../ui/format.ts";
+import {
+  formatDate,
+  formatDay,
+  formatLimit,
+  formatShortDate,
+  formatNumber,
+  formatQuantity,
+  MINUS,
+  NARROW_SPACE,
+} from "../ui/format.ts";
 import { bareOptions } from "./chart-setup.ts";
 import { DrawingFrame, type DrawingHandle, type TableTwin } from "./drawing.tsx";
 import { GutterText } from "./line-strip.tsx";
@@ -17,6 +26,7 @@ import {
   joinedRuns,
   monthTicks,
   placeEventFlags,
+  seriesBreaks,
   seriesPoints,
   timeSpan,
   type EventFlag,
@@ -198,12 +208,12 @@ function tickText(tick: number, tolerance: number): string {
 
 /** `12 Feb 2026 · +0.16 nm`, or `· no step` where nothing moved. */
 function eventNote(event: DriftReply["events"][number]): string {
-  const step =
-    event.stepNm === null
+  const isStill = !event.breaksDrift || (event.stepNm !== null && Math.abs(event.stepNm) < 0.0005);
+  const step = isStill
+    ? " · no step"
+    : event.stepNm === null
       ? ""
-      : Math.abs(event.stepNm) < 0.0005 || !event.breaksDrift
-        ? " · no step"
-        : ` · ${formatNumber(event.stepNm, { decimals: 2, signed: true })}${NARROW_SPACE}nm`;
+      : ` · ${formatNumber(event.stepNm, { decimals: 2, signed: true })}${NARROW_SPACE}nm`;
   return `${formatDate(event.happenedOn)}${step}`;
 }
 
@@ -295,7 +305,7 @@ function TimeAxis({
         <>
           <path d={`M${due - 4.5} ${PLOT + 9}l4.5 -7.5 4.5 7.5z`} fill="var(--ink)" />
           <text x={due} y={PLOT + 33} textAnchor={dueAnchor} className="mark mark-strong">
-            {`due ${formatDate(dueOn)}`}
+            {`due ${formatShortDate(dueOn, todayOn)}`}
           </text>
         </>
       )}
@@ -348,10 +358,9 @@ interface PlotProps {
 function RibbonPlot({ drift, points, span, errors, palette, width }: PlotProps) {
   const { colour } = palette;
   const data = useMemo<ChartData<"scatter">>(() => {
-    const breaks = drift.events.filter((event) => event.breaksDrift).map((event) => dateMs(event.happenedOn));
-    const adjusted = points.filter((point) => point.isAsLeft).map((point) => point.atMs);
+    const breaks = seriesBreaks(drift.events, points);
     return {
-      datasets: joinedRuns(points, [...breaks, ...adjusted]).map((run) => ({
+      datasets: joinedRuns(points, breaks).map((run) => ({
         data: run.map((point) => ({ x: point.atMs, y: point.error })),
         showLine: true,
         borderColor: colour.ink,

@@ -5,6 +5,7 @@ import {
   joinedRuns,
   monthTicks,
   placeEventFlags,
+  seriesBreaks,
   seriesPoints,
   timeSpan,
   type RibbonPoint,
@@ -43,6 +44,26 @@ test("a line joins no two points across an event that broke the series", () => {
 
 test("an as-left check at the moment of the adjustment belongs to what follows", () => {
   expect(joinedRuns([point(1, 0), point(3, 0)], [3])).toHaveLength(2);
+});
+
+test("an adjustment in the morning and its as-left check that day break the series once, at the check", () => {
+  const left = { ...point(Date.UTC(2026, 5, 3, 9), 0), isAsLeft: true };
+  const event = {
+    ...drift.events[0],
+    kind: "adjusted",
+    happenedOn: "2026-06-03",
+    breaksDrift: true,
+  } as DriftReply["events"][number];
+  expect(seriesBreaks([event], [left])).toEqual([left.atMs]);
+  expect(
+    seriesBreaks(
+      [
+        { ...event, happenedOn: "2026-07-01" },
+        { ...event, breaksDrift: false },
+      ],
+      [],
+    ),
+  ).toEqual([Date.UTC(2026, 6, 1, 12)]);
 });
 
 test("months are ticked, quarters labelled, January named by its year", () => {
@@ -111,7 +132,7 @@ test("the ribbon reaches eighteen months back and a month past the due date", ()
     sourceLabels: [],
   }));
   const span = timeSpan({ ...drift, points }, "2027-03-09");
-  expect((Date.UTC(2027, 2, 9) - span.fromMs) / DAY).toBeCloseTo(548.5, 0);
+  expect((Date.UTC(2027, 2, 9) - span.fromMs) / DAY).toBeCloseTo(556.5, 0);
   expect(span.toMs).toBeGreaterThanOrEqual(Date.UTC(2027, 4, 5));
   expect(seriesPoints({ ...drift, points }, "mid").map((p) => [p.error, p.unc, p.isAsLeft])).toEqual([
     [0.1, 0.01, true],

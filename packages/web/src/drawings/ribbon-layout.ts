@@ -37,7 +37,7 @@ export function timeSpan(drift: DriftReply, todayOn: string): { fromMs: number; 
   const today = dateMs(todayOn);
   const first = drift.points[0] === undefined ? today - 180 * DAY_MS : Date.parse(drift.points[0].at);
   const due = drift.dueOn === null ? today : dateMs(drift.dueOn);
-  const fromMs = Math.max(first - 8 * DAY_MS, today - 549 * DAY_MS);
+  const fromMs = Math.max(first, today - 549 * DAY_MS) - 8 * DAY_MS;
   return { fromMs: Math.min(fromMs, today - 60 * DAY_MS), toMs: Math.max(today + 75 * DAY_MS, due + 30 * DAY_MS) };
 }
 
@@ -67,6 +67,16 @@ export function errorSpan(points: readonly RibbonPoint[], tolerance: number): Er
   const high = Math.max(highest, half);
   const ticks = [-2, -1, 0, 1, 2].map((k) => k * half).filter((value) => value >= low - 1e-12 && value <= high + 1e-12);
   return { low, high, ticks };
+}
+
+/**
+ * Instants at which the series was broken: the events that moved it, and each as-left check. Where both fall on one day
+ * the check's own time counts, so that the point as found stands before the adjustment and the point as left after it.
+ */
+export function seriesBreaks(events: DriftReply["events"], points: readonly RibbonPoint[]): number[] {
+  const asLeft = points.filter((point) => point.isAsLeft).map((point) => point.atMs);
+  const moved = events.filter((event) => event.breaksDrift).map((event) => dateMs(event.happenedOn));
+  return [...asLeft, ...moved.filter((at) => !asLeft.some((left) => Math.abs(left - at) < DAY_MS))];
 }
 
 /** Which of two neighbouring points a line joins: none across an event that broke the series. */

@@ -12,6 +12,7 @@ export {
   type Choice,
 } from "./field.tsx";
 export * from "./format.ts";
+export { Menu, type MenuGroup, type MenuItem } from "./menu.tsx";
 export { Fact, FactList, Facts, Page, Section } from "./page.tsx";
 export { Caution, Due, Empty, Skeleton, Switches, Tabs, TimeAgo, When } from "./parts.tsx";
 export { ProblemNote } from "./problem-note.tsx";

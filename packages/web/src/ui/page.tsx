@@ -28,7 +28,7 @@ export function Page({ title, name, aside, state, status, actions, lead, childre
   return (
     <div className="page-column">
       <header className="book">
-        <div className="book-margin text-quiet book:pt-[9px]">{aside}</div>
+        <div className="book-margin text-quiet book:pt-[11px]">{aside}</div>
         <div className="book-body">
           <div className="flex flex-wrap items-start justify-between gap-x-10 gap-y-3">
             <div className="max-w-[720px] min-w-0 flex-[1_1_320px]">
@@ -103,7 +103,7 @@ export function Section({
         {note !== undefined && <div className="margin-note type-note mt-1">{note}</div>}
         {switches !== undefined && <div className="no-print mt-3">{switches}</div>}
         {links !== undefined && (
-          <div className="no-print type-note flex flex-wrap gap-x-3 gap-y-1 book:mt-3">{links}</div>
+          <div className="no-print type-note flex flex-wrap gap-x-2 gap-y-1 book:mt-3">{links}</div>
         )}
       </div>
       <div className="book-body">{children}</div>
