@@ -61,7 +61,12 @@ export function CheckFacts({ check, analysis }: { check: Check; analysis: Analys
   return (
     <Facts>
       <Fact label="Tolerance used">
-        {worst === null || worst.toleranceUsed === null ? "–" : <ToleranceUsed used={worst.toleranceUsed} guardShare={guard === null || limit === null ? null : guard / limit} state={verdictState(analysis.verdict?.verdict, analysis.verdict?.nearLimit)} />}
+        {worst === null || worst.toleranceUsed === null ? "–" : (
+          <span className="flex items-center gap-[10px]">
+            {formatPercent(worst.toleranceUsed)}
+            <ToleranceUsed bare used={worst.toleranceUsed} guardShare={guard === null || limit === null ? null : guard / limit} state={verdictState(analysis.verdict?.verdict, analysis.verdict?.nearLimit)} />
+          </span>
+        )}
       </Fact>
       <Fact label="Decision rule">{decisionRule.kind === "simple" ? "simple, w = 0" : `guarded, w = ${decisionRule.r === 1 ? "" : `${formatNumber(decisionRule.r, { decimals: 2 })} `}U`}</Fact>
       <Fact label="Accepted to">

@@ -23,6 +23,7 @@ export function DispersionSection({ dispersion, axisUnit }: { dispersion: Disper
   return (
     <Section title="Dispersion" note="Wavelength as a polynomial of the position, weighted by each line’s uncertainty; u is standard.">
       <div className="grid gap-x-10 gap-y-6 wide:grid-cols-[minmax(0,1fr)_316px]">
+        <div className="max-w-[440px]">
         <Table
           caption="The axis at eleven places, first to last"
           compact
@@ -34,6 +35,7 @@ export function DispersionSection({ dispersion, axisUnit }: { dispersion: Disper
             { key: "u", head: "u, nm", numbers: true, cell: (sample) => <Decimal value={sample.uncNm} decimals={4} columnDecimals={4} /> },
           ]}
         />
+        </div>
         <div>
           <FactList
             items={[

@@ -11,6 +11,7 @@ import type {
   setAsideInput,
   submitInput,
 } from "@wavekeep/api/contract";
+import { useCallback } from "react";
 import type { z } from "zod";
 import { api, type OnProgress, type RouteQuery } from "../shared/api.ts";
 import { useChange } from "../shared/use-change.ts";
@@ -70,7 +71,7 @@ export const useBeginCheck = (done: (check: Check) => void) =>
 /** Puts a reply of the server in place of what was shown, without asking again. */
 export function useKeepCheck(checkId: string): (check: Check) => void {
   const client = useQueryClient();
-  return (check) => client.setQueryData(keys.one(checkId), check);
+  return useCallback((check) => client.setQueryData(keys.one(checkId), check), [client, checkId]);
 }
 
 export const saveDraft = (checkId: string, body: z.input<typeof draftInput>) => api.put("saveDraft", { checkId }, body);

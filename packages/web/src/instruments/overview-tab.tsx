@@ -35,7 +35,7 @@ function LastCheck({ instrument, configuration, last }: Pick<TabProps, "instrume
       note={`${formatDay(summary.submittedAt ?? summary.begunAt, zone)}, ${conditionWords[summary.condition]}, ${summary.number}. Each line’s error, full height the tolerance; hollow: left out or refused; framed: the worst.`}
       links={
         <>
-          <TextLink to={path}>Open the check</TextLink>
+          <TextLink to={path} className="basis-full">Open the check</TextLink>
           <DrawingLinks handle={drawing} />
         </>
       }

@@ -5,6 +5,7 @@ import { api } from "../shared/api.ts";
 export interface TrailFilter {
   personId?: string | undefined;
   instrumentId?: string | undefined;
+  checkId?: string | undefined;
   kind?: string | undefined;
   fromOn?: string | undefined;
   toOn?: string | undefined;

@@ -64,7 +64,7 @@ export function FleetTable({ rows, todayOn }: FleetTableProps) {
     },
     { key: "state", head: "State", cell: (row) => <Status state={row.state} word={stateWord(row)} /> },
     { key: "used", head: "Tolerance used", className: "whitespace-nowrap", cell: (row) => <Used row={row} /> },
-    { key: "strip", head: "Errors over the range", className: "hidden !py-[3px] @min-[700px]:table-cell", cell: (row) => <Strip row={row} /> },
+    { key: "strip", head: "Errors over the range", className: "hidden @min-[700px]:table-cell", cell: (row) => <div className="-my-1"><Strip row={row} /></div> },
     {
       key: "worst",
       head: "Worst line",

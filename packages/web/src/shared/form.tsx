@@ -117,7 +117,7 @@ export function FormNumber({ name, label, note, className, unit, scale = 1, labe
 }
 
 /** True for a refusal that says somebody changed the thing meanwhile. */
-export const isStale = (error: unknown): boolean => error instanceof ApiProblem && error.status === 409 && /stale|changed|version/.test(error.kind);
+export const isStale = (error: unknown): boolean => error instanceof ApiProblem && error.kind === "stale";
 
 interface RefusedProps {
   error: unknown;
