@@ -24,7 +24,10 @@ export interface AlertCause {
 
 /** Open an alert, or reopen the last one of its kind; nothing where it is open already. */
 export async function openAlert(tx: Tx, ctx: Context, cause: AlertCause): Promise<TrailInput[]> {
-  const subject = "sourceId" in cause.about ? eq(alerts.sourceId, cause.about.sourceId) : eq(alerts.configurationId, cause.about.configurationId);
+  const subject =
+    "sourceId" in cause.about
+      ? eq(alerts.sourceId, cause.about.sourceId)
+      : eq(alerts.configurationId, cause.about.configurationId);
   const [last] = await tx
     .select()
     .from(alerts)
@@ -72,7 +75,8 @@ export async function closeAlerts(
   kinds: readonly AlertKind[],
   because: string,
 ): Promise<TrailInput[]> {
-  const subject = "sourceId" in about ? eq(alerts.sourceId, about.sourceId) : eq(alerts.configurationId, about.configurationId);
+  const subject =
+    "sourceId" in about ? eq(alerts.sourceId, about.sourceId) : eq(alerts.configurationId, about.configurationId);
   const open = await tx
     .select()
     .from(alerts)
@@ -82,10 +86,19 @@ export async function closeAlerts(
   const closedAt = await recordNow(tx);
   const entries: TrailInput[] = [];
   for (const alert of open) {
-    await tx.update(alerts).set({ closedAt, closedBecause: because, version: alert.version + 1 }).where(eq(alerts.id, alert.id));
+    await tx
+      .update(alerts)
+      .set({ closedAt, closedBecause: because, version: alert.version + 1 })
+      .where(eq(alerts.id, alert.id));
     entries.push({
       action: "alert.closed",
-      about: { kind: "alert", id: alert.id, label: alert.title, instrumentId: alert.instrumentId ?? undefined, checkId: alert.checkId ?? undefined },
+      about: {
+        kind: "alert",
+        id: alert.id,
+        label: alert.title,
+        instrumentId: alert.instrumentId ?? undefined,
+        checkId: alert.checkId ?? undefined,
+      },
       after: { kind: alert.kind },
       why: because,
     });

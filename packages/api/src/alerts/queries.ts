@@ -38,8 +38,14 @@ export function listAlertRows(tx: Tx, filter: AlertFilter) {
       and(
         filter.alertId === undefined ? undefined : eq(alerts.id, filter.alertId),
         filter.instrumentId === undefined ? undefined : eq(alerts.instrumentId, filter.instrumentId),
-        filter.state === "open" ? isNull(alerts.closedAt) : filter.state === "closed" ? isNotNull(alerts.closedAt) : undefined,
-        filter.after === undefined ? undefined : sql`(${alerts.openedAt}, ${alerts.id}) < (${filter.after.openedAt}::timestamptz, ${filter.after.id}::uuid)`,
+        filter.state === "open"
+          ? isNull(alerts.closedAt)
+          : filter.state === "closed"
+            ? isNotNull(alerts.closedAt)
+            : undefined,
+        filter.after === undefined
+          ? undefined
+          : sql`(${alerts.openedAt}, ${alerts.id}) < (${filter.after.openedAt}::timestamptz, ${filter.after.id}::uuid)`,
       ),
     )
     .orderBy(desc(alerts.openedAt), desc(alerts.id))

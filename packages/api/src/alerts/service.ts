@@ -20,7 +20,11 @@ const stateOfKind: Record<string, ShownState | null> = {
   "source-review": null,
 };
 
-export function listAlerts(db: Database, ctx: Context, query: z.output<typeof alertsQuery>): Promise<z.input<typeof alertsReply>> {
+export function listAlerts(
+  db: Database,
+  ctx: Context,
+  query: z.output<typeof alertsQuery>,
+): Promise<z.input<typeof alertsReply>> {
   const after = pageAfter(query.after);
   return inLab(db, ctx, async (tx) => {
     const rows = await listAlertRows(tx, {
@@ -33,30 +37,59 @@ export function listAlerts(db: Database, ctx: Context, query: z.output<typeof al
     const last = shown.at(-1);
     return {
       items: shown.map((row) => presentAlert(ctx, row)),
-      next: rows.length > query.limit && last !== undefined ? pageNext({ at: last.alert.openedAt.toISOString(), id: last.alert.id }) : null,
+      next:
+        rows.length > query.limit && last !== undefined
+          ? pageNext({ at: last.alert.openedAt.toISOString(), id: last.alert.id })
+          : null,
     };
   });
 }
 
 /** Acknowledge with a note: what is planned, who was told. The alert stays open until a good check closes it. */
-export function acknowledgeAlert(db: Database, ctx: Context, alertId: string, input: z.output<typeof acknowledgeAlertInput>): Promise<Alert> {
+export function acknowledgeAlert(
+  db: Database,
+  ctx: Context,
+  alertId: string,
+  input: z.output<typeof acknowledgeAlertInput>,
+): Promise<Alert> {
   return inLab(db, ctx, async (tx) => {
     await lockAlert(tx, alertId);
     const { alert, ownerName } = await findAlert(tx, alertId);
     await assertFreshFor(tx, ctx, alert, input, { id: alertId, what: "This alert" });
     const owns = alert.instrumentId !== null && ownsInstrument(ctx, alert.instrumentId);
-    if (!owns && !hasRole(ctx, "manager")) throw problem("not-allowed", `This alert is for ${ownerName ?? "a lab manager"}; a lab manager may act for the owner.`);
-    if (alert.closedAt !== null) throw problem("conflict", `This alert closed by itself: ${alert.closedBecause ?? ""} There is nothing to acknowledge any more.`);
-    if (alert.acknowledgedAt !== null) throw problem("conflict", "This alert is acknowledged already; its note stays as it was written.");
+    if (!owns && !hasRole(ctx, "manager"))
+      throw problem(
+        "not-allowed",
+        `This alert is for ${ownerName ?? "a lab manager"}; a lab manager may act for the owner.`,
+      );
+    if (alert.closedAt !== null)
+      throw problem(
+        "conflict",
+        `This alert closed by itself: ${alert.closedBecause ?? ""} There is nothing to acknowledge any more.`,
+      );
+    if (alert.acknowledgedAt !== null)
+      throw problem("conflict", "This alert is acknowledged already; its note stays as it was written.");
     const forOwner = alert.instrumentId !== null && !owns;
     await tx
       .update(alerts)
-      .set({ acknowledgedAt: await recordNow(tx), acknowledgedBy: ctx.personId, acknowledgedNote: input.note, acknowledgedForOwner: forOwner, version: alert.version + 1 })
+      .set({
+        acknowledgedAt: await recordNow(tx),
+        acknowledgedBy: ctx.personId,
+        acknowledgedNote: input.note,
+        acknowledgedForOwner: forOwner,
+        version: alert.version + 1,
+      })
       .where(eq(alerts.id, alertId));
     const reply = presentAlert(ctx, await findAlert(tx, alertId));
     await writeTrail(tx, ctx, {
       action: "alert.acknowledged",
-      about: { kind: "alert", id: alertId, label: alert.title, instrumentId: alert.instrumentId ?? undefined, checkId: alert.checkId ?? undefined },
+      about: {
+        kind: "alert",
+        id: alertId,
+        label: alert.title,
+        instrumentId: alert.instrumentId ?? undefined,
+        checkId: alert.checkId ?? undefined,
+      },
       after: { kind: alert.kind, forOwner },
       why: input.note,
     });
@@ -87,7 +120,12 @@ export function presentAlert(ctx: Context, row: AlertRow): Alert {
     acknowledged:
       alert.acknowledgedAt === null || alert.acknowledgedBy === null
         ? null
-        : { by: { id: alert.acknowledgedBy, name: row.acknowledgerName ?? "" }, at: alert.acknowledgedAt.toISOString(), note: alert.acknowledgedNote ?? "", forOwner: alert.acknowledgedForOwner },
+        : {
+            by: { id: alert.acknowledgedBy, name: row.acknowledgerName ?? "" },
+            at: alert.acknowledgedAt.toISOString(),
+            note: alert.acknowledgedNote ?? "",
+            forOwner: alert.acknowledgedForOwner,
+          },
     mayAcknowledge: alert.closedAt === null && alert.acknowledgedAt === null && (owns || hasRole(ctx, "manager")),
     version: alert.version,
   };

@@ -10,7 +10,13 @@ import type { TrailInput } from "../records/trail.ts";
 import { closeAlerts, openAlert, type AlertKind } from "./open-and-close.ts";
 
 /** A pass near the limit, or an inconclusive check; a failing one is told by its hold. */
-export async function openVerdictAlerts(tx: Tx, ctx: Context, check: CheckRecord, result: StoredResult, reasons: readonly string[]): Promise<TrailInput[]> {
+export async function openVerdictAlerts(
+  tx: Tx,
+  ctx: Context,
+  check: CheckRecord,
+  result: StoredResult,
+  reasons: readonly string[],
+): Promise<TrailInput[]> {
   const { instrument } = await findInstrument(tx, check.instrumentId);
   const about = { instrumentId: instrument.id, configurationId: check.configurationId };
   if (result.verdict === "pass" && result.nearLimit) {
@@ -36,7 +42,12 @@ export async function openVerdictAlerts(tx: Tx, ctx: Context, check: CheckRecord
 }
 
 /** What an approved check proves: called after a hold has been ended, so that the standing is the new one. */
-export async function closeProvenAlerts(tx: Tx, check: CheckRecord, result: { verdict: string | null; nearLimit: boolean }, options: { dueMoved: boolean }): Promise<TrailInput[]> {
+export async function closeProvenAlerts(
+  tx: Tx,
+  check: CheckRecord,
+  result: { verdict: string | null; nearLimit: boolean },
+  options: { dueMoved: boolean },
+): Promise<TrailInput[]> {
   if (result.verdict !== "pass") return [];
   const kinds: AlertKind[] = ["inconclusive"];
   if (!result.nearLimit) kinds.push("near-limit");

@@ -11,7 +11,14 @@ import { problem } from "../http/problem.ts";
 import { dateIn } from "../instruments/dates.ts";
 import { aboutConfiguration, lockForChange, readConfiguration } from "../instruments/configurations.ts";
 import type { ConfigurationRow, InstrumentRow } from "../instruments/queries.ts";
-import { findCheck, findOptionalAnalysis, findOptionalSubmission, findState, type CheckRecord, type SubmissionRow } from "../checks/queries.ts";
+import {
+  findCheck,
+  findOptionalAnalysis,
+  findOptionalSubmission,
+  findState,
+  type CheckRecord,
+  type SubmissionRow,
+} from "../checks/queries.ts";
 import { writeTrail, type TrailInput } from "../records/trail.ts";
 
 /** The first axis of a configuration that had none, from the approved check that fitted it. Nothing where one is in force. */
@@ -24,19 +31,45 @@ export async function adoptFirstAxis(
   const analysis = await findOptionalAnalysis(tx, { id: submission.analysisId });
   const dispersion = analysis?.analysis.dispersion ?? null;
   if (dispersion === null || (await findLastNumber(tx, configuration.id)) > 0) return [];
-  const entered = await insertAxis(tx, ctx, { configurationId: configuration.id, number: 1, dispersion, checkId: check.id, reason: `Fitted by ${check.number}, approved`, setBy: null });
-  return [axisEntry(configuration, instrument, check, { ...entered, number: 1, dispersion, why: `${check.number} is approved and no axis was in force` })];
+  const entered = await insertAxis(tx, ctx, {
+    configurationId: configuration.id,
+    number: 1,
+    dispersion,
+    checkId: check.id,
+    reason: `Fitted by ${check.number}, approved`,
+    setBy: null,
+  });
+  return [
+    axisEntry(configuration, instrument, check, {
+      ...entered,
+      number: 1,
+      dispersion,
+      why: `${check.number} is approved and no axis was in force`,
+    }),
+  ];
 }
 
 /** A manager puts the axis that a submitted check has fitted in force. It is an adjustment: the drift series breaks here. */
-export function adoptAxis(db: Database, ctx: Context, configurationId: string, input: z.output<typeof adoptAxisInput>): Promise<Configuration> {
+export function adoptAxis(
+  db: Database,
+  ctx: Context,
+  configurationId: string,
+  input: z.output<typeof adoptAxisInput>,
+): Promise<Configuration> {
   return inLab(db, ctx, async (tx) => {
     const { stored, instrument } = await lockForChange(tx, ctx, configurationId, input);
     const check = await findCheck(tx, input.checkId);
     const dispersion = await findAdoptable(tx, check, stored);
     const number = (await findLastNumber(tx, configurationId)) + 1;
     const now = await recordNow(tx);
-    const entered = await insertAxis(tx, ctx, { configurationId, number, dispersion, checkId: check.id, reason: input.reason, setBy: ctx.personId });
+    const entered = await insertAxis(tx, ctx, {
+      configurationId,
+      number,
+      dispersion,
+      checkId: check.id,
+      reason: input.reason,
+      setBy: ctx.personId,
+    });
     const eventId = newId();
     const title = `Adjusted, axis no. ${number}`;
     const happenedOn = dateIn(ctx.zone, now);
@@ -52,7 +85,10 @@ export function adoptAxis(db: Database, ctx: Context, configurationId: string, i
       recordedAt: now,
       recordedBy: ctx.personId,
     });
-    await tx.update(configurations).set({ version: stored.version + 1 }).where(eq(configurations.id, configurationId));
+    await tx
+      .update(configurations)
+      .set({ version: stored.version + 1 })
+      .where(eq(configurations.id, configurationId));
     const reply = await readConfiguration(tx, configurationId);
     await writeTrail(tx, ctx, [
       axisEntry(stored, instrument, check, { ...entered, number, dispersion, why: input.reason }),
@@ -68,26 +104,54 @@ export function adoptAxis(db: Database, ctx: Context, configurationId: string, i
 }
 
 async function findAdoptable(tx: Tx, check: CheckRecord, configuration: ConfigurationRow): Promise<Dispersion> {
-  if (check.configurationId !== configuration.id) throw problem("conflict", `${check.number} was made on another configuration; its axis does not fit this one. Nothing was changed.`);
-  if (configuration.axisKind === "wavelength") throw problem("conflict", "This instrument writes its own wavelengths; its axis is adjusted at the instrument. Log the adjustment as an event.");
+  if (check.configurationId !== configuration.id)
+    throw problem(
+      "conflict",
+      `${check.number} was made on another configuration; its axis does not fit this one. Nothing was changed.`,
+    );
+  if (configuration.axisKind === "wavelength")
+    throw problem(
+      "conflict",
+      "This instrument writes its own wavelengths; its axis is adjusted at the instrument. Log the adjustment as an event.",
+    );
   const state = await findState(tx, check.id);
   const submission = await findOptionalSubmission(tx, check.id);
-  if (submission === null || (state !== "submitted" && state !== "approved")) throw problem("conflict", `${check.number} is not submitted; only a signed check gives an axis. Nothing was changed.`);
+  if (submission === null || (state !== "submitted" && state !== "approved"))
+    throw problem(
+      "conflict",
+      `${check.number} is not submitted; only a signed check gives an axis. Nothing was changed.`,
+    );
   const analysis = await findOptionalAnalysis(tx, { id: submission.analysisId });
   const dispersion = analysis?.analysis.dispersion ?? null;
-  if (dispersion === null) throw problem("unusable", `${check.number} fitted no axis: too few of its lines could be used. Nothing was changed.`);
+  if (dispersion === null)
+    throw problem(
+      "unusable",
+      `${check.number} fitted no axis: too few of its lines could be used. Nothing was changed.`,
+    );
   return dispersion;
 }
 
 async function findLastNumber(tx: Tx, configurationId: string): Promise<number> {
-  const [row] = await tx.select({ number: axes.number }).from(axes).where(eq(axes.configurationId, configurationId)).orderBy(desc(axes.number)).limit(1);
+  const [row] = await tx
+    .select({ number: axes.number })
+    .from(axes)
+    .where(eq(axes.configurationId, configurationId))
+    .orderBy(desc(axes.number))
+    .limit(1);
   return row?.number ?? 0;
 }
 
 async function insertAxis(
   tx: Tx,
   ctx: Context,
-  axis: { configurationId: string; number: number; dispersion: Dispersion; checkId: string; reason: string; setBy: string | null },
+  axis: {
+    configurationId: string;
+    number: number;
+    dispersion: Dispersion;
+    checkId: string;
+    reason: string;
+    setBy: string | null;
+  },
 ): Promise<{ id: string }> {
   const id = newId();
   const fitted = axis.dispersion.axis;
@@ -119,7 +183,12 @@ function axisEntry(
   return {
     action: "axis.entered",
     about: { ...aboutConfiguration(configuration, instrument), checkId: check.id },
-    after: { number: axis.number, degree: axis.dispersion.degree, coefficients: axis.dispersion.coefficients, fromCheck: check.number },
+    after: {
+      number: axis.number,
+      degree: axis.dispersion.degree,
+      coefficients: axis.dispersion.coefficients,
+      fromCheck: check.number,
+    },
     why: axis.why,
     rows: [{ table: "axes", id: axis.id }],
   };

@@ -6,8 +6,13 @@ const shownRows = 8;
 const readBytes = 256 * 1024;
 
 /** @returns at most 8 rows of cells as written, the heading's row first where there is one */
-export function firstRowsOf(bytes: Uint8Array, facts: Pick<FileFacts, "encoding" | "delimiter" | "headerLines">): string[][] {
-  const label = { "utf-8": "utf-8", "utf-16le": "utf-16le", "utf-16be": "utf-16be", "latin-1": "latin1" }[facts.encoding];
+export function firstRowsOf(
+  bytes: Uint8Array,
+  facts: Pick<FileFacts, "encoding" | "delimiter" | "headerLines">,
+): string[][] {
+  const label = { "utf-8": "utf-8", "utf-16le": "utf-16le", "utf-16be": "utf-16be", "latin-1": "latin1" }[
+    facts.encoding
+  ];
   const text = new TextDecoder(label).decode(bytes.subarray(0, readBytes));
   const lines = text.split(/\r\n|\n|\r/);
   const from = Math.max(0, facts.headerLines - 1);
@@ -20,5 +25,10 @@ export function firstRowsOf(bytes: Uint8Array, facts: Pick<FileFacts, "encoding"
 
 function cellsOf(line: string, delimiter: FileFacts["delimiter"]): string[] {
   const cells = delimiter === " " ? line.trim().split(/\s+/) : line.split(delimiter);
-  return cells.slice(0, 20).map((cell) => cell.trim().replace(/^"(.*)"$/, "$1").slice(0, 60));
+  return cells.slice(0, 20).map((cell) =>
+    cell
+      .trim()
+      .replace(/^"(.*)"$/, "$1")
+      .slice(0, 60),
+  );
 }

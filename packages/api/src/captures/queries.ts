@@ -14,11 +14,22 @@ export interface FirstSeen {
 }
 
 /** The first capture of each hash that is not one of `except`. */
-export async function findFirstSeen(tx: Tx, sha256s: readonly string[], except: readonly string[] = []): Promise<Map<string, FirstSeen>> {
+export async function findFirstSeen(
+  tx: Tx,
+  sha256s: readonly string[],
+  except: readonly string[] = [],
+): Promise<Map<string, FirstSeen>> {
   const found = new Map<string, FirstSeen>();
   if (sha256s.length === 0) return found;
   const rows = await tx
-    .select({ sha256: captures.sha256, captureId: captures.id, checkId: captures.checkId, checkNumber: checks.number, fileName: captures.fileName, receivedAt: captures.receivedAt })
+    .select({
+      sha256: captures.sha256,
+      captureId: captures.id,
+      checkId: captures.checkId,
+      checkNumber: checks.number,
+      fileName: captures.fileName,
+      receivedAt: captures.receivedAt,
+    })
     .from(captures)
     .innerJoin(checks, and(eq(checks.labId, captures.labId), eq(checks.id, captures.checkId)))
     .where(and(inArray(captures.sha256, [...sha256s]), ...except.map((id) => ne(captures.id, id))))
@@ -28,7 +39,10 @@ export async function findFirstSeen(tx: Tx, sha256s: readonly string[], except: 
 }
 
 export async function findLastPosition(tx: Tx, checkId: string): Promise<number> {
-  const [row] = await tx.select({ last: max(captures.position) }).from(captures).where(eq(captures.checkId, checkId));
+  const [row] = await tx
+    .select({ last: max(captures.position) })
+    .from(captures)
+    .where(eq(captures.checkId, checkId));
   return row?.last ?? 0;
 }
 
@@ -39,14 +53,25 @@ export async function keepBytes(tx: Tx, row: typeof captureBytes.$inferInsert): 
 
 export async function loadBytes(tx: Tx, sha256s: readonly string[]): Promise<Map<string, Buffer>> {
   if (sha256s.length === 0) return new Map();
-  const rows = await tx.select({ sha256: captureBytes.sha256, bytes: captureBytes.bytes }).from(captureBytes).where(inArray(captureBytes.sha256, [...sha256s]));
+  const rows = await tx
+    .select({ sha256: captureBytes.sha256, bytes: captureBytes.bytes })
+    .from(captureBytes)
+    .where(inArray(captureBytes.sha256, [...sha256s]));
   return new Map(rows.map((row) => [row.sha256, row.bytes]));
 }
 
 /** @throws problem "not-found" */
-export async function findCaptureWithBytes(tx: Tx, captureId: string): Promise<{ capture: typeof captures.$inferSelect; bytes: Buffer; checkNumber: string; instrumentId: string }> {
+export async function findCaptureWithBytes(
+  tx: Tx,
+  captureId: string,
+): Promise<{ capture: typeof captures.$inferSelect; bytes: Buffer; checkNumber: string; instrumentId: string }> {
   const [row] = await tx
-    .select({ capture: captures, bytes: captureBytes.bytes, checkNumber: checks.number, instrumentId: checks.instrumentId })
+    .select({
+      capture: captures,
+      bytes: captureBytes.bytes,
+      checkNumber: checks.number,
+      instrumentId: checks.instrumentId,
+    })
     .from(captures)
     .innerJoin(captureBytes, and(eq(captureBytes.labId, captures.labId), eq(captureBytes.sha256, captures.sha256)))
     .innerJoin(checks, and(eq(checks.labId, captures.labId), eq(checks.id, captures.checkId)))

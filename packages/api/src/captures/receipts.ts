@@ -10,7 +10,9 @@ import { findFirstSeen } from "./queries.ts";
 export async function listReceipts(tx: Tx, checkId: string): Promise<CaptureReceipt[]> {
   const rows = await listCaptures(tx, checkId);
   const numbers = await trailNumbers(tx, checkId);
-  const firstSeen = await findFirstSeen(tx, [...new Set(rows.filter((row) => row.capture.seenBeforeCaptureId !== null).map((row) => row.capture.sha256))]);
+  const firstSeen = await findFirstSeen(tx, [
+    ...new Set(rows.filter((row) => row.capture.seenBeforeCaptureId !== null).map((row) => row.capture.sha256)),
+  ]);
   return rows.map(({ capture, receiverName, reading, refusal }) => {
     const before = capture.seenBeforeCaptureId === null ? undefined : firstSeen.get(capture.sha256);
     return {
@@ -23,7 +25,10 @@ export async function listReceipts(tx: Tx, checkId: string): Promise<CaptureRece
       receivedBy: { id: capture.receivedBy, name: receiverName },
       part: capture.part as CaptureReceipt["part"],
       trailNumber: numbers.get(capture.id) ?? 0,
-      seenBefore: before === undefined ? null : { checkNumber: before.checkNumber, fileName: before.fileName, receivedAt: before.receivedAt.toISOString() },
+      seenBefore:
+        before === undefined
+          ? null
+          : { checkNumber: before.checkNumber, fileName: before.fileName, receivedAt: before.receivedAt.toISOString() },
       reading: reading ?? null,
       refusal: refusal ?? null,
     };

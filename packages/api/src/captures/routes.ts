@@ -4,7 +4,9 @@ import { problem } from "../http/problem.ts";
 import { addCaptures, readCaptureBytes, type CaptureServices } from "./service.ts";
 
 export function mountCaptures(api: Api, services: CaptureServices): void {
-  mount(api, routes.addCaptures, ({ ctx, params, files, fields }) => addCaptures(services, ctx, params.checkId, { part: partOf(fields["part"]), files }));
+  mount(api, routes.addCaptures, ({ ctx, params, files, fields }) =>
+    addCaptures(services, ctx, params.checkId, { part: partOf(fields["part"]), files }),
+  );
   mount(api, routes.readCapture, ({ ctx, params }) => readCaptureBytes(services.db, ctx, params.captureId));
 }
 

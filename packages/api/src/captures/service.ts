@@ -53,15 +53,27 @@ async function storeCaptures(
     const check = await findCheck(tx, checkId);
     const draft = await lockDraft(tx, checkId);
     if (!draft.open) {
-      throw problem("conflict", `${check.number} is submitted: its captures are closed. Nothing was stored; have it sent back, or begin another check.`);
+      throw problem(
+        "conflict",
+        `${check.number} is submitted: its captures are closed. Nothing was stored; have it sent back, or begin another check.`,
+      );
     }
     const receivedAt = await recordNow(tx);
-    const known = await findFirstSeen(tx, hashed.map(({ sha256 }) => sha256));
+    const known = await findFirstSeen(
+      tx,
+      hashed.map(({ sha256 }) => sha256),
+    );
     const first = new Map([...known].map(([sha256, seen]) => [sha256, seen.captureId]));
     let position = await findLastPosition(tx, checkId);
     for (const { file, id, sha256 } of hashed) {
       position += 1;
-      await keepBytes(tx, { labId: ctx.labId, sha256, sizeBytes: file.bytes.length, bytes: file.bytes, storedAt: receivedAt });
+      await keepBytes(tx, {
+        labId: ctx.labId,
+        sha256,
+        sizeBytes: file.bytes.length,
+        bytes: file.bytes,
+        storedAt: receivedAt,
+      });
       await tx.insert(captures).values({
         labId: ctx.labId,
         id,
@@ -79,7 +91,8 @@ async function storeCaptures(
       if (!first.has(sha256)) first.set(sha256, id);
     }
     await addContributor(tx, ctx, checkId, "uploaded");
-    if ((await findState(tx, checkId)) === "set-aside") await addEvent(tx, ctx, { checkId, kind: "resumed", revision: draft.revision });
+    if ((await findState(tx, checkId)) === "set-aside")
+      await addEvent(tx, ctx, { checkId, kind: "resumed", revision: draft.revision });
     await writeTrail(tx, ctx, {
       action: "captures.stored",
       about: { kind: "check", id: checkId, label: check.number, instrumentId: check.instrumentId, checkId },
@@ -107,7 +120,14 @@ export async function readStored(
 ): Promise<void> {
   const found = await analyser.read(capture.bytes, capture.name);
   await inLab(db, ctx, async (tx) =>
-    keepReading(tx, { labId: ctx.labId, captureId: capture.id, coreVersion, reading: found.reading, refusal: found.refusal, readAt: await recordNow(tx) }),
+    keepReading(tx, {
+      labId: ctx.labId,
+      captureId: capture.id,
+      coreVersion,
+      reading: found.reading,
+      refusal: found.refusal,
+      readAt: await recordNow(tx),
+    }),
   );
 }
 
@@ -117,10 +137,23 @@ export async function readCaptureBytes(db: Database, ctx: Context, captureId: st
     const row = await findCaptureWithBytes(tx, captureId);
     await writeTrail(tx, ctx, {
       action: "capture.read",
-      about: { kind: "capture", id: captureId, label: row.capture.fileName, instrumentId: row.instrumentId, checkId: row.capture.checkId },
+      about: {
+        kind: "capture",
+        id: captureId,
+        label: row.capture.fileName,
+        instrumentId: row.instrumentId,
+        checkId: row.capture.checkId,
+      },
       after: { sha256: row.capture.sha256, check: row.checkNumber },
     });
     return row;
   });
-  return { file: { bytes: found.bytes, type: "application/octet-stream", name: found.capture.fileName, sha256: found.capture.sha256 } };
+  return {
+    file: {
+      bytes: found.bytes,
+      type: "application/octet-stream",
+      name: found.capture.fileName,
+      sha256: found.capture.sha256,
+    },
+  };
 }

@@ -38,12 +38,22 @@ import { buildSetup } from "./setup.ts";
 import { holdToProcedure, resultOf, stripOf } from "./summarise.ts";
 import type { CheckWork } from "./work.ts";
 
-export async function analyseCheck(work: Pick<CheckWork, "db" | "analyser">, ctx: Context, checkId: string, input: z.output<typeof analyseInput>): Promise<Check> {
+export async function analyseCheck(
+  work: Pick<CheckWork, "db" | "analyser">,
+  ctx: Context,
+  checkId: string,
+  input: z.output<typeof analyseInput>,
+): Promise<Check> {
   await readUnread(work, ctx, checkId);
   const prepared = await inLab(work.db, ctx, (tx) => prepare(tx, ctx, checkId, input));
   const { analysis: raw, drawing } = await work.analyser.analyse(prepared.inputs, prepared.setup);
-  const analysis = withUnread(holdToProcedure(throughJson(raw), prepared.procedure.leastLinesPerSegment, prepared.procedure.code), prepared.unread);
-  return inLab(work.db, ctx, (tx) => keep(tx, ctx, input, prepared, analysis, drawing === null ? null : throughJson(drawing)));
+  const analysis = withUnread(
+    holdToProcedure(throughJson(raw), prepared.procedure.leastLinesPerSegment, prepared.procedure.code),
+    prepared.unread,
+  );
+  return inLab(work.db, ctx, (tx) =>
+    keep(tx, ctx, input, prepared, analysis, drawing === null ? null : throughJson(drawing)),
+  );
 }
 
 interface Prepared {
@@ -63,7 +73,10 @@ interface Prepared {
 async function readUnread(work: Pick<CheckWork, "db" | "analyser">, ctx: Context, checkId: string): Promise<void> {
   const unread = await inLab(work.db, ctx, async (tx) => {
     const rows = (await listCaptures(tx, checkId)).filter((row) => row.readWith !== coreVersion);
-    const bytes = await loadBytes(tx, rows.map((row) => row.capture.sha256));
+    const bytes = await loadBytes(
+      tx,
+      rows.map((row) => row.capture.sha256),
+    );
     return rows.map(({ capture }) => ({ id: capture.id, name: capture.fileName, bytes: bytes.get(capture.sha256)! }));
   });
   for (const capture of unread) await readStored(work, ctx, capture);
@@ -72,15 +85,26 @@ async function readUnread(work: Pick<CheckWork, "db" | "analyser">, ctx: Context
 async function prepare(tx: Tx, ctx: Context, checkId: string, input: { version: number }): Promise<Prepared> {
   const { check, draft } = await lockOpenDraft(tx, ctx, checkId, input);
   const all = await listCaptures(tx, checkId, draft.currentAttempt);
-  if (all.length === 0) throw problem("unusable", `Attempt ${draft.currentAttempt} of ${check.number} has no capture yet. Add one, then analyse.`);
+  if (all.length === 0)
+    throw problem(
+      "unusable",
+      `Attempt ${draft.currentAttempt} of ${check.number} has no capture yet. Add one, then analyse.`,
+    );
   // The same bytes twice in one attempt are one recording, whatever they are called.
-  const different = all.filter((row, index) => all.findIndex((other) => other.capture.sha256 === row.capture.sha256 && other.capture.part === row.capture.part) === index);
+  const different = all.filter(
+    (row, index) =>
+      all.findIndex(
+        (other) => other.capture.sha256 === row.capture.sha256 && other.capture.part === row.capture.part,
+      ) === index,
+  );
   const readable = different.filter((row) => row.reading !== null);
   const unread = different.filter((row) => row.reading === null);
   const lamp = readable.find((row) => row.capture.part === "lamp");
   if (lamp === undefined) {
     const why = unread[0]?.refusal ?? "Only darks have come so far.";
-    throw problem("unusable", `No capture of the lamp can be read in attempt ${draft.currentAttempt}: ${why}`, { kept: "Every file is stored as it came, and stays in the list." });
+    throw problem("unusable", `No capture of the lamp can be read in attempt ${draft.currentAttempt}: ${why}`, {
+      kept: "Every file is stored as it came, and stays in the list.",
+    });
   }
   const configuration = await findConfiguration(tx, check.configurationId);
   const { instrument } = await findInstrument(tx, check.instrumentId);
@@ -101,12 +125,20 @@ async function prepare(tx: Tx, ctx: Context, checkId: string, input: { version: 
     history: await findReproducibility(tx, ctx, configuration.id, checkId),
     reading: lamp.reading!,
   });
-  const bytes = await loadBytes(tx, readable.map((row) => row.capture.sha256));
+  const bytes = await loadBytes(
+    tx,
+    readable.map((row) => row.capture.sha256),
+  );
   return {
     check,
     draft,
     procedure,
-    inputs: readable.map(({ capture }) => ({ name: capture.fileName, bytes: bytes.get(capture.sha256)!, sha256: capture.sha256, part: capture.part as CaptureInput["part"] })),
+    inputs: readable.map(({ capture }) => ({
+      name: capture.fileName,
+      bytes: bytes.get(capture.sha256)!,
+      sha256: capture.sha256,
+      part: capture.part as CaptureInput["part"],
+    })),
     captureIds: readable.map(({ capture }) => capture.id),
     unread,
     setup,
@@ -124,7 +156,10 @@ async function listNamedSources(tx: Tx, inputs: StoredDraft): Promise<(typeof so
 /** A file of the attempt that could not be read is not passed over in silence. */
 function withUnread(analysis: Analysis, unread: readonly CaptureWithMore[]): Analysis {
   if (unread.length === 0) return analysis;
-  const warnings = unread.map(({ capture, refusal }) => ({ code: "not-read", text: `${capture.fileName} was not used: ${refusal ?? "it could not be read."}` }));
+  const warnings = unread.map(({ capture, refusal }) => ({
+    code: "not-read",
+    text: `${capture.fileName} was not used: ${refusal ?? "it could not be read."}`,
+  }));
   return { ...analysis, warnings: [...analysis.warnings, ...warnings] };
 }
 
@@ -166,12 +201,17 @@ async function keep(
     nearLimit: result.nearLimit,
     result,
     strip: stripOf(analysis),
-    changed: describeChange(previous, { attempt: draft.currentAttempt, inputs: draft.inputs, captureIds: prepared.captureIds }),
+    changed: describeChange(previous, {
+      attempt: draft.currentAttempt,
+      inputs: draft.inputs,
+      captureIds: prepared.captureIds,
+    }),
   };
   await tx.insert(analyses).values(row);
   if (drawing !== null) await tx.insert(analysisDrawings).values({ labId: ctx.labId, analysisId: id, drawing });
   await addContributor(tx, ctx, check.id, "analysed");
-  if ((await findState(tx, check.id)) === "set-aside") await addEvent(tx, ctx, { checkId: check.id, kind: "resumed", revision: draft.revision });
+  if ((await findState(tx, check.id)) === "set-aside")
+    await addEvent(tx, ctx, { checkId: check.id, kind: "resumed", revision: draft.revision });
   const reply = await readCheck(tx, ctx, check.id);
   await writeTrail(tx, ctx, [
     {
@@ -198,9 +238,15 @@ async function keep(
 }
 
 /** Lines left out since the analysis before, and lines taken back, each an entry of its own with the verdict on both sides. */
-function leaveOutEntries(check: CheckRecord, previous: AnalysisRow | null, inputs: StoredDraft, analysis: Analysis): TrailInput[] {
+function leaveOutEntries(
+  check: CheckRecord,
+  previous: AnalysisRow | null,
+  inputs: StoredDraft,
+  analysis: Analysis,
+): TrailInput[] {
   const before = previous?.inputs.leftOut ?? [];
-  const isIn = (list: StoredDraft["leftOut"], wavelengthNm: number) => list.some((left) => left.wavelengthNm === wavelengthNm);
+  const isIn = (list: StoredDraft["leftOut"], wavelengthNm: number) =>
+    list.some((left) => left.wavelengthNm === wavelengthNm);
   const verdicts = {
     before: { verdict: previous?.result.verdict ?? null, toleranceUsed: previous?.result.toleranceUsed ?? null },
     after: { verdict: analysis.verdict?.verdict ?? null, toleranceUsed: analysis.verdict?.toleranceUsed ?? null },
@@ -212,7 +258,12 @@ function leaveOutEntries(check: CheckRecord, previous: AnalysisRow | null, input
         action: "line.left-out",
         about: aboutCheck(check),
         before: verdicts.before,
-        after: { wavelengthNm: left.wavelengthNm, species: lineAt(analysis, left.wavelengthNm)?.species ?? null, reason: left.reason, ...verdicts.after },
+        after: {
+          wavelengthNm: left.wavelengthNm,
+          species: lineAt(analysis, left.wavelengthNm)?.species ?? null,
+          reason: left.reason,
+          ...verdicts.after,
+        },
         why: left.note,
       })),
     ...before

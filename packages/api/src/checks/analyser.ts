@@ -43,13 +43,20 @@ export function openAnalyser(options: AnalyserOptions = {}): Analyser {
     } catch (error) {
       onFault(error);
       if (limit.aborted) {
-        throw problem("unusable", `${what} took longer than a minute and was stopped. The captures are kept; try fewer or shorter ones.`);
+        throw problem(
+          "unusable",
+          `${what} took longer than a minute and was stopped. The captures are kept; try fewer or shorter ones.`,
+        );
       }
-      throw problem("unusable", `${what} failed in the measuring core. The captures are kept as they are; the fault has been noted for the people who run Wavekeep.`);
+      throw problem(
+        "unusable",
+        `${what} failed in the measuring core. The captures are kept as they are; the fault has been noted for the people who run Wavekeep.`,
+      );
     }
   };
   return {
-    read: (bytes, name, readOptions = {}) => run<Reading>({ kind: "read", bytes, name, options: readOptions }, `Reading ${name}`),
+    read: (bytes, name, readOptions = {}) =>
+      run<Reading>({ kind: "read", bytes, name, options: readOptions }, `Reading ${name}`),
     analyse: (captures, setup) => run<AnalysedCheck>({ kind: "analyse", captures, setup }, "The analysis"),
     close: () => pool.destroy(),
   };

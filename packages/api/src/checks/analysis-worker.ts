@@ -2,11 +2,19 @@
  * The worker thread in which captures are read and analysed: the event loop never waits for the core.
  * Everything in and out is plain data; typed arrays stay on this side.
  */
-import { analyseCaptures, readCapture, type AnalysedCheck, type AnalysisSetup, type CaptureInput, type ReadOptions } from "@wavekeep/core";
+import {
+  analyseCaptures,
+  readCapture,
+  type AnalysedCheck,
+  type AnalysisSetup,
+  type CaptureInput,
+  type ReadOptions,
+} from "@wavekeep/core";
 import type { CaptureReceipt } from "../contract/checks.ts";
 import { firstRowsOf } from "../captures/first-rows.ts";
 
-export type Reading = { reading: NonNullable<CaptureReceipt["reading"]>; refusal: null } | { reading: null; refusal: string };
+export type Reading =
+  { reading: NonNullable<CaptureReceipt["reading"]>; refusal: null } | { reading: null; refusal: string };
 
 export type WorkerTask =
   | { kind: "read"; bytes: Uint8Array; name: string; options: ReadOptions }

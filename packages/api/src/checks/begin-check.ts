@@ -8,7 +8,13 @@ import { checkAttempts, checkDrafts, checks, sources, submissions, type StoredDr
 import { inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
 import { yearIn } from "../instruments/dates.ts";
-import { findAxisAt, findConfiguration, findInstrument, takeNumber, type ConfigurationRow } from "../instruments/queries.ts";
+import {
+  findAxisAt,
+  findConfiguration,
+  findInstrument,
+  takeNumber,
+  type ConfigurationRow,
+} from "../instruments/queries.ts";
 import { assertNotRetired } from "../instruments/service.ts";
 import { findProcedure } from "../procedures/queries.ts";
 import { writeTrail } from "../records/trail.ts";
@@ -20,8 +26,13 @@ export function beginCheck(db: Database, ctx: Context, input: z.output<typeof be
     const configuration = await findConfiguration(tx, input.configurationId);
     const { instrument } = await findInstrument(tx, configuration.instrumentId);
     assertNotRetired(instrument);
-    if (configuration.toOn !== null) throw problem("conflict", `This configuration of ${instrument.name} has ended: begin the check on the present one.`);
-    const followsCheckId = input.followsCheckId ?? (input.condition === "as-left" ? configuration.asLeftAskedByCheckId : null);
+    if (configuration.toOn !== null)
+      throw problem(
+        "conflict",
+        `This configuration of ${instrument.name} has ended: begin the check on the present one.`,
+      );
+    const followsCheckId =
+      input.followsCheckId ?? (input.condition === "as-left" ? configuration.asLeftAskedByCheckId : null);
     if (followsCheckId !== null) await assertSameConfiguration(tx, followsCheckId, configuration);
     const procedure = await findProcedure(tx, configuration.procedureId);
     const now = await recordNow(tx);
@@ -46,14 +57,21 @@ export function beginCheck(db: Database, ctx: Context, input: z.output<typeof be
       savedAt: now,
       savedBy: ctx.personId!,
     });
-    await tx.insert(checkAttempts).values({ labId: ctx.labId, checkId: id, number: 1, startedAt: now, startedBy: ctx.personId!, reason: "" });
+    await tx
+      .insert(checkAttempts)
+      .values({ labId: ctx.labId, checkId: id, number: 1, startedAt: now, startedBy: ctx.personId!, reason: "" });
     await addEvent(tx, ctx, { checkId: id, kind: "begun", revision: 1 });
     await addContributor(tx, ctx, id, "began");
     const reply = await readCheck(tx, ctx, id);
     await writeTrail(tx, ctx, {
       action: "check.begun",
       about: { kind: "check", id, label: number, instrumentId: instrument.id, checkId: id },
-      after: { condition: input.condition, instrument: instrument.name, procedure: `${procedure.code}, version ${procedure.version}`, followsCheckId },
+      after: {
+        condition: input.condition,
+        instrument: instrument.name,
+        procedure: `${procedure.code}, version ${procedure.version}`,
+        followsCheckId,
+      },
       rows: [{ table: "checks", id }],
     });
     return reply;
@@ -63,9 +81,13 @@ export function beginCheck(db: Database, ctx: Context, input: z.output<typeof be
 async function assertSameConfiguration(tx: Tx, followsCheckId: string, configuration: ConfigurationRow): Promise<void> {
   const before = await findCheck(tx, followsCheckId);
   if (before.configurationId === configuration.id) return;
-  throw problem("invalid-input", `${before.number} was made on another instrument or configuration; a check follows one of its own. Nothing was begun.`, {
-    fields: [{ path: "followsCheckId", message: "Choose a check of the same configuration." }],
-  });
+  throw problem(
+    "invalid-input",
+    `${before.number} was made on another instrument or configuration; a check follows one of its own. Nothing was begun.`,
+    {
+      fields: [{ path: "followsCheckId", message: "Choose a check of the same configuration." }],
+    },
+  );
 }
 
 /** The sources of the last check, where they are still in use; nothing is taken over that has to be looked at again. */
@@ -78,7 +100,13 @@ async function firstInputs(tx: Tx, configuration: ConfigurationRow, now: Date): 
     .orderBy(desc(submissions.submittedAt))
     .limit(1);
   const lastIds = last?.inputs.sourceIds ?? [];
-  const present = lastIds.length === 0 ? [] : await tx.select({ id: sources.id }).from(sources).where(and(inArray(sources.id, lastIds), isNull(sources.retiredAt)));
+  const present =
+    lastIds.length === 0
+      ? []
+      : await tx
+          .select({ id: sources.id })
+          .from(sources)
+          .where(and(inArray(sources.id, lastIds), isNull(sources.retiredAt)));
   const axis = await findAxisAt(tx, configuration.id, now);
   return {
     sourceIds: lastIds.filter((id) => present.some((source) => source.id === id)),

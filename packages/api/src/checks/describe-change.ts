@@ -9,10 +9,12 @@ export interface AnalysedState {
 }
 
 const words: Partial<Record<keyof StoredDraft, (value: never) => string>> = {
-  minutesSinceSwitchOn: (value: number | null) => (value === null ? "time since switch-on not stated" : `lamp on for ${value} min`),
+  minutesSinceSwitchOn: (value: number | null) =>
+    value === null ? "time since switch-on not stated" : `lamp on for ${value} min`,
   temperatureC: (value: number | null) => (value === null ? "room temperature not stated" : `room at ${value} °C`),
   pressureHpa: (value: number | null) => (value === null ? "pressure not measured" : `pressure ${value} hPa`),
-  relativeHumidity: (value: number | null) => (value === null ? "humidity not measured" : `humidity ${Math.round(value * 100)} %`),
+  relativeHumidity: (value: number | null) =>
+    value === null ? "humidity not measured" : `humidity ${Math.round(value * 100)} %`,
   fullScaleCounts: (value: number | null) => (value === null ? "full scale not stated" : `full scale ${value} counts`),
   mode: (value: string) => (value === "range" ? "lines named by a range" : "lines named by the axis in force"),
 };
@@ -31,7 +33,8 @@ export function describeChange(previous: AnalysedState | null, next: AnalysedSta
     if (previous.inputs[key] !== next.inputs[key]) parts.push(write(next.inputs[key] as never));
   }
   const { rangeFirstNm: first, rangeLastNm: last } = next.inputs;
-  if (next.inputs.mode === "range" && (first !== previous.inputs.rangeFirstNm || last !== previous.inputs.rangeLastNm)) parts.push(`range ${first} to ${last} nm`);
+  if (next.inputs.mode === "range" && (first !== previous.inputs.rangeFirstNm || last !== previous.inputs.rangeLastNm))
+    parts.push(`range ${first} to ${last} nm`);
   const wavelengths = (inputs: StoredDraft) => inputs.leftOut.map((left) => left.wavelengthNm);
   const out = wavelengths(next.inputs).filter((nm) => !wavelengths(previous.inputs).includes(nm));
   const back = wavelengths(previous.inputs).filter((nm) => !wavelengths(next.inputs).includes(nm));

@@ -10,7 +10,14 @@ import { configurations, standingEntries } from "../db/schema/index.ts";
 import { recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { openImpactReview } from "../impact/open-review.ts";
 import { momentText } from "../instruments/dates.ts";
-import { findInstrument, findStanding, listManagers, lockConfiguration, type ConfigurationRow, type InstrumentRow } from "../instruments/queries.ts";
+import {
+  findInstrument,
+  findStanding,
+  listManagers,
+  lockConfiguration,
+  type ConfigurationRow,
+  type InstrumentRow,
+} from "../instruments/queries.ts";
 import { isInUse } from "../instruments/states.ts";
 import { queueMail } from "../mail/outbox.ts";
 import type { TrailInput } from "../records/trail.ts";
@@ -25,7 +32,12 @@ export interface FailedCheck {
 }
 
 /** @returns the trail entries, to be written last and as Wavekeep */
-export async function placeHold(tx: Tx, ctx: Context, work: HoldWork, { check, analysis, cause }: FailedCheck): Promise<TrailInput[]> {
+export async function placeHold(
+  tx: Tx,
+  ctx: Context,
+  work: HoldWork,
+  { check, analysis, cause }: FailedCheck,
+): Promise<TrailInput[]> {
   const configuration = await lockConfiguration(tx, check.configurationId);
   const { instrument } = await findInstrument(tx, check.instrumentId);
   const before = await findStanding(tx, configuration.id);
@@ -34,12 +46,21 @@ export async function placeHold(tx: Tx, ctx: Context, work: HoldWork, { check, a
   if (cause === "set-aside" && (await holdOfCheck(tx, check.id)) !== null) return [];
   const finding = worstText(analysis.result) ?? "A line is out of tolerance";
   const entries: TrailInput[] = [];
-  if (wasInUse) entries.push(await holdEntry(tx, ctx, { configuration, instrument, check, finding, sequence: before.sequence + 1 }));
+  if (wasInUse)
+    entries.push(
+      await holdEntry(tx, ctx, { configuration, instrument, check, finding, sequence: before.sequence + 1 }),
+    );
   if (configuration.asLeftAskedByCheckId === null) {
-    await tx.update(configurations).set({ asLeftAskedByCheckId: check.id, version: configuration.version + 1 }).where(eq(configurations.id, configuration.id));
+    await tx
+      .update(configurations)
+      .set({ asLeftAskedByCheckId: check.id, version: configuration.version + 1 })
+      .where(eq(configurations.id, configuration.id));
     entries.push({ action: "as-left.asked", about: aboutConfiguration(configuration, instrument, check) });
   } else if (wasInUse) {
-    await tx.update(configurations).set({ version: configuration.version + 1 }).where(eq(configurations.id, configuration.id));
+    await tx
+      .update(configurations)
+      .set({ version: configuration.version + 1 })
+      .where(eq(configurations.id, configuration.id));
   }
   entries.push(
     ...(await openAlert(tx, ctx, {
@@ -59,7 +80,13 @@ export async function placeHold(tx: Tx, ctx: Context, work: HoldWork, { check, a
 async function holdEntry(
   tx: Tx,
   ctx: Context,
-  hold: { configuration: ConfigurationRow; instrument: InstrumentRow; check: CheckRecord; finding: string; sequence: number },
+  hold: {
+    configuration: ConfigurationRow;
+    instrument: InstrumentRow;
+    check: CheckRecord;
+    finding: string;
+    sequence: number;
+  },
 ): Promise<TrailInput> {
   const { configuration, instrument, check, finding } = hold;
   const id = newId();
@@ -84,7 +111,11 @@ async function holdEntry(
   };
 }
 
-const aboutConfiguration = (configuration: ConfigurationRow, instrument: InstrumentRow, check: CheckRecord): TrailInput["about"] => ({
+const aboutConfiguration = (
+  configuration: ConfigurationRow,
+  instrument: InstrumentRow,
+  check: CheckRecord,
+): TrailInput["about"] => ({
   kind: "configuration",
   id: configuration.id,
   label: instrument.name,
@@ -96,7 +127,13 @@ async function tellPeople(
   tx: Tx,
   ctx: Context,
   work: HoldWork,
-  told: { instrument: InstrumentRow; check: CheckRecord; finding: string; reviewNumber: string | null; wasInUse: boolean },
+  told: {
+    instrument: InstrumentRow;
+    check: CheckRecord;
+    finding: string;
+    reviewNumber: string | null;
+    wasInUse: boolean;
+  },
 ): Promise<void> {
   const { instrument, check, finding } = told;
   const now = await recordNow(tx);
@@ -107,7 +144,9 @@ async function tellPeople(
     told.wasInUse
       ? `${instrument.name} has been on hold since ${momentText(ctx.zone, now)}: a lab manager confirms the hold or lifts it, and an as-left check is asked for.`
       : `${instrument.name} was out of use already; an as-left check is asked for.`,
-    told.reviewNumber === null ? null : `Impact review ${told.reviewNumber} waits for its owner: which results since the last good check are in doubt, and what is done about them.`,
+    told.reviewNumber === null
+      ? null
+      : `Impact review ${told.reviewNumber} waits for its owner: which results since the last good check are in doubt, and what is done about them.`,
     `${work.config.publicUrl}/checks/${check.id}`,
   ];
   for (const personId of new Set(people)) {
@@ -125,7 +164,9 @@ export async function holdOfCheck(tx: Tx, checkId: string): Promise<typeof stand
   const [row] = await tx
     .select()
     .from(standingEntries)
-    .where(and(eq(standingEntries.checkId, checkId), eq(standingEntries.standing, "on-hold"), isNull(standingEntries.setBy)))
+    .where(
+      and(eq(standingEntries.checkId, checkId), eq(standingEntries.standing, "on-hold"), isNull(standingEntries.setBy)),
+    )
     .orderBy(desc(standingEntries.sequence))
     .limit(1);
   return row ?? null;

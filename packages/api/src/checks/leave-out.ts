@@ -38,10 +38,14 @@ export function leaveOutProblem(analysis: Analysis | null, left: LeftOut): strin
 
 const seen: Record<LeftOut["reason"], (line: LineResult, analysis: Analysis) => boolean> = {
   saturated: (line) => line.flags.includes("saturated"),
-  blended: (line, analysis) => line.flags.includes("blend") || line.blendOfNm.length > 1 || hasNeighbour(line, analysis),
-  spike: (line, analysis) => line.flags.includes("spike") || (analysis.medianFwhm !== null && line.fwhm < spikeShare * analysis.medianFwhm),
+  blended: (line, analysis) =>
+    line.flags.includes("blend") || line.blendOfNm.length > 1 || hasNeighbour(line, analysis),
+  spike: (line, analysis) =>
+    line.flags.includes("spike") || (analysis.medianFwhm !== null && line.fwhm < spikeShare * analysis.medianFwhm),
   "too-weak": (line) => line.flags.includes("weak") || line.signalToNoise < weakBelow,
-  disturbed: (line) => line.flags.some((flag) => flag === "poor-fit" || flag === "edge" || flag === "room-light") || line.reducedChiSquare > poorAbove,
+  disturbed: (line) =>
+    line.flags.some((flag) => flag === "poor-fit" || flag === "edge" || flag === "room-light") ||
+    line.reducedChiSquare > poorAbove,
 };
 
 const notSeen: Record<LeftOut["reason"], (line: LineResult) => string> = {

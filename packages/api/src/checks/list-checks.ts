@@ -66,9 +66,15 @@ export async function listCheckRows(tx: Tx, filter: CheckFilter): Promise<CheckR
   if (filter.configurationId !== undefined) conditions.push(sql`c.configuration_id = ${filter.configurationId}::uuid`);
   if (filter.states !== undefined) {
     const kinds = filter.states.flatMap((state) => (state === "begun" ? ["begun", "resumed"] : [state]));
-    conditions.push(sql`st.kind in (${sql.join(kinds.map((kind) => sql`${kind}`), sql`, `)})`);
+    conditions.push(
+      sql`st.kind in (${sql.join(
+        kinds.map((kind) => sql`${kind}`),
+        sql`, `,
+      )})`,
+    );
   }
-  if (filter.verdict !== undefined) conditions.push(sql`coalesce(sub.result, la.result) ->> 'verdict' = ${filter.verdict}`);
+  if (filter.verdict !== undefined)
+    conditions.push(sql`coalesce(sub.result, la.result) ->> 'verdict' = ${filter.verdict}`);
   if (filter.personId !== undefined) {
     conditions.push(sql`(exists (select 1 from check_contributors cc where cc.lab_id = c.lab_id and cc.check_id = c.id and cc.person_id = ${filter.personId}::uuid)
       or exists (select 1 from check_events pe where pe.lab_id = c.lab_id and pe.check_id = c.id and pe.by_id = ${filter.personId}::uuid))`);
@@ -77,7 +83,8 @@ export async function listCheckRows(tx: Tx, filter: CheckFilter): Promise<CheckR
     const pattern = `%${filter.text.trim().replace(/[\\%_]/g, (sign) => `\\${sign}`)}%`;
     conditions.push(sql`(c.number ilike ${pattern} or i.name ilike ${pattern})`);
   }
-  if (filter.after !== undefined) conditions.push(sql`(c.begun_at, c.id) < (${filter.after.begunAt}::timestamptz, ${filter.after.id}::uuid)`);
+  if (filter.after !== undefined)
+    conditions.push(sql`(c.begun_at, c.id) < (${filter.after.begunAt}::timestamptz, ${filter.after.id}::uuid)`);
   const { rows } = await tx.execute<Row>(sql`
     select c.id, c.number, c.instrument_id, i.name as instrument_name, i.owner_id, c.configuration_id, cf.name as configuration_name, c.condition,
       st.kind as event_kind, st.at as event_at, st.comment as event_comment, c.begun_at, c.begun_by, beginner.name as begun_by_name,

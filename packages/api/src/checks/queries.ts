@@ -76,7 +76,10 @@ export async function addEvent(
   ctx: Context,
   event: { checkId: string; kind: EventRow["kind"]; revision: number; comment?: string | null },
 ): Promise<{ id: string; at: Date }> {
-  const [last] = await tx.select({ sequence: max(checkEvents.sequence) }).from(checkEvents).where(eq(checkEvents.checkId, event.checkId));
+  const [last] = await tx
+    .select({ sequence: max(checkEvents.sequence) })
+    .from(checkEvents)
+    .where(eq(checkEvents.checkId, event.checkId));
   const id = newId();
   const at = await recordNow(tx);
   await tx.insert(checkEvents).values({
@@ -139,14 +142,24 @@ export interface CaptureWithMore {
 /** Captures of a check in the order they came, with what was read in them last. */
 export async function listCaptures(tx: Tx, checkId: string, attempt?: number): Promise<CaptureWithMore[]> {
   const newest = tx
-    .select({ reading: captureReadings.reading, refusal: captureReadings.refusal, coreVersion: captureReadings.coreVersion })
+    .select({
+      reading: captureReadings.reading,
+      refusal: captureReadings.refusal,
+      coreVersion: captureReadings.coreVersion,
+    })
     .from(captureReadings)
     .where(and(eq(captureReadings.labId, captures.labId), eq(captureReadings.captureId, captures.id)))
     .orderBy(desc(captureReadings.readAt))
     .limit(1)
     .as("newest");
   return tx
-    .select({ capture: captures, receiverName: people.name, reading: newest.reading, refusal: newest.refusal, readWith: newest.coreVersion })
+    .select({
+      capture: captures,
+      receiverName: people.name,
+      reading: newest.reading,
+      refusal: newest.refusal,
+      readWith: newest.coreVersion,
+    })
     .from(captures)
     .innerJoin(people, eq(people.id, captures.receivedBy))
     .leftJoinLateral(newest, sql`true`)
@@ -166,8 +179,23 @@ export async function findFirstCaptureAt(tx: Tx, checkId: string, attempt?: numb
 }
 
 /** Analyses without their bodies, oldest first. */
-export function listAnalysisVersions(tx: Tx, checkId: string): Promise<
-  { id: string; version: number; attempt: number; madeAt: Date; madeBy: string; madeByName: string; coreVersion: string; sha256: string; changed: string; verdict: string | null; outcome: string }[]
+export function listAnalysisVersions(
+  tx: Tx,
+  checkId: string,
+): Promise<
+  {
+    id: string;
+    version: number;
+    attempt: number;
+    madeAt: Date;
+    madeBy: string;
+    madeByName: string;
+    coreVersion: string;
+    sha256: string;
+    changed: string;
+    verdict: string | null;
+    outcome: string;
+  }[]
 > {
   return tx
     .select({
@@ -189,14 +217,20 @@ export function listAnalysisVersions(tx: Tx, checkId: string): Promise<
     .orderBy(asc(analyses.version));
 }
 
-export async function findOptionalAnalysis(tx: Tx, by: { id: string } | { checkId: string; attempt?: number }): Promise<AnalysisRow | null> {
+export async function findOptionalAnalysis(
+  tx: Tx,
+  by: { id: string } | { checkId: string; attempt?: number },
+): Promise<AnalysisRow | null> {
   const [row] = await tx
     .select()
     .from(analyses)
     .where(
       "id" in by
         ? eq(analyses.id, by.id)
-        : and(eq(analyses.checkId, by.checkId), by.attempt === undefined ? undefined : eq(analyses.attempt, by.attempt)),
+        : and(
+            eq(analyses.checkId, by.checkId),
+            by.attempt === undefined ? undefined : eq(analyses.attempt, by.attempt),
+          ),
     )
     .orderBy(desc(analyses.version))
     .limit(1);
@@ -204,7 +238,11 @@ export async function findOptionalAnalysis(tx: Tx, by: { id: string } | { checkI
 }
 
 /** @throws problem "not-found" */
-export async function findDrawing(tx: Tx, checkId: string, version: number): Promise<(typeof analysisDrawings.$inferSelect)["drawing"]> {
+export async function findDrawing(
+  tx: Tx,
+  checkId: string,
+  version: number,
+): Promise<(typeof analysisDrawings.$inferSelect)["drawing"]> {
   const [row] = await tx
     .select({ drawing: analysisDrawings.drawing })
     .from(analysisDrawings)
@@ -214,18 +252,28 @@ export async function findDrawing(tx: Tx, checkId: string, version: number): Pro
   return row.drawing;
 }
 
-export async function findOptionalSubmission(tx: Tx, checkId: string, revision?: number): Promise<SubmissionRow | null> {
+export async function findOptionalSubmission(
+  tx: Tx,
+  checkId: string,
+  revision?: number,
+): Promise<SubmissionRow | null> {
   const [row] = await tx
     .select()
     .from(submissions)
-    .where(and(eq(submissions.checkId, checkId), revision === undefined ? undefined : eq(submissions.revision, revision)))
+    .where(
+      and(eq(submissions.checkId, checkId), revision === undefined ? undefined : eq(submissions.revision, revision)),
+    )
     .orderBy(desc(submissions.revision))
     .limit(1);
   return row ?? null;
 }
 
 export function listSignatures(tx: Tx, checkId: string): Promise<SignatureRow[]> {
-  return tx.select().from(signatures).where(eq(signatures.checkId, checkId)).orderBy(asc(signatures.signedAt), asc(signatures.revision));
+  return tx
+    .select()
+    .from(signatures)
+    .where(eq(signatures.checkId, checkId))
+    .orderBy(asc(signatures.signedAt), asc(signatures.revision));
 }
 
 export async function findOptionalReport(tx: Tx, checkId: string): Promise<typeof reports.$inferSelect | null> {
@@ -234,5 +282,9 @@ export async function findOptionalReport(tx: Tx, checkId: string): Promise<typeo
 }
 
 export function listFollowers(tx: Tx, checkId: string): Promise<{ id: string; number: string }[]> {
-  return tx.select({ id: checks.id, number: checks.number }).from(checks).where(eq(checks.followsCheckId, checkId)).orderBy(asc(checks.begunAt));
+  return tx
+    .select({ id: checks.id, number: checks.number })
+    .from(checks)
+    .where(eq(checks.followsCheckId, checkId))
+    .orderBy(asc(checks.begunAt));
 }

@@ -6,7 +6,13 @@ import { sources } from "../db/schema/index.ts";
 import { hasRole, ownsInstrument, recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { notFound } from "../http/problem.ts";
 import { dateIn } from "../instruments/dates.ts";
-import { findAxisAt, findConfiguration, findLatestTolerance, findStanding, findToleranceAt } from "../instruments/queries.ts";
+import {
+  findAxisAt,
+  findConfiguration,
+  findLatestTolerance,
+  findStanding,
+  findToleranceAt,
+} from "../instruments/queries.ts";
 import { listReviewRows } from "../impact/queries.ts";
 import { findProcedure } from "../procedures/queries.ts";
 import { approveRefusal } from "./approval.ts";
@@ -57,7 +63,14 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
     summary,
     state: summary.state,
     revision: draft.revision,
-    procedure: { id: procedure.id, code: procedure.code, version: procedure.version, title: procedure.title, warmUpMinutes: procedure.warmUpMinutes, repeats: procedure.repeats },
+    procedure: {
+      id: procedure.id,
+      code: procedure.code,
+      version: procedure.version,
+      title: procedure.title,
+      warmUpMinutes: procedure.warmUpMinutes,
+      repeats: procedure.repeats,
+    },
     draft: { ...draft.inputs, version: draft.version },
     ...(await readInForce(tx, record, draft)),
     sources: await readSources(tx, ctx, draft),
@@ -88,7 +101,8 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
     followedBy: await listFollowers(tx, checkId),
     hold: await readHold(tx, record),
     impactReview: review === undefined ? null : { id: review.review.id, number: review.review.number },
-    report: report === null ? null : { number: report.number, sha256: report.sha256, madeAt: report.madeAt.toISOString() },
+    report:
+      report === null ? null : { number: report.number, sha256: report.sha256, madeAt: report.madeAt.toISOString() },
     may: await mayNow(tx, ctx, record, draft, summary.state, analysis),
   };
 }
@@ -101,7 +115,11 @@ async function findShownAnalysis(tx: Tx, check: CheckRecord, draft: DraftRow): P
 }
 
 /** Tolerance by the arrival of the first capture, axis by that of the current attempt's. */
-async function readInForce(tx: Tx, check: CheckRecord, draft: DraftRow): Promise<Pick<Check, "tolerance" | "axisInForce">> {
+async function readInForce(
+  tx: Tx,
+  check: CheckRecord,
+  draft: DraftRow,
+): Promise<Pick<Check, "tolerance" | "axisInForce">> {
   const now = await recordNow(tx);
   const firstAt = (await findFirstCaptureAt(tx, check.id)) ?? now;
   const attemptAt = (await findFirstCaptureAt(tx, check.id, draft.currentAttempt)) ?? now;
@@ -109,8 +127,15 @@ async function readInForce(tx: Tx, check: CheckRecord, draft: DraftRow): Promise
   const latest = await findLatestTolerance(tx, check.configurationId);
   const axis = await findAxisAt(tx, check.configurationId, attemptAt);
   return {
-    tolerance: { version: tolerance.version, segments: tolerance.segments, changedSince: latest.version > tolerance.version },
-    axisInForce: axis === null ? null : { number: axis.number, degree: axis.coefficients.length - 1, inForceFrom: axis.inForceFrom.toISOString() },
+    tolerance: {
+      version: tolerance.version,
+      segments: tolerance.segments,
+      changedSince: latest.version > tolerance.version,
+    },
+    axisInForce:
+      axis === null
+        ? null
+        : { number: axis.number, degree: axis.coefficients.length - 1, inForceFrom: axis.inForceFrom.toISOString() },
   };
 }
 
@@ -127,7 +152,12 @@ async function readSources(tx: Tx, ctx: Context, draft: DraftRow): Promise<Check
   });
 }
 
-async function readAttempts(tx: Tx, check: CheckRecord, draft: DraftRow, versions: Awaited<ReturnType<typeof listAnalysisVersions>>): Promise<Check["attempts"]> {
+async function readAttempts(
+  tx: Tx,
+  check: CheckRecord,
+  draft: DraftRow,
+  versions: Awaited<ReturnType<typeof listAnalysisVersions>>,
+): Promise<Check["attempts"]> {
   const attempts = await listAttempts(tx, check.id);
   const receipts = await listReceipts(tx, check.id);
   return attempts.map((attempt) => {
@@ -157,7 +187,14 @@ async function readHold(tx: Tx, check: CheckRecord): Promise<Check["hold"]> {
   return { since: placed.since.toISOString(), decided: standing.sequence > placed.sequence && standing.setBy !== null };
 }
 
-async function mayNow(tx: Tx, ctx: Context, check: CheckRecord, draft: DraftRow, state: Check["state"], analysis: AnalysisRow | null): Promise<Check["may"]> {
+async function mayNow(
+  tx: Tx,
+  ctx: Context,
+  check: CheckRecord,
+  draft: DraftRow,
+  state: Check["state"],
+  analysis: AnalysisRow | null,
+): Promise<Check["may"]> {
   const configuration = await findConfiguration(tx, check.configurationId);
   const worker = hasRole(ctx, "technician") || hasRole(ctx, "manager");
   const edit = worker && draft.open && configuration.toOn === null;
@@ -169,6 +206,8 @@ async function mayNow(tx: Tx, ctx: Context, check: CheckRecord, draft: DraftRow,
     approve: state === "submitted" && refusal === null,
     approveRefusal: refusal,
     return: state === "submitted" && reviewer,
-    acknowledge: (state === "submitted" || state === "approved") && (ownsInstrument(ctx, check.instrumentId) || hasRole(ctx, "manager")),
+    acknowledge:
+      (state === "submitted" || state === "approved") &&
+      (ownsInstrument(ctx, check.instrumentId) || hasRole(ctx, "manager")),
   };
 }

@@ -17,19 +17,39 @@ import { ensureReport } from "../records/report-store.ts";
 import { approveRefusal } from "./approval.ts";
 import { aboutCheck } from "./draft.ts";
 import { endHold } from "./hold.ts";
-import { addEvent, findCheck, findOptionalSubmission, findState, isContributor, lockDraft, type CheckRecord, type SubmissionRow } from "./queries.ts";
+import {
+  addEvent,
+  findCheck,
+  findOptionalSubmission,
+  findState,
+  isContributor,
+  lockDraft,
+  type CheckRecord,
+  type SubmissionRow,
+} from "./queries.ts";
 import { readCheck } from "./read-check.ts";
 import { assertOwnProof, sign } from "./submit-check.ts";
 import { verdictText } from "./words.ts";
 import type { CheckWork } from "./work.ts";
 
-const decidedAlready = "Somebody else decided on this check a moment ago. Nothing of yours was stored; reload the page to see what was decided.";
+const decidedAlready =
+  "Somebody else decided on this check a moment ago. Nothing of yours was stored; reload the page to see what was decided.";
 
-export function returnCheck(work: Pick<CheckWork, "db" | "jobs" | "config">, ctx: Context, checkId: string, input: z.output<typeof returnInput>): Promise<Check> {
+export function returnCheck(
+  work: Pick<CheckWork, "db" | "jobs" | "config">,
+  ctx: Context,
+  checkId: string,
+  input: z.output<typeof returnInput>,
+): Promise<Check> {
   return onlyOnce("conflict", decidedAlready, () =>
     inLab(work.db, ctx, async (tx) => {
       const { check, submission } = await lockSubmitted(tx, checkId, input.revision);
-      const event = await addEvent(tx, ctx, { checkId, kind: "returned", revision: submission.revision, comment: input.comment });
+      const event = await addEvent(tx, ctx, {
+        checkId,
+        kind: "returned",
+        revision: submission.revision,
+        comment: input.comment,
+      });
       await tx
         .update(checkDrafts)
         .set({ open: true, revision: submission.revision + 1, version: sql`${checkDrafts.version} + 1` })
@@ -58,7 +78,13 @@ export function returnCheck(work: Pick<CheckWork, "db" | "jobs" | "config">, ctx
  *
  * @throws problem "conflict" when it was decided already (a double click, or a colleague at the same moment), "not-allowed" for own work
  */
-export async function approveCheck(work: CheckWork, ctx: Context, checkId: string, input: Pick<z.output<typeof approveInput>, "revision" | "seen">, proof: PasswordProof): Promise<Check> {
+export async function approveCheck(
+  work: CheckWork,
+  ctx: Context,
+  checkId: string,
+  input: Pick<z.output<typeof approveInput>, "revision" | "seen">,
+  proof: PasswordProof,
+): Promise<Check> {
   assertOwnProof(ctx, proof);
   await onlyOnce("conflict", decidedAlready, () =>
     inLab(work.db, ctx, async (tx) => {
@@ -120,10 +146,19 @@ async function takeEffect(tx: Tx, ctx: Context, check: CheckRecord, submission: 
   // An older check approved late does not pull a later due date back.
   const dueMoved = configuration.toOn === null && (configuration.dueOn === null || dueOn > configuration.dueOn);
   if (dueMoved) {
-    await tx.update(configurations).set({ dueOn, version: sql`${configurations.version} + 1` }).where(eq(configurations.id, configuration.id));
+    await tx
+      .update(configurations)
+      .set({ dueOn, version: sql`${configurations.version} + 1` })
+      .where(eq(configurations.id, configuration.id));
     entries.push({
       action: "due.moved",
-      about: { kind: "configuration", id: configuration.id, label: instrument.name, instrumentId: instrument.id, checkId: check.id },
+      about: {
+        kind: "configuration",
+        id: configuration.id,
+        label: instrument.name,
+        instrumentId: instrument.id,
+        checkId: check.id,
+      },
       before: { dueOn: configuration.dueOn },
       after: { dueOn },
       why: `${check.number} is approved; the interval is ${configuration.intervalDays} days`,
@@ -145,35 +180,62 @@ async function assertMayApprove(tx: Tx, ctx: Context, check: CheckRecord): Promi
   return isContributor(tx, check.id, ctx.personId!);
 }
 
-async function lockSubmitted(tx: Tx, checkId: string, revision: number): Promise<{ check: CheckRecord; submission: SubmissionRow }> {
+async function lockSubmitted(
+  tx: Tx,
+  checkId: string,
+  revision: number,
+): Promise<{ check: CheckRecord; submission: SubmissionRow }> {
   const check = await findCheck(tx, checkId);
   await lockDraft(tx, checkId);
   const state = await findState(tx, checkId);
   const submission = await findOptionalSubmission(tx, checkId);
-  if (state === "approved") throw problem("conflict", `${check.number} is approved already; its record is locked. Nothing was changed.`);
-  if (state !== "submitted" || submission === null) throw problem("conflict", `${check.number} is not submitted now, so there is nothing to decide. Reload the page.`);
+  if (state === "approved")
+    throw problem("conflict", `${check.number} is approved already; its record is locked. Nothing was changed.`);
+  if (state !== "submitted" || submission === null)
+    throw problem("conflict", `${check.number} is not submitted now, so there is nothing to decide. Reload the page.`);
   if (submission.revision !== revision) {
-    throw problem("stale", `${check.number} was submitted anew as revision ${submission.revision} while you looked at revision ${revision}. Nothing was signed; reload and review the new one.`);
+    throw problem(
+      "stale",
+      `${check.number} was submitted anew as revision ${submission.revision} while you looked at revision ${revision}. Nothing was signed; reload and review the new one.`,
+    );
   }
   return { check, submission };
 }
 
 /** The owner takes note; a manager may do it for the owner, and the trail says so. */
-export function acknowledgeCheck(work: Pick<CheckWork, "db">, ctx: Context, checkId: string, input: z.output<typeof acknowledgeCheckInput>): Promise<Check> {
+export function acknowledgeCheck(
+  work: Pick<CheckWork, "db">,
+  ctx: Context,
+  checkId: string,
+  input: z.output<typeof acknowledgeCheckInput>,
+): Promise<Check> {
   return inLab(work.db, ctx, async (tx) => {
     const check = await findCheck(tx, checkId);
     await lockDraft(tx, checkId);
     const submission = await findOptionalSubmission(tx, checkId);
-    if (submission === null) throw problem("conflict", `${check.number} is not submitted yet; there is nothing to take note of.`);
+    if (submission === null)
+      throw problem("conflict", `${check.number} is not submitted yet; there is nothing to take note of.`);
     const { instrument } = await findInstrument(tx, check.instrumentId);
     const forOwner = !ownsInstrument(ctx, instrument.id);
-    if (forOwner && !hasRole(ctx, "manager")) throw problem("not-allowed", `${instrument.name} belongs to somebody else; its owner or a lab manager takes note.`);
-    const event = await addEvent(tx, ctx, { checkId, kind: "acknowledged", revision: submission.revision, comment: input.note });
+    if (forOwner && !hasRole(ctx, "manager"))
+      throw problem(
+        "not-allowed",
+        `${instrument.name} belongs to somebody else; its owner or a lab manager takes note.`,
+      );
+    const event = await addEvent(tx, ctx, {
+      checkId,
+      kind: "acknowledged",
+      revision: submission.revision,
+      comment: input.note,
+    });
     const reply = await readCheck(tx, ctx, checkId);
     await writeTrail(tx, ctx, {
       action: "check.acknowledged",
       about: aboutCheck(check),
-      after: { forOwner, verdict: verdictText(submission.verdict as "pass" | "inconclusive" | "fail" | null, submission.nearLimit) },
+      after: {
+        forOwner,
+        verdict: verdictText(submission.verdict as "pass" | "inconclusive" | "fail" | null, submission.nearLimit),
+      },
       why: input.note,
       rows: [{ table: "check_events", id: event.id }],
     });

@@ -10,7 +10,11 @@ import { listCheckRows } from "./list-checks.ts";
 import { findDrawing } from "./queries.ts";
 import { readCheck } from "./read-check.ts";
 
-export function listChecks(db: Database, ctx: Context, query: z.output<typeof checksQuery>): Promise<z.input<typeof checksReply>> {
+export function listChecks(
+  db: Database,
+  ctx: Context,
+  query: z.output<typeof checksQuery>,
+): Promise<z.input<typeof checksReply>> {
   const after = pageAfter(query.after);
   return inLab(db, ctx, async (tx) => {
     const rows = await listCheckRows(tx, {
@@ -24,11 +28,15 @@ export function listChecks(db: Database, ctx: Context, query: z.output<typeof ch
     });
     const shown = rows.slice(0, query.limit).map(({ summary }) => summary);
     const last = shown.at(-1);
-    return { items: shown, next: rows.length > query.limit && last !== undefined ? pageNext({ at: last.begunAt, id: last.id }) : null };
+    return {
+      items: shown,
+      next: rows.length > query.limit && last !== undefined ? pageNext({ at: last.begunAt, id: last.id }) : null,
+    };
   });
 }
 
-export const readLabCheck = (db: Database, ctx: Context, checkId: string): Promise<Check> => inLab(db, ctx, (tx) => readCheck(tx, ctx, checkId));
+export const readLabCheck = (db: Database, ctx: Context, checkId: string): Promise<Check> =>
+  inLab(db, ctx, (tx) => readCheck(tx, ctx, checkId));
 
 /** @throws problem "not-found" for a version that never was, or has no drawing */
 export function readDrawing(db: Database, ctx: Context, checkId: string, version: string): Promise<SpectrumDrawing> {

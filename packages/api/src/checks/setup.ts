@@ -3,7 +3,14 @@
  *
  * Pure: the same records give the same setup, and the setup is stored whole with every analysis.
  */
-import { builtInLineList, linesOf, lineWavelengthNm, type AnalysisSetup, type IdentificationMode, type PixelAxis } from "@wavekeep/core";
+import {
+  builtInLineList,
+  linesOf,
+  lineWavelengthNm,
+  type AnalysisSetup,
+  type IdentificationMode,
+  type PixelAxis,
+} from "@wavekeep/core";
 import type { StoredDraft } from "../db/schema/checks.ts";
 import type { StoredRule, StoredSegment } from "../db/schema/instruments.ts";
 import { problem } from "../http/problem.ts";
@@ -32,7 +39,14 @@ export interface SetupRecords {
   sources: { label: string; kind: string; elements: string[]; laserLineNm: number | null }[];
   draft: StoredDraft;
   tolerance: StoredSegment[];
-  axis: { coefficients: number[]; firstPx: number; lastPx: number; chebyshevCovariance: number[] | null; degreesOfFreedom: number | null; meaning: string } | null;
+  axis: {
+    coefficients: number[];
+    firstPx: number;
+    lastPx: number;
+    chebyshevCovariance: number[] | null;
+    degreesOfFreedom: number | null;
+    meaning: string;
+  } | null;
   /** Lab's altitude, or the instrument's own, m. */
   altitudeM: number | null;
   /** Scatter of this configuration between checks, from 8 checks on; else null. */
@@ -59,38 +73,63 @@ export function buildSetup(records: SetupRecords): AnalysisSetup {
     warningShare: configuration.warningShare,
     leftOut: draft.leftOut,
     useSaturated: false,
-    degree: records.axis === null || records.axis.chebyshevCovariance === null ? null : records.axis.coefficients.length - 1,
+    degree:
+      records.axis === null || records.axis.chebyshevCovariance === null ? null : records.axis.coefficients.length - 1,
     falseLinesPerCapture,
     requiredLinesNm: requiredLines(lit.elements, procedure.requiredLinesNm, configuration),
   };
 }
 
-function sourceLines({ sources, procedure, configuration }: SetupRecords): Pick<AnalysisSetup, "elements" | "expectedLinesNm"> {
-  if (sources.length === 0) throw problem("unusable", "Name the source first: without it no line can have a name. The captures are kept.");
+function sourceLines({
+  sources,
+  procedure,
+  configuration,
+}: SetupRecords): Pick<AnalysisSetup, "elements" | "expectedLinesNm"> {
+  if (sources.length === 0)
+    throw problem("unusable", "Name the source first: without it no line can have a name. The captures are kept.");
   const lamps = sources.filter((source) => source.kind !== "laser");
   for (const lamp of lamps) {
     if (lamp.kind === "absorption-standard") {
-      throw problem("unusable", `${lamp.label} is an absorption standard; procedure ${procedure.code} judges emission lines. Choose a lamp or a laser. The captures are kept.`);
+      throw problem(
+        "unusable",
+        `${lamp.label} is an absorption standard; procedure ${procedure.code} judges emission lines. Choose a lamp or a laser. The captures are kept.`,
+      );
     }
     const foreign = lamp.elements.filter((element) => !procedure.elements.includes(element));
     if (foreign.length > 0) {
-      throw problem("unusable", `${lamp.label} has lines of ${foreign.join(", ")}; procedure ${procedure.code} is made for ${procedure.elements.join(", ")}. Choose another source. The captures are kept.`);
+      throw problem(
+        "unusable",
+        `${lamp.label} has lines of ${foreign.join(", ")}; procedure ${procedure.code} is made for ${procedure.elements.join(", ")}. Choose another source. The captures are kept.`,
+      );
     }
   }
   const lampElements = [...new Set(lamps.flatMap((lamp) => lamp.elements))];
-  const laserLines = sources.flatMap((source) => (source.kind === "laser" && source.laserLineNm !== null ? [source.laserLineNm] : []));
+  const laserLines = sources.flatMap((source) =>
+    source.kind === "laser" && source.laserLineNm !== null ? [source.laserLineNm] : [],
+  );
   if (laserLines.length === 0) return { elements: lampElements, expectedLinesNm: [] };
   // A laser's line stands in the library under `laser`; naming all of them would let a neon line pass for a laser's.
   const margin = 0.1 * (configuration.rangeLastNm - configuration.rangeFirstNm);
-  const lampLines = linesOf(builtInLineList, lampElements, configuration.rangeFirstNm - margin, configuration.rangeLastNm + margin);
+  const lampLines = linesOf(
+    builtInLineList,
+    lampElements,
+    configuration.rangeFirstNm - margin,
+    configuration.rangeLastNm + margin,
+  );
   return {
     elements: [...lampElements, "laser"],
     expectedLinesNm: [...lampLines.map((line) => lineWavelengthNm(line).wavelengthNm), ...laserLines],
   };
 }
 
-function requiredLines(elements: string[], required: number[], range: { rangeFirstNm: number; rangeLastNm: number }): number[] {
-  const lines = linesOf(builtInLineList, elements, range.rangeFirstNm, range.rangeLastNm).map((line) => lineWavelengthNm(line).wavelengthNm);
+function requiredLines(
+  elements: string[],
+  required: number[],
+  range: { rangeFirstNm: number; rangeLastNm: number },
+): number[] {
+  const lines = linesOf(builtInLineList, elements, range.rangeFirstNm, range.rangeLastNm).map(
+    (line) => lineWavelengthNm(line).wavelengthNm,
+  );
   return required.flatMap((wanted) => {
     const listed = lines.find((wavelengthNm) => Math.abs(wavelengthNm - wanted) <= sameLineNm);
     return listed === undefined ? [] : [listed];
@@ -118,15 +157,29 @@ function modeOf({ configuration, draft, axis, reading }: SetupRecords): Identifi
   const firstNm = draft.rangeFirstNm ?? configuration.rangeFirstNm;
   const lastNm = draft.rangeLastNm ?? configuration.rangeLastNm;
   if (draft.mode === "earlier-axis") {
-    throw problem("unusable", "No axis is in force for this configuration yet. Name the lines by the range instead: the first and last wavelength of the capture. The captures are kept.");
+    throw problem(
+      "unusable",
+      "No axis is in force for this configuration yet. Name the lines by the range instead: the first and last wavelength of the capture. The captures are kept.",
+    );
   }
-  if (firstNm === lastNm) throw problem("unusable", "The range has no width: give the wavelengths of the first and of the last pixel. The captures are kept.");
+  if (firstNm === lastNm)
+    throw problem(
+      "unusable",
+      "The range has no width: give the wavelengths of the first and of the last pixel. The captures are kept.",
+    );
   return { kind: "range", firstNm, lastNm };
 }
 
 function pixelAxis(axis: NonNullable<SetupRecords["axis"]>): PixelAxis {
   const { coefficients, firstPx, lastPx, chebyshevCovariance, degreesOfFreedom, meaning } = axis;
-  return { coefficients, firstPx, lastPx, chebyshevCovariance, degreesOfFreedom, meaning: meaning as PixelAxis["meaning"] };
+  return {
+    coefficients,
+    firstPx,
+    lastPx,
+    chebyshevCovariance,
+    degreesOfFreedom,
+    meaning: meaning as PixelAxis["meaning"],
+  };
 }
 
 function fullScaleOf({ draft, configuration }: SetupRecords): AnalysisSetup["reading"] {
@@ -146,12 +199,22 @@ function roomOf({ draft, altitudeM }: SetupRecords): AnalysisSetup["room"] {
 }
 
 /** Set-up reproducibility: from the configuration's own history, else stated, else assumed; px on pixel and step axes, else nm. */
-function reproducibilityOf({ configuration, axis, history, reading }: SetupRecords): NonNullable<AnalysisSetup["setupReproducibility"]> {
+function reproducibilityOf({
+  configuration,
+  axis,
+  history,
+  reading,
+}: SetupRecords): NonNullable<AnalysisSetup["setupReproducibility"]> {
   const unit = reading.axisKind === "wavelength" ? "nm" : "px";
   // nm per sample at the middle of the range, where the series is kept.
   const nmPerSample = unit === "nm" ? 1 : dispersionNmPerPx(configuration, axis, reading.rows);
   if (history !== null) {
-    return { value: history.reproducibilityNm / nmPerSample, unit, basis: "history", degreesOfFreedom: history.degreesOfFreedom };
+    return {
+      value: history.reproducibilityNm / nmPerSample,
+      unit,
+      basis: "history",
+      degreesOfFreedom: history.degreesOfFreedom,
+    };
   }
   if (configuration.setupReproducibilityNm !== null) {
     return { value: configuration.setupReproducibilityNm / nmPerSample, unit, basis: "stated", degreesOfFreedom: null };
@@ -160,10 +223,17 @@ function reproducibilityOf({ configuration, axis, history, reading }: SetupRecor
   return { value: assumedReproducibility * step, unit, basis: "assumed", degreesOfFreedom: null };
 }
 
-function dispersionNmPerPx(configuration: SetupRecords["configuration"], axis: SetupRecords["axis"], rows: number): number {
+function dispersionNmPerPx(
+  configuration: SetupRecords["configuration"],
+  axis: SetupRecords["axis"],
+  rows: number,
+): number {
   const pixels = configuration.optics.pixels ?? rows;
   if (axis === null) return (configuration.rangeLastNm - configuration.rangeFirstNm) / Math.max(1, pixels - 1);
   const middle = (pixels - 1) / 2;
-  const slope = axis.coefficients.reduce((sum, coefficient, power) => (power === 0 ? sum : sum + power * coefficient * middle ** (power - 1)), 0);
+  const slope = axis.coefficients.reduce(
+    (sum, coefficient, power) => (power === 0 ? sum : sum + power * coefficient * middle ** (power - 1)),
+    0,
+  );
   return Math.abs(slope);
 }

@@ -17,7 +17,17 @@ import { canonicalText, sha256Hex } from "../records/canonical.ts";
 import { writeTrail } from "../records/trail.ts";
 import { aboutCheck, inputsHash, lockOpenDraft } from "./draft.ts";
 import { placeHold } from "./hold.ts";
-import { addContributor, addEvent, findFirstCaptureAt, findOptionalAnalysis, listAttempts, listCaptures, type AnalysisRow, type CheckRecord, type DraftRow } from "./queries.ts";
+import {
+  addContributor,
+  addEvent,
+  findFirstCaptureAt,
+  findOptionalAnalysis,
+  listAttempts,
+  listCaptures,
+  type AnalysisRow,
+  type CheckRecord,
+  type DraftRow,
+} from "./queries.ts";
 import { readCheck } from "./read-check.ts";
 import type { CheckWork } from "./work.ts";
 
@@ -40,7 +50,13 @@ export interface SignedContent {
  * @param proof that the signer gave the password again
  * @throws problem "conflict" when it is submitted already or the result is older than the working copy, "stale", "unusable" without a verdict
  */
-export function submitCheck(work: CheckWork, ctx: Context, checkId: string, input: Pick<z.output<typeof submitInput>, "version">, proof: PasswordProof): Promise<Check> {
+export function submitCheck(
+  work: CheckWork,
+  ctx: Context,
+  checkId: string,
+  input: Pick<z.output<typeof submitInput>, "version">,
+  proof: PasswordProof,
+): Promise<Check> {
   assertOwnProof(ctx, proof);
   return onlyOnce("conflict", "This check was submitted a moment ago. Nothing was signed twice; reload the page.", () =>
     inLab(work.db, ctx, async (tx) => {
@@ -49,10 +65,20 @@ export function submitCheck(work: CheckWork, ctx: Context, checkId: string, inpu
       await lockConfiguration(tx, check.configurationId);
       const now = await recordNow(tx);
       const { submissionId, contentSha256 } = await insertSubmission(tx, ctx, { check, draft, analysis, now });
-      const signatureId = await sign(tx, ctx, { checkId, revision: draft.revision, meaning: "made by", contentSha256, proof, selfApproval: false });
+      const signatureId = await sign(tx, ctx, {
+        checkId,
+        revision: draft.revision,
+        meaning: "made by",
+        contentSha256,
+        proof,
+        selfApproval: false,
+      });
       const event = await addEvent(tx, ctx, { checkId, kind: "submitted", revision: draft.revision });
       await addContributor(tx, ctx, checkId, "submitted");
-      await tx.update(checkDrafts).set({ open: false, version: draft.version + 1, savedAt: now, savedBy: ctx.personId! }).where(eq(checkDrafts.checkId, checkId));
+      await tx
+        .update(checkDrafts)
+        .set({ open: false, version: draft.version + 1, savedAt: now, savedBy: ctx.personId! })
+        .where(eq(checkDrafts.checkId, checkId));
       await insertDriftPoint(tx, ctx, check, draft.revision, analysis);
       const caused =
         analysis.verdict === "fail"
@@ -97,22 +123,42 @@ export function submitCheck(work: CheckWork, ctx: Context, checkId: string, inpu
 /** The analysis of what stands in the working copy now; a result older than it is not what the signer sees. */
 async function findSubmittable(tx: Tx, check: CheckRecord, draft: DraftRow): Promise<AnalysisRow> {
   const analysis = await findOptionalAnalysis(tx, { checkId: check.id, attempt: draft.currentAttempt });
-  if (analysis === null) throw problem("conflict", `Attempt ${draft.currentAttempt} of ${check.number} has no result yet: analyse its captures first. Nothing was signed.`);
+  if (analysis === null)
+    throw problem(
+      "conflict",
+      `Attempt ${draft.currentAttempt} of ${check.number} has no result yet: analyse its captures first. Nothing was signed.`,
+    );
   const captures = await listCaptures(tx, check.id, draft.currentAttempt);
-  const readable = captures.filter((row, index) => row.reading !== null && captures.findIndex((other) => other.capture.sha256 === row.capture.sha256 && other.capture.part === row.capture.part) === index);
-  const sameCaptures = readable.length === analysis.captureIds.length && readable.every(({ capture }) => analysis.captureIds.includes(capture.id));
+  const readable = captures.filter(
+    (row, index) =>
+      row.reading !== null &&
+      captures.findIndex(
+        (other) => other.capture.sha256 === row.capture.sha256 && other.capture.part === row.capture.part,
+      ) === index,
+  );
+  const sameCaptures =
+    readable.length === analysis.captureIds.length &&
+    readable.every(({ capture }) => analysis.captureIds.includes(capture.id));
   if (analysis.inputsSha256 !== inputsHash(draft.inputs) || !sameCaptures) {
-    throw problem("conflict", `${check.number} was changed after its last analysis: analyse it again, look at the result, then sign. Nothing was signed.`);
+    throw problem(
+      "conflict",
+      `${check.number} was changed after its last analysis: analyse it again, look at the result, then sign. Nothing was signed.`,
+    );
   }
   if (analysis.verdict === null && !isAxisFit(analysis)) {
-    throw problem("unusable", `There is no verdict to sign: ${analysis.analysis.reason ?? "no line could be judged."} Nothing is lost: begin another attempt, or set the check aside.`);
+    throw problem(
+      "unusable",
+      `There is no verdict to sign: ${analysis.analysis.reason ?? "no line could be judged."} Nothing is lost: begin another attempt, or set the check aside.`,
+    );
   }
   return analysis;
 }
 
 /** No axis was in force, so there is no error to judge, but a new axis: that is what the check is for. */
 export const isAxisFit = (analysis: Pick<AnalysisRow, "outcome" | "analysis">): boolean =>
-  analysis.outcome === "identified" && analysis.analysis.dispersion !== null && analysis.analysis.setup.mode.kind === "range";
+  analysis.outcome === "identified" &&
+  analysis.analysis.dispersion !== null &&
+  analysis.analysis.setup.mode.kind === "range";
 
 async function insertSubmission(
   tx: Tx,
@@ -133,7 +179,12 @@ async function insertSubmission(
     toleranceVersion: tolerance.version,
     inputs: draft.inputs,
     analysisSha256: analysis.sha256,
-    captures: captures.map(({ capture }) => ({ fileName: capture.fileName, part: capture.part, sha256: capture.sha256, attempt: capture.attempt })),
+    captures: captures.map(({ capture }) => ({
+      fileName: capture.fileName,
+      part: capture.part,
+      sha256: capture.sha256,
+      attempt: capture.attempt,
+    })),
   };
   const contentSha256 = sha256Hex(canonicalText(content));
   const submissionId = newId();
@@ -162,7 +213,14 @@ async function insertSubmission(
 export async function sign(
   tx: Tx,
   ctx: Context,
-  signature: { checkId: string; revision: number; meaning: "made by" | "reviewed and approved"; contentSha256: string; proof: PasswordProof; selfApproval: boolean },
+  signature: {
+    checkId: string;
+    revision: number;
+    meaning: "made by" | "reviewed and approved";
+    contentSha256: string;
+    proof: PasswordProof;
+    selfApproval: boolean;
+  },
 ): Promise<string> {
   const id = newId();
   await tx.insert(signatures).values({
@@ -185,10 +243,17 @@ export async function sign(
 
 /** A proof is good for the person who gave it. */
 export function assertOwnProof(ctx: Context, proof: PasswordProof): void {
-  if (ctx.personId === null || proof.personId !== ctx.personId) throw problem("not-allowed", "This password was confirmed by somebody else. Nothing was signed.");
+  if (ctx.personId === null || proof.personId !== ctx.personId)
+    throw problem("not-allowed", "This password was confirmed by somebody else. Nothing was signed.");
 }
 
-async function insertDriftPoint(tx: Tx, ctx: Context, check: CheckRecord, revision: number, analysis: AnalysisRow): Promise<void> {
+async function insertDriftPoint(
+  tx: Tx,
+  ctx: Context,
+  check: CheckRecord,
+  revision: number,
+  analysis: AnalysisRow,
+): Promise<void> {
   const point = analysis.analysis.driftPoint;
   if (point === null) return;
   await tx.insert(driftPoints).values({

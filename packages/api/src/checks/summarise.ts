@@ -11,7 +11,13 @@ import type { StoredResult } from "../db/schema/analyses.ts";
  */
 export function holdToProcedure(analysis: Analysis, least: number, procedureCode: string): Analysis {
   const judgedIn = (segment: ToleranceSegment, counts: (line: LineResult) => boolean): number =>
-    analysis.lines.filter((line) => line.wavelengthNm !== null && line.wavelengthNm >= segment.fromNm && line.wavelengthNm <= segment.toNm && counts(line)).length;
+    analysis.lines.filter(
+      (line) =>
+        line.wavelengthNm !== null &&
+        line.wavelengthNm >= segment.fromNm &&
+        line.wavelengthNm <= segment.toNm &&
+        counts(line),
+    ).length;
   const hold = (summary: VerdictSummary | null, counts: (line: LineResult) => boolean): VerdictSummary | null => {
     if (summary === null) return null;
     const reasons = analysis.setup.tolerance
@@ -28,7 +34,10 @@ export function holdToProcedure(analysis: Analysis, least: number, procedureCode
   return {
     ...analysis,
     verdict: hold(analysis.verdict, (line) => line.status === "judged"),
-    verdictWithEveryLine: hold(analysis.verdictWithEveryLine, (line) => line.status === "judged" || line.status === "left-out"),
+    verdictWithEveryLine: hold(
+      analysis.verdictWithEveryLine,
+      (line) => line.status === "judged" || line.status === "left-out",
+    ),
   };
 }
 
@@ -48,7 +57,11 @@ export function resultOf(analysis: Analysis): StoredResult {
     lineCount: analysis.lines.filter((line) => line.wavelengthNm !== null).length,
     leftOutCount: analysis.lines.filter((line) => line.status === "left-out").length,
     worst:
-      worst === undefined || worst.wavelengthNm === null || worst.errorNm === null || worst.errorExpandedUncNm === null || toleranceNm === null
+      worst === undefined ||
+      worst.wavelengthNm === null ||
+      worst.errorNm === null ||
+      worst.errorExpandedUncNm === null ||
+      toleranceNm === null
         ? null
         : {
             wavelengthNm: worst.wavelengthNm,
@@ -60,7 +73,11 @@ export function resultOf(analysis: Analysis): StoredResult {
     withEveryLine:
       verdictWithEveryLine === null
         ? null
-        : { verdict: verdictWithEveryLine.verdict, nearLimit: verdictWithEveryLine.nearLimit, toleranceUsed: verdictWithEveryLine.toleranceUsed },
+        : {
+            verdict: verdictWithEveryLine.verdict,
+            nearLimit: verdictWithEveryLine.nearLimit,
+            toleranceUsed: verdictWithEveryLine.toleranceUsed,
+          },
   };
 }
 

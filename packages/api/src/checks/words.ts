@@ -32,7 +32,8 @@ export function toleranceText(toleranceNm: number): string {
 export const percentText = (share: number): string => `${Math.round(share * 100)}${narrowSpace}%`;
 
 /** `Ar 842.465 nm`. */
-export const lineText = (species: string, wavelengthNm: number): string => `${elementOf(species)} ${wavelengthNm.toFixed(3)}${narrowSpace}nm`;
+export const lineText = (species: string, wavelengthNm: number): string =>
+  `${elementOf(species)} ${wavelengthNm.toFixed(3)}${narrowSpace}nm`;
 
 /** The element of a spectrum in spectroscopic notation: `Hg I` gives `Hg`. */
 export const elementOf = (species: string): string => species.split(" ")[0] ?? species;

@@ -14,7 +14,9 @@ export const leastHistory = 8;
  * @param runs  error at mid-range, nm, in time order; a new run begins where an event broke the series
  * @returns null with too few checks
  */
-export function reproducibilityOfRuns(runs: readonly (readonly number[])[]): { reproducibilityNm: number; degreesOfFreedom: number } | null {
+export function reproducibilityOfRuns(
+  runs: readonly (readonly number[])[],
+): { reproducibilityNm: number; degreesOfFreedom: number } | null {
   const checkCount = runs.reduce((count, run) => count + run.length, 0);
   if (checkCount < leastHistory) return null;
   let squares = 0;

@@ -16,7 +16,8 @@ export function runsOf(points: readonly RunPoint[], breaks: readonly string[], z
   let lastOn: string | null = null;
   for (const point of points) {
     const on = dateIn(zone, point.measuredAt);
-    const broken = point.condition === "as-left" || (lastOn !== null && breaks.some((date) => date > lastOn! && date <= on));
+    const broken =
+      point.condition === "as-left" || (lastOn !== null && breaks.some((date) => date > lastOn! && date <= on));
     if (runs.length === 0 || broken) runs.push([]);
     runs.at(-1)!.push(point.midErrorNm);
     lastOn = on;

@@ -56,13 +56,23 @@ function presentPoint(row: SeriesRow): DriftReply["points"][number] {
 
 /** Tolerance of the segment that holds a wavelength; without one, the tightest. */
 function toleranceAround(segments: readonly StoredSegment[], wavelengthNm: number | null): number {
-  const holding = wavelengthNm === null ? undefined : segments.find((segment) => wavelengthNm >= segment.fromNm && wavelengthNm <= segment.toNm);
+  const holding =
+    wavelengthNm === null
+      ? undefined
+      : segments.find((segment) => wavelengthNm >= segment.fromNm && wavelengthNm <= segment.toNm);
   return holding?.toleranceNm ?? Math.min(...segments.map((segment) => segment.toleranceNm));
 }
 
 /** Scatter between this configuration's checks, where there are enough of them. */
-export async function findReproducibility(tx: Tx, ctx: Context, configurationId: string, exceptCheckId: string): Promise<{ reproducibilityNm: number; degreesOfFreedom: number } | null> {
-  const series = (await listSeries(tx, configurationId)).filter((point) => point.checkId !== exceptCheckId && point.state !== "returned");
+export async function findReproducibility(
+  tx: Tx,
+  ctx: Context,
+  configurationId: string,
+  exceptCheckId: string,
+): Promise<{ reproducibilityNm: number; degreesOfFreedom: number } | null> {
+  const series = (await listSeries(tx, configurationId)).filter(
+    (point) => point.checkId !== exceptCheckId && point.state !== "returned",
+  );
   const events = await listEventRows(tx, configurationId);
   const breaks = events.filter(({ event }) => event.breaksDrift).map(({ event }) => event.happenedOn);
   return reproducibilityOfRuns(runsOf(series, breaks, ctx.zone));

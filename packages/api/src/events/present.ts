@@ -8,7 +8,11 @@ import type { InstrumentEventRow } from "./queries.ts";
 export type InstrumentEvent = z.input<typeof instrumentEvent>;
 
 /** @param zone IANA zone of the lab, in which the event's date and the checks' days are cut */
-export function presentEvent({ event, recorderName }: { event: InstrumentEventRow; recorderName: string | null }, series: readonly SeriesRow[], zone: string): InstrumentEvent {
+export function presentEvent(
+  { event, recorderName }: { event: InstrumentEventRow; recorderName: string | null },
+  series: readonly SeriesRow[],
+  zone: string,
+): InstrumentEvent {
   return {
     id: event.id,
     configurationId: event.configurationId,
@@ -26,7 +30,9 @@ export function presentEvent({ event, recorderName }: { event: InstrumentEventRo
 /** First error at mid-range from the event's day on, minus the last before it; null where either is missing. */
 function stepAcross(happenedOn: string, series: readonly SeriesRow[], zone: string): number | null {
   const days = series.map((point) => ({ on: dateIn(zone, point.measuredAt), point }));
-  const before = days.filter(({ on, point }) => on < happenedOn || (on === happenedOn && point.condition === "as-found")).at(-1);
+  const before = days
+    .filter(({ on, point }) => on < happenedOn || (on === happenedOn && point.condition === "as-found"))
+    .at(-1);
   const after = days.find(({ on, point }) => on > happenedOn || (on === happenedOn && point.condition === "as-left"));
   return before === undefined || after === undefined ? null : after.point.midErrorNm - before.point.midErrorNm;
 }

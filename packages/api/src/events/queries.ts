@@ -6,7 +6,10 @@ import type { Tx } from "../db/tenancy.ts";
 export type InstrumentEventRow = typeof instrumentEvents.$inferSelect;
 
 /** Events of a configuration in the order they happened. */
-export function listEventRows(tx: Tx, configurationId: string): Promise<{ event: InstrumentEventRow; recorderName: string | null }[]> {
+export function listEventRows(
+  tx: Tx,
+  configurationId: string,
+): Promise<{ event: InstrumentEventRow; recorderName: string | null }[]> {
   return tx
     .select({ event: instrumentEvents, recorderName: people.name })
     .from(instrumentEvents)

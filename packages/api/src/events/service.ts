@@ -19,15 +19,34 @@ export function logEvent(db: Database, ctx: Context, input: z.output<typeof logE
     const { instrument } = await findInstrument(tx, configuration.instrumentId);
     assertNotRetired(instrument);
     const now = await recordNow(tx);
-    if (input.happenedOn > dateIn(ctx.zone, now)) refuseFields([{ path: "happenedOn", message: "This day is still to come; an event is logged once it has happened." }]);
-    if (input.happenedOn < configuration.fromOn) refuseFields([{ path: "happenedOn", message: `This configuration began on ${configuration.fromOn}; an event of it can't be older.` }]);
+    if (input.happenedOn > dateIn(ctx.zone, now))
+      refuseFields([
+        { path: "happenedOn", message: "This day is still to come; an event is logged once it has happened." },
+      ]);
+    if (input.happenedOn < configuration.fromOn)
+      refuseFields([
+        {
+          path: "happenedOn",
+          message: `This configuration began on ${configuration.fromOn}; an event of it can't be older.`,
+        },
+      ]);
     const event = { labId: ctx.labId, id: newId(), ...input, recordedAt: now, recordedBy: ctx.personId };
     await tx.insert(instrumentEvents).values(event);
-    const reply = presentEvent({ event, recorderName: ctx.personName }, await listSeries(tx, configuration.id), ctx.zone);
+    const reply = presentEvent(
+      { event, recorderName: ctx.personName },
+      await listSeries(tx, configuration.id),
+      ctx.zone,
+    );
     await writeTrail(tx, ctx, {
       action: "event.logged",
       about: { kind: "event", id: event.id, label: instrument.name, instrumentId: instrument.id },
-      after: { kind: input.kind, title: input.title, happenedOn: input.happenedOn, note: input.note, breaksDrift: input.breaksDrift },
+      after: {
+        kind: input.kind,
+        title: input.title,
+        happenedOn: input.happenedOn,
+        note: input.note,
+        breaksDrift: input.breaksDrift,
+      },
       rows: [{ table: "instrument_events", id: event.id }],
     });
     return reply;

@@ -10,16 +10,31 @@ import type { TrailInput } from "../records/trail.ts";
 import { findFirstCaptureAt, type CheckRecord } from "../checks/queries.ts";
 
 /** The last check before an instant that passed and is approved: the results up to it stand. */
-export async function findLastGoodCheck(tx: Tx, configurationId: string, before: Date): Promise<{ id: string; number: string; measuredAt: Date } | null> {
+export async function findLastGoodCheck(
+  tx: Tx,
+  configurationId: string,
+  before: Date,
+): Promise<{ id: string; number: string; measuredAt: Date } | null> {
   const [row] = await tx
     .select({ id: checks.id, number: checks.number, measuredAt: submissions.measuredAt })
     .from(checks)
     .innerJoin(submissions, and(eq(submissions.labId, checks.labId), eq(submissions.checkId, checks.id)))
     .innerJoin(
       checkEvents,
-      and(eq(checkEvents.labId, checks.labId), eq(checkEvents.checkId, checks.id), eq(checkEvents.kind, "approved"), eq(checkEvents.revision, submissions.revision)),
+      and(
+        eq(checkEvents.labId, checks.labId),
+        eq(checkEvents.checkId, checks.id),
+        eq(checkEvents.kind, "approved"),
+        eq(checkEvents.revision, submissions.revision),
+      ),
     )
-    .where(and(eq(checks.configurationId, configurationId), eq(submissions.verdict, "pass"), lt(submissions.measuredAt, before)))
+    .where(
+      and(
+        eq(checks.configurationId, configurationId),
+        eq(submissions.verdict, "pass"),
+        lt(submissions.measuredAt, before),
+      ),
+    )
     .orderBy(desc(submissions.measuredAt))
     .limit(1);
   return row ?? null;
@@ -66,9 +81,13 @@ export async function openImpactReview(
     entry: {
       action: "impact.opened",
       about: { kind: "impact-review", id, label: number, instrumentId: check.instrumentId, checkId: check.id },
-      after: { windowFrom: good?.measuredAt ?? null, windowFromCheck: good?.number ?? null, windowTo, check: check.number },
+      after: {
+        windowFrom: good?.measuredAt ?? null,
+        windowFromCheck: good?.number ?? null,
+        windowTo,
+        check: check.number,
+      },
       rows: [{ table: "impact_reviews", id }],
     },
   };
 }
-

@@ -23,13 +23,27 @@ export function listReviewRows(tx: Tx, by: { reviewId?: string; checkId?: string
       deciderName: decider.name,
     })
     .from(impactReviews)
-    .innerJoin(instruments, and(eq(instruments.labId, impactReviews.labId), eq(instruments.id, impactReviews.instrumentId)))
+    .innerJoin(
+      instruments,
+      and(eq(instruments.labId, impactReviews.labId), eq(instruments.id, impactReviews.instrumentId)),
+    )
     .innerJoin(owner, eq(owner.id, instruments.ownerId))
     .innerJoin(checks, and(eq(checks.labId, impactReviews.labId), eq(checks.id, impactReviews.checkId)))
-    .leftJoin(fromCheck, and(eq(fromCheck.labId, impactReviews.labId), eq(fromCheck.id, impactReviews.windowFromCheckId)))
-    .leftJoin(impactDecisions, and(eq(impactDecisions.labId, impactReviews.labId), eq(impactDecisions.reviewId, impactReviews.id)))
+    .leftJoin(
+      fromCheck,
+      and(eq(fromCheck.labId, impactReviews.labId), eq(fromCheck.id, impactReviews.windowFromCheckId)),
+    )
+    .leftJoin(
+      impactDecisions,
+      and(eq(impactDecisions.labId, impactReviews.labId), eq(impactDecisions.reviewId, impactReviews.id)),
+    )
     .leftJoin(decider, eq(decider.id, impactDecisions.decidedBy))
-    .where(and(by.reviewId === undefined ? undefined : eq(impactReviews.id, by.reviewId), by.checkId === undefined ? undefined : eq(impactReviews.checkId, by.checkId)))
+    .where(
+      and(
+        by.reviewId === undefined ? undefined : eq(impactReviews.id, by.reviewId),
+        by.checkId === undefined ? undefined : eq(impactReviews.checkId, by.checkId),
+      ),
+    )
     .orderBy(desc(impactReviews.openedAt), desc(impactReviews.id));
 }
 

@@ -20,28 +20,57 @@ export function readImpactReview(db: Database, ctx: Context, reviewId: string): 
 }
 
 /** The owner decides, once; a manager may decide for the owner, and the trail says so. */
-export function decideImpact(db: Database, ctx: Context, reviewId: string, input: z.output<typeof decideImpactInput>): Promise<ImpactReview> {
+export function decideImpact(
+  db: Database,
+  ctx: Context,
+  reviewId: string,
+  input: z.output<typeof decideImpactInput>,
+): Promise<ImpactReview> {
   if (input.affected === "some" && input.affectedWork.trim() === "") {
     refuseFields([{ path: "affectedWork", message: "Name the results that are affected." }]);
   }
-  return onlyOnce("conflict", "Somebody else decided this review a moment ago. Nothing of yours was stored; reload the page to see the decision.", () =>
-    inLab(db, ctx, async (tx) => {
-      const row = await findReview(tx, reviewId);
-      const forOwner = !ownsInstrument(ctx, row.review.instrumentId);
-      if (forOwner && !hasRole(ctx, "manager")) throw problem("not-allowed", `${row.instrumentName} belongs to ${row.ownerName}, who decides this review, or a lab manager for them.`);
-      if (row.decision !== null) throw problem("conflict", `${row.review.number} is decided already; a decision stays as it was made.`);
-      const id = newId();
-      await tx.insert(impactDecisions).values({ labId: ctx.labId, id, reviewId, ...input, decidedAt: await recordNow(tx), decidedBy: ctx.personId!, forOwner });
-      const reply = present(ctx, await findReview(tx, reviewId));
-      await writeTrail(tx, ctx, {
-        action: "impact.decided",
-        about: { kind: "impact-review", id: reviewId, label: row.review.number, instrumentId: row.review.instrumentId, checkId: row.review.checkId },
-        after: { affected: input.affected, affectedWork: input.affectedWork, forOwner },
-        why: input.decision,
-        rows: [{ table: "impact_decisions", id }],
-      });
-      return reply;
-    }),
+  return onlyOnce(
+    "conflict",
+    "Somebody else decided this review a moment ago. Nothing of yours was stored; reload the page to see the decision.",
+    () =>
+      inLab(db, ctx, async (tx) => {
+        const row = await findReview(tx, reviewId);
+        const forOwner = !ownsInstrument(ctx, row.review.instrumentId);
+        if (forOwner && !hasRole(ctx, "manager"))
+          throw problem(
+            "not-allowed",
+            `${row.instrumentName} belongs to ${row.ownerName}, who decides this review, or a lab manager for them.`,
+          );
+        if (row.decision !== null)
+          throw problem("conflict", `${row.review.number} is decided already; a decision stays as it was made.`);
+        const id = newId();
+        await tx
+          .insert(impactDecisions)
+          .values({
+            labId: ctx.labId,
+            id,
+            reviewId,
+            ...input,
+            decidedAt: await recordNow(tx),
+            decidedBy: ctx.personId!,
+            forOwner,
+          });
+        const reply = present(ctx, await findReview(tx, reviewId));
+        await writeTrail(tx, ctx, {
+          action: "impact.decided",
+          about: {
+            kind: "impact-review",
+            id: reviewId,
+            label: row.review.number,
+            instrumentId: row.review.instrumentId,
+            checkId: row.review.checkId,
+          },
+          after: { affected: input.affected, affectedWork: input.affectedWork, forOwner },
+          why: input.decision,
+          rows: [{ table: "impact_decisions", id }],
+        });
+        return reply;
+      }),
   );
 }
 
@@ -56,7 +85,8 @@ function present(ctx: Context, row: ReviewRow): ImpactReview {
     owner: { id: row.ownerId, name: row.ownerName },
     check: { id: review.checkId, number: row.checkNumber },
     windowFrom: review.windowFrom?.toISOString() ?? null,
-    windowFromCheck: review.windowFromCheckId === null ? null : { id: review.windowFromCheckId, number: row.windowFromNumber ?? "" },
+    windowFromCheck:
+      review.windowFromCheckId === null ? null : { id: review.windowFromCheckId, number: row.windowFromNumber ?? "" },
     windowTo: review.windowTo.toISOString(),
     largestErrorNm: review.largestErrorNm,
     largestAtNm: review.largestAtNm,

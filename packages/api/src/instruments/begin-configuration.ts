@@ -21,12 +21,42 @@ export interface BeginConfiguration {
 
 /** Columns a manager may set, without the axis, which is a row of its own. */
 export function configurationColumns(input: Omit<ConfigurationInput, "axisCoefficients">) {
-  const { name, axisKind, axisMeaning, rangeFirstNm, rangeLastNm, nominalFwhmNm, optics, intervalDays, graceDays, setupReproducibilityNm, decisionRule, warningShare } = input;
-  return { name, axisKind, axisMeaning, rangeFirstNm, rangeLastNm, nominalFwhmNm, optics, intervalDays, graceDays, setupReproducibilityNm, decisionRule, warningShare };
+  const {
+    name,
+    axisKind,
+    axisMeaning,
+    rangeFirstNm,
+    rangeLastNm,
+    nominalFwhmNm,
+    optics,
+    intervalDays,
+    graceDays,
+    setupReproducibilityNm,
+    decisionRule,
+    warningShare,
+  } = input;
+  return {
+    name,
+    axisKind,
+    axisMeaning,
+    rangeFirstNm,
+    rangeLastNm,
+    nominalFwhmNm,
+    optics,
+    intervalDays,
+    graceDays,
+    setupReproducibilityNm,
+    decisionRule,
+    warningShare,
+  };
 }
 
 /** @returns the new id, and the immutable rows for the trail entry that speaks of it */
-export async function beginConfiguration(tx: Tx, ctx: Context, begin: BeginConfiguration): Promise<{ id: string; rows: NonNullable<TrailInput["rows"]> }> {
+export async function beginConfiguration(
+  tx: Tx,
+  ctx: Context,
+  begin: BeginConfiguration,
+): Promise<{ id: string; rows: NonNullable<TrailInput["rows"]> }> {
   const now = await recordNow(tx);
   const id = newId();
   await tx.insert(configurations).values({

@@ -1,7 +1,10 @@
 /** What a change changes: for the trail's before and after. */
 
 /** The keys of `next` whose values differ, as they were and as they are. */
-export function changedOnly(stored: Record<string, unknown>, next: Record<string, unknown>): { before: Record<string, unknown>; after: Record<string, unknown> } {
+export function changedOnly(
+  stored: Record<string, unknown>,
+  next: Record<string, unknown>,
+): { before: Record<string, unknown>; after: Record<string, unknown> } {
   const before: Record<string, unknown> = {};
   const after: Record<string, unknown> = {};
   for (const [key, value] of Object.entries(next)) {

@@ -20,27 +20,53 @@ import { configurationColumns } from "./begin-configuration.ts";
 import { changedOnly } from "./changes.ts";
 import { dateIn } from "./dates.ts";
 import { presentConfiguration } from "./present.ts";
-import { findAxisAt, findInstrument, findLatestTolerance, findStanding, listConfigurations, lockConfiguration, type ConfigurationRow, type InstrumentRow } from "./queries.ts";
+import {
+  findAxisAt,
+  findInstrument,
+  findLatestTolerance,
+  findStanding,
+  listConfigurations,
+  lockConfiguration,
+  type ConfigurationRow,
+  type InstrumentRow,
+} from "./queries.ts";
 import { assertCanBeAssigned, configurationProblems, refuseFields, toleranceProblems } from "./rules.ts";
 import { assertNotRetired } from "./service.ts";
 import { assertFreshFor } from "./stale.ts";
 
-export function changeConfiguration(db: Database, ctx: Context, configurationId: string, input: z.output<typeof changeConfigurationInput>): Promise<Configuration> {
+export function changeConfiguration(
+  db: Database,
+  ctx: Context,
+  configurationId: string,
+  input: z.output<typeof changeConfigurationInput>,
+): Promise<Configuration> {
   refuseFields(configurationProblems(input, ""));
   return inLab(db, ctx, async (tx) => {
     const { stored, instrument } = await lockForChange(tx, ctx, configurationId, input);
     if (stored.axisKind !== input.axisKind) await assertNoAxisYet(tx, configurationId);
     const next = configurationColumns(input);
     const change = changedOnly(stored, next);
-    await tx.update(configurations).set({ ...next, version: stored.version + 1 }).where(eq(configurations.id, configurationId));
+    await tx
+      .update(configurations)
+      .set({ ...next, version: stored.version + 1 })
+      .where(eq(configurations.id, configurationId));
     const reply = await readConfiguration(tx, configurationId);
-    await writeTrail(tx, ctx, { action: "configuration.changed", about: aboutConfiguration(stored, instrument), ...change });
+    await writeTrail(tx, ctx, {
+      action: "configuration.changed",
+      about: aboutConfiguration(stored, instrument),
+      ...change,
+    });
     return reply;
   });
 }
 
 /** A new tolerance takes over from now on; a check whose first capture came before keeps the one it was begun under. */
-export function changeTolerance(db: Database, ctx: Context, configurationId: string, input: z.output<typeof changeToleranceInput>): Promise<Configuration> {
+export function changeTolerance(
+  db: Database,
+  ctx: Context,
+  configurationId: string,
+  input: z.output<typeof changeToleranceInput>,
+): Promise<Configuration> {
   refuseFields(toleranceProblems(input.segments, "segments."));
   return inLab(db, ctx, async (tx) => {
     const { stored, instrument } = await lockForChange(tx, ctx, configurationId, input);
@@ -56,7 +82,10 @@ export function changeTolerance(db: Database, ctx: Context, configurationId: str
       reason: input.reason,
       setBy: ctx.personId,
     });
-    await tx.update(configurations).set({ version: stored.version + 1 }).where(eq(configurations.id, configurationId));
+    await tx
+      .update(configurations)
+      .set({ version: stored.version + 1 })
+      .where(eq(configurations.id, configurationId));
     const reply = await readConfiguration(tx, configurationId);
     await writeTrail(tx, ctx, {
       action: "tolerance.changed",
@@ -72,18 +101,32 @@ export function changeTolerance(db: Database, ctx: Context, configurationId: str
 }
 
 /** Confirm a hold (out of service, restricted), lift it, quarantine, and back. */
-export function changeStanding(db: Database, ctx: Context, configurationId: string, input: z.output<typeof changeStandingInput>): Promise<Configuration> {
+export function changeStanding(
+  db: Database,
+  ctx: Context,
+  configurationId: string,
+  input: z.output<typeof changeStandingInput>,
+): Promise<Configuration> {
   const restriction = input.restriction === "" ? null : input.restriction;
   if ((input.standing === "restricted") !== (restriction !== null)) {
     refuseFields([
-      { path: "restriction", message: input.standing === "restricted" ? "Say which range or use it is restricted to." : "A restriction is stated only for a restricted configuration." },
+      {
+        path: "restriction",
+        message:
+          input.standing === "restricted"
+            ? "Say which range or use it is restricted to."
+            : "A restriction is stated only for a restricted configuration.",
+      },
     ]);
   }
   return inLab(db, ctx, async (tx) => {
     const { stored, instrument } = await lockForChange(tx, ctx, configurationId, input);
     const before = await findStanding(tx, configurationId);
     if (before.standing === input.standing && before.restriction === restriction && before.setBy !== null) {
-      throw problem("conflict", `${instrument.name} is ${input.standing.replaceAll("-", " ")} already. Nothing was changed.`);
+      throw problem(
+        "conflict",
+        `${instrument.name} is ${input.standing.replaceAll("-", " ")} already. Nothing was changed.`,
+      );
     }
     const id = newId();
     await tx.insert(standingEntries).values({
@@ -122,16 +165,23 @@ function actionFor(before: Standing, after: Standing): TrailInput["action"] {
   return after === "quarantined" ? "standing.changed" : "hold.confirmed";
 }
 
-export function moveDueDate(db: Database, ctx: Context, configurationId: string, input: z.output<typeof moveDueDateInput>): Promise<Configuration> {
+export function moveDueDate(
+  db: Database,
+  ctx: Context,
+  configurationId: string,
+  input: z.output<typeof moveDueDateInput>,
+): Promise<Configuration> {
   return inLab(db, ctx, async (tx) => {
     const { stored, instrument } = await lockForChange(tx, ctx, configurationId, input);
-    if (input.assignedToId !== null && input.assignedToId !== stored.assignedToId) await assertCanBeAssigned(tx, input.assignedToId);
+    if (input.assignedToId !== null && input.assignedToId !== stored.assignedToId)
+      await assertCanBeAssigned(tx, input.assignedToId);
     const today = dateIn(ctx.zone, await recordNow(tx));
     await tx
       .update(configurations)
       .set({ dueOn: input.dueOn, assignedToId: input.assignedToId, version: stored.version + 1 })
       .where(eq(configurations.id, configurationId));
-    const closed = input.dueOn >= today ? await closeAlerts(tx, { configurationId }, ["overdue"], "The due date was moved.") : [];
+    const closed =
+      input.dueOn >= today ? await closeAlerts(tx, { configurationId }, ["overdue"], "The due date was moved.") : [];
     const reply = await readConfiguration(tx, configurationId);
     await writeTrail(tx, ctx, {
       action: "due.moved",
@@ -158,16 +208,25 @@ export async function readConfiguration(tx: Tx, configurationId: string): Promis
 }
 
 /** Lock a configuration that may still be changed, for a form on its newest state. */
-export async function lockForChange(tx: Tx, ctx: Context, configurationId: string, sent: { version: number }): Promise<{ stored: ConfigurationRow; instrument: InstrumentRow }> {
+export async function lockForChange(
+  tx: Tx,
+  ctx: Context,
+  configurationId: string,
+  sent: { version: number },
+): Promise<{ stored: ConfigurationRow; instrument: InstrumentRow }> {
   const stored = await lockConfiguration(tx, configurationId);
   const { instrument } = await findInstrument(tx, stored.instrumentId);
   await assertFreshFor(tx, ctx, stored, sent, { id: configurationId, what: `The configuration of ${instrument.name}` });
   assertNotRetired(instrument);
-  if (stored.toOn !== null) throw problem("conflict", `This configuration of ${instrument.name} has ended; its record stays as it is.`);
+  if (stored.toOn !== null)
+    throw problem("conflict", `This configuration of ${instrument.name} has ended; its record stays as it is.`);
   return { stored, instrument };
 }
 
-export const aboutConfiguration = (configuration: ConfigurationRow, instrument: InstrumentRow): TrailInput["about"] => ({
+export const aboutConfiguration = (
+  configuration: ConfigurationRow,
+  instrument: InstrumentRow,
+): TrailInput["about"] => ({
   kind: "configuration",
   id: configuration.id,
   label: instrument.name,
@@ -176,6 +235,9 @@ export const aboutConfiguration = (configuration: ConfigurationRow, instrument: 
 
 async function assertNoAxisYet(tx: Tx, configurationId: string): Promise<void> {
   if ((await findAxisAt(tx, configurationId, await recordNow(tx))) !== null) {
-    throw problem("conflict", "The kind of axis can't be changed once an axis is in force: end this configuration and begin the next. Nothing was stored.");
+    throw problem(
+      "conflict",
+      "The kind of axis can't be changed once an axis is in force: end this configuration and begin the next. Nothing was stored.",
+    );
   }
 }

@@ -18,13 +18,22 @@ export const isUniqueViolation = (error: unknown, constraint?: string): boolean 
   sqlState(error) === UNIQUE_VIOLATION && (constraint === undefined || violatedConstraint(error) === constraint);
 
 /** Run a change; where its unique key is taken, say so at the field. A reference to what is not there is an input problem too. */
-export async function nameTaken<T>(field: string, constraint: string, detail: string, change: () => Promise<T>): Promise<T> {
+export async function nameTaken<T>(
+  field: string,
+  constraint: string,
+  detail: string,
+  change: () => Promise<T>,
+): Promise<T> {
   try {
     return await change();
   } catch (error) {
-    if (isUniqueViolation(error, constraint)) throw problem("already-exists", `${detail} Nothing was stored.`, { fields: [{ path: field, message: detail }] });
+    if (isUniqueViolation(error, constraint))
+      throw problem("already-exists", `${detail} Nothing was stored.`, { fields: [{ path: field, message: detail }] });
     if (sqlState(error) === FOREIGN_KEY_VIOLATION) {
-      throw problem("invalid-input", "The form names a person, instrument or source that is not in this lab. Nothing was stored; choose again.");
+      throw problem(
+        "invalid-input",
+        "The form names a person, instrument or source that is not in this lab. Nothing was stored; choose again.",
+      );
     }
     throw error;
   }

@@ -2,7 +2,12 @@
 
 /** `yyyy-mm-dd` of an instant in an IANA zone. */
 export function dateIn(zone: string, instant: Date): string {
-  const parts = new Intl.DateTimeFormat("en-GB", { timeZone: zone, year: "numeric", month: "2-digit", day: "2-digit" }).formatToParts(instant);
+  const parts = new Intl.DateTimeFormat("en-GB", {
+    timeZone: zone,
+    year: "numeric",
+    month: "2-digit",
+    day: "2-digit",
+  }).formatToParts(instant);
   const part = (type: string) => parts.find((one) => one.type === type)?.value ?? "";
   return `${part("year").padStart(4, "0")}-${part("month")}-${part("day")}`;
 }
@@ -14,7 +19,8 @@ const dayMs = 86_400_000;
 const noon = (date: string): number => Date.parse(`${date}T12:00:00Z`);
 
 /** A date some days later (or earlier). */
-export const addDays = (date: string, days: number): string => new Date(noon(date) + days * dayMs).toISOString().slice(0, 10);
+export const addDays = (date: string, days: number): string =>
+  new Date(noon(date) + days * dayMs).toISOString().slice(0, 10);
 
 /** Days from one date to another, negative when `to` lies before. */
 export const daysBetween = (from: string, to: string): number => Math.round((noon(to) - noon(from)) / dayMs);
@@ -32,13 +38,20 @@ export const shortDayText = (date: string, around: string): string =>
 
 /** `08:42 CET` in the lab's zone. */
 export function clockText(zone: string, instant: Date): string {
-  const parts = new Intl.DateTimeFormat("en-GB", { timeZone: zone, hour: "2-digit", minute: "2-digit", hourCycle: "h23", timeZoneName: "short" }).formatToParts(instant);
+  const parts = new Intl.DateTimeFormat("en-GB", {
+    timeZone: zone,
+    hour: "2-digit",
+    minute: "2-digit",
+    hourCycle: "h23",
+    timeZoneName: "short",
+  }).formatToParts(instant);
   const part = (type: string) => parts.find((one) => one.type === type)?.value ?? "";
   return `${part("hour")}:${part("minute")} ${part("timeZoneName")}`;
 }
 
 /** `14 Jan 2027, 08:42 CET`. */
-export const momentText = (zone: string, instant: Date): string => `${dayText(dateIn(zone, instant))}, ${clockText(zone, instant)}`;
+export const momentText = (zone: string, instant: Date): string =>
+  `${dayText(dateIn(zone, instant))}, ${clockText(zone, instant)}`;
 
 /** `due in 6 days`, `due today`, `overdue 3 days`. */
 export function dueText(days: number): string {

@@ -38,7 +38,11 @@ interface Row extends Record<string, unknown> {
  * @param today date in the lab's zone
  * @param options.instrumentId only this one
  */
-export async function listFleet(tx: Tx, today: string, options: { instrumentId?: string; withRetired?: boolean } = {}): Promise<FleetRow[]> {
+export async function listFleet(
+  tx: Tx,
+  today: string,
+  options: { instrumentId?: string; withRetired?: boolean } = {},
+): Promise<FleetRow[]> {
   const { rows } = await tx.execute<Row>(sql`
     select i.id, i.name, i.kind, i.place, i.owner_id, owner.name as owner_name, i.retired_at,
       c.id as configuration_id, c.range_first_nm, c.range_last_nm, (c.optics ->> 'laserNm')::float8 as laser_nm,

@@ -11,7 +11,14 @@ export interface ConfigurationFacts extends ConfigurationWithMore {
   axis: (AxisRow & { fromCheckNumber: string | null }) | null;
 }
 
-export function presentConfiguration({ configuration, procedureTitle, assignedName, tolerance, standing, axis }: ConfigurationFacts): Configuration {
+export function presentConfiguration({
+  configuration,
+  procedureTitle,
+  assignedName,
+  tolerance,
+  standing,
+  axis,
+}: ConfigurationFacts): Configuration {
   return {
     id: configuration.id,
     name: configuration.name,
@@ -26,7 +33,8 @@ export function presentConfiguration({ configuration, procedureTitle, assignedNa
     intervalDays: configuration.intervalDays,
     graceDays: configuration.graceDays,
     dueOn: configuration.dueOn,
-    assignedTo: configuration.assignedToId === null ? null : { id: configuration.assignedToId, name: assignedName ?? "" },
+    assignedTo:
+      configuration.assignedToId === null ? null : { id: configuration.assignedToId, name: assignedName ?? "" },
     setupReproducibilityNm: configuration.setupReproducibilityNm,
     decisionRule: configuration.decisionRule,
     warningShare: configuration.warningShare,
@@ -35,7 +43,10 @@ export function presentConfiguration({ configuration, procedureTitle, assignedNa
       segments: tolerance.segments,
       inForceFrom: tolerance.inForceFrom.toISOString(),
       reason: tolerance.reason,
-      by: tolerance.setBy === null ? byWavekeep(tolerance.labId) : { id: tolerance.setBy, name: tolerance.setByName ?? "" },
+      by:
+        tolerance.setBy === null
+          ? byWavekeep(tolerance.labId)
+          : { id: tolerance.setBy, name: tolerance.setByName ?? "" },
     },
     standing: {
       standing: standing.standing as Standing,

@@ -22,7 +22,10 @@ export type StandingRow = typeof standingEntries.$inferSelect;
 export type AxisRow = typeof axes.$inferSelect;
 
 /** @throws problem "not-found" */
-export async function findInstrument(tx: Tx, instrumentId: string): Promise<{ instrument: InstrumentRow; ownerName: string }> {
+export async function findInstrument(
+  tx: Tx,
+  instrumentId: string,
+): Promise<{ instrument: InstrumentRow; ownerName: string }> {
   const [row] = await tx
     .select({ instrument: instruments, ownerName: people.name })
     .from(instruments)
@@ -55,7 +58,12 @@ export async function lockConfiguration(tx: Tx, configurationId: string): Promis
 
 /** The instrument's newest configuration. */
 export async function findCurrentConfiguration(tx: Tx, instrumentId: string): Promise<ConfigurationRow> {
-  const [row] = await tx.select().from(configurations).where(eq(configurations.instrumentId, instrumentId)).orderBy(desc(configurations.ordinal)).limit(1);
+  const [row] = await tx
+    .select()
+    .from(configurations)
+    .where(eq(configurations.instrumentId, instrumentId))
+    .orderBy(desc(configurations.ordinal))
+    .limit(1);
   if (row === undefined) throw notFound("A configuration of this instrument");
   return row;
 }
@@ -72,7 +80,10 @@ export async function findToleranceAt(tx: Tx, configurationId: string, at: Date)
   return row;
 }
 
-export async function findLatestTolerance(tx: Tx, configurationId: string): Promise<ToleranceRow & { setByName: string | null }> {
+export async function findLatestTolerance(
+  tx: Tx,
+  configurationId: string,
+): Promise<ToleranceRow & { setByName: string | null }> {
   const [row] = await tx
     .select({ tolerance: toleranceVersions, setByName: people.name })
     .from(toleranceVersions)
@@ -103,7 +114,11 @@ export async function findStanding(tx: Tx, configurationId: string): Promise<Cur
 }
 
 /** The axis in force at an instant, or null where there is none (a wavelength axis of the instrument's own). */
-export async function findAxisAt(tx: Tx, configurationId: string, at: Date): Promise<(AxisRow & { fromCheckNumber: string | null }) | null> {
+export async function findAxisAt(
+  tx: Tx,
+  configurationId: string,
+  at: Date,
+): Promise<(AxisRow & { fromCheckNumber: string | null }) | null> {
   const [row] = await tx
     .select({ axis: axes, fromCheckNumber: checks.number })
     .from(axes)
@@ -120,24 +135,42 @@ export interface ConfigurationWithMore {
   assignedName: string | null;
 }
 
-export function listConfigurations(tx: Tx, by: { instrumentId: string } | { configurationId: string }): Promise<ConfigurationWithMore[]> {
+export function listConfigurations(
+  tx: Tx,
+  by: { instrumentId: string } | { configurationId: string },
+): Promise<ConfigurationWithMore[]> {
   return tx
     .select({ configuration: configurations, procedureTitle: procedures.title, assignedName: people.name })
     .from(configurations)
-    .innerJoin(procedures, and(eq(procedures.labId, configurations.labId), eq(procedures.id, configurations.procedureId)))
+    .innerJoin(
+      procedures,
+      and(eq(procedures.labId, configurations.labId), eq(procedures.id, configurations.procedureId)),
+    )
     .leftJoin(people, eq(people.id, configurations.assignedToId))
-    .where("instrumentId" in by ? eq(configurations.instrumentId, by.instrumentId) : eq(configurations.id, by.configurationId))
+    .where(
+      "instrumentId" in by
+        ? eq(configurations.instrumentId, by.instrumentId)
+        : eq(configurations.id, by.configurationId),
+    )
     .orderBy(asc(configurations.ordinal));
 }
 
 export async function countOpenAlerts(tx: Tx, instrumentId: string): Promise<number> {
-  const [row] = await tx.select({ open: count() }).from(alerts).where(and(eq(alerts.instrumentId, instrumentId), isNull(alerts.closedAt)));
+  const [row] = await tx
+    .select({ open: count() })
+    .from(alerts)
+    .where(and(eq(alerts.instrumentId, instrumentId), isNull(alerts.closedAt)));
   return row!.open;
 }
 
 export async function countChecks(tx: Tx, instrumentId: string): Promise<{ count: number; firstAt: Date | null }> {
   const [row] = await tx
-    .select({ count: count(), firstAt: sql<Date | null>`min(${checks.begunAt})`.mapWith((value: string | null) => (value === null ? null : new Date(value))) })
+    .select({
+      count: count(),
+      firstAt: sql<Date | null>`min(${checks.begunAt})`.mapWith((value: string | null) =>
+        value === null ? null : new Date(value),
+      ),
+    })
     .from(checks)
     .where(eq(checks.instrumentId, instrumentId));
   return row!;
@@ -164,7 +197,12 @@ export function listManagers(tx: Tx): Promise<{ personId: string; name: string }
 }
 
 /** The next number of a series: CHK-2027-0041, IR-2027-004. Taken under the counter's lock. */
-export async function takeNumber(tx: Tx, ctx: Pick<Context, "labId">, kind: "check" | "impact-review" | "report", year: number): Promise<string> {
+export async function takeNumber(
+  tx: Tx,
+  ctx: Pick<Context, "labId">,
+  kind: "check" | "impact-review" | "report",
+  year: number,
+): Promise<string> {
   const { rows } = await tx.execute<{ last: number }>(sql`
     insert into number_counters (lab_id, kind, year, last) values (${ctx.labId}::uuid, ${kind}, ${year}, 1)
     on conflict (lab_id, kind, year) do update set last = number_counters.last + 1

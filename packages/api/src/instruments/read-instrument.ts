@@ -7,7 +7,15 @@ import { recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { dateIn, dayText, dueText } from "./dates.ts";
 import { listFleet } from "./fleet.ts";
 import { presentConfiguration, type ConfigurationFacts } from "./present.ts";
-import { countChecks, countOpenAlerts, findAxisAt, findInstrument, findLatestTolerance, findStanding, listConfigurations } from "./queries.ts";
+import {
+  countChecks,
+  countOpenAlerts,
+  findAxisAt,
+  findInstrument,
+  findLatestTolerance,
+  findStanding,
+  listConfigurations,
+} from "./queries.ts";
 
 const recentCount = 8;
 
@@ -29,7 +37,11 @@ export async function readInstrument(tx: Tx, ctx: Context, instrumentId: string)
   const [fleetRow] = await listFleet(tx, today, { instrumentId, withRetired: true });
   const row = fleetRow!;
   const recent = await listCheckRows(tx, { instrumentId, limit: recentCount });
-  const drafts = await listCheckRows(tx, { configurationId: row.configurationId, states: ["begun", "set-aside", "returned"], limit: 1 });
+  const drafts = await listCheckRows(tx, {
+    configurationId: row.configurationId,
+    states: ["begun", "set-aside", "returned"],
+    limit: 1,
+  });
   const last = row.lastCheckId === null ? [] : await listCheckRows(tx, { checkId: row.lastCheckId, limit: 1 });
   const counted = await countChecks(tx, instrumentId);
   const draft = drafts[0]?.summary;
@@ -66,8 +78,12 @@ export async function readInstrument(tx: Tx, ctx: Context, instrumentId: string)
 /** Where the instrument stands and what comes, in one or two sentences. */
 function prognosisOf(row: Awaited<ReturnType<typeof listFleet>>[number], retiredReason: string | null): string {
   if (row.retiredAt !== null) return `Retired${retiredReason === null ? "" : `: ${retiredReason}`}`;
-  const due = row.dueOn === null ? "No check is planned." : `Its next check is due ${dayText(row.dueOn)}${row.dueDays !== null && row.dueDays < 0 ? `, ${dueText(row.dueDays)}` : ""}.`;
-  if (row.toleranceUsed === null || row.worst === null) return `Not judged yet. ${due.replace("Its next check", "Its check")}`;
+  const due =
+    row.dueOn === null
+      ? "No check is planned."
+      : `Its next check is due ${dayText(row.dueOn)}${row.dueDays !== null && row.dueDays < 0 ? `, ${dueText(row.dueDays)}` : ""}.`;
+  if (row.toleranceUsed === null || row.worst === null)
+    return `Not judged yet. ${due.replace("Its next check", "Its check")}`;
   const used = `Uses ${percentText(row.toleranceUsed)} of its tolerance, at ${lineText(row.worst.species, row.worst.wavelengthNm)}`;
   switch (row.state) {
     case "on-hold":

@@ -13,19 +13,39 @@ type FieldNote = { path: string; message: string };
 /** Throw what was found, all at once, the first for the form to focus. */
 export function refuseFields(fields: FieldNote[]): void {
   if (fields.length === 0) return;
-  throw problem("invalid-input", fields.length === 1 ? `${fields[0]!.message} Nothing was stored.` : `${fields.length} fields need another look. Nothing was stored.`, { fields });
+  throw problem(
+    "invalid-input",
+    fields.length === 1
+      ? `${fields[0]!.message} Nothing was stored.`
+      : `${fields.length} fields need another look. Nothing was stored.`,
+    { fields },
+  );
 }
 
-export function configurationProblems(input: Omit<ConfigurationInput, "axisCoefficients"> & { axisCoefficients?: number[] | null }, path: string): FieldNote[] {
+export function configurationProblems(
+  input: Omit<ConfigurationInput, "axisCoefficients"> & { axisCoefficients?: number[] | null },
+  path: string,
+): FieldNote[] {
   const fields: FieldNote[] = [];
   if (input.rangeFirstNm >= input.rangeLastNm) {
-    fields.push({ path: `${path}rangeLastNm`, message: `The range must end above ${input.rangeFirstNm} nm, where it begins.` });
+    fields.push({
+      path: `${path}rangeLastNm`,
+      message: `The range must end above ${input.rangeFirstNm} nm, where it begins.`,
+    });
   }
   const coefficients = input.axisCoefficients ?? null;
   if (coefficients !== null && input.axisKind === "wavelength") {
-    fields.push({ path: `${path}axisCoefficients`, message: "An instrument that shows wavelengths itself has no coefficients here; choose a pixel axis to enter them." });
+    fields.push({
+      path: `${path}axisCoefficients`,
+      message:
+        "An instrument that shows wavelengths itself has no coefficients here; choose a pixel axis to enter them.",
+    });
   } else if (coefficients !== null && !risesOrFalls(coefficients, input.optics.pixels ?? 2048)) {
-    fields.push({ path: `${path}axisCoefficients`, message: "With these coefficients the wavelength turns back within the detector. Check their order: nm, ascending powers of the pixel." });
+    fields.push({
+      path: `${path}axisCoefficients`,
+      message:
+        "With these coefficients the wavelength turns back within the detector. Check their order: nm, ascending powers of the pixel.",
+    });
   }
   return fields;
 }
@@ -43,11 +63,17 @@ export function toleranceProblems(segments: readonly Segment[], path: string): F
   const fields: FieldNote[] = [];
   segments.forEach((segment, index) => {
     if (segment.fromNm >= segment.toNm) {
-      fields.push({ path: `${path}${index}.toNm`, message: `Segment ${index + 1} must end above ${segment.fromNm} nm, where it begins.` });
+      fields.push({
+        path: `${path}${index}.toNm`,
+        message: `Segment ${index + 1} must end above ${segment.fromNm} nm, where it begins.`,
+      });
     }
     const before = segments[index - 1];
     if (before !== undefined && segment.fromNm < before.toNm) {
-      fields.push({ path: `${path}${index}.fromNm`, message: `Segment ${index + 1} begins before segment ${index} ends; segments follow each other without overlapping.` });
+      fields.push({
+        path: `${path}${index}.fromNm`,
+        message: `Segment ${index + 1} begins before segment ${index} ends; segments follow each other without overlapping.`,
+      });
     }
   });
   return fields;
@@ -58,7 +84,10 @@ export async function assertCanOwn(tx: Tx, personId: string): Promise<{ name: st
   const member = await findOptionalMember(tx, personId);
   const pureAuditor = member !== null && member.roles.length === 1 && member.roles[0] === "auditor";
   if (member === null || pureAuditor) {
-    const message = member === null ? "This person is no member of the lab now; choose another owner." : `${member.name} is an auditor only and can't own an instrument; choose another owner.`;
+    const message =
+      member === null
+        ? "This person is no member of the lab now; choose another owner."
+        : `${member.name} is an auditor only and can't own an instrument; choose another owner.`;
     throw problem("invalid-input", `${message} Nothing was stored.`, { fields: [{ path: "ownerId", message }] });
   }
   return member;
@@ -68,6 +97,9 @@ export async function assertCanOwn(tx: Tx, personId: string): Promise<{ name: st
 export async function assertCanBeAssigned(tx: Tx, personId: string): Promise<void> {
   const member = await findOptionalMember(tx, personId);
   if (member !== null && member.roles.some((role) => role === "technician" || role === "manager")) return;
-  const message = member === null ? "This person is no member of the lab now." : `${member.name} is neither technician nor manager and can't make a check.`;
+  const message =
+    member === null
+      ? "This person is no member of the lab now."
+      : `${member.name} is neither technician nor manager and can't make a check.`;
   throw problem("invalid-input", `${message} Nothing was stored.`, { fields: [{ path: "assignedToId", message }] });
 }

@@ -26,7 +26,15 @@ export async function assertFreshFor(
     .where(and(eq(trailEntries.aboutId, about.id), isNotNull(trailEntries.personId)))
     .orderBy(desc(trailEntries.number))
     .limit(1);
-  const who = last === undefined ? "somebody else" : last.personId === ctx.personId ? "you, in another window," : (last.name ?? "somebody else");
+  const who =
+    last === undefined
+      ? "somebody else"
+      : last.personId === ctx.personId
+        ? "you, in another window,"
+        : (last.name ?? "somebody else");
   const when = last === undefined ? "" : ` on ${momentText(ctx.zone, last.at)}`;
-  throw problem("stale", `${about.what} was changed by ${who}${when} while this form was open. Nothing was stored and nothing of yours is lost: reload, compare, and save again.`);
+  throw problem(
+    "stale",
+    `${about.what} was changed by ${who}${when} while this form was open. Nothing was stored and nothing of yours is lost: reload, compare, and save again.`,
+  );
 }

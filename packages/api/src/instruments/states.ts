@@ -2,7 +2,10 @@
 import type { ShownState, Standing } from "../contract/common.ts";
 
 /** What a configuration shows: its standing where that is not plain service, else its last check's verdict. */
-export function shownStateOf(standing: Standing, result: { verdict: string | null; nearLimit: boolean } | null): ShownState {
+export function shownStateOf(
+  standing: Standing,
+  result: { verdict: string | null; nearLimit: boolean } | null,
+): ShownState {
   if (standing !== "in-service") return standing;
   if (result === null || result.verdict === null) return "not-judged";
   if (result.verdict === "fail") return "out-of-tolerance";

@@ -6,7 +6,9 @@ import { notFound } from "../http/problem.ts";
 import { lineSourceCitations } from "./citations.ts";
 
 /** Every version a result can name, newest first, with the day it was added. */
-const lineLists: readonly { list: LineList; addedAt: string }[] = [{ list: builtInLineList, addedAt: "2026-11-30T00:00:00.000Z" }];
+const lineLists: readonly { list: LineList; addedAt: string }[] = [
+  { list: builtInLineList, addedAt: "2026-11-30T00:00:00.000Z" },
+];
 
 export function listLineLists(): z.input<typeof lineListsReply> {
   return {
@@ -14,7 +16,10 @@ export function listLineLists(): z.input<typeof lineListsReply> {
       version: list.version,
       title: list.title,
       lineCount: list.lines.length,
-      elements: elementsOf(list).map((element) => ({ element, count: list.lines.filter((line) => line.element === element).length })),
+      elements: elementsOf(list).map((element) => ({
+        element,
+        count: list.lines.filter((line) => line.element === element).length,
+      })),
       sources: lineSourceCitations,
       addedAt,
     })),
@@ -28,7 +33,11 @@ export function listLines(version: string, query: z.output<typeof linesQuery>): 
   const { element, fromNm = 0, toNm = Number.POSITIVE_INFINITY } = query;
   const lines = found.list.lines.filter((line) => {
     const { wavelengthNm } = lineWavelengthNm(line);
-    return (element === undefined || line.element === element || line.spectrum === element) && wavelengthNm >= fromNm && wavelengthNm <= toNm;
+    return (
+      (element === undefined || line.element === element || line.spectrum === element) &&
+      wavelengthNm >= fromNm &&
+      wavelengthNm <= toNm
+    );
   });
   return { version, lines };
 }

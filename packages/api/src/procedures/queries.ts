@@ -24,7 +24,12 @@ export async function findProcedure(tx: Tx, procedureId: string): Promise<Proced
 
 /** The newest procedure for a kind of instrument; a lab has one from its first day. */
 export async function findProcedureForKind(tx: Tx, kind: InstrumentKind): Promise<ProcedureRow> {
-  const [row] = await tx.select().from(procedures).where(eq(procedures.instrumentKind, kind)).orderBy(desc(procedures.version), asc(procedures.code)).limit(1);
+  const [row] = await tx
+    .select()
+    .from(procedures)
+    .where(eq(procedures.instrumentKind, kind))
+    .orderBy(desc(procedures.version), asc(procedures.code))
+    .limit(1);
   if (row === undefined) throw notFound(`A procedure for this kind of instrument`);
   return row;
 }

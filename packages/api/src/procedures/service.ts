@@ -17,7 +17,14 @@ import { listProcedureRows } from "./queries.ts";
  */
 export async function addDefaultProcedures(tx: Tx, ctx: Pick<Context, "labId">): Promise<TrailInput[]> {
   const approvedAt = await recordNow(tx);
-  const rows = defaultProcedures.map((procedure) => ({ labId: ctx.labId, id: newId(), version: 1, approvedAt, approvedBy: null, ...procedure }));
+  const rows = defaultProcedures.map((procedure) => ({
+    labId: ctx.labId,
+    id: newId(),
+    version: 1,
+    approvedAt,
+    approvedBy: null,
+    ...procedure,
+  }));
   await tx.insert(procedures).values(rows);
   return rows.map((row) => ({
     action: "procedure.approved",

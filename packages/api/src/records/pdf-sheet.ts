@@ -3,7 +3,14 @@
  * rows stay whole. It measures and breaks text itself, because a line may need more than one face (Latin, extended, Greek).
  */
 import PDFDocument from "pdfkit";
-import { greekRegular, greekStrong, latinExtRegular, latinExtStrong, latinRegular, latinStrong } from "./fonts/roboto-flex.ts";
+import {
+  greekRegular,
+  greekStrong,
+  latinExtRegular,
+  latinExtStrong,
+  latinRegular,
+  latinStrong,
+} from "./fonts/roboto-flex.ts";
 
 const pointsPerMm = 72 / 25.4;
 const margin = 18 * pointsPerMm;
@@ -35,16 +42,26 @@ export interface TableRow {
   grey?: boolean;
 }
 
-const faces = { latin: ["latin-regular", "latin-strong"], ext: ["ext-regular", "ext-strong"], greek: ["greek-regular", "greek-strong"] } as const;
+const faces = {
+  latin: ["latin-regular", "latin-strong"],
+  ext: ["ext-regular", "ext-strong"],
+  greek: ["greek-regular", "greek-strong"],
+} as const;
 type Face = keyof typeof faces;
 
 /** Face of a character; what none has is printed as a question mark in the Latin one. */
 function faceOf(codePoint: number): Face {
   if (codePoint >= 0x370 && codePoint <= 0x3ff) return "greek";
-  if ((codePoint >= 0x100 && codePoint <= 0x24f && codePoint !== 0x131 && codePoint !== 0x152 && codePoint !== 0x153) || (codePoint >= 0x1e00 && codePoint <= 0x1eff)) return "ext";
+  if (
+    (codePoint >= 0x100 && codePoint <= 0x24f && codePoint !== 0x131 && codePoint !== 0x152 && codePoint !== 0x153) ||
+    (codePoint >= 0x1e00 && codePoint <= 0x1eff)
+  )
+    return "ext";
   return "latin";
 }
-const latinBeyond = new Set([0x131, 0x152, 0x153, 0x2013, 0x2014, 0x2018, 0x2019, 0x201c, 0x201d, 0x2022, 0x2026, 0x202f, 0x20ac, 0x2212]);
+const latinBeyond = new Set([
+  0x131, 0x152, 0x153, 0x2013, 0x2014, 0x2018, 0x2019, 0x201c, 0x201d, 0x2022, 0x2026, 0x202f, 0x20ac, 0x2212,
+]);
 
 interface Run {
   face: Face;
@@ -56,7 +73,11 @@ function runsOf(text: string): Run[] {
   for (const character of text) {
     const codePoint = character.codePointAt(0)!;
     const face = faceOf(codePoint);
-    const printable = face !== "latin" || (codePoint >= 0x20 && codePoint <= 0x7e) || (codePoint >= 0xa0 && codePoint <= 0xff) || latinBeyond.has(codePoint);
+    const printable =
+      face !== "latin" ||
+      (codePoint >= 0x20 && codePoint <= 0x7e) ||
+      (codePoint >= 0xa0 && codePoint <= 0xff) ||
+      latinBeyond.has(codePoint);
     const shown = printable ? character : "?";
     const last = runs.at(-1);
     if (last !== undefined && last.face === face) last.text += shown;
@@ -79,7 +100,14 @@ export class PdfSheet {
       margin: 0,
       bufferPages: true,
       autoFirstPage: true,
-      info: { Title: info.title, Author: info.author, Creator: "Wavekeep", Producer: "Wavekeep", CreationDate: info.createdAt, ModDate: info.createdAt },
+      info: {
+        Title: info.title,
+        Author: info.author,
+        Creator: "Wavekeep",
+        Producer: "Wavekeep",
+        CreationDate: info.createdAt,
+        ModDate: info.createdAt,
+      },
     });
     const fonts: [string, string][] = [
       ["latin-regular", latinRegular],
@@ -94,7 +122,11 @@ export class PdfSheet {
   }
 
   /** A paragraph over the body's width (or a share of it), broken at spaces. */
-  paragraph(text: string, style: TextStyle = {}, options: { after?: number; left?: number; width?: number } = {}): void {
+  paragraph(
+    text: string,
+    style: TextStyle = {},
+    options: { after?: number; left?: number; width?: number } = {},
+  ): void {
     const left = options.left ?? 0;
     for (const line of this.wrap(text, options.width ?? this.bodyWidth - left, style)) {
       this.room(lineHeight(style));
@@ -117,7 +149,9 @@ export class PdfSheet {
   facts(pairs: readonly (readonly [string, string])[], columns = 2): void {
     const width = this.bodyWidth / columns - 10;
     for (let i = 0; i < pairs.length; i += columns) {
-      const row = pairs.slice(i, i + columns).map(([name, value]) => ({ name, lines: this.wrap(value, width - 90, {}) }));
+      const row = pairs
+        .slice(i, i + columns)
+        .map(([name, value]) => ({ name, lines: this.wrap(value, width - 90, {}) }));
       const height = Math.max(...row.map(({ lines }) => lines.length)) * lineHeight({});
       this.room(height + 3);
       row.forEach(({ name, lines }, column) => {
@@ -136,7 +170,9 @@ export class PdfSheet {
     const widths = columns.map((column) => column.share * this.bodyWidth);
     const lefts = widths.map((_, index) => margin + widths.slice(0, index).reduce((sum, width) => sum + width, 0));
     const head = () => {
-      columns.forEach((column, index) => this.cell(column.title, lefts[index]!, widths[index]!, { size: 7.5, grey: true }, column.align));
+      columns.forEach((column, index) =>
+        this.cell(column.title, lefts[index]!, widths[index]!, { size: 7.5, grey: true }, column.align),
+      );
       this.y += lineHeight({ size: 7.5 }) + 2;
       this.rule(0.6, "#868276");
       this.y += 3;
@@ -144,9 +180,14 @@ export class PdfSheet {
     this.room(50);
     head();
     for (const row of rows) {
-      const wrapped = row.cells.map((cell, index) => this.wrap(textOf(cell), widths[index]! - 6, { ...style, weight: weightOf(cell) }));
+      const wrapped = row.cells.map((cell, index) =>
+        this.wrap(textOf(cell), widths[index]! - 6, { ...style, weight: weightOf(cell) }),
+      );
       const noteLines = row.note === undefined ? [] : this.wrap(row.note, this.bodyWidth - widths[0]!, { size: 7.5 });
-      const height = Math.max(...wrapped.map((lines) => lines.length)) * lineHeight(style) + noteLines.length * lineHeight({ size: 7.5 }) + 4;
+      const height =
+        Math.max(...wrapped.map((lines) => lines.length)) * lineHeight(style) +
+        noteLines.length * lineHeight({ size: 7.5 }) +
+        4;
       if (this.y + height > pageHeight - margin - footRoom) {
         this.newPage();
         head();
@@ -155,7 +196,13 @@ export class PdfSheet {
         lines.forEach((line, at) => {
           const top = this.y;
           this.y += at * lineHeight(style);
-          this.cell(line, lefts[index]!, widths[index]!, { ...style, weight: weightOf(row.cells[index]!), grey: row.grey }, columns[index]!.align);
+          this.cell(
+            line,
+            lefts[index]!,
+            widths[index]!,
+            { ...style, weight: weightOf(row.cells[index]!), grey: row.grey },
+            columns[index]!.align,
+          );
           this.y = top;
         });
       });
@@ -177,11 +224,20 @@ export class PdfSheet {
     for (let page = start; page < start + count; page += 1) {
       this.doc.switchToPage(page);
       const y = pageHeight - margin - 8;
-      this.doc.save().lineWidth(0.4).strokeColor("#868276").moveTo(margin, y - 4).lineTo(pageWidth - margin, y - 4).stroke().restore();
+      this.doc
+        .save()
+        .lineWidth(0.4)
+        .strokeColor("#868276")
+        .moveTo(margin, y - 4)
+        .lineTo(pageWidth - margin, y - 4)
+        .stroke()
+        .restore();
       this.line(foot.left, margin, y, { size: 7.5, grey: true });
       const place = `Page ${page - start + 1} of ${count}`;
       this.line(place, pageWidth - margin - this.width(place, { size: 7.5 }), y, { size: 7.5, grey: true });
-      foot.marks.forEach((mark, index) => this.line(mark, margin, margin - 14 - index * 11, { size: 8.5, weight: "strong" }));
+      foot.marks.forEach((mark, index) =>
+        this.line(mark, margin, margin - 14 - index * 11, { size: 8.5, weight: "strong" }),
+      );
     }
     const ended = new Promise<void>((resolve, reject) => {
       this.doc.on("end", resolve);
@@ -198,7 +254,14 @@ export class PdfSheet {
   }
 
   private rule(weight: number, color: string): void {
-    this.doc.save().lineWidth(weight).strokeColor(color).moveTo(margin, this.y).lineTo(pageWidth - margin, this.y).stroke().restore();
+    this.doc
+      .save()
+      .lineWidth(weight)
+      .strokeColor(color)
+      .moveTo(margin, this.y)
+      .lineTo(pageWidth - margin, this.y)
+      .stroke()
+      .restore();
   }
 
   private room(height: number): void {
@@ -259,4 +322,5 @@ export class PdfSheet {
 
 const lineHeight = (style: TextStyle): number => (style.size ?? 9) * 1.38;
 const textOf = (cell: string | Cell): string => (typeof cell === "string" ? cell : cell.text);
-const weightOf = (cell: string | Cell): Weight => (typeof cell !== "string" && cell.strong === true ? "strong" : "regular");
+const weightOf = (cell: string | Cell): Weight =>
+  typeof cell !== "string" && cell.strong === true ? "strong" : "regular";

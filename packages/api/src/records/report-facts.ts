@@ -3,12 +3,36 @@ import { and, desc, eq, gte, inArray } from "drizzle-orm";
 import type { Analysis } from "@wavekeep/core";
 import type { CaptureReceipt } from "../contract/checks.ts";
 import { listReceipts } from "../captures/receipts.ts";
-import { findCheck, findDraft, findOptionalAnalysis, findOptionalSubmission, listAnalysisVersions, listAttempts, listEvents, listSignatures, type CheckRecord, type SignatureRow } from "../checks/queries.ts";
-import { sources, sourceCertificates, toleranceVersions, type StoredDraft, type StoredSegment } from "../db/schema/index.ts";
+import {
+  findCheck,
+  findDraft,
+  findOptionalAnalysis,
+  findOptionalSubmission,
+  listAnalysisVersions,
+  listAttempts,
+  listEvents,
+  listSignatures,
+  type CheckRecord,
+  type SignatureRow,
+} from "../checks/queries.ts";
+import {
+  sources,
+  sourceCertificates,
+  toleranceVersions,
+  type StoredDraft,
+  type StoredSegment,
+} from "../db/schema/index.ts";
 import { recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
 import { addDays, dateIn } from "../instruments/dates.ts";
-import { findAxisAt, findConfiguration, findInstrument, findToleranceAt, type ConfigurationRow, type InstrumentRow } from "../instruments/queries.ts";
+import {
+  findAxisAt,
+  findConfiguration,
+  findInstrument,
+  findToleranceAt,
+  type ConfigurationRow,
+  type InstrumentRow,
+} from "../instruments/queries.ts";
 import { findLab, type LabRow } from "../labs/queries.ts";
 import { findProcedure, type ProcedureRow } from "../procedures/queries.ts";
 import { findOptionalLastEntry } from "./queries.ts";
@@ -33,7 +57,15 @@ export interface ReportFacts {
   /** Other versions that took over within a year of the check: a changed tolerance shows for a year. */
   toleranceChanges: { version: number; inForceFrom: Date; reason: string; segments: StoredSegment[] }[];
   axis: { number: number; inForceFrom: Date } | null;
-  sources: { label: string; name: string; maker: string; serial: string; reviewDueOn: string | null; pastReview: boolean; certificateSha256: string | null }[];
+  sources: {
+    label: string;
+    name: string;
+    maker: string;
+    serial: string;
+    reviewDueOn: string | null;
+    pastReview: boolean;
+    certificateSha256: string | null;
+  }[];
   receipts: CaptureReceipt[];
   attempts: { number: number; reason: string }[];
   changes: { version: number; attempt: number; changed: string }[];
@@ -49,8 +81,15 @@ export async function gatherReport(tx: Tx, ctx: Context, checkId: string, number
   const check = await findCheck(tx, checkId);
   const draft = await findDraft(tx, checkId);
   const submission = draft.open ? null : await findOptionalSubmission(tx, checkId);
-  const analysis = submission === null ? await findOptionalAnalysis(tx, { checkId, attempt: draft.currentAttempt }) : await findOptionalAnalysis(tx, { id: submission.analysisId });
-  if (analysis === null) throw problem("conflict", `${check.number} has no result yet, so there is nothing to print. Analyse its captures first.`);
+  const analysis =
+    submission === null
+      ? await findOptionalAnalysis(tx, { checkId, attempt: draft.currentAttempt })
+      : await findOptionalAnalysis(tx, { id: submission.analysisId });
+  if (analysis === null)
+    throw problem(
+      "conflict",
+      `${check.number} has no result yet, so there is nothing to print. Analyse its captures first.`,
+    );
   const inputs = submission?.inputs ?? draft.inputs;
   const { instrument, ownerName } = await findInstrument(tx, check.instrumentId);
   const configuration = await findConfiguration(tx, check.configurationId);
@@ -83,14 +122,23 @@ export async function gatherReport(tx: Tx, ctx: Context, checkId: string, number
     receipts,
     attempts: (await listAttempts(tx, checkId)).map((attempt) => ({ number: attempt.number, reason: attempt.reason })),
     changes: versions.map(({ version, attempt, changed }) => ({ version, attempt, changed })),
-    comments: events.flatMap(({ event, name }) => (event.comment === null ? [] : [{ kind: event.kind, byName: name ?? "Wavekeep", at: event.at, comment: event.comment }])),
+    comments: events.flatMap(({ event, name }) =>
+      event.comment === null
+        ? []
+        : [{ kind: event.kind, byName: name ?? "Wavekeep", at: event.at, comment: event.comment }],
+    ),
     signatures: await listSignatures(tx, checkId),
     contentSha256: submission?.contentSha256 ?? null,
     head: await findOptionalLastEntry(tx),
   };
 }
 
-async function listToleranceChanges(tx: Tx, configurationId: string, usedVersion: number, at: Date): Promise<ReportFacts["toleranceChanges"]> {
+async function listToleranceChanges(
+  tx: Tx,
+  configurationId: string,
+  usedVersion: number,
+  at: Date,
+): Promise<ReportFacts["toleranceChanges"]> {
   const yearBefore = new Date(`${addDays(at.toISOString().slice(0, 10), -365)}T00:00:00Z`);
   const rows = await tx
     .select()
@@ -114,8 +162,15 @@ async function listReportSources(tx: Tx, inputs: StoredDraft, on: string): Promi
     if (source === undefined) return [];
     const { label, name, maker, serial, reviewDueOn } = source;
     return [
-      { label, name, maker, serial, reviewDueOn, pastReview: reviewDueOn !== null && reviewDueOn < on, certificateSha256: certificates.find((row) => row.sourceId === id)?.sha256 ?? null },
+      {
+        label,
+        name,
+        maker,
+        serial,
+        reviewDueOn,
+        pastReview: reviewDueOn !== null && reviewDueOn < on,
+        certificateSha256: certificates.find((row) => row.sourceId === id)?.sha256 ?? null,
+      },
     ];
   });
 }
-

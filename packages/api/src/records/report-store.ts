@@ -22,7 +22,11 @@ export interface ReportWork {
  * The report of an approved check, made if it is not there yet: drawn with no transaction open, stored with its hash in the
  * trail. A server that stopped between approval and report makes it when it is next asked for.
  */
-export async function ensureReport(work: ReportWork, ctx: Context, checkId: string): Promise<typeof reports.$inferSelect> {
+export async function ensureReport(
+  work: ReportWork,
+  ctx: Context,
+  checkId: string,
+): Promise<typeof reports.$inferSelect> {
   const stored = await inLab(work.db, ctx, (tx) => findOptionalReport(tx, checkId));
   if (stored !== null) return stored;
   const wavekeep = asWavekeep(ctx);
@@ -33,13 +37,26 @@ export async function ensureReport(work: ReportWork, ctx: Context, checkId: stri
     return { ...gathered, check, number };
   });
   const bytes = await renderReport(facts, work.signer.fingerprint);
-  const row = { labId: ctx.labId, checkId, number: facts.number!, sha256: sha256Hex(bytes), bytes, madeAt: facts.madeAt };
+  const row = {
+    labId: ctx.labId,
+    checkId,
+    number: facts.number!,
+    sha256: sha256Hex(bytes),
+    bytes,
+    madeAt: facts.madeAt,
+  };
   try {
     await inLab(work.db, wavekeep, async (tx) => {
       await tx.insert(reports).values(row);
       await writeTrail(tx, wavekeep, {
         action: "report.made",
-        about: { kind: "report", id: checkId, label: facts.check.number, instrumentId: facts.check.instrumentId, checkId },
+        about: {
+          kind: "report",
+          id: checkId,
+          label: facts.check.number,
+          instrumentId: facts.check.instrumentId,
+          checkId,
+        },
         after: { number: row.number, sha256: row.sha256, sizeBytes: bytes.length, head: facts.head?.number ?? null },
       });
     });
@@ -53,7 +70,10 @@ export async function ensureReport(work: ReportWork, ctx: Context, checkId: stri
 
 /** The stored report, or a draft marked as one; that somebody took a copy is in the trail. */
 export async function readReport(work: ReportWork, ctx: Context, checkId: string): Promise<FileReply> {
-  const { check, approved } = await inLab(work.db, ctx, async (tx) => ({ check: await findCheck(tx, checkId), approved: (await findState(tx, checkId)) === "approved" }));
+  const { check, approved } = await inLab(work.db, ctx, async (tx) => ({
+    check: await findCheck(tx, checkId),
+    approved: (await findState(tx, checkId)) === "approved",
+  }));
   if (!approved) {
     const facts = await inLab(work.db, ctx, (tx) => gatherReport(tx, ctx, checkId, null));
     return pdf(await renderReport(facts, work.signer.fingerprint), `${check.number}-draft.pdf`);
@@ -69,4 +89,6 @@ export async function readReport(work: ReportWork, ctx: Context, checkId: string
   return pdf(report.bytes, `${report.number}-${check.number}.pdf`, report.sha256);
 }
 
-const pdf = (bytes: Buffer, name: string, sha256?: string): FileReply => ({ file: { bytes, type: "application/pdf", name, inline: true, ...(sha256 === undefined ? {} : { sha256 }) } });
+const pdf = (bytes: Buffer, name: string, sha256?: string): FileReply => ({
+  file: { bytes, type: "application/pdf", name, inline: true, ...(sha256 === undefined ? {} : { sha256 }) },
+});

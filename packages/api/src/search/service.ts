@@ -15,11 +15,17 @@ interface Row extends Record<string, unknown> {
   rank: number;
 }
 
-export function search(db: Database, ctx: Context, { q }: z.output<typeof searchQuery>): Promise<z.input<typeof searchReply>> {
+export function search(
+  db: Database,
+  ctx: Context,
+  { q }: z.output<typeof searchQuery>,
+): Promise<z.input<typeof searchReply>> {
   return inLab(db, ctx, async (tx) => {
     const { rows } = await tx.execute<Row>(sql`select kind, id, label, note, rank from search_lab(${q})`);
     // What begins with the words typed comes first; within that, instruments, checks, people as the function lists them.
-    const ordered = rows.map((row, index) => ({ row, index })).sort((a, b) => a.row.rank - b.row.rank || a.index - b.index);
+    const ordered = rows
+      .map((row, index) => ({ row, index }))
+      .sort((a, b) => a.row.rank - b.row.rank || a.index - b.index);
     return { hits: ordered.map(({ row }) => ({ kind: row.kind, label: row.label, note: row.note, to: pathOf(row) })) };
   });
 }

@@ -58,14 +58,16 @@ function poisonCaution(element: string): Caution {
  */
 export function cautionsFor(source: Pick<Source, "kind" | "elements" | "name">): Caution[] {
   const cautions: Caution[] = [];
-  const isLamp = source.kind === "low-pressure-lamp" || source.kind === "high-pressure-lamp" || source.kind === "built-in";
+  const isLamp =
+    source.kind === "low-pressure-lamp" || source.kind === "high-pressure-lamp" || source.kind === "built-in";
   if (source.kind === "laser") cautions.push(laser);
   if (source.kind === "absorption-standard") {
     const holmium = source.elements.includes("Ho") || /holmium|perchloric/i.test(source.name);
     cautions.push(holmium ? perchloricAcid : otherStandard);
   }
   if (isLamp && source.elements.some((element) => ultravioletElements.has(element))) cautions.push(ultraviolet);
-  if (isLamp) for (const element of source.elements) if (element in poisonousWhenBroken) cautions.push(poisonCaution(element));
+  if (isLamp)
+    for (const element of source.elements) if (element in poisonousWhenBroken) cautions.push(poisonCaution(element));
   if (source.kind === "high-pressure-lamp") cautions.push(pressure);
   if (isLamp) cautions.push(highVoltage);
   return [...cautions, whoDecides];

@@ -5,7 +5,10 @@ import { cautionsFor } from "./cautions.ts";
 import type { SourceWithMore } from "./queries.ts";
 
 /** @param today date in the lab's zone */
-export function presentSource({ source, builtIntoName, usedInChecks, certificate }: SourceWithMore, today: string): Source {
+export function presentSource(
+  { source, builtIntoName, usedInChecks, certificate }: SourceWithMore,
+  today: string,
+): Source {
   const kind = source.kind as Source["kind"];
   return {
     id: source.id,

@@ -10,7 +10,14 @@ export interface SourceWithMore {
   source: SourceRow;
   builtIntoName: string | null;
   usedInChecks: number;
-  certificate: { fileName: string; sizeBytes: number; sha256: string; storedAt: Date; storedById: string | null; storedByName: string | null } | null;
+  certificate: {
+    fileName: string;
+    sizeBytes: number;
+    sha256: string;
+    storedAt: Date;
+    storedById: string | null;
+    storedByName: string | null;
+  } | null;
 }
 
 /** Every source, in use first, by label; with how often it was used and its newest certificate. */
@@ -35,9 +42,19 @@ export async function listSources(tx: Tx, sourceId?: string): Promise<SourceWith
     .limit(1)
     .as("newest");
   const rows = await tx
-    .select({ source: sources, builtIntoName: instruments.name, usedInChecks: used, certificate: {
-      fileName: newest.fileName, sizeBytes: newest.sizeBytes, sha256: newest.sha256, storedAt: newest.storedAt, storedById: newest.storedById, storedByName: newest.storedByName,
-    } })
+    .select({
+      source: sources,
+      builtIntoName: instruments.name,
+      usedInChecks: used,
+      certificate: {
+        fileName: newest.fileName,
+        sizeBytes: newest.sizeBytes,
+        sha256: newest.sha256,
+        storedAt: newest.storedAt,
+        storedById: newest.storedById,
+        storedByName: newest.storedByName,
+      },
+    })
     .from(sources)
     .leftJoin(instruments, and(eq(instruments.labId, sources.labId), eq(instruments.id, sources.builtIntoInstrumentId)))
     .leftJoinLateral(newest, sql`true`)
