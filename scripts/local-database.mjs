@@ -84,6 +84,7 @@ export function appUrl(cluster, dataDir, name = database) {
  */
 export async function migrateDatabase(addresses, say) {
   await runProgram(process.execPath, ["--enable-source-maps", path.join(projectDir, "scripts/migrate.mjs")], {
+    title: "Bringing the schema up to date",
     env: cleanEnvironment({ DATABASE_OWNER_URL: addresses.ownerUrl, DATABASE_URL: addresses.appUrl }),
     onLine: say,
   });
@@ -104,6 +105,7 @@ export async function seedDemoLab({ ownerUrl, program, say }) {
   try {
     let last = "";
     await runProgram(process.execPath, ["--enable-source-maps", program], {
+      title: "Filling the demo lab",
       env: cleanEnvironment({ NODE_ENV: "production", DATABASE_URL: url.href, DATABASE_OWNER_URL: undefined }),
       onLine: (line) => {
         if (line.startsWith("[") || line.startsWith("{")) last = line;

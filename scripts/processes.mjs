@@ -32,9 +32,10 @@ export class ProgramFailed extends Error {
    * @param {string} program
    * @param {number | NodeJS.Signals | null} exit
    * @param {string} output
+   * @param {boolean} [shown] whether its output was shown as it came
    */
-  constructor(program, exit, output) {
-    super(`${program} failed (exit ${exit}).${output.trim() === "" ? "" : `\n${output.trim()}`}`);
+  constructor(program, exit, output, shown = false) {
+    super(`${program} failed (exit ${exit}).${shown || output.trim() === "" ? "" : `\n${output.trim()}`}`);
     this.name = "ProgramFailed";
     this.program = program;
     this.exit = exit;
@@ -55,14 +56,15 @@ export function stopChildren() {
  *
  * @param {string} program
  * @param {string[]} args
- * @param {import("node:child_process").SpawnOptions & { onLine?: (line: string) => void, allowFailure?: boolean, sheltered?: boolean }} [options]
+ * @param {import("node:child_process").SpawnOptions & { onLine?: (line: string) => void, allowFailure?: boolean, sheltered?: boolean, title?: string }} [options]
  *   `onLine` receives each line of output as it comes; `allowFailure` returns the exit instead of throwing;
+ *   `title` names it in the sentence when it fails;
  *   `sheltered` keeps it out of the reach of Ctrl-C, for what must not be cut off half-way and is soon over
  * @returns {Promise<{ exit: number | NodeJS.Signals | null, output: string }>}
  * @throws {ProgramFailed} on an exit code other than 0
  */
 export function runProgram(program, args, options = {}) {
-  const { onLine, allowFailure = false, sheltered = false, ...spawnOptions } = options;
+  const { onLine, allowFailure = false, sheltered = false, title = path.basename(program), ...spawnOptions } = options;
   return new Promise((resolve, reject) => {
     const child = spawn(program, args, { stdio: ["ignore", "pipe", "pipe"], detached: sheltered, ...spawnOptions });
     if (!sheltered) running.add(child);
@@ -81,14 +83,14 @@ export function runProgram(program, args, options = {}) {
     child.stderr?.on("data", take);
     child.once("error", (error) => {
       running.delete(child);
-      reject(new ProgramFailed(program, null, error.message));
+      reject(new ProgramFailed(title, null, error.message));
     });
     child.once("close", (code, signal) => {
       running.delete(child);
       if (onLine !== undefined && partial !== "") onLine(partial);
       const exit = code ?? signal;
       if (exit === 0 || allowFailure) resolve({ exit, output });
-      else reject(new ProgramFailed(path.basename(program), exit, output));
+      else reject(new ProgramFailed(title, exit, output, onLine !== undefined));
     });
   });
 }

@@ -3,7 +3,7 @@ import { createHash } from "node:crypto";
 import fs from "node:fs";
 import path from "node:path";
 import { pnpm } from "./pnpm.mjs";
-import { projectDir, withLock } from "./processes.mjs";
+import { ProgramFailed, projectDir, withLock } from "./processes.mjs";
 
 /** A sentence for the person at the terminal; printed without a stack. */
 export class PlainError extends Error {}
@@ -79,7 +79,7 @@ export async function ensureInstall(onLine = () => {}) {
         });
       } catch (error) {
         throw new PlainError(
-          `The packages could not be installed. Nothing else was changed. Check that npm can reach its registry and run the command again.\n${/** @type {Error} */ (error).message}`,
+          `The packages could not be installed. Nothing else was changed. Check that npm can reach its registry and run the command again.\n${error instanceof ProgramFailed ? error.output.trim() : error}`,
         );
       }
       fs.writeFileSync(stamp, installFingerprint());
@@ -90,7 +90,7 @@ export async function ensureInstall(onLine = () => {}) {
 }
 
 /**
- * Run a command's main function; plain errors end it with their sentence, others with their stack.
+ * Run a command's main function; plain errors and failed programs end it with their sentence, others with their stack.
  *
  * @param {() => Promise<number | void>} main returns the exit code (none: 0)
  */
@@ -99,7 +99,8 @@ export async function runCommand(main) {
     checkNode();
     process.exitCode = (await main()) ?? 0;
   } catch (error) {
-    process.stderr.write(`\n${error instanceof PlainError ? error.message : /** @type {Error} */ (error).stack}\n`);
+    const isPlain = error instanceof PlainError || error instanceof ProgramFailed;
+    process.stderr.write(`\n${isPlain ? error.message : /** @type {Error} */ (error).stack}\n`);
     process.exitCode = 1;
   }
 }
