@@ -9,6 +9,7 @@ import { newId } from "../db/columns.ts";
 import { openDatabase, type Database } from "../db/connection.ts";
 import { asWavekeep, inLab, recordNow } from "../db/tenancy.ts";
 import { saveInvitation } from "../people/queries.ts";
+import { addDefaultProcedures } from "../procedures/service.ts";
 import { writeTrail } from "../records/trail.ts";
 import { createLab } from "./queries.ts";
 import { isZone } from "./service.ts";
@@ -44,9 +45,11 @@ export async function openLab(
       invitedAt: now,
       expiresAt: new Date(now.getTime() + INVITATION_DAYS * 86_400_000),
     });
+    const procedures = await addDefaultProcedures(tx, inTime);
     await writeTrail(tx, inTime, [
       { action: "lab.created", about: { kind: "lab", id: labId, label: lab.name }, after: { zone: lab.zone, demo: ctx.isDemo } },
       { action: "person.invited", about: { kind: "invitation", id, label: lab.email }, after: { roles: ["manager"] } },
+      ...procedures,
     ]);
   });
   return { labId, token };
