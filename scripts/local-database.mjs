@@ -93,10 +93,10 @@ export async function migrateDatabase(addresses, say) {
 /**
  * Fill the demo lab. The seeding role may sign in only while this runs.
  *
- * @param {{ ownerUrl: string, program: string, say: (line: string) => void }} options
+ * @param {{ ownerUrl: string, program: string, dataDir: string, say: (line: string) => void }} options
  * @returns {Promise<unknown>} the demo sign-ins, as the seeding program printed them in its last line
  */
-export async function seedDemoLab({ ownerUrl, program, say }) {
+export async function seedDemoLab({ ownerUrl, program, dataDir, say }) {
   const password = newPassword();
   const url = new URL(ownerUrl);
   url.username = seedingRole;
@@ -106,7 +106,13 @@ export async function seedDemoLab({ ownerUrl, program, say }) {
     let last = "";
     await runProgram(process.execPath, ["--enable-source-maps", program], {
       title: "Filling the demo lab",
-      env: cleanEnvironment({ NODE_ENV: "production", DATABASE_URL: url.href, DATABASE_OWNER_URL: undefined }),
+      env: cleanEnvironment({
+        NODE_ENV: "production",
+        DATABASE_URL: url.href,
+        DATABASE_OWNER_URL: undefined,
+        // The same key signs the heads of the trail before and after the first start.
+        WAVEKEEP_DATA_DIR: dataDir,
+      }),
       onLine: (line) => {
         if (line.startsWith("[") || line.startsWith("{")) last = line;
         else say(line);

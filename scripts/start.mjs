@@ -204,7 +204,8 @@ async function prepareData(settings, cluster, apiBuild) {
       else await migrateDatabase({ appUrl: url, ownerUrl }, say);
     });
     goOn();
-    if (settings.demo && ownerUrl !== null && !fs.existsSync(signInsFile)) await seed(ownerUrl, apiBuild, signInsFile);
+    if (settings.demo && ownerUrl !== null && !fs.existsSync(signInsFile))
+      await seed(ownerUrl, apiBuild, settings.dataDir);
     return url;
   }
   const { name, isNew } = await prepareDatabase(cluster);
@@ -218,7 +219,7 @@ async function prepareData(settings, cluster, apiBuild) {
   goOn();
   if (isNew) {
     fs.rmSync(signInsFile, { force: true });
-    if (settings.demo) await seed(addresses.ownerUrl, apiBuild, signInsFile);
+    if (settings.demo) await seed(addresses.ownerUrl, apiBuild, settings.dataDir);
     await finishDatabase(cluster);
   }
   return appUrl(cluster, settings.dataDir);
@@ -227,12 +228,12 @@ async function prepareData(settings, cluster, apiBuild) {
 /**
  * @param {string} ownerUrl
  * @param {string} apiBuild
- * @param {string} signInsFile
+ * @param {string} dataDir
  */
-async function seed(ownerUrl, apiBuild, signInsFile) {
+async function seed(ownerUrl, apiBuild, dataDir) {
   const program = path.join(apiBuild, "seed-demo.js");
-  const signIns = await step("demo lab", (say) => seedDemoLab({ ownerUrl, program, say }));
-  fs.writeFileSync(signInsFile, `${JSON.stringify(signIns, null, 2)}\n`, { mode: 0o600 });
+  const signIns = await step("demo lab", (say) => seedDemoLab({ ownerUrl, program, dataDir, say }));
+  fs.writeFileSync(signInsFileOf(dataDir), `${JSON.stringify(signIns, null, 2)}\n`, { mode: 0o600 });
 }
 
 /** @param {string} dataDir */
