@@ -5,8 +5,9 @@
  *             one value for all lines, chosen so that the reduced chi-squared is 1 where it would be above (R. C. Paule,
  *             J. Mandel, J. Res. NBS 87 (1982) 377; from memory). tau² is added, not multiplied: what is left over on real
  *             instruments (pixel response, line shape) does not shrink with the brightness of a line
- * Degree      given, or the lowest whose leave-one-out RMS is within 5 % of the best; at most 5, and always two lines more
+ * Degree      given, or the lowest whose leave-one-out RMS (a rejected line counted threefold) is within 5 % of the best; at most 5, and always two lines more
  *             than coefficients. When it was chosen so, the difference to the next higher degree enters the covariance
+ * Left out    a line three times less sure than the median one
  * Rejection   a line whose studentised deleted residual is larger than chance allows (1 % over all lines), and than FWHM/50, is left out, one
  *             at a time, at most a fifth of the lines, each reported; never where fewer than three degrees of freedom remain
  * Refuses     too few lines, an axis that turns within the capture, values that are not finite
@@ -31,6 +32,11 @@ const rejectionLevel = 0.01;
 const rejectableShare = 0.2;
 /** Share of the FWHM within which no line is called an outlier, however well the others agree. */
 const unremarkableShare = 0.02;
+/** A line this many times less sure than the median one (a ninth of its weight) is left out from the start. */
+const vagueFactor = 3;
+const freedomForAgreement = 6;
+/** Size at which a rejected line counts when degrees are compared, in leave-one-out RMS. */
+const outlierSize = 3;
 const sampleCount = 11;
 /** How closely the reduced chi-squared is brought to 1. */
 const scatterTolerance = 1e-4;
@@ -112,17 +118,19 @@ export function fitDispersion(
 
   const ownUncNm = statedUncNm(points, Math.min(highest, 3));
   const used = points.map(() => true);
-  let degree = options.degree ?? bestDegree(points, ownUncNm, used, highest);
-  rejectOutliers(points, ownUncNm, used, degree, options.fwhm);
-  if (options.degree === null) {
-    const again = bestDegree(points, ownUncNm, used, Math.min(highest, countUsed(used) - 1 - sparePoints));
-    if (again !== degree) {
-      degree = again;
-      used.fill(true);
-      rejectOutliers(points, ownUncNm, used, degree, options.fwhm);
-    }
+  const vague = setVagueAside(points, ownUncNm, used, Math.min(highest, 3), needed + 1);
+  const lowest = options.degree ?? 1;
+  const choices: { degree: number; used: boolean[]; cost: number }[] = [];
+  for (let degree = lowest; degree <= highest; degree++) {
+    const kept = used.slice();
+    const fit = rejectOutliers(points, ownUncNm, kept, degree, options.fwhm);
+    const spare = fit.rows.length - degree - 1;
+    if (options.degree === null && degree > 1 && spare < sparePoints) break;
+    choices.push({ degree, used: kept, cost: costOf(fit, countUsed(used) - fit.rows.length) });
   }
-  return finish(points, ownUncNm, used, degree, options);
+  const best = Math.min(...choices.map((choice) => choice.cost));
+  const chosen = choices.find((choice) => choice.cost <= degreeTolerance * best) as (typeof choices)[number];
+  return finish(points, ownUncNm, chosen.used, vague, chosen.degree, options);
 }
 
 const refuse = (reason: string): DispersionRefusal => ({ outcome: "refused", reason });
@@ -227,31 +235,51 @@ function leaveOneOutRms(fit: Fit): number {
   return Math.sqrt(sum / fit.rows.length);
 }
 
-function bestDegree(
-  points: readonly DispersionPoint[],
-  ownUncNm: Float64Array,
-  used: readonly boolean[],
-  highest: number,
-): number {
-  const rms: number[] = [];
-  for (let degree = 1; degree <= highest; degree++) rms.push(leaveOneOutRms(fitOnce(points, ownUncNm, used, degree)));
-  const best = Math.min(...rms);
-  return rms.findIndex((value) => value <= degreeTolerance * best) + 1;
+/** Leave-one-out RMS with every rejected line counted at the size of an outlier: a degree may not buy a good fit with them. */
+function costOf(fit: Fit, rejected: number): number {
+  const rms = leaveOneOutRms(fit);
+  const { length } = fit.rows;
+  return rms * Math.sqrt((length + rejected * outlierSize * outlierSize) / (length + rejected));
 }
 
-/** Takes out, one at a time, lines that the others contradict. */
+/**
+ * Lines so much less sure than the others that they would only blur the picture: left out before anything is chosen.
+ * Their uncertainty counts together with the scatter all lines share, so that bright lines do not crowd out sound ones.
+ */
+function setVagueAside(
+  points: readonly DispersionPoint[],
+  ownUncNm: Float64Array,
+  used: boolean[],
+  degree: number,
+  fewest: number,
+): Set<number> {
+  const vague = new Set<number>();
+  if (points.length <= fewest) return vague;
+  const { unc } = fitOnce(points, ownUncNm, used, degree);
+  const order = points.map((_, i) => i).sort((a, b) => (unc[a] as number) - (unc[b] as number) || a - b);
+  const usual = unc[order[(order.length - 1) >> 1] as number] as number;
+  for (const i of order.slice(fewest)) {
+    if ((unc[i] as number) <= vagueFactor * usual) continue;
+    vague.add(i);
+    used[i] = false;
+  }
+  return vague;
+}
+
+/** Takes out, one at a time, lines that the others contradict; returns the fit without them. */
 function rejectOutliers(
   points: readonly DispersionPoint[],
   ownUncNm: Float64Array,
   used: boolean[],
   degree: number,
   fwhm: number,
-): void {
+): Fit {
   const most = Math.floor(rejectableShare * points.length);
-  for (let n = 0; n < most; n++) {
+  for (let n = 0; ; n++) {
     const fit = fitOnce(points, ownUncNm, used, degree);
+    if (n === most) return fit;
     const freedom = fit.linear.degreesOfFreedom;
-    if (freedom < 3) return;
+    if (freedom < 3) return fit;
     let worst = -1;
     let largest = 0;
     let sum = 0;
@@ -262,19 +290,21 @@ function rejectOutliers(
     for (let k = 0; k < fit.rows.length; k++) {
       const room = Math.max(1 - (fit.linear.leverages[k] as number), 1e-6);
       const ratio = (fit.linear.residuals[k] as number) / (fit.unc[k] as number);
-      // Scatter of the others alone (S. Weisberg, Applied Linear Regression: deleted residual); never below what is stated.
-      const others = Math.max((sum - (ratio * ratio) / room) / (freedom - 1), fit.excessNm > 0 ? 0 : 1);
-      const studentised = Math.abs(ratio) / Math.sqrt(room * Math.max(others, 1e-12));
+      // Scatter of the others alone (S. Weisberg, Applied Linear Regression: deleted residual). With few lines never below
+      // what is stated; with more their own agreement tells, since fits on skewed or boxy lines state too much.
+      const least = fit.excessNm > 0 || freedom >= freedomForAgreement ? 1e-12 : 1;
+      const others = Math.max((sum - (ratio * ratio) / room) / (freedom - 1), least);
+      const studentised = Math.abs(ratio) / Math.sqrt(room * others);
       if (studentised > largest) {
         largest = studentised;
         worst = k;
       }
     }
-    if (worst < 0 || largest <= studentQuantile(1 - rejectionLevel / (2 * fit.rows.length), freedom - 1)) return;
+    if (worst < 0 || largest <= studentQuantile(1 - rejectionLevel / (2 * fit.rows.length), freedom - 1)) return fit;
     const nmPerPx =
       Math.abs(evaluateChebyshev(fit.linear.coefficients, 1) - evaluateChebyshev(fit.linear.coefficients, -1)) /
       (fit.last - fit.first);
-    if (Math.abs(leaveOneOut(fit, worst)) < unremarkableShare * fwhm * nmPerPx) return;
+    if (Math.abs(leaveOneOut(fit, worst)) < unremarkableShare * fwhm * nmPerPx) return fit;
     used[fit.rows[worst] as number] = false;
   }
 }
@@ -283,6 +313,7 @@ function finish(
   points: readonly DispersionPoint[],
   ownUncNm: Float64Array,
   used: readonly boolean[],
+  vague: ReadonlySet<number>,
   degree: number,
   options: DispersionOptions,
 ): FittedDispersion | DispersionRefusal {
@@ -341,9 +372,11 @@ function finish(
           : [
               {
                 line,
-                reason:
-                  `${Math.abs(residualsNm[line] as number).toFixed(4)} nm from the axis through the other lines, whose ` +
-                  `scatter is ${scatter.toFixed(4)} nm: more than chance allows, so it was left out of the axis.`,
+                reason: vague.has(line)
+                  ? `Its uncertainty, ${(ownUncNm[line] as number).toFixed(4)} nm, is more than ${vagueFactor} times that of the usual line here: ` +
+                    "it could add nothing to the axis and was left out of it."
+                  : `${Math.abs(residualsNm[line] as number).toFixed(4)} nm from the axis through the other lines, whose ` +
+                    `scatter is ${scatter.toFixed(4)} nm: more than chance allows, so it was left out of the axis.`,
               },
             ],
       ),

@@ -4,14 +4,13 @@
  * A name needs a place and odds.
  * Place   within 3.5 standard uncertainties (line, axis without that line, scatter) and 0.22 FWHM of a published line, with
  *         no other published line that the axis could not tell from it
- * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 100: density of the place times s/(1 - s), s the share of its class (published lines of about its
+ * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 80: density of the place times s/(1 - s), s the share of its class (published lines of about its
  *         strength) that was found, against strays of its brightness spread evenly over the capture;
  *         a height far from what its published intensity leads to expect counts against it, by no more than a factor of 90
  * Blends  published lines that no other found line claims and that lie within three quarters of a FWHM belong to one found
  *         line. Companions below 5 % of the strongest of the group give no name; what they may pull stays as uncertainty. If
- *         the place, judged by the other lines' axis, makes one component alone likelier than a mixture,
- *         the capture itself shows the lamp's ratio and that component gives the name, with what is left open as its
- *         uncertainty; else the centroid, whatever the published intensities, with half the spread / sqrt 3
+ *         the place, judged by the other lines' axis, is nearer to one component than to the common centroid, the capture
+ *         itself shows that this one carries most of the light: it gives the name, with its distance as uncertainty; else the centroid, whatever the published intensities, with half the spread / sqrt 3
  */
 import { exp, log } from "../numeric/elementary.ts";
 import { fitCorrection, type CorrectionFit } from "./correction.ts";
@@ -34,13 +33,12 @@ const negligiblePullNm = 0.0003;
 /** From this many lines on their common agreement tells more than stated uncertainties, which may be generous. */
 const fewestForAgreement = 7;
 const leastShrink = 0.3;
-/** How much likelier one component alone must be than a mixture, published brightness included. */
-const carrierOdds = 1;
-const carrierSds = 2.5;
-const leastOdds = 100;
+/** A component that may carry a blend: at least this share of the group's strongest. */
+const carrierShare = 0.2;
+const leastOdds = 80;
 const largestHeightPenalty = 4.5;
 /** Smallest scatter of ln(height/strength) believed: lamps differ from the tables by a factor of three (1 sd) and more. */
-const leastHeightScatter = 1.2;
+const leastHeightScatter = 1.5;
 /** Unexplained lines at least this bright beside a line count as strays that it might be one of. */
 const strayHeightShare = 0.3;
 const leastScatterShare = 0.008;
@@ -245,7 +243,7 @@ function decide(
     const off = (place - name.nm) / spread;
     naming.logOdds[i] = name.isCentroid ? -log(2 * reach) : log(0.4 / spread) - 0.5 * off * off;
   }
-  keepLikely(problem, table, places, naming);
+  keepLikely(problem, table, places, shares, naming);
   return naming;
 }
 
@@ -292,19 +290,16 @@ function blendName(table: ReferenceTable, share: readonly number[], place: numbe
   const first = table.nm[share[0] as number] as number;
   const last = table.nm[share[share.length - 1] as number] as number;
   const open = (last - first) / 2 / Math.sqrt(3);
-  const carrier = onlyNear(table, share, place, carrierSds * sd);
-  if (carrier >= 0) {
-    const nm = table.nm[carrier] as number;
+  const middle = centroid(table, share);
+  for (const j of share) {
+    const nm = table.nm[j] as number;
     const off = Math.abs(nm - place);
-    // Alone: its place is the line's, to sd. Mixed: anywhere between the outermost components.
-    const alone = ((0.4 * (last - first)) / sd) * exp(-0.5 * (off / sd) * (off / sd));
-    let others = 0;
-    for (const j of share) if (j !== carrier) others = Math.max(others, table.brightness[j] as number);
-    if ((alone * (table.brightness[carrier] as number)) / others >= carrierOdds) {
-      return { reference: carrier, nm, blendUncNm: Math.min(open, Math.sqrt(off * off + sd * sd)), isCentroid: false };
-    }
+    // Nearer to this component than to any other and than to the middle: this one carries the light, or most of it.
+    if (off >= Math.abs(middle - place) || share.some((k) => Math.abs((table.nm[k] as number) - place) < off)) continue;
+    if ((table.brightness[j] as number) < carrierShare * (table.brightness[strongest] as number)) continue;
+    return { reference: j, nm, blendUncNm: Math.min(open, Math.sqrt(off * off + sd * sd)), isCentroid: false };
   }
-  return { reference: strongest, nm: centroid(table, share), blendUncNm: open, isCentroid: true };
+  return { reference: strongest, nm: middle, blendUncNm: open, isCentroid: true };
 }
 
 /** Whether the axis leaves open which of two published lines it is: another one, not of this group, within reach. */
@@ -321,7 +316,13 @@ function hasRival(table: ReferenceTable, share: readonly number[], nm: number, r
 }
 
 /** Takes back names whose odds against a stray are too small; see the module's header. */
-function keepLikely(problem: Problem, table: ReferenceTable, places: Float64Array, naming: Naming): void {
+function keepLikely(
+  problem: Problem,
+  table: ReferenceTable,
+  places: Float64Array,
+  shares: number[][],
+  naming: Naming,
+): void {
   const { count } = problem;
   let low = Number.POSITIVE_INFINITY;
   let high = Number.NEGATIVE_INFINITY;
@@ -331,7 +332,8 @@ function keepLikely(problem: Problem, table: ReferenceTable, places: Float64Arra
     low = Math.min(low, places[i] as number);
     high = Math.max(high, places[i] as number);
     const reference = naming.reference[i] as number;
-    if (naming.explained[i] === 0 && problem.usable[i] === 1) strayHeights.push(problem.heightCounts[i] as number);
+    if (naming.explained[i] === 0 && problem.usable[i] === 1 && (shares[i] as number[]).length === 0)
+      strayHeights.push(problem.heightCounts[i] as number);
     if (reference >= 0) heights.push(brightness(problem, table, i, reference));
   }
   const range = Math.max(problem.spanNm, high - low);
@@ -389,5 +391,5 @@ function shareFound(table: ReferenceTable, found: Uint8Array, reference: number,
     }
     if (all >= 4) break;
   }
-  return (seen + 0.5) / (all + 1);
+  return (seen + 1) / (all + 2);
 }
