@@ -19,6 +19,9 @@ export interface DemoSignIn {
 }
 export interface RunningWavekeep {
   address: string;
+  dataDir: string;
+  /** Process of scripts/start.mjs. */
+  startPid: number;
   signIns: DemoSignIn[];
   chromium: string;
 }
@@ -59,7 +62,7 @@ export default async function setUpBrowser(project: TestProject): Promise<() => 
     child.once("exit", () => reject(new Error(`Wavekeep did not start for the browser tests:\n${output}`)));
   });
   const signIns = JSON.parse(fs.readFileSync(path.join(dataDir, "demo-sign-ins.json"), "utf8")) as DemoSignIn[];
-  project.provide("wavekeep", { address, signIns, chromium });
+  project.provide("wavekeep", { address, dataDir, startPid: child.pid!, signIns, chromium });
   return async () => {
     child.kill("SIGTERM");
     await ended;
