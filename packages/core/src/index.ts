@@ -1,3 +1,13 @@
-/** The measuring core's front door. */
+/**
+ * The measuring core's front door: a capture and a setup in, one plain analysis out. Everything else here is what callers need to
+ * prepare a setup and to show a result.
+ */
 export * from "./analysis/types.ts";
+export { analyseCapture, analyseCaptures, type AnalysisResources } from "./analysis/analyse-captures.ts";
+export { defaultSetup } from "./analysis/defaults.ts";
+export { readCapture } from "./capture/read-capture.ts";
+export { axisNm, axisPx, axisSlope, axisUncNm, isMonotonic } from "./dispersion/axis.ts";
+export { builtInLineList, elementsOf, isFromMemory, lineWavelengthNm, linesOf } from "./linelist/built-in.ts";
+export { judgeError, toleranceAt } from "./uncertainty/conformity.ts";
+export { roundResult, type RoundedResult } from "./uncertainty/rounding.ts";
 export { coreVersion } from "./version.ts";

@@ -79,8 +79,18 @@ export interface ReadOptions {
 export interface Refusal {
   outcome: "refused";
   code:
-    | "empty-file" | "binary-file" | "no-numbers" | "one-column-text" | "too-few-rows" | "non-monotonic-axis"
-    | "duplicate-positions" | "ambiguous-number-format" | "no-such-column" | "different-axes" | "no-lines" | "bad-settings";
+    | "empty-file"
+    | "binary-file"
+    | "no-numbers"
+    | "one-column-text"
+    | "too-few-rows"
+    | "non-monotonic-axis"
+    | "duplicate-positions"
+    | "ambiguous-number-format"
+    | "no-such-column"
+    | "different-axes"
+    | "no-lines"
+    | "bad-settings";
   /** What happened and what to do, one or two sentences. */
   reason: string;
   /** 1-based line of the file where it was seen, when there is one. */
@@ -90,7 +100,16 @@ export interface Refusal {
 export type ReadCapture = { outcome: "read"; spectrum: Spectrum; facts: FileFacts } | Refusal;
 
 export type LineFlag =
-  | "saturated" | "blend" | "spike" | "edge" | "poor-fit" | "weak" | "outlier" | "second-order" | "smoothed" | "room-light";
+  | "saturated"
+  | "blend"
+  | "spike"
+  | "edge"
+  | "poor-fit"
+  | "weak"
+  | "outlier"
+  | "second-order"
+  | "smoothed"
+  | "room-light";
 
 /** A line found and fitted, before it has a name. Positions in the axis unit of the spectrum. */
 export interface FittedLine {
@@ -127,7 +146,11 @@ export interface ReferenceLine {
   source: string;
   note: string;
 }
-export interface LineList { version: string; title: string; lines: readonly ReferenceLine[] }
+export interface LineList {
+  version: string;
+  title: string;
+  lines: readonly ReferenceLine[];
+}
 
 /** A polynomial axis: nm in ascending powers of the pixel, with covariance for honest uncertainties. */
 export interface PixelAxis {
@@ -149,11 +172,19 @@ export type IdentificationMode =
   /** First and last wavelength of the capture, each good to 5 % of the span. */
   | { kind: "range"; firstNm: number; lastNm: number };
 
-export interface ToleranceSegment { fromNm: number; toNm: number; toleranceNm: number }
+export interface ToleranceSegment {
+  fromNm: number;
+  toNm: number;
+  toleranceNm: number;
+}
 export type DecisionRule = { kind: "simple" } | { kind: "guarded"; r: number };
 
 export type LeaveOutReason = "saturated" | "blended" | "spike" | "too-weak" | "disturbed";
-export interface LeftOutLine { wavelengthNm: number; reason: LeaveOutReason; note: string }
+export interface LeftOutLine {
+  wavelengthNm: number;
+  reason: LeaveOutReason;
+  note: string;
+}
 
 /** Conditions of the room; each null when it was not recorded. */
 export interface RoomConditions {
@@ -178,7 +209,12 @@ export interface AnalysisSetup {
   axisMeaning: AxisMeaning;
   room: RoomConditions | null;
   /** px for pixel axes, else nm; null = leave it out and say so (`practice`, the command line). */
-  setupReproducibility: { value: number; unit: "px" | "nm"; basis: "history" | "stated" | "assumed"; degreesOfFreedom: number | null } | null;
+  setupReproducibility: {
+    value: number;
+    unit: "px" | "nm";
+    basis: "history" | "stated" | "assumed";
+    degreesOfFreedom: number | null;
+  } | null;
   /** Shift of the axis per kelvin and the spread of the room's temperature that it is multiplied with; null = none. */
   temperatureEffect: { coefficientNmPerK: number; spreadK: number } | null;
   tolerance: ToleranceSegment[];
@@ -195,7 +231,8 @@ export interface AnalysisSetup {
 }
 
 export interface BudgetEntry {
-  contribution: "reference" | "fit" | "repeatability" | "set-up" | "resolution" | "dispersion" | "air" | "temperature" | "blend";
+  contribution:
+    "reference" | "fit" | "repeatability" | "set-up" | "resolution" | "dispersion" | "air" | "temperature" | "blend";
   uncNm: number;
   /** null = infinite. */
   degreesOfFreedom: number | null;
@@ -268,7 +305,7 @@ export interface Dispersion {
   family: "polynomial";
   degree: number;
   degreeChosenBy: "given" | "leave-one-out" | "earlier-axis";
-  /** nm, ascending powers of the pixel (or of the axis unit on a step axis). */
+  /** nm, ascending powers of the pixel; of the axis' own unit on a step axis, and of nm on a wavelength axis (a correction). */
   coefficients: number[];
   axis: PixelAxis;
   rmsPx: number;
@@ -340,7 +377,15 @@ export interface SpectrumDrawing {
   residuals: { x: number; ratio: number; line: number }[];
 }
 
-export interface AnalysedCheck { analysis: Analysis; drawing: SpectrumDrawing | null }
+export interface AnalysedCheck {
+  analysis: Analysis;
+  drawing: SpectrumDrawing | null;
+}
 
 /** One file as the caller has it. */
-export interface CaptureInput { name: string; bytes: Uint8Array; sha256: string | null; part: "lamp" | "dark" }
+export interface CaptureInput {
+  name: string;
+  bytes: Uint8Array;
+  sha256: string | null;
+  part: "lamp" | "dark";
+}

@@ -4,8 +4,8 @@
  * Model   variance of a sample about a first, evenly weighted fit = read noise² + gain x signal + (misfit x signal)²; photon noise grows
  *         with the signal, a wrong shape with its square, so that lines of different height part the two
  * Solved  iterated weighted least squares over lines, neither term below zero; the weight of a line takes in the scatter of its own
- *         variance estimate (2 / degrees of freedom) and that misfit differs from line to line; a term that can't be told from none is
- *         left out, because it could only take from the other or widen every interval
+ *         variance estimate (2 / degrees of freedom) and that misfit differs from line to line; misfit is looked for only where photon
+ *         noise alone does not explain the lines, because from a few lines the two are hard to part
  */
 
 export interface LineScatter {
@@ -21,28 +21,37 @@ export interface LineScatter {
 }
 
 const rounds = 8;
-const misfitSigmas = 1;
+/** Mean squared deviation of the lines, in their own standard deviations, up to which photon noise alone explains them. */
+const explainedUpTo = 2.5;
 
 interface Terms {
   gain: number;
   gainUnc: number;
-  misfit: number;
-  misfitUnc: number;
 }
 
 /** Counts per electron; 0 where the lines show no photon noise (or there is none to judge by). */
 export function estimatePhotonGain(lines: readonly LineScatter[]): number {
   if (lines.length === 0) return 0;
-  let terms = solve(lines, true);
-  if (terms.misfit < misfitSigmas * terms.misfitUnc) terms = solve(lines, false);
-  return terms.gain > terms.gainUnc ? terms.gain : 0;
+  const alone = solve(lines, false);
+  const { gain, gainUnc } = deviation(lines, alone.gain) <= explainedUpTo ? alone : solve(lines, true);
+  return gain > gainUnc ? gain : 0;
+}
+
+/** Mean squared deviation of the lines from photon noise alone, each in its own standard deviations. */
+function deviation(lines: readonly LineScatter[], gain: number): number {
+  let sum = 0;
+  for (const line of lines) {
+    const variance = line.readVariance + gain * line.meanSignal;
+    const off = (line.excess + line.readVariance - variance) / variance;
+    sum += (off * off * line.degreesOfFreedom) / 2;
+  }
+  return sum / lines.length;
 }
 
 function solve(lines: readonly LineScatter[], withMisfit: boolean): Terms {
   let gain = 0;
   let misfit = 0;
   let gainUnc = 0;
-  let misfitUnc = 0;
   for (let round = 0; round < rounds; round += 1) {
     let a11 = 0;
     let a12 = 0;
@@ -62,12 +71,11 @@ function solve(lines: readonly LineScatter[], withMisfit: boolean): Terms {
       b2 += weight * q * line.excess;
     }
     const determinant = a11 * a22 - a12 * a12;
-    if (!(a11 > 0) || !(a22 > 0)) return { gain: 0, gainUnc: 0, misfit: 0, misfitUnc: 0 };
+    if (!(a11 > 0) || !(a22 > 0)) return { gain: 0, gainUnc: 0 };
     const both = withMisfit && determinant > 1e-9 * a11 * a22;
     gain = both ? (a22 * b1 - a12 * b2) / determinant : b1 / a11;
     misfit = both ? (a11 * b2 - a12 * b1) / determinant : 0;
     gainUnc = both ? Math.sqrt(a22 / determinant) : 1 / Math.sqrt(a11);
-    misfitUnc = both ? Math.sqrt(a11 / determinant) : 0;
     if (gain < 0) {
       gain = 0;
       misfit = both ? Math.max(0, b2 / a22) : 0;
@@ -76,5 +84,5 @@ function solve(lines: readonly LineScatter[], withMisfit: boolean): Terms {
       gain = Math.max(0, b1 / a11);
     }
   }
-  return { gain, gainUnc, misfit, misfitUnc };
+  return { gain, gainUnc };
 }

@@ -1,0 +1,353 @@
+/**
+ * The front door: the captures of one check to lines, names, errors with uncertainties, an axis and a verdict.
+ *
+ * Data flows one way: text -> spectrum -> lines -> names -> axis -> verdict. Everything that was decided stands in the result with
+ * its reason; what can't be decided is refused in a sentence, never guessed.
+ */
+import { textToBytes } from "../capture/decode.ts";
+import { axisSlope } from "../dispersion/axis.ts";
+import { fitDispersion } from "../dispersion/fit-dispersion.ts";
+import { driftPointOf } from "../drift/drift-point.ts";
+import { identifyLines, type IdentifiedLines } from "../identify/identify-lines.ts";
+import { builtInLineList } from "../linelist/built-in.ts";
+import { findLines, smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
+import { median } from "../spectrum/median.ts";
+import { summarise, type JudgedLine } from "../uncertainty/conformity.ts";
+import { coreVersion } from "../version.ts";
+import { combineCaptures, type CombinedCaptures } from "./combine-captures.ts";
+import { drawSpectrum } from "./draw-spectrum.ts";
+import { indicatingAxisOf, type IndicatingAxis } from "./indicating-axis.ts";
+import { isLine, judgeLine, type JudgedLineResult } from "./judge-lines.ts";
+import { referenceMedium } from "./reference-medium.ts";
+import { repeatabilityOf } from "./repeatability.ts";
+import { judgeSegments } from "./segments.ts";
+import type {
+  AnalysedCheck,
+  Analysis,
+  AnalysisSetup,
+  CaptureInput,
+  Dispersion,
+  FileFacts,
+  LineList,
+  Refusal,
+  Spectrum,
+} from "./types.ts";
+
+/** What may be exchanged beside the setup; a lab's own line list travels here, its version in the setup. */
+export interface AnalysisResources {
+  lineList?: LineList;
+}
+
+/**
+ * Analyse one capture.
+ *
+ * @param source  the file's bytes or text, or a spectrum already in columns
+ */
+export function analyseCapture(
+  source: Uint8Array | string | Spectrum,
+  setup: AnalysisSetup,
+  resources: AnalysisResources = {},
+): AnalysedCheck {
+  if (typeof source === "string") return analyseCapture(textToBytes(source), setup, resources);
+  if (source instanceof Uint8Array) {
+    return analyseCaptures([{ name: "capture", bytes: source, sha256: null, part: "lamp" }], setup, resources);
+  }
+  const combined: CombinedCaptures = {
+    outcome: "read",
+    spectrum: source,
+    repeats: [source],
+    saturated: null,
+    ceilingCounts: null,
+    files: [],
+    darkCount: 0,
+  };
+  return analyseCombined(combined, setup, resources);
+}
+
+/**
+ * Analyse the captures of one check: repeats of one lamp, with or without darks, all on one axis.
+ *
+ * @returns always a whole analysis; a refusal is one with outcome `refused`, its sentence in `reason` and its code among the warnings
+ */
+export function analyseCaptures(
+  captures: readonly CaptureInput[],
+  setup: AnalysisSetup,
+  resources: AnalysisResources = {},
+): AnalysedCheck {
+  const combined = combineCaptures(captures, setup.reading);
+  if (combined.outcome === "refused") return refused(combined.refusal, combined.files, setup, null);
+  return analyseCombined(combined, setup, resources);
+}
+
+function analyseCombined(
+  combined: CombinedCaptures,
+  setup: AnalysisSetup,
+  resources: AnalysisResources,
+): AnalysedCheck {
+  const { spectrum, files } = combined;
+  const lineList = resources.lineList ?? builtInLineList;
+  const problem = settingsProblem(spectrum, setup, lineList);
+  if (problem !== null) {
+    return refused({ outcome: "refused", code: "bad-settings", reason: problem, line: null }, files, setup, spectrum);
+  }
+  const found = findLines(spectrum, {
+    falseLinesPerCapture: setup.falseLinesPerCapture,
+    ...(combined.saturated === null ? {} : { saturated: combined.saturated, ceilingCounts: combined.ceilingCounts }),
+  });
+  const axis = indicatingAxisOf(spectrum, setup);
+  const n = spectrum.positions.length;
+  const firstPosition = spectrum.positions[0]!;
+  const lastPosition = spectrum.positions[n - 1]!;
+  const identified: IdentifiedLines =
+    found.lines.length === 0 || found.medianFwhm === null
+      ? nothingFound()
+      : identifyLines({
+          lines: found.lines,
+          firstPosition,
+          lastPosition,
+          axisKind: spectrum.axisKind,
+          medianFwhm: found.medianFwhm,
+          elements: setup.elements,
+          expectedLinesNm: setup.expectedLinesNm,
+          lineList,
+          mode: setup.mode,
+          axisMeaning: setup.axisMeaning,
+          toleranceNm: tightestTolerance(setup),
+        });
+  const repeatability = repeatabilityOf(combined, found, setup);
+  const lines = found.lines.map((line, index) =>
+    judgeLine(
+      { line, name: identified.names[index] ?? null, repeatability: repeatability[index] ?? null },
+      axis,
+      setup,
+    ),
+  );
+  const dispersion = fitAxis(spectrum, found, lines, setup, identified);
+  const results = lines.map((one) => one.result);
+  const verdicts = verdictsOf(lines, identified, setup, axis);
+  const analysis: Analysis = {
+    format: 1,
+    coreVersion,
+    outcome: identified.outcome,
+    reason: identified.outcome === "identified" ? null : identified.reason,
+    setup,
+    files,
+    axisKind: spectrum.axisKind,
+    axisUnit: spectrum.axisUnit,
+    noiseCounts: found.noiseCounts,
+    noiseCorrelation: found.noiseCorrelation,
+    medianFwhm: found.medianFwhm,
+    lines: results,
+    missingLinesNm: identified.missingLinesNm,
+    verdict: verdicts.asAsked,
+    verdictWithEveryLine: verdicts.withEveryLine,
+    segments: judgeSegments(results, setup.tolerance),
+    dispersion,
+    driftPoint: driftOf(lines),
+    confidence: { chanceProbability: identified.chanceProbability, margin: identified.margin, note: identified.note },
+    notIncluded: setup.setupReproducibility === null && axis !== null ? ["set-up reproducibility"] : [],
+    warnings: [...warningsOf(found, combined), ...identified.warnings],
+  };
+  return { analysis, drawing: drawSpectrum(spectrum, found, axis, dispersion) };
+}
+
+function settingsProblem(spectrum: Spectrum, setup: AnalysisSetup, lineList: LineList): string | null {
+  if (setup.lineListVersion !== lineList.version) {
+    return `The analysis asks for line list ${setup.lineListVersion}; the one at hand is ${lineList.version}.`;
+  }
+  if (spectrum.axisKind === "wavenumber") {
+    return "The axis is in wavenumbers (cm-1). Emission lines are judged on a wavelength or pixel axis: export the capture with one of those.";
+  }
+  const { mode } = setup;
+  if (mode.kind === "range") {
+    if (!(mode.firstNm > 0 && mode.lastNm > 0) || mode.firstNm === mode.lastNm) {
+      return "The range needs two different wavelengths above 0 nm.";
+    }
+    return null;
+  }
+  if (mode.axis === "own") {
+    return spectrum.axisKind === "wavelength"
+      ? null
+      : "The capture counts pixels or steps and says no wavelength. Give an earlier axis, or the first and last wavelength of its range.";
+  }
+  if (spectrum.axisKind === "wavelength") {
+    return "The capture has a wavelength axis of its own, and an earlier pixel axis was given. Choose the file's own axis, or export pixels.";
+  }
+  if (mode.axis.coefficients.length < 2 || mode.axis.coefficients.some((value) => !Number.isFinite(value))) {
+    return "The earlier axis needs at least two coefficients, all of them numbers.";
+  }
+  return null;
+}
+
+function nothingFound(): IdentifiedLines {
+  return {
+    outcome: "unidentified",
+    reason: "No line stands out of the noise. Is the lamp on, and its light in the slit?",
+    names: [],
+    axis: null,
+    chanceProbability: 1,
+    margin: 0,
+    note: "no line was found",
+    warnings: [{ code: "no-lines", text: "No line stands out of the noise." }],
+    missingLinesNm: [],
+    otherGases: [],
+  };
+}
+
+function tightestTolerance(setup: AnalysisSetup): number | null {
+  let tightest: number | null = null;
+  for (const { toleranceNm } of setup.tolerance)
+    if (tightest === null || toleranceNm < tightest) tightest = toleranceNm;
+  return tightest;
+}
+
+/** Lines less sure than so many times the median line stay out of the axis. */
+const leastSureInAxis = 3;
+
+/** A new axis from the named lines of a pixel or step axis; marks what was used and what was rejected. */
+function fitAxis(
+  spectrum: Spectrum,
+  found: FoundLines,
+  lines: JudgedLineResult[],
+  setup: AnalysisSetup,
+  identified: IdentifiedLines,
+): Dispersion | null {
+  if (identified.outcome !== "identified" || spectrum.axisKind === "wavenumber") return null;
+  const eligible = lines.map((_, index) => index).filter((index) => lines[index]!.fitsAxis);
+  const { mode } = setup;
+  const meaning = mode.kind === "earlier-axis" && mode.axis !== "own" ? mode.axis.meaning : setup.axisMeaning;
+  const medium = referenceMedium(meaning, setup.room);
+  const uncNm = eligible.map((index) => {
+    const name = identified.names[index]!;
+    const line = found.lines[index]!;
+    const slope = identified.axis === null ? 1 : axisSlope(identified.axis, line.position);
+    const fit = line.positionUnc * slope;
+    return Math.sqrt(fit * fit + name.referenceUncNm * name.referenceUncNm + name.blendUncNm * name.blendUncNm);
+  });
+  // A line far less sure than the others weighs nothing in the fit and only hides what the others agree on.
+  const limit = leastSureInAxis * median(uncNm);
+  const used = eligible.filter((_, k) => !(uncNm[k]! > limit));
+  const points = used.map((index) => {
+    const name = identified.names[index]!;
+    const line = found.lines[index]!;
+    return {
+      position: line.position,
+      positionUnc: line.positionUnc,
+      signalToNoise: line.signalToNoise,
+      wavelengthNm: medium.referenceNm(name.wavelengthNm, name.medium),
+      wavelengthUncNm: Math.sqrt(name.referenceUncNm * name.referenceUncNm + name.blendUncNm * name.blendUncNm),
+    };
+  });
+  const fitted = fitDispersion(points, {
+    degree: setup.degree,
+    firstPosition: spectrum.positions[0]!,
+    lastPosition: spectrum.positions[spectrum.positions.length - 1]!,
+    meaning,
+    fwhm: found.medianFwhm ?? 1,
+  });
+  if (fitted.outcome === "refused") {
+    identified.warnings.push({ code: "no-axis", text: fitted.reason });
+    return null;
+  }
+  const rejected = fitted.dispersion.rejected.map(({ line, reason }) => ({ line: used[line]!, reason }));
+  used.forEach((index, point) => {
+    const { result } = lines[index]!;
+    const isRejected = rejected.some((one) => one.line === index);
+    result.usedInAxis = !isRejected;
+    result.residualNm = fitted.residualsNm[point]!;
+    if (isRejected) result.flags.push("outlier");
+  });
+  return { ...fitted.dispersion, rejected };
+}
+
+function verdictsOf(
+  lines: JudgedLineResult[],
+  identified: IdentifiedLines,
+  setup: AnalysisSetup,
+  axis: IndicatingAxis | null,
+): { asAsked: Analysis["verdict"]; withEveryLine: Analysis["verdict"] } {
+  if (setup.tolerance.length === 0 || axis === null) return { asAsked: null, withEveryLine: null };
+  const namedCount = lines.filter(({ result }) => result.wavelengthNm !== null).length;
+  const judged = (withLeftOut: boolean): JudgedLine[] =>
+    lines.flatMap(({ result, judgement }, line) =>
+      judgement !== null && (withLeftOut || result.leftOut === null) ? [{ line, judgement }] : [],
+    );
+  const reasons = (withLeftOut: boolean): string[] => {
+    const found: string[] = [];
+    if (identified.outcome !== "identified")
+      found.push(identified.reason ?? "The lines could not be named with certainty.");
+    for (const required of setup.requiredLinesNm) {
+      const line = lines.find(
+        ({ result }) =>
+          result.wavelengthNm !== null &&
+          (isLine([required], result.wavelengthNm) || result.blendOfNm.some((part) => isLine([required], part))),
+      );
+      const label = `The required line ${required} nm`;
+      if (line === undefined) found.push(`${label} was not found.`);
+      else if (line.judgement === null) found.push(`${label} can't be judged. ${line.result.reason ?? ""}`.trim());
+      else if (!withLeftOut && line.result.leftOut !== null) found.push(`${label} was left out.`);
+    }
+    return found;
+  };
+  return {
+    asAsked: summarise(judged(false), namedCount, reasons(false)),
+    withEveryLine: summarise(judged(true), namedCount, reasons(true)),
+  };
+}
+
+function driftOf(lines: JudgedLineResult[]): Analysis["driftPoint"] {
+  const used = lines.filter(
+    ({ result }) => result.errorNm !== null && (result.status === "judged" || result.status === "not-judged"),
+  );
+  let shared = 0;
+  for (const { sharedUncNm } of used) shared += sharedUncNm / used.length;
+  return driftPointOf(
+    used.map(({ result, ownUncNm }) => ({ wavelengthNm: result.wavelengthNm!, errorNm: result.errorNm!, ownUncNm })),
+    shared,
+  );
+}
+
+function warningsOf(found: FoundLines, combined: CombinedCaptures): Analysis["warnings"] {
+  const warnings: Analysis["warnings"] = [];
+  for (const file of combined.files) {
+    for (const text of file.remarks)
+      warnings.push({ code: "reading", text: combined.files.length > 1 ? `${file.name}: ${text}` : text });
+  }
+  for (const text of found.notes) {
+    const code =
+      found.noiseCorrelation > smoothedAbove && text.includes("smoothed")
+        ? "smoothed"
+        : text.includes("saturated")
+          ? "saturated"
+          : "spikes";
+    warnings.push({ code, text });
+  }
+  return warnings;
+}
+
+function refused(refusal: Refusal, files: FileFacts[], setup: AnalysisSetup, spectrum: Spectrum | null): AnalysedCheck {
+  const analysis: Analysis = {
+    format: 1,
+    coreVersion,
+    outcome: "refused",
+    reason: refusal.reason,
+    setup,
+    files,
+    axisKind: spectrum?.axisKind ?? "pixel",
+    axisUnit: spectrum?.axisUnit ?? "px",
+    noiseCounts: 0,
+    noiseCorrelation: 0,
+    medianFwhm: null,
+    lines: [],
+    missingLinesNm: [],
+    verdict: null,
+    verdictWithEveryLine: null,
+    segments: [],
+    dispersion: null,
+    driftPoint: null,
+    confidence: { chanceProbability: 1, margin: 0, note: "" },
+    notIncluded: [],
+    warnings: [{ code: refusal.code, text: refusal.reason }],
+  };
+  return { analysis, drawing: null };
+}
