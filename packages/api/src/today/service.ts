@@ -121,7 +121,7 @@ function holdItems(facts: TodayFacts): TodayItem[] {
         title: `${hold.instrumentName} is out of tolerance, on hold since ${since}; your decision waits.`,
         detail: `${hold.reason}${doubt}${row?.asLeftAsked === true ? " An as-left check is asked for." : ""}`,
         link: hold.checkId === null ? null : { label: hold.checkNumber ?? "Check", to: `/checks/${hold.checkId}` },
-        action: { label: "Confirm or lift the hold", to: `/instruments/${hold.instrumentId}` },
+        action: { label: "Confirm or lift the hold", to: `/instruments/${hold.instrumentId}?do=hold` },
       };
     });
 }
@@ -247,7 +247,7 @@ function dueItems(facts: TodayFacts): TodayItem[] {
           : `${possessive(row.name)} check is ${dueText(row.dueDays!)}.`,
         detail: row.asLeftAsked ? `${worstText(row) ?? "It was out of tolerance"} at the last check.` : due,
         link: { label: row.name, to: `/instruments/${row.id}` },
-        action: technician ? begin : { label: "Reassign", to: `/instruments/${row.id}` },
+        action: technician ? begin : { label: "Reassign", to: `/instruments/${row.id}?do=due` },
       };
     });
 }
