@@ -5,20 +5,17 @@
  * its reason; what can't be decided is refused in a sentence, never guessed.
  */
 import { textToBytes } from "../capture/decode.ts";
-import { axisSlope } from "../dispersion/axis.ts";
-import { fitDispersion } from "../dispersion/fit-dispersion.ts";
 import { driftPointOf } from "../drift/drift-point.ts";
 import { identifyLines, type IdentifiedLines } from "../identify/identify-lines.ts";
 import { builtInLineList } from "../linelist/built-in.ts";
 import { findLines, smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
-import { median } from "../spectrum/median.ts";
 import { summarise, type JudgedLine } from "../uncertainty/conformity.ts";
 import { coreVersion } from "../version.ts";
 import { combineCaptures, type CombinedCaptures } from "./combine-captures.ts";
 import { drawSpectrum } from "./draw-spectrum.ts";
+import { findMisplaced, fitAxis, misplacedReason } from "./fit-axis.ts";
 import { indicatingAxisOf, type IndicatingAxis } from "./indicating-axis.ts";
 import { isLine, judgeLine, type JudgedLineResult } from "./judge-lines.ts";
-import { referenceMedium } from "./reference-medium.ts";
 import { repeatabilityOf } from "./repeatability.ts";
 import { judgeSegments } from "./segments.ts";
 import type {
@@ -26,7 +23,6 @@ import type {
   Analysis,
   AnalysisSetup,
   CaptureInput,
-  Dispersion,
   FileFacts,
   LineList,
   Refusal,
@@ -115,14 +111,23 @@ function analyseCombined(
           toleranceNm: tightestTolerance(setup),
         });
   const repeatability = repeatabilityOf(combined, found, setup);
-  const lines = found.lines.map((line, index) =>
-    judgeLine(
-      { line, name: identified.names[index] ?? null, repeatability: repeatability[index] ?? null },
-      axis,
-      setup,
-    ),
-  );
-  const dispersion = fitAxis(spectrum, found, lines, setup, identified);
+  const judge = (): JudgedLineResult[] =>
+    found.lines.map((line, index) =>
+      judgeLine(
+        { line, name: identified.names[index] ?? null, repeatability: repeatability[index] ?? null },
+        axis,
+        setup,
+      ),
+    );
+  let lines = judge();
+  let dispersion = fitAxis(spectrum, found, lines, setup, identified);
+  const misplaced = findMisplaced(found, dispersion, setup, identified);
+  if (misplaced.length > 0) {
+    for (const index of misplaced) identified.names[index] = null;
+    lines = judge();
+    for (const index of misplaced) lines[index]!.result.reason = misplacedReason;
+    dispersion = fitAxis(spectrum, found, lines, setup, identified);
+  }
   const results = lines.map((one) => one.result);
   const verdicts = verdictsOf(lines, identified, setup, axis);
   const analysis: Analysis = {
@@ -199,65 +204,6 @@ function tightestTolerance(setup: AnalysisSetup): number | null {
   for (const { toleranceNm } of setup.tolerance)
     if (tightest === null || toleranceNm < tightest) tightest = toleranceNm;
   return tightest;
-}
-
-/** Lines less sure than so many times the median line stay out of the axis. */
-const leastSureInAxis = 3;
-
-/** A new axis from the named lines of a pixel or step axis; marks what was used and what was rejected. */
-function fitAxis(
-  spectrum: Spectrum,
-  found: FoundLines,
-  lines: JudgedLineResult[],
-  setup: AnalysisSetup,
-  identified: IdentifiedLines,
-): Dispersion | null {
-  if (identified.outcome !== "identified" || spectrum.axisKind === "wavenumber") return null;
-  const eligible = lines.map((_, index) => index).filter((index) => lines[index]!.fitsAxis);
-  const { mode } = setup;
-  const meaning = mode.kind === "earlier-axis" && mode.axis !== "own" ? mode.axis.meaning : setup.axisMeaning;
-  const medium = referenceMedium(meaning, setup.room);
-  const uncNm = eligible.map((index) => {
-    const name = identified.names[index]!;
-    const line = found.lines[index]!;
-    const slope = identified.axis === null ? 1 : axisSlope(identified.axis, line.position);
-    const fit = line.positionUnc * slope;
-    return Math.sqrt(fit * fit + name.referenceUncNm * name.referenceUncNm + name.blendUncNm * name.blendUncNm);
-  });
-  // A line far less sure than the others weighs nothing in the fit and only hides what the others agree on.
-  const limit = leastSureInAxis * median(uncNm);
-  const used = eligible.filter((_, k) => !(uncNm[k]! > limit));
-  const points = used.map((index) => {
-    const name = identified.names[index]!;
-    const line = found.lines[index]!;
-    return {
-      position: line.position,
-      positionUnc: line.positionUnc,
-      signalToNoise: line.signalToNoise,
-      wavelengthNm: medium.referenceNm(name.wavelengthNm, name.medium),
-      wavelengthUncNm: Math.sqrt(name.referenceUncNm * name.referenceUncNm + name.blendUncNm * name.blendUncNm),
-    };
-  });
-  const fitted = fitDispersion(points, {
-    degree: setup.degree,
-    firstPosition: spectrum.positions[0]!,
-    lastPosition: spectrum.positions[spectrum.positions.length - 1]!,
-    meaning,
-    fwhm: found.medianFwhm ?? 1,
-  });
-  if (fitted.outcome === "refused") {
-    identified.warnings.push({ code: "no-axis", text: fitted.reason });
-    return null;
-  }
-  const rejected = fitted.dispersion.rejected.map(({ line, reason }) => ({ line: used[line]!, reason }));
-  used.forEach((index, point) => {
-    const { result } = lines[index]!;
-    const isRejected = rejected.some((one) => one.line === index);
-    result.usedInAxis = !isRejected;
-    result.residualNm = fitted.residualsNm[point]!;
-    if (isRejected) result.flags.push("outlier");
-  });
-  return { ...fitted.dispersion, rejected };
 }
 
 function verdictsOf(
