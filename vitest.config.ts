@@ -56,7 +56,8 @@ export default defineConfig({
           root: at("packages/web"),
           include: ["src/**/*.test.{ts,tsx}"],
           environment: "happy-dom",
-          css: false,
+          // Style sheets are read as text only, where a test asks for one with `?raw`.
+          css: { include: [/\?raw/] },
           testTimeout: 15_000,
         },
       },

@@ -1,16 +1,15 @@
 /** Header: name over mercury's lines, lab, find, theme by name, person with role. On a narrow window a Menu holds the rail. */
-import { useQuery } from "@tanstack/react-query";
-import { Dialog as Radix } from "radix-ui";
-import { useState } from "react";
-import { Link, NavLink, useNavigate } from "react-router";
+import { lazy, Suspense, useState } from "react";
+import { Link, useNavigate } from "react-router";
 import { api, keepCsrfToken } from "../shared/api.ts";
-import { openAlertsQuery } from "../shared/queries.ts";
-import { mayDo, useMe, type Member } from "../shared/session.ts";
+import { useMe, type Member } from "../shared/session.ts";
 import { MercuryMark } from "../ui/mercury-mark.tsx";
 import { Menu, type MenuGroup } from "../ui/menu.tsx";
 import { ThemeMenu } from "../ui/theme-menu.tsx";
 import { Find } from "./find.tsx";
-import { placesOf, roleWord } from "./places.ts";
+import { roleWord } from "./places.ts";
+
+const NarrowSheet = lazy(async () => ({ default: (await import("./narrow-sheet.tsx")).NarrowSheet }));
 
 /** Leaves for good: the page is loaded anew, so that nothing of this person stays in memory. */
 const reload = () => window.location.assign("/today");
@@ -76,106 +75,22 @@ export function Header() {
   );
 }
 
+/** On a narrow window: *Find* and *Menu*, each a sheet over the page. */
 function NarrowMenu({ groups }: { groups: MenuGroup[] }) {
   const [shown, setShown] = useState<"menu" | "find" | null>(null);
-  const me = useMe();
-  const close = () => setShown(null);
   return (
     <div className="ml-auto flex gap-6 rail:hidden">
-      <button type="button" className="text-quiet book:hidden" onClick={() => setShown("find")}>
+      <button type="button" aria-haspopup="dialog" className="text-quiet book:hidden" onClick={() => setShown("find")}>
         Find
       </button>
       <button type="button" aria-haspopup="dialog" onClick={() => setShown("menu")}>
         Menu
       </button>
-      <Radix.Root open={shown !== null} onOpenChange={(next) => !next && close()}>
-        <Radix.Portal>
-          <Radix.Content className="shell-sheet" aria-describedby={undefined}>
-            <div className="flex items-baseline justify-between">
-              <Radix.Title className="type-label">
-                {shown === "find" ? "Find" : `${me.lab.name}${me.lab.isDemo ? ", demo" : ""}`}
-              </Radix.Title>
-              <Radix.Close className="text-accent">Close</Radix.Close>
-            </div>
-            {shown === "find" ? (
-              <Find autoFocus onDone={close} className="mt-4" />
-            ) : (
-              <>
-                <nav aria-label="Pages" className="mt-3">
-                  <RailLinks onFollow={close} />
-                </nav>
-                <div className="border-hairline mt-4 border-t pt-3">
-                  <ThemeMenuPlain />
-                </div>
-                <div className="border-hairline mt-3 border-t pt-3">
-                  <p className="text-quiet py-2">{`${me.person.name}, ${roleWord(me)}`}</p>
-                  {groups.map((group, index) => (
-                    <div key={group.label ?? index}>
-                      {group.label !== undefined && <p className="type-label pt-2">{group.label}</p>}
-                      {group.items.map((item) => (
-                        <button
-                          key={item.key}
-                          type="button"
-                          className="text-accent block min-h-11 w-full text-left"
-                          onClick={() => {
-                            close();
-                            item.onChoose();
-                          }}
-                        >
-                          {item.label}
-                        </button>
-                      ))}
-                    </div>
-                  ))}
-                </div>
-              </>
-            )}
-          </Radix.Content>
-        </Radix.Portal>
-      </Radix.Root>
+      {shown !== null && (
+        <Suspense>
+          <NarrowSheet shows={shown} groups={groups} onClose={() => setShown(null)} />
+        </Suspense>
+      )}
     </div>
-  );
-}
-
-function ThemeMenuPlain() {
-  return (
-    <div className="py-2">
-      <ThemeMenu className="text-quiet" align="left" />
-    </div>
-  );
-}
-
-/** The rail's entries, in the rail and in the menu. */
-export function RailLinks({ onFollow }: { onFollow?: () => void }) {
-  const me = useMe();
-  const alerts = useQuery({ ...openAlertsQuery, enabled: mayDo(me, "alert.read") });
-  return (
-    <ul>
-      {placesOf(me).map((place) => (
-        <li key={place.to}>
-          <NavLink to={place.to} className="rail-link" onClick={onFollow}>
-            {place.label}
-            {place.to === "/alerts" && alerts.data !== undefined && alerts.data !== "0" && (
-              <>
-                {" "}
-                <span className="type-note ml-1">
-                  {alerts.data}
-                  <span className="sr-only"> open</span>
-                </span>
-              </>
-            )}
-          </NavLink>
-        </li>
-      ))}
-    </ul>
-  );
-}
-
-/** The rail: a ruler of pages, a tick each at the window's edge. */
-export function Rail() {
-  return (
-    <nav aria-label="Pages" className="shell-rail no-print">
-      <RailLinks />
-    </nav>
   );
 }

@@ -10,7 +10,8 @@ import { api, onSessionLost } from "../shared/api.ts";
 import { isMember, MemberProvider, sessionQuery, useSession, type Member } from "../shared/session.ts";
 import { Button } from "../ui/button.tsx";
 import { ProblemNote } from "../ui/problem-note.tsx";
-import { Header, Rail } from "./header.tsx";
+import { Header } from "./header.tsx";
+import { Rail } from "./rail.tsx";
 import { useIdle } from "./use-idle.ts";
 
 const SignIn = lazy(async () => ({ default: (await import("../auth/sign-in-page.tsx")).SignInPage }));

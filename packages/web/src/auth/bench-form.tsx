@@ -92,7 +92,7 @@ function PinPad({ person, onBack, onEntered }: { person: PersonRef; onBack: () =
       aria-label={`PIN of ${person.name}`}
       tabIndex={0}
       onKeyDown={press}
-      className="mt-4 max-w-[264px]"
+      className="pin-pad mt-4 max-w-[264px]"
     >
       <div className="flex items-baseline justify-between gap-4">
         <p className="strong">{person.name}</p>

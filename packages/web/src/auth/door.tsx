@@ -18,19 +18,19 @@ interface DoorProps {
 
 export function Door({ title, children, beside }: DoorProps) {
   useTitle(title);
-  // On a phone the lines stand below the form, as on the edge of a page.
-  const height = useSyncExternalStore(subscribe, () => (window.innerWidth < 768 ? 190 : window.innerHeight));
+  // On a narrow window the lines stand below the form, as on the edge of a page.
+  const height = useSyncExternalStore(subscribe, () => (window.innerWidth < 1024 ? 190 : window.innerHeight));
   return (
     <div className="door">
       <div className="door-ground">
         <MercuryGround height={height} />
       </div>
-      <div className="absolute top-[17px] right-4 z-10 book:right-10">
+      <div className="absolute top-[17px] right-4 z-10 rail:right-10">
         <ThemeMenu />
       </div>
       <main className="door-form">
         <p className="type-lead strong">Wavekeep</p>
-        <h1 className="type-display mt-6 book:mt-14">{title}</h1>
+        <h1 className="type-display mt-6 rail:mt-14">{title}</h1>
         <div className="mt-6">{children}</div>
       </main>
       {beside !== undefined && <aside className="door-beside">{beside}</aside>}

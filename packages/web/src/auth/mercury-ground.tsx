@@ -34,14 +34,13 @@ const LINES: readonly GroundLine[] = [
   { wavelengthNm: 708.1901, width: 1, reach: 0.16, opacity: 0.6 },
 ];
 
-/** Fills its box; the ruler stands `RULER` px above its foot. */
+/** Fills its box of `height` px; the ruler stands near its foot. */
 export function MercuryGround({ height }: { height: number }) {
   const [ref, width] = useWidth<HTMLDivElement>(1440);
   const theme = useTheme();
   const scale = linearScale(FROM_NM, TO_NM, width);
-  const axis = height - 120;
-  const isNarrow = width < 768;
-  const ruler = isNarrow ? height - 44 : axis;
+  const isNarrow = width < 1024;
+  const ruler = height - (isNarrow ? 44 : 120);
   return (
     <div ref={ref} aria-hidden="true" className="pointer-events-none absolute inset-0 overflow-hidden">
       <svg width={width} height={height} className="block">
@@ -61,7 +60,7 @@ export function MercuryGround({ height }: { height: number }) {
         })}
         <line x1={0} x2={width} y1={ruler + 0.5} y2={ruler + 0.5} stroke="var(--ink)" />
         {Array.from({ length: TO_NM - FROM_NM + 1 }, (_, i) => FROM_NM + i).map((nm) => {
-          if (isNarrow && nm % 5 !== 0) return null;
+          if (width < 768 && nm % 5 !== 0) return null;
           const x = crisp(scale.at(nm));
           const long = nm % 50 === 0 ? 14 : nm % 10 === 0 ? 9 : nm % 5 === 0 ? 7 : 4;
           return (

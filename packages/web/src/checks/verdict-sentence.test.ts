@@ -3,26 +3,56 @@ import { describe, expect, test } from "vitest";
 import { analysisState, conformanceWords, leftOutSentence, verdictSentence } from "./verdict-sentence.ts";
 
 const line = (over: Partial<LineResult>): LineResult =>
-  ({ position: 2027.88, wavelengthNm: 842.4648, species: "Ar I", flags: [], status: "judged", verdict: "pass", errorNm: 0.3134, errorExpandedUncNm: 0.0308, toleranceNm: 0.4, leftOut: null, ...over }) as LineResult;
+  ({
+    position: 2027.88,
+    wavelengthNm: 842.4648,
+    species: "Ar I",
+    flags: [],
+    status: "judged",
+    verdict: "pass",
+    errorNm: 0.3134,
+    errorExpandedUncNm: 0.0308,
+    toleranceNm: 0.4,
+    leftOut: null,
+    ...over,
+  }) as LineResult;
 
-const analysis = (lines: LineResult[], verdict: Partial<VerdictSummary> | null, over: Partial<Analysis> = {}): Analysis =>
+const analysis = (
+  lines: LineResult[],
+  verdict: Partial<VerdictSummary> | null,
+  over: Partial<Analysis> = {},
+): Analysis =>
   ({
     outcome: "identified",
     reason: null,
     axisUnit: "px",
     lines,
-    verdict: verdict === null ? null : { verdict: "pass", nearLimit: false, worstLine: 0, toleranceUsed: 0.78, judgedCount: 22, namedCount: 24, reasons: [], ...verdict },
+    verdict:
+      verdict === null
+        ? null
+        : {
+            verdict: "pass",
+            nearLimit: false,
+            worstLine: 0,
+            toleranceUsed: 0.78,
+            judgedCount: 22,
+            namedCount: 24,
+            reasons: [],
+            ...verdict,
+          },
     ...over,
   }) as Analysis;
 
 describe("the verdict as a sentence", () => {
   test("names the worst line, its error with U to two digits, and the limit", () => {
     expect(verdictSentence(analysis([line({})], { nearLimit: true }))).toBe(
-      "In tolerance, near the limit: the worst of 22 lines, Ar 842.465\u202fnm, reads +0.313\u202f±\u202f0.031\u202fnm where 0.40\u202fnm is allowed.",
+      "In tolerance, near the limit: the worst of 22 lines, Ar 842.465\u202fnm, reads +0.313\u00a0±\u00a00.031\u202fnm where 0.40\u202fnm is allowed.",
     );
   });
   test("a missing required line is said before the worst line that passed", () => {
-    const text = verdictSentence(analysis([line({})], { verdict: "inconclusive", reasons: ["Hg 546.075 nm is required and was left out."] }));
+    const text = verdictSentence(
+      analysis([line({})], { verdict: "inconclusive", reasons: ["Hg 546.075 nm is required and was left out."] }),
+    );
     expect(text).toMatch(/^Inconclusive: Hg 546\.075 nm is required and was left out\. The worst line/);
   });
   test("a refusal is no verdict", () => {
@@ -31,7 +61,11 @@ describe("the verdict as a sentence", () => {
     expect(analysisState(refused)).toBe("not-judged");
   });
   test("what was left out is counted by what was seen", () => {
-    const lines = [line({}), line({ status: "refused", flags: ["saturated"] }), line({ status: "left-out", leftOut: { wavelengthNm: 811.53, reason: "too-weak", note: "n" } })];
+    const lines = [
+      line({}),
+      line({ status: "refused", flags: ["saturated"] }),
+      line({ status: "left-out", leftOut: { wavelengthNm: 811.53, reason: "too-weak", note: "n" } }),
+    ];
     expect(leftOutSentence(analysis(lines, {}))).toBe("1 saturated, 1 too weak");
     expect(leftOutSentence(analysis([line({})], {}))).toBe("nothing");
   });

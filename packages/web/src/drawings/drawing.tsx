@@ -151,7 +151,7 @@ function TwinTable({ table }: { table: TableTwin }) {
   const isNumber = table.head.map((_, i) => table.rows.some((row) => typeof row[i] === "number"));
   return (
     <div className="max-h-[480px] overflow-auto" role="region" aria-label={table.caption} tabIndex={0}>
-      <table className="table table-compact">
+      <table className="rows rows-compact">
         <caption className="sr-only">{table.caption}</caption>
         <thead>
           <tr>

@@ -10,6 +10,8 @@ import { differenceInCalendarDays, format } from "date-fns";
 
 export const MINUS = "\u2212";
 export const NARROW_SPACE = "\u202f";
+/** Around ±, where a narrow space would run the signs together. */
+export const NO_BREAK = "\u00a0";
 
 export interface NumberStyle {
   /** Places after the point. */
@@ -96,7 +98,7 @@ export function formatQuantity(
   style: NumberStyle = {},
 ): string {
   const parts = quantityParts(value, expandedUnc, unit, style);
-  const body = parts.unc === null ? parts.value : `${parts.value}${NARROW_SPACE}±${NARROW_SPACE}${parts.unc}`;
+  const body = parts.unc === null ? parts.value : `${parts.value}${NO_BREAK}±${NO_BREAK}${parts.unc}`;
   return parts.unit === "" ? body : `${body}${NARROW_SPACE}${parts.unit}`;
 }
 

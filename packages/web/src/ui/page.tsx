@@ -103,7 +103,7 @@ export function Section({
         {note !== undefined && <div className="margin-note type-note mt-1">{note}</div>}
         {switches !== undefined && <div className="no-print mt-3">{switches}</div>}
         {links !== undefined && (
-          <div className="no-print type-note flex flex-wrap gap-x-2 gap-y-1 book:mt-3">{links}</div>
+          <div className="no-print type-note flex flex-wrap gap-x-2 gap-y-2 book:mt-3">{links}</div>
         )}
       </div>
       <div className="book-body">{children}</div>

@@ -1,5 +1,5 @@
 /** Measured numbers, typeset: the point of a column stands under the point, value and uncertainty end at one place. */
-import { formatNumber, NARROW_SPACE, quantityParts, type NumberStyle } from "./format.ts";
+import { formatNumber, NARROW_SPACE, NO_BREAK, quantityParts, type NumberStyle } from "./format.ts";
 
 interface DecimalProps extends NumberStyle {
   value: number | null | undefined;
@@ -45,7 +45,7 @@ export function Quantity({ value, expandedUnc, unit = "", className, ...style }:
   return (
     <span className={`whitespace-nowrap ${className ?? ""}`}>
       {parts.value}
-      {parts.unc !== null && `${NARROW_SPACE}±${NARROW_SPACE}${parts.unc}`}
+      {parts.unc !== null && `${NO_BREAK}±${NO_BREAK}${parts.unc}`}
       {parts.unit !== "" && NARROW_SPACE}
       {parts.unit === "cm-1" ? (
         <>

@@ -63,7 +63,7 @@ export function Table<Row>({
         };
   return (
     <>
-      <table className={`table ${compact ? "table-compact" : ""} ${narrow === undefined ? "" : "hidden book:table"}`}>
+      <table className={`rows ${compact ? "rows-compact" : ""} ${narrow === undefined ? "" : "hidden book:table"}`}>
         <caption className="sr-only">{caption}</caption>
         <thead>
           <tr>
