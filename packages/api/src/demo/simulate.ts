@@ -28,11 +28,12 @@ export function roomOn(dayOfYear: number, daysAgo: number): number {
 export function simulateRepeats(
   instrument: DemoInstrument,
   source: DemoSource,
-  day: { daysAgo: number; on: string; temperatureC: number; attempt: number; isOverexposed: boolean; ordinal: number },
+  day: { daysAgo: number; on: string; temperatureC: number; attempt: number; isOverexposed: boolean; ordinal: number; condition: "as-found" | "as-left" },
 ): DemoCapture[] {
   const seed = DEMO_SEED + 1009 * nameNumber(instrument.name) + 17 * day.daysAgo + 5 * day.attempt + 31 * day.ordinal;
   const scatterNm = instrument.scatterNm * createRandom(seed).normal();
-  const simulated = simulatedInstrument(instrument, day.daysAgo, day.temperatureC, scatterNm);
+  // As found lies before whatever was done on that day, as left after it.
+  const simulated = simulatedInstrument(instrument, day.daysAgo + (day.condition === "as-found" ? 0.5 : 0), day.temperatureC, scatterNm);
   const lines = lampLines(source.elements, instrument.firstNm, instrument.lastNm);
   const exposure = EXPOSURE_COUNTS * (day.isOverexposed ? OVEREXPOSURE : 1);
   const strongest = Math.max(...lines.map(({ strength }) => strength));

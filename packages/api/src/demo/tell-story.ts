@@ -194,7 +194,7 @@ class Teller {
     check = await keep(1, { sourceIds: [this.sourceIds.get(source.label)!], minutesSinceSwitchOn: source.warmUpMinutes + 5 + (ordinal % 4) * 5, temperatureC, pressureHpa: null, fullScaleCounts: instrument.fullScaleCounts });
 
     const attempt = async (minutes: number, number: number, isOverexposed: boolean): Promise<Check> => {
-      const files = simulateRepeats(instrument, source, { daysAgo: story.daysAgo, on, temperatureC, attempt: number, isOverexposed, ordinal });
+      const files = simulateRepeats(instrument, source, { daysAgo: story.daysAgo, on, temperatureC, attempt: number, isOverexposed, ordinal, condition: story.condition });
       await addCaptures({ db, analyser }, await later(minutes), id, { part: "lamp", files });
       return analyseCheck({ db, analyser }, await later(minutes + 1), id, { version: check.draft.version });
     };
