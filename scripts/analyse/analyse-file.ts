@@ -36,7 +36,7 @@ type FileDocument = Pick<
 
 export interface ResultDocument {
   file: FileDocument | { name: string; sha256: string | null };
-  outcome: Analysis["outcome"] | "read";
+  outcome: Analysis["outcome"];
   reason: string | null;
   verdict: "pass" | "fail" | "inconclusive" | null;
   lines: LineDocument[];
@@ -111,7 +111,8 @@ export function analyseFile(file: string, options: CommandOptions): ResultDocume
   const { spectrum, facts } = read;
   const fileDocument = documentOf(facts, sha256);
   if (options.readOnly) {
-    return { file: fileDocument, outcome: "read", reason: null, ...empty, elapsedMs: performance.now() - begun };
+    const reason = "Only read, as asked for: no line was looked for.";
+    return { file: fileDocument, outcome: "unidentified", reason, ...empty, elapsedMs: performance.now() - begun };
   }
   const setup = setupOf(spectrum, options);
   if ("problem" in setup) return refused(fileDocument, setup.problem);

@@ -48,13 +48,19 @@ function blendWavelengths(name: LineName): number[] {
   return name.blendOf.map((line) => line.wavelengthAirNm ?? line.wavelengthVacuumNm);
 }
 
-/** Judge one line. */
-export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: AnalysisSetup): JudgedLineResult {
-  const { line, name } = input;
-  const { windowFirst: _first, windowLast: _last, group: _group, ...fitted } = line;
-  const bare: LineResult = {
-    ...fitted,
-    flags: [...line.flags],
+/** A line that was found and not named: what is filled in later is null. */
+function unnamedResult(line: FittedLine, axis: IndicatingAxis | null): LineResult {
+  return {
+    position: line.position,
+    positionUnc: line.positionUnc,
+    fwhm: line.fwhm,
+    fwhmUnc: line.fwhmUnc,
+    areaCounts: line.areaCounts,
+    peakHeightCounts: line.peakHeightCounts,
+    signalToNoise: line.signalToNoise,
+    reducedChiSquare: line.reducedChiSquare,
+    degreesOfFreedom: line.degreesOfFreedom,
+    flags: line.flags.slice(),
     wavelengthNm: null,
     medium: "air",
     element: null,
@@ -86,74 +92,71 @@ export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: 
     usedInAxis: false,
     residualNm: null,
   };
-  const nothing = { judgement: null, ownUncNm: 0, sharedUncNm: 0, fitsAxis: false };
-  if (name === null) return { result: bare, ...nothing };
+}
 
-  const leftOut = leftOutEntry(setup, name);
-  const named: LineResult = {
-    ...bare,
-    flags: name.blendOf.length > 1 && !line.flags.includes("blend") ? [...line.flags, "blend"] : [...line.flags],
-    wavelengthNm: name.wavelengthNm,
-    medium: name.medium,
-    element: name.element,
-    species: name.species,
-    blendOfNm: name.blendOf.length > 1 ? blendWavelengths(name) : [],
-    order: name.order,
-    referenceUncNm: name.referenceUncNm,
-    referenceUncAssumed: name.referenceUncAssumed,
-    referenceSource: name.referenceSource,
-    leftOut,
-    required:
-      isLine(setup.requiredLinesNm, name.wavelengthNm) ||
-      blendWavelengths(name).some((nm) => isLine(setup.requiredLinesNm, nm)),
-    status: "not-judged",
-  };
+/** Judge one line. */
+export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: AnalysisSetup): JudgedLineResult {
+  const { line, name } = input;
+  const result = unnamedResult(line, axis);
+  const judged: JudgedLineResult = { result, judgement: null, ownUncNm: 0, sharedUncNm: 0, fitsAxis: false };
+  if (name === null) return judged;
+
+  const blend = blendWavelengths(name);
+  result.wavelengthNm = name.wavelengthNm;
+  result.medium = name.medium;
+  result.element = name.element;
+  result.species = name.species;
+  result.order = name.order;
+  result.referenceUncNm = name.referenceUncNm;
+  result.referenceUncAssumed = name.referenceUncAssumed;
+  result.referenceSource = name.referenceSource;
+  if (blend.length > 1) {
+    result.blendOfNm = blend;
+    if (!result.flags.includes("blend")) result.flags.push("blend");
+  }
+  result.required = [name.wavelengthNm, ...blend].some((nm) => isLine(setup.requiredLinesNm, nm));
   const toleranceNm = toleranceAt(setup.tolerance, name.wavelengthNm);
   const refusedBecause = whyRefused(line, name, setup, toleranceNm);
-  const fitsAxis = refusedBecause === null && leftOut === null;
-  const status = refusedBecause !== null ? "refused" : leftOut !== null ? "left-out" : "not-judged";
-  const reason = refusedBecause ?? (leftOut !== null ? leftOutSentence(leftOut) : null);
+  const leftOut = leftOutEntry(setup, name);
+  result.leftOut = leftOut;
+  result.status = refusedBecause !== null ? "refused" : leftOut !== null ? "left-out" : "not-judged";
+  result.reason = refusedBecause ?? (leftOut !== null ? leftOutSentence(leftOut) : null);
+  judged.fitsAxis = refusedBecause === null && leftOut === null;
   if (axis === null) {
-    const why = reason ?? "There is no earlier axis that says what the instrument indicated.";
-    return { result: { ...named, status, reason: why }, ...nothing, fitsAxis };
+    result.reason ??= "There is no earlier axis that says what the instrument indicated.";
+    return judged;
   }
 
   const { contributions, sharedUncNm } = contributionsOf(input, name, axis, setup);
   const combined = combineContributions(contributions);
   const errorNm = axis.indicatedNm(line.position) - axis.referenceNm(name.wavelengthNm, name.medium);
-  const withError: LineResult = {
-    ...named,
-    errorNm,
-    errorUncNm: combined.uncNm,
-    errorExpandedUncNm: combined.expandedUncNm,
-    coverageFactor: combined.coverageFactor,
-    effectiveDegreesOfFreedom: combined.effectiveDegreesOfFreedom,
-    budget: combined.budget,
-    toleranceNm,
-    status,
-    reason,
-  };
-  const ownUncNm = Math.sqrt(Math.max(0, combined.uncNm * combined.uncNm - sharedUncNm * sharedUncNm));
-  const common = { ownUncNm, sharedUncNm, fitsAxis };
-  if (refusedBecause !== null) return { result: withError, judgement: null, ...common };
+  result.errorNm = errorNm;
+  result.errorUncNm = combined.uncNm;
+  result.errorExpandedUncNm = combined.expandedUncNm;
+  result.coverageFactor = combined.coverageFactor;
+  result.effectiveDegreesOfFreedom = combined.effectiveDegreesOfFreedom;
+  result.budget = combined.budget;
+  result.toleranceNm = toleranceNm;
+  judged.sharedUncNm = sharedUncNm;
+  judged.ownUncNm = Math.sqrt(Math.max(0, combined.uncNm * combined.uncNm - sharedUncNm * sharedUncNm));
+  if (refusedBecause !== null) return judged;
+
   const notJudged = whyNotJudged(name, setup, toleranceNm, combined.expandedUncNm);
   if (toleranceNm === null || notJudged !== null) {
-    return { result: { ...withError, reason: reason ?? notJudged }, judgement: null, ...common };
+    result.reason ??= notJudged;
+    return judged;
   }
-  const judgement = judgeError(
-    {
-      errorNm,
-      uncNm: combined.uncNm,
-      expandedUncNm: combined.expandedUncNm,
-      effectiveDegreesOfFreedom: combined.effectiveDegreesOfFreedom,
-    },
-    toleranceNm,
-    setup.decisionRule,
-    setup.warningShare,
-  );
-  const { guardBandNm, toleranceUsed, conformanceProbability, verdict, nearLimit } = judgement;
-  const judged = { ...withError, guardBandNm, toleranceUsed, conformanceProbability, verdict, nearLimit };
-  return { result: leftOut === null ? { ...judged, status: "judged" } : judged, judgement, ...common };
+  const { uncNm, expandedUncNm, effectiveDegreesOfFreedom } = combined;
+  const error = { errorNm, uncNm, expandedUncNm, effectiveDegreesOfFreedom };
+  const judgement = judgeError(error, toleranceNm, setup.decisionRule, setup.warningShare);
+  judged.judgement = judgement;
+  result.guardBandNm = judgement.guardBandNm;
+  result.toleranceUsed = judgement.toleranceUsed;
+  result.conformanceProbability = judgement.conformanceProbability;
+  result.verdict = judgement.verdict;
+  result.nearLimit = judgement.nearLimit;
+  if (leftOut === null) result.status = "judged";
+  return judged;
 }
 
 function whyRefused(line: FittedLine, name: LineName, setup: AnalysisSetup, toleranceNm: number | null): string | null {

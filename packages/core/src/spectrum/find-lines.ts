@@ -165,6 +165,8 @@ interface Group {
   members: Candidate[];
   first: number;
   last: number;
+  /** A first fit's result, nearer the truth than the half-height crossings. */
+  starts?: LineStart[];
 }
 
 function groupCandidates(candidates: Candidate[], n: number, typicalWidth: number): Group[] {
@@ -226,6 +228,7 @@ function windowOf(prepared: Prepared, group: Group, gain: number) {
 }
 
 function startsOf(prepared: Prepared, group: Group): LineStart[] {
+  if (group.starts !== undefined) return group.starts;
   return group.members.map((one) => {
     const { position, step } = axisAt(prepared.spectrum.positions, one.centre);
     const width = Math.max(0.7 * prepared.typicalWidth, Math.min(one.width, 2 * prepared.typicalWidth));
@@ -255,7 +258,8 @@ function estimateGain(prepared: Prepared, groups: Group[]): number {
       },
       startsOf(prepared, group),
     );
-    if (fit.outcome === "refused") continue;
+    if (fit.outcome === "refused" || !isSane(fit.lines[0]!, startsOf(prepared, group)[0]!)) continue;
+    group.starts = fit.lines;
     const m = samples.length;
     const scatter = { excess: 0, readVariance: 0, meanSignal: 0, meanSquareSignal: 0, degreesOfFreedom: m - 5 };
     for (let k = 0; k < m; k += 1) {
