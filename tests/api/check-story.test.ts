@@ -11,6 +11,7 @@ import {
   analyse,
   approve,
   beginCheck,
+  getBytes,
   measure,
   neonCapture,
   saveDraft,
@@ -125,16 +126,9 @@ describe("the first check of a pixel axis fits it", () => {
   test("the bytes come back exactly as they were sent, and that a copy was taken is in the trail", async () => {
     const { body } = await tam.client.get(`/checks/${check.summary.id}`).expect(200);
     const id = body.attempts[0].captures[0].id as string;
-    const reply = await odd.client
-      .get(`/captures/${id}/bytes`)
-      .buffer(true)
-      .parse((res, done) => {
-        const parts: Buffer[] = [];
-        res.on("data", (part: Buffer) => parts.push(part));
-        res.on("end", () => done(null, Buffer.concat(parts)));
-      });
+    const reply = await getBytes(odd.client, `/captures/${id}/bytes`);
     expect(reply.status).toBe(200);
-    expect(Buffer.compare(reply.body as Buffer, neonCapture("2024-08-29").bytes)).toBe(0);
+    expect(Buffer.compare(reply.bytes, neonCapture("2024-08-29").bytes)).toBe(0);
     expect((await entries()).at(-1)).toMatchObject({ action: "capture.read", person_id: odd.id });
   });
 
@@ -307,16 +301,9 @@ describe("a check that passes", () => {
   });
 
   test("the report holds every line with U, the rule, the signatures, the hashes and the head of the chain", async () => {
-    const reply = await odd.client
-      .get(`/checks/${check.summary.id}/report`)
-      .buffer(true)
-      .parse((res, done) => {
-        const parts: Buffer[] = [];
-        res.on("data", (part: Buffer) => parts.push(part));
-        res.on("end", () => done(null, Buffer.concat(parts)));
-      });
-    expect(reply.headers["content-type"]).toBe("application/pdf");
-    const bytes = reply.body as Buffer;
+    const reply = await getBytes(odd.client, `/checks/${check.summary.id}/report`);
+    expect(reply.type).toBe("application/pdf");
+    const bytes = reply.bytes;
     expect(check.report).toMatchObject({
       number: expect.stringMatching(/^REP-\d{4}-000\d$/),
       sha256: createHash("sha256").update(bytes).digest("hex"),

@@ -1,5 +1,4 @@
 /** Rules around a check: tolerance in force, self-approval, drafts set aside, alerts that come and go, axes, sources. */
-import { createHash } from "node:crypto";
 import { beforeAll, describe, expect, test } from "vitest";
 import { openDueAlerts } from "@wavekeep/api/alerts/overdue-tick";
 import { setAsideLeftDrafts } from "@wavekeep/api/checks/aside-tick";
@@ -9,11 +8,11 @@ import { useTestApp } from "../support/app.ts";
 import {
   analyse,
   approve,
-  beginCheck,
+  getBytes,
   measure,
+  movedArgon,
   neonCapture,
   realCapture,
-  saveDraft,
   seenAll,
   submit,
 } from "../support/check-steps.ts";
@@ -51,15 +50,6 @@ const argonBench = (name: string, toleranceNm: number, given: Partial<Parameters
     ...given,
   });
 const argon = () => [realCapture("ar-arc-angstrom.csv")];
-/** The same capture with its axis moved, as an instrument out of tolerance would have written it. */
-function movedArgon(shiftNm: number, name = "moved.csv"): { name: string; bytes: Buffer }[] {
-  const [heading, ...lines] = realCapture("ar-arc-angstrom.csv").bytes.toString("utf8").trim().split("\n");
-  const moved = lines.map((line) => {
-    const [angstrom, value] = line.split(",");
-    return `${Number(angstrom) + shiftNm * 10},${value}`;
-  });
-  return [{ name, bytes: Buffer.from([heading, ...moved].join("\n")) }];
-}
 const configurationOf = async (instrument: Instrument): Promise<Configuration> =>
   ((await lab.manager.client.get(`/instruments/${instrument.id}`)).body as Instrument).configurations.at(-1)!;
 const openAlerts = async (instrument: Instrument): Promise<{ kind: string; reopenedCount: number; id: string }[]> =>
@@ -111,18 +101,12 @@ describe("the tolerance in force when the first capture arrived", () => {
   });
 
   test("the report prints the version used, and the change with its reason", async () => {
-    const reply = await tam.client.get(`/checks/${check.summary.id}/report`).buffer(true).parse(bytesOf);
-    const text = pdfPages(reply.body as Buffer).join(" ");
+    const reply = await getBytes(tam.client, `/checks/${check.summary.id}/report`);
+    const text = pdfPages(reply.bytes).join(" ");
     expect(text).toContain("Tolerance, version 1");
     expect(text).toMatch(/version 2: 0\.001.nm from 550 to 965.nm\. Reason: a new method asks for it/);
   });
 });
-
-function bytesOf(res: NodeJS.ReadableStream, done: (error: Error | null, body: Buffer) => void): void {
-  const parts: Buffer[] = [];
-  res.on("data", (part: Buffer) => parts.push(part));
-  res.on("end", () => done(null, Buffer.concat(parts)));
-}
 
 describe("self-approval", () => {
   test("off: refused in words before and after; on: allowed, and printed on every page", async () => {
@@ -131,9 +115,7 @@ describe("self-approval", () => {
       captures: argon(),
       sourceId: argonId,
     });
-    const draft = pdfPages(
-      (await lab.manager.client.get(`/checks/${made.summary.id}/report`).buffer(true).parse(bytesOf)).body as Buffer,
-    );
+    const draft = pdfPages((await getBytes(lab.manager.client, `/checks/${made.summary.id}/report`)).bytes);
     for (const page of draft) expect(page).toContain("DRAFT: not approved");
     const submitted = await submit(lab.manager.client, made);
     expect(submitted.may).toMatchObject({
@@ -150,8 +132,7 @@ describe("self-approval", () => {
       .expect(200);
     await lab.manager.client.post(path, body).expect(200);
     const pages = pdfPages(
-      (await lab.manager.client.get(`/checks/${submitted.summary.id}/report`).buffer(true).parse(bytesOf))
-        .body as Buffer,
+      (await getBytes(lab.manager.client, `/checks/${submitted.summary.id}/report`)).body as Buffer,
     );
     for (const page of pages) expect(page).toContain("SELF-APPROVED");
     await lab.manager.client
@@ -475,155 +456,8 @@ describe("axes and configurations", () => {
   });
 });
 
-describe("sources, procedures, the line library, search", () => {
-  test("a certificate comes back byte for byte, with its hash; a newer one stands before it", async () => {
-    const bytes = Buffer.from("%PDF-1.4 certificate of an invented lamp");
-    const { body } = await lab.manager.client
-      .upload(`/sources/${argonId}/certificate`, "file", [{ name: "AR-1 2026.pdf", bytes }])
-      .expect(200);
-    expect(body.certificate).toMatchObject({
-      fileName: "AR-1 2026.pdf",
-      sha256: createHash("sha256").update(bytes).digest("hex"),
-      storedBy: { id: lab.manager.id },
-    });
-    const copy = await tam.client.get(`/sources/${argonId}/certificate`).buffer(true).parse(bytesOf);
-    expect(Buffer.compare(copy.body as Buffer, bytes)).toBe(0);
-    expect(
-      (await tam.client.upload(`/sources/${argonId}/certificate`, "file", [{ name: "x.pdf", bytes }])).status,
-    ).toBe(403);
-    expect((await tam.client.get(`/sources/${neonId}/certificate`)).status).toBe(404);
-    expect(await actions()).toContain("certificate.stored");
-  });
-
-  test("cautions go with the kind and the elements, and defer", async () => {
-    const mercury = await buildSource(lab.manager, { label: "HG-1", name: "Mercury lamp", elements: ["Hg"] });
-    expect(mercury.cautions.map((caution) => caution.title)).toEqual([
-      "Ultraviolet light.",
-      "Mercury in the lamp.",
-      "High voltage.",
-      "Who decides.",
-    ]);
-    const laser = await buildSource(lab.manager, {
-      label: "L-1",
-      name: "Helium-neon laser",
-      kind: "laser",
-      elements: [],
-      laserLineNm: 632.81646,
-    });
-    expect(laser.cautions[0]!.text).toMatch(/class of the laser and by the power measured/);
-    const holmium = await buildSource(lab.manager, {
-      label: "HO-1",
-      name: "Holmium oxide, 4 % in perchloric acid",
-      kind: "absorption-standard",
-      elements: ["Ho"],
-    });
-    expect(holmium.cautions[0]!.title).toBe("Perchloric acid in a sealed cell.");
-    for (const source of [mercury, laser, holmium])
-      expect(source.cautions.at(-1)!.text).toMatch(/Wavekeep gives no permission to work\.$/);
-    const unknown = await lab.manager.client.post("/sources", {
-      label: "Q-1",
-      name: "Unknown",
-      kind: "low-pressure-lamp",
-      elements: ["Qq"],
-      laserLineNm: null,
-      maker: "",
-      serial: "",
-      builtIntoInstrumentId: null,
-      warmUpMinutes: 1,
-      reviewDueOn: null,
-      note: "",
-    });
-    expect(unknown.status).toBe(400);
-    const taken = await lab.manager.client.post("/sources", {
-      label: "hg-1",
-      name: "Another",
-      kind: "low-pressure-lamp",
-      elements: ["Hg"],
-      laserLineNm: null,
-      maker: "",
-      serial: "",
-      builtIntoInstrumentId: null,
-      warmUpMinutes: 1,
-      reviewDueOn: null,
-      note: "",
-    });
-    expect(taken.status).toBe(409);
-  });
-
-  test("a source past its review raises one alert; a new date closes it; a retired source is not taken", async () => {
-    const old = await buildSource(lab.manager, {
-      label: "KR-1",
-      name: "Krypton lamp",
-      elements: ["Kr"],
-      reviewDueOn: "2026-02-01",
-    });
-    await openDueAlerts(server.services, labVisit());
-    await openDueAlerts(server.services, labVisit());
-    const open = async () =>
-      (await tam.client.get("/alerts").expect(200)).body.items.filter(
-        (alert: { sourceId: string | null }) => alert.sourceId === old.id,
-      );
-    expect(await open()).toMatchObject([{ kind: "source-review", sourceLabel: "KR-1" }]);
-    const {
-      id: _,
-      version,
-      retiredAt: _r,
-      certificate: _c,
-      cautions: _k,
-      reviewDueDays: _d,
-      usedInChecks: _u,
-      builtIntoInstrumentName: _n,
-      ...form
-    } = old;
-    await lab.manager.client.put(`/sources/${old.id}`, { ...form, reviewDueOn: "2031-02-01", version }).expect(200);
-    expect(await open()).toEqual([]);
-    await lab.manager.client
-      .post(`/sources/${old.id}/retire`, { reason: "burnt out", version: version + 1 })
-      .expect(200);
-    const bench = await argonBench("Dotterel", 0.2);
-    const begun = await beginCheck(tam.client, bench.currentConfigurationId);
-    const reply = await tam.client.put(`/checks/${begun.summary.id}/draft`, { ...begun.draft, sourceIds: [old.id] });
-    expect(reply.status).toBe(400);
-    expect(reply.body.detail).toContain("KR-1 is retired");
-  });
-
-  test("a new lab has one procedure a kind, version 1, read-only", async () => {
-    const { body } = await tam.client.get("/procedures").expect(200);
-    expect(
-      body.items.map((procedure: { code: string; version: number; instrumentKind: string }) => [
-        procedure.code,
-        procedure.version,
-        procedure.instrumentKind,
-      ]),
-    ).toEqual([
-      ["A-1", 1, "array"],
-      ["M-1", 1, "scanning"],
-      ["R-1", 1, "raman"],
-      ["U-1", 1, "spectrophotometer"],
-    ]);
-    await expect(server.database.app.query("update procedures set version = 2")).rejects.toThrow(/permission denied/);
-  });
-
-  test("the spectrophotometer's procedure requires deuterium at 486.00 and 656.10 nm where its lamp has them", async () => {
-    const { body } = await tam.client.get("/procedures").expect(200);
-    const procedure = body.items.find((one: { code: string }) => one.code === "U-1");
-    expect(procedure).toMatchObject({ elements: ["D", "Hg"], requiredLinesNm: [486, 656.1] });
-  });
-
-  test("the line library in air and vacuum, by element and range, with its sources", async () => {
-    const { body: lists } = await tam.client.get("/line-lists").expect(200);
-    expect(lists.items[0]).toMatchObject({ version: "2026.1", lineCount: 718 });
-    const { body } = await tam.client.get("/line-lists/2026.1/lines?element=Hg&fromNm=546&toNm=547").expect(200);
-    // NIST Atomic Spectra Database 5.12: Hg I 546.0750 nm in air, 546.2268 nm in vacuum.
-    expect(
-      body.lines.map((line: { wavelengthAirNm: number; wavelengthVacuumNm: number }) => [
-        line.wavelengthAirNm,
-        line.wavelengthVacuumNm.toFixed(4),
-      ]),
-    ).toContainEqual([546.075, "546.2268"]);
-  });
-
-  test("search finds instruments, check numbers and people, and an owner's working copies are kept as typed", async () => {
+describe("finding and listing", () => {
+  test("search finds instruments, check numbers and people", async () => {
     const { body } = await tam.client.get("/search?q=dun").expect(200);
     expect(body.hits[0]).toMatchObject({ kind: "instrument", label: "Dunlin" });
     const { body: numbers } = await tam.client.get("/search?q=chk-").expect(200);
@@ -643,12 +477,12 @@ describe("sources, procedures, the line library, search", () => {
     expect(approved.items.length).toBeGreaterThan(2);
     expect(approved.items.every((item: { state: string }) => item.state === "approved")).toBe(true);
   });
+});
 
-  test("the chain of all this is whole", async () => {
-    const { body } = await lab.manager.client.get("/trail/state").expect(200);
-    // The test itself moved two times of one analysis and one draft as the owner; the chain says which entry that was.
-    expect(body.signaturesValid).toBe(true);
-    expect(body.breaks.every((found: { what: string }) => /analyses/.test(found.what))).toBe(true);
-    expect(body.breaks.length).toBeLessThanOrEqual(1);
-  });
+test("the chain of all this is whole", async () => {
+  const { body } = await lab.manager.client.get("/trail/state").expect(200);
+  // The test itself moved two times of one analysis and one draft as the owner; the chain says which entry that was.
+  expect(body.signaturesValid).toBe(true);
+  expect(body.breaks.every((found: { what: string }) => /analyses/.test(found.what))).toBe(true);
+  expect(body.breaks.length).toBeLessThanOrEqual(1);
 });

@@ -26,7 +26,8 @@ export async function beginCheck(
 
 /** Keep the working copy with something changed in it. */
 export async function saveDraft(client: Client, check: Check, change: Partial<Check["draft"]>): Promise<Check> {
-  return (await client.put(`/checks/${check.summary.id}/draft`, { ...check.draft, ...change }).expect(200)).body as Check;
+  return (await client.put(`/checks/${check.summary.id}/draft`, { ...check.draft, ...change }).expect(200))
+    .body as Check;
 }
 
 export async function analyse(client: Client, check: Check): Promise<Check> {
@@ -44,7 +45,11 @@ export async function submit(client: Client, check: Check): Promise<Check> {
 export const seenAll = { attempts: true, leftOut: true, settings: true, tolerance: true } as const;
 
 export async function approve(client: Client, check: Check): Promise<Check> {
-  const reply = await client.post(`/checks/${check.summary.id}/approve`, { password, revision: check.revision, seen: seenAll });
+  const reply = await client.post(`/checks/${check.summary.id}/approve`, {
+    password,
+    revision: check.revision,
+    seen: seenAll,
+  });
   if (reply.status !== 200) throw new Error(`approve answered ${reply.status}: ${JSON.stringify(reply.body)}`);
   return reply.body as Check;
 }
@@ -62,6 +67,37 @@ export async function measure(
 ): Promise<Check> {
   const begun = await beginCheck(client, configurationId, given.condition);
   await client.upload(`/checks/${begun.summary.id}/captures`, "files", given.captures, { part: "lamp" }).expect(200);
-  const drafted = await saveDraft(client, begun, { sourceIds: [given.sourceId], temperatureC: 21.4, minutesSinceSwitchOn: 20, ...given.change });
+  const drafted = await saveDraft(client, begun, {
+    sourceIds: [given.sourceId],
+    temperatureC: 21.4,
+    minutesSinceSwitchOn: 20,
+    ...given.change,
+  });
   return analyse(client, drafted);
+}
+
+/** A reply that is bytes. */
+export async function getBytes(
+  client: Client,
+  route: string,
+): Promise<{ status: number; type: string; bytes: Buffer }> {
+  const reply = await client
+    .get(route)
+    .buffer(true)
+    .parse((res, done) => {
+      const parts: Buffer[] = [];
+      res.on("data", (part: Buffer) => parts.push(part));
+      res.on("end", () => done(null, Buffer.concat(parts)));
+    });
+  return { status: reply.status, type: String(reply.headers["content-type"]), bytes: reply.body as Buffer };
+}
+
+/** The argon capture with its axis moved, as an instrument out of tolerance would have written it. */
+export function movedArgon(shiftNm: number, name = "moved.csv"): { name: string; bytes: Buffer }[] {
+  const [heading, ...lines] = realCapture("ar-arc-angstrom.csv").bytes.toString("utf8").trim().split("\n");
+  const moved = lines.map((line) => {
+    const [angstrom, value] = line.split(",");
+    return `${Number(angstrom) + shiftNm * 10},${value}`;
+  });
+  return [{ name, bytes: Buffer.from([heading, ...moved].join("\n")) }];
 }

@@ -18,10 +18,14 @@ export function pdfPages(pdf: Uint8Array): string[] {
     const map = /\/ToUnicode (\d+) 0 R/.exec(object.dictionary);
     if (map !== null) fonts.set(object.id, readUnicodeMap(objects.get(Number(map[1]))!.stream!.toString("latin1")));
   }
-  const pages = [...objects.values()].filter((object) => /\/Type \/Page\b(?!s)/.test(object.dictionary)).sort((a, b) => a.id - b.id);
+  const pages = [...objects.values()]
+    .filter((object) => /\/Type \/Page\b(?!s)/.test(object.dictionary))
+    .sort((a, b) => a.id - b.id);
   return pages.map((page) => {
     const resources = resolve(objects, /\/Resources (\d+) 0 R/.exec(page.dictionary)) ?? page.dictionary;
-    const names = new Map([...resources.matchAll(/\/(F\d+) (\d+) 0 R/g)].map((found) => [found[1]!, fonts.get(Number(found[2]))]));
+    const names = new Map(
+      [...resources.matchAll(/\/(F\d+) (\d+) 0 R/g)].map((found) => [found[1]!, fonts.get(Number(found[2]))]),
+    );
     const contents = objects.get(Number(/\/Contents (\d+) 0 R/.exec(page.dictionary)![1]))!;
     return textOf(contents.stream!.toString("latin1"), names);
   });
@@ -56,8 +60,9 @@ function readUnicodeMap(cmap: string): Map<number, string> {
   const map = new Map<number, string>();
   for (const found of cmap.matchAll(/<([0-9a-f]+)> <([0-9a-f]+)> \[([^\]]*)\]/gi)) {
     const first = parseInt(found[1]!, 16);
-    [...found[3]!.matchAll(/<([0-9a-f]+)>/gi)].forEach((letter, index) => {
-      map.set(first + index, Buffer.from(letter[1]!, "hex").swap16().toString("utf16le"));
+    // A ligature stands for several letters, written with a space between them.
+    [...found[3]!.matchAll(/<([0-9a-f ]+)>/gi)].forEach((letter, index) => {
+      map.set(first + index, Buffer.from(letter[1]!.replaceAll(" ", ""), "hex").swap16().toString("utf16le"));
     });
   }
   return map;
@@ -73,7 +78,8 @@ function textOf(content: string, fonts: Map<string, Map<number, string> | undefi
     }
     let text = "";
     for (const piece of found[2]!.matchAll(/<([0-9a-f]+)>/gi)) {
-      for (let at = 0; at < piece[1]!.length; at += 4) text += letters?.get(parseInt(piece[1]!.slice(at, at + 4), 16)) ?? "\uFFFD";
+      for (let at = 0; at < piece[1]!.length; at += 4)
+        text += letters?.get(parseInt(piece[1]!.slice(at, at + 4), 16)) ?? "\uFFFD";
     }
     parts.push(text);
   }

@@ -89,7 +89,7 @@ function circumstances(sheet: PdfSheet, facts: ReportFacts): void {
     ["Instrument", `${instrument.name}, ${kindWords[instrument.kind as keyof typeof kindWords]}`],
     [
       "Maker",
-      listText([instrument.maker, instrument.model, instrument.serial].filter((text) => text !== "")) || "not stated",
+      [instrument.maker, instrument.model, instrument.serial].filter((text) => text !== "").join(", ") || "not stated",
     ],
     ["Place", instrument.place || "not stated"],
     ["Owner", facts.ownerName],
@@ -227,7 +227,7 @@ function lines(sheet: PdfSheet, facts: ReportFacts): void {
   if (analysis.dispersion !== null) {
     const { degree, coefficients, rmsNm } = analysis.dispersion;
     sheet.paragraph(
-      `Axis fitted by this check: degree ${degree}, RMS ${rmsNm.toPrecision(2)}${narrowSpace}nm; nm in ascending powers of the pixel: ${coefficients.map((c) => c.toPrecision(12)).join(", ")}.`,
+      `Axis fitted by this check: degree ${degree}, RMS ${rmsNm.toPrecision(2)}${narrowSpace}nm; nm in ascending powers of the pixel: ${coefficients.map((c) => Number(c.toPrecision(12))).join(", ")}.`,
       { size: 8 },
     );
   }
