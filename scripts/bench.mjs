@@ -1,26 +1,33 @@
 /**
  * `npm run bench`: times of the two commands, cold (a fresh clone, an empty home folder) and warm, as rows for
- * docs/figures.md. `npm run bench -- start` measures npm start alone, `-- test` npm test alone.
+ * docs/figures.md. `npm run bench -- start` measures npm start alone, `-- test` npm test alone, `-- analyse` the measuring core.
  */
 import { spawn } from "node:child_process";
 import { once } from "node:events";
 import fs from "node:fs";
 import os from "node:os";
 import path from "node:path";
+import { pathToFileURL } from "node:url";
 import { cleanEnvironment, freePort, projectDir, runProgram } from "./processes.mjs";
-import { runCommand } from "./setup.mjs";
+import { ensureInstall, runCommand } from "./setup.mjs";
 
 const chosen = process.argv[2] ?? "all";
 const scratch = fs.mkdtempSync(path.join(os.tmpdir(), "wavekeep-bench-"));
 fs.chmodSync(scratch, 0o755);
 
 await runCommand(async () => {
+  if (chosen === "analyse") {
+    fs.rmSync(scratch, { recursive: true, force: true });
+    await ensureInstall();
+    const { ensureCommand } = await import("./build.mjs");
+    const { main } = await import(pathToFileURL(await ensureCommand("scripts/bench-analyse")).href);
+    return main();
+  }
   const clone = path.join(scratch, "wavekeep");
   const home = path.join(scratch, "home");
   fs.mkdirSync(home);
-  // Where packages come from is the machine's matter; what was fetched before is not carried over.
-  const npmrc = path.join(os.homedir(), ".npmrc");
-  if (fs.existsSync(npmrc)) fs.copyFileSync(npmrc, path.join(home, ".npmrc"));
+  // Where packages come from is the machine's matter: the settings are read where they are, nothing is carried over.
+  process.env["npm_config_userconfig"] ??= path.join(os.homedir(), ".npmrc");
   try {
     await runProgram("git", ["clone", "--quiet", "--depth", "1", `file://${projectDir}`, clone]);
     process.stdout.write(
