@@ -29,7 +29,7 @@ export function serveWeb(webDir: string): Router {
   const page = fs.readFileSync(path.join(webDir, "index.html"), "utf8");
   router.use(
     "/assets",
-    express.static(path.join(webDir, "assets"), { immutable: true, maxAge: "365d", index: false, fallthrough: false }),
+    express.static(path.join(webDir, "assets"), { immutable: true, maxAge: "365d", index: false }),
   );
   router.use(express.static(webDir, { index: false, maxAge: "1h" }));
   const sendPage: RequestHandler = (req, res, next) => {

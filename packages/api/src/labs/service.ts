@@ -3,6 +3,7 @@ import type { z } from "zod";
 import type { changeLabInput, LabSettings } from "../contract/people.ts";
 import { assertFresh, inLab, type Context } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
+import { canonicalText } from "../records/canonical.ts";
 import { writeTrail } from "../records/trail.ts";
 import type { Services } from "../services.ts";
 import { findLab, lockLab, saveLab, type LabRow } from "./queries.ts";
@@ -43,7 +44,7 @@ export function changeLab({ db, signer }: Services, ctx: Context, input: z.outpu
     const stored = await lockLab(tx, ctx.labId);
     assertFresh(stored, { version }, "The lab's settings");
     const { headMail, ...open } = change;
-    const changed = (Object.keys(open) as (keyof typeof open)[]).filter((key) => JSON.stringify(stored[key]) !== JSON.stringify(open[key]));
+    const changed = (Object.keys(open) as (keyof typeof open)[]).filter((key) => canonicalText(stored[key]) !== canonicalText(open[key]));
     const mailChanged = stored.headMail !== headMail;
     if (changed.length === 0 && !mailChanged) return present(stored, signer.fingerprint);
     await saveLab(tx, ctx.labId, change);

@@ -23,13 +23,24 @@ const because = (why: string | null): string => (why === null || why === "" ? ""
 const list = (value: unknown): string => (Array.isArray(value) && value.length > 0 ? value.map(text).join(", ") : "no role");
 const plural = (value: unknown, one: string, many: string): string => (value === 1 ? `1 ${one}` : `${text(value)} ${many}`);
 
-/** "place: from A to B; serial: …" for what changed; long values are left to the entry's details. */
+/** Units that names end in, as people read them. */
+const units: Record<string, string> = { Nm: "nm", M: "m", Px: "px", C: "°C", Hpa: "hPa" };
+
+/** `altitudeM` -> "altitude in m", `dueOn` -> "due on". */
+function wordsOf(key: string): string {
+  const [, stem, unit] = /^(.*[a-z])(Nm|M|Px|C|Hpa)$/.exec(key) ?? [];
+  const name = (stem ?? key).replace(/([a-z])([A-Z])/g, "$1 $2").toLowerCase();
+  return unit === undefined ? name : `${name} in ${units[unit]!}`;
+}
+
+/** " (place from A to B; serial …)": what changed; long and structured values are left to the entry's details. */
 export function changes({ before, after }: Pick<SentenceFacts, "before" | "after">): string {
   const keys = [...new Set([...Object.keys(before), ...Object.keys(after)])];
+  const isPlain = (value: unknown) => typeof value !== "object" || value === null;
   const parts = keys.map((key) => {
     const [from, to] = [text(before[key]), text(after[key])];
-    const name = key.replace(/([a-z])([A-Z])/g, "$1 $2").toLowerCase();
-    return from.length + to.length > 80 ? name : `${name} from ${from} to ${to}`;
+    const short = isPlain(before[key]) && isPlain(after[key]) && from.length + to.length <= 80;
+    return short ? `${wordsOf(key)} from ${from} to ${to}` : wordsOf(key);
   });
   return parts.length === 0 ? "" : ` (${parts.join("; ")})`;
 }
