@@ -131,9 +131,7 @@ describe("self-approval", () => {
       .put("/lab", { name, zone, altitudeM, warningShare, decisionRule, headMail, version, selfApproval: true })
       .expect(200);
     await lab.manager.client.post(path, body).expect(200);
-    const pages = pdfPages(
-      (await getBytes(lab.manager.client, `/checks/${submitted.summary.id}/report`)).body as Buffer,
-    );
+    const pages = pdfPages((await getBytes(lab.manager.client, `/checks/${submitted.summary.id}/report`)).bytes);
     for (const page of pages) expect(page).toContain("SELF-APPROVED");
     await lab.manager.client
       .put("/lab", {
