@@ -7,7 +7,7 @@
  *             instruments (pixel response, line shape) does not shrink with the brightness of a line
  * Degree      given, or the lowest whose leave-one-out RMS (a rejected line counted threefold) is within 5 % of the best; at most 5, and always two lines more
  *             than coefficients. When it was chosen so, the difference to the next higher degree enters the covariance
- * Left out    a line three times less sure than the median one
+ * Left out    a line three times less sure than the median one, or less than 15 % as bright over the noise
  * Rejection   a line whose studentised deleted residual is larger than chance allows (1 % over all lines), and than FWHM/50, is left out, one
  *             at a time, at most a fifth of the lines, each reported; never where fewer than three degrees of freedom remain
  * Refuses     too few lines, an axis that turns within the capture, values that are not finite
@@ -34,7 +34,11 @@ const rejectableShare = 0.2;
 const unremarkableShare = 0.02;
 /** A line this many times less sure than the median one (a ninth of its weight) is left out from the start. */
 const vagueFactor = 3;
+/** A line fainter than this share of the median one is left out where at least this many surer lines remain. */
+const faintShare = 0.15;
+const fewestBesideFaint = 8;
 const freedomForAgreement = 6;
+const leastAgreedScale = 0.1;
 /** Size at which a rejected line counts when degrees are compared, in leave-one-out RMS. */
 const outlierSize = 3;
 const sampleCount = 11;
@@ -51,6 +55,8 @@ export interface DispersionPoint {
   wavelengthNm: number;
   /** Standard uncertainty of the wavelength (reference, blend), nm; 0 is allowed. */
   wavelengthUncNm: number;
+  /** Height over noise, where known: lines much fainter than the others are left out. */
+  signalToNoise?: number;
 }
 
 export interface DispersionOptions {
@@ -243,8 +249,10 @@ function costOf(fit: Fit, rejected: number): number {
 }
 
 /**
- * Lines so much less sure than the others that they would only blur the picture: left out before anything is chosen.
- * Their uncertainty counts together with the scatter all lines share, so that bright lines do not crowd out sound ones.
+ * Lines so much less sure, or so much fainter, than the others that they would only blur the picture: left out before
+ * anything is chosen. The uncertainty counts together with the scatter all lines share, so that bright lines do not crowd
+ * out sound ones; the brightness counts beside it because fits on skewed or boxy lines state an uncertainty that is about
+ * the same for bright lines, which share their shape and so its error, and for faint ones, which have noise on top.
  */
 function setVagueAside(
   points: readonly DispersionPoint[],
@@ -252,19 +260,44 @@ function setVagueAside(
   used: boolean[],
   degree: number,
   fewest: number,
-): Set<number> {
-  const vague = new Set<number>();
+): Map<number, string> {
+  const vague = new Map<number, string>();
   if (points.length <= fewest) return vague;
-  const { unc } = fitOnce(points, ownUncNm, used, degree);
+  const unc = agreedUncNm(points, fitOnce(points, ownUncNm, used, degree));
+  const usualUnc = medianOf(Array.from(unc));
+  const brightness = points.map((point) => point.signalToNoise ?? Number.POSITIVE_INFINITY);
+  const faintBelow = faintShare * medianOf(brightness.slice());
+  const clearCount = brightness.filter((value) => value >= faintBelow).length;
   const order = points.map((_, i) => i).sort((a, b) => (unc[a] as number) - (unc[b] as number) || a - b);
-  const usual = unc[order[(order.length - 1) >> 1] as number] as number;
-  for (const i of order.slice(fewest)) {
-    if ((unc[i] as number) <= vagueFactor * usual) continue;
-    vague.add(i);
-    used[i] = false;
-  }
+  order.forEach((i, rank) => {
+    if ((unc[i] as number) > vagueFactor * usualUnc && rank >= fewest) {
+      const stated = (ownUncNm[i] as number).toFixed(4);
+      vague.set(i, `Its uncertainty, ${stated} nm, is more than ${vagueFactor} times that of the usual line here`);
+    } else if ((brightness[i] as number) < faintBelow && clearCount >= fewestBesideFaint) {
+      vague.set(i, `It stands out of the noise less than ${faintShare * 100} % as far as the usual line here`);
+    }
+  });
+  for (const i of vague.keys()) used[i] = false;
   return vague;
 }
+
+/**
+ * Uncertainty of each line as the lines' own agreement shows it: where many agree better than their positions' stated
+ * uncertainties, those are scaled down, while what a reference or a blend leaves open stays.
+ */
+function agreedUncNm(points: readonly DispersionPoint[], fit: Fit): Float64Array {
+  const { residuals, degreesOfFreedom } = fit.linear;
+  if (degreesOfFreedom < freedomForAgreement) return fit.unc;
+  const typical =
+    1.4826 * medianOf(Array.from(residuals, (residual, k) => Math.abs(residual / (fit.unc[k] as number))));
+  const scale = Math.min(1, Math.max(typical, leastAgreedScale));
+  return Float64Array.from(points, (point, k) => {
+    const open = point.wavelengthUncNm * point.wavelengthUncNm;
+    return Math.sqrt(scale * scale * ((fit.unc[k] as number) * (fit.unc[k] as number) - open) + open);
+  });
+}
+
+const medianOf = (values: number[]): number => values.sort((a, b) => a - b)[(values.length - 1) >> 1] as number;
 
 /** Takes out, one at a time, lines that the others contradict; returns the fit without them. */
 function rejectOutliers(
@@ -313,7 +346,7 @@ function finish(
   points: readonly DispersionPoint[],
   ownUncNm: Float64Array,
   used: readonly boolean[],
-  vague: ReadonlySet<number>,
+  vague: ReadonlyMap<number, string>,
   degree: number,
   options: DispersionOptions,
 ): FittedDispersion | DispersionRefusal {
@@ -373,8 +406,7 @@ function finish(
               {
                 line,
                 reason: vague.has(line)
-                  ? `Its uncertainty, ${(ownUncNm[line] as number).toFixed(4)} nm, is more than ${vagueFactor} times that of the usual line here: ` +
-                    "it could add nothing to the axis and was left out of it."
+                  ? `${vague.get(line)}: it could add nothing to the axis and was left out of it.`
                   : `${Math.abs(residualsNm[line] as number).toFixed(4)} nm from the axis through the other lines, whose ` +
                     `scatter is ${scatter.toFixed(4)} nm: more than chance allows, so it was left out of the axis.`,
               },

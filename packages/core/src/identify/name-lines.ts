@@ -2,20 +2,25 @@
  * Line by line: which published line is this one, once the axis is known?
  *
  * A name needs a place and odds.
- * Place   within 3.5 standard uncertainties (line, axis without that line, scatter) and 0.22 FWHM of a published line, with
- *         no other published line that the axis could not tell from it
- * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 80: density of the place times s/(1 - s), s the share of its class (published lines of about its
- *         strength) that was found, against strays of its brightness spread evenly over the capture;
- *         a height far from what its published intensity leads to expect counts against it, by no more than a factor of 90
- * Blends  published lines that no other found line claims and that lie within three quarters of a FWHM belong to one found
- *         line. Companions below 5 % of the strongest of the group give no name; what they may pull stays as uncertainty. If
- *         the place, judged by the other lines' axis, is nearer to one component than to the common centroid, the capture
- *         itself shows that this one carries most of the light: it gives the name, with its distance as uncertainty; else the centroid, whatever the published intensities, with half the spread / sqrt 3
+ * Place   known to 0.3 FWHM from the other lines; within 3.5 standard uncertainties (line, axis without that line, scatter)
+ *         and 0.22 FWHM of a published line, with no other one that the axis could not tell from it; and among the lines
+ *         next to it that are not much fainter, at least a third lie on published lines too
+ * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 80: density of the place times
+ *         s/(1 - s), s the share of its class (published lines of about its strength) that was found, against strays of its
+ *         brightness spread evenly over the capture; a height far from what its published intensity leads to expect counts
+ *         against it, by no more than a factor of 90
+ * Blends  published lines that no other found line claims and that lie within 0.6 FWHM of it belong to one found line.
+ *         Companions below 12 % of the strongest of the group (0.5 % where they belong to another spectrum) give no name;
+ *         what they may pull stays as uncertainty. If the place, judged by the other lines' axis, is nearer to one component
+ *         than to the common centroid, the capture itself shows that this one carries most of the light: it gives the name,
+ *         with its distance as uncertainty; else the centroid, whatever the published intensities, with half the
+ *         spread / sqrt 3
  */
 import { exp, log } from "../numeric/elementary.ts";
 import { fitCorrection, type CorrectionFit } from "./correction.ts";
 import type { Problem } from "./problem.ts";
-import { lowerBound, type ReferenceTable } from "./reference-table.ts";
+import type { ReferenceLine } from "../analysis/types.ts";
+import { isIon, lowerBound, type ReferenceTable } from "./reference-table.ts";
 import { correctedNm } from "./score.ts";
 
 const gateSds = 3.5;
@@ -23,10 +28,13 @@ const gateShare = 0.22;
 const saturatedGateShare = 0.35;
 const holdingGateShare = 0.3;
 const leastGateShare = 0.05;
+const vaguePlaceShare = 0.3;
 const rivalSds = 4;
 const rivalShare = 0.1;
-const blendReachShare = 0.75;
-const companionShare = 0.05;
+const blendReachShare = 0.6;
+const companionShare = 0.12;
+/** Between spectra published intensities do not compare: only next to nothing is ignored there. */
+const companionShareOfOthers = 0.005;
 /** Published ratios are good to a factor of three: an ignored companion pulls by up to this times its published share. */
 const companionFactor = 2;
 const negligiblePullNm = 0.0003;
@@ -34,8 +42,16 @@ const negligiblePullNm = 0.0003;
 const fewestForAgreement = 7;
 const leastShrink = 0.3;
 /** A component that may carry a blend: at least this share of the group's strongest. */
-const carrierShare = 0.2;
+const carrierShare = 0.5;
 const leastOdds = 80;
+/** Of a faint line at or beyond the outermost explained one, where nothing bears the axis out, more is asked. */
+const leastOddsOutside = 400;
+/** Strays expected before any is seen: among lines near the faintest found one unlisted lines are common. */
+const brightStrays = 0.5;
+const faintStrays = 2;
+const faintFactor = 4;
+/** Lines of ions are seldom seen: what counts in place of the first two of their class. */
+const ionPrior = 0.2;
 const largestHeightPenalty = 4.5;
 /** Smallest scatter of ln(height/strength) believed: lamps differ from the tables by a factor of three (1 sd) and more. */
 const leastHeightScatter = 1.5;
@@ -122,7 +138,8 @@ function dropWeakCompanions(table: ReferenceTable, share: number[]): number {
   let pull = 0;
   for (const j of share) {
     const ratio = (table.brightness[j] as number) / (table.brightness[strongest] as number);
-    if (ratio >= companionShare || table.expected[j]) share[kept++] = j;
+    const isSame = table.lines[j]?.spectrum === table.lines[strongest]?.spectrum;
+    if (ratio >= (isSame ? companionShare : companionShareOfOthers) || table.expected[j]) share[kept++] = j;
     else pull += companionFactor * ratio * Math.abs((table.nm[j] as number) - (table.nm[strongest] as number));
   }
   share.length = kept;
@@ -230,7 +247,12 @@ function decide(
     // Where the line itself held the axis, its place on an axis without it.
     const here = places[i] as number;
     const place = Number.isNaN(target[i] as number) ? here : (target[i] as number) - (fit.leaveOneOutNm[i] as number);
-    const name = share.length === 1 ? plainName(table, share) : blendName(table, share, place, sd);
+    const name =
+      share.length === 1
+        ? plainName(table, share)
+        : blendName(table, share, place, Math.sqrt(axis * axis + fit.scatterNm * fit.scatterNm));
+    // A line that alone says where the axis runs there can't be checked by it.
+    if (axis > vaguePlaceShare * fwhmNm) continue;
     const reach = name.isCentroid ? Math.max(gate, 1.6 * name.blendUncNm) : gate;
     if (Math.abs(name.nm - here) > most || Math.abs(name.nm - place) > reach) continue;
     naming.explained[i] = 1;
@@ -284,7 +306,8 @@ function plainName(table: ReferenceTable, share: readonly number[]): Name {
   return { reference, nm: table.nm[reference] as number, blendUncNm: 0, isCentroid: false };
 }
 
-function blendName(table: ReferenceTable, share: readonly number[], place: number, sd: number): Name {
+/** `axisSd`: how sure the place is but for the line's own fit, whose uncertainty is counted with the position. */
+function blendName(table: ReferenceTable, share: readonly number[], place: number, axisSd: number): Name {
   let strongest = share[0] as number;
   for (const j of share) if ((table.brightness[j] as number) > (table.brightness[strongest] as number)) strongest = j;
   const first = table.nm[share[0] as number] as number;
@@ -297,7 +320,7 @@ function blendName(table: ReferenceTable, share: readonly number[], place: numbe
     // Nearer to this component than to any other and than to the middle: this one carries the light, or most of it.
     if (off >= Math.abs(middle - place) || share.some((k) => Math.abs((table.nm[k] as number) - place) < off)) continue;
     if ((table.brightness[j] as number) < carrierShare * (table.brightness[strongest] as number)) continue;
-    return { reference: j, nm, blendUncNm: Math.min(open, Math.sqrt(off * off + sd * sd)), isCentroid: false };
+    return { reference: j, nm, blendUncNm: Math.min(open, Math.sqrt(off * off + axisSd * axisSd)), isCentroid: false };
   }
   return { reference: strongest, nm: middle, blendUncNm: open, isCentroid: true };
 }
@@ -326,11 +349,19 @@ function keepLikely(
   const { count } = problem;
   let low = Number.POSITIVE_INFINITY;
   let high = Number.NEGATIVE_INFINITY;
+  let firstExplained = Number.POSITIVE_INFINITY;
+  let lastExplained = Number.NEGATIVE_INFINITY;
+  let faintest = Number.POSITIVE_INFINITY;
   const strayHeights: number[] = [];
   const heights: number[] = [];
   for (let i = 0; i < count; i++) {
     low = Math.min(low, places[i] as number);
     high = Math.max(high, places[i] as number);
+    if (problem.usable[i] === 1) faintest = Math.min(faintest, problem.heightCounts[i] as number);
+    if (naming.explained[i] === 1) {
+      firstExplained = Math.min(firstExplained, places[i] as number);
+      lastExplained = Math.max(lastExplained, places[i] as number);
+    }
     const reference = naming.reference[i] as number;
     if (naming.explained[i] === 0 && problem.usable[i] === 1 && (shares[i] as number[]).length === 0)
       strayHeights.push(problem.heightCounts[i] as number);
@@ -345,11 +376,20 @@ function keepLikely(
   for (let i = 0; i < count; i++) {
     if ((naming.reference[i] as number) >= 0) for (const j of naming.components[i] as number[]) found[j] = 1;
   }
+  const order: number[] = [];
+  for (let i = 0; i < count; i++) if (problem.usable[i] === 1) order.push(i);
+  order.sort((a, b) => (places[a] as number) - (places[b] as number));
   for (let i = 0; i < count; i++) {
     const reference = naming.reference[i] as number;
     if (reference < 0) continue;
+    if (standsAlone(problem, naming, order, i)) {
+      naming.reference[i] = -1;
+      naming.components[i] = [];
+      continue;
+    }
     const height = problem.heightCounts[i] as number;
-    let strays = 0.5;
+    const isFaint = height < faintFactor * faintest;
+    let strays = isFaint ? faintStrays : brightStrays;
     for (const other of strayHeights) if (other >= strayHeightShare * height) strays += 1;
     const brighter = (brightness(problem, table, i, reference) - usual) / scatter;
     // The top of a saturated line is cut off: that it looks dim says nothing.
@@ -361,10 +401,30 @@ function keepLikely(
       log(strays / range) -
       Math.min(0.5 * z * z, largestHeightPenalty);
     naming.logOdds[i] = odds;
-    if (exp(odds) >= leastOdds) continue;
+    const isOutside = (places[i] as number) <= firstExplained || (places[i] as number) >= lastExplained;
+    if (exp(odds) >= (isFaint && isOutside ? leastOddsOutside : leastOdds)) continue;
     naming.reference[i] = -1;
     naming.components[i] = [];
   }
+}
+
+/** Whether most of the lines next to one, two each way and not much fainter, are no published lines. */
+function standsAlone(problem: Problem, naming: Naming, order: readonly number[], i: number): boolean {
+  const at = order.indexOf(i);
+  const least = strayHeightShare * (problem.heightCounts[i] as number);
+  let neighbours = 0;
+  let explained = 0;
+  for (const step of [-1, 1]) {
+    let taken = 0;
+    for (let k = at + step; k >= 0 && k < order.length && taken < 2; k += step) {
+      const other = order[k] as number;
+      if ((problem.heightCounts[other] as number) < least) continue;
+      taken += 1;
+      neighbours += 1;
+      explained += naming.explained[other] as number;
+    }
+  }
+  return neighbours >= 3 && 3 * explained < neighbours;
 }
 
 const brightness = (problem: Problem, table: ReferenceTable, i: number, j: number): number =>
@@ -391,5 +451,5 @@ function shareFound(table: ReferenceTable, found: Uint8Array, reference: number,
     }
     if (all >= 4) break;
   }
-  return (seen + 1) / (all + 2);
+  return (seen + (isIon(table.lines[reference] as ReferenceLine) ? ionPrior : 1)) / (all + 2);
 }

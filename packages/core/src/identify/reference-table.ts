@@ -92,7 +92,8 @@ export function referenceTable(
   return { nm, strength, brightness, lines: kept.map((entry) => entry.line), expected };
 }
 
-const isIon = (line: ReferenceLine): boolean => !line.spectrum.endsWith(" I") && line.spectrum.includes(" ");
+/** Whether a line belongs to an ion rather than to the neutral atom. */
+export const isIon = (line: ReferenceLine): boolean => !line.spectrum.endsWith(" I") && line.spectrum.includes(" ");
 const uncertaintyOf = (line: ReferenceLine): number => line.uncertaintyNm ?? Number.POSITIVE_INFINITY;
 
 /** Third-strongest published intensity of each spectrum (the strongest where there are fewer than three). */
