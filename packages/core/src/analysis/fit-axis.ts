@@ -6,13 +6,12 @@ import { axisNm, axisSlope } from "../dispersion/axis.ts";
 import { fitDispersion } from "../dispersion/fit-dispersion.ts";
 import type { IdentifiedLines } from "../identify/identify-lines.ts";
 import type { FoundLines } from "../spectrum/find-lines.ts";
-import { median } from "../spectrum/median.ts";
 import type { JudgedLineResult } from "./judge-lines.ts";
 import { referenceMedium } from "./reference-medium.ts";
 import type { AnalysisSetup, AxisMeaning, Dispersion, Spectrum } from "./types.ts";
 
-/** Lines less sure than so many times the median line stay out of the axis. */
-const leastSureInAxis = 3;
+/** A rejected line is called an outlier when it lies this many of its own standard uncertainties off; else it was merely not sure enough. */
+const outlierSigmas = 2.5;
 
 /** A new axis from the named lines of a pixel or step axis; marks what was used and what was rejected. */
 export function fitAxis(
@@ -23,27 +22,17 @@ export function fitAxis(
   identified: IdentifiedLines,
 ): Dispersion | null {
   if (identified.outcome !== "identified" || spectrum.axisKind === "wavenumber") return null;
-  const eligible = lines.map((_, index) => index).filter((index) => lines[index]!.fitsAxis);
+  const used = lines.map((_, index) => index).filter((index) => lines[index]!.fitsAxis);
   const meaning = meaningOf(setup);
   const medium = referenceMedium(meaning, setup.room);
-  const uncNm = eligible.map((index) => {
-    const name = identified.names[index]!;
-    const line = found.lines[index]!;
-    const slope = identified.axis === null ? 1 : axisSlope(identified.axis, line.position);
-    const fit = line.positionUnc * slope;
-    return Math.sqrt(fit * fit + name.referenceUncNm * name.referenceUncNm + name.blendUncNm * name.blendUncNm);
-  });
-  // A line far less sure than the others weighs nothing in the fit and only hides what the others agree on.
-  const limit = leastSureInAxis * median(uncNm);
-  const used = eligible.filter((_, k) => !(uncNm[k]! > limit));
   const points = used.map((index) => {
     const name = identified.names[index]!;
     const line = found.lines[index]!;
     return {
       position: line.position,
       positionUnc: line.positionUnc,
-      signalToNoise: line.signalToNoise,
       wavelengthNm: medium.referenceNm(name.wavelengthNm, name.medium),
+      signalToNoise: line.signalToNoise,
       wavelengthUncNm: Math.sqrt(name.referenceUncNm * name.referenceUncNm + name.blendUncNm * name.blendUncNm),
     };
   });
@@ -64,7 +53,11 @@ export function fitAxis(
     const isRejected = rejected.some((one) => one.line === index);
     result.usedInAxis = !isRejected;
     result.residualNm = fitted.residualsNm[point]!;
-    if (isRejected) result.flags.push("outlier");
+    if (!isRejected) return;
+    const { position, positionUnc, wavelengthUncNm } = points[point]!;
+    const positionUncNm = positionUnc * axisSlope(fitted.dispersion.axis, position);
+    const uncNm = Math.sqrt(positionUncNm * positionUncNm + wavelengthUncNm * wavelengthUncNm);
+    if (Math.abs(result.residualNm) > outlierSigmas * uncNm) result.flags.push("outlier");
   });
   return { ...fitted.dispersion, rejected };
 }
