@@ -20,6 +20,15 @@ type Sentence = (facts: SentenceFacts) => string;
 const text = (value: unknown): string =>
   value === null || value === undefined || value === "" ? "none" : Array.isArray(value) ? value.map(text).join(", ") : typeof value === "object" ? JSON.stringify(value) : String(value);
 const because = (why: string | null): string => (why === null || why === "" ? "" : `: “${why}”`);
+/** A finding of Wavekeep's own, not quoted. */
+const stated = (why: string | null): string => (why === null || why === "" ? "" : `: ${why.replace(/\.$/, "")}`);
+const forOwner = (after: Record<string, unknown>): string => (after["forOwner"] === true ? ", for the owner" : "");
+const verdict = (after: Record<string, unknown>): string =>
+  ({ pass: after["nearLimit"] === true ? "in tolerance, near the limit" : "in tolerance", inconclusive: "inconclusive", fail: "out of tolerance" })[
+    text(after["verdict"])
+  ] ?? "not judged";
+const leftOut = ({ leftOut: count }: Record<string, unknown>): string =>
+  typeof count !== "number" || count === 0 ? "nothing left out" : plural(count, "line left out", "lines left out");
 const list = (value: unknown): string => (Array.isArray(value) && value.length > 0 ? value.map(text).join(", ") : "no role");
 const plural = (value: unknown, one: string, many: string): string => (value === 1 ? `1 ${one}` : `${text(value)} ${many}`);
 
@@ -73,10 +82,10 @@ export const sentences: Record<TrailAction, Sentence> = {
   "configuration.changed": (f) => `changed the configuration of ${f.label}${changes(f)}`,
   "tolerance.changed": ({ label, why }) => `set a new tolerance for ${label}${because(why)}`,
   "standing.changed": ({ label, before, after, why }) => `moved ${label} from ${text(before["standing"])} to ${text(after["standing"])}${because(why)}`,
-  "hold.placed": ({ label, why }) => `put ${label} on hold${because(why)}`,
+  "hold.placed": ({ label, why }) => `put ${label} on hold${stated(why)}; a manager confirms or lifts it`,
   "hold.confirmed": ({ label, after, why }) => `confirmed the hold on ${label}: ${text(after["standing"])}${because(why)}`,
   "hold.lifted": ({ label, why }) => `lifted the hold on ${label}${because(why)}`,
-  "hold.ended": ({ label, why }) => `put ${label} back in service${because(why)}`,
+  "hold.ended": ({ label, why }) => `put ${label} back in service${stated(why)}`,
   "due.moved": ({ label, before, after, why }) => `moved the next check of ${label} from ${text(before["dueOn"])} to ${text(after["dueOn"])}${because(why)}`,
   "event.logged": ({ label, after }) => `logged for ${label}: ${text(after["title"])}`,
   "axis.entered": ({ label, after }) => `entered axis ${text(after["number"])} of ${label}`,
@@ -90,29 +99,32 @@ export const sentences: Record<TrailAction, Sentence> = {
   "line-list.added": ({ label }) => `added line list ${label}`,
 
   "check.begun": ({ label, after }) => `began check ${label}${after["condition"] === undefined ? "" : `, ${text(after["condition"])}`}`,
-  "captures.stored": ({ label, after }) => `stored ${plural(after["count"], "capture", "captures")} for ${label}`,
+  "captures.stored": ({ label, after }) =>
+    `brought in ${plural(after["count"], "capture", "captures")} for ${label}${after["part"] === "dark" ? ", dark" : ""}, attempt ${text(after["attempt"])}; stored byte for byte before anything was read`,
   "attempt.begun": ({ label, after, why }) => `abandoned an attempt of ${label} and began attempt ${text(after["attempt"])}${because(why)}`,
-  "analysis.made": ({ label, after }) => `analysed ${label}: ${text(after["verdict"] ?? after["outcome"])}`,
-  "line.left-out": ({ label, after, why }) => `left out the line at ${text(after["wavelengthNm"])}\u202fnm in ${label}, ${text(after["reason"])}${because(why)}`,
+  "analysis.made": ({ label, after }) => `analysed ${label}, version ${text(after["version"])}: ${after["verdict"] === null ? text(after["outcome"]) : verdict(after)}`,
+  "line.left-out": ({ label, after, why }) =>
+    `left out ${after["species"] ? `${text(after["species"])} ` : "the line at "}${text(after["wavelengthNm"])}\u202fnm in ${label}, ${text(after["reason"])}${because(why)}`,
   "line.brought-back": ({ label, before }) => `took the line at ${text(before["wavelengthNm"])}\u202fnm back into ${label}`,
   "draft.changed": (f) => `changed the draft of ${f.label}${changes(f)}`,
   "check.set-aside": ({ label, why }) => `set ${label} aside${because(why)}`,
-  "check.submitted": ({ label, after }) => `signed ${label} as its maker and submitted it: ${text(after["verdict"])}`,
+  "check.submitted": ({ label, after }) => `signed ${label} “made by” and submitted it: ${verdict(after)}; ${leftOut(after)}`,
   "check.returned": ({ label, why }) => `sent ${label} back${because(why)}`,
-  "check.approved": ({ label }) => `reviewed and approved ${label}`,
-  "check.acknowledged": ({ label, why }) => `took note of ${label}${because(why)}`,
+  "check.approved": ({ label, after }) => `signed ${label} “reviewed and approved”: ${verdict(after)}${after["selfApproval"] === true ? ", a self-approval" : ""}; the record is locked`,
+  "check.acknowledged": ({ label, after, why }) => `took note of ${label}${forOwner(after)}${because(why)}`,
   "check.voided": ({ label, why }) => `voided ${label}${because(why)}`,
   "as-left.asked": ({ label }) => `asked for an as-left check of ${label}`,
-  "report.made": ({ label }) => `made the report of ${label}`,
+  "report.made": ({ label, after }) => `made report ${text(after["number"])} of ${label}`,
   "report.read": ({ label }) => `took a copy of the report of ${label}`,
   "capture.read": ({ label }) => `took a copy of the capture ${label}`,
 
-  "alert.opened": ({ label, why }) => `opened an alert: ${label}${because(why)}`,
-  "alert.closed": ({ label, why }) => `closed the alert: ${label}${because(why)}`,
-  "alert.reopened": ({ label, why }) => `opened an alert again: ${label}${because(why)}`,
-  "alert.acknowledged": ({ label, why }) => `acknowledged the alert: ${label}${because(why)}`,
-  "impact.opened": ({ label }) => `opened the impact review ${label}`,
-  "impact.decided": ({ label, why }) => `decided the impact review ${label}${because(why)}`,
+  "alert.opened": ({ label, why }) => `opened an alert: ${label}${stated(why)}`,
+  "alert.closed": ({ label, why }) => `closed the alert: ${label}${stated(why)}`,
+  "alert.reopened": ({ label, why }) => `opened an alert again: ${label}${stated(why)}`,
+  "alert.acknowledged": ({ label, after, why }) => `acknowledged the alert: ${label}${forOwner(after)}${because(why)}`,
+  "impact.opened": ({ label, after }) =>
+    `opened the impact review ${label}${after["windowFromCheck"] ? `: from the last good check, ${text(after["windowFromCheck"])}, to ${text(after["check"])}` : ": no good check is on record before"}`,
+  "impact.decided": ({ label, after, why }) => `decided the impact review ${label}${forOwner(after)}${because(why)}`,
   "mail.sent": ({ label, after }) => `mailed ${label}: ${text(after["subject"])}`,
   "mail.failed": ({ label, after }) => `could not mail ${label}: ${text(after["subject"])}`,
   "head.signed": ({ after }) => `signed the head of the trail, entry ${text(after["number"])}`,
