@@ -13,6 +13,8 @@ export default defineConfig({
     target: "es2022",
     // Fonts stay files of their own: fetched before the first drawing, cached apart from the style sheet.
     assetsInlineLimit: 0,
+    // React, router, queries and the contract together; every page and drawing is a piece of its own.
+    chunkSizeWarningLimit: 600,
   },
   worker: { format: "es" },
   server: {

@@ -49,6 +49,7 @@ export function drawSpectrum(
   return {
     x: thinned.map((i) => toX(spectrum.positions[i]!)),
     counts: thinned.map((i) => spectrum.counts[i]!),
+    baseline: thinned.map((i) => found.baseline[i]!),
     axisLabel: inNm ? "Wavelength" : spectrum.axisKind === "step" ? "Drive step" : "Pixel",
     axisUnit: inNm ? "nm" : spectrum.axisUnit,
     ceilingCounts: found.ceilingCounts,

@@ -368,6 +368,8 @@ export interface SpectrumDrawing {
   /** Wavelength in nm of each drawn sample; the position where nothing was identified (then `axisLabel` says so). */
   x: number[];
   counts: number[];
+  /** Baseline under each drawn sample, counts: what a net spectrum leaves off. */
+  baseline: number[];
   axisLabel: string;
   axisUnit: AxisUnit;
   ceilingCounts: number | null;

@@ -1,7 +1,15 @@
 /**
  * Draws a dropped file ahead of the server: read and thin, nothing judged. Pure; runs in the draw worker.
  */
-import { axisNm, coreVersion, defaultSetup, readCapture, type Analysis, type PixelAxis, type SpectrumDrawing } from "@wavekeep/core";
+import {
+  axisNm,
+  coreVersion,
+  defaultSetup,
+  readCapture,
+  type Analysis,
+  type PixelAxis,
+  type SpectrumDrawing,
+} from "@wavekeep/core";
 
 export type DrawnCapture =
   | { outcome: "drawn"; analysis: Analysis; drawing: SpectrumDrawing; rows: number }
@@ -11,7 +19,11 @@ export type DrawnCapture =
 export const mostPairs = 4096;
 
 /** Keeps the least and the greatest of each of at most `pairs` equal runs, in their order: no peak is lost. */
-export function thin(x: readonly number[], counts: readonly number[], pairs: number): { x: number[]; counts: number[] } {
+export function thin(
+  x: readonly number[],
+  counts: readonly number[],
+  pairs: number,
+): { x: number[]; counts: number[] } {
   if (x.length <= 2 * pairs) return { x: [...x], counts: [...counts] };
   const kept: { x: number[]; counts: number[] } = { x: [], counts: [] };
   for (let pair = 0; pair < pairs; pair++) {
@@ -49,12 +61,15 @@ export function drawCapture(bytes: Uint8Array, name: string, axis: PixelAxis | n
     x.push(isPixel && axis !== null ? axisNm(axis, position) : position);
     counts.push(value);
   });
+  const drawn = thin(x, counts, mostPairs);
   const axisUnit = isPixel && axis !== null ? "nm" : spectrum.axisUnit;
   return {
     outcome: "drawn",
     rows: facts.rows,
     drawing: {
-      ...thin(x, counts, mostPairs),
+      ...drawn,
+      // Counts as written: what lies under the lines is the analysis's to say.
+      baseline: drawn.x.map(() => 0),
       axisLabel: axisUnit === "nm" ? "nm, not yet checked" : axisUnit,
       axisUnit,
       ceilingCounts: spectrum.fullScaleCounts,

@@ -1,9 +1,10 @@
 import { expect, test } from "vitest";
-import { benchRegisters, countsRuler, panBy, zoomAbout } from "./bench-layout.ts";
+import { benchRegisters, countsRuler, netDrawing, panBy, zoomAbout } from "./bench-layout.ts";
 
 const drawing = {
   x: [0, 1, 2],
   counts: [0, 62_500, 100],
+  baseline: [0, 0, 0],
   axisLabel: "air, nm",
   axisUnit: "nm" as const,
   ceilingCounts: 65_535,
@@ -45,4 +46,17 @@ test("zooming keeps the place under the pointer and never leaves the whole", () 
   expect(zoomAbout([350, 650], [200, 800], 350, 0.5)).toEqual([350, 500]);
   expect(zoomAbout([350, 650], [200, 800], 400, 100)).toEqual([200, 800]);
   expect(panBy([350, 650], [200, 800], 10)).toEqual([500, 800]);
+});
+
+test("net counts leave off one baseline under trace, fits and ceiling", () => {
+  const net = netDrawing({
+    ...drawing,
+    counts: [100, 600, 300],
+    baseline: [100, 200, 300],
+    ceilingCounts: 65_535,
+    fits: [{ line: 0, x: [0.5, 1], counts: [400, 600], baseline: [140, 200] }],
+  });
+  expect(net.counts).toEqual([0, 400, 0]);
+  expect(net.fits[0]).toEqual({ line: 0, x: [0.5, 1], counts: [250, 400], baseline: [-10, 0] });
+  expect(net.ceilingCounts).toBe(65_335);
 });

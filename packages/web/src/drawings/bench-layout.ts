@@ -81,6 +81,53 @@ export function countsRuler(
   };
 }
 
+/** Value of `ys` at `x` by straight lines between its ascending `xs`; the ends hold beyond them. */
+function interpolate(xs: readonly number[], ys: readonly number[], x: number): number {
+  let low = 0;
+  let high = xs.length - 1;
+  if (high < 0) return 0;
+  if (x <= (xs[low] ?? 0)) return ys[low] ?? 0;
+  if (x >= (xs[high] ?? 0)) return ys[high] ?? 0;
+  while (high - low > 1) {
+    const middle = (low + high) >> 1;
+    if ((xs[middle] ?? 0) <= x) low = middle;
+    else high = middle;
+  }
+  const [x0 = 0, x1 = 0, y0 = 0, y1 = 0] = [xs[low], xs[high], ys[low], ys[high]];
+  return x1 === x0 ? y0 : y0 + ((y1 - y0) * (x - x0)) / (x1 - x0);
+}
+
+/**
+ * Net counts: trace, fits and ceiling less the baseline under them, the same baseline for all three, so that a fit lies
+ * on its trace. The ceiling, one height for the whole spectrum, is lowered by the baseline's median.
+ */
+export function netDrawing(drawing: SpectrumDrawing): SpectrumDrawing {
+  const sorted = [...drawing.baseline].sort((a, b) => a - b);
+  const median = sorted[sorted.length >> 1] ?? 0;
+  return {
+    ...drawing,
+    counts: drawing.counts.map((counts, i) => counts - (drawing.baseline[i] ?? 0)),
+    baseline: drawing.baseline.map(() => 0),
+    ceilingCounts: drawing.ceilingCounts === null ? null : drawing.ceilingCounts - median,
+    fits: drawing.fits.map((fit) => {
+      const under = fit.x.map((x) => interpolate(drawing.x, drawing.baseline, x));
+      return {
+        ...fit,
+        counts: fit.counts.map((counts, i) => counts - (under[i] ?? 0)),
+        baseline: fit.baseline.map((counts, i) => counts - (under[i] ?? 0)),
+      };
+    }),
+  };
+}
+
+/** `air, nm`, `vacuum, nm`, `px`: what the ruler of the bench counts. */
+export function axisText(drawing: SpectrumDrawing, meaning: Analysis["setup"]["axisMeaning"]): string {
+  // A drawing made ahead of the server says itself what its axis is worth.
+  if (!["Wavelength", "Pixel", "Drive step"].includes(drawing.axisLabel)) return drawing.axisLabel;
+  if (drawing.axisUnit !== "nm") return drawing.axisUnit === "cm-1" ? "cm\u207b\u00b9" : drawing.axisUnit;
+  return meaning === "vacuum" ? "vacuum, nm" : "air, nm";
+}
+
 /** A line of an analysis as the strip draws it; null where it has no name and so no place among published lines. */
 export function stripLineOf(line: LineResult): StripLine | null {
   if (line.wavelengthNm === null) return null;

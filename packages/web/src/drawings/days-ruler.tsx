@@ -61,6 +61,11 @@ export function DaysRuler({ items, todayOn, before = 9, after = 38, handle }: Da
     width,
   );
   const axis = 44;
+  const todayX = scale.at(noon(todayOn));
+  // Where a month begins beside today, today's own label names the day instead of running into the month's.
+  const isBesideMonth = days.some((day) => day.getUTCDate() === 1 && Math.abs(scale.at(day.getTime()) - todayX) <= 44);
+  const today = new Date(noon(todayOn));
+  const todayText = isBesideMonth ? `today, ${today.getUTCDate()} ${MONTHS[today.getUTCMonth()] ?? ""}` : "today";
   return (
     <DrawingFrame
       handle={handle}
@@ -118,7 +123,7 @@ export function DaysRuler({ items, todayOn, before = 9, after = 38, handle }: Da
                     {day.getUTCDate()}
                   </text>
                 )}
-                {isFirst && x < width - 20 && (
+                {isFirst && x < width - 20 && Math.abs(x - todayX) > 44 && (
                   <text x={x} y={axis + 35} textAnchor="middle" className="mark mark-strong mark-halo">
                     {MONTHS[day.getUTCMonth()]}
                   </text>
@@ -126,7 +131,7 @@ export function DaysRuler({ items, todayOn, before = 9, after = 38, handle }: Da
               </g>
             );
           })}
-          <TodayMark x={crisp(scale.at(noon(todayOn)))} y={axis} />
+          <TodayMark x={crisp(todayX)} y={axis} text={todayText} />
           {shown.map(({ item, x }, i) => {
             const centre = centres[i] ?? x;
             const isStraight = Math.abs(centre - x) < 3;
@@ -169,12 +174,12 @@ export function DaysRuler({ items, todayOn, before = 9, after = 38, handle }: Da
   );
 }
 
-function TodayMark({ x, y }: { x: number; y: number }) {
+function TodayMark({ x, y, text }: { x: number; y: number; text: string }) {
   return (
     <g>
       <path d={`M${x - 4.5} ${y + 9}l4.5 -7.5 4.5 7.5z`} fill="var(--ink)" />
       <text x={x} y={y + 35} textAnchor="middle" className="mark mark-strong mark-halo">
-        today
+        {text}
       </text>
     </g>
   );

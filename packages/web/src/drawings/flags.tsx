@@ -10,11 +10,11 @@ import { wavelengthHue } from "./wavelength-hue.ts";
 export const FLAG_PITCH = 43;
 export const FLAG_HEIGHT = 31;
 
-/** What stands under a flag's wavelength: `Hg`, `Hg blend`, `Hg sat.`. */
-export function flagSpecies(line: StripLine): string {
+/** What stands under a flag's wavelength: `Hg`, `Hg blend`, `Hg sat.`; where the next is as long, `Hg bl.`. */
+export function flagSpecies(line: StripLine, isTight = false): string {
   const species = line.species ?? "";
   const element = species.split(" ")[0] ?? "";
-  if (line.blend || line.flags.includes("blend")) return `${element} blend`;
+  if (line.blend || line.flags.includes("blend")) return isTight ? `${element} bl.` : `${element} blend`;
   if (line.flags.includes("saturated")) return `${element} sat.`;
   return element;
 }
@@ -83,6 +83,17 @@ interface FlagsProps {
 }
 
 export function Flags({ lines, plan, theme, top, leaderTop, leaderBottom, chosen, onChoose }: FlagsProps) {
+  // Two long words side by side would run together at this pitch.
+  const isLong = (flag: Flag | undefined) => {
+    const line = flag === undefined ? undefined : lines[flag.index];
+    return line !== undefined && flagSpecies(line).length > 7;
+  };
+  const isTight = (place: number) =>
+    [place - 1, place + 1].some(
+      (beside) =>
+        isLong(plan.flags[beside]) &&
+        Math.abs((plan.flags[beside]?.x ?? 0) - (plan.flags[place]?.x ?? 0)) < FLAG_PITCH + 6,
+    );
   return (
     <g>
       {plan.bare.map(({ index, lineX }) => {
@@ -100,7 +111,7 @@ export function Flags({ lines, plan, theme, top, leaderTop, leaderBottom, chosen
           />
         );
       })}
-      {plan.flags.map(({ index, x, lineX }) => {
+      {plan.flags.map(({ index, x, lineX }, place) => {
         const line = lines[index];
         if (line === undefined) return null;
         const isOut = line.status === "left-out" || line.status === "refused";
@@ -146,7 +157,7 @@ export function Flags({ lines, plan, theme, top, leaderTop, leaderBottom, chosen
               {formatNumber(line.wavelengthNm, { decimals: 2 })}
             </text>
             <text x={x} y={top + 25} textAnchor="middle" className="mark mark-quiet">
-              {flagSpecies(line)}
+              {flagSpecies(line, isTight(place))}
             </text>
           </g>
         );

@@ -7,7 +7,17 @@ import type { Analysis, SpectrumDrawing } from "@wavekeep/core";
 import { useMemo, useRef, useState, type KeyboardEvent, type PointerEvent } from "react";
 import { formatCount, formatNumber } from "../ui/format.ts";
 import { BenchPlot } from "./bench-plot.tsx";
-import { benchRegisters, countsRuler, namedLines, panBy, SIGMA_PX, zoomAbout, type Registers } from "./bench-layout.ts";
+import {
+  axisText,
+  benchRegisters,
+  countsRuler,
+  namedLines,
+  netDrawing,
+  panBy,
+  SIGMA_PX,
+  zoomAbout,
+  type Registers,
+} from "./bench-layout.ts";
 import { DrawingFrame, type DrawingHandle } from "./drawing.tsx";
 import { Flags, planFlags, type FlagPlan } from "./flags.tsx";
 import { GutterText, lineSentence, nearestMark, StripRegister, stripSummary, stripTable } from "./line-strip.tsx";
@@ -32,7 +42,7 @@ export interface SpectrumBenchProps {
 
 export function SpectrumBench({
   analysis,
-  drawing,
+  drawing: given,
   chosen,
   onChoose,
   scale: kind = "root",
@@ -43,6 +53,7 @@ export function SpectrumBench({
   const palette = usePalette();
   const isNarrow = width < 560;
   const registers = benchRegisters(isNarrow);
+  const drawing = useMemo(() => netDrawing(given), [given]);
   const whole = useMemo<[number, number]>(() => [drawing.x[0] ?? 0, drawing.x[drawing.x.length - 1] ?? 1], [drawing]);
   const [zoomed, setZoomed] = useState<{ of: SpectrumDrawing; view: [number, number] } | null>(null);
   const view = zoomed !== null && zoomed.of === drawing ? zoomed.view : whole;
@@ -159,7 +170,12 @@ export function SpectrumBench({
           {marked !== null && lines[marked] !== undefined && (
             <ChosenLine x={crisp(scale.at(lines[marked].wavelengthNm))} registers={registers} width={width} />
           )}
-          <WavelengthRuler scale={scale} top={registers.rulerTop} label={drawing.axisLabel} isNarrow={isNarrow} />
+          <WavelengthRuler
+            scale={scale}
+            top={registers.rulerTop}
+            label={axisText(drawing, analysis.setup.axisMeaning)}
+            isNarrow={isNarrow}
+          />
           {brush.range !== null && (
             <rect
               x={brush.range[0]}

@@ -21,7 +21,7 @@ export function Decimal({ value, columnDecimals, unit, className, ...style }: De
     <span className={`whitespace-nowrap ${className ?? ""}`}>
       {whole}
       {places > 0 && (
-        <span style={{ display: "inline-block", width: `calc(${places} * 1ch + 0.27em)`, textAlign: "left" }}>
+        <span style={{ display: "inline-block", minWidth: `calc(${places} * 1ch + 0.27em)`, textAlign: "left" }}>
           {fraction === undefined ? "" : `.${fraction}`}
         </span>
       )}
