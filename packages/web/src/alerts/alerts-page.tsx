@@ -9,7 +9,18 @@ import { DialogForm } from "../shared/dialog-form.tsx";
 import { FormArea, rulesOf } from "../shared/form.tsx";
 import { useUrlFilter } from "../shared/use-url-filter.ts";
 import { counted, countWord, sentenceCase } from "../shared/words.ts";
-import { Button, Empty, Page, Section, StatusShape, statusWord, Switches, TextButton, TextLink, When } from "../ui/index.ts";
+import {
+  Button,
+  Empty,
+  Page,
+  Section,
+  StatusShape,
+  statusWord,
+  Switches,
+  TextButton,
+  TextLink,
+  When,
+} from "../ui/index.ts";
 import { useAcknowledgeAlert, useAlerts, useImpactReviews, type AlertsShown } from "./queries.ts";
 
 const filters = ["state", "instrument"] as const;
@@ -18,9 +29,13 @@ function alertsSentence(open: readonly Alert[] | undefined, hasMore: boolean): s
   if (open === undefined) return "Alerts";
   if (open.length === 0) return "No alert is open.";
   const unseen = open.filter((alert) => alert.acknowledged === null).length;
-  const head = hasMore ? `More than ${open.length} alerts are open` : `${sentenceCase(countWord(open.length))} ${open.length === 1 ? "alert is" : "alerts are"} open`;
+  const head = hasMore
+    ? `More than ${open.length} alerts are open`
+    : `${sentenceCase(countWord(open.length))} ${open.length === 1 ? "alert is" : "alerts are"} open`;
   if (unseen === 0) return `${head}, ${open.length === 1 ? "and acknowledged" : "all acknowledged"}.`;
-  return unseen === open.length ? `${head}.` : `${head}; ${countWord(unseen)} ${unseen === 1 ? "waits" : "wait"} to be acknowledged.`;
+  return unseen === open.length
+    ? `${head}.`
+    : `${head}; ${countWord(unseen)} ${unseen === 1 ? "waits" : "wait"} to be acknowledged.`;
 }
 
 export function AlertsPage() {
@@ -56,12 +71,23 @@ export function AlertsPage() {
         <Asked query={alerts} rows={4}>
           {() =>
             rows.length === 0 ? (
-              <Empty text={state === "open" ? "Nothing is wrong that Wavekeep knows of: no instrument is out of tolerance, near its limit or overdue." : "No alert was closed yet."} />
+              <Empty
+                text={
+                  state === "open"
+                    ? "Nothing is wrong that Wavekeep knows of: no instrument is out of tolerance, near its limit or overdue."
+                    : "No alert was closed yet."
+                }
+              />
             ) : (
               <>
                 <ul>
                   {rows.map((alert) => (
-                    <AlertRow key={alert.id} alert={alert} filled={alert === firstMine} onAcknowledge={() => setAcknowledging(alert)} />
+                    <AlertRow
+                      key={alert.id}
+                      alert={alert}
+                      filled={alert === firstMine}
+                      onAcknowledge={() => setAcknowledging(alert)}
+                    />
                   ))}
                 </ul>
                 <Older query={alerts} />
@@ -71,17 +97,33 @@ export function AlertsPage() {
         </Asked>
       </Section>
       {openReviews.length > 0 && (
-        <Section title="Impact reviews" note="Which past results fall between the last good check and the failed one, and what was decided.">
+        <Section
+          title="Impact reviews"
+          note="Which past results fall between the last good check and the failed one, and what was decided."
+        >
           <ul>
             {openReviews.map((review) => (
-              <li key={review.id} className="border-hairline flex flex-wrap items-baseline justify-between gap-x-8 gap-y-1 border-b py-3">
+              <li
+                key={review.id}
+                className="border-hairline flex flex-wrap items-baseline justify-between gap-x-8 gap-y-1 border-b py-3"
+              >
                 <span>
                   <TextLink to={`/impact/${review.id}`}>{review.number}</TextLink> <b>{review.instrumentName}</b>
                   <span className="text-quiet">
-                    , {review.windowFrom === null ? "no good check on record" : <>from <When at={review.windowFrom} as="day" /></>} to <When at={review.windowTo} as="day" />
+                    ,{" "}
+                    {review.windowFrom === null ? (
+                      "no good check on record"
+                    ) : (
+                      <>
+                        from <When at={review.windowFrom} as="day" />
+                      </>
+                    )}{" "}
+                    to <When at={review.windowTo} as="day" />
                   </span>
                 </span>
-                <span className="text-quiet">{review.state === "open" ? `waits for ${review.owner.name}` : "decided"}</span>
+                <span className="text-quiet">
+                  {review.state === "open" ? `waits for ${review.owner.name}` : "decided"}
+                </span>
               </li>
             ))}
           </ul>
@@ -93,11 +135,22 @@ export function AlertsPage() {
 }
 
 function AlertRow({ alert, filled, onAcknowledge }: { alert: Alert; filled: boolean; onAcknowledge: () => void }) {
-  const to = alert.instrumentId !== null ? `/instruments/${alert.instrumentId}` : alert.sourceId !== null ? `/sources/${alert.sourceId}` : null;
+  const to =
+    alert.instrumentId !== null
+      ? `/instruments/${alert.instrumentId}`
+      : alert.sourceId !== null
+        ? `/sources/${alert.sourceId}`
+        : null;
   return (
     <li className="border-hairline flex flex-wrap items-start justify-between gap-x-8 gap-y-3 border-b py-[14px] first:pt-0 book:flex-nowrap">
       <div className="relative min-w-0 pl-7 book:pl-6">
-        {alert.state !== null && <StatusShape state={alert.closedAt === null ? alert.state : "not-judged"} label={statusWord(alert.state)} className="absolute top-1 left-0" />}
+        {alert.state !== null && (
+          <StatusShape
+            state={alert.closedAt === null ? alert.state : "not-judged"}
+            label={statusWord(alert.state)}
+            className="absolute top-1 left-0"
+          />
+        )}
         <h3 className="strong">{alert.title}</h3>
         <p className="text-quiet max-w-[720px]">{alert.detail}</p>
         <p className="type-note mt-1">
@@ -114,7 +167,8 @@ function AlertRow({ alert, filled, onAcknowledge }: { alert: Alert; filled: bool
         {alert.acknowledged !== null && (
           <p className="type-note">
             Acknowledged by {alert.acknowledged.by.name}
-            {alert.acknowledged.forOwner && " for the owner"}, <When at={alert.acknowledged.at} />: {alert.acknowledged.note}
+            {alert.acknowledged.forOwner && " for the owner"}, <When at={alert.acknowledged.at} />:{" "}
+            {alert.acknowledged.note}
           </p>
         )}
       </div>
@@ -134,7 +188,10 @@ function AlertRow({ alert, filled, onAcknowledge }: { alert: Alert; filled: bool
 function AcknowledgeDialog({ alert, onClose }: { alert: Alert; onClose: () => void }) {
   const acknowledge = useAcknowledgeAlert(alert.id, onClose);
   const shape = acknowledgeAlertInput.omit({ version: true });
-  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: { note: "" } });
+  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { note: "" },
+  });
   return (
     <DialogForm
       title="Acknowledge the alert"

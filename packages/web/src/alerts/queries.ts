@@ -18,7 +18,10 @@ export const useAlerts = (state: AlertsShown, instrumentId: string | undefined) 
 
 /** Impact reviews, shown under the alerts that opened them. */
 export const useImpactReviews = () =>
-  useQuery({ queryKey: ["impact-reviews"], queryFn: ({ signal }) => api.get("listImpactReviews", {}, undefined, { signal }) });
+  useQuery({
+    queryKey: ["impact-reviews"],
+    queryFn: ({ signal }) => api.get("listImpactReviews", {}, undefined, { signal }),
+  });
 
 export const useAcknowledgeAlert = (alertId: string, done: () => void) =>
   useChange((body: z.input<typeof acknowledgeAlertInput>) => api.post("acknowledgeAlert", { alertId }, body), done);

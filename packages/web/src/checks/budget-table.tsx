@@ -4,7 +4,8 @@ import { budgetWords } from "../shared/words.ts";
 import { formatNumber, NARROW_SPACE, Table } from "../ui/index.ts";
 import { lineName } from "./verdict-sentence.ts";
 
-const dofWords = (degreesOfFreedom: number | null) => (degreesOfFreedom === null || degreesOfFreedom > 9999 ? "∞" : formatNumber(degreesOfFreedom));
+const dofWords = (degreesOfFreedom: number | null) =>
+  degreesOfFreedom === null || degreesOfFreedom > 9999 ? "∞" : formatNumber(degreesOfFreedom);
 /** pm, two significant digits. */
 const pm = (nm: number) => {
   const value = nm * 1000;
@@ -25,7 +26,9 @@ export function BudgetTable({ line, axisUnit }: { line: LineResult; axisUnit: st
   return (
     <>
       <h3 className="strong">Uncertainty of {lineName(line, axisUnit)}</h3>
-      <p className="type-note mt-1 mb-3">For 95.45{NARROW_SPACE}%{most !== undefined && `; ${budgetWords[most.contribution].toLowerCase()} weighs most`}.</p>
+      <p className="type-note mt-1 mb-3">
+        For 95.45{NARROW_SPACE}%{most !== undefined && `; ${budgetWords[most.contribution].toLowerCase()} weighs most`}.
+      </p>
       <Table
         caption={`Uncertainty budget of ${lineName(line, axisUnit)}`}
         compact
@@ -51,8 +54,15 @@ export function BudgetTable({ line, axisUnit }: { line: LineResult; axisUnit: st
           {
             key: "share",
             head: "share of u²",
+            className: "whitespace-nowrap",
             cell: (entry) => (
-              <svg width={56} height={7} role="img" aria-label={`${formatNumber(entry.shareOfVariance * 100)} %`}>
+              <svg
+                width={56}
+                height={7}
+                className="inline-block align-middle"
+                role="img"
+                aria-label={`${formatNumber(entry.shareOfVariance * 100)} %`}
+              >
                 <line x1={0} x2={56} y1={3.5} y2={3.5} stroke="var(--hairline)" shapeRendering="crispEdges" />
                 <rect x={0} y={2} width={Math.min(entry.shareOfVariance, 1) * 56} height={3} fill="var(--ink)" />
               </svg>
@@ -74,7 +84,11 @@ export function BudgetTable({ line, axisUnit }: { line: LineResult; axisUnit: st
                 <td>
                   <b>Expanded</b>, k = {formatNumber(line.coverageFactor, { decimals: 2 })}
                 </td>
-                <td className="numbers strong">{formatNumber(line.errorExpandedUncNm * 1000, { decimals: line.errorExpandedUncNm < 0.00995 ? 1 : 0 })}</td>
+                <td className="numbers strong">
+                  {formatNumber(line.errorExpandedUncNm * 1000, {
+                    decimals: line.errorExpandedUncNm < 0.00995 ? 1 : 0,
+                  })}
+                </td>
                 <td />
                 <td />
               </tr>

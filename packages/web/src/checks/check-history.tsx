@@ -1,22 +1,42 @@
 /** What led to the result: attempts with their files, analyses with what changed, what happened to the check. */
 import type { Check } from "@wavekeep/api/contract";
 import { checkEventWords, counted } from "../shared/words.ts";
-import { FileLink, formatBytes, formatHash, routeUrl, Section, Status, Table, verdictState, When } from "../ui/index.ts";
+import {
+  FileLink,
+  formatBytes,
+  formatHash,
+  routeUrl,
+  Section,
+  Status,
+  Table,
+  verdictState,
+  When,
+} from "../ui/index.ts";
 
 export function AttemptsSection({ check }: { check: Check }) {
   return (
-    <Section title="Attempts" id="attempts" note="Every file that was dropped in, byte for byte; an abandoned attempt stays in the list.">
+    <Section
+      title="Attempts"
+      id="attempts"
+      note="Every file that was dropped in, byte for byte; an abandoned attempt stays in the list."
+    >
       <div className="grid gap-6">
         {check.attempts.map((attempt) => (
           <div key={attempt.number}>
             <div className="flex flex-wrap items-baseline justify-between gap-x-6">
               <h3>
                 <b>Attempt {attempt.number}</b>, <When at={attempt.startedAt} />
-                {attempt.abandoned && <span className="left-out"> abandoned{attempt.note !== "" && `: ${attempt.note}`}</span>}
+                {attempt.abandoned && (
+                  <span className="left-out"> abandoned{attempt.note !== "" && `: ${attempt.note}`}</span>
+                )}
               </h3>
               <span className="flex items-baseline gap-4">
                 <span className="type-note">{counted(attempt.analysisCount, "analysis", "analyses")}</span>
-                {attempt.verdict === null ? <span className="type-note">{attempt.outcome ?? "not analysed"}</span> : <Status state={verdictState(attempt.verdict)} />}
+                {attempt.verdict === null ? (
+                  <span className="type-note">{attempt.outcome ?? "not analysed"}</span>
+                ) : (
+                  <Status state={verdictState(attempt.verdict)} />
+                )}
               </span>
             </div>
             {attempt.captures.length > 0 && (
@@ -31,31 +51,56 @@ export function AttemptsSection({ check }: { check: Check }) {
                       key: "file",
                       head: "File",
                       cell: (capture) => (
-                        <FileLink href={routeUrl("readCapture", { captureId: capture.id })} download={capture.fileName} className="break-all">
+                        <FileLink
+                          href={routeUrl("readCapture", { captureId: capture.id })}
+                          download={capture.fileName}
+                          className="break-all"
+                        >
                           {capture.fileName}
                         </FileLink>
                       ),
                     },
-                    { key: "part", head: "Read as", cell: (capture) => (capture.refusal === null ? capture.part : "not read") },
+                    {
+                      key: "part",
+                      head: "Read as",
+                      cell: (capture) => (capture.refusal === null ? capture.part : "not read"),
+                    },
                     { key: "size", head: "Size", numbers: true, cell: (capture) => formatBytes(capture.sizeBytes) },
-                    { key: "sha", head: "SHA-256", className: "whitespace-nowrap", cell: (capture) => <span title={capture.sha256}>{formatHash(capture.sha256)}</span> },
-                    { key: "at", head: "Received", className: "whitespace-nowrap", cell: (capture) => <When at={capture.receivedAt} seconds /> },
+                    {
+                      key: "sha",
+                      head: "SHA-256",
+                      className: "whitespace-nowrap",
+                      cell: (capture) => <span title={capture.sha256}>{formatHash(capture.sha256)}</span>,
+                    },
+                    {
+                      key: "at",
+                      head: "Received",
+                      className: "whitespace-nowrap",
+                      cell: (capture) => <When at={capture.receivedAt} seconds />,
+                    },
                     { key: "trail", head: "Trail", numbers: true, cell: (capture) => capture.trailNumber },
                   ]}
                   rowNote={(capture) =>
                     capture.refusal ??
-                    (capture.seenBefore === null ? null : `The same bytes were used before: ${capture.seenBefore.fileName} in ${capture.seenBefore.checkNumber}.`)
+                    (capture.seenBefore === null
+                      ? null
+                      : `The same bytes were used before: ${capture.seenBefore.fileName} in ${capture.seenBefore.checkNumber}.`)
                   }
                   narrow={(capture) => (
                     <>
                       <p className="flex items-baseline justify-between gap-3">
-                        <FileLink href={routeUrl("readCapture", { captureId: capture.id })} download={capture.fileName} className="break-all">
+                        <FileLink
+                          href={routeUrl("readCapture", { captureId: capture.id })}
+                          download={capture.fileName}
+                          className="break-all"
+                        >
                           {capture.fileName}
                         </FileLink>
                         <span className="type-note">{capture.part}</span>
                       </p>
                       <p className="type-note">
-                        {formatHash(capture.sha256)}, <When at={capture.receivedAt} as="time" seconds />, trail {capture.trailNumber}
+                        {formatHash(capture.sha256)}, <When at={capture.receivedAt} as="time" seconds />, trail{" "}
+                        {capture.trailNumber}
                       </p>
                       {capture.refusal !== null && <p className="type-note">{capture.refusal}</p>}
                     </>
@@ -91,9 +136,19 @@ export function AnalysesSection({ check }: { check: Check }) {
             { key: "changed", head: "What changed", cell: (analysis) => analysis.changed },
             { key: "attempt", head: "Attempt", cell: (analysis) => analysis.attempt },
             { key: "by", head: "By", cell: (analysis) => analysis.madeBy.name },
-            { key: "at", head: "At", className: "whitespace-nowrap", cell: (analysis) => <When at={analysis.madeAt} seconds /> },
+            {
+              key: "at",
+              head: "At",
+              className: "whitespace-nowrap",
+              cell: (analysis) => <When at={analysis.madeAt} seconds />,
+            },
             { key: "core", head: "Core", cell: (analysis) => analysis.coreVersion },
-            { key: "sha", head: "SHA-256", className: "whitespace-nowrap", cell: (analysis) => <span title={analysis.sha256}>{formatHash(analysis.sha256)}</span> },
+            {
+              key: "sha",
+              head: "SHA-256",
+              className: "whitespace-nowrap",
+              cell: (analysis) => <span title={analysis.sha256}>{formatHash(analysis.sha256)}</span>,
+            },
           ]}
           narrow={(analysis) => (
             <>

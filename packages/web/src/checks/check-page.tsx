@@ -4,7 +4,17 @@ import { useState } from "react";
 import { useParams } from "react-router";
 import { Asked } from "../shared/asked.tsx";
 import { conditionWords, shortName } from "../shared/words.ts";
-import { formatClock, formatDay, LinkButton, NARROW_SPACE, Page, Section, TextLink, useZone, When } from "../ui/index.ts";
+import {
+  formatClock,
+  formatDay,
+  LinkButton,
+  NARROW_SPACE,
+  Page,
+  Section,
+  TextLink,
+  useZone,
+  When,
+} from "../ui/index.ts";
 import { CheckFacts, StandsBeside } from "./check-facts.tsx";
 import { AnalysesSection, AttemptsSection, EventsSection } from "./check-history.tsx";
 import { CheckSide } from "./check-side.tsx";
@@ -62,7 +72,12 @@ function LoadedCheck({ check }: { check: Check }) {
               <p className="text-quiet">Nothing was analysed yet.</p>
             ) : (
               <>
-                <LinesTable analysis={analysis} chosen={chosen} onChoose={setPicked} leftOutBy={shortName(maker.name)} />
+                <LinesTable
+                  analysis={analysis}
+                  chosen={chosen}
+                  onChoose={setPicked}
+                  leftOutBy={shortName(maker.name)}
+                />
                 <LinesNote analysis={analysis} />
               </>
             )}
@@ -70,7 +85,9 @@ function LoadedCheck({ check }: { check: Check }) {
           <CheckSide check={check} analysis={analysis} chosen={chosen} />
         </div>
       </Section>
-      {analysis !== null && analysis.dispersion !== null && <DispersionSection dispersion={analysis.dispersion} axisUnit={analysis.axisUnit} />}
+      {analysis !== null && analysis.dispersion !== null && (
+        <DispersionSection dispersion={analysis.dispersion} analysis={analysis} />
+      )}
       <AttemptsSection check={check} />
       <AnalysesSection check={check} />
       <EventsSection check={check} />
@@ -79,7 +96,9 @@ function LoadedCheck({ check }: { check: Check }) {
 }
 
 function linesMargin(check: Check): string {
-  const meaning = { vacuum: "In vacuum", "standard-air": "In standard air", "room-air": "In the air of the room" }[check.analysis?.setup.axisMeaning ?? "standard-air"];
+  const meaning = { vacuum: "In vacuum", "standard-air": "In standard air", "room-air": "In the air of the room" }[
+    check.analysis?.setup.axisMeaning ?? "standard-air"
+  ];
   return `${meaning}, line list ${check.analysis?.setup.lineListVersion ?? ""}. U is expanded for 95.45${NARROW_SPACE}%. All in nm but the position.`;
 }
 
@@ -129,7 +148,9 @@ function CheckLead({ check }: { check: Check }) {
         <p>
           {summary.instrumentName} is on hold since <When at={check.hold.since} />
           {check.hold.decided ? "; the decision is made." : "; a manager confirms or lifts it."}{" "}
-          {check.impactReview !== null && <TextLink to={`/impact/${check.impactReview.id}`}>{check.impactReview.number}</TextLink>}
+          {check.impactReview !== null && (
+            <TextLink to={`/impact/${check.impactReview.id}`}>{check.impactReview.number}</TextLink>
+          )}
         </p>
       )}
       {check.follows !== null && (

@@ -8,7 +8,19 @@ import { acknowledgeCheckInput } from "@wavekeep/api/contract";
 import { DialogForm } from "../shared/dialog-form.tsx";
 import { FormArea, rulesOf } from "../shared/form.tsx";
 import { counted } from "../shared/words.ts";
-import { Button, FileLink, formatHash, formatInstant, formatNumber, NARROW_SPACE, routeUrl, TextButton, TextLink, useMay, When } from "../ui/index.ts";
+import {
+  Button,
+  FileLink,
+  formatHash,
+  formatInstant,
+  formatNumber,
+  NARROW_SPACE,
+  routeUrl,
+  TextButton,
+  TextLink,
+  useMay,
+  When,
+} from "../ui/index.ts";
 import { BudgetTable } from "./budget-table.tsx";
 import { useAcknowledgeCheck } from "./queries.ts";
 import { ReviewPanel } from "./review-panel.tsx";
@@ -22,7 +34,15 @@ function Block({ title, children, id }: { title: string; children: ReactNode; id
   );
 }
 
-export function CheckSide({ check, analysis, chosen }: { check: Check; analysis: Analysis | null; chosen: number | null }) {
+export function CheckSide({
+  check,
+  analysis,
+  chosen,
+}: {
+  check: Check;
+  analysis: Analysis | null;
+  chosen: number | null;
+}) {
   const line = analysis === null || chosen === null ? undefined : analysis.lines[chosen];
   return (
     <div className="grid min-w-0 content-start gap-8">
@@ -37,10 +57,12 @@ export function CheckSide({ check, analysis, chosen }: { check: Check; analysis:
           <div key={signature.id} className="border-hairline mb-4 border-b pb-4 last:border-b-0">
             <p className="type-lead">{signature.printedName}</p>
             <p className="type-note">
-              {signature.role} · <time dateTime={signature.signedAt}>{formatInstant(signature.signedAt, signature.zone)}</time>
+              {signature.role} ·{" "}
+              <time dateTime={signature.signedAt}>{formatInstant(signature.signedAt, signature.zone)}</time>
             </p>
             <p className="type-note">
-              Meaning: {signature.meaning}. <span title={signature.contentSha256}>Content {formatHash(signature.contentSha256)}</span>
+              Meaning: {signature.meaning}.{" "}
+              <span title={signature.contentSha256}>Content {formatHash(signature.contentSha256)}</span>
             </p>
           </div>
         ))}
@@ -59,7 +81,8 @@ export function CheckSide({ check, analysis, chosen }: { check: Check; analysis:
 function MadeFrom({ check, analysis }: { check: Check; analysis: Analysis }) {
   const may = useMay();
   const version = check.analysisVersion;
-  const captures = check.attempts.find((attempt) => attempt.number === (version?.attempt ?? check.currentAttempt))?.captures ?? [];
+  const captures =
+    check.attempts.find((attempt) => attempt.number === (version?.attempt ?? check.currentAttempt))?.captures ?? [];
   const first = captures[0];
   const rows = first?.reading?.rows;
   const received = captures.at(-1);
@@ -71,7 +94,8 @@ function MadeFrom({ check, analysis }: { check: Check; analysis: Analysis }) {
             {first.fileName}
             {captures.length > 1 && ` … ${captures.at(-1)?.fileName}`}
           </b>
-          {rows !== undefined && `, ${formatNumber(rows, { grouped: true })}${NARROW_SPACE}${analysis.axisUnit === "px" ? "px" : "rows"}`}
+          {rows !== undefined &&
+            `, ${formatNumber(rows, { grouped: true })}${NARROW_SPACE}${analysis.axisUnit === "px" ? "px" : "rows"}`}
         </p>
       )}
       {first !== undefined && (
@@ -85,7 +109,16 @@ function MadeFrom({ check, analysis }: { check: Check; analysis: Analysis }) {
           Received <When at={received.receivedAt} seconds />
         </p>
       )}
-      {check.sources.some((source) => source.pastReview) && <p>A source was past its review: {check.sources.filter((source) => source.pastReview).map((source) => source.label).join(", ")}.</p>}
+      {check.sources.some((source) => source.pastReview) && (
+        <p>
+          A source was past its review:{" "}
+          {check.sources
+            .filter((source) => source.pastReview)
+            .map((source) => source.label)
+            .join(", ")}
+          .
+        </p>
+      )}
       {version !== null && (
         <p>
           Core {version.coreVersion}, version {version.version} of {check.analyses.length}:{" "}
@@ -94,15 +127,23 @@ function MadeFrom({ check, analysis }: { check: Check; analysis: Analysis }) {
           </a>
         </p>
       )}
-      {check.contributors.length > 0 && <p>Contributed: {check.contributors.map((person) => person.name).join(", ")}.</p>}
+      {check.contributors.length > 0 && (
+        <p>Contributed: {check.contributors.map((person) => person.name).join(", ")}.</p>
+      )}
       {check.report !== null && may("report.read") && (
         <p>
-          <FileLink href={routeUrl("readReport", { checkId: check.summary.id })}>Report {check.report.number}, PDF</FileLink>, made <When at={check.report.madeAt} as="day" />, <span title={check.report.sha256}>{formatHash(check.report.sha256)}</span>
+          <FileLink href={routeUrl("readReport", { checkId: check.summary.id })}>
+            Report {check.report.number}, PDF
+          </FileLink>
+          , made <When at={check.report.madeAt} as="day" />,{" "}
+          <span title={check.report.sha256}>{formatHash(check.report.sha256)}</span>
         </p>
       )}
       <p className="no-print mt-1 flex flex-wrap gap-x-4 gap-y-1">
         <TextButton onClick={() => window.print()}>Print</TextButton>
-        {may("records.read", { instrumentId: check.summary.instrumentId }) && <TextLink to={`/records?check=${check.summary.id}`}>In Records</TextLink>}
+        {may("records.read", { instrumentId: check.summary.instrumentId }) && (
+          <TextLink to={`/records?check=${check.summary.id}`}>In Records</TextLink>
+        )}
       </p>
     </div>
   );
@@ -133,7 +174,10 @@ function Acknowledge({ check }: { check: Check }) {
 
 function AcknowledgeDialog({ check, onClose }: { check: Check; onClose: () => void }) {
   const acknowledge = useAcknowledgeCheck(check.summary.id, onClose);
-  const form = useForm<z.input<typeof acknowledgeCheckInput>, unknown, z.output<typeof acknowledgeCheckInput>>({ resolver: rulesOf(acknowledgeCheckInput), defaultValues: { note: "" } });
+  const form = useForm<z.input<typeof acknowledgeCheckInput>, unknown, z.output<typeof acknowledgeCheckInput>>({
+    resolver: rulesOf(acknowledgeCheckInput),
+    defaultValues: { note: "" },
+  });
   return (
     <DialogForm
       title={`Acknowledge ${check.summary.number}`}

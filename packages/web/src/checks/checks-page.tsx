@@ -58,14 +58,20 @@ export function ChecksPage() {
               every="Every state"
               value={filter.state}
               onChange={(value) => setFilter("state", value)}
-              choices={checkState.options.map((state) => ({ value: state, label: sentenceCase(checkStateWords[state]) }))}
+              choices={checkState.options.map((state) => ({
+                value: state,
+                label: sentenceCase(checkStateWords[state]),
+              }))}
             />
             <FilterSelect
               label="Verdict"
               every="Every verdict"
               value={filter.verdict}
               onChange={(value) => setFilter("verdict", value)}
-              choices={verdictShape.options.map((verdict) => ({ value: verdict, label: sentenceCase(statusWord(verdictState(verdict))) }))}
+              choices={verdictShape.options.map((verdict) => ({
+                value: verdict,
+                label: sentenceCase(statusWord(verdictState(verdict))),
+              }))}
             />
             <FilterSelect
               label="Made by"
@@ -108,7 +114,10 @@ export function ChecksPage() {
                 }
               />
             ) : (
-              <Empty text="Each check of an instrument against a lamp stands here, from its first capture to its approval." action={start} />
+              <Empty
+                text="Each check of an instrument against a lamp stands here, from its first capture to its approval."
+                action={start}
+              />
             )
           }
         </Asked>

@@ -17,7 +17,11 @@ interface DraftDialogProps {
   onClose: () => void;
 }
 
-const useReasonForm = () => useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: { reason: "" } });
+const useReasonForm = () =>
+  useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { reason: "" },
+  });
 
 export function SetAsideDialog({ check, keeper, onClose }: DraftDialogProps) {
   const navigate = useNavigate();
@@ -38,7 +42,12 @@ export function SetAsideDialog({ check, keeper, onClose }: DraftDialogProps) {
       onClose={onClose}
       busy={setAside.isPending}
       error={setAside.error}
-      onSubmit={(values) => void keeper.flush().then((version) => setAside.mutate({ ...values, version }), () => onClose())}
+      onSubmit={(values) =>
+        void keeper.flush().then(
+          (version) => setAside.mutate({ ...values, version }),
+          () => onClose(),
+        )
+      }
     >
       <FormArea name="reason" label="Reason" />
     </DialogForm>
@@ -57,7 +66,12 @@ export function NewAttemptDialog({ check, keeper, onClose }: DraftDialogProps) {
       onClose={onClose}
       busy={newAttempt.isPending}
       error={newAttempt.error}
-      onSubmit={(values) => void keeper.flush().then((version) => newAttempt.mutate({ ...values, version }), () => onClose())}
+      onSubmit={(values) =>
+        void keeper.flush().then(
+          (version) => newAttempt.mutate({ ...values, version }),
+          () => onClose(),
+        )
+      }
     >
       <FormArea name="reason" label="Why it is repeated" note="Seven lines saturated at 20 ms" />
     </DialogForm>

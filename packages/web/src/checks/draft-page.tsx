@@ -24,7 +24,14 @@ export function DraftPage({ check }: { check: Check }) {
   const axis = useMemo<PixelAxis | null>(() => {
     const inForce = configuration?.axis;
     if (inForce === undefined || inForce === null) return null;
-    return { coefficients: inForce.coefficients, firstPx: 0, lastPx: 0, chebyshevCovariance: null, degreesOfFreedom: null, meaning: inForce.meaning };
+    return {
+      coefficients: inForce.coefficients,
+      firstPx: 0,
+      lastPx: 0,
+      chebyshevCovariance: null,
+      degreesOfFreedom: null,
+      meaning: inForce.meaning,
+    };
   }, [configuration?.axis]);
   const local = useLocalDrawing(axis);
   const uploads = useUploads(check, keeper, local);
@@ -40,13 +47,22 @@ export function DraftPage({ check }: { check: Check }) {
       actions={
         <>
           <Button onClick={() => setDoing("aside")}>Set aside</Button>
-          <Button filled disabled={!check.may.submit || keeper.isAnalysing || uploads.isBusy} onClick={() => setDoing("submit")}>
+          <Button
+            filled
+            disabled={!check.may.submit || keeper.isAnalysing || uploads.isBusy}
+            onClick={() => setDoing("submit")}
+          >
             Sign and submit
           </Button>
         </>
       }
     >
-      <ConditionsSection check={check} keeper={keeper} configuration={configuration} altitudeM={instrument.data?.altitudeM ?? null} />
+      <ConditionsSection
+        check={check}
+        keeper={keeper}
+        configuration={configuration}
+        altitudeM={instrument.data?.altitudeM ?? null}
+      />
       <FilesSection check={check} uploads={uploads} onNewAttempt={() => setDoing("attempt")} />
       <ResultSection check={check} keeper={keeper} local={local.drawn} isTravelling={uploads.isBusy} />
       <SubmitDialog check={check} keeper={keeper} open={doing === "submit"} onClose={close} />
@@ -75,7 +91,8 @@ function DraftAside({ check }: { check: Check }) {
 /** Where what is typed is kept, in words that are true at each moment. */
 function KeptNote({ keeper, check }: { keeper: DraftKeeper; check: Check }) {
   const zone = useZone();
-  const returned = check.state === "returned" ? [...check.events].reverse().find((event) => event.kind === "returned") : undefined;
+  const returned =
+    check.state === "returned" ? [...check.events].reverse().find((event) => event.kind === "returned") : undefined;
   const text = keeper.isSaving
     ? "Draft, being kept on the server…"
     : keeper.isUnsaved
@@ -97,7 +114,17 @@ function KeptNote({ keeper, check }: { keeper: DraftKeeper; check: Check }) {
   );
 }
 
-function SubmitDialog({ check, keeper, open, onClose }: { check: Check; keeper: DraftKeeper; open: boolean; onClose: () => void }) {
+function SubmitDialog({
+  check,
+  keeper,
+  open,
+  onClose,
+}: {
+  check: Check;
+  keeper: DraftKeeper;
+  open: boolean;
+  onClose: () => void;
+}) {
   const client = useQueryClient();
   const navigate = useNavigate();
   const { summary, analysis } = check;

@@ -14,7 +14,14 @@ describe("a dropped file is drawn ahead of the server", () => {
   });
   test("pixels become wavelengths by the axis in force: 200 + 0.5 * 10 = 205 nm", () => {
     const text = `pixel,counts\n${Array.from({ length: 20 }, (_, index) => `${index},${100 + index}`).join("\n")}\n`;
-    const axis = { coefficients: [200, 0.5], firstPx: 0, lastPx: 19, chebyshevCovariance: null, degreesOfFreedom: null, meaning: "standard-air" as const };
+    const axis = {
+      coefficients: [200, 0.5],
+      firstPx: 0,
+      lastPx: 19,
+      chebyshevCovariance: null,
+      degreesOfFreedom: null,
+      meaning: "standard-air" as const,
+    };
     const drawn = drawCapture(bytes(text), "a.csv", axis);
     expect(drawn.outcome).toBe("drawn");
     if (drawn.outcome !== "drawn") return;

@@ -1,7 +1,21 @@
 /** Files of the current attempt: dropped in, on their way, stored with a receipt, and how the chosen one is read. */
 import type { CaptureReceipt, Check } from "@wavekeep/api/contract";
 import { useRef, useState, type DragEvent } from "react";
-import { Button, formatCount, formatHash, formatPercent, formatTime, ProblemNote, Section, SelectField, Table, TextButton, useZone, zoneName, formatClock } from "../ui/index.ts";
+import {
+  Button,
+  formatCount,
+  formatHash,
+  formatPercent,
+  formatTime,
+  ProblemNote,
+  Section,
+  SelectField,
+  Table,
+  TextButton,
+  useZone,
+  zoneName,
+  formatClock,
+} from "../ui/index.ts";
 import type { Uploads } from "./use-uploads.ts";
 
 interface FilesSectionProps {
@@ -16,7 +30,10 @@ export function FilesSection({ check, uploads, onNewAttempt }: FilesSectionProps
   const [picked, setPicked] = useState<string | null>(null);
   const input = useRef<HTMLInputElement>(null);
   const captures = check.attempts.find((attempt) => attempt.number === check.currentAttempt)?.captures ?? [];
-  const chosen = captures.find((capture) => capture.id === picked) ?? captures.find((capture) => capture.reading !== null) ?? captures[0];
+  const chosen =
+    captures.find((capture) => capture.id === picked) ??
+    captures.find((capture) => capture.reading !== null) ??
+    captures[0];
   const drop = (event: DragEvent) => {
     event.preventDefault();
     setOver(false);
@@ -38,12 +55,22 @@ export function FilesSection({ check, uploads, onNewAttempt }: FilesSectionProps
         className="grid gap-x-10 gap-y-6 wide:grid-cols-[minmax(0,1fr)_minmax(0,420px)]"
       >
         <div className="min-w-0">
-          {captures.length > 0 && <CapturesTable captures={captures} chosen={chosen} onChoose={(capture) => setPicked(capture.id)} />}
+          {captures.length > 0 && (
+            <CapturesTable captures={captures} chosen={chosen} onChoose={(capture) => setPicked(capture.id)} />
+          )}
           <Travelling uploads={uploads} />
-          <div className={`mt-3 flex flex-wrap items-end gap-4 rounded-(--radius) border border-dashed p-4 ${isOver ? "border-accent" : "border-graph"}`}>
+          <div
+            className={`mt-3 flex flex-wrap items-end gap-4 rounded-(--radius) border border-dashed p-4 ${isOver ? "border-accent" : "border-graph"}`}
+          >
             <div className="min-w-[200px] flex-1">
-              <p>{captures.length === 0 ? "Drop the captures here as the instrument wrote them, or choose them." : "Drop more captures here, or choose them."}</p>
-              <p className="type-note">CSV or text, up to 50 MB each. Repeats of one lamp are taken together; a dark is subtracted.</p>
+              <p>
+                {captures.length === 0
+                  ? "Drop the captures here as the instrument wrote them, or choose them."
+                  : "Drop more captures here, or choose them."}
+              </p>
+              <p className="type-note">
+                CSV or text, up to 50 MB each. Repeats of one lamp are taken together; a dark is subtracted.
+              </p>
             </div>
             <SelectField
               label="They are"
@@ -76,10 +103,21 @@ export function FilesSection({ check, uploads, onNewAttempt }: FilesSectionProps
   );
 }
 
-function CapturesTable({ captures, chosen, onChoose }: { captures: readonly CaptureReceipt[]; chosen: CaptureReceipt | undefined; onChoose: (capture: CaptureReceipt) => void }) {
+function CapturesTable({
+  captures,
+  chosen,
+  onChoose,
+}: {
+  captures: readonly CaptureReceipt[];
+  chosen: CaptureReceipt | undefined;
+  onChoose: (capture: CaptureReceipt) => void;
+}) {
   const zone = useZone();
   const note = (capture: CaptureReceipt) =>
-    capture.refusal ?? (capture.seenBefore === null ? null : `The same bytes as ${capture.seenBefore.fileName} in ${capture.seenBefore.checkNumber}, received ${formatTime(capture.seenBefore.receivedAt, zone)}.`);
+    capture.refusal ??
+    (capture.seenBefore === null
+      ? null
+      : `The same bytes as ${capture.seenBefore.fileName} in ${capture.seenBefore.checkNumber}, received ${formatTime(capture.seenBefore.receivedAt, zone)}.`);
   return (
     <div className="@container">
       <Table
@@ -93,11 +131,37 @@ function CapturesTable({ captures, chosen, onChoose }: { captures: readonly Capt
         rowClassName={(capture) => (capture.refusal === null ? "" : "text-quiet")}
         columns={[
           { key: "file", head: "File", cell: (capture) => <span className="break-all">{capture.fileName}</span> },
-          { key: "rows", head: "Rows", numbers: true, className: "hidden @min-[420px]:table-cell", cell: (capture) => (capture.reading === null ? "–" : formatCount(capture.reading.rows)) },
+          {
+            key: "rows",
+            head: "Rows",
+            numbers: true,
+            className: "hidden @min-[420px]:table-cell",
+            cell: (capture) => (capture.reading === null ? "–" : formatCount(capture.reading.rows)),
+          },
           { key: "part", head: "Read as", cell: (capture) => (capture.refusal !== null ? "not read" : capture.part) },
-          { key: "sha", head: "SHA-256", className: "hidden whitespace-nowrap @min-[480px]:table-cell", cell: (capture) => <span title={capture.sha256}>{capture.sha256.slice(0, 4)} {capture.sha256.slice(4, 8)}</span> },
-          { key: "at", head: `Received, ${zoneName(captures[0]?.receivedAt ?? new Date(), zone)}`, className: "whitespace-nowrap", cell: (capture) => formatTime(capture.receivedAt, zone, true).split(" ")[0] },
-          { key: "trail", head: "Trail", numbers: true, className: "hidden @min-[540px]:table-cell", cell: (capture) => formatCount(capture.trailNumber) },
+          {
+            key: "sha",
+            head: "SHA-256",
+            className: "hidden whitespace-nowrap @min-[480px]:table-cell",
+            cell: (capture) => (
+              <span title={capture.sha256}>
+                {capture.sha256.slice(0, 4)} {capture.sha256.slice(4, 8)}
+              </span>
+            ),
+          },
+          {
+            key: "at",
+            head: `Received, ${zoneName(captures[0]?.receivedAt ?? new Date(), zone)}`,
+            className: "whitespace-nowrap",
+            cell: (capture) => formatTime(capture.receivedAt, zone, true).split(" ")[0],
+          },
+          {
+            key: "trail",
+            head: "Trail",
+            numbers: true,
+            className: "hidden @min-[540px]:table-cell",
+            cell: (capture) => formatCount(capture.trailNumber),
+          },
         ]}
         narrow={(capture) => (
           <button type="button" className="block w-full text-left" onClick={() => onChoose(capture)}>
@@ -106,7 +170,8 @@ function CapturesTable({ captures, chosen, onChoose }: { captures: readonly Capt
               <span className="type-note">{capture.refusal !== null ? "not read" : capture.part}</span>
             </span>
             <span className="type-note block">
-              {formatHash(capture.sha256)}, {formatClock(capture.receivedAt, zone)}, trail {formatCount(capture.trailNumber)}
+              {formatHash(capture.sha256)}, {formatClock(capture.receivedAt, zone)}, trail{" "}
+              {formatCount(capture.trailNumber)}
             </span>
             {note(capture) !== null && <span className="type-note block">{note(capture)}</span>}
           </button>
@@ -148,7 +213,11 @@ function Travelling({ uploads }: { uploads: Uploads }) {
 }
 
 const columnUse = (index: number, reading: NonNullable<CaptureReceipt["reading"]>): string =>
-  index === reading.intensityColumn ? "intensity" : index === reading.axisColumn ? `${reading.axisKind}, ${reading.axisUnit}` : "not used";
+  index === reading.intensityColumn
+    ? "intensity"
+    : index === reading.axisColumn
+      ? `${reading.axisKind}, ${reading.axisUnit}`
+      : "not used";
 
 const delimiterWords: Record<string, string> = { ",": "Commas", ";": "Semicolons", "\t": "Tabs", " ": "Spaces" };
 
@@ -173,7 +242,9 @@ function AsRead({ capture }: { capture: CaptureReceipt }) {
             <tr>
               {reading.columns.map((heading, index) => (
                 <th key={`${heading} ${index}`} scope="col" className="pr-4 pb-1 align-bottom">
-                  <span className={`block border px-2 py-[3px] type-note whitespace-nowrap ${index === reading.intensityColumn || index === reading.axisColumn ? "border-graph strong !text-ink" : "border-graph border-dashed"}`}>
+                  <span
+                    className={`block border px-2 py-[3px] type-note whitespace-nowrap ${index === reading.intensityColumn || index === reading.axisColumn ? "border-graph strong !text-ink" : "border-graph border-dashed"}`}
+                  >
                     {columnUse(index, reading)}
                   </span>
                   <span className="type-note mt-1 block">{heading}</span>
@@ -185,7 +256,10 @@ function AsRead({ capture }: { capture: CaptureReceipt }) {
             {reading.firstRows.slice(0, 6).map((row, rowIndex) => (
               <tr key={rowIndex}>
                 {reading.columns.map((heading, index) => (
-                  <td key={`${heading} ${index}`} className={`py-[2px] pr-4 whitespace-nowrap ${index === reading.intensityColumn || index === reading.axisColumn ? "" : "text-quiet"}`}>
+                  <td
+                    key={`${heading} ${index}`}
+                    className={`py-[2px] pr-4 whitespace-nowrap ${index === reading.intensityColumn || index === reading.axisColumn ? "" : "text-quiet"}`}
+                  >
                     {row[index] ?? ""}
                   </td>
                 ))}
@@ -195,7 +269,8 @@ function AsRead({ capture }: { capture: CaptureReceipt }) {
         </table>
       </div>
       <p className="type-note mt-2">
-        {delimiterWords[reading.delimiter] ?? reading.delimiter}, decimal {reading.decimal === "," ? "comma" : "point"}, {formatCount(reading.rows)} rows. {reading.remarks.join(" ")}
+        {delimiterWords[reading.delimiter] ?? reading.delimiter}, decimal {reading.decimal === "," ? "comma" : "point"},{" "}
+        {formatCount(reading.rows)} rows. {reading.remarks.join(" ")}
       </p>
     </div>
   );

@@ -11,18 +11,31 @@ import type { DraftKeeper } from "./use-draft.ts";
 import { lineName } from "./verdict-sentence.ts";
 
 const consequence = (line: LineResult) =>
-  line.required ? "The procedure requires this line: without it the verdict is inconclusive." : "The verdict with every line stays beside the one that is submitted.";
+  line.required
+    ? "The procedure requires this line: without it the verdict is inconclusive."
+    : "The verdict with every line stays beside the one that is submitted.";
 
 /** What the core saw in the line, as a first choice. */
 function firstReason(line: LineResult): z.infer<typeof leaveOutReason> {
   if (line.flags.includes("saturated")) return "saturated";
   if (line.flags.includes("spike")) return "spike";
   if (line.flags.includes("weak")) return "too-weak";
-  if (line.flags.includes("poor-fit") || line.flags.includes("room-light") || line.flags.includes("edge")) return "disturbed";
+  if (line.flags.includes("poor-fit") || line.flags.includes("room-light") || line.flags.includes("edge"))
+    return "disturbed";
   return "blended";
 }
 
-export function LeaveOutDialog({ line, analysis, keeper, onClose }: { line: LineResult; analysis: Analysis; keeper: DraftKeeper; onClose: () => void }) {
+export function LeaveOutDialog({
+  line,
+  analysis,
+  keeper,
+  onClose,
+}: {
+  line: LineResult;
+  analysis: Analysis;
+  keeper: DraftKeeper;
+  onClose: () => void;
+}) {
   const [isBusy, setBusy] = useState(false);
   const [error, setError] = useState<unknown>(null);
   const form = useForm<z.input<typeof leftOutLine>, unknown, z.output<typeof leftOutLine>>({
@@ -33,7 +46,9 @@ export function LeaveOutDialog({ line, analysis, keeper, onClose }: { line: Line
     setBusy(true);
     setError(null);
     try {
-      await keeper.apply({ leftOut: [...keeper.draft.leftOut.filter((other) => other.wavelengthNm !== left.wavelengthNm), left] });
+      await keeper.apply({
+        leftOut: [...keeper.draft.leftOut.filter((other) => other.wavelengthNm !== left.wavelengthNm), left],
+      });
       onClose();
     } catch (problem) {
       setError(problem);
@@ -52,7 +67,11 @@ export function LeaveOutDialog({ line, analysis, keeper, onClose }: { line: Line
       error={error}
       onSubmit={(values) => void leaveOut(values)}
     >
-      <FormSelect name="reason" label="What is seen" choices={leaveOutReason.options.map((value) => ({ value, label: leaveOutWords[value] }))} />
+      <FormSelect
+        name="reason"
+        label="What is seen"
+        choices={leaveOutReason.options.map((value) => ({ value, label: leaveOutWords[value] }))}
+      />
       <FormArea name="note" label="Where it is seen" note="The reviewer reads it beside the line." />
     </DialogForm>
   );

@@ -4,7 +4,15 @@ import type { ReactNode } from "react";
 import { ToleranceUsed, wavelengthHue } from "../drawings/index.ts";
 import { useTheme } from "../shared/theme.ts";
 import { flagWords, leaveOutWords, lineState, speciesWord } from "../shared/words.ts";
-import { Decimal, formatNumber, formatPercent, formatQuantity, Status, Table, uncertaintyDecimals } from "../ui/index.ts";
+import {
+  Decimal,
+  formatNumber,
+  formatPercent,
+  formatQuantity,
+  Status,
+  Table,
+  uncertaintyDecimals,
+} from "../ui/index.ts";
 
 interface LinesTableProps {
   analysis: Analysis;
@@ -13,7 +21,7 @@ interface LinesTableProps {
   onChoose: (line: number | null) => void;
   /** Name of the person who left lines out, before their reason. */
   leftOutBy?: string;
-  /** What may be done with a line, e.g. leave it out. */
+  /** On a phone, under the line: what may be done with it. */
   action?: (line: LineResult, index: number) => ReactNode;
 }
 
@@ -24,7 +32,8 @@ function speciesNote(line: LineResult): string {
   const notes: string[] = [];
   if (line.blendOfNm.length > 1) notes.push(`blend of ${line.blendOfNm.length}`);
   if (line.order > 1) notes.push(`order ${line.order}`);
-  for (const flag of line.flags) if (flag !== "blend" && flag !== "saturated" && flag !== "second-order") notes.push(flagWords[flag]);
+  for (const flag of line.flags)
+    if (flag !== "blend" && flag !== "saturated" && flag !== "second-order") notes.push(flagWords[flag]);
   return notes.join(", ");
 }
 
@@ -43,7 +52,13 @@ const referenceDecimals = (line: LineResult) => Math.min(4, (String(line.wavelen
 
 export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: LinesTableProps) {
   const theme = useTheme();
-  const rows: Row[] = analysis.lines.map((line, index) => ({ line, index })).sort((a, b) => (a.line.indicatedNm ?? a.line.wavelengthNm ?? a.line.position) - (b.line.indicatedNm ?? b.line.wavelengthNm ?? b.line.position));
+  const rows: Row[] = analysis.lines
+    .map((line, index) => ({ line, index }))
+    .sort(
+      (a, b) =>
+        (a.line.indicatedNm ?? a.line.wavelengthNm ?? a.line.position) -
+        (b.line.indicatedNm ?? b.line.wavelengthNm ?? b.line.position),
+    );
   const errorDecimals = Math.max(2, ...analysis.lines.map((line) => uncertaintyDecimals(line.errorExpandedUncNm) ?? 0));
   const positionDecimals = analysis.axisKind === "pixel" || analysis.axisKind === "step" ? 2 : 3;
   // A width has the unit of the axis; with a known axis it is told in nm, like everything beside it.
@@ -51,7 +66,10 @@ export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: Li
     if (analysis.axisKind === "wavelength") return 1;
     const coefficients = analysis.dispersion?.axis.coefficients;
     if (coefficients === undefined) return null;
-    return coefficients.reduce((slope, value, power) => (power === 0 ? slope : slope + power * value * line.position ** (power - 1)), 0);
+    return coefficients.reduce(
+      (slope, value, power) => (power === 0 ? slope : slope + power * value * line.position ** (power - 1)),
+      0,
+    );
   };
   const fwhm = (line: LineResult) => {
     const scale = nmPerStep(line);
@@ -71,7 +89,16 @@ export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: Li
           rowClassName={({ line }) => (isAside(line) ? "left-out" : "")}
           rowNote={({ line }) => rowReason(line, leftOutBy)}
           columns={[
-            { key: "reference", head: "Reference, nm", cell: ({ line }) => (line.wavelengthNm === null ? <span className="text-quiet">unnamed</span> : <Decimal value={line.wavelengthNm} decimals={referenceDecimals(line)} columnDecimals={4} />) },
+            {
+              key: "reference",
+              head: "Reference, nm",
+              cell: ({ line }) =>
+                line.wavelengthNm === null ? (
+                  <span className="text-quiet">unnamed</span>
+                ) : (
+                  <Decimal value={line.wavelengthNm} decimals={referenceDecimals(line)} columnDecimals={4} />
+                ),
+            },
             {
               key: "species",
               head: "Species",
@@ -81,43 +108,123 @@ export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: Li
                 </>
               ),
             },
-            { key: "position", head: `Position, ${analysis.axisUnit}`, numbers: true, className: "hidden @min-[560px]:table-cell", cell: ({ line }) => <Decimal value={line.position} decimals={positionDecimals} columnDecimals={positionDecimals} /> },
-            { key: "error", head: "Error", numbers: true, cell: ({ line }) => line.errorNm !== null && <Decimal value={line.errorNm} signed decimals={uncertaintyDecimals(line.errorExpandedUncNm) ?? 3} columnDecimals={errorDecimals} /> },
-            { key: "U", head: "U", numbers: true, cell: ({ line }) => line.errorExpandedUncNm !== null && <Decimal value={line.errorExpandedUncNm} decimals={uncertaintyDecimals(line.errorExpandedUncNm) ?? 3} columnDecimals={errorDecimals} /> },
-            { key: "fwhm", head: "FWHM", numbers: true, className: "hidden @min-[620px]:table-cell", cell: ({ line }) => <Decimal value={fwhm(line)} decimals={2} columnDecimals={2} /> },
+            {
+              key: "position",
+              head: `Position, ${analysis.axisUnit}`,
+              numbers: true,
+              className: "hidden @min-[560px]:table-cell",
+              cell: ({ line }) => (
+                <Decimal value={line.position} decimals={positionDecimals} columnDecimals={positionDecimals} />
+              ),
+            },
+            {
+              key: "error",
+              head: "Error",
+              numbers: true,
+              cell: ({ line }) =>
+                line.errorNm !== null && (
+                  <Decimal
+                    value={line.errorNm}
+                    signed
+                    decimals={uncertaintyDecimals(line.errorExpandedUncNm) ?? 3}
+                    columnDecimals={errorDecimals}
+                  />
+                ),
+            },
+            {
+              key: "U",
+              head: "U",
+              numbers: true,
+              cell: ({ line }) =>
+                line.errorExpandedUncNm !== null && (
+                  <Decimal
+                    value={line.errorExpandedUncNm}
+                    decimals={uncertaintyDecimals(line.errorExpandedUncNm) ?? 3}
+                    columnDecimals={errorDecimals}
+                  />
+                ),
+            },
+            {
+              key: "fwhm",
+              head: "FWHM",
+              numbers: true,
+              className: "hidden @min-[620px]:table-cell",
+              cell: ({ line }) => <Decimal value={fwhm(line)} decimals={2} columnDecimals={2} />,
+            },
             {
               key: "used",
               head: "Tolerance used",
               className: "hidden whitespace-nowrap @min-[480px]:table-cell",
-              cell: ({ line }) => line.status === "judged" && <ToleranceUsed used={line.toleranceUsed} guardShare={line.guardBandNm === null || line.toleranceNm === null ? null : line.guardBandNm / line.toleranceNm} state={lineState(line).state} />,
+              cell: ({ line }) =>
+                line.status === "judged" && (
+                  <ToleranceUsed
+                    used={line.toleranceUsed}
+                    guardShare={
+                      line.guardBandNm === null || line.toleranceNm === null
+                        ? null
+                        : line.guardBandNm / line.toleranceNm
+                    }
+                    state={lineState(line).state}
+                  />
+                ),
             },
-            { key: "verdict", head: "Verdict", className: "whitespace-nowrap", cell: ({ line }) => <Status {...lineState(line)} /> },
-            ...(action === undefined ? [] : [{ key: "action", head: <span className="sr-only">What can be done</span>, className: "whitespace-nowrap", cell: ({ line, index }: Row) => action(line, index) }]),
+            {
+              key: "verdict",
+              head: "Verdict",
+              className: "whitespace-nowrap",
+              cell: ({ line }) => <Status {...lineState(line)} />,
+            },
           ]}
         />
       </div>
       <ul className="book:hidden" aria-label="Lines">
         {[...rows]
-          .sort((a, b) => (isAside(a.line) ? 1 : 0) - (isAside(b.line) ? 1 : 0) || (b.line.toleranceUsed ?? -1) - (a.line.toleranceUsed ?? -1))
+          .sort(
+            (a, b) =>
+              (isAside(a.line) ? 1 : 0) - (isAside(b.line) ? 1 : 0) ||
+              (b.line.toleranceUsed ?? -1) - (a.line.toleranceUsed ?? -1),
+          )
           .map(({ line, index }) => (
             <li key={index} className={`border-hairline border-b py-2 ${isAside(line) ? "left-out" : ""}`}>
-              <button type="button" className="block w-full text-left" aria-pressed={index === chosen} onClick={() => onChoose(index === chosen ? null : index)}>
+              <button
+                type="button"
+                className="block w-full text-left"
+                aria-pressed={index === chosen}
+                onClick={() => onChoose(index === chosen ? null : index)}
+              >
                 <span className="flex items-baseline justify-between gap-3">
                   <span>
-                    <b>{line.wavelengthNm === null ? "unnamed" : formatNumber(line.wavelengthNm, { decimals: referenceDecimals(line) })}</b>{" "}
+                    <b>
+                      {line.wavelengthNm === null
+                        ? "unnamed"
+                        : formatNumber(line.wavelengthNm, { decimals: referenceDecimals(line) })}
+                    </b>{" "}
                     <span className="text-quiet">
                       {speciesWord(line.species)}
                       {line.blendOfNm.length > 1 && `, blend of ${line.blendOfNm.length}`}
                     </span>
                   </span>
-                  <span>{line.errorNm !== null && formatQuantity(line.errorNm, line.errorExpandedUncNm, "nm", { signed: true })}</span>
+                  <span>
+                    {line.errorNm !== null &&
+                      formatQuantity(line.errorNm, line.errorExpandedUncNm, "nm", { signed: true })}
+                  </span>
                 </span>
                 <span className="mt-1 flex items-baseline justify-between gap-3">
                   <Status {...lineState(line)} />
                   {line.status === "judged" ? (
-                    <ToleranceUsed used={line.toleranceUsed} guardShare={line.guardBandNm === null || line.toleranceNm === null ? null : line.guardBandNm / line.toleranceNm} state={lineState(line).state} />
+                    <ToleranceUsed
+                      used={line.toleranceUsed}
+                      guardShare={
+                        line.guardBandNm === null || line.toleranceNm === null
+                          ? null
+                          : line.guardBandNm / line.toleranceNm
+                      }
+                      state={lineState(line).state}
+                    />
                   ) : (
-                    line.toleranceUsed !== null && <span className="type-note">{formatPercent(line.toleranceUsed)}</span>
+                    line.toleranceUsed !== null && (
+                      <span className="type-note">{formatPercent(line.toleranceUsed)}</span>
+                    )
                   )}
                 </span>
               </button>
@@ -139,8 +246,15 @@ export function LinesNote({ analysis }: { analysis: Analysis }) {
       <p>
         {judged} of {named} named lines judged; beyond the outermost nothing is judged. {analysis.confidence.note}
       </p>
-      {analysis.missingLinesNm.length > 0 && <p>Expected and not found: {analysis.missingLinesNm.map((nm) => formatNumber(nm, { decimals: 3 })).join(", ")} nm.</p>}
-      {analysis.verdict?.reasons.map((reason) => <p key={reason}>{reason}</p>)}
+      {analysis.missingLinesNm.length > 0 && (
+        <p>
+          Expected and not found: {analysis.missingLinesNm.map((nm) => formatNumber(nm, { decimals: 3 })).join(", ")}{" "}
+          nm.
+        </p>
+      )}
+      {analysis.verdict?.reasons.map((reason) => (
+        <p key={reason}>{reason}</p>
+      ))}
       {analysis.warnings.map((warning) => (
         <p key={`${warning.code} ${warning.text}`}>{warning.text}</p>
       ))}

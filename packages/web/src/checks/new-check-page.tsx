@@ -60,11 +60,19 @@ function BeginPage() {
   const start = () => {
     const configurationId = chosen?.configurationId ?? search.get("configuration");
     if (configurationId === null || begin.isPending) return;
-    const body = beginCheckInput.safeParse({ configurationId, condition: shown, followsCheckId: shown === "as-left" ? (follows ?? chosen?.lastCheckId ?? null) : null });
+    const body = beginCheckInput.safeParse({
+      configurationId,
+      condition: shown,
+      followsCheckId: shown === "as-left" ? (follows ?? chosen?.lastCheckId ?? null) : null,
+    });
     if (body.success) begin.mutate(body.data);
   };
   return (
-    <Page title={chosen === undefined ? "New check" : `New check of ${chosen.name}`} aside="Checks" lead="It gets its number when it is begun, and stays listed from then on.">
+    <Page
+      title={chosen === undefined ? "New check" : `New check of ${chosen.name}`}
+      aside="Checks"
+      lead="It gets its number when it is begun, and stays listed from then on."
+    >
       <Section title="Begin" note="As found before as left: what the instrument was is recorded before it is adjusted.">
         <Asked query={fleet} rows={3}>
           {() =>
@@ -82,10 +90,14 @@ function BeginPage() {
                   label="Instrument"
                   placeholder="Choose an instrument"
                   value={search.get("configuration") ?? ""}
-                  onChange={(event) => setSearch(event.target.value === "" ? {} : { configuration: event.target.value }, { replace: true })}
+                  onChange={(event) =>
+                    setSearch(event.target.value === "" ? {} : { configuration: event.target.value }, { replace: true })
+                  }
                   choices={[
                     ...rows.map((row) => ({ value: row.configurationId, label: `${row.name}, ${row.place}` })),
-                    ...(chosen === undefined && search.get("configuration") !== null ? [{ value: search.get("configuration") ?? "", label: "the configuration you came from" }] : []),
+                    ...(chosen === undefined && search.get("configuration") !== null
+                      ? [{ value: search.get("configuration") ?? "", label: "the configuration you came from" }]
+                      : []),
                   ]}
                 />
                 <SelectField
@@ -96,7 +108,11 @@ function BeginPage() {
                     { value: "as-found", label: "as found: nothing was changed since it was last used" },
                     { value: "as-left", label: "as left: after an adjustment or a service" },
                   ]}
-                  note={shown === "as-left" && chosen !== undefined && chosen.lastCheckNumber !== null ? `Follows ${chosen.lastCheckNumber}.` : undefined}
+                  note={
+                    shown === "as-left" && chosen !== undefined && chosen.lastCheckNumber !== null
+                      ? `Follows ${chosen.lastCheckNumber}.`
+                      : undefined
+                  }
                 />
                 <Refused error={begin.error} />
                 <div className="flex flex-wrap gap-3">

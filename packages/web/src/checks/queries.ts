@@ -27,27 +27,35 @@ export type ChecksFilter = Omit<NonNullable<RouteQuery<"listChecks">>, "after" |
 export const useChecks = (filter: ChecksFilter) =>
   useInfiniteQuery({
     queryKey: keys.list(filter),
-    queryFn: ({ pageParam, signal }) => api.get("listChecks", {}, { ...filter, after: pageParam ?? undefined }, { signal }),
+    queryFn: ({ pageParam, signal }) =>
+      api.get("listChecks", {}, { ...filter, after: pageParam ?? undefined }, { signal }),
     initialPageParam: null as string | null,
     getNextPageParam: (last) => last.next,
     placeholderData: keepPreviousData,
   });
 
 export const useCheck = (checkId: string) =>
-  useQuery({ queryKey: keys.one(checkId), queryFn: ({ signal }) => api.get("readCheck", { checkId }, undefined, { signal }) });
+  useQuery({
+    queryKey: keys.one(checkId),
+    queryFn: ({ signal }) => api.get("readCheck", { checkId }, undefined, { signal }),
+  });
 
 /** The spectrum of one analysis; immutable, so it is asked for once. */
 export const useDrawing = (checkId: string, analysisVersion: number | undefined) =>
   useQuery({
     queryKey: keys.drawing(checkId, analysisVersion ?? 0),
-    queryFn: ({ signal }) => api.get("readDrawing", { checkId, analysisVersion: analysisVersion ?? 0 }, undefined, { signal }),
+    queryFn: ({ signal }) =>
+      api.get("readDrawing", { checkId, analysisVersion: analysisVersion ?? 0 }, undefined, { signal }),
     enabled: analysisVersion !== undefined,
     staleTime: Infinity,
     placeholderData: keepPreviousData,
   });
 
 export const useFleet = () =>
-  useQuery({ queryKey: ["instruments"], queryFn: ({ signal }) => api.get("listInstruments", {}, undefined, { signal }) });
+  useQuery({
+    queryKey: ["instruments"],
+    queryFn: ({ signal }) => api.get("listInstruments", {}, undefined, { signal }),
+  });
 
 export const usePeople = () =>
   useQuery({ queryKey: ["people"], queryFn: ({ signal }) => api.get("listPeople", {}, undefined, { signal }) });
@@ -82,13 +90,15 @@ export const addCaptures = (checkId: string, files: readonly File[], part: "lamp
 
 export const useNewAttempt = (checkId: string, done: (check: Check) => void) =>
   useChange(
-    (body: z.input<typeof newAttemptInput>, idempotencyKey) => api.post("newAttempt", { checkId }, body, { idempotencyKey }),
+    (body: z.input<typeof newAttemptInput>, idempotencyKey) =>
+      api.post("newAttempt", { checkId }, body, { idempotencyKey }),
     done,
   );
 
 export const useSetAside = (checkId: string, done: () => void) =>
   useChange(
-    (body: z.input<typeof setAsideInput>, idempotencyKey) => api.post("setAside", { checkId }, body, { idempotencyKey }),
+    (body: z.input<typeof setAsideInput>, idempotencyKey) =>
+      api.post("setAside", { checkId }, body, { idempotencyKey }),
     done,
   );
 
@@ -100,7 +110,8 @@ export const approveCheck = (checkId: string, body: z.input<typeof approveInput>
 
 export const useReturnCheck = (checkId: string, done: () => void) =>
   useChange(
-    (body: z.input<typeof returnInput>, idempotencyKey) => api.post("returnCheck", { checkId }, body, { idempotencyKey }),
+    (body: z.input<typeof returnInput>, idempotencyKey) =>
+      api.post("returnCheck", { checkId }, body, { idempotencyKey }),
     done,
   );
 

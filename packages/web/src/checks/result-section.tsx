@@ -3,8 +3,27 @@ import type { Check } from "@wavekeep/api/contract";
 import type { LineResult } from "@wavekeep/core";
 import { useState } from "react";
 import { DrawingLinks, SpectrumBench, useDrawing } from "../drawings/index.ts";
-import { counted } from "../shared/words.ts";
-import { Button, Empty, Fact, Facts, formatCount, formatHash, formatInstant, formatNumber, formatPercent, NARROW_SPACE, ProblemNote, Section, Skeleton, Status, StatusShape, statusWord, TextButton, useZone, verdictState } from "../ui/index.ts";
+import { counted, speciesWord } from "../shared/words.ts";
+import {
+  Button,
+  Empty,
+  Fact,
+  Facts,
+  formatCount,
+  formatHash,
+  formatInstant,
+  formatNumber,
+  formatPercent,
+  NARROW_SPACE,
+  ProblemNote,
+  Section,
+  Skeleton,
+  Status,
+  StatusShape,
+  statusWord,
+  useZone,
+  verdictState,
+} from "../ui/index.ts";
 import { BudgetTable } from "./budget-table.tsx";
 import { DispersionSection } from "./dispersion-section.tsx";
 import type { DrawReply } from "./draw-worker.ts";
@@ -36,13 +55,28 @@ export function ResultSection({ check, keeper, local, isTravelling }: ResultSect
   // The drawing made here stands only until the server's own is there.
   const ahead = local !== null && (isTravelling || keeper.isAnalysing || !isCurrent) ? local : null;
   const hasMatter = captures.length > 0 || ahead !== null;
-  const bringBack = (line: LineResult) =>
-    void keeper.apply({ leftOut: keeper.draft.leftOut.filter((left) => left.wavelengthNm !== line.leftOut?.wavelengthNm && left.wavelengthNm !== line.wavelengthNm) }).catch(() => undefined);
+  const chosenLine = chosen === null ? undefined : analysis?.lines[chosen];
+  const actions = {
+    isBusy: keeper.isAnalysing || keeper.isSaving,
+    onLeaveOut: setLeavingOut,
+    onBringBack: (line: LineResult) =>
+      void keeper
+        .apply({
+          leftOut: keeper.draft.leftOut.filter(
+            (left) => left.wavelengthNm !== (line.leftOut?.wavelengthNm ?? line.wavelengthNm),
+          ),
+        })
+        .catch(() => undefined),
+  };
   return (
     <>
       <Section
         title="Result so far"
-        note={ahead !== null ? `Drawn on this device in ${formatNumber(Math.max(1, ahead.elapsedMs))}${NARROW_SPACE}ms while the file travels, with the server’s own core. No verdict before the receipt.` : "As the server’s core reads it; nothing is signed yet."}
+        note={
+          ahead !== null
+            ? `Drawn on this device in ${formatNumber(Math.max(1, ahead.elapsedMs))}${NARROW_SPACE}ms while the file travels, with the server’s own core. No verdict before the receipt.`
+            : "As the server’s core reads it; nothing is signed yet."
+        }
         switches={hasMatter && <ScaleSwitch scale={scale} onChange={setScale} />}
         links={isCurrent && spectrum.data !== undefined && ahead === null && <DrawingLinks handle={handle} />}
       >
@@ -56,7 +90,14 @@ export function ResultSection({ check, keeper, local, isTravelling }: ResultSect
               <Ahead drawn={ahead} scale={scale} />
             ) : isCurrent && analysis !== null ? (
               spectrum.data !== undefined ? (
-                <SpectrumBench analysis={analysis} drawing={spectrum.data} chosen={chosen} onChoose={setPicked} scale={scale} handle={handle} />
+                <SpectrumBench
+                  analysis={analysis}
+                  drawing={spectrum.data}
+                  chosen={chosen}
+                  onChoose={setPicked}
+                  scale={scale}
+                  handle={handle}
+                />
               ) : spectrum.error !== null ? (
                 <ProblemNote error={spectrum.error} />
               ) : (
@@ -67,49 +108,67 @@ export function ResultSection({ check, keeper, local, isTravelling }: ResultSect
         )}
       </Section>
       {isCurrent && analysis !== null && analysis.lines.length > 0 && (
-        <Section title="Lines" note="A line may be left out for what can be seen in the data, never for its error." id="lines">
-          <div className="grid gap-x-10 gap-y-8 wide:grid-cols-[minmax(0,1fr)_280px]">
+        <Section
+          title="Lines"
+          note="A line may be left out for what can be seen in the data, never for its error."
+          id="lines"
+        >
+          <div className="grid gap-x-10 gap-y-8 wide:grid-cols-[minmax(0,1fr)_316px]">
             <div className="min-w-0">
               <LinesTable
                 analysis={analysis}
                 chosen={chosen}
                 onChoose={setPicked}
-                action={(line) =>
-                  line.wavelengthNm === null ? null : line.status === "left-out" ? (
-                    <TextButton
-                      className="not-italic"
-                      onClick={(event) => {
-                        event.stopPropagation();
-                        bringBack(line);
-                      }}
-                      disabled={keeper.isAnalysing}
-                    >
-                      Bring back
-                    </TextButton>
-                  ) : line.status === "judged" ? (
-                    <TextButton
-                      onClick={(event) => {
-                        event.stopPropagation();
-                        setLeavingOut(line);
-                      }}
-                      disabled={keeper.isAnalysing}
-                    >
-                      Leave out
-                    </TextButton>
-                  ) : null
-                }
+                action={(line, index) => index === chosen && <LineAction line={line} {...actions} />}
               />
               <LinesNote analysis={analysis} />
             </div>
             <div className="min-w-0" aria-live="polite">
-              {chosen !== null && analysis.lines[chosen] !== undefined && <BudgetTable line={analysis.lines[chosen]} axisUnit={analysis.axisUnit} />}
+              {chosenLine !== undefined && (
+                <>
+                  <BudgetTable line={chosenLine} axisUnit={analysis.axisUnit} />
+                  <div className="mt-4 hidden book:block">
+                    <LineAction line={chosenLine} {...actions} />
+                  </div>
+                </>
+              )}
             </div>
           </div>
         </Section>
       )}
-      {isCurrent && analysis !== null && analysis.dispersion !== null && <DispersionSection dispersion={analysis.dispersion} axisUnit={analysis.axisUnit} />}
-      {leavingOut !== null && analysis !== null && <LeaveOutDialog line={leavingOut} analysis={analysis} keeper={keeper} onClose={() => setLeavingOut(null)} />}
+      {isCurrent && analysis !== null && analysis.dispersion !== null && (
+        <DispersionSection dispersion={analysis.dispersion} analysis={analysis} />
+      )}
+      {leavingOut !== null && analysis !== null && (
+        <LeaveOutDialog line={leavingOut} analysis={analysis} keeper={keeper} onClose={() => setLeavingOut(null)} />
+      )}
     </>
+  );
+}
+
+interface LineActionProps {
+  line: LineResult;
+  isBusy: boolean;
+  onLeaveOut: (line: LineResult) => void;
+  onBringBack: (line: LineResult) => void;
+}
+
+/** What may be done with the chosen line: leave it out, or bring it back. */
+function LineAction({ line, isBusy, onLeaveOut, onBringBack }: LineActionProps) {
+  if (line.wavelengthNm === null) return null;
+  const name = `${speciesWord(line.species)} ${formatNumber(line.wavelengthNm, { decimals: 3 })}`;
+  if (line.status === "left-out") {
+    return (
+      <Button disabled={isBusy} onClick={() => onBringBack(line)}>
+        Bring {name} back
+      </Button>
+    );
+  }
+  if (line.status !== "judged") return null;
+  return (
+    <Button disabled={isBusy} onClick={() => onLeaveOut(line)}>
+      Leave {name} out
+    </Button>
   );
 }
 
@@ -118,7 +177,8 @@ function Receipt({ check }: { check: Check }) {
   const zone = useZone();
   const captures = check.attempts.find((attempt) => attempt.number === check.currentAttempt)?.captures ?? [];
   const last = captures.at(-1);
-  if (last === undefined) return <p className="border-hairline border-b pb-3 text-quiet">No receipt yet: the file is on its way.</p>;
+  if (last === undefined)
+    return <p className="border-hairline border-b pb-3 text-quiet">No receipt yet: the file is on its way.</p>;
   return (
     <p className="border-hairline flex flex-wrap gap-x-5 gap-y-1 border-b pb-3">
       <b>Received</b>
@@ -128,16 +188,22 @@ function Receipt({ check }: { check: Check }) {
         SHA-256 {formatHash(last.sha256)}
       </span>
       <span className="text-quiet">trail {formatCount(last.trailNumber)}</span>
-      {captures.length > 1 && (
-        <span className="text-quiet ml-auto">
-          {counted(captures.length, "receipt")} above
-        </span>
-      )}
+      {captures.length > 1 && <span className="text-quiet ml-auto">{counted(captures.length, "receipt")} above</span>}
     </p>
   );
 }
 
-function Verdict({ check, keeper, isTravelling, isCurrent }: { check: Check; keeper: DraftKeeper; isTravelling: boolean; isCurrent: boolean }) {
+function Verdict({
+  check,
+  keeper,
+  isTravelling,
+  isCurrent,
+}: {
+  check: Check;
+  keeper: DraftKeeper;
+  isTravelling: boolean;
+  isCurrent: boolean;
+}) {
   const { analysis } = check;
   const every = analysis?.verdictWithEveryLine ?? null;
   const everyState = every === null ? "not-judged" : verdictState(every.verdict, every.nearLimit);
@@ -164,7 +230,11 @@ function Verdict({ check, keeper, isTravelling, isCurrent }: { check: Check; kee
   if (analysis === null || !isCurrent) {
     return (
       <div className="my-4 flex flex-wrap items-center gap-4">
-        <p className="type-lead text-quiet">{keeper.draft.sourceIds.length === 0 ? "Name the source above: without it no line can have a name." : "Stored, not analysed yet."}</p>
+        <p className="type-lead text-quiet">
+          {keeper.draft.sourceIds.length === 0
+            ? "Name the source above: without it no line can have a name."
+            : "Stored, not analysed yet."}
+        </p>
         {keeper.draft.sourceIds.length > 0 && again}
       </div>
     );
@@ -182,7 +252,10 @@ function Verdict({ check, keeper, isTravelling, isCurrent }: { check: Check; kee
       {(left !== "nothing" || (every !== null && every.verdict !== analysis.verdict?.verdict)) && (
         <Facts>
           <Fact label="With every line">
-            <Status state={everyState} word={`${statusWord(everyState)}${every === null || every.toleranceUsed === null ? "" : `, ${formatPercent(every.toleranceUsed)}`}`} />
+            <Status
+              state={everyState}
+              word={`${statusWord(everyState)}${every === null || every.toleranceUsed === null ? "" : `, ${formatPercent(every.toleranceUsed)}`}`}
+            />
           </Fact>
           <Fact label="Left out">{left}</Fact>
         </Facts>
@@ -200,5 +273,13 @@ function Ahead({ drawn, scale }: { drawn: DrawReply; scale: "root" | "linear" | 
       </p>
     );
   }
-  return <SpectrumBench analysis={drawn.drawn.analysis} drawing={drawn.drawn.drawing} chosen={null} onChoose={() => undefined} scale={scale} />;
+  return (
+    <SpectrumBench
+      analysis={drawn.drawn.analysis}
+      drawing={drawn.drawn.drawing}
+      chosen={null}
+      onChoose={() => undefined}
+      scale={scale}
+    />
+  );
 }

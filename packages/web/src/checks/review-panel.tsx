@@ -20,14 +20,28 @@ function thingWords(check: Check, thing: Thing): { label: string; to: string } {
   const abandoned = check.attempts.filter((attempt) => attempt.abandoned).length;
   switch (thing) {
     case "attempts":
-      return { label: `${counted(check.attempts.length, "attempt")}${abandoned > 0 ? `, ${abandoned} abandoned` : ""}`, to: "#attempts" };
+      return {
+        label: `${counted(check.attempts.length, "attempt")}${abandoned > 0 ? `, ${abandoned} abandoned` : ""}`,
+        to: "#attempts",
+      };
     case "leftOut":
-      return { label: `Left out: ${check.analysis === null ? "nothing" : leftOutSentence(check.analysis)}`, to: "#lines" };
+      return {
+        label: `Left out: ${check.analysis === null ? "nothing" : leftOutSentence(check.analysis)}`,
+        to: "#lines",
+      };
     case "settings":
-      return { label: `Settings: ${settingsWords({ ...check, tolerance: { ...check.tolerance, changedSince: false } })}`, to: "#settings" };
+      return {
+        label: `Settings: ${settingsWords({ ...check, tolerance: { ...check.tolerance, changedSince: false } })}`,
+        to: "#settings",
+      };
     case "tolerance": {
-      const limits = [...new Set(check.tolerance.segments.map((segment) => segment.toleranceNm))].map((value) => formatLimit(value)).join(", ");
-      return { label: `Tolerance ${limits}${check.tolerance.changedSince ? ", changed since" : ", not changed since"}`, to: "#settings" };
+      const limits = [...new Set(check.tolerance.segments.map((segment) => segment.toleranceNm))]
+        .map((value) => formatLimit(value))
+        .join(", ");
+      return {
+        label: `Tolerance ${limits}${check.tolerance.changedSince ? ", changed since" : ", not changed since"}`,
+        to: "#settings",
+      };
     }
   }
 }
@@ -49,7 +63,10 @@ export function ReviewPanel({ check }: { check: Check }) {
       <p className="type-lead text-quiet">Awaiting approval</p>
       {check.may.approve && (
         <fieldset className="mt-2 grid gap-2">
-          <legend className="type-note mb-2">Tick each when you have seen it; then the signature can be given. It asks for your password and locks the record.</legend>
+          <legend className="type-note mb-2">
+            Tick each when you have seen it; then the signature can be given. It asks for your password and locks the
+            record.
+          </legend>
           {things.map((thing) => {
             const { label, to } = thingWords(check, thing);
             return (
@@ -81,7 +98,9 @@ export function ReviewPanel({ check }: { check: Check }) {
         )}
         {check.may.return && <TextButton onClick={() => setDoing("return")}>Send back</TextButton>}
       </div>
-      {check.may.approve && !allSeen && <p className="type-note mt-2">{counted(things.length - seen.size, "thing")} still to see.</p>}
+      {check.may.approve && !allSeen && (
+        <p className="type-note mt-2">{counted(things.length - seen.size, "thing")} still to see.</p>
+      )}
       <ApproveDialog check={check} open={doing === "approve"} onClose={() => setDoing(null)} />
       {doing === "return" && <ReturnDialog check={check} onClose={() => setDoing(null)} />}
     </div>
@@ -99,7 +118,15 @@ function ApproveDialog({ check, open, onClose }: { check: Check; open: boolean; 
       lead={`The record of ${check.summary.instrumentName} is locked, and its report is made.`}
       confirmLabel="Approve and sign"
       onConfirm={async (password) => {
-        await approveCheck(check.summary.id, { password, revision: check.revision, seen: { attempts: true, leftOut: true, settings: true, tolerance: true } }, crypto.randomUUID());
+        await approveCheck(
+          check.summary.id,
+          {
+            password,
+            revision: check.revision,
+            seen: { attempts: true, leftOut: true, settings: true, tolerance: true },
+          },
+          crypto.randomUUID(),
+        );
         await client.invalidateQueries();
       }}
     />
@@ -109,7 +136,10 @@ function ApproveDialog({ check, open, onClose }: { check: Check; open: boolean; 
 function ReturnDialog({ check, onClose }: { check: Check; onClose: () => void }) {
   const send = useReturnCheck(check.summary.id, onClose);
   const shape = returnInput.omit({ revision: true });
-  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: { comment: "" } });
+  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { comment: "" },
+  });
   return (
     <DialogForm
       title={`Send ${check.summary.number} back`}

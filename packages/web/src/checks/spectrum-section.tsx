@@ -23,16 +23,29 @@ export function useCountsScale(): [CountsScale, (scale: CountsScale) => void] {
 }
 
 export function ScaleSwitch({ scale, onChange }: { scale: CountsScale; onChange: (scale: CountsScale) => void }) {
-  return <Switches label="Scale of counts" value={scale} onChange={onChange} choices={(["root", "linear", "log"] as const).map((value) => ({ value, label: scaleWords[value] }))} />;
+  return (
+    <Switches
+      label="Scale of counts"
+      value={scale}
+      onChange={onChange}
+      choices={(["root", "linear", "log"] as const).map((value) => ({ value, label: scaleWords[value] }))}
+    />
+  );
 }
 
 export function SpectrumSection({ check, analysis, chosen, onChoose }: SpectrumSectionProps) {
   const spectrum = useSpectrum(check.summary.id, check.analysisVersion?.version);
   const drawing = useDrawing(`${check.summary.number} errors and spectrum`);
   const [scale, setScale] = useCountsScale();
-  const captures = check.attempts.find((attempt) => attempt.number === (check.analysisVersion?.attempt ?? check.currentAttempt))?.captures.filter((capture) => capture.part === "lamp") ?? [];
+  const captures =
+    check.attempts
+      .find((attempt) => attempt.number === (check.analysisVersion?.attempt ?? check.currentAttempt))
+      ?.captures.filter((capture) => capture.part === "lamp") ?? [];
   const limits = [...new Set(analysis.setup.tolerance.map((segment) => segment.toleranceNm))];
-  const height = limits.length === 1 && limits[0] !== undefined ? `full height ${formatLimit(limits[0])}` : "full height the tolerance of its segment";
+  const height =
+    limits.length === 1 && limits[0] !== undefined
+      ? `full height ${formatLimit(limits[0])}`
+      : "full height the tolerance of its segment";
   const of = captures.length > 1 ? `the mean of ${captures.length} captures` : "the capture";
   return (
     <Section
@@ -43,7 +56,14 @@ export function SpectrumSection({ check, analysis, chosen, onChoose }: SpectrumS
     >
       {spectrum.error !== null && <ProblemNote error={spectrum.error} />}
       {spectrum.data !== undefined ? (
-        <SpectrumBench analysis={analysis} drawing={spectrum.data} chosen={chosen} onChoose={onChoose} scale={scale} handle={drawing} />
+        <SpectrumBench
+          analysis={analysis}
+          drawing={spectrum.data}
+          chosen={chosen}
+          onChoose={onChoose}
+          scale={scale}
+          handle={drawing}
+        />
       ) : (
         spectrum.error === null && <Skeleton rows={14} label="Loading the spectrum" />
       )}

@@ -18,11 +18,17 @@ const valuesOf = (check: Check): DraftValues => {
 };
 
 /** What a result depends on: notes and the lamp's minutes are told, not reckoned with. */
-const inputsOf = ({ note: _note, minutesSinceSwitchOn: _minutes, ...inputs }: DraftValues): string => JSON.stringify(inputs);
+const inputsOf = ({ note: _note, minutesSinceSwitchOn: _minutes, ...inputs }: DraftValues): string =>
+  JSON.stringify(inputs);
 
 /** A number that cannot be read yet is not sent as one. */
 const withoutUnread = (values: DraftValues): DraftValues =>
-  Object.fromEntries(Object.entries(values).map(([key, value]) => [key, typeof value === "number" && Number.isNaN(value) ? null : value])) as DraftValues;
+  Object.fromEntries(
+    Object.entries(values).map(([key, value]) => [
+      key,
+      typeof value === "number" && Number.isNaN(value) ? null : value,
+    ]),
+  ) as DraftValues;
 
 /** What this device kept of a draft that the server never got; null when there is none or it does not fit. */
 function readDevice(check: Check): DraftValues | null {
@@ -86,7 +92,10 @@ export function useDraft(check: Check): DraftKeeper {
   const timer = useRef<ReturnType<typeof setTimeout> | undefined>(undefined);
 
   useEffect(() => {
-    hasCaptures.current = check.attempts.some((attempt) => attempt.number === check.currentAttempt && attempt.captures.some((capture) => capture.refusal === null));
+    hasCaptures.current = check.attempts.some(
+      (attempt) =>
+        attempt.number === check.currentAttempt && attempt.captures.some((capture) => capture.refusal === null),
+    );
     // Nothing of this page's is waiting, and the server's copy moved on: it is shown. Otherwise the refusal tells of it.
     if (unsent.current || check.draft.version <= version.current) return;
     version.current = check.draft.version;
@@ -155,7 +164,8 @@ export function useDraft(check: Check): DraftKeeper {
 
   const saveAndAnalyse = useCallback(async () => {
     await save();
-    if (hasCaptures.current && latest.current.sourceIds.length > 0 && analysed.current !== inputsOf(latest.current)) await analyseNow();
+    if (hasCaptures.current && latest.current.sourceIds.length > 0 && analysed.current !== inputsOf(latest.current))
+      await analyseNow();
   }, [save, analyseNow]);
 
   const put = useCallback(
@@ -230,5 +240,19 @@ export function useDraft(check: Check): DraftKeeper {
     return () => clearTimeout(timer.current);
   }, [saveAndAnalyse]);
 
-  return { draft, change, apply, flush, analyseNow, keptAt, isSaving, isAnalysing, isUnsaved, saveError, analysisError, keepMine, takeTheirs };
+  return {
+    draft,
+    change,
+    apply,
+    flush,
+    analyseNow,
+    keptAt,
+    isSaving,
+    isAnalysing,
+    isUnsaved,
+    saveError,
+    analysisError,
+    keepMine,
+    takeTheirs,
+  };
 }

@@ -4,7 +4,11 @@ import { useCallback, useEffect, useRef, useState } from "react";
 import type { DrawReply, DrawRequest } from "./draw-worker.ts";
 
 /** @returns what the worker drew last, and a function that draws a file; forgetting is drawing nothing */
-export function useLocalDrawing(axis: PixelAxis | null): { drawn: DrawReply | null; draw: (file: File) => void; forget: () => void } {
+export function useLocalDrawing(axis: PixelAxis | null): {
+  drawn: DrawReply | null;
+  draw: (file: File) => void;
+  forget: () => void;
+} {
   const worker = useRef<Worker | null>(null);
   const asked = useRef(0);
   const [drawn, setDrawn] = useState<DrawReply | null>(null);
@@ -24,7 +28,11 @@ export function useLocalDrawing(axis: PixelAxis | null): { drawn: DrawReply | nu
           if (event.data.id === asked.current) setDrawn(event.data);
         });
       }
-      void file.arrayBuffer().then((bytes) => worker.current?.postMessage({ id, name: file.name, bytes, axis } satisfies DrawRequest, [bytes]));
+      void file
+        .arrayBuffer()
+        .then((bytes) =>
+          worker.current?.postMessage({ id, name: file.name, bytes, axis } satisfies DrawRequest, [bytes]),
+        );
     },
     [axis],
   );

@@ -36,7 +36,11 @@ const tooLarge = (file: File) =>
     detail: `${file.name} has ${formatBytes(file.size)}; files up to 50 MB are taken. It was not sent; the other files go on.`,
   });
 
-export function useUploads(check: Check, keeper: DraftKeeper, local: { draw: (file: File) => void; drawn: DrawReply | null; forget: () => void }): Uploads {
+export function useUploads(
+  check: Check,
+  keeper: DraftKeeper,
+  local: { draw: (file: File) => void; drawn: DrawReply | null; forget: () => void },
+): Uploads {
   const client = useQueryClient();
   const [travelling, setTravelling] = useState<readonly TravellingFile[]>([]);
   const [busy, setBusy] = useState(0);
@@ -46,7 +50,11 @@ export function useUploads(check: Check, keeper: DraftKeeper, local: { draw: (fi
   const { analyseNow, flush } = keeper;
   const hasSource = keeper.draft.sourceIds.length > 0;
 
-  const update = useCallback((key: number, change: Partial<TravellingFile>) => setTravelling((files) => files.map((file) => (file.key === key ? { ...file, ...change } : file))), []);
+  const update = useCallback(
+    (key: number, change: Partial<TravellingFile>) =>
+      setTravelling((files) => files.map((file) => (file.key === key ? { ...file, ...change } : file))),
+    [],
+  );
   const dismiss = useCallback((key: number) => setTravelling((files) => files.filter((file) => file.key !== key)), []);
 
   const send = useCallback(
@@ -83,7 +91,13 @@ export function useUploads(check: Check, keeper: DraftKeeper, local: { draw: (fi
       if (listed.length === 0) return;
       setTravelling((before) => [
         ...before,
-        ...listed.map(({ file, key }) => ({ key, name: file.name, sizeBytes: file.size, sent: 0, problem: file.size > mostBytes ? tooLarge(file) : null })),
+        ...listed.map(({ file, key }) => ({
+          key,
+          name: file.name,
+          sizeBytes: file.size,
+          sent: 0,
+          problem: file.size > mostBytes ? tooLarge(file) : null,
+        })),
       ]);
       const going = listed.filter(({ file }) => file.size <= mostBytes);
       const last = going.at(-1);

@@ -6,7 +6,8 @@ import { verdictState, type StatusState } from "../ui/status.tsx";
 
 /** `Ar 842.465 nm`; an unnamed line by its place on the axis. */
 export function lineName(line: Pick<LineResult, "species" | "wavelengthNm" | "position">, axisUnit = "px"): string {
-  if (line.wavelengthNm === null) return `the line at ${formatNumber(line.position, { decimals: 1 })}${NARROW_SPACE}${axisUnit}`;
+  if (line.wavelengthNm === null)
+    return `the line at ${formatNumber(line.position, { decimals: 1 })}${NARROW_SPACE}${axisUnit}`;
   return `${speciesWord(line.species)} ${formatNumber(line.wavelengthNm, { decimals: 3 })}${NARROW_SPACE}nm`;
 }
 
@@ -30,7 +31,11 @@ const notIdentified: Record<Exclude<Analysis["outcome"], "identified">, string> 
 
 /** Shape of an analysis's verdict. */
 export const analysisState = (analysis: Analysis): StatusState =>
-  analysis.verdict === null ? (analysis.outcome === "ambiguous" ? "inconclusive" : "not-judged") : verdictState(analysis.verdict.verdict, analysis.verdict.nearLimit);
+  analysis.verdict === null
+    ? analysis.outcome === "ambiguous"
+      ? "inconclusive"
+      : "not-judged"
+    : verdictState(analysis.verdict.verdict, analysis.verdict.nearLimit);
 
 /** A sentence to stand after a colon; `Hg` and its kin keep their capital. */
 const afterColon = (sentence: string) => {
@@ -45,7 +50,10 @@ const afterColon = (sentence: string) => {
  */
 export function verdictSentence(analysis: Analysis, qualifier = ""): string {
   const { verdict } = analysis;
-  if (verdict === null) return analysis.outcome === "identified" ? "Not judged: no tolerance reaches these lines." : notIdentified[analysis.outcome];
+  if (verdict === null)
+    return analysis.outcome === "identified"
+      ? "Not judged: no tolerance reaches these lines."
+      : notIdentified[analysis.outcome];
   const state = verdictState(verdict.verdict, verdict.nearLimit);
   const head = `${verdictHeads[state as keyof typeof verdictHeads]}${qualifier}`;
   const worst = worstOf(analysis, verdict);
@@ -59,7 +67,10 @@ export function verdictSentence(analysis: Analysis, qualifier = ""): string {
   if (verdict.verdict === "inconclusive" && worst.verdict === "pass" && verdict.reasons[0] !== undefined) {
     return `${head}: ${afterColon(verdict.reasons[0])}. The worst line, ${name}, ${reading}.`;
   }
-  const count = verdict.judgedCount === 1 ? `the one line, ${name},` : `the worst of ${counted(verdict.judgedCount, "line")}, ${name},`;
+  const count =
+    verdict.judgedCount === 1
+      ? `the one line, ${name},`
+      : `the worst of ${counted(verdict.judgedCount, "line")}, ${name},`;
   return `${head}: ${count} ${reading}.`;
 }
 

@@ -5,7 +5,18 @@ import { useParams } from "react-router";
 import type { z } from "zod";
 import { Asked } from "../shared/asked.tsx";
 import { FormArea, FormSelect, Refused, rulesOf, showAtFields, useKeepFromLeaving } from "../shared/form.tsx";
-import { Button, Fact, Facts, formatQuantity, NARROW_SPACE, formatNumber, Page, Section, TextLink, When } from "../ui/index.ts";
+import {
+  Button,
+  Fact,
+  Facts,
+  formatQuantity,
+  NARROW_SPACE,
+  formatNumber,
+  Page,
+  Section,
+  TextLink,
+  When,
+} from "../ui/index.ts";
 import { useDecideImpact, useImpactReview } from "./queries.ts";
 
 const affectedWords: Record<z.infer<typeof decideImpactInput>["affected"], string> = {
@@ -30,7 +41,8 @@ export function ImpactReviewPage() {
 }
 
 function titleOf(review: ImpactReview): string {
-  if (review.decision !== null) return `${affectedWords[review.decision.affected]}: ${review.instrumentName} is decided.`;
+  if (review.decision !== null)
+    return `${affectedWords[review.decision.affected]}: ${review.instrumentName} is decided.`;
   return `Which results of ${review.instrumentName} fall in its window?`;
 }
 
@@ -74,7 +86,8 @@ function LoadedReview({ review }: { review: ImpactReview }) {
               )}
             </Fact>
             <Fact label="To">
-              <When at={review.windowTo} />, <TextLink to={`/checks/${review.check.id}`}>{review.check.number}</TextLink>
+              <When at={review.windowTo} />,{" "}
+              <TextLink to={`/checks/${review.check.id}`}>{review.check.number}</TextLink>
             </Fact>
             <Fact label="Largest error">
               {review.largestErrorNm === null
@@ -122,14 +135,30 @@ function DecisionForm({ review }: { review: ImpactReview }) {
   });
   const affected = useWatch({ control: form.control, name: "affected" });
   useKeepFromLeaving(form.formState.isDirty && !decide.isSuccess);
-  const submit = form.handleSubmit((values) => decide.mutate(values, { onError: (error) => showAtFields(error, form.setError) }));
+  const submit = form.handleSubmit((values) =>
+    decide.mutate(values, { onError: (error) => showAtFields(error, form.setError) }),
+  );
   return (
     <Section title="Decision" note="It stands in the trail and in the check’s record; it cannot be changed afterwards.">
       <FormProvider {...form}>
         <form noValidate onSubmit={(event) => void submit(event)} className="grid max-w-[720px] gap-4">
-          <FormSelect name="affected" label="Results" choices={(["none", "some", "unknown"] as const).map((value) => ({ value, label: affectedWords[value] }))} />
-          {affected !== "none" && <FormArea name="affectedWork" label="Work it concerns" note="One a line: sample, report or customer number" />}
-          <FormArea name="decision" label="What is done, and why" note="Recalled, measured again, corrected, or why nothing needs to be done" />
+          <FormSelect
+            name="affected"
+            label="Results"
+            choices={(["none", "some", "unknown"] as const).map((value) => ({ value, label: affectedWords[value] }))}
+          />
+          {affected !== "none" && (
+            <FormArea
+              name="affectedWork"
+              label="Work it concerns"
+              note="One a line: sample, report or customer number"
+            />
+          )}
+          <FormArea
+            name="decision"
+            label="What is done, and why"
+            note="Recalled, measured again, corrected, or why nothing needs to be done"
+          />
           <Refused error={decide.error} />
           <div>
             <Button filled type="submit" busy={decide.isPending}>

@@ -16,7 +16,14 @@ export function ChecksTab({ instrument }: { instrument: Instrument }) {
           rows.length === 0 ? (
             <Empty
               text="No check yet. The first one says where the axis stands."
-              action={instrument.retiredAt === null && may("check.begin") && <LinkButton to={`/checks/new?configuration=${instrument.currentConfigurationId}`}>Start a check</LinkButton>}
+              action={
+                instrument.retiredAt === null &&
+                may("check.begin") && (
+                  <LinkButton to={`/checks/new?configuration=${instrument.currentConfigurationId}`}>
+                    Start a check
+                  </LinkButton>
+                )
+              }
             />
           ) : (
             <>

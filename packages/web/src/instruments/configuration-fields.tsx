@@ -44,9 +44,35 @@ export function newConfiguration(kind: InstrumentKind): ConfigurationInput {
 
 /** What stands now, as a form's values; the axis in force is kept unless coefficients are typed. */
 export function configurationValues(configuration: Configuration): ConfigurationInput {
-  const { name, axisKind, axisMeaning, rangeFirstNm, rangeLastNm, nominalFwhmNm, optics, intervalDays, graceDays, setupReproducibilityNm, decisionRule, warningShare } =
-    configuration;
-  return { name, axisKind, axisMeaning, rangeFirstNm, rangeLastNm, nominalFwhmNm, optics, intervalDays, graceDays, setupReproducibilityNm, decisionRule, warningShare, axisCoefficients: null };
+  const {
+    name,
+    axisKind,
+    axisMeaning,
+    rangeFirstNm,
+    rangeLastNm,
+    nominalFwhmNm,
+    optics,
+    intervalDays,
+    graceDays,
+    setupReproducibilityNm,
+    decisionRule,
+    warningShare,
+  } = configuration;
+  return {
+    name,
+    axisKind,
+    axisMeaning,
+    rangeFirstNm,
+    rangeLastNm,
+    nominalFwhmNm,
+    optics,
+    intervalDays,
+    graceDays,
+    setupReproducibilityNm,
+    decisionRule,
+    warningShare,
+    axisCoefficients: null,
+  };
 }
 
 const grid = "grid gap-x-6 gap-y-4 book:grid-cols-2 wide:grid-cols-4";
@@ -56,7 +82,15 @@ export function AxisSection({ withName, withCoefficients }: { withName: boolean;
   return (
     <Section title="Axis and range" note="Units stand beside the fields; a comma or a point will do.">
       <div className={grid}>
-        {withName && <FormText name="configuration.name" label="Name of this configuration" note="Channel or grating; leave it empty where there is only one" className="book:col-span-2" empty={null} />}
+        {withName && (
+          <FormText
+            name="configuration.name"
+            label="Name of this configuration"
+            note="Channel or grating; leave it empty where there is only one"
+            className="book:col-span-2"
+            empty={null}
+          />
+        )}
         <FormNumber name="configuration.rangeFirstNm" label="Range from" unit="nm" />
         <FormNumber name="configuration.rangeLastNm" label="Range to" unit="nm" />
         <FormSelect
@@ -79,7 +113,12 @@ export function AxisSection({ withName, withCoefficients }: { withName: boolean;
           ]}
         />
         <FormNumber name="configuration.nominalFwhmNm" label="Nominal resolution, FWHM" unit="nm" />
-        <FormNumber name="configuration.optics.fullScaleCounts" label="Detector full scale" unit="counts" note="One scan; 65 535 for 16 bit" />
+        <FormNumber
+          name="configuration.optics.fullScaleCounts"
+          label="Detector full scale"
+          unit="counts"
+          note="One scan; 65 535 for 16 bit"
+        />
         {withCoefficients && axisKind === "pixel" && <CoefficientsField />}
       </div>
     </Section>
@@ -98,13 +137,21 @@ function CoefficientsField() {
           label="Coefficients of its axis now, if it came with some"
           note="nm in ascending powers of the pixel, counted from 0, with spaces between: 200.1 0.3201 -1.2e-6. Left empty, the first check finds its lines from the range."
           defaultValue={field.value?.join(" ") ?? ""}
-          error={fieldState.error === undefined ? undefined : "Two to eight numbers with spaces between, points as decimal signs."}
+          error={
+            fieldState.error === undefined
+              ? undefined
+              : "Two to eight numbers with spaces between, points as decimal signs."
+          }
           autoComplete="off"
           name={field.name}
           ref={field.ref}
           onBlur={field.onBlur}
           onChange={(event) => {
-            const words = event.target.value.trim().replaceAll("\u2212", "-").split(/[\s;]+/).filter((word) => word !== "");
+            const words = event.target.value
+              .trim()
+              .replaceAll("\u2212", "-")
+              .split(/[\s;]+/)
+              .filter((word) => word !== "");
             field.onChange(words.length === 0 ? null : words.map(Number));
           }}
         />
@@ -124,7 +171,12 @@ export function OpticsSection() {
         <FormNumber name="configuration.optics.pixels" label="Pixels" unit="px" />
         <FormNumber name="configuration.optics.pixelPitchUm" label="Pixel pitch" unit="µm" />
         <FormNumber name="configuration.optics.laserNm" label="Laser" unit="nm" note="Raman only" />
-        <FormText name="configuration.optics.adjustmentNote" label="Adjustment" note="What can be adjusted, and how" empty={null} />
+        <FormText
+          name="configuration.optics.adjustmentNote"
+          label="Adjustment"
+          note="What can be adjusted, and how"
+          empty={null}
+        />
       </div>
     </Section>
   );
@@ -134,23 +186,44 @@ export function OpticsSection() {
 export function ToleranceFields({ name }: { name: string }) {
   const { control, formState } = useFormContext<Record<string, ToleranceInput>>();
   const { fields, append, remove } = useFieldArray({ control, name });
-  const listError = (formState.errors as Record<string, { message?: string; root?: { message?: string } } | undefined>)[name];
+  const listError = (formState.errors as Record<string, { message?: string; root?: { message?: string } } | undefined>)[
+    name
+  ];
   return (
     <div>
       {fields.map((field, index) => (
-        <div key={field.id} className="mb-3 grid grid-cols-3 items-start gap-x-4 book:grid-cols-[140px_140px_160px_auto] book:gap-x-6">
+        <div
+          key={field.id}
+          className="mb-3 grid grid-cols-3 items-start gap-x-4 book:grid-cols-[140px_140px_160px_auto] book:gap-x-6"
+        >
           <FormNumber name={`${name}.${index}.fromNm`} label="From" unit="nm" />
           <FormNumber name={`${name}.${index}.toNm`} label="To" unit="nm" />
           <FormNumber name={`${name}.${index}.toleranceNm`} label="Tolerance ±" unit="nm" />
           {fields.length > 1 && (
-            <TextButton className="mt-2 book:mt-7" onClick={() => remove(index)} aria-label={`Remove segment ${index + 1}`}>
+            <TextButton
+              className="mt-2 book:mt-7"
+              onClick={() => remove(index)}
+              aria-label={`Remove segment ${index + 1}`}
+            >
               Remove
             </TextButton>
           )}
         </div>
       ))}
-      {(listError?.message ?? listError?.root?.message) !== undefined && <p className="text-out type-note">{listError?.message ?? listError?.root?.message}</p>}
-      <Button onClick={() => append({ fromNm: null as unknown as number, toNm: null as unknown as number, toleranceNm: null as unknown as number })}>Add a segment</Button>
+      {(listError?.message ?? listError?.root?.message) !== undefined && (
+        <p className="text-out type-note">{listError?.message ?? listError?.root?.message}</p>
+      )}
+      <Button
+        onClick={() =>
+          append({
+            fromNm: null as unknown as number,
+            toNm: null as unknown as number,
+            toleranceNm: null as unknown as number,
+          })
+        }
+      >
+        Add a segment
+      </Button>
     </div>
   );
 }
@@ -159,7 +232,10 @@ export function DecisionSection({ withFirstDue }: { withFirstDue: boolean }) {
   const { control } = useFormContext<WithConfiguration>();
   const rule = useWatch<WithConfiguration, "configuration.decisionRule">({ name: "configuration.decisionRule" });
   return (
-    <Section title="Decision and interval" note="Guarded: a line passes only when its error stays below the tolerance by r times its uncertainty.">
+    <Section
+      title="Decision and interval"
+      note="Guarded: a line passes only when its error stays below the tolerance by r times its uncertainty."
+    >
       <div className={grid}>
         <Controller
           control={control}
@@ -170,11 +246,15 @@ export function DecisionSection({ withFirstDue }: { withFirstDue: boolean }) {
               label="Guarded acceptance"
               note={rule.kind === "guarded" ? "w = r U of each line" : "Simple acceptance, w = 0"}
               checked={field.value.kind === "guarded"}
-              onChange={(event) => field.onChange(event.target.checked ? { kind: "guarded", r: 1 } : { kind: "simple" })}
+              onChange={(event) =>
+                field.onChange(event.target.checked ? { kind: "guarded", r: 1 } : { kind: "simple" })
+              }
             />
           )}
         />
-        {rule.kind === "guarded" && <FormNumber name="configuration.decisionRule.r" label="r" note="1 unless the lab has a reason" />}
+        {rule.kind === "guarded" && (
+          <FormNumber name="configuration.decisionRule.r" label="r" note="1 unless the lab has a reason" />
+        )}
         <FormNumber name="configuration.warningShare" label="Near limit above" unit="% of tolerance" scale={100} />
         <FormNumber
           name="configuration.setupReproducibilityNm"

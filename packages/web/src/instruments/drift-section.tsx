@@ -3,10 +3,24 @@ import type { Configuration, DriftReply, Instrument } from "@wavekeep/api/contra
 import { useNavigate, useSearchParams } from "react-router";
 import { DrawingLinks, DriftRibbon, type RibbonSeries, useDrawing } from "../drawings/index.ts";
 import { Asked } from "../shared/asked.tsx";
-import { dayOf, Empty, formatLimit, formatNumber, LinkButton, Section, Switches, useMay, useZone } from "../ui/index.ts";
+import {
+  dayOf,
+  Empty,
+  formatLimit,
+  formatNumber,
+  LinkButton,
+  Section,
+  Switches,
+  useMay,
+  useZone,
+} from "../ui/index.ts";
 import { useDrift } from "./queries.ts";
 
-const seriesWords: Record<RibbonSeries, string> = { largest: "largest in range", mid: "at mid-range", scale: "scale error" };
+const seriesWords: Record<RibbonSeries, string> = {
+  largest: "largest in range",
+  mid: "at mid-range",
+  scale: "scale error",
+};
 
 const seriesNotes = (drift: DriftReply): Record<RibbonSeries, string> => ({
   largest: `Largest error, offset and scale together${drift.fromNm === null || drift.toNm === null ? "" : `, from ${formatNumber(drift.fromNm)} to ${formatNumber(drift.toNm)} nm`}, with U.`,
@@ -35,7 +49,11 @@ export function DriftSection({ instrument, configuration, plain = false }: Drift
     <Section
       plain={plain}
       title="Drift"
-      note={data === undefined ? undefined : `${seriesNotes(data)[series]} Tolerance ±${formatLimit(data.toleranceNm)}${data.guardBandNm === null ? "" : ", guard band hatched"}.`}
+      note={
+        data === undefined
+          ? undefined
+          : `${seriesNotes(data)[series]} Tolerance ±${formatLimit(data.toleranceNm)}${data.guardBandNm === null ? "" : ", guard band hatched"}.`
+      }
       switches={
         data !== undefined &&
         data.points.length > 0 && (
@@ -64,7 +82,12 @@ export function DriftSection({ instrument, configuration, plain = false }: Drift
           reply.points.length === 0 ? (
             <Empty
               text="Each check is a point here, with its uncertainty, between the limits; moves, lamps and adjustments are marked. The first check makes the first point."
-              action={instrument.retiredAt === null && may("check.begin") && <LinkButton to={`/checks/new?configuration=${configuration.id}`}>Start a check</LinkButton>}
+              action={
+                instrument.retiredAt === null &&
+                may("check.begin") && (
+                  <LinkButton to={`/checks/new?configuration=${configuration.id}`}>Start a check</LinkButton>
+                )
+              }
             />
           ) : (
             <DriftRibbon

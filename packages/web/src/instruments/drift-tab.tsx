@@ -2,7 +2,20 @@
 import type { Configuration, DriftReply, Instrument } from "@wavekeep/api/contract";
 import { Link } from "react-router";
 import { conditionWords, eventKindWords } from "../shared/words.ts";
-import { Button, Decimal, Empty, formatDate, formatQuantity, Section, Status, Table, uncertaintyDecimals, useMay, verdictState, When } from "../ui/index.ts";
+import {
+  Button,
+  Decimal,
+  Empty,
+  formatDate,
+  formatQuantity,
+  Section,
+  Status,
+  Table,
+  uncertaintyDecimals,
+  useMay,
+  verdictState,
+  When,
+} from "../ui/index.ts";
 import { DriftSection } from "./drift-section.tsx";
 import { useDrift } from "./queries.ts";
 
@@ -22,19 +35,41 @@ export function DriftTab({ instrument, configuration, show }: DriftTabProps) {
   return (
     <>
       <DriftSection instrument={instrument} configuration={configuration} plain />
-      <Section title="Events" note="A move, a new lamp, an adjustment: what may have moved the axis. One that breaks the series is never drawn through.">
+      <Section
+        title="Events"
+        note="A move, a new lamp, an adjustment: what may have moved the axis. One that breaks the series is never drawn through."
+      >
         {events.length === 0 ? (
-          <Empty text="Nothing was logged for it yet." action={may("event.log", { instrumentId: instrument.id }) && <Button onClick={() => show("event")}>Log an event</Button>} />
+          <Empty
+            text="Nothing was logged for it yet."
+            action={
+              may("event.log", { instrumentId: instrument.id }) && (
+                <Button onClick={() => show("event")}>Log an event</Button>
+              )
+            }
+          />
         ) : (
           <Table
             caption={`Events of ${instrument.name}`}
             rows={events}
             rowKey={(event) => event.id}
             columns={[
-              { key: "on", head: "Date", className: "whitespace-nowrap", cell: (event) => formatDate(event.happenedOn) },
+              {
+                key: "on",
+                head: "Date",
+                className: "whitespace-nowrap",
+                cell: (event) => formatDate(event.happenedOn),
+              },
               { key: "title", head: "Event", cell: (event) => <b>{event.title}</b> },
               { key: "kind", head: "Kind", cell: (event) => eventKindWords[event.kind] },
-              { key: "step", head: "Step at mid-range", cell: (event) => (event.stepNm === null ? "–" : formatQuantity(event.stepNm, undefined, "nm", { signed: true, decimals: 3 })) },
+              {
+                key: "step",
+                head: "Step at mid-range",
+                cell: (event) =>
+                  event.stepNm === null
+                    ? "–"
+                    : formatQuantity(event.stepNm, undefined, "nm", { signed: true, decimals: 3 }),
+              },
               { key: "breaks", head: "Series", cell: (event) => (event.breaksDrift ? "begins anew" : "goes on") },
               { key: "by", head: "Logged by", cell: (event) => event.recordedBy.name },
             ]}
@@ -46,7 +81,8 @@ export function DriftTab({ instrument, configuration, show }: DriftTabProps) {
                 </p>
                 <p className="type-note">
                   {eventKindWords[event.kind]}, {event.breaksDrift ? "series begins anew" : "series goes on"}
-                  {event.stepNm !== null && `, ${formatQuantity(event.stepNm, undefined, "nm", { signed: true, decimals: 3 })}`}
+                  {event.stepNm !== null &&
+                    `, ${formatQuantity(event.stepNm, undefined, "nm", { signed: true, decimals: 3 })}`}
                   {event.note !== "" && `. ${event.note}`}
                 </p>
               </div>
@@ -91,18 +127,50 @@ function PointsTable({ points }: { points: readonly Point[] }) {
             ),
           },
           { key: "at", head: "Date", className: "whitespace-nowrap", cell: (point) => <When at={point.at} as="day" /> },
-          { key: "condition", head: "Condition", className: "hidden @min-[880px]:table-cell", cell: (point) => conditionWords[point.condition] },
-          { key: "largest", head: "Largest", numbers: true, cell: (point) => pair(point.largestErrorNm, point.largestExpandedUncNm) },
-          { key: "mid", head: "At mid-range", numbers: true, className: "hidden @min-[640px]:table-cell", cell: (point) => pair(point.midErrorNm, point.midExpandedUncNm) },
-          { key: "scale", head: "Scale error", numbers: true, className: "hidden @min-[760px]:table-cell", cell: (point) => pair(point.scaleErrorNm, point.scaleExpandedUncNm) },
-          { key: "verdict", head: "Verdict", className: "whitespace-nowrap", cell: (point) => <Status state={verdictState(point.verdict)} /> },
+          {
+            key: "condition",
+            head: "Condition",
+            className: "hidden @min-[880px]:table-cell",
+            cell: (point) => conditionWords[point.condition],
+          },
+          {
+            key: "largest",
+            head: "Largest",
+            numbers: true,
+            cell: (point) => pair(point.largestErrorNm, point.largestExpandedUncNm),
+          },
+          {
+            key: "mid",
+            head: "At mid-range",
+            numbers: true,
+            className: "hidden @min-[640px]:table-cell",
+            cell: (point) => pair(point.midErrorNm, point.midExpandedUncNm),
+          },
+          {
+            key: "scale",
+            head: "Scale error",
+            numbers: true,
+            className: "hidden @min-[760px]:table-cell",
+            cell: (point) => pair(point.scaleErrorNm, point.scaleExpandedUncNm),
+          },
+          {
+            key: "verdict",
+            head: "Verdict",
+            className: "whitespace-nowrap",
+            cell: (point) => <Status state={verdictState(point.verdict)} />,
+          },
         ]}
         narrow={(point) => (
           <Link to={`/checks/${point.checkId}`} className="flex items-baseline justify-between gap-3 py-1">
             <span>
-              {point.checkNumber} <span className="type-note"><When at={point.at} as="day" /></span>
+              {point.checkNumber}{" "}
+              <span className="type-note">
+                <When at={point.at} as="day" />
+              </span>
             </span>
-            <span className="whitespace-nowrap">{formatQuantity(point.largestErrorNm, point.largestExpandedUncNm, "nm", { signed: true })}</span>
+            <span className="whitespace-nowrap">
+              {formatQuantity(point.largestErrorNm, point.largestExpandedUncNm, "nm", { signed: true })}
+            </span>
           </Link>
         )}
       />

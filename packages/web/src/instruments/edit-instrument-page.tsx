@@ -29,7 +29,8 @@ export function EditInstrumentPage() {
   const instrument = useInstrument(instrumentId);
   const may = useMay();
   if (!may("instrument.change")) return <NotForYou title="Edit the instrument" who="a lab manager" />;
-  if (instrument.data !== undefined) return <EditInstrumentForm instrument={instrument.data} refetch={() => void instrument.refetch()} />;
+  if (instrument.data !== undefined)
+    return <EditInstrumentForm instrument={instrument.data} refetch={() => void instrument.refetch()} />;
   return (
     <Page title="Edit the instrument">
       <Section title="Instrument">
@@ -43,7 +44,10 @@ function EditInstrumentForm({ instrument, refetch }: { instrument: Instrument; r
   const navigate = useNavigate();
   const { version, takeCurrent } = useFormVersion(instrument.version);
   const change = useChangeInstrument(instrument.id, () => void navigate(`/instruments/${instrument.id}`));
-  const form = useForm<Values, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: valuesOf(instrument) });
+  const form = useForm<Values, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: valuesOf(instrument),
+  });
   useKeepFromLeaving(form.formState.isDirty && !change.isSuccess);
   const submit = form.handleSubmit((values) =>
     change.mutate(
@@ -59,7 +63,11 @@ function EditInstrumentForm({ instrument, refetch }: { instrument: Instrument; r
   return (
     <FormProvider {...form}>
       <form onSubmit={(event) => void submit(event)} noValidate>
-        <Page title={`Edit ${instrument.name}`} aside="Instruments" lead="Each change is kept in the trail with what stood before.">
+        <Page
+          title={`Edit ${instrument.name}`}
+          aside="Instruments"
+          lead="Each change is kept in the trail with what stood before."
+        >
           <IdentitySections />
           <Section title="Save">
             <Refused

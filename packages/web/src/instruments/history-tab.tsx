@@ -10,9 +10,20 @@ export function HistoryTab({ instrument }: { instrument: Instrument }) {
   const entries = trail.data?.pages.flatMap((page) => page.items) ?? [];
   return (
     <>
-      <Section plain title="History" note="Each entry is sealed into the chain of the lab." links={<TextLink to={`/records?instrument=${instrument.id}`}>In Records</TextLink>}>
+      <Section
+        plain
+        title="History"
+        note="Each entry is sealed into the chain of the lab."
+        links={<TextLink to={`/records?instrument=${instrument.id}`}>In Records</TextLink>}
+      >
         <Asked query={trail} rows={8}>
-          {() => (entries.length === 0 ? <Empty text="Nothing is on record about it yet." /> : <p className="type-note">Newest first; press an entry to see what stood before and after.</p>)}
+          {() =>
+            entries.length === 0 ? (
+              <Empty text="Nothing is on record about it yet." />
+            ) : (
+              <p className="type-note">Newest first; press an entry to see what stood before and after.</p>
+            )
+          }
         </Asked>
       </Section>
       {entries.length > 0 && (

@@ -28,11 +28,20 @@ export function IdentitySections({ kindField }: { kindField?: ReactNode }) {
           <FormText name="purchasedOn" label="Purchased on" type="date" empty={null} />
         </div>
       </Section>
-      <Section title="Place and owner" note="The owner is told when the limit comes near and decides what a failed check meant for past results.">
+      <Section
+        title="Place and owner"
+        note="The owner is told when the limit comes near and decides what a failed check meant for past results."
+      >
         <div className={grid}>
           <FormText name="place" label="Place" note="Bench, room" />
           <FormNumber name="altitudeM" label="Altitude" unit="m" note="Left empty, the lab’s" />
-          <FormSelect name="ownerId" label="Owner" className="book:col-span-2" choices={owners} placeholder="Choose a person" />
+          <FormSelect
+            name="ownerId"
+            label="Owner"
+            className="book:col-span-2"
+            choices={owners}
+            placeholder="Choose a person"
+          />
         </div>
       </Section>
     </>

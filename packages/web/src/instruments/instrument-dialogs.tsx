@@ -1,5 +1,14 @@
 /** What is done to an instrument on its page, each in a dialog with its consequence in words. */
-import { changeStandingInput, changeToleranceInput, eventKind, logEventInput, moveDueDateInput, retireInput, type Configuration, type Instrument } from "@wavekeep/api/contract";
+import {
+  changeStandingInput,
+  changeToleranceInput,
+  eventKind,
+  logEventInput,
+  moveDueDateInput,
+  retireInput,
+  type Configuration,
+  type Instrument,
+} from "@wavekeep/api/contract";
 import { Controller, useForm, useWatch } from "react-hook-form";
 import type { z } from "zod";
 import { DialogForm } from "../shared/dialog-form.tsx";
@@ -8,7 +17,14 @@ import { eventKindWords, sentenceCase, standingWords } from "../shared/words.ts"
 import { CheckField, dayOf, formatDate, formatLimit, useMay, useZone } from "../ui/index.ts";
 import { ReasonField, ToleranceFields } from "./configuration-fields.tsx";
 import { useOwnerChoices } from "./identity-fields.tsx";
-import { useChangeStanding, useChangeTolerance, useInstrument, useLogEvent, useMoveDueDate, useRetireInstrument } from "./queries.ts";
+import {
+  useChangeStanding,
+  useChangeTolerance,
+  useInstrument,
+  useLogEvent,
+  useMoveDueDate,
+  useRetireInstrument,
+} from "./queries.ts";
 
 export interface DialogProps {
   instrument: Instrument;
@@ -33,7 +49,14 @@ function EventDialog({ instrument, configuration, onClose }: DialogProps) {
   type Values = z.input<typeof logEventInput>;
   const form = useForm<Values, unknown, z.output<typeof logEventInput>>({
     resolver: rulesOf(logEventInput),
-    defaultValues: { configurationId: configuration.id, kind: "moved", title: "", happenedOn: dayOf(new Date(), zone), note: "", breaksDrift: true },
+    defaultValues: {
+      configurationId: configuration.id,
+      kind: "moved",
+      title: "",
+      happenedOn: dayOf(new Date(), zone),
+      note: "",
+      breaksDrift: true,
+    },
   });
   return (
     <DialogForm
@@ -47,7 +70,11 @@ function EventDialog({ instrument, configuration, onClose }: DialogProps) {
       onSubmit={(values) => log.mutate(values, { onError: (error) => showAtFields(error, form.setError) })}
     >
       <div className="grid gap-4 book:grid-cols-2">
-        <FormSelect name="kind" label="What happened" choices={eventKind.options.map((kind) => ({ value: kind, label: sentenceCase(eventKindWords[kind]) }))} />
+        <FormSelect
+          name="kind"
+          label="What happened"
+          choices={eventKind.options.map((kind) => ({ value: kind, label: sentenceCase(eventKindWords[kind]) }))}
+        />
         <FormText name="happenedOn" label="On" type="date" />
       </div>
       <FormText name="title" label="In a few words" note="As it stands at the ribbon: Moved to bench 3" />
@@ -56,11 +83,24 @@ function EventDialog({ instrument, configuration, onClose }: DialogProps) {
         control={form.control}
         name="breaksDrift"
         render={({ field }) => (
-          <CheckField label="It may have moved the axis" note="Then the series begins anew, and no line is drawn through it." checked={field.value} onChange={(event) => field.onChange(event.target.checked)} onBlur={field.onBlur} name={field.name} />
+          <CheckField
+            label="It may have moved the axis"
+            note="Then the series begins anew, and no line is drawn through it."
+            checked={field.value}
+            onChange={(event) => field.onChange(event.target.checked)}
+            onBlur={field.onBlur}
+            name={field.name}
+          />
         )}
       />
     </DialogForm>
   );
+}
+
+/** Why it is on hold, with the check that put it there; either may be told by the other already. */
+function holdWords({ standing: { reason, checkNumber } }: Configuration): string {
+  const plain = reason.replace(/\.$/, "");
+  return checkNumber === null || plain.includes(checkNumber) ? plain : `${plain} (${checkNumber})`;
 }
 
 const standingChoices = ["out-of-service", "restricted", "in-service", "quarantined", "on-hold"] as const;
@@ -74,19 +114,33 @@ function StandingDialog({ instrument, configuration, onClose }: DialogProps) {
   type Values = z.input<typeof shape>;
   const form = useForm<Values, unknown, z.output<typeof shape>>({
     resolver: rulesOf(shape),
-    defaultValues: { standing: isHold ? "out-of-service" : configuration.standing.standing === "retired" ? "in-service" : configuration.standing.standing, restriction: configuration.standing.restriction, reason: "" },
+    defaultValues: {
+      standing: isHold
+        ? "out-of-service"
+        : configuration.standing.standing === "retired"
+          ? "in-service"
+          : configuration.standing.standing,
+      restriction: configuration.standing.restriction,
+      reason: "",
+    },
   });
   const standing = useWatch({ control: form.control, name: "standing" });
   const words = (value: (typeof standingChoices)[number]) =>
     isHold
-      ? { "out-of-service": "Confirm: out of service", restricted: "Confirm: restricted", "in-service": "Lift the hold: in service", quarantined: "Quarantine", "on-hold": "Stay on hold" }[value]
+      ? {
+          "out-of-service": "Confirm: out of service",
+          restricted: "Confirm: restricted",
+          "in-service": "Lift the hold: in service",
+          quarantined: "Quarantine",
+          "on-hold": "Stay on hold",
+        }[value]
       : sentenceCase(standingWords[value]);
   return (
     <DialogForm
       title={isHold ? `Confirm or lift the hold of ${instrument.name}` : `Change the standing of ${instrument.name}`}
       lead={
         isHold
-          ? `On hold: ${configuration.standing.reason}${configuration.standing.checkNumber === null ? "" : ` (${configuration.standing.checkNumber})`}. Out of service or restricted, it comes back by an as-left check that passes and is approved. Lifted, it is in service at once, on your reason.`
+          ? `On hold: ${holdWords(configuration)}. Out of service or restricted, it comes back by an as-left check that passes and is approved. Lifted, it is in service at once, on your reason.`
           : "The change and its reason stand in the trail."
       }
       confirmLabel={standing === "in-service" && isHold ? "Lift the hold" : isHold ? "Confirm" : "Change"}
@@ -111,8 +165,16 @@ function StandingDialog({ instrument, configuration, onClose }: DialogProps) {
         )
       }
     >
-      <FormSelect name="standing" label="Decision" choices={standingChoices.filter((value) => value !== "on-hold" || !isHold).map((value) => ({ value, label: words(value) }))} />
-      {standing === "restricted" && <FormText name="restriction" label="Restricted to" note="A range or a use: 300–700 nm" empty={null} />}
+      <FormSelect
+        name="standing"
+        label="Decision"
+        choices={standingChoices
+          .filter((value) => value !== "on-hold" || !isHold)
+          .map((value) => ({ value, label: words(value) }))}
+      />
+      {standing === "restricted" && (
+        <FormText name="restriction" label="Restricted to" note="A range or a use: 300–700 nm" empty={null} />
+      )}
       <ReasonField />
     </DialogForm>
   );
@@ -123,7 +185,10 @@ function ToleranceDialog({ instrument, configuration, onClose }: DialogProps) {
   const { version, takeCurrent } = useFormVersion(configuration.version);
   const change = useChangeTolerance(configuration.id, onClose);
   const shape = changeToleranceInput.omit({ version: true });
-  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: { segments: configuration.tolerance.segments, reason: "" } });
+  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { segments: configuration.tolerance.segments, reason: "" },
+  });
   return (
     <DialogForm
       title={`Change the tolerance of ${instrument.name}`}
@@ -173,7 +238,11 @@ function DueDialog({ instrument, configuration, onClose }: DialogProps) {
   return (
     <DialogForm
       title={`Next check of ${instrument.name}`}
-      lead={configuration.dueOn === null ? "No date is set." : `Due ${formatDate(configuration.dueOn)}${configuration.assignedTo === null ? "" : `, given to ${configuration.assignedTo.name}`}.`}
+      lead={
+        configuration.dueOn === null
+          ? "No date is set."
+          : `Due ${formatDate(configuration.dueOn)}${configuration.assignedTo === null ? "" : `, given to ${configuration.assignedTo.name}`}.`
+      }
       confirmLabel="Set the date"
       form={form}
       onClose={onClose}
@@ -210,7 +279,10 @@ function RetireDialog({ instrument, onClose }: DialogProps) {
   const { version, takeCurrent } = useFormVersion(instrument.version);
   const change = useRetireInstrument(instrument.id, onClose);
   const shape = retireInput.omit({ version: true });
-  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: { reason: "" } });
+  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { reason: "" },
+  });
   return (
     <DialogForm
       title={`Retire ${instrument.name}`}

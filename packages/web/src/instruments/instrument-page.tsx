@@ -4,7 +4,19 @@ import type { ReactNode } from "react";
 import { Navigate, useParams, useSearchParams } from "react-router";
 import { Asked } from "../shared/asked.tsx";
 import { kindWords } from "../shared/words.ts";
-import { Button, formatNumber, LinkButton, NARROW_SPACE, Page, Section, Status, Switches, Tabs, TextLink, useMay } from "../ui/index.ts";
+import {
+  Button,
+  formatNumber,
+  LinkButton,
+  NARROW_SPACE,
+  Page,
+  Section,
+  Status,
+  Switches,
+  Tabs,
+  TextLink,
+  useMay,
+} from "../ui/index.ts";
 import { ChecksTab } from "./checks-tab.tsx";
 import { DriftTab } from "./drift-tab.tsx";
 import { HistoryTab } from "./history-tab.tsx";
@@ -16,12 +28,18 @@ import { OverviewTab } from "./overview-tab.tsx";
 import { useInstrument } from "./queries.ts";
 
 const tabs = ["checks", "drift", "optics", "history"] as const;
-const tabWords: Record<(typeof tabs)[number], string> = { checks: "Checks", drift: "Drift", optics: "Optics and tolerance", history: "History" };
+const tabWords: Record<(typeof tabs)[number], string> = {
+  checks: "Checks",
+  drift: "Drift",
+  optics: "Optics and tolerance",
+  history: "History",
+};
 
 export function InstrumentPage() {
   const { instrumentId = "", tab } = useParams();
   const instrument = useInstrument(instrumentId);
-  if (tab !== undefined && !(tabs as readonly string[]).includes(tab)) return <Navigate to={`/instruments/${instrumentId}`} replace />;
+  if (tab !== undefined && !(tabs as readonly string[]).includes(tab))
+    return <Navigate to={`/instruments/${instrumentId}`} replace />;
   if (instrument.data === undefined) {
     return (
       <Page title={<span className="text-quiet">Instrument</span>} name="Instrument" aside="Instruments">
@@ -57,11 +75,22 @@ function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (t
   const kept = search.get("configuration") === null ? "" : `?configuration=${configuration.id}`;
   const shownTabs = tabs.filter((item) => item !== "history" || may("records.read", { instrumentId: instrument.id }));
   const status = (
-    <Status state={instrument.state} word={instrument.state === "restricted" && instrument.restriction !== null ? `restricted to ${instrument.restriction}` : undefined} />
+    <Status
+      state={instrument.state}
+      word={
+        instrument.state === "restricted" && instrument.restriction !== null
+          ? `restricted to ${instrument.restriction}`
+          : undefined
+      }
+    />
   );
   const changes = may("instrument.change") && instrument.retiredAt === null;
   const forms = { instrument, configuration, onClose: () => show(null) };
-  const form = !changes ? null : doing === "next" ? <NextConfigurationForm {...forms} /> : doing === "optics" ? <OpticsForm {...forms} /> : null;
+  const form = !changes ? null : doing === "next" ? (
+    <NextConfigurationForm {...forms} />
+  ) : doing === "optics" ? (
+    <OpticsForm {...forms} />
+  ) : null;
   return (
     <Page
       name={instrument.name}
@@ -92,12 +121,21 @@ function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (t
                   label="Configuration"
                   value={configuration.id}
                   onChange={(id) => setSearch({ configuration: id }, { replace: true })}
-                  choices={open.map((item, index) => ({ value: item.id, label: item.name ?? `configuration ${index + 1}` }))}
+                  choices={open.map((item, index) => ({
+                    value: item.id,
+                    label: item.name ?? `configuration ${index + 1}`,
+                  }))}
                 />
               )}
             </div>
             <div className="book-body">
-              <Tabs label={`Pages of ${instrument.name}`} items={[{ to: `${base}${kept}`, label: "Overview" }, ...shownTabs.map((item) => ({ to: `${base}/${item}${kept}`, label: tabWords[item] }))]} />
+              <Tabs
+                label={`Pages of ${instrument.name}`}
+                items={[
+                  { to: `${base}${kept}`, label: "Overview" },
+                  ...shownTabs.map((item) => ({ to: `${base}/${item}${kept}`, label: tabWords[item] })),
+                ]}
+              />
             </div>
           </div>
           <TabMatter instrument={instrument} configuration={configuration} tab={tab} show={show} />
@@ -114,7 +152,12 @@ interface PartProps {
   show: (what: string | null) => void;
 }
 
-function TabMatter({ instrument, configuration, tab, show }: PartProps & { tab: (typeof tabs)[number] | undefined }): ReactNode {
+function TabMatter({
+  instrument,
+  configuration,
+  tab,
+  show,
+}: PartProps & { tab: (typeof tabs)[number] | undefined }): ReactNode {
   if (tab === "checks") return <ChecksTab instrument={instrument} />;
   if (tab === "drift") return <DriftTab configuration={configuration} instrument={instrument} show={show} />;
   if (tab === "optics") return <OpticsTab instrument={instrument} configuration={configuration} show={show} />;
@@ -147,7 +190,9 @@ function Actions({ instrument, configuration, show }: PartProps) {
           Confirm or lift the hold
         </Button>
       )}
-      {instrument.openAlertCount > 0 && !checks && !decides && <TextLink to={`/alerts?instrument=${instrument.id}`}>Alerts</TextLink>}
+      {instrument.openAlertCount > 0 && !checks && !decides && (
+        <TextLink to={`/alerts?instrument=${instrument.id}`}>Alerts</TextLink>
+      )}
     </>
   );
 }

@@ -69,7 +69,10 @@ export function InstrumentsPage() {
               every="Every kind"
               value={filter.kind}
               onChange={(value) => setFilter("kind", value)}
-              choices={(Object.keys(kindWords) as InstrumentKind[]).map((kind) => ({ value: kind, label: kindWords[kind] }))}
+              choices={(Object.keys(kindWords) as InstrumentKind[]).map((kind) => ({
+                value: kind,
+                label: kindWords[kind],
+              }))}
             />
             <FilterSelect
               label="State"
@@ -107,7 +110,10 @@ export function InstrumentsPage() {
             shown.length > 0 ? (
               <FleetTable rows={shown} todayOn={dayOf(new Date(), me.lab.zone)} />
             ) : isFiltered ? (
-              <Empty text="No instrument fits these filters." action={<TextButton onClick={clear}>Show all</TextButton>} />
+              <Empty
+                text="No instrument fits these filters."
+                action={<TextButton onClick={clear}>Show all</TextButton>}
+              />
             ) : (
               <Empty
                 text="Each spectrometer of the lab stands here with its tolerance, its last errors and its next due date. Register the first one; its checks can begin at once."

@@ -7,7 +7,13 @@ import type { z } from "zod";
 import { FormSelect, Refused, rulesOf, showAtFields, useKeepFromLeaving } from "../shared/form.tsx";
 import { kindWords } from "../shared/words.ts";
 import { Button, dayOf, LinkButton, Page, Section, useMay, useMe } from "../ui/index.ts";
-import { AxisSection, DecisionSection, newConfiguration, OpticsSection, ToleranceFields } from "./configuration-fields.tsx";
+import {
+  AxisSection,
+  DecisionSection,
+  newConfiguration,
+  OpticsSection,
+  ToleranceFields,
+} from "./configuration-fields.tsx";
 import { IdentitySections } from "./identity-fields.tsx";
 import { useCreateInstrument } from "./queries.ts";
 import { NotForYou } from "../shared/not-for-you.tsx";
@@ -37,23 +43,34 @@ function NewInstrumentForm() {
       altitudeM: null,
       purchasedOn: null,
       configuration: newConfiguration("array"),
-      tolerance: [{ fromNm: null as unknown as number, toNm: null as unknown as number, toleranceNm: null as unknown as number }],
+      tolerance: [
+        { fromNm: null as unknown as number, toNm: null as unknown as number, toleranceNm: null as unknown as number },
+      ],
       firstDueOn: dayOf(addDays(new Date(), 7), me.lab.zone),
     },
   });
   useKeepFromLeaving(form.formState.isDirty && !create.isSuccess);
-  const submit = form.handleSubmit((values) => create.mutate(values, { onError: (error) => showAtFields(error, form.setError) }));
+  const submit = form.handleSubmit((values) =>
+    create.mutate(values, { onError: (error) => showAtFields(error, form.setError) }),
+  );
   return (
     <FormProvider {...form}>
       <form onSubmit={(event) => void submit(event)} noValidate>
-        <Page title="Register an instrument" aside="Instruments" lead="Its first check can begin as soon as it is registered.">
+        <Page
+          title="Register an instrument"
+          aside="Instruments"
+          lead="Its first check can begin as soon as it is registered."
+        >
           <IdentitySections
             kindField={
               <FormSelect
                 name="kind"
                 label="Kind"
                 className="book:col-span-2"
-                choices={instrumentKind.options.map((kind: InstrumentKind) => ({ value: kind, label: kindWords[kind] }))}
+                choices={instrumentKind.options.map((kind: InstrumentKind) => ({
+                  value: kind,
+                  label: kindWords[kind],
+                }))}
               />
             }
           />

@@ -5,13 +5,28 @@ import { FormProvider, useForm } from "react-hook-form";
 import type { z } from "zod";
 import { FormText, Refused, rulesOf, showAtFields, useFormVersion, useKeepFromLeaving } from "../shared/form.tsx";
 import { Button, dayOf, Section, useZone } from "../ui/index.ts";
-import { AxisSection, configurationValues, DecisionSection, OpticsSection, ReasonField, ToleranceFields } from "./configuration-fields.tsx";
+import {
+  AxisSection,
+  configurationValues,
+  DecisionSection,
+  OpticsSection,
+  ReasonField,
+  ToleranceFields,
+} from "./configuration-fields.tsx";
 import { useInstrument, useNextConfiguration } from "./queries.ts";
 
 const shape = nextConfigurationInput.omit({ version: true });
 type Values = z.input<typeof shape>;
 
-export function NextConfigurationForm({ instrument, configuration, onClose }: { instrument: Instrument; configuration: Configuration; onClose: () => void }) {
+export function NextConfigurationForm({
+  instrument,
+  configuration,
+  onClose,
+}: {
+  instrument: Instrument;
+  configuration: Configuration;
+  onClose: () => void;
+}) {
   const zone = useZone();
   const current = useInstrument(instrument.id);
   const { version, takeCurrent } = useFormVersion(instrument.version);

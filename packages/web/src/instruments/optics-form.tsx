@@ -9,11 +9,22 @@ import { useChangeConfiguration, useInstrument } from "./queries.ts";
 
 const shape = z.object({ configuration: configurationInput });
 
-export function OpticsForm({ instrument, configuration, onClose }: { instrument: Instrument; configuration: Configuration; onClose: () => void }) {
+export function OpticsForm({
+  instrument,
+  configuration,
+  onClose,
+}: {
+  instrument: Instrument;
+  configuration: Configuration;
+  onClose: () => void;
+}) {
   const current = useInstrument(instrument.id);
   const { version, takeCurrent } = useFormVersion(configuration.version);
   const change = useChangeConfiguration(configuration.id, onClose);
-  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: { configuration: configurationValues(configuration) } });
+  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { configuration: configurationValues(configuration) },
+  });
   useKeepFromLeaving(form.formState.isDirty && !change.isSuccess);
   const submit = form.handleSubmit(({ configuration: { axisCoefficients: _kept, ...values } }) =>
     change.mutate(
@@ -32,7 +43,10 @@ export function OpticsForm({ instrument, configuration, onClose }: { instrument:
         <AxisSection withName={instrument.configurations.length > 1} withCoefficients={false} />
         <OpticsSection />
         <DecisionSection withFirstDue={false} />
-        <Section title="Save" note="For what was mistyped or measured anew. A replaced part begins the next configuration instead.">
+        <Section
+          title="Save"
+          note="For what was mistyped or measured anew. A replaced part begins the next configuration instead."
+        >
           <Refused
             error={change.error}
             onKeepMine={() => {

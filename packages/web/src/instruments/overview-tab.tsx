@@ -4,7 +4,24 @@ import { useNavigate } from "react-router";
 import { DrawingLinks, LineStrip, useDrawing } from "../drawings/index.ts";
 import { ChecksTable } from "../shared/checks-table.tsx";
 import { conditionWords, counted } from "../shared/words.ts";
-import { Due, Empty, FactList, formatDate, formatDay, formatLimit, formatNumber, formatShortDay, NARROW_SPACE, Section, TextButton, TextLink, useMay, useZone, daysBetween, dayOf } from "../ui/index.ts";
+import {
+  Due,
+  Empty,
+  FactList,
+  formatDate,
+  formatDay,
+  formatLimit,
+  formatNumber,
+  formatShortDay,
+  NARROW_SPACE,
+  Section,
+  TextButton,
+  TextLink,
+  useMay,
+  useZone,
+  daysBetween,
+  dayOf,
+} from "../ui/index.ts";
 import { DriftSection } from "./drift-section.tsx";
 
 interface TabProps {
@@ -17,13 +34,19 @@ export function OverviewTab({ instrument, configuration, show }: TabProps) {
   return (
     <>
       <DriftSection instrument={instrument} configuration={configuration} plain />
-      {instrument.lastCheck !== null && <LastCheck instrument={instrument} configuration={configuration} last={instrument.lastCheck} />}
+      {instrument.lastCheck !== null && (
+        <LastCheck instrument={instrument} configuration={configuration} last={instrument.lastCheck} />
+      )}
       <RecentChecks instrument={instrument} configuration={configuration} show={show} />
     </>
   );
 }
 
-function LastCheck({ instrument, configuration, last }: Pick<TabProps, "instrument" | "configuration"> & { last: NonNullable<Instrument["lastCheck"]> }) {
+function LastCheck({
+  instrument,
+  configuration,
+  last,
+}: Pick<TabProps, "instrument" | "configuration"> & { last: NonNullable<Instrument["lastCheck"]> }) {
   const zone = useZone();
   const navigate = useNavigate();
   const { summary, strip } = last;
@@ -35,7 +58,9 @@ function LastCheck({ instrument, configuration, last }: Pick<TabProps, "instrume
       note={`${formatDay(summary.submittedAt ?? summary.begunAt, zone)}, ${conditionWords[summary.condition]}, ${summary.number}. Each line’s error, full height the tolerance; hollow: left out or refused; framed: the worst.`}
       links={
         <>
-          <TextLink to={path} className="basis-full">Open the check</TextLink>
+          <TextLink to={path} className="basis-full py-1">
+            Open the check
+          </TextLink>
           <DrawingLinks handle={drawing} />
         </>
       }
@@ -60,13 +85,24 @@ export function opticsWords({ optics }: Pick<Configuration, "optics">): string {
     optics.pixels === null
       ? null
       : `${formatNumber(optics.pixels, { grouped: true })}${NARROW_SPACE}px${optics.pixelPitchUm === null ? "" : ` of ${formatNumber(optics.pixelPitchUm)}${NARROW_SPACE}µm`}`,
-    optics.laserNm === null ? null : `laser ${formatNumber(optics.laserNm, { decimals: Number.isInteger(optics.laserNm) ? 0 : 2 })}${NARROW_SPACE}nm`,
+    optics.laserNm === null
+      ? null
+      : `laser ${formatNumber(optics.laserNm, { decimals: Number.isInteger(optics.laserNm) ? 0 : 2 })}${NARROW_SPACE}nm`,
   ].filter((part) => part !== null);
   return parts.length === 0 ? "not recorded" : parts.join(", ");
 }
 
 const meaningWords = { vacuum: "vacuum", "standard-air": "standard air", "room-air": "air of the room" } as const;
-const degreeWords = ["constant", "linear", "quadratic", "cubic", "of degree 4", "of degree 5", "of degree 6", "of degree 7"];
+const degreeWords = [
+  "constant",
+  "linear",
+  "quadratic",
+  "cubic",
+  "of degree 4",
+  "of degree 5",
+  "of degree 6",
+  "of degree 7",
+];
 
 /** `no. 7, cubic, standard air`. */
 export function axisWords(configuration: Configuration): string {
@@ -85,7 +121,9 @@ export function toleranceWords({ tolerance }: Pick<Configuration, "tolerance">):
   const values = tolerance.segments.map((segment) => segment.toleranceNm);
   const least = Math.min(...values);
   const most = Math.max(...values);
-  return least === most ? `±${formatLimit(least)}` : `±${formatLimit(least)} to ±${formatLimit(most)}, ${counted(values.length, "segment")}`;
+  return least === most
+    ? `±${formatLimit(least)}`
+    : `±${formatLimit(least)} to ±${formatLimit(most)}, ${counted(values.length, "segment")}`;
 }
 
 function RecentChecks({ instrument, configuration, show }: TabProps) {
@@ -109,14 +147,23 @@ function RecentChecks({ instrument, configuration, show }: TabProps) {
   return (
     <Section
       title="Recent checks"
-      note={instrument.firstCheckAt === null ? undefined : `${instrument.checkCount} since ${formatShortDay(instrument.firstCheckAt, zone)}.`}
+      note={
+        instrument.firstCheckAt === null
+          ? undefined
+          : `${instrument.checkCount} since ${formatShortDay(instrument.firstCheckAt, zone)}.`
+      }
       links={instrument.checkCount > 0 && <TextLink to={`/instruments/${instrument.id}/checks`}>All checks</TextLink>}
     >
       <div className="grid gap-x-10 gap-y-6 wide:grid-cols-[minmax(0,1fr)_312px]">
         {instrument.recentChecks.length === 0 ? (
           <Empty text="No check yet. The first one says where the axis stands." />
         ) : (
-          <ChecksTable checks={instrument.recentChecks} caption={`Recent checks of ${instrument.name}`} ofInstrument compact />
+          <ChecksTable
+            checks={instrument.recentChecks}
+            caption={`Recent checks of ${instrument.name}`}
+            ofInstrument
+            compact
+          />
         )}
         <div>
           <FactList

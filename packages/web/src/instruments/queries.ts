@@ -68,7 +68,8 @@ export const usePeople = () =>
 
 export const useCreateInstrument = (done: (instrumentId: string) => void) =>
   useChange(
-    (body: z.input<typeof createInstrumentInput>, idempotencyKey) => api.post("createInstrument", {}, body, { idempotencyKey }),
+    (body: z.input<typeof createInstrumentInput>, idempotencyKey) =>
+      api.post("createInstrument", {}, body, { idempotencyKey }),
     (reply) => done(reply.id),
   );
 
@@ -86,10 +87,16 @@ export const useNextConfiguration = (instrumentId: string, done: () => void) =>
   );
 
 export const useChangeConfiguration = (configurationId: string, done: () => void) =>
-  useChange((body: z.input<typeof changeConfigurationInput>) => api.put("changeConfiguration", { configurationId }, body), done);
+  useChange(
+    (body: z.input<typeof changeConfigurationInput>) => api.put("changeConfiguration", { configurationId }, body),
+    done,
+  );
 
 export const useChangeTolerance = (configurationId: string, done: () => void) =>
-  useChange((body: z.input<typeof changeToleranceInput>) => api.post("changeTolerance", { configurationId }, body), done);
+  useChange(
+    (body: z.input<typeof changeToleranceInput>) => api.post("changeTolerance", { configurationId }, body),
+    done,
+  );
 
 export const useChangeStanding = (configurationId: string, done: () => void) =>
   useChange((body: z.input<typeof changeStandingInput>) => api.post("changeStanding", { configurationId }, body), done);
@@ -98,4 +105,7 @@ export const useMoveDueDate = (configurationId: string, done: () => void) =>
   useChange((body: z.input<typeof moveDueDateInput>) => api.post("moveDueDate", { configurationId }, body), done);
 
 export const useLogEvent = (done: () => void) =>
-  useChange((body: z.input<typeof logEventInput>, idempotencyKey) => api.post("logEvent", {}, body, { idempotencyKey }), done);
+  useChange(
+    (body: z.input<typeof logEventInput>, idempotencyKey) => api.post("logEvent", {}, body, { idempotencyKey }),
+    done,
+  );

@@ -6,7 +6,19 @@ import { Asked } from "../shared/asked.tsx";
 import { Filters, FilterSelect } from "../shared/filter-select.tsx";
 import { useTheme } from "../shared/theme.ts";
 import { useUrlFilter } from "../shared/use-url-filter.ts";
-import { Decimal, Empty, formatCount, formatNumber, NARROW_SPACE, Page, Section, Switches, Table, TextLink, When } from "../ui/index.ts";
+import {
+  Decimal,
+  Empty,
+  formatCount,
+  formatNumber,
+  NARROW_SPACE,
+  Page,
+  Section,
+  Switches,
+  Table,
+  TextLink,
+  When,
+} from "../ui/index.ts";
 import { useLineLists, useLines } from "./queries.ts";
 
 type Line = z.infer<typeof listedLine>;
@@ -32,7 +44,9 @@ export function LineLibraryPage() {
   return (
     <Page
       name="Line library"
-      title={list === undefined ? "Line library" : `${formatCount(list.lineCount)} reference lines, version ${list.version}.`}
+      title={
+        list === undefined ? "Line library" : `${formatCount(list.lineCount)} reference lines, version ${list.version}.`
+      }
       aside={<TextLink to="/sources">Sources</TextLink>}
       lead={list?.title}
     >
@@ -41,7 +55,15 @@ export function LineLibraryPage() {
         note={medium === "air" ? "nm in standard air (15 °C, 101 325 Pa, dry); none below 200 nm." : "nm in vacuum."}
         switches={
           <>
-            <Switches label="Medium" value={medium} onChange={(next) => setFilter("medium", next === "air" ? null : next)} choices={[{ value: "air", label: "in air" }, { value: "vacuum", label: "in vacuum" }]} />
+            <Switches
+              label="Medium"
+              value={medium}
+              onChange={(next) => setFilter("medium", next === "air" ? null : next)}
+              choices={[
+                { value: "air", label: "in air" },
+                { value: "vacuum", label: "in vacuum" },
+              ]}
+            />
             <div className="mt-2">
               <Filters>
                 <FilterSelect
@@ -49,10 +71,21 @@ export function LineLibraryPage() {
                   every="Every element"
                   value={filter.element}
                   onChange={(next) => setFilter("element", next)}
-                  choices={(list?.elements ?? []).map(({ element, count }) => ({ value: element, label: `${element}, ${count}` }))}
+                  choices={(list?.elements ?? []).map(({ element, count }) => ({
+                    value: element,
+                    label: `${element}, ${count}`,
+                  }))}
                 />
                 {(lists.data?.items.length ?? 0) > 1 && (
-                  <FilterSelect label="Version" every={`Version ${lists.data?.items[0]?.version}`} value={filter.version} onChange={(next) => setFilter("version", next)} choices={(lists.data?.items ?? []).slice(1).map((item) => ({ value: item.version, label: `Version ${item.version}` }))} />
+                  <FilterSelect
+                    label="Version"
+                    every={`Version ${lists.data?.items[0]?.version}`}
+                    value={filter.version}
+                    onChange={(next) => setFilter("version", next)}
+                    choices={(lists.data?.items ?? [])
+                      .slice(1)
+                      .map((item) => ({ value: item.version, label: `Version ${item.version}` }))}
+                  />
                 )}
               </Filters>
             </div>
@@ -75,21 +108,57 @@ export function LineLibraryPage() {
                   rowKey={(line) => `${line.spectrum} ${line.wavelengthVacuumNm}`}
                   tick={(line) => wavelengthHue(line.wavelengthVacuumNm, theme)}
                   columns={[
-                    { key: "wavelength", head: `Wavelength in ${medium}, nm`, cell: (line) => <span className="inline-block min-w-[12ch] text-right"><Decimal value={value(line)} decimals={placesOf(line)} columnDecimals={places} /></span> },
+                    {
+                      key: "wavelength",
+                      head: `Wavelength in ${medium}, nm`,
+                      cell: (line) => (
+                        <span className="inline-block min-w-[12ch] text-right">
+                          <Decimal value={value(line)} decimals={placesOf(line)} columnDecimals={places} />
+                        </span>
+                      ),
+                    },
                     { key: "spectrum", head: "Spectrum", cell: (line) => line.spectrum },
-                    { key: "u", head: "u, pm", numbers: true, cell: (line) => (line.uncertaintyNm === null ? <i className="text-quiet">1 assumed</i> : formatNumber(line.uncertaintyNm * 1000, { decimals: line.uncertaintyNm < 0.0001 ? 3 : 2 })) },
-                    { key: "intensity", head: "Relative intensity", numbers: true, className: "hidden rail:table-cell", cell: (line) => (line.relativeIntensity === null ? "–" : formatCount(line.relativeIntensity)) },
-                    { key: "source", head: "Source", cell: (line) => <span title={citation(line.source)}>{line.source}</span> },
+                    {
+                      key: "u",
+                      head: "u, pm",
+                      numbers: true,
+                      cell: (line) =>
+                        line.uncertaintyNm === null ? (
+                          <i className="text-quiet">1 assumed</i>
+                        ) : (
+                          formatNumber(line.uncertaintyNm * 1000, { decimals: line.uncertaintyNm < 0.0001 ? 3 : 2 })
+                        ),
+                    },
+                    {
+                      key: "intensity",
+                      head: "Relative intensity",
+                      numbers: true,
+                      className: "hidden rail:table-cell",
+                      cell: (line) => (line.relativeIntensity === null ? "–" : formatCount(line.relativeIntensity)),
+                    },
+                    {
+                      key: "source",
+                      head: "Source",
+                      cell: (line) => <span title={citation(line.source)}>{line.source}</span>,
+                    },
                   ]}
                   rowNote={(line) => (line.note === "" ? null : line.note)}
                   narrow={(line) => (
                     <div className="flex items-baseline justify-between gap-3">
                       <span className="relative pl-3">
-                        <span aria-hidden="true" className="absolute top-1 left-0 h-[13px] w-[2px]" style={{ background: wavelengthHue(line.wavelengthVacuumNm, theme) }} />
-                        <b>{formatNumber(value(line), { decimals: placesOf(line) })}</b> <span className="text-quiet">{line.spectrum}</span>
+                        <span
+                          aria-hidden="true"
+                          className="absolute top-1 left-0 h-[13px] w-[2px]"
+                          style={{ background: wavelengthHue(line.wavelengthVacuumNm, theme) }}
+                        />
+                        <b>{formatNumber(value(line), { decimals: placesOf(line) })}</b>{" "}
+                        <span className="text-quiet">{line.spectrum}</span>
                       </span>
                       <span className="type-note">
-                        {line.uncertaintyNm === null ? "u assumed" : `u ${formatNumber(line.uncertaintyNm * 1000, { decimals: 2 })}${NARROW_SPACE}pm`}, {line.source}
+                        {line.uncertaintyNm === null
+                          ? "u assumed"
+                          : `u ${formatNumber(line.uncertaintyNm * 1000, { decimals: 2 })}${NARROW_SPACE}pm`}
+                        , {line.source}
                       </span>
                     </div>
                   )}
@@ -100,7 +169,10 @@ export function LineLibraryPage() {
         )}
       </Section>
       {list !== undefined && (
-        <Section title="Sources" note="Each value names where it comes from; an edition that changes a value is a new version, and old results keep theirs.">
+        <Section
+          title="Sources"
+          note="Each value names where it comes from; an edition that changes a value is a new version, and old results keep theirs."
+        >
           <dl className="grid max-w-[720px] grid-cols-[auto_minmax(0,1fr)] gap-x-6 gap-y-2">
             {list.sources.map((source) => (
               <div key={source.key} className="contents">

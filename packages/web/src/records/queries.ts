@@ -26,10 +26,17 @@ export const useTrailDays = () =>
 
 /** Recomputes the chain on the server: `refetch` checks it now. */
 export const useChain = () =>
-  useQuery({ queryKey: ["trail-state"], queryFn: ({ signal }) => api.get("readChain", {}, undefined, { signal }), staleTime: 60_000 });
+  useQuery({
+    queryKey: ["trail-state"],
+    queryFn: ({ signal }) => api.get("readChain", {}, undefined, { signal }),
+    staleTime: 60_000,
+  });
 
 export const usePeople = () =>
   useQuery({ queryKey: ["people"], queryFn: ({ signal }) => api.get("listPeople", {}, undefined, { signal }) });
 
 export const useFleet = () =>
-  useQuery({ queryKey: ["instruments"], queryFn: ({ signal }) => api.get("listInstruments", {}, undefined, { signal }) });
+  useQuery({
+    queryKey: ["instruments"],
+    queryFn: ({ signal }) => api.get("listInstruments", {}, undefined, { signal }),
+  });

@@ -28,7 +28,13 @@ export function Asked<Data>({ query, rows = 5, children }: AskedProps<Data>) {
 }
 
 /** The button under a keyset-paged list. */
-export function Older({ query, label = "Show older" }: { query: Pick<UseInfiniteQueryResult, "hasNextPage" | "isFetchingNextPage" | "fetchNextPage">; label?: string }) {
+export function Older({
+  query,
+  label = "Show older",
+}: {
+  query: Pick<UseInfiniteQueryResult, "hasNextPage" | "isFetchingNextPage" | "fetchNextPage">;
+  label?: string;
+}) {
   if (!query.hasNextPage) return null;
   return (
     <Button className="mt-4" busy={query.isFetchingNextPage} onClick={() => void query.fetchNextPage()}>

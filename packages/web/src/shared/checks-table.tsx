@@ -2,7 +2,17 @@
 import type { CheckSummary } from "@wavekeep/api/contract";
 import { Link } from "react-router";
 import { ToleranceUsed } from "../drawings/index.ts";
-import { Decimal, formatPercent, formatQuantity, resultState, Status, Table, uncertaintyDecimals, When, type Column } from "../ui/index.ts";
+import {
+  Decimal,
+  formatPercent,
+  formatQuantity,
+  resultState,
+  Status,
+  Table,
+  uncertaintyDecimals,
+  When,
+  type Column,
+} from "../ui/index.ts";
 import { checkStateWords, conditionWords, shortName } from "./words.ts";
 
 /** Where a check is opened: a draft where it is made, everything else where it is read. */
@@ -24,7 +34,11 @@ function Verdict({ check }: { check: CheckSummary }) {
 
 const Used = ({ check }: { check: CheckSummary }) =>
   check.result !== null && check.result.toleranceUsed !== null ? (
-    <ToleranceUsed used={check.result.toleranceUsed} guardShare={check.result.guardShare} state={resultState(check.result)} />
+    <ToleranceUsed
+      used={check.result.toleranceUsed}
+      guardShare={check.result.guardShare}
+      state={resultState(check.result)}
+    />
   ) : null;
 
 interface ChecksTableProps {
@@ -67,15 +81,27 @@ export function ChecksTable({ checks, caption, ofInstrument = false, compact = f
             ),
           },
         ]),
-    { key: "date", head: "Date", className: "whitespace-nowrap", cell: (check) => <When at={dateOf(check)} as="short" /> },
+    {
+      key: "date",
+      head: "Date",
+      className: "whitespace-nowrap",
+      cell: (check) => <When at={dateOf(check)} as="short" />,
+    },
     ...(ofInstrument
       ? []
-      : [{ key: "by", head: "Made by", className: "hidden whitespace-nowrap @min-[960px]:table-cell", cell: (check: CheckSummary) => <span title={check.begunBy.name}>{shortName(check.begunBy.name)}</span> }]),
+      : [
+          {
+            key: "by",
+            head: "Made by",
+            className: "hidden whitespace-nowrap @min-[960px]:table-cell",
+            cell: (check: CheckSummary) => <span title={check.begunBy.name}>{shortName(check.begunBy.name)}</span>,
+          },
+        ]),
     {
       key: "lines",
       head: "Lines",
       numbers: true,
-      className: "hidden @min-[700px]:table-cell",
+      className: "hidden @min-[640px]:table-cell",
       cell: (check) => (check.result === null ? "" : `${check.result.judgedCount}/${check.result.lineCount}`),
     },
     {
@@ -84,7 +110,12 @@ export function ChecksTable({ checks, caption, ofInstrument = false, compact = f
       numbers: true,
       cell: (check) =>
         check.result?.worst && (
-          <Decimal value={check.result.worst.errorNm} signed decimals={uncertaintyDecimals(check.result.worst.expandedUncNm) ?? 3} columnDecimals={decimals} />
+          <Decimal
+            value={check.result.worst.errorNm}
+            signed
+            decimals={uncertaintyDecimals(check.result.worst.expandedUncNm) ?? 3}
+            columnDecimals={decimals}
+          />
         ),
     },
     {
@@ -94,10 +125,19 @@ export function ChecksTable({ checks, caption, ofInstrument = false, compact = f
       className: "hidden @min-[560px]:table-cell",
       cell: (check) =>
         check.result?.worst && (
-          <Decimal value={check.result.worst.expandedUncNm} decimals={uncertaintyDecimals(check.result.worst.expandedUncNm) ?? 3} columnDecimals={decimals} />
+          <Decimal
+            value={check.result.worst.expandedUncNm}
+            decimals={uncertaintyDecimals(check.result.worst.expandedUncNm) ?? 3}
+            columnDecimals={decimals}
+          />
         ),
     },
-    { key: "used", head: "Tolerance used", className: "hidden whitespace-nowrap @min-[640px]:table-cell", cell: (check) => <Used check={check} /> },
+    {
+      key: "used",
+      head: "Tolerance used",
+      className: "hidden whitespace-nowrap @min-[640px]:table-cell",
+      cell: (check) => <Used check={check} />,
+    },
     { key: "verdict", head: "Verdict", className: "whitespace-nowrap", cell: (check) => <Verdict check={check} /> },
     {
       key: "approved",

@@ -28,23 +28,11 @@ export function FilterSelect({ label, every, value, choices, onChange }: FilterS
           </option>
         ))}
       </select>
-      <span aria-hidden="true" className="border-quiet pointer-events-none absolute top-[7px] right-1 size-[6px] rotate-45 border-r border-b" />
-    </span>
-  );
-}
-
-/** A date of a filter, on one line with its word. */
-export function FilterDate({ label, value, onChange }: { label: string; value: string | undefined; onChange: (value: string | null) => void }) {
-  return (
-    <label className="type-note flex max-w-full items-center gap-2">
-      <span className="min-w-7">{label}</span>
-      <input
-        type="date"
-        className="!text-accent min-h-6 w-[112px] bg-transparent"
-        value={value ?? ""}
-        onChange={(event) => onChange(event.target.value === "" ? null : event.target.value)}
+      <span
+        aria-hidden="true"
+        className="border-quiet pointer-events-none absolute top-[7px] right-1 size-[6px] rotate-45 border-r border-b"
       />
-    </label>
+    </span>
   );
 }
 

@@ -2,7 +2,18 @@
 import type { FleetRow } from "@wavekeep/api/contract";
 import { Link } from "react-router";
 import { LineStrip, ToleranceUsed } from "../drawings/index.ts";
-import { Decimal, Due, formatNumber, formatShortDate, NARROW_SPACE, Status, Table, uncertaintyDecimals, When, type Column } from "../ui/index.ts";
+import {
+  Decimal,
+  Due,
+  formatNumber,
+  formatShortDate,
+  NARROW_SPACE,
+  Status,
+  Table,
+  uncertaintyDecimals,
+  When,
+  type Column,
+} from "../ui/index.ts";
 import { kindNotes, speciesWord } from "./words.ts";
 
 /** `array, 340–1030 nm`; a Raman bench is known by its laser. */
@@ -29,10 +40,12 @@ function DueCell({ row, todayOn }: { row: FleetRow; todayOn: string }) {
   return <Due on={row.dueOn} days={row.dueDays} />;
 }
 
-const stateWord = (row: FleetRow) => (row.state === "restricted" && row.restriction !== null ? `restricted to ${row.restriction}` : undefined);
+const stateWord = (row: FleetRow) =>
+  row.state === "restricted" && row.restriction !== null ? `restricted to ${row.restriction}` : undefined;
 
 function Used({ row }: { row: FleetRow }) {
-  if (row.toleranceUsed === null) return <span className="text-quiet">none yet</span>;
+  if (row.toleranceUsed === null)
+    return <span className="text-quiet">{row.checkedAt === null ? "none yet" : "no line judged"}</span>;
   // A hold is not a measure: the meter is coloured by how much is used.
   const state = row.toleranceUsed > 1 ? "out-of-tolerance" : row.state;
   return <ToleranceUsed used={row.toleranceUsed} guardShare={row.guardShare} state={state} />;
@@ -49,6 +62,7 @@ interface FleetTableProps {
 }
 
 export function FleetTable({ rows, todayOn }: FleetTableProps) {
+  const errorDecimals = Math.max(2, ...rows.map((row) => uncertaintyDecimals(row.worst?.expandedUncNm) ?? 2));
   const columns: Column<FleetRow>[] = [
     {
       key: "name",
@@ -64,12 +78,23 @@ export function FleetTable({ rows, todayOn }: FleetTableProps) {
     },
     { key: "state", head: "State", cell: (row) => <Status state={row.state} word={stateWord(row)} /> },
     { key: "used", head: "Tolerance used", className: "whitespace-nowrap", cell: (row) => <Used row={row} /> },
-    { key: "strip", head: "Errors over the range", className: "hidden @min-[700px]:table-cell", cell: (row) => <div className="-my-1"><Strip row={row} /></div> },
+    {
+      key: "strip",
+      head: "Errors over the range",
+      className: "hidden @min-[700px]:table-cell",
+      cell: (row) => (
+        <div className="-my-1">
+          <Strip row={row} />
+        </div>
+      ),
+    },
     {
       key: "worst",
       head: "Worst line",
       className: "hidden whitespace-nowrap @min-[980px]:table-cell",
-      cell: (row) => row.worst !== null && `${speciesWord(row.worst.species)} ${formatNumber(row.worst.wavelengthNm, { decimals: 3 })}`,
+      cell: (row) =>
+        row.worst !== null &&
+        `${speciesWord(row.worst.species)} ${formatNumber(row.worst.wavelengthNm, { decimals: 3 })}`,
     },
     {
       key: "error",
@@ -78,7 +103,13 @@ export function FleetTable({ rows, todayOn }: FleetTableProps) {
       className: "hidden @min-[980px]:table-cell",
       cell: (row) =>
         row.worst !== null && (
-          <Decimal value={row.worst.errorNm} signed decimals={uncertaintyDecimals(row.worst.expandedUncNm) ?? 3} columnDecimals={3} unit="nm" />
+          <Decimal
+            value={row.worst.errorNm}
+            signed
+            decimals={uncertaintyDecimals(row.worst.expandedUncNm) ?? 3}
+            columnDecimals={errorDecimals}
+            unit="nm"
+          />
         ),
     },
     {

@@ -1,9 +1,26 @@
 /** What forms share: plain words for what a shape refuses, fields bound to the form library, and the stale form. */
 import { zodResolver } from "@hookform/resolvers/zod";
 import { useEffect, useState, type ReactNode } from "react";
-import { Controller, useFormContext, type FieldErrors, type FieldPath, type FieldValues, type Resolver, type UseFormSetError } from "react-hook-form";
+import {
+  Controller,
+  useFormContext,
+  type FieldErrors,
+  type FieldPath,
+  type FieldValues,
+  type Resolver,
+  type UseFormSetError,
+} from "react-hook-form";
 import type { z } from "zod";
-import { ApiProblem, Button, Field, NumberField, ProblemNote, SelectField, TextArea, type Choice } from "../ui/index.ts";
+import {
+  ApiProblem,
+  Button,
+  Field,
+  NumberField,
+  ProblemNote,
+  SelectField,
+  TextArea,
+  type Choice,
+} from "../ui/index.ts";
 
 /** Says in plain words what a shape refuses; a shape's own sentence goes before it. */
 function plainIssue(issue: z.core.$ZodRawIssue): string | undefined {
@@ -26,7 +43,9 @@ function plainIssue(issue: z.core.$ZodRawIssue): string | undefined {
 }
 
 /** Rules of a form from the shape that the server reads it by. */
-export function rulesOf<Input extends FieldValues, Output>(shape: z.ZodType<Output, Input>): Resolver<Input, unknown, Output> {
+export function rulesOf<Input extends FieldValues, Output>(
+  shape: z.ZodType<Output, Input>,
+): Resolver<Input, unknown, Output> {
   return zodResolver(shape as never, { error: plainIssue } as never) as unknown as Resolver<Input, unknown, Output>;
 }
 
@@ -54,7 +73,15 @@ interface Bound {
 }
 
 /** One line of text; `empty` is what an empty field stands for. */
-export function FormText({ name, label, note, className, type, autoFocus, empty = "" }: Bound & { type?: "text" | "date"; autoFocus?: boolean; empty?: "" | null }) {
+export function FormText({
+  name,
+  label,
+  note,
+  className,
+  type,
+  autoFocus,
+  empty = "",
+}: Bound & { type?: "text" | "date"; autoFocus?: boolean; empty?: "" | null }) {
   const { register, formState } = useFormContext();
   return (
     <Field
@@ -72,10 +99,26 @@ export function FormText({ name, label, note, className, type, autoFocus, empty 
 
 export function FormArea({ name, label, note, className }: Bound) {
   const { register, formState } = useFormContext();
-  return <TextArea label={label} note={note} className={className} error={messageAt(formState.errors, name)} {...register(name)} />;
+  return (
+    <TextArea
+      label={label}
+      note={note}
+      className={className}
+      error={messageAt(formState.errors, name)}
+      {...register(name)}
+    />
+  );
 }
 
-export function FormSelect({ name, label, note, className, choices, placeholder, empty = "" }: Bound & { choices: readonly Choice[]; placeholder?: string; empty?: "" | null }) {
+export function FormSelect({
+  name,
+  label,
+  note,
+  className,
+  choices,
+  placeholder,
+  empty = "",
+}: Bound & { choices: readonly Choice[]; placeholder?: string; empty?: "" | null }) {
   const { register, formState } = useFormContext();
   return (
     <SelectField
@@ -91,7 +134,15 @@ export function FormSelect({ name, label, note, className, choices, placeholder,
 }
 
 /** A number with its unit. `scale` 100 shows a share of one as per cent. */
-export function FormNumber({ name, label, note, className, unit, scale = 1, labelHidden }: Bound & { unit?: string; scale?: number }) {
+export function FormNumber({
+  name,
+  label,
+  note,
+  className,
+  unit,
+  scale = 1,
+  labelHidden,
+}: Bound & { unit?: string; scale?: number }) {
   const { control, formState } = useFormContext();
   return (
     <Controller

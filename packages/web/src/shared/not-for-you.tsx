@@ -3,5 +3,11 @@ import { LinkButton, Page } from "../ui/index.ts";
 
 /** @param who  whose job it is, e.g. `a lab manager` */
 export function NotForYou({ title, who }: { title: string; who: string }) {
-  return <Page title={title} lead={`This is done by ${who}. Nothing was changed.`} actions={<LinkButton to="/today">Today</LinkButton>} />;
+  return (
+    <Page
+      title={title}
+      lead={`This is done by ${who}. Nothing was changed.`}
+      actions={<LinkButton to="/today">Today</LinkButton>}
+    />
+  );
 }

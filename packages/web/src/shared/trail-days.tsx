@@ -2,7 +2,17 @@
 import type { TrailEntry } from "@wavekeep/api/contract";
 import { useState } from "react";
 import { Link } from "react-router";
-import { dayOf, formatClock, formatHash, formatInstant, formatSeal, formatWeekday, Section, useZone, zoneName } from "../ui/index.ts";
+import {
+  dayOf,
+  formatClock,
+  formatHash,
+  formatInstant,
+  formatSeal,
+  formatWeekday,
+  Section,
+  useZone,
+  zoneName,
+} from "../ui/index.ts";
 
 const shapeWords: Record<TrailEntry["shape"], string> = {
   person: "by a person",
@@ -24,7 +34,9 @@ export function EntryShape({ shape }: { shape: TrailEntry["shape"] }) {
           <circle cx={6} cy={6} r={1.5} fill="var(--ink)" />
         </>
       )}
-      {shape === "amendment" && <path d="M6 1.5 10.5 6 6 10.5 1.5 6z" fill="var(--ground)" stroke="var(--ink)" strokeWidth={1.25} />}
+      {shape === "amendment" && (
+        <path d="M6 1.5 10.5 6 6 10.5 1.5 6z" fill="var(--ground)" stroke="var(--ink)" strokeWidth={1.25} />
+      )}
       {shape === "out-of-tolerance" && <rect x={1.5} y={1.5} width={9} height={9} fill="var(--out)" />}
     </svg>
   );
@@ -70,23 +82,29 @@ export function TrailDays({ entries }: { entries: readonly TrailEntry[] }) {
             className="!mt-0"
             title={
               <>
-                <span className="book:block">{weekday}</span> <span className="font-normal text-quiet book:block">{date}</span>
+                <span className="book:block">{weekday}</span>{" "}
+                <span className="font-normal text-quiet book:block">{date}</span>
               </>
             }
           >
-            {index === 0 && (
-              <div aria-hidden="true" className="type-label -mt-3 hidden grid-cols-[74px_minmax(0,1fr)_120px_80px] gap-x-4 pt-3 pb-1 book:grid">
-                <span className="text-right">Time, {zoneName(day.entries[0]?.at ?? new Date(), zone)}</span>
-                <span>Entry</span>
-                <span>About</span>
-                <span className="text-right">Seal</span>
-              </div>
-            )}
-            <ol className="before:bg-ink relative -mt-3 pt-3 pb-8 before:absolute before:top-0 before:bottom-0 before:left-[5.5px] before:w-px">
-              {day.entries.map((entry) => (
-                <Entry key={entry.number} entry={entry} />
-              ))}
-            </ol>
+            <div className="before:bg-ink relative -mt-3 pt-3 before:absolute before:top-0 before:bottom-0 before:left-[5.5px] before:w-px">
+              {index === 0 && (
+                <div
+                  aria-hidden="true"
+                  className="type-label hidden grid-cols-[74px_minmax(0,1fr)_120px_80px] gap-x-4 pb-1 book:grid"
+                >
+                  <span className="text-right">Time, {zoneName(day.entries[0]?.at ?? new Date(), zone)}</span>
+                  <span>Entry</span>
+                  <span>About</span>
+                  <span className="text-right">Seal</span>
+                </div>
+              )}
+              <ol className="pb-8">
+                {day.entries.map((entry) => (
+                  <Entry key={entry.number} entry={entry} />
+                ))}
+              </ol>
+            </div>
           </Section>
         );
       })}
@@ -107,20 +125,29 @@ function Entry({ entry }: { entry: TrailEntry }) {
         <time dateTime={entry.at} title={formatInstant(entry.at, zone, true)} className="text-quiet book:text-right">
           {formatClock(entry.at, zone)}
         </time>
-        <button type="button" aria-expanded={isOpen} aria-controls={id} className="max-w-[640px] text-left hover:underline hover:decoration-(--graph) hover:underline-offset-3" onClick={() => setOpen(!isOpen)}>
+        <button
+          type="button"
+          aria-expanded={isOpen}
+          aria-controls={id}
+          className="max-w-[640px] text-left hover:underline hover:decoration-(--graph) hover:underline-offset-3"
+          onClick={() => setOpen(!isOpen)}
+        >
           <b>{entry.actor}</b> {entry.sentence}
         </button>
-        <span className="type-note min-w-0 truncate pt-[2px]">
+        <span className="type-note min-w-0 truncate -mt-[2px]">
           {entry.about !== null &&
             (entry.about.to === null ? (
               entry.about.label
             ) : (
-              <Link to={entry.about.to} className="text-accent hover:underline">
+              <Link to={entry.about.to} className="text-accent inline-flex min-h-6 items-center hover:underline">
                 {entry.about.label}
               </Link>
             ))}
         </span>
-        <span className="type-note hidden pt-[2px] text-right book:block" title={`Entry ${entry.number}, SHA-256 ${entry.hash}`}>
+        <span
+          className="type-note hidden pt-[2px] text-right book:block"
+          title={`Entry ${entry.number}, SHA-256 ${entry.hash}`}
+        >
           {formatSeal(entry.hash)}
         </span>
       </div>
@@ -146,7 +173,9 @@ function EntryDetail({ entry }: { entry: TrailEntry }) {
             value !== null && (
               <div key={label} className="min-w-0">
                 <h3 className="type-label">{label}</h3>
-                <pre className="type-note text-ink break-words whitespace-pre-wrap font-sans">{JSON.stringify(value, null, 2)}</pre>
+                <pre className="type-note text-ink break-words whitespace-pre-wrap font-sans">
+                  {JSON.stringify(value, null, 2)}
+                </pre>
               </div>
             ),
         )}

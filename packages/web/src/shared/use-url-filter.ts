@@ -11,7 +11,12 @@ type Values<Name extends string> = Partial<Record<Name, string | null>>;
  */
 export function useUrlFilter<Name extends string>(
   names: readonly Name[],
-): [Partial<Record<Name, string>>, (name: Name, value: string | null) => void, () => void, (values: Values<Name>) => void] {
+): [
+  Partial<Record<Name, string>>,
+  (name: Name, value: string | null) => void,
+  () => void,
+  (values: Values<Name>) => void,
+] {
   const [search, setSearch] = useSearchParams();
   const filter: Partial<Record<Name, string>> = {};
   for (const name of names) {

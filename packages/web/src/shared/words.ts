@@ -128,7 +128,9 @@ export function lineState(line: Pick<LineResult, "status" | "verdict" | "nearLim
   }
   if (line.status === "left-out") return { state: "left-out", word: "left out" };
   if (line.status === "refused") {
-    return line.flags.includes("saturated") ? { state: "saturated", word: "saturated" } : { state: "not-judged", word: "refused" };
+    return line.flags.includes("saturated")
+      ? { state: "saturated", word: "saturated" }
+      : { state: "not-judged", word: "refused" };
   }
   return { state: "not-judged", word: line.status === "unnamed" ? "unnamed" : "not judged" };
 }
@@ -140,7 +142,21 @@ export function speciesWord(species: string | null): string {
 
 /** `one`, `two` … `twelve`, then figures: for sentences that open with a count. */
 export function countWord(count: number): string {
-  const words = ["no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven", "twelve"];
+  const words = [
+    "no",
+    "one",
+    "two",
+    "three",
+    "four",
+    "five",
+    "six",
+    "seven",
+    "eight",
+    "nine",
+    "ten",
+    "eleven",
+    "twelve",
+  ];
   return words[count] ?? String(count);
 }
 

@@ -15,7 +15,10 @@ export const useSources = () =>
   useQuery({ queryKey: keys.all, queryFn: ({ signal }) => api.get("listSources", {}, undefined, { signal }) });
 
 export const useSource = (sourceId: string) =>
-  useQuery({ queryKey: keys.one(sourceId), queryFn: ({ signal }) => api.get("readSource", { sourceId }, undefined, { signal }) });
+  useQuery({
+    queryKey: keys.one(sourceId),
+    queryFn: ({ signal }) => api.get("readSource", { sourceId }, undefined, { signal }),
+  });
 
 /** Instruments to choose from where a source is built in. */
 export const useFleet = () =>

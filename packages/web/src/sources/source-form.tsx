@@ -4,7 +4,17 @@ import { Controller, FormProvider, useForm, useFormContext, useWatch, type UseFo
 import type { ReactNode } from "react";
 import { useNavigate } from "react-router";
 import type { z } from "zod";
-import { FormArea, FormNumber, FormSelect, FormText, Refused, rulesOf, showAtFields, useFormVersion, useKeepFromLeaving } from "../shared/form.tsx";
+import {
+  FormArea,
+  FormNumber,
+  FormSelect,
+  FormText,
+  Refused,
+  rulesOf,
+  showAtFields,
+  useFormVersion,
+  useKeepFromLeaving,
+} from "../shared/form.tsx";
 import { sentenceCase, sourceKindWords } from "../shared/words.ts";
 import { Button, Field, LinkButton, Page, Section } from "../ui/index.ts";
 import { useChangeSource, useCreateSource, useFleet } from "./queries.ts";
@@ -68,10 +78,22 @@ function SourceSections({ form }: { form: Form }) {
         <div className={grid}>
           <FormText name="label" label="Label" note="HA-2" autoFocus />
           <FormText name="name" label="Name" className="wide:col-span-2" note="Mercury-argon pen lamp" />
-          <FormSelect name="kind" label="Kind" choices={sourceKind.options.map((value) => ({ value, label: sentenceCase(sourceKindWords[value]) }))} />
+          <FormSelect
+            name="kind"
+            label="Kind"
+            choices={sourceKind.options.map((value) => ({ value, label: sentenceCase(sourceKindWords[value]) }))}
+          />
           <ElementsField />
           {kind === "laser" && <FormNumber name="laserLineNm" label="Laser line" unit="nm" />}
-          {kind === "built-in" && <FormSelect name="builtIntoInstrumentId" label="Built into" placeholder="Choose an instrument" empty={null} choices={(fleet.data?.items ?? []).map((row) => ({ value: row.id, label: row.name }))} />}
+          {kind === "built-in" && (
+            <FormSelect
+              name="builtIntoInstrumentId"
+              label="Built into"
+              placeholder="Choose an instrument"
+              empty={null}
+              choices={(fleet.data?.items ?? []).map((row) => ({ value: row.id, label: row.name }))}
+            />
+          )}
           <FormText name="maker" label="Maker" />
           <FormText name="serial" label="Serial number" />
           <FormNumber name="warmUpMinutes" label="Warm-up" unit="min" />
@@ -83,7 +105,19 @@ function SourceSections({ form }: { form: Form }) {
   );
 }
 
-function Frame({ form, title, lead, submit, children }: { form: Form; title: string; lead: string; submit: (values: z.output<typeof sourceInput>) => void; children: ReactNode }) {
+function Frame({
+  form,
+  title,
+  lead,
+  submit,
+  children,
+}: {
+  form: Form;
+  title: string;
+  lead: string;
+  submit: (values: z.output<typeof sourceInput>) => void;
+  children: ReactNode;
+}) {
   return (
     <FormProvider {...form}>
       <form noValidate onSubmit={(event) => void form.handleSubmit(submit)(event)}>
@@ -101,11 +135,28 @@ export function NewSourceForm() {
   const create = useCreateSource((sourceId) => void navigate(`/sources/${sourceId}`));
   const form: Form = useForm<Values, unknown, z.output<typeof sourceInput>>({
     resolver: rulesOf(sourceInput),
-    defaultValues: { label: "", name: "", kind: "low-pressure-lamp", elements: [], laserLineNm: null, maker: "", serial: "", builtIntoInstrumentId: null, warmUpMinutes: 15, reviewDueOn: null, note: "" },
+    defaultValues: {
+      label: "",
+      name: "",
+      kind: "low-pressure-lamp",
+      elements: [],
+      laserLineNm: null,
+      maker: "",
+      serial: "",
+      builtIntoInstrumentId: null,
+      warmUpMinutes: 15,
+      reviewDueOn: null,
+      note: "",
+    },
   });
   useKeepFromLeaving(form.formState.isDirty && !create.isSuccess);
   return (
-    <Frame form={form} title="Register a source" lead="Its certificate is stored on its own page, once it is registered." submit={(values) => create.mutate(values, { onError: (error) => showAtFields(error, form.setError) })}>
+    <Frame
+      form={form}
+      title="Register a source"
+      lead="Its certificate is stored on its own page, once it is registered."
+      submit={(values) => create.mutate(values, { onError: (error) => showAtFields(error, form.setError) })}
+    >
       <Section title="Register">
         <Refused error={create.error} />
         <div className="flex flex-wrap gap-3">
@@ -119,10 +170,21 @@ export function NewSourceForm() {
   );
 }
 
-export function EditSourceForm({ source, refetch, onClose }: { source: Source; refetch: () => void; onClose: () => void }) {
+export function EditSourceForm({
+  source,
+  refetch,
+  onClose,
+}: {
+  source: Source;
+  refetch: () => void;
+  onClose: () => void;
+}) {
   const { version, takeCurrent } = useFormVersion(source.version);
   const change = useChangeSource(source.id, onClose);
-  const form: Form = useForm<Values, unknown, z.output<typeof sourceInput>>({ resolver: rulesOf(sourceInput), defaultValues: valuesOf(source) });
+  const form: Form = useForm<Values, unknown, z.output<typeof sourceInput>>({
+    resolver: rulesOf(sourceInput),
+    defaultValues: valuesOf(source),
+  });
   useKeepFromLeaving(form.formState.isDirty && !change.isSuccess);
   return (
     <Frame

@@ -10,14 +10,33 @@ import { DialogForm } from "../shared/dialog-form.tsx";
 import { FormArea, rulesOf, useFormVersion } from "../shared/form.tsx";
 import { NotForYou } from "../shared/not-for-you.tsx";
 import { counted, sentenceCase, sourceKindWords } from "../shared/words.ts";
-import { Button, Caution, Due, Empty, FactList, FileLink, formatBytes, formatDate, formatHash, NARROW_SPACE, Page, ProblemNote, routeUrl, Section, TextLink, useMay, When } from "../ui/index.ts";
+import {
+  Button,
+  Caution,
+  Due,
+  Empty,
+  FactList,
+  FileLink,
+  formatBytes,
+  formatDate,
+  formatHash,
+  NARROW_SPACE,
+  Page,
+  ProblemNote,
+  routeUrl,
+  Section,
+  TextLink,
+  useMay,
+  When,
+} from "../ui/index.ts";
 import { useRetireSource, useSource, useStoreCertificate } from "./queries.ts";
 import { EditSourceForm, NewSourceForm } from "./source-form.tsx";
 
 export function SourcePage() {
   const { sourceId = "" } = useParams();
   const may = useMay();
-  if (sourceId === "new") return may("source.change") ? <NewSourceForm /> : <NotForYou title="Register a source" who="a lab manager" />;
+  if (sourceId === "new")
+    return may("source.change") ? <NewSourceForm /> : <NotForYou title="Register a source" who="a lab manager" />;
   return <ReadSource key={sourceId} sourceId={sourceId} />;
 }
 
@@ -38,7 +57,8 @@ function ReadSource({ sourceId }: { sourceId: string }) {
   }
   const close = () => setSearch({});
   const changes = may("source.change") && source.data.retiredAt === null;
-  if (search.get("do") === "edit" && changes) return <EditSourceForm source={source.data} refetch={() => void source.refetch()} onClose={close} />;
+  if (search.get("do") === "edit" && changes)
+    return <EditSourceForm source={source.data} refetch={() => void source.refetch()} onClose={close} />;
   return (
     <>
       <LoadedSource source={source.data} changes={changes} show={(what) => setSearch({ do: what })} />
@@ -81,15 +101,51 @@ function LoadedSource({ source, changes, show }: { source: Source; changes: bool
         <div className="max-w-[520px]">
           <FactList
             items={[
-              ...(source.elements.length > 0 ? [{ label: "Lines of", value: <TextLink to={`/sources/lines?element=${source.elements[0]}`}>{source.elements.join(", ")}</TextLink> }] : []),
-              ...(source.laserLineNm === null ? [] : [{ label: "Laser line", value: `${source.laserLineNm}${NARROW_SPACE}nm` }]),
+              ...(source.elements.length > 0
+                ? [
+                    {
+                      label: "Lines of",
+                      value: (
+                        <TextLink to={`/sources/lines?element=${source.elements[0]}`}>
+                          {source.elements.join(", ")}
+                        </TextLink>
+                      ),
+                    },
+                  ]
+                : []),
+              ...(source.laserLineNm === null
+                ? []
+                : [{ label: "Laser line", value: `${source.laserLineNm}${NARROW_SPACE}nm` }]),
               { label: "Maker", value: source.maker || "not recorded" },
               { label: "Serial number", value: source.serial || "not recorded" },
-              ...(source.builtIntoInstrumentName === null ? [] : [{ label: "Built into", value: <TextLink to={`/instruments/${source.builtIntoInstrumentId}`}>{source.builtIntoInstrumentName}</TextLink> }]),
+              ...(source.builtIntoInstrumentName === null
+                ? []
+                : [
+                    {
+                      label: "Built into",
+                      value: (
+                        <TextLink to={`/instruments/${source.builtIntoInstrumentId}`}>
+                          {source.builtIntoInstrumentName}
+                        </TextLink>
+                      ),
+                    },
+                  ]),
               { label: "Warm-up", value: `${source.warmUpMinutes}${NARROW_SPACE}min` },
               {
                 label: "Review due",
-                value: source.reviewDueOn === null ? "no date" : <>{formatDate(source.reviewDueOn)}{source.reviewDueDays !== null && source.reviewDueDays < 30 && source.retiredAt === null && <>, <Due on={source.reviewDueOn} days={source.reviewDueDays} nearDays={30} /></>}</>,
+                value:
+                  source.reviewDueOn === null ? (
+                    "no date"
+                  ) : (
+                    <>
+                      {formatDate(source.reviewDueOn)}
+                      {source.reviewDueDays !== null && source.reviewDueDays < 30 && source.retiredAt === null && (
+                        <>
+                          , <Due on={source.reviewDueOn} days={source.reviewDueDays} nearDays={30} />
+                        </>
+                      )}
+                    </>
+                  ),
               },
               { label: "Used in", value: counted(source.usedInChecks, "check") },
             ]}
@@ -98,7 +154,15 @@ function LoadedSource({ source, changes, show }: { source: Source; changes: bool
         {source.note !== "" && <p className="mt-3 max-w-[720px]">{source.note}</p>}
       </Section>
       <Section title="Cautions" note="They stand wherever it is chosen.">
-        {source.cautions.length === 0 ? <p className="text-quiet">None is known for this kind.</p> : <div className="grid gap-3">{source.cautions.map((caution) => <Caution key={caution.title} title={caution.title} text={caution.text} />)}</div>}
+        {source.cautions.length === 0 ? (
+          <p className="text-quiet">None is known for this kind.</p>
+        ) : (
+          <div className="grid gap-3">
+            {source.cautions.map((caution) => (
+              <Caution key={caution.title} title={caution.title} text={caution.text} />
+            ))}
+          </div>
+        )}
       </Section>
       <Section title="Certificate" note="Stored byte for byte, with its SHA-256.">
         <Certificate source={source} changes={changes} />
@@ -136,12 +200,16 @@ function Certificate({ source, changes }: { source: Source; changes: boolean }) 
       ) : (
         <>
           <p>
-            <FileLink href={routeUrl("readCertificate", { sourceId: source.id })} download={source.certificate.fileName}>
+            <FileLink
+              href={routeUrl("readCertificate", { sourceId: source.id })}
+              download={source.certificate.fileName}
+            >
               {source.certificate.fileName}
             </FileLink>
             <span className="type-note">
               {" "}
-              {formatBytes(source.certificate.sizeBytes)}, stored <When at={source.certificate.storedAt} /> by {source.certificate.storedBy.name}, SHA-256{" "}
+              {formatBytes(source.certificate.sizeBytes)}, stored <When at={source.certificate.storedAt} /> by{" "}
+              {source.certificate.storedBy.name}, SHA-256{" "}
               <span title={source.certificate.sha256}>{formatHash(source.certificate.sha256)}</span>
             </span>
           </p>
@@ -157,7 +225,10 @@ function RetireDialog({ source, onClose }: { source: Source; onClose: () => void
   const { version, takeCurrent } = useFormVersion(source.version);
   const retire = useRetireSource(source.id, onClose);
   const shape = retireSourceInput.omit({ version: true });
-  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({ resolver: rulesOf(shape), defaultValues: { reason: "" } });
+  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { reason: "" },
+  });
   return (
     <DialogForm
       title={`Retire ${source.label}`}

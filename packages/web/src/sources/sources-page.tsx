@@ -17,10 +17,17 @@ export function shelfSentence(sources: readonly Source[]): string {
   if (inUse.length === 0) return "No source is on the shelf yet.";
   const past = inUse.filter((source) => source.reviewDueDays !== null && source.reviewDueDays < 0).length;
   const head = `${sentenceCase(countWord(inUse.length))} ${inUse.length === 1 ? "source" : "sources"} on the shelf`;
-  return past === 0 ? `${head}, all in review.` : `${head}; ${countWord(past)} ${past === 1 ? "is" : "are"} past review.`;
+  return past === 0
+    ? `${head}, all in review.`
+    : `${head}; ${countWord(past)} ${past === 1 ? "is" : "are"} past review.`;
 }
 
-const whatShines = (source: Source) => (source.elements.length > 0 ? source.elements.join(", ") : source.laserLineNm === null ? "–" : `${source.laserLineNm} nm`);
+const whatShines = (source: Source) =>
+  source.elements.length > 0
+    ? source.elements.join(", ")
+    : source.laserLineNm === null
+      ? "–"
+      : `${source.laserLineNm} nm`;
 
 function Review({ source }: { source: Source }) {
   if (source.retiredAt !== null) return <span className="text-quiet">retired</span>;
@@ -34,7 +41,12 @@ export function SourcesPage() {
   const [filter, setFilter, clear] = useUrlFilter(filters);
   const all = sources.data?.items ?? [];
   const shown = all
-    .filter((source) => (filter.kind === undefined || source.kind === filter.kind) && (filter.element === undefined || source.elements.includes(filter.element)) && (filter.retired === "shown" || source.retiredAt === null))
+    .filter(
+      (source) =>
+        (filter.kind === undefined || source.kind === filter.kind) &&
+        (filter.element === undefined || source.elements.includes(filter.element)) &&
+        (filter.retired === "shown" || source.retiredAt === null),
+    )
     .sort((a, b) => (a.label < b.label ? -1 : 1));
   const elements = [...new Set(all.flatMap((source) => source.elements))].sort();
   const register = may("source.change") && (
@@ -43,15 +55,38 @@ export function SourcesPage() {
     </LinkButton>
   );
   return (
-    <Page name="Sources" title={sources.data === undefined ? "Sources" : shelfSentence(all)} aside="Sources" actions={all.length > 0 ? register : undefined}>
+    <Page
+      name="Sources"
+      title={sources.data === undefined ? "Sources" : shelfSentence(all)}
+      aside="Sources"
+      actions={all.length > 0 ? register : undefined}
+    >
       <Section
         title="Shelf"
         note="Lamps, lasers and built-in lines, each with its certificate and the cautions that stand where it is chosen."
         switches={
           <Filters>
-            <FilterSelect label="Kind" every="Every kind" value={filter.kind} onChange={(value) => setFilter("kind", value)} choices={sourceKind.options.map((kind) => ({ value: kind, label: sentenceCase(sourceKindWords[kind]) }))} />
-            <FilterSelect label="Element" every="Every element" value={filter.element} onChange={(value) => setFilter("element", value)} choices={elements.map((element) => ({ value: element, label: element }))} />
-            <FilterSelect label="Retired sources" every="Without retired" value={filter.retired} onChange={(value) => setFilter("retired", value)} choices={[{ value: "shown", label: "With retired" }]} />
+            <FilterSelect
+              label="Kind"
+              every="Every kind"
+              value={filter.kind}
+              onChange={(value) => setFilter("kind", value)}
+              choices={sourceKind.options.map((kind) => ({ value: kind, label: sentenceCase(sourceKindWords[kind]) }))}
+            />
+            <FilterSelect
+              label="Element"
+              every="Every element"
+              value={filter.element}
+              onChange={(value) => setFilter("element", value)}
+              choices={elements.map((element) => ({ value: element, label: element }))}
+            />
+            <FilterSelect
+              label="Retired sources"
+              every="Without retired"
+              value={filter.retired}
+              onChange={(value) => setFilter("retired", value)}
+              choices={[{ value: "shown", label: "With retired" }]}
+            />
           </Filters>
         }
         links={<TextLink to="/sources/lines">Line library</TextLink>}
@@ -79,15 +114,41 @@ export function SourcesPage() {
                     head: "Source",
                     cell: (source) => (
                       <>
-                        {source.name} <span className="type-note">{source.builtIntoInstrumentName === null ? sourceKindWords[source.kind] : `built into ${source.builtIntoInstrumentName}`}</span>
+                        {source.name}{" "}
+                        <span className="type-note">
+                          {source.builtIntoInstrumentName === null
+                            ? sourceKindWords[source.kind]
+                            : `built into ${source.builtIntoInstrumentName}`}
+                        </span>
                       </>
                     ),
                   },
                   { key: "lines", head: "Lines of", cell: whatShines },
-                  { key: "serial", head: "Serial number", className: "hidden wide:table-cell", cell: (source) => source.serial || "–" },
-                  { key: "certificate", head: "Certificate", className: "hidden rail:table-cell", cell: (source) => (source.certificate === null ? <span className="text-quiet">none stored</span> : "stored") },
-                  { key: "used", head: "Used in", className: "hidden rail:table-cell", cell: (source) => counted(source.usedInChecks, "check") },
-                  { key: "review", head: "Review", className: "whitespace-nowrap", cell: (source) => <Review source={source} /> },
+                  {
+                    key: "serial",
+                    head: "Serial number",
+                    className: "hidden wide:table-cell",
+                    cell: (source) => source.serial || "–",
+                  },
+                  {
+                    key: "certificate",
+                    head: "Certificate",
+                    className: "hidden rail:table-cell",
+                    cell: (source) =>
+                      source.certificate === null ? <span className="text-quiet">none stored</span> : "stored",
+                  },
+                  {
+                    key: "used",
+                    head: "Used in",
+                    className: "hidden rail:table-cell",
+                    cell: (source) => counted(source.usedInChecks, "check"),
+                  },
+                  {
+                    key: "review",
+                    head: "Review",
+                    className: "whitespace-nowrap",
+                    cell: (source) => <Review source={source} />,
+                  },
                 ]}
                 narrow={(source) => (
                   <Link to={`/sources/${source.id}`} className="block py-1">
@@ -107,7 +168,10 @@ export function SourcesPage() {
             ) : all.length > 0 ? (
               <Empty text="No source fits these filters." action={<TextButton onClick={clear}>Show all</TextButton>} />
             ) : (
-              <Empty text="The lamps and lasers that checks are made with stand here. A check names its source, so the first one is registered before the first check." action={register} />
+              <Empty
+                text="The lamps and lasers that checks are made with stand here. A check names its source, so the first one is registered before the first check."
+                action={register}
+              />
             )
           }
         </Asked>

@@ -23,14 +23,22 @@ function ItemTitle({ title }: { title: string }) {
 }
 
 export function TodayList({ items }: { items: readonly Item[] }) {
-  if (items.length === 0) return <Empty text="Nothing waits for you. Alerts, checks that fall due and reviews appear here, most urgent first." />;
+  if (items.length === 0)
+    return (
+      <Empty text="Nothing waits for you. Alerts, checks that fall due and reviews appear here, most urgent first." />
+    );
   const first = items.findIndex((item) => item.action !== null);
   return (
     <ul className="book:-mt-1">
       {items.map((item, index) => (
-        <li key={item.key} className="border-hairline flex flex-wrap items-start justify-between gap-x-8 gap-y-3 border-b py-4 first:pt-0 last:border-b-0 last:pb-0 book:flex-nowrap book:py-[14px]">
+        <li
+          key={item.key}
+          className="border-hairline flex flex-wrap items-start justify-between gap-x-8 gap-y-3 border-b py-4 first:pt-0 last:border-b-0 last:pb-0 book:flex-nowrap book:py-[14px]"
+        >
           <div className="relative min-w-0 pl-7 book:pl-6">
-            {item.state !== null && <StatusShape state={item.state} label={statusWord(item.state)} className="absolute top-1 left-0" />}
+            {item.state !== null && (
+              <StatusShape state={item.state} label={statusWord(item.state)} className="absolute top-1 left-0" />
+            )}
             <ItemTitle title={item.title} />
             <p className="text-quiet max-w-[720px]">{item.detail}</p>
           </div>

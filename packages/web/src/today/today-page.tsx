@@ -4,7 +4,18 @@ import { DaysRuler } from "../drawings/index.ts";
 import { Asked } from "../shared/asked.tsx";
 import { FleetTable } from "../shared/fleet-table.tsx";
 import { countWord, sentenceCase } from "../shared/words.ts";
-import { dayOf, Empty, formatWeekday, LinkButton, Page, Section, Skeleton, TextLink, useMay, useMe } from "../ui/index.ts";
+import {
+  dayOf,
+  Empty,
+  formatWeekday,
+  LinkButton,
+  Page,
+  Section,
+  Skeleton,
+  TextLink,
+  useMay,
+  useMe,
+} from "../ui/index.ts";
 import { TodayList } from "./today-list.tsx";
 import { useToday } from "./queries.ts";
 
