@@ -3,7 +3,7 @@
  *
  * Strength  each line's published intensity over that of the third strongest of its spectrum in the window, at most 1.
  *           Published scales differ between spectra and lamps scatter by a factor of three and more, so a strength is
- *           only ever compressed into odds (see `oddsOf`): evidence, never proof. Lines of ions count 3 % beside
+ *           only ever compressed into odds (see `oddsOf`): evidence, never proof. Lines of ions count less beside
  *           their neutral atom (low-pressure lamps; common practice, no source).
  * Medium    wavelengths as the axis means them: vacuum, or air with vacuum below 200 nm. The air of the room differs
  *           from standard air by less than the offset that is searched for anyway.
@@ -15,7 +15,9 @@ import { exp, log } from "../numeric/elementary.ts";
 /** Lines of one spectrum closer than this are one line measured twice, nm (Hg 434.7495 / 434.7506 in the built-in list). */
 const sameLineNm = 0.0015;
 const strengthWithoutIntensity = 0.1;
-const ionFactor = 0.03;
+/** Ions beside their neutral atom: in the odds of the search, and in what they may carry of a blend. */
+const ionOdds = 0.3;
+const ionBrightness = 0.03;
 /** An expected line of a procedure is taken to be well visible. */
 const expectedStrength = 0.5;
 const expectedWithinNm = 0.01;
@@ -81,11 +83,12 @@ export function referenceTable(
         : line.relativeIntensity === null
           ? strengthWithoutIntensity
           : line.relativeIntensity / unit;
-    if (isIon(line) && neutral.has(line.element)) value *= ionFactor;
+    const isRare = isIon(line) && neutral.has(line.element);
+    brightness[k] = isRare ? value * ionBrightness : value;
+    if (isRare) value = Math.min(1, value) * ionOdds;
     const known = lineWavelengthNm(line).wavelengthNm;
     const isExpected = expectedLinesNm.some((wanted) => Math.abs(wanted - known) <= expectedWithinNm);
     if (isExpected) value = Math.max(value, expectedStrength);
-    brightness[k] = value;
     strength[k] = Math.min(1, value);
     expected.push(isExpected);
   });
