@@ -49,6 +49,15 @@ const faces = {
 } as const;
 type Face = keyof typeof faces;
 
+const fonts = Object.entries({
+  "latin-regular": latinRegular,
+  "latin-strong": latinStrong,
+  "ext-regular": latinExtRegular,
+  "ext-strong": latinExtStrong,
+  "greek-regular": greekRegular,
+  "greek-strong": greekStrong,
+}).map(([name, base64]) => [name, Buffer.from(base64, "base64")] as const);
+
 /** Face of a character; what none has is printed as a question mark in the Latin one. */
 function faceOf(codePoint: number): Face {
   if (codePoint >= 0x370 && codePoint <= 0x3ff) return "greek";
@@ -60,17 +69,26 @@ function faceOf(codePoint: number): Face {
   return "latin";
 }
 const latinBeyond = new Set([
-  0x131, 0x152, 0x153, 0x2013, 0x2014, 0x2018, 0x2019, 0x201c, 0x201d, 0x2022, 0x2026, 0x202f, 0x20ac, 0x2212,
+  0x131, 0x152, 0x153, 0x2013, 0x2014, 0x2018, 0x2019, 0x201c, 0x201d, 0x2022, 0x2026, 0x20ac, 0x2212,
 ]);
 
+/** The face has no narrow no-break space: it is drawn as a gap of this share of the size. */
+const narrowSpace = "\u202f";
+const narrowGap = 0.2;
+
 interface Run {
-  face: Face;
+  /** Null: a narrow gap. */
+  face: Face | null;
   text: string;
 }
 
 function runsOf(text: string): Run[] {
   const runs: Run[] = [];
   for (const character of text) {
+    if (character === narrowSpace) {
+      runs.push({ face: null, text: character });
+      continue;
+    }
     const codePoint = character.codePointAt(0)!;
     const face = faceOf(codePoint);
     const printable =
@@ -90,6 +108,7 @@ export class PdfSheet {
   readonly bodyWidth = pageWidth - 2 * margin;
   private readonly doc: PDFKit.PDFDocument;
   private readonly chunks: Buffer[] = [];
+  private readonly widths = new Map<string, number>();
   private y = margin;
 
   /** @param createdAt fixed, so that the same report is the same bytes */
@@ -109,15 +128,7 @@ export class PdfSheet {
         ModDate: info.createdAt,
       },
     });
-    const fonts: [string, string][] = [
-      ["latin-regular", latinRegular],
-      ["latin-strong", latinStrong],
-      ["ext-regular", latinExtRegular],
-      ["ext-strong", latinExtStrong],
-      ["greek-regular", greekRegular],
-      ["greek-strong", greekStrong],
-    ];
-    for (const [name, base64] of fonts) this.doc.registerFont(name, Buffer.from(base64, "base64"));
+    for (const [name, bytes] of fonts) this.doc.registerFont(name, bytes);
     this.doc.on("data", (chunk: Buffer) => this.chunks.push(chunk));
   }
 
@@ -278,18 +289,31 @@ export class PdfSheet {
   }
 
   private width(text: string, style: TextStyle): number {
-    return runsOf(text).reduce((sum, run) => {
-      this.use(run.face, style);
-      return sum + this.doc.widthOfString(run.text);
-    }, 0);
+    return runsOf(text).reduce((sum, run) => sum + this.runWidth(run, style), 0);
+  }
+
+  /** Widths grow with the size, so each text is laid out once a weight. */
+  private runWidth(run: Run, style: TextStyle): number {
+    const size = style.size ?? 9;
+    if (run.face === null) return narrowGap * size;
+    const key = `${style.weight ?? "regular"} ${run.face} ${run.text}`;
+    let perPoint = this.widths.get(key);
+    if (perPoint === undefined) {
+      this.use(run.face, { ...style, size: 1 });
+      perPoint = this.doc.widthOfString(run.text);
+      this.widths.set(key, perPoint);
+    }
+    return perPoint * size;
   }
 
   private line(text: string, x: number, y: number, style: TextStyle): void {
     let at = x;
     for (const run of runsOf(text)) {
-      this.use(run.face, style);
-      this.doc.fillColor(style.grey === true ? "#596171" : "#000000").text(run.text, at, y, { lineBreak: false });
-      at += this.doc.widthOfString(run.text);
+      if (run.face !== null) {
+        this.use(run.face, style);
+        this.doc.fillColor(style.grey === true ? "#596171" : "#000000").text(run.text, at, y, { lineBreak: false });
+      }
+      at += this.runWidth(run, style);
     }
   }
 

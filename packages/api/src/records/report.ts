@@ -206,14 +206,14 @@ function lines(sheet: PdfSheet, facts: ReportFacts): void {
     [
       { title: "Reference, nm", share: 0.14, align: "right" },
       { title: "Species", share: 0.11 },
-      { title: "Position", share: 0.11, align: "right" },
+      { title: "Position", share: 0.1, align: "right" },
       { title: "Error", share: 0.1, align: "right" },
       { title: "U", share: 0.09, align: "right" },
       { title: "k", share: 0.06, align: "right" },
       { title: "FWHM", share: 0.08, align: "right" },
       { title: "Tolerance", share: 0.1, align: "right" },
       { title: "Used", share: 0.07, align: "right" },
-      { title: "Verdict", share: 0.14 },
+      { title: "Verdict", share: 0.15 },
     ],
     named.map((line) => lineRow(line, analysis.verdict?.worstLine === analysis.lines.indexOf(line))),
   );

@@ -11,7 +11,7 @@ const { default: subsetFont } = await import(web.resolve("subset-font"));
 
 const range = (from, to) => String.fromCodePoint(...Array.from({ length: to - from + 1 }, (_, i) => from + i));
 const faces = {
-  latin: range(0x20, 0x7e) + range(0xa0, 0xff) + "\u0131\u0152\u0153\u2013\u2014\u2018\u2019\u201c\u201d\u2022\u2026\u202f\u20ac\u2212",
+  latin: range(0x20, 0x7e) + range(0xa0, 0xff) + "\u0131\u0152\u0153\u2013\u2014\u2018\u2019\u201c\u201d\u2022\u2026\u20ac\u2212",
   latinExt: range(0x100, 0x24f) + range(0x1e00, 0x1eff),
   greek: range(0x370, 0x3ff),
 };
