@@ -132,7 +132,7 @@ function MadeFrom({ check, analysis }: { check: Check; analysis: Analysis }) {
       )}
       {check.report !== null && may("report.read") && (
         <p>
-          <FileLink href={routeUrl("readReport", { checkId: check.summary.id })}>
+          <FileLink href={routeUrl("readReport", { checkId: check.summary.id })} download>
             Report {check.report.number}, PDF
           </FileLink>
           , made <When at={check.report.madeAt} as="day" />,{" "}
