@@ -5,6 +5,7 @@ import { coreVersion } from "@wavekeep/core";
 import type { z } from "zod";
 import type { CaptureReceipt, uploadReply } from "../contract/checks.ts";
 import type { Analyser } from "../checks/analyser.ts";
+import { storableJson } from "../checks/storable.ts";
 import { addContributor, addEvent, findCheck, findState, lockDraft } from "../checks/queries.ts";
 import { newId } from "../db/columns.ts";
 import type { Database } from "../db/connection.ts";
@@ -118,7 +119,7 @@ export async function readStored(
   ctx: Context,
   capture: { id: string; name: string; bytes: Uint8Array },
 ): Promise<void> {
-  const found = await analyser.read(capture.bytes, capture.name);
+  const found = storableJson(await analyser.read(capture.bytes, capture.name));
   await inLab(db, ctx, async (tx) =>
     keepReading(tx, {
       labId: ctx.labId,

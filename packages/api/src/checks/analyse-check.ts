@@ -35,6 +35,7 @@ import {
 } from "./queries.ts";
 import { readCheck } from "./read-check.ts";
 import { buildSetup } from "./setup.ts";
+import { storableJson } from "./storable.ts";
 import { holdToProcedure, resultOf, stripOf } from "./summarise.ts";
 import type { CheckWork } from "./work.ts";
 
@@ -48,11 +49,11 @@ export async function analyseCheck(
   const prepared = await inLab(work.db, ctx, (tx) => prepare(tx, ctx, checkId, input));
   const { analysis: raw, drawing } = await work.analyser.analyse(prepared.inputs, prepared.setup);
   const analysis = withUnread(
-    holdToProcedure(throughJson(raw), prepared.procedure.leastLinesPerSegment, prepared.procedure.code),
+    holdToProcedure(storableJson(raw), prepared.procedure.leastLinesPerSegment, prepared.procedure.code),
     prepared.unread,
   );
   return inLab(work.db, ctx, (tx) =>
-    keep(tx, ctx, input, prepared, analysis, drawing === null ? null : throughJson(drawing)),
+    keep(tx, ctx, input, prepared, analysis, drawing === null ? null : storableJson(drawing)),
   );
 }
 
@@ -162,9 +163,6 @@ function withUnread(analysis: Analysis, unread: readonly CaptureWithMore[]): Ana
   }));
   return { ...analysis, warnings: [...analysis.warnings, ...warnings] };
 }
-
-/** As it will come back from the database: what JSON can't hold (NaN) is null on both sides. */
-const throughJson = <T>(value: T): T => JSON.parse(JSON.stringify(value)) as T;
 
 async function keep(
   tx: Tx,
