@@ -7,7 +7,15 @@ import type { Me } from "@wavekeep/api/contract";
 import { lazy, Suspense, useEffect, useRef, useState } from "react";
 import { Outlet, ScrollRestoration, useLocation } from "react-router";
 import { api, onSessionLost } from "../shared/api.ts";
-import { isMember, MemberProvider, sessionQuery, useSession, type Member } from "../shared/session.ts";
+import {
+  adoptSession,
+  isMember,
+  memberKey,
+  MemberProvider,
+  sessionQuery,
+  useSession,
+  type Member,
+} from "../shared/session.ts";
 import { Button } from "../ui/button.tsx";
 import { ProblemNote } from "../ui/problem-note.tsx";
 import { Header } from "./header.tsx";
@@ -17,7 +25,8 @@ import { useIdle } from "./use-idle.ts";
 const SignIn = lazy(async () => ({ default: (await import("../auth/sign-in-page.tsx")).SignInPage }));
 const ChooseLab = lazy(async () => ({ default: (await import("../auth/choose-lab.tsx")).ChooseLab }));
 
-const memberKey = (me: Member) => `${me.person.id} ${me.lab.id}`;
+/** The session as it is once nobody holds it. */
+const withoutPerson = (me: Me): Me => ({ ...me, person: null, lab: null, roles: [], ownedInstrumentIds: [], labs: [] });
 
 export function Shell() {
   const session = useSession();
@@ -25,33 +34,20 @@ export function Shell() {
   const [kept, setKept] = useState<Member | null>(null);
   const me = session.data;
   if (isMember(me) && kept !== me) setKept(me);
-  const shownKey = kept === null ? null : memberKey(kept);
-  const lastKey = useRef<string | null>(null);
-
-  // Another person at this PC: nothing that the last one fetched may be seen.
-  useEffect(() => {
-    if (lastKey.current !== null && shownKey !== null && lastKey.current !== shownKey) {
-      client.removeQueries({ predicate: (query) => query.queryKey[0] !== "session" });
-    }
-    lastKey.current = shownKey;
-  }, [shownKey, client]);
 
   useEffect(() => {
-    const forget = () => {
-      client.setQueryData<Me>(sessionQuery.queryKey, (old) =>
-        old === undefined ? old : { ...old, person: null, lab: null, roles: [], ownedInstrumentIds: [], labs: [] },
-      );
-      void client.invalidateQueries({ queryKey: sessionQuery.queryKey });
-    };
-    onSessionLost(forget);
+    onSessionLost((_, now) => {
+      if (now === null) {
+        client.setQueryData<Me>(sessionQuery.queryKey, (old) => old && withoutPerson(old));
+        void client.invalidateQueries({ queryKey: sessionQuery.queryKey });
+      } else client.setQueryData<Me>(sessionQuery.queryKey, adoptSession(client, now));
+    });
     return () => onSessionLost(() => undefined);
   }, [client]);
 
   useIdle(kept?.bench?.lockAfterSeconds ?? kept?.idleSeconds ?? 0, isMember(me), () => {
     const bench = kept?.bench !== null && kept?.bench !== undefined;
-    client.setQueryData<Me>(sessionQuery.queryKey, (old) =>
-      old === undefined ? old : { ...old, person: null, lab: null, roles: [], ownedInstrumentIds: [], labs: [] },
-    );
+    client.setQueryData<Me>(sessionQuery.queryKey, (old) => old && withoutPerson(old));
     void (bench ? api.delete("benchLock") : api.delete("signOut"))
       .catch(() => undefined)
       .finally(() => void client.invalidateQueries({ queryKey: sessionQuery.queryKey }));

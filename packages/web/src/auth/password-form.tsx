@@ -4,7 +4,6 @@ import { useState } from "react";
 import { useForm } from "react-hook-form";
 import { Link } from "react-router";
 import { api } from "../shared/api.ts";
-import { ApiProblem } from "../shared/problem.ts";
 import { Button } from "../ui/button.tsx";
 import { Field, PasswordField } from "../ui/field.tsx";
 import { ProblemNote } from "../ui/problem-note.tsx";
@@ -13,11 +12,9 @@ interface PasswordFormProps {
   email: string;
   password: string;
   onEntered: (me: Me) => void;
-  /** The session's token was refused: the session is to be read anew. */
-  onStale: () => void;
 }
 
-export function PasswordForm({ email, password, onEntered, onStale }: PasswordFormProps) {
+export function PasswordForm({ email, password, onEntered }: PasswordFormProps) {
   const [problem, setProblem] = useState<unknown>(null);
   const form = useForm({ resolver: zodResolver(signInInput), defaultValues: { email, password } });
   const { errors, isSubmitting } = form.formState;
@@ -26,7 +23,6 @@ export function PasswordForm({ email, password, onEntered, onStale }: PasswordFo
     try {
       onEntered(await api.post("signIn", {}, input));
     } catch (error) {
-      if (error instanceof ApiProblem && error.status === 403) onStale();
       setProblem(error);
       form.setFocus("password");
     }

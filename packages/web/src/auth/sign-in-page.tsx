@@ -1,9 +1,8 @@
 /** Sign in: by e-mail and password, or on a shared PC by name and PIN. */
-import { useQuery, useQueryClient } from "@tanstack/react-query";
+import { useQuery } from "@tanstack/react-query";
 import type { Me } from "@wavekeep/api/contract";
 import { lazy, Suspense, useState } from "react";
 import { api } from "../shared/api.ts";
-import { sessionQuery } from "../shared/session.ts";
 import { TextButton } from "../ui/button.tsx";
 import { Door } from "./door.tsx";
 import { useEnter } from "./use-enter.ts";
@@ -25,7 +24,6 @@ export function SignInPage({ me, lastPerson }: SignInPageProps) {
     retry: false,
   });
   const [byPassword, setByPassword] = useState(false);
-  const client = useQueryClient();
   const enter = useEnter();
   const [picked, setPicked] = useState<Me["demoPeople"][number] | null>(null);
   const device = bench.data?.device ?? null;
@@ -51,7 +49,6 @@ export function SignInPage({ me, lastPerson }: SignInPageProps) {
             email={picked?.email ?? lastPerson?.email ?? ""}
             password={picked?.password ?? ""}
             onEntered={enter}
-            onStale={() => void client.invalidateQueries({ queryKey: sessionQuery.queryKey })}
           />
         )}
       </Suspense>

@@ -37,16 +37,20 @@ interface SendOptions {
 }
 
 let csrfToken = "";
-let sessionLost: (problem: ApiProblem) => void = () => undefined;
+let personId: string | null = null;
+/** `me` is the session as it stands now, where it is known. */
+type OnSessionLost = (problem: ApiProblem, me: Me | null) => void;
+let sessionLost: OnSessionLost = () => undefined;
 
-/** Keeps the token that the session's reply brought. */
+/** Keeps the token that the session's reply brought, and whose it is. */
 export function keepCsrfToken(me: Me): Me {
   csrfToken = me.csrfToken;
+  personId = me.person?.id ?? null;
   return me;
 }
 
-/** Called whenever a request is refused because nobody is signed in (any more). */
-export function onSessionLost(listener: (problem: ApiProblem) => void): void {
+/** Called whenever a request is refused because this person is not signed in (any more). */
+export function onSessionLost(listener: OnSessionLost): void {
   sessionLost = listener;
 }
 
@@ -96,12 +100,38 @@ function parseReply<N extends RouteName>(name: N, value: unknown): RouteReply<N>
   return parsed.data as RouteReply<N>;
 }
 
+const isSessionEnd = (problem: ApiProblem) => problem.kind === "not-signed-in" || problem.kind === "session-ended";
+
+/** Doors refuse what was typed; everywhere else a refusal for want of a session means that it ended. */
+const DOORS: ReadonlySet<RouteName> = new Set([
+  "signIn",
+  "benchSignIn",
+  "acceptInvitation",
+  "forgetPassword",
+  "resetPassword",
+]);
+
+/**
+ * After a token was refused: reads the session anew. True when the same person (or, at a door, nobody) holds it with
+ * another token, so that the request, of which the server did nothing, may be sent once more.
+ */
+async function renewToken(name: RouteName, problem: ApiProblem): Promise<boolean> {
+  const before = { token: csrfToken, personId };
+  const me = keepCsrfToken(await api.get("readSession"));
+  if (personId !== before.personId && !DOORS.has(name)) {
+    sessionLost(problem, me);
+    return false;
+  }
+  return me.csrfToken !== before.token;
+}
+
 async function send<N extends RouteName>(
   name: N,
   params: RouteParams<N>,
   query: unknown,
   body: unknown,
   options: SendOptions,
+  isAgain = false,
 ): Promise<RouteReply<N>> {
   const { method } = routes[name];
   const headers: Record<string, string> = { accept: "application/json" };
@@ -119,7 +149,9 @@ async function send<N extends RouteName>(
   });
   if (!response.ok) {
     const problem = await problemFrom(response);
-    if (problem.status === 401 && name !== "signIn" && name !== "benchSignIn") sessionLost(problem);
+    if (problem.kind === "csrf" && !isAgain && (await renewToken(name, problem)))
+      return send(name, params, query, body, options, true);
+    if (isSessionEnd(problem) && !DOORS.has(name)) sessionLost(problem, null);
     throw problem;
   }
   return parseReply(name, response.status === 204 ? undefined : await response.json().catch(() => undefined));
@@ -156,7 +188,7 @@ function upload<N extends Named<"post">>(
       });
       if (!response.ok) {
         const problem = await problemFrom(response);
-        if (problem.status === 401) sessionLost(problem);
+        if (isSessionEnd(problem)) sessionLost(problem, null);
         reject(problem);
         return;
       }

@@ -1,15 +1,32 @@
 /** Who is signed in and what they may do, read from the one permission table that the server enforces. */
 import { permissions, type Action, type Me, type Permission } from "@wavekeep/api/contract";
-import { queryOptions, useQuery } from "@tanstack/react-query";
+import { queryOptions, useQuery, type QueryClient } from "@tanstack/react-query";
 import { createContext, useContext, useState } from "react";
 import { dayOf } from "../ui/format.ts";
 import { api, keepCsrfToken } from "./api.ts";
 
 export const sessionQuery = queryOptions({
   queryKey: ["session"],
-  queryFn: async ({ signal }) => keepCsrfToken(await api.get("readSession", {}, undefined, { signal })),
+  queryFn: async ({ signal, client }) => adoptSession(client, await api.get("readSession", {}, undefined, { signal })),
   staleTime: 60_000,
 });
+
+let lastMember: string | null = null;
+
+/**
+ * Takes a session as the one in force. When another person, or the same one in another lab, holds it, nothing that was
+ * fetched before may be seen: it is forgotten before the session is shown.
+ */
+export function adoptSession(client: QueryClient, me: Me): Me {
+  keepCsrfToken(me);
+  if (isMember(me)) {
+    const member = memberKey(me);
+    if (lastMember !== null && lastMember !== member)
+      client.removeQueries({ predicate: (query) => query.queryKey[0] !== "session" });
+    lastMember = member;
+  }
+  return me;
+}
 
 /** The session as the server last told it; before sign-in `person` is null. */
 export const useSession = () => useQuery(sessionQuery);
@@ -18,6 +35,9 @@ export const useSession = () => useQuery(sessionQuery);
 export type Member = Me & { person: NonNullable<Me["person"]>; lab: NonNullable<Me["lab"]> };
 
 export const isMember = (me: Me | undefined): me is Member => me !== undefined && me.person !== null && me.lab !== null;
+
+/** Names a person at work in a lab: another key is another desk. */
+export const memberKey = (me: Member): string => `${me.person.id} ${me.lab.id}`;
 
 const MemberContext = createContext<Member | null>(null);
 /** Set by the shell around every page. */
