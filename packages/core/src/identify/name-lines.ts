@@ -9,7 +9,8 @@
  *         s/(1 - s), s the share of its class (published lines of about its strength) that was found, against strays of its
  *         brightness spread evenly over the capture; a height far from what its published intensity leads to expect counts
  *         against it, by no more than a factor of 90
- * Blends  published lines that no other found line claims and that lie within 0.6 FWHM of it belong to one found line.
+ * Blends  published lines that no other found line claims and that lie within 0.6 FWHM of it (0.45 of its own, where
+ *         that is more; broader than 1.9 times the usual it gets no name) belong to one found line.
  *         Companions below 12 % of the strongest of the group (0.5 % where they belong to another spectrum) give no name;
  *         what they may pull stays as uncertainty. If the place, judged by the other lines' axis, is nearer to one component
  *         than to the common centroid, the capture itself shows that this one carries most of the light: it gives the name,
@@ -32,6 +33,10 @@ const vaguePlaceShare = 0.3;
 const rivalSds = 3;
 const rivalShare = 0.1;
 const blendReachShare = 0.6;
+/** Of a line broader than the others: the share of its own width. */
+const broadReachShare = 0.45;
+/** A line this many times as broad as the others is a crowd of lines, whatever lies in its middle. */
+const crowdRatio = 1.9;
 const companionShare = 0.12;
 /** Between spectra published intensities do not compare: only next to nothing is ignored there. */
 const companionShareOfOthers = 0.005;
@@ -111,7 +116,6 @@ function shareReferences(problem: Problem, table: ReferenceTable, places: Float6
   for (let i = 0; i < problem.count; i++) if (problem.usable[i] === 1) order.push(i);
   order.sort((a, b) => (places[a] as number) - (places[b] as number));
   const shares: number[][] = Array.from({ length: problem.count }, () => []);
-  const reach = blendReachShare * problem.fwhmNm;
   let k = 0;
   for (let j = 0; j < table.nm.length && order.length > 0; j++) {
     const nm = table.nm[j] as number;
@@ -122,6 +126,7 @@ function shareReferences(problem: Problem, table: ReferenceTable, places: Float6
       k += 1;
     }
     const i = order[k] as number;
+    const reach = Math.max(blendReachShare, broadReachShare * (problem.widthRatio[i] as number)) * problem.fwhmNm;
     if (Math.abs((places[i] as number) - nm) <= reach) (shares[i] as number[]).push(j);
   }
   const pulls = new Float64Array(problem.count);
@@ -237,7 +242,7 @@ function decide(
   const agreement = agreementOf(problem, target, fit);
   for (let i = 0; i < count; i++) {
     const share = shares[i] as number[];
-    if (share.length === 0 || problem.usable[i] === 0) continue;
+    if (share.length === 0 || problem.usable[i] === 0 || (problem.widthRatio[i] as number) > crowdRatio) continue;
     const own = agreement.shrink * (problem.lineUncNm[i] as number);
     const axis = fit.axisUncNm[i] as number;
     const sd = Math.sqrt(own * own + axis * axis + fit.scatterNm * fit.scatterNm);

@@ -40,6 +40,8 @@ export interface Problem {
   saturated: Uint8Array;
   /** Lines much wider than the median: unresolved blends. */
   broad: Uint8Array;
+  /** Own width of each line over the median one, at least 1. */
+  widthRatio: Float64Array;
   /** Indices of usable lines, strongest first. */
   byHeight: number[];
   fwhmNm: number;
@@ -105,6 +107,7 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
     usable: new Uint8Array(count),
     saturated: new Uint8Array(count),
     broad: new Uint8Array(count),
+    widthRatio: new Float64Array(count),
     byHeight: [],
     fwhmNm,
     spanNm,
@@ -137,6 +140,8 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
         : line.fwhm * line.fwhm - input.medianFwhm * input.medianFwhm;
     const hidden = broadShare * Math.sqrt(Math.max(excess, 0)) * slope;
     problem.broad[i] = excess > 0 ? 1 : 0;
+    // Neighbours fitted together share out their width between them: it says nothing of either.
+    problem.widthRatio[i] = line.flags.includes("blend") ? 1 : Math.max(1, line.fwhm / input.medianFwhm);
     problem.lineUncNm[i] = Math.sqrt(unc * unc + share * share * fwhmNm * fwhmNm + hidden * hidden);
     problem.heightCounts[i] = line.peakHeightCounts;
     problem.saturated[i] = isSaturated ? 1 : 0;

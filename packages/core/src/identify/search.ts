@@ -15,9 +15,9 @@ import { lowerBound, type ReferenceTable } from "./reference-table.ts";
 import { coarseTable, correctedNm, evidenceFor, type Evidence, type Odds, strongCount } from "./score.ts";
 
 const anchorPool = 12;
-const anchorPairs = 7;
-const linesVoting = 16;
-const kept = 36;
+const anchorPairs = 5;
+const linesVoting = 13;
+const kept = 24;
 const anchorReferences = 14;
 
 export interface Hypothesis {
