@@ -72,7 +72,7 @@ export function DispersionSection({ dispersion, analysis }: { dispersion: Disper
               ...coefficients.map((value, power) => ({ label: `c${power}`, value: <Coefficient value={value} /> })),
               {
                 label: "Left by the fit, rms",
-                value: `${formatNumber(dispersion.rmsPx, { decimals: 3 })}${NARROW_SPACE}${axisUnit}, ${formatNumber(dispersion.rmsNm, { decimals: 4 })}${NARROW_SPACE}nm`,
+                value: `${axisUnit === "nm" ? "" : `${formatNumber(dispersion.rmsPx, { decimals: 3 })}${NARROW_SPACE}${axisUnit}, `}${formatNumber(dispersion.rmsNm, { decimals: 4 })}${NARROW_SPACE}nm`,
               },
               {
                 label: "Leaving each out, rms",

@@ -92,6 +92,7 @@ export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: Li
             {
               key: "reference",
               head: "Reference, nm",
+              className: "whitespace-nowrap",
               cell: ({ line }) =>
                 line.wavelengthNm === null ? (
                   <span className="text-quiet">unnamed</span>

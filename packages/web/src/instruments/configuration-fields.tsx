@@ -194,7 +194,7 @@ export function ToleranceFields({ name }: { name: string }) {
       {fields.map((field, index) => (
         <div
           key={field.id}
-          className="mb-3 grid grid-cols-3 items-start gap-x-4 book:grid-cols-[140px_140px_160px_auto] book:gap-x-6"
+          className="mb-3 grid max-w-[560px] grid-cols-[repeat(3,minmax(0,1fr))] items-start gap-x-4 book:grid-cols-[repeat(3,minmax(0,1fr))_56px]"
         >
           <FormNumber name={`${name}.${index}.fromNm`} label="From" unit="nm" />
           <FormNumber name={`${name}.${index}.toNm`} label="To" unit="nm" />

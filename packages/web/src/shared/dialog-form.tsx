@@ -48,7 +48,12 @@ export function DialogForm<Values extends FieldValues, Output extends FieldValue
       }
     >
       <FormProvider {...form}>
-        <form id="dialog-form" noValidate onSubmit={(event) => void submit(event)} className="grid gap-4">
+        <form
+          id="dialog-form"
+          noValidate
+          onSubmit={(event) => void submit(event)}
+          className="grid grid-cols-[minmax(0,1fr)] gap-4"
+        >
           {children}
           <Refused error={error} onKeepMine={onKeepMine} onTakeTheirs={onTakeTheirs} />
         </form>

@@ -119,16 +119,27 @@ export function FormSelect({
   placeholder,
   empty = "",
 }: Bound & { choices: readonly Choice[]; placeholder?: string; empty?: "" | null }) {
-  const { register, formState } = useFormContext();
+  const { control, formState } = useFormContext();
+  // Held by the form, not by the page: the choices may come after the value.
   return (
-    <SelectField
-      label={label}
-      note={note}
-      className={className}
-      choices={choices}
-      placeholder={placeholder}
-      error={messageAt(formState.errors, name)}
-      {...register(name, { setValueAs: (value: unknown) => (value === "" || value === null ? empty : value) })}
+    <Controller
+      control={control}
+      name={name}
+      render={({ field }) => (
+        <SelectField
+          label={label}
+          note={note}
+          className={className}
+          choices={choices}
+          placeholder={placeholder}
+          error={messageAt(formState.errors, name)}
+          name={field.name}
+          ref={field.ref}
+          onBlur={field.onBlur}
+          value={typeof field.value === "string" ? field.value : ""}
+          onChange={(event) => field.onChange(event.target.value === "" ? empty : event.target.value)}
+        />
+      )}
     />
   );
 }
@@ -178,12 +189,12 @@ interface RefusedProps {
   onTakeTheirs?: () => void;
 }
 
-/** What the server refused, above the buttons. A stale form keeps what was typed and offers both ways on. */
+/** What the server refused, above the buttons; what it says of a field stands at the field. A stale form keeps what was typed and offers both ways on. */
 export function Refused({ error, onKeepMine, onTakeTheirs }: RefusedProps) {
   if (error === null || error === undefined) return null;
   return (
     <div className="my-4">
-      <ProblemNote error={error} />
+      <ProblemNote error={error} withFields={false} />
       {isStale(error) && (onKeepMine !== undefined || onTakeTheirs !== undefined) && (
         <div className="mt-3 flex flex-wrap gap-3">
           {onKeepMine !== undefined && <Button onClick={onKeepMine}>Keep what I typed</Button>}
