@@ -39,10 +39,12 @@ describe("refusals are problem documents", () => {
 
   test("broken JSON, a foreign encoding, a body too large, a character that cannot be stored", async () => {
     const raw = (type: string, body: string) => lab.manager.client.put("/me").set("content-type", type).send(body);
-    expect((await raw("application/json", "{\"name\": ")).body.detail).toMatch(/no valid JSON/);
+    expect((await raw("application/json", '{"name": ')).body.detail).toMatch(/no valid JSON/);
     expect((await raw("application/json; charset=klingon", "{}")).status).toBe(415);
     expect((await raw("application/json", JSON.stringify({ name: "x".repeat(1_100_000) }))).status).toBe(413);
-    expect((await raw("application/json", JSON.stringify({ name: "nul \u0000 here" }))).body.detail).toMatch(/cannot be stored/);
+    expect((await raw("application/json", JSON.stringify({ name: "nul \u0000 here" }))).body.detail).toMatch(
+      /cannot be stored/,
+    );
     expect((await raw("text/plain", "name=x")).status).toBe(400);
     expect((await raw("application/json", "[1,2]")).status).toBe(400);
   });
@@ -61,8 +63,35 @@ describe("refusals are problem documents", () => {
 });
 
 test("whatever is sent to whatever route, no answer is a 5xx", async () => {
-  const nasty: unknown[] = [{}, [], null, "text", 0, { name: null }, { version: -1 }, { version: 1e400 }, { roles: "manager" }, { email: { $ne: "" } }, { name: "\u0000\uD800", reason: "\u0000\u0000\u0000", note: "\u0000\u0000\u0000", version: 0 }, { version: 99999999999, roles: ["manager"], isApprover: true, reason: "a reason", password: "x", segments: [] }];
-  const queries = ["", "?limit=0", "?limit=abc", "?after=%00", "?after=99999999999999999999", "?q=%00", "?q=%25_%5C", "?fromOn=0000-00-00", "?fromOn=9999-12-31&toOn=9999-12-31", "?personId=1", "?kind=%25", "?state=open&state=closed", "?fromNm=NaN"];
+  const nasty: unknown[] = [
+    {},
+    [],
+    null,
+    "text",
+    0,
+    { name: null },
+    { version: -1 },
+    { version: 1e400 },
+    { roles: "manager" },
+    { email: { $ne: "" } },
+    { name: "\u0000\uD800", reason: "\u0000\u0000\u0000", note: "\u0000\u0000\u0000", version: 0 },
+    { version: 99999999999, roles: ["manager"], isApprover: true, reason: "a reason", password: "x", segments: [] },
+  ];
+  const queries = [
+    "",
+    "?limit=0",
+    "?limit=abc",
+    "?after=%00",
+    "?after=99999999999999999999",
+    "?q=%00",
+    "?q=%25_%5C",
+    "?fromOn=0000-00-00",
+    "?fromOn=9999-12-31&toOn=9999-12-31",
+    "?personId=1",
+    "?kind=%25",
+    "?state=open&state=closed",
+    "?fromNm=NaN",
+  ];
   const ids = [randomUUID(), "%00"];
   const failures: string[] = [];
   // These two end the session they are asked with.
@@ -74,8 +103,20 @@ test("whatever is sent to whatever route, no answer is a 5xx", async () => {
       const replies =
         route.method === "get"
           ? await Promise.all(queries.map((query) => lab.manager.client.get(address + query)))
-          : await Promise.all(nasty.map((body) => lab.manager.client[route.method as "post"](address, undefined).set("content-type", "application/json").send(JSON.stringify(body))));
-      replies.forEach((reply, index) => reply.status >= 500 && failures.push(`${reply.status} ${route.method} ${address} ${route.method === "get" ? queries[index] : JSON.stringify(nasty[index])}`));
+          : await Promise.all(
+              nasty.map((body) =>
+                lab.manager.client[route.method as "post"](address, undefined)
+                  .set("content-type", "application/json")
+                  .send(JSON.stringify(body)),
+              ),
+            );
+      replies.forEach(
+        (reply, index) =>
+          reply.status >= 500 &&
+          failures.push(
+            `${reply.status} ${route.method} ${address} ${route.method === "get" ? queries[index] : JSON.stringify(nasty[index])}`,
+          ),
+      );
       if (!route.path.includes(":")) break;
     }
   }
@@ -83,8 +124,15 @@ test("whatever is sent to whatever route, no answer is a 5xx", async () => {
 }, 120_000);
 
 describe("Idempotency-Key", () => {
-  const register = (key: string, name: string) => lab.manager.client.post("/instruments", instrumentInput(lab.manager.id, { name })).set("idempotency-key", key);
-  const count = async (name: string) => (await server.database.owner.query("select count(*)::int as n from instruments where lab_id = $1 and name = $2", [lab.id, name])).rows[0].n;
+  const register = (key: string, name: string) =>
+    lab.manager.client.post("/instruments", instrumentInput(lab.manager.id, { name })).set("idempotency-key", key);
+  const count = async (name: string) =>
+    (
+      await server.database.owner.query("select count(*)::int as n from instruments where lab_id = $1 and name = $2", [
+        lab.id,
+        name,
+      ])
+    ).rows[0].n;
 
   test("a repetition has no second effect and gets the first reply", async () => {
     const first = await register("key-number-one", "Once").expect(200);
@@ -104,14 +152,18 @@ describe("Idempotency-Key", () => {
     await register("key-number-three", "Third").expect(200);
     expect((await register("key-number-three", "Something else")).body.type).toBe("/problems/repeated-request");
     const second = await lab.add("Second Manager", ["manager"]);
-    const reply = await second.client.post("/instruments", instrumentInput(second.id, { name: "Theirs" })).set("idempotency-key", "key-number-three");
+    const reply = await second.client
+      .post("/instruments", instrumentInput(second.id, { name: "Theirs" }))
+      .set("idempotency-key", "key-number-three");
     expect([reply.status, reply.body.name]).toEqual([200, "Theirs"]);
   });
 
   test("a refused request leaves its key free; a key is forgotten after a day", async () => {
     expect((await register("key-number-four", "Once")).status).toBe(409);
     expect((await register("key-number-four", "Once more")).status).toBe(200);
-    await server.database.owner.query("update idempotency_keys set created_at = now() - interval '25 hours' where key = 'key-number-four'");
+    await server.database.owner.query(
+      "update idempotency_keys set created_at = now() - interval '25 hours' where key = 'key-number-four'",
+    );
     expect((await register("key-number-four", "After a day")).status).toBe(200);
     expect((await register("short", "x")).status).toBe(400);
   });
@@ -120,7 +172,17 @@ describe("Idempotency-Key", () => {
 test("two people edit one instrument: the later one is told, and nothing is overwritten", async () => {
   const instrument = await buildInstrument(lab.manager, { name: "Edited twice" });
   const change = (place: string) =>
-    lab.manager.client.put(`/instruments/${instrument.id}`, { name: instrument.name, maker: "", model: "", serial: "", ownerId: lab.manager.id, place, altitudeM: null, purchasedOn: null, version: instrument.version });
+    lab.manager.client.put(`/instruments/${instrument.id}`, {
+      name: instrument.name,
+      maker: "",
+      model: "",
+      serial: "",
+      ownerId: lab.manager.id,
+      place,
+      altitudeM: null,
+      purchasedOn: null,
+      version: instrument.version,
+    });
   const replies = await Promise.all([change("Room 7"), change("Room 8")]);
   expect(replies.map(({ status }) => status).sort()).toEqual([200, 409]);
   const winner = replies.find(({ status }) => status === 200)!.body.place;
@@ -134,9 +196,12 @@ describe("the API described", () => {
     for (const [name, route] of Object.entries(routes) as [string, RouteContract][]) {
       const operation = body.paths[route.path.replace(/:(\w+)/g, "{$1}")]?.[route.method];
       expect(operation).toMatchObject({ operationId: name, description: expect.stringContaining(route.policy) });
-      if (route.body !== undefined) expect(operation.requestBody.content["application/json"].schema.type).toBe("object");
+      if (route.body !== undefined)
+        expect(operation.requestBody.content["application/json"].schema.type).toBe("object");
     }
-    expect(body.paths["/invitations"].post.requestBody.content["application/json"].schema.properties.email).toMatchObject({ type: "string", format: "email" });
+    expect(
+      body.paths["/invitations"].post.requestBody.content["application/json"].schema.properties.email,
+    ).toMatchObject({ type: "string", format: "email" });
   });
 
   test("and a plain page shows it", async () => {
@@ -152,7 +217,10 @@ describe("the client served", () => {
   const page = () => {
     fs.mkdirSync(path.join(webDir, "assets"), { recursive: true });
     fs.writeFileSync(path.join(webDir, "assets", "main-abc123.js"), "1;");
-    fs.writeFileSync(path.join(webDir, "index.html"), '<!doctype html><html lang="en" data-theme="paper"><head><meta name="theme-color" content="#F6F5F1" /><link rel="icon" href="/favicon-paper.svg" /></head></html>');
+    fs.writeFileSync(
+      path.join(webDir, "index.html"),
+      '<!doctype html><html lang="en" data-theme="paper"><head><meta name="theme-color" content="#F6F5F1" /><link rel="icon" href="/favicon-paper.svg" /></head></html>',
+    );
     return supertest(createApp({ ...server.services, config: { ...server.services.config, webDir } }));
   };
 
@@ -171,7 +239,9 @@ describe("the client served", () => {
 
   test("hashed assets stay for a year, missing ones are 404, an unknown API address is no page", async () => {
     const asked = page();
-    expect((await asked.get("/assets/main-abc123.js").expect(200)).headers["cache-control"]).toBe("public, max-age=31536000, immutable");
+    expect((await asked.get("/assets/main-abc123.js").expect(200)).headers["cache-control"]).toBe(
+      "public, max-age=31536000, immutable",
+    );
     await asked.get("/assets/gone-123.js").expect(404);
     await asked.get("/gone.png").expect(404);
     expect((await asked.get("/api/nope").expect(404)).headers["content-type"]).toContain("application/problem+json");
@@ -181,14 +251,24 @@ describe("the client served", () => {
     const plain = await page().get("/");
     expect(plain.headers["content-security-policy"]).not.toContain("upgrade-insecure-requests");
     expect(plain.headers["strict-transport-security"]).toBeUndefined();
-    const config = { ...server.services.config, webDir, publicUrl: "https://wavekeep.example", secureCookies: true, trustProxy: 1 };
+    const config = {
+      ...server.services.config,
+      webDir,
+      publicUrl: "https://wavekeep.example",
+      secureCookies: true,
+      trustProxy: 1,
+    };
     const secure = supertest.agent(createApp({ ...server.services, config }));
     const session = await secure.get("/api/session").set("x-forwarded-proto", "https");
     expect(session.headers["strict-transport-security"]).toBeDefined();
     const cookies = session.headers["set-cookie"] as unknown as string[];
     const signedIn = await secure
       .post("/api/session")
-      .set({ "x-forwarded-proto": "https", cookie: cookies.map((cookie) => cookie.split(";")[0]).join("; "), "x-csrf-token": session.body.csrfToken })
+      .set({
+        "x-forwarded-proto": "https",
+        cookie: cookies.map((cookie) => cookie.split(";")[0]).join("; "),
+        "x-csrf-token": session.body.csrfToken,
+      })
       .send({ email: lab.manager.email, password });
     expect(signedIn.status).toBe(200);
     expect(String(signedIn.headers["set-cookie"])).toMatch(/Secure/);

@@ -20,9 +20,15 @@ const owner = (text: string, values: unknown[] = []) => server.database.owner.qu
 const context = () => asWavekeep({ labId: lab.id, isDemo: false, zone: "Europe/Berlin" });
 const put = (causeKey: string) =>
   inLab(server.services.db, context(), (tx) =>
-    queueMail(tx, context(), server.services.jobs, { to: { personId: lab.manager.id }, subject: "A subject\r\nBcc: everybody@example.org", text: "Hello\n", causeKey }),
+    queueMail(tx, context(), server.services.jobs, {
+      to: { personId: lab.manager.id },
+      subject: "A subject\r\nBcc: everybody@example.org",
+      text: "Hello\n",
+      causeKey,
+    }),
   );
-const mailId = async (causeKey: string): Promise<string> => (await owner("select id from mail_outbox where cause_key = $1", [causeKey])).rows[0].id;
+const mailId = async (causeKey: string): Promise<string> =>
+  (await owner("select id from mail_outbox where cause_key = $1", [causeKey])).rows[0].id;
 
 async function until<T>(what: () => T | Promise<T>, holds: (value: T) => boolean): Promise<T> {
   for (let i = 0; i < 150; i += 1) {
@@ -37,21 +43,40 @@ test("the same cause is queued once; its job exists with it, and neither when th
   expect(await put("cause-1")).toBe(true);
   expect(await put("cause-1")).toBe(false);
   const failed = inLab(server.services.db, context(), async (tx) => {
-    await queueMail(tx, context(), server.services.jobs, { to: { address: "x@y.example" }, subject: "Never", text: "", causeKey: "cause-2" });
+    await queueMail(tx, context(), server.services.jobs, {
+      to: { address: "x@y.example" },
+      subject: "Never",
+      text: "",
+      causeKey: "cause-2",
+    });
     throw new Error("the cause failed");
   });
   await expect(failed).rejects.toThrow("the cause failed");
   expect((await owner("select 1 from mail_outbox where cause_key = 'cause-2'")).rowCount).toBe(0);
-  const { rows } = await owner("select count(*)::int as n from pgboss.job j where name = $1 and not exists (select 1 from mail_outbox m where m.id = (j.data ->> 'id')::uuid)", [queues.deliverMail]);
+  const { rows } = await owner(
+    "select count(*)::int as n from pgboss.job j where name = $1 and not exists (select 1 from mail_outbox m where m.id = (j.data ->> 'id')::uuid)",
+    [queues.deliverMail],
+  );
   expect(rows[0].n).toBe(0);
   // Who left the lab is written to no more.
   const gone = await lab.add("Gina Gone", ["technician"]);
   await lab.manager.client.post(`/people/${gone.id}/end`, { reason: "", version: 0 }).expect(204);
-  expect(await inLab(server.services.db, context(), (tx) => queueMail(tx, context(), server.services.jobs, { to: { personId: gone.id }, subject: "S", text: "", causeKey: "cause-3" }))).toBe(false);
+  expect(
+    await inLab(server.services.db, context(), (tx) =>
+      queueMail(tx, context(), server.services.jobs, {
+        to: { personId: gone.id },
+        subject: "S",
+        text: "",
+        causeKey: "cause-3",
+      }),
+    ),
+  ).toBe(false);
 });
 
 test("a job to a queue that is not there is an error, not a silence", async () => {
-  const sent = inLab(server.services.db, context(), (tx) => server.services.jobs.send(tx, "no-such-queue" as QueueName, { labId: lab.id }));
+  const sent = inLab(server.services.db, context(), (tx) =>
+    server.services.jobs.send(tx, "no-such-queue" as QueueName, { labId: lab.id }),
+  );
   await expect(sent).rejects.toThrow();
 });
 
@@ -63,8 +88,13 @@ test("a mail is delivered once, under one Message-ID, by however many workers; t
   await Promise.all(Array.from({ length: 5 }, () => sender.deliver(lab.id, id)));
   await sender.deliver(lab.id, id);
   const caught = catcher.mails.filter(({ messageId }) => messageId === `<${id}@wavekeep>`);
-  expect(caught).toMatchObject([{ to: lab.manager.email, subject: "A subject Bcc: everybody@example.org", text: expect.stringMatching(/^Hello/) }]);
-  const { rows } = await owner("select t.canonical from trail_entries t where lab_id = $1 and action = 'mail.sent' and about_id = $2", [lab.id, id]);
+  expect(caught).toMatchObject([
+    { to: lab.manager.email, subject: "A subject Bcc: everybody@example.org", text: expect.stringMatching(/^Hello/) },
+  ]);
+  const { rows } = await owner(
+    "select t.canonical from trail_entries t where lab_id = $1 and action = 'mail.sent' and about_id = $2",
+    [lab.id, id],
+  );
   expect(rows).toHaveLength(1);
   expect(rows[0].canonical).not.toContain(lab.manager.email);
   // Another lab's context finds nothing to deliver.
@@ -77,14 +107,19 @@ test("a mail is delivered once, under one Message-ID, by however many workers; t
 });
 
 test("a mail server that is away is tried again; after eight tries the mail is given up, and the trail says so", async () => {
-  const sender = openSender(server.services.db, { smtpUrl: "smtp://127.0.0.1:9", from: "Wavekeep <wavekeep@lab.example>" });
+  const sender = openSender(server.services.db, {
+    smtpUrl: "smtp://127.0.0.1:9",
+    from: "Wavekeep <wavekeep@lab.example>",
+  });
   await put("cause-away");
   const id = await mailId("cause-away");
   for (let i = 0; i < 8; i += 1) await expect(sender.deliver(lab.id, id)).rejects.toThrow();
   await sender.deliver(lab.id, id);
   const { rows } = await owner("select attempts, sent_at, last_error from mail_outbox where id = $1", [id]);
   expect(rows).toMatchObject([{ attempts: 8, sent_at: null, last_error: expect.stringMatching(/ECONNREFUSED/) }]);
-  expect((await owner("select 1 from trail_entries where action = 'mail.failed' and about_id = $1", [id])).rowCount).toBe(1);
+  expect(
+    (await owner("select 1 from trail_entries where action = 'mail.failed' and about_id = $1", [id])).rowCount,
+  ).toBe(1);
   sender.close();
 });
 
@@ -109,12 +144,30 @@ test("workers as the app's role take jobs, visit every lab at a tick, and sweep 
   await put("cause-worker");
   await boss.send(queues.sweep, {});
   await boss.send(queues.signHeads, {});
-  const all = (await owner("select id from labs where id <> '00000000-0000-7000-8000-000000000000'")).rows.map(({ id }) => id as string).sort();
-  await until(() => [...visited.due].sort().join(), (seen) => seen === all.join());
-  await until(() => [...visited.aside].sort().join(), (seen) => seen === all.join());
-  await until(() => catcher.mails.filter(({ messageId }) => messageId.includes("@wavekeep")).length, (count) => count > 0);
-  await until(async () => (await owner("select 1 from rate_counters where key = 'old'")).rowCount, (count) => count === 0);
-  await until(async () => (await owner("select count(distinct lab_id)::int as n from signed_heads where cause = 'daily'")).rows[0].n, (count) => count === all.length);
+  const all = (await owner("select id from labs where id <> '00000000-0000-7000-8000-000000000000'")).rows
+    .map(({ id }) => id as string)
+    .sort();
+  await until(
+    () => [...visited.due].sort().join(),
+    (seen) => seen === all.join(),
+  );
+  await until(
+    () => [...visited.aside].sort().join(),
+    (seen) => seen === all.join(),
+  );
+  await until(
+    () => catcher.mails.filter(({ messageId }) => messageId.includes("@wavekeep")).length,
+    (count) => count > 0,
+  );
+  await until(
+    async () => (await owner("select 1 from rate_counters where key = 'old'")).rowCount,
+    (count) => count === 0,
+  );
+  await until(
+    async () =>
+      (await owner("select count(distinct lab_id)::int as n from signed_heads where cause = 'daily'")).rows[0].n,
+    (count) => count === all.length,
+  );
   expect(faults).toEqual([]);
   await boss.stop({ graceful: false });
   sender.close();

@@ -26,7 +26,13 @@ const trailOf = async (labId: string) =>
 
 test("before sign-in the session names nobody, and gives the token that a change needs", async () => {
   const browser = await server.visit();
-  expect(await browser.readSession()).toMatchObject({ person: null, lab: null, roles: [], isDemoServer: false, demoPeople: [] });
+  expect(await browser.readSession()).toMatchObject({
+    person: null,
+    lab: null,
+    roles: [],
+    isDemoServer: false,
+    demoPeople: [],
+  });
   expect((await browser.get("/people")).status).toBe(401);
 });
 
@@ -34,7 +40,12 @@ test("signing in answers who, where and what they may do; the trail has it", asy
   const browser = await server.visit();
   const reply = await trySignIn(browser, lab.manager.email.toUpperCase());
   expect(reply.status).toBe(200);
-  expect(reply.body).toMatchObject({ person: { id: lab.manager.id }, lab: { id: lab.id, zone: "Europe/Berlin" }, roles: ["manager"], idleSeconds: 1200 });
+  expect(reply.body).toMatchObject({
+    person: { id: lab.manager.id },
+    lab: { id: lab.id, zone: "Europe/Berlin" },
+    roles: ["manager"],
+    idleSeconds: 1200,
+  });
   expect((await trailOf(lab.id)).at(-1)).toMatchObject({ action: "session.begun" });
   const ended = await browser.delete("/session");
   expect(ended.status).toBe(204);
@@ -52,7 +63,8 @@ test("a wrong password and an unknown address read the same, and the refusal is 
 });
 
 test("the session's id changes with the sign-in, so that a planted one is worth nothing", async () => {
-  const sids = async () => (await server.database.owner.query<{ sid: string }>("select sid from sessions")).rows.map(({ sid }) => sid);
+  const sids = async () =>
+    (await server.database.owner.query<{ sid: string }>("select sid from sessions")).rows.map(({ sid }) => sid);
   const browser = await server.visit();
   await trySignIn(browser, lab.manager.email);
   const before = await sids();
@@ -73,14 +85,22 @@ test("eight wrong passwords lock the address, then even the right one is told to
   expect(locked.body.detail).toMatch(/locked for 15 minutes/);
   expect((await trailOf(lab.id)).at(-1)?.canonical).toContain("too many wrong passwords");
   // The lock ends by itself: its window is over.
-  await server.database.owner.query("update rate_counters set expires_at = now() where key = $1", [`sign-in:${person.email}`]);
+  await server.database.owner.query("update rate_counters set expires_at = now() where key = $1", [
+    `sign-in:${person.email}`,
+  ]);
   expect((await trySignIn(browser, person.email)).status).toBe(200);
 });
 
 test("a change without the token, with another's, or from a foreign page is refused", async () => {
   const { client: browser } = await lab.add("Tom Token", ["technician"]);
   expect((await browser.put("/me", { name: "Changed" }).unset("x-csrf-token")).status).toBe(403);
-  expect((await browser.put("/me", { name: "Changed" }).set("x-csrf-token", (await lab.manager.client.readSession()).csrfToken)).status).toBe(403);
+  expect(
+    (
+      await browser
+        .put("/me", { name: "Changed" })
+        .set("x-csrf-token", (await lab.manager.client.readSession()).csrfToken)
+    ).status,
+  ).toBe(403);
   const foreign = await browser.put("/me", { name: "Changed" }).set("sec-fetch-site", "cross-site");
   expect(foreign.body).toMatchObject({ type: "/problems/csrf", status: 403 });
   expect((await browser.put("/me", { name: "Tom Changed" })).status).toBe(204);
@@ -114,7 +134,10 @@ test("a reset link is good for an hour", async () => {
   const person = await lab.add("Otto Old", ["technician"]);
   const browser = await server.visit();
   await browser.post("/password/forgotten", { email: person.email });
-  await server.database.owner.query("update password_resets set expires_at = now() - interval '1 second' where person_id = $1", [person.id]);
+  await server.database.owner.query(
+    "update password_resets set expires_at = now() - interval '1 second' where person_id = $1",
+    [person.id],
+  );
   const token = await mailedToken(server, person.email);
   expect((await browser.post("/password/reset", { token, password: "another long password" })).status).toBe(410);
 });
@@ -124,8 +147,12 @@ test("signing out everywhere ends the sessions of every device; changing the pas
   const [phone, laptop] = [await server.visit(), await server.visit()];
   await trySignIn(phone, person.email);
   await trySignIn(laptop, person.email);
-  expect((await laptop.put("/me/password", { current: "wrong", password: "one more long password" })).body).toMatchObject({ type: "/problems/wrong-password", fields: [{ path: "current" }] });
-  expect((await laptop.put("/me/password", { current: password, password: "one more long password" })).status).toBe(204);
+  expect(
+    (await laptop.put("/me/password", { current: "wrong", password: "one more long password" })).body,
+  ).toMatchObject({ type: "/problems/wrong-password", fields: [{ path: "current" }] });
+  expect((await laptop.put("/me/password", { current: password, password: "one more long password" })).status).toBe(
+    204,
+  );
   expect((await phone.get("/people")).status).toBe(401);
   expect((await laptop.get("/people")).status).toBe(200);
   await trySignIn(phone, person.email, "one more long password");
@@ -156,10 +183,20 @@ test("a person of two labs works in one at a time, and switches", async () => {
   expect(invited.status).toBe(200);
   const token = await mailedToken(server, lab.manager.email);
   const browser = await server.visit();
-  expect((await browser.get(`/invitations/${token}`)).body).toMatchObject({ knownPerson: true, labName: "Second lab", roles: ["auditor"] });
-  expect((await browser.post(`/invitations/${token}/accept`, { name: "Ignored", password: "not theirs at all" })).status).toBe(401);
+  expect((await browser.get(`/invitations/${token}`)).body).toMatchObject({
+    knownPerson: true,
+    labName: "Second lab",
+    roles: ["auditor"],
+  });
+  expect(
+    (await browser.post(`/invitations/${token}/accept`, { name: "Ignored", password: "not theirs at all" })).status,
+  ).toBe(401);
   const accepted = await browser.post(`/invitations/${token}/accept`, { name: "Ignored", password: password });
-  expect(accepted.body).toMatchObject({ lab: { id: other.id }, roles: ["auditor"], person: { name: lab.manager.name } });
+  expect(accepted.body).toMatchObject({
+    lab: { id: other.id },
+    roles: ["auditor"],
+    person: { name: lab.manager.name },
+  });
   await browser.readSession();
   expect(accepted.body.labs.map(({ name }: { name: string }) => name)).toEqual(["Second lab", "Spectroscopy"]);
   const switched = await browser.put("/session/lab", { labId: lab.id });

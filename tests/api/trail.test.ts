@@ -19,12 +19,19 @@ beforeEach(async () => {
   lab = await buildLab(server, "Chain");
   technician = await lab.add("Tina Technician", ["technician"]);
   const instrument = await buildInstrument(lab.manager, { name: "Bench 1" });
-  await technician.client.post("/checks", { configurationId: instrument.currentConfigurationId, condition: "as-found", followsCheckId: null }).expect(200);
+  await technician.client
+    .post("/checks", {
+      configurationId: instrument.currentConfigurationId,
+      condition: "as-found",
+      followsCheckId: null,
+    })
+    .expect(200);
 });
 
 const owner = (text: string, values: unknown[] = []) => server.database.owner.query(text, values);
 const state = async () => (await lab.manager.client.get("/trail/state")).body;
-const entries = async () => (await owner("select * from trail_entries where lab_id = $1 order by number", [lab.id])).rows;
+const entries = async () =>
+  (await owner("select * from trail_entries where lab_id = $1 order by number", [lab.id])).rows;
 
 /** Around the database's own guards, as somebody with the owner's password and time would do it. */
 async function spoil(text: string, values: unknown[] = []): Promise<void> {
@@ -41,7 +48,15 @@ async function spoil(text: string, values: unknown[] = []): Promise<void> {
 test("an untouched chain holds, from the opening of the lab on, numbered without gaps", async () => {
   const chain = await state();
   const rows = await entries();
-  expect(chain).toMatchObject({ whole: true, breaks: [], entryCount: rows.length, head: rows.at(-1).hash, checkCount: 1, attemptCount: 1, signaturesValid: true });
+  expect(chain).toMatchObject({
+    whole: true,
+    breaks: [],
+    entryCount: rows.length,
+    head: rows.at(-1).hash,
+    checkCount: 1,
+    attemptCount: 1,
+    signaturesValid: true,
+  });
   expect(chain.sentence).toMatch(/^The chain holds: \d+ entries since \d+ \w+ \d{4}\.$/);
   expect(rows.map(({ number }) => Number(number))).toEqual(rows.map((_, index) => index + 1));
   expect(rows[0]).toMatchObject({ action: "lab.created", previous_hash: "0".repeat(64) });
@@ -49,22 +64,34 @@ test("an untouched chain holds, from the opening of the lab on, numbered without
 
 test("an entry is RFC 8785 text whose SHA-256 is its hash; names stand beside it, in it their salted hashes", async () => {
   const rows = await entries();
-  const invited = rows.find(({ action, canonical }) => action === "person.invited" && canonical.includes('"technician"'));
+  const invited = rows.find(
+    ({ action, canonical }) => action === "person.invited" && canonical.includes('"technician"'),
+  );
   expect(sha256Hex(invited.canonical)).toBe(invited.hash);
   const document = JSON.parse(invited.canonical);
   expect(canonicalText(document)).toBe(invited.canonical);
   expect(invited.canonical).not.toContain(technician.email);
   expect(invited.canonical).not.toContain("Mara Manager");
-  const { rows: personal } = await owner("select salt, data from trail_personal where lab_id = $1 and number = $2", [lab.id, invited.number]);
+  const { rows: personal } = await owner("select salt, data from trail_personal where lab_id = $1 and number = $2", [
+    lab.id,
+    invited.number,
+  ]);
   expect(personal[0].data).toEqual({ actor: "Mara Manager", about: technician.email });
-  expect(document.personal).toEqual({ actor: personalHash(personal[0].salt, "Mara Manager"), about: personalHash(personal[0].salt, technician.email) });
+  expect(document.personal).toEqual({
+    actor: personalHash(personal[0].salt, "Mara Manager"),
+    about: personalHash(personal[0].salt, technician.email),
+  });
 });
 
 test("rows that an entry speaks of are hashed as the database holds them", async () => {
   const registered = (await entries()).find(({ action }) => action === "instrument.registered");
   const document = JSON.parse(registered.canonical);
   const named = document.rows.find(({ table }: { table: string }) => table === "tolerance_versions");
-  expect(named).toEqual({ table: "tolerance_versions", id: expect.any(String), sha256: expect.stringMatching(/^[0-9a-f]{64}$/) });
+  expect(named).toEqual({
+    table: "tolerance_versions",
+    id: expect.any(String),
+    sha256: expect.stringMatching(/^[0-9a-f]{64}$/),
+  });
   // A column that a later version adds is empty in older rows and changes nothing.
   await owner("alter table tolerance_versions add column added_later text");
   expect((await state()).whole).toBe(true);
@@ -73,12 +100,17 @@ test("rows that an entry speaks of are hashed as the database holds them", async
   await owner("update tolerance_versions set reason = 'rewritten' where id = $1", [named.id]);
   const chain = await state();
   expect(chain.whole).toBe(false);
-  expect(chain.breaks).toEqual([{ number: document.number, what: "the row in tolerance versions it speaks of was changed afterwards" }]);
+  expect(chain.breaks).toEqual([
+    { number: document.number, what: "the row in tolerance versions it speaks of was changed afterwards" },
+  ]);
 });
 
 describe("tampering as the owner is found at its place", () => {
   test("a changed text", async () => {
-    await spoil("update trail_entries set canonical = replace(canonical, 'Bench 1', 'Bench 2') where lab_id = $1 and action = 'instrument.registered'", [lab.id]);
+    await spoil(
+      "update trail_entries set canonical = replace(canonical, 'Bench 1', 'Bench 2') where lab_id = $1 and action = 'instrument.registered'",
+      [lab.id],
+    );
     const { number } = (await entries()).find(({ action }) => action === "instrument.registered");
     const chain = await state();
     expect(chain.whole).toBe(false);
@@ -89,8 +121,15 @@ describe("tampering as the owner is found at its place", () => {
   test("a changed text with its hash made to fit", async () => {
     const target = (await entries()).find(({ action }) => action === "instrument.registered");
     const text = target.canonical.replace("Bench 1", "Bench 2");
-    await spoil("update trail_entries set canonical = $1, hash = $2 where lab_id = $3 and number = $4", [text, sha256Hex(text), lab.id, target.number]);
-    expect((await state()).breaks).toEqual([{ number: Number(target.number) + 1, what: "it does not link to the entry before it" }]);
+    await spoil("update trail_entries set canonical = $1, hash = $2 where lab_id = $3 and number = $4", [
+      text,
+      sha256Hex(text),
+      lab.id,
+      target.number,
+    ]);
+    expect((await state()).breaks).toEqual([
+      { number: Number(target.number) + 1, what: "it does not link to the entry before it" },
+    ]);
   });
 
   test("a deleted entry", async () => {
@@ -101,7 +140,10 @@ describe("tampering as the owner is found at its place", () => {
   });
 
   test("two entries in each other's place", async () => {
-    await spoil("update trail_entries set number = case number when 3 then 1004 else 1003 end where lab_id = $1 and number in (3, 4)", [lab.id]);
+    await spoil(
+      "update trail_entries set number = case number when 3 then 1004 else 1003 end where lab_id = $1 and number in (3, 4)",
+      [lab.id],
+    );
     await spoil("update trail_entries set number = number - 1000 where lab_id = $1 and number > 1000", [lab.id]);
     const chain = await state();
     expect(chain.whole).toBe(false);
@@ -111,16 +153,20 @@ describe("tampering as the owner is found at its place", () => {
 
   test("a column beside the text", async () => {
     await spoil("update trail_entries set at = at - interval '1 day' where lab_id = $1 and number = 2", [lab.id]);
-    expect((await state()).breaks.map(({ number, what }: { number: number; what: string }) => `${number} ${what}`)).toEqual([
-      "2 its time lies before that of the entry before it",
-      "2 its columns do not say what its text says",
-    ]);
+    expect(
+      (await state()).breaks.map(({ number, what }: { number: number; what: string }) => `${number} ${what}`),
+    ).toEqual(["2 its time lies before that of the entry before it", "2 its columns do not say what its text says"]);
   });
 
   test("a name in the side table; but not one that was disposed of", async () => {
-    await spoil("update trail_personal set data = data || '{\"actor\": \"Somebody Else\"}' where lab_id = $1 and data ->> 'actor' = 'Tina Technician'", [lab.id]);
+    await spoil(
+      "update trail_personal set data = data || '{\"actor\": \"Somebody Else\"}' where lab_id = $1 and data ->> 'actor' = 'Tina Technician'",
+      [lab.id],
+    );
     expect((await state()).breaks[0].what).toBe("a name or address beside it was changed");
-    await spoil("update trail_personal set data = '{}' where lab_id = $1 and data ->> 'actor' = 'Somebody Else'", [lab.id]);
+    await spoil("update trail_personal set data = '{}' where lab_id = $1 and data ->> 'actor' = 'Somebody Else'", [
+      lab.id,
+    ]);
     expect((await state()).whole).toBe(true);
     const listed = await lab.manager.client.get("/trail?kind=check");
     expect(listed.body.items[0].actor).toBe("somebody whose name was disposed of");
@@ -139,11 +185,27 @@ describe("tampering as the owner is found at its place", () => {
   test("a head signed anew with another key", async () => {
     await signDailyHead(server.services, { labId: lab.id, isDemo: false, zone: "Europe/Berlin" });
     const { rows } = await owner("select * from signed_heads where lab_id = $1", [lab.id]);
-    const own = signerFromPem(generateKeyPairSync("ed25519").privateKey.export({ type: "pkcs8", format: "pem" }).toString());
-    await spoil("update signed_heads set key_fingerprint = $1, public_key = $2, signature = $3 where id = $4", [own.fingerprint, own.publicKey, own.sign(lab.id, Number(rows[0].number), rows[0].hash), rows[0].id]);
-    expect((await state()).breaks).toEqual([{ number: Number(rows[0].number), what: "it is signed with a key that is not this installation's" }]);
-    await spoil("update signed_heads set key_fingerprint = $1, public_key = $2, signature = $3 where id = $4", [rows[0].key_fingerprint, rows[0].public_key, own.sign(lab.id, Number(rows[0].number), rows[0].hash), rows[0].id]);
-    expect((await state()).breaks).toEqual([{ number: Number(rows[0].number), what: "the signature over it does not fit" }]);
+    const own = signerFromPem(
+      generateKeyPairSync("ed25519").privateKey.export({ type: "pkcs8", format: "pem" }).toString(),
+    );
+    await spoil("update signed_heads set key_fingerprint = $1, public_key = $2, signature = $3 where id = $4", [
+      own.fingerprint,
+      own.publicKey,
+      own.sign(lab.id, Number(rows[0].number), rows[0].hash),
+      rows[0].id,
+    ]);
+    expect((await state()).breaks).toEqual([
+      { number: Number(rows[0].number), what: "it is signed with a key that is not this installation's" },
+    ]);
+    await spoil("update signed_heads set key_fingerprint = $1, public_key = $2, signature = $3 where id = $4", [
+      rows[0].key_fingerprint,
+      rows[0].public_key,
+      own.sign(lab.id, Number(rows[0].number), rows[0].hash),
+      rows[0].id,
+    ]);
+    expect((await state()).breaks).toEqual([
+      { number: Number(rows[0].number), what: "the signature over it does not fit" },
+    ]);
   });
 });
 
@@ -151,10 +213,24 @@ test("the head is signed and mailed once a day, and not again while nothing happ
   const mark = { labId: lab.id, isDemo: false, zone: "Europe/Berlin" };
   const settings = (await lab.manager.client.get("/lab")).body;
   const { name, zone, altitudeM, selfApproval, warningShare, decisionRule, version } = settings;
-  await lab.manager.client.put("/lab", { name, zone, altitudeM, selfApproval, warningShare, decisionRule, headMail: "Notary@Outside.example", version }).expect(200);
+  await lab.manager.client
+    .put("/lab", {
+      name,
+      zone,
+      altitudeM,
+      selfApproval,
+      warningShare,
+      decisionRule,
+      headMail: "Notary@Outside.example",
+      version,
+    })
+    .expect(200);
   expect(await signDailyHead(server.services, mark)).toBe(true);
   expect(await signDailyHead(server.services, mark)).toBe(false);
-  const { rows } = await owner("select to_address, text from mail_outbox where lab_id = $1 and cause_key like 'head:%' order by to_address", [lab.id]);
+  const { rows } = await owner(
+    "select to_address, text from mail_outbox where lab_id = $1 and cause_key like 'head:%' order by to_address",
+    [lab.id],
+  );
   expect(rows.map(({ to_address }) => to_address)).toEqual([lab.manager.email, "notary@outside.example"].sort());
   expect(rows[0].text).toContain(server.services.signer.fingerprint);
 });
@@ -164,15 +240,23 @@ test("300 entries written at once form one chain", async () => {
   const before = (await entries()).length;
   await Promise.all(
     Array.from({ length: 300 }, (_, index) =>
-      inLab(server.services.db, ctx, (tx) => writeTrail(tx, ctx, { action: "event.logged", about: { kind: "event", id: String(index), label: "Bench 1" }, after: { title: `event ${index}` } })),
+      inLab(server.services.db, ctx, (tx) =>
+        writeTrail(tx, ctx, {
+          action: "event.logged",
+          about: { kind: "event", id: String(index), label: "Bench 1" },
+          after: { title: `event ${index}` },
+        }),
+      ),
     ),
   );
   const chain = await state();
   expect([chain.whole, chain.entryCount]).toEqual([true, before + 300]);
   // A page at a time, newest first, none twice and none left out.
   const seen: number[] = [];
-  for (let after: string | null = ""; after !== null; ) {
-    const page: { items: { number: number }[]; next: string | null } = (await lab.manager.client.get(`/trail?limit=70${after === "" ? "" : `&after=${after}`}`)).body;
+  for (let after: string | null = ""; after !== null;) {
+    const page: { items: { number: number }[]; next: string | null } = (
+      await lab.manager.client.get(`/trail?limit=70${after === "" ? "" : `&after=${after}`}`)
+    ).body;
     seen.push(...page.items.map(({ number }) => number));
     after = page.next;
   }
@@ -180,11 +264,25 @@ test("300 entries written at once form one chain", async () => {
 });
 
 test("the trail reads as sentences, filtered by person, thing, kind and day", async () => {
-  const items = async (query: string) => (await technician.client.get(`/trail?${query}`)).body.items as { action: string; actor: string; actorRole: string; sentence: string; about: { label: string; to: string } }[];
+  const items = async (query: string) =>
+    (await technician.client.get(`/trail?${query}`)).body.items as {
+      action: string;
+      actor: string;
+      actorRole: string;
+      sentence: string;
+      about: { label: string; to: string };
+    }[];
   const [begun] = await items(`personId=${technician.id}&kind=check.begun`);
-  expect(begun).toMatchObject({ actor: "Tina Technician", actorRole: "technician", sentence: expect.stringMatching(/^began check CHK-\d{4}-0001/), about: { to: expect.stringMatching(/^\/checks\//) } });
+  expect(begun).toMatchObject({
+    actor: "Tina Technician",
+    actorRole: "technician",
+    sentence: expect.stringMatching(/^began check CHK-\d{4}-0001/),
+    about: { to: expect.stringMatching(/^\/checks\//) },
+  });
   expect((await items("kind=instrument")).map(({ sentence }) => sentence)).toEqual(["registered Bench 1"]);
-  expect((await items(`kind=person`)).map(({ sentence }) => sentence)[0]).toBe(`invited ${technician.email} as technician`);
+  expect((await items(`kind=person`)).map(({ sentence }) => sentence)[0]).toBe(
+    `invited ${technician.email} as technician`,
+  );
   const today = (await technician.client.get("/trail/days")).body;
   expect(today.days).toHaveLength(1);
   expect(today.kinds).toEqual(expect.arrayContaining(["check", "instrument", "lab", "person"]));

@@ -8,14 +8,24 @@ import { beforeAll, describe, expect, test } from "vitest";
 import { permissions, type Permission } from "@wavekeep/api/contract/permissions";
 import { routes, type RouteContract, type RouteName } from "@wavekeep/api/contract/routes";
 import { useTestApp, type Client } from "../support/app.ts";
-import { buildInstrument, buildLab, buildSource, password, type TestLab, type TestPerson } from "../support/factories.ts";
+import {
+  buildInstrument,
+  buildLab,
+  buildSource,
+  password,
+  type TestLab,
+  type TestPerson,
+} from "../support/factories.ts";
 
 const server = useTestApp();
 const allRoutes = Object.entries(routes) as [RouteName, RouteContract][];
 
 let lab: TestLab;
 let other: TestLab;
-let people: Record<"manager" | "technician" | "auditor" | "nothing" | "owner" | "approver" | "foreign-manager", TestPerson>;
+let people: Record<
+  "manager" | "technician" | "auditor" | "nothing" | "owner" | "approver" | "foreign-manager",
+  TestPerson
+>;
 /** Ids of things in the lab, by the name they have in paths. */
 let ids: Record<string, string>;
 /** Words that only the lab's own replies may hold. */
@@ -42,7 +52,11 @@ beforeAll(async () => {
   };
   const instrument = await buildInstrument(lab.manager, { ownerId: owner.id, name: SECRET });
   const source = await buildSource(lab.manager, { label: "HA-7" });
-  const begun = await people.technician.client.post("/checks", { configurationId: instrument.currentConfigurationId, condition: "as-found", followsCheckId: null });
+  const begun = await people.technician.client.post("/checks", {
+    configurationId: instrument.currentConfigurationId,
+    condition: "as-found",
+    followsCheckId: null,
+  });
   expect(begun.status).toBe(200);
   const checkId = begun.body.summary.id as string;
   const lists = await lab.manager.client.get("/line-lists");
@@ -77,7 +91,9 @@ const pathOf = (route: RouteContract): string => route.path.replace(/:(\w+)/g, (
 /** Queries that a list cannot do without. */
 const queryOf: Partial<Record<RouteName, string>> = { search: `?q=${encodeURIComponent(SECRET)}` };
 /** What a relation is found by, where the path does not say it; otherwise the body is empty, so that nothing is changed. */
-const bodyOf: Partial<Record<RouteName, () => object>> = { logEvent: () => ({ configurationId: ids["configurationId"] }) };
+const bodyOf: Partial<Record<RouteName, () => object>> = {
+  logEvent: () => ({ configurationId: ids["configurationId"] }),
+};
 
 function ask(client: Client, name: RouteName): Test {
   const route: RouteContract = routes[name];
@@ -108,11 +124,15 @@ function mountedRoutes(): string[] {
     handle: { stack?: Layer[] };
   }
   const { stack } = (server.app as unknown as { router: { stack: Layer[] } }).router;
-  const api = stack.map((layer) => layer.handle.stack ?? []).find((inner) => inner.some((layer) => layer.route?.path === routes.readSession.path));
+  const api = stack
+    .map((layer) => layer.handle.stack ?? [])
+    .find((inner) => inner.some((layer) => layer.route?.path === routes.readSession.path));
   // Beside the contract: the description of the API as a page, and nothing else.
   const beside = stack.flatMap((layer) => (layer.route === undefined ? [] : [layer.route.path]));
   expect(beside).toEqual(["/api/docs"]);
-  return (api ?? []).flatMap((layer) => (layer.route === undefined ? [] : Object.keys(layer.route.methods).map((method) => `${method} ${layer.route!.path}`)));
+  return (api ?? []).flatMap((layer) =>
+    layer.route === undefined ? [] : Object.keys(layer.route.methods).map((method) => `${method} ${layer.route!.path}`),
+  );
 }
 
 describe.each(allRoutes)("%s", (name, route) => {
@@ -145,7 +165,9 @@ describe.each(allRoutes)("%s", (name, route) => {
     const text = JSON.stringify(reply.body ?? null) + (reply.text ?? "");
     expect(text).not.toContain(name === "search" ? `"label":"${SECRET}` : SECRET);
     expect(text).not.toContain("Olga Owner");
-    const speaksOfTheLab = /:(instrument|configuration|source|check|alert|impactReview|person|capture)Id/.test(route.path);
+    const speaksOfTheLab = /:(instrument|configuration|source|check|alert|impactReview|person|capture)Id/.test(
+      route.path,
+    );
     // A form that is empty is told so before it is looked up; a complete one finds nothing.
     if (speaksOfTheLab) expect([404, 403, 400, 415]).toContain(reply.status);
     if (speaksOfTheLab && route.method === "get") expect(reply.status).toBe(404);
@@ -154,7 +176,10 @@ describe.each(allRoutes)("%s", (name, route) => {
 });
 
 /** What the table says, read once more by hand: the owner owns the instrument all the ids speak of. */
-function mayPass(permission: Permission, who: "manager" | "technician" | "auditor" | "nothing" | "owner" | "approver"): boolean {
+function mayPass(
+  permission: Permission,
+  who: "manager" | "technician" | "auditor" | "nothing" | "owner" | "approver",
+): boolean {
   if (permission.public === true || permission.signedIn === true || permission.member === true) return true;
   if (who === "owner") return permission.relation === "owns-instrument";
   if (who === "approver") return permission.relation === "named-approver";
@@ -167,13 +192,18 @@ async function fingerprint(): Promise<unknown> {
     `select table_name as name, bool_or(column_name = 'version' and data_type = 'integer') as versioned from information_schema.columns
       where table_schema = 'public' group by 1 having bool_or(column_name = 'lab_id') order by 1`,
   );
-  const counts = tables.map(({ name, versioned }) => `select '${name}' as name, count(*)::int as n, ${versioned ? "coalesce(sum(version), 0)" : "0"}::int as v from ${name} where lab_id = $1`);
+  const counts = tables.map(
+    ({ name, versioned }) =>
+      `select '${name}' as name, count(*)::int as n, ${versioned ? "coalesce(sum(version), 0)" : "0"}::int as v from ${name} where lab_id = $1`,
+  );
   return (await server.database.owner.query(counts.join(" union all "), [lab.id])).rows;
 }
 
 test("an auditor gets through no door that changes the record", () => {
   const own = ["session.", "password.", "invitation.", "bench.sign-in", "bench.lock", "me.change"];
-  const changing = allRoutes.filter(([, route]) => route.method !== "get" && !own.some((start) => route.policy.startsWith(start)));
+  const changing = allRoutes.filter(
+    ([, route]) => route.method !== "get" && !own.some((start) => route.policy.startsWith(start)),
+  );
   const open = changing.filter(([, route]) => mayPass(permissions[route.policy], "auditor"));
   expect(open.map(([name]) => name)).toEqual([]);
 });
@@ -181,22 +211,37 @@ test("an auditor gets through no door that changes the record", () => {
 test("a manager who contributed to a check does not approve it; another manager may, and the refusal is in the trail", async () => {
   const second = await lab.add("Second Manager", ["manager", "technician"]);
   const instrument = await buildInstrument(lab.manager, { ownerId: people.owner.id, name: "Bench of two managers" });
-  const begun = await second.client.post("/checks", { configurationId: instrument.currentConfigurationId, condition: "as-found", followsCheckId: null }).expect(200);
+  const begun = await second.client
+    .post("/checks", {
+      configurationId: instrument.currentConfigurationId,
+      condition: "as-found",
+      followsCheckId: null,
+    })
+    .expect(200);
   const checkId = begun.body.summary.id as string;
-  expect((await second.client.post(`/checks/${checkId}/approve`, {})).body).toMatchObject({ type: "/problems/not-allowed", detail: expect.stringMatching(/You contributed/) });
+  expect((await second.client.post(`/checks/${checkId}/approve`, {})).body).toMatchObject({
+    type: "/problems/not-allowed",
+    detail: expect.stringMatching(/You contributed/),
+  });
   // Let through to the form, which is empty.
   expect((await lab.manager.client.post(`/checks/${checkId}/approve`, {})).body.type).toBe("/problems/invalid-input");
   const { rows } = await server.database.owner.query<{ canonical: string }>(
     "select canonical from trail_entries where lab_id = $1 and action = 'action.refused' order by number desc limit 1",
     [lab.id],
   );
-  expect(JSON.parse(rows[0]!.canonical)).toMatchObject({ actor: { id: second.id }, about: { kind: "route", id: "approveCheck" }, why: "check.approve" });
+  expect(JSON.parse(rows[0]!.canonical)).toMatchObject({
+    actor: { id: second.id },
+    about: { kind: "route", id: "approveCheck" },
+    why: "check.approve",
+  });
 });
 
 test("a person whose membership ended is out at once, with the session they had", async () => {
   const leaving = await lab.add("Lars Leaving", ["technician"]);
   expect((await leaving.client.get("/instruments")).status).toBe(200);
-  expect((await lab.manager.client.post(`/people/${leaving.id}/end`, { reason: "moved on", version: 0 })).status).toBe(204);
+  expect((await lab.manager.client.post(`/people/${leaving.id}/end`, { reason: "moved on", version: 0 })).status).toBe(
+    204,
+  );
   expect((await leaving.client.get("/instruments")).status).toBe(403);
   expect((await leaving.client.get("/session")).body).toMatchObject({ lab: null, labs: [], roles: [] });
 });

@@ -26,7 +26,10 @@ async function asApp<T>(labId: string | null, work: (client: PoolClient) => Prom
   const client = await server.database.app.connect();
   try {
     await client.query("begin");
-    await client.query("select set_config('app.lab', $1, true), set_config('app.person', $2, true)", [labId ?? "", personId]);
+    await client.query("select set_config('app.lab', $1, true), set_config('app.person', $2, true)", [
+      labId ?? "",
+      personId,
+    ]);
     return await work(client);
   } finally {
     await client.query("rollback");
@@ -34,10 +37,13 @@ async function asApp<T>(labId: string | null, work: (client: PoolClient) => Prom
   }
 }
 
-const owner = <Row extends object>(text: string, values: unknown[] = []) => server.database.owner.query<Row & Record<string, unknown>>(text, values);
+const owner = <Row extends object>(text: string, values: unknown[] = []) =>
+  server.database.owner.query<Row & Record<string, unknown>>(text, values);
 
 const listTables = async () =>
-  (await owner<{ name: string }>("select tablename as name from pg_tables where schemaname = 'public' order by 1")).rows.map(({ name }) => name);
+  (
+    await owner<{ name: string }>("select tablename as name from pg_tables where schemaname = 'public' order by 1")
+  ).rows.map(({ name }) => name);
 
 const tenantTables = async () =>
   (
@@ -76,7 +82,9 @@ test("row security is on and forced on every table but those of no lab", async (
 });
 
 test("no table holds the app's rows by a sequence, view or function that looks past row security, save the listed ones", async () => {
-  const { rows: views } = await owner("select 1 from pg_class where relnamespace = 'public'::regnamespace and relkind in ('v', 'm')");
+  const { rows: views } = await owner(
+    "select 1 from pg_class where relnamespace = 'public'::regnamespace and relkind in ('v', 'm')",
+  );
   expect(views).toEqual([]);
   const { rows } = await owner<{ name: string; owner: string }>(
     `select p.proname as name, pg_get_userbyid(p.proowner) as owner from pg_proc p
@@ -100,7 +108,9 @@ test("no table holds the app's rows by a sequence, view or function that looks p
   ];
   expect(rows.map(({ name }) => name).filter((name) => !listed.includes(name))).toEqual([]);
   expect([...new Set(rows.map((row) => row.owner))]).toEqual(["wavekeep_definer"]);
-  const { rows: role } = await owner("select rolcanlogin, rolsuper, rolbypassrls from pg_roles where rolname = 'wavekeep_definer'");
+  const { rows: role } = await owner(
+    "select rolcanlogin, rolsuper, rolbypassrls from pg_roles where rolname = 'wavekeep_definer'",
+  );
   expect(role).toEqual([{ rolcanlogin: false, rolsuper: false, rolbypassrls: false }]);
 });
 
@@ -116,26 +126,50 @@ test("another lab's rows can be neither read, written into, changed nor removed,
   // Their tables are filled first, by the owner, whom row security does not hold.
   for (const table of tables) await fillTable(server.database.owner, table, theirs.id);
   for (const table of tables) {
-    const seenByOwner = await owner<{ n: number }>(`select count(*)::int as n from ${table} where lab_id = $1`, [theirs.id]);
+    const seenByOwner = await owner<{ n: number }>(`select count(*)::int as n from ${table} where lab_id = $1`, [
+      theirs.id,
+    ]);
     expect([table, seenByOwner.rows[0]!.n > 0]).toEqual([table, true]);
-    const read = await asApp(ours.id, async (client) => (await client.query(`select 1 from ${table} where lab_id = $1`, [theirs.id])).rowCount);
+    const read = await asApp(
+      ours.id,
+      async (client) => (await client.query(`select 1 from ${table} where lab_id = $1`, [theirs.id])).rowCount,
+    );
     expect([table, read]).toEqual([table, 0]);
 
     const grant = grants[table]!;
     if (["updatable", "changeable", "disposable"].includes(grant)) {
-      const changed = await asApp(ours.id, async (client) => (await client.query(`update ${table} set lab_id = lab_id where lab_id = $1`, [theirs.id])).rowCount);
+      const changed = await asApp(
+        ours.id,
+        async (client) =>
+          (await client.query(`update ${table} set lab_id = lab_id where lab_id = $1`, [theirs.id])).rowCount,
+      );
       expect([table, changed]).toEqual([table, 0]);
       // Nor can one of ours be moved into their lab.
-      const moved = asApp(ours.id, (client) => client.query(`update ${table} set lab_id = $1 where lab_id = $2`, [theirs.id, ours.id]));
-      const outcome = await moved.then((reply) => reply.rowCount, (error: { code: string }) => error.code);
-      expect([table, outcome === 0 || outcome === "42501" || outcome === "23503" || outcome === "23505"]).toEqual([table, true]);
+      const moved = asApp(ours.id, (client) =>
+        client.query(`update ${table} set lab_id = $1 where lab_id = $2`, [theirs.id, ours.id]),
+      );
+      const outcome = await moved.then(
+        (reply) => reply.rowCount,
+        (error: { code: string }) => error.code,
+      );
+      expect([table, outcome === 0 || outcome === "42501" || outcome === "23503" || outcome === "23505"]).toEqual([
+        table,
+        true,
+      ]);
     }
     if (grant === "disposable") {
-      const removed = await asApp(ours.id, async (client) => (await client.query(`delete from ${table} where lab_id = $1`, [theirs.id])).rowCount);
+      const removed = await asApp(
+        ours.id,
+        async (client) => (await client.query(`delete from ${table} where lab_id = $1`, [theirs.id])).rowCount,
+      );
       expect([table, removed]).toEqual([table, 0]);
     }
     if (["insert-only", "updatable", "disposable"].includes(grant)) {
-      const written = fillTable({ query: (text, values) => asApp(ours.id, (client) => client.query(text, values)) }, table, theirs.id);
+      const written = fillTable(
+        { query: (text, values) => asApp(ours.id, (client) => client.query(text, values)) },
+        table,
+        theirs.id,
+      );
       await expect(written, table).rejects.toMatchObject({ code: "42501" });
     }
   }
@@ -147,7 +181,12 @@ test("another lab's rows cannot be pointed at, through any foreign key", async (
   expect(keys.filter((key) => !key.columns.includes("lab_id")).map((key) => key.name)).toEqual([]);
   const tried: string[] = [];
   for (const key of keys.filter(({ target }) => target !== "labs")) {
-    const rivals = keys.filter((other) => other !== key && other.table === key.table && other.columns.some((column) => column !== "lab_id" && key.columns.includes(column)));
+    const rivals = keys.filter(
+      (other) =>
+        other !== key &&
+        other.table === key.table &&
+        other.columns.some((column) => column !== "lab_id" && key.columns.includes(column)),
+    );
     expect([key.name, await pointAtTheirs(key, rivals)]).toEqual([key.name, `23503 ${key.name}`]);
     tried.push(key.name);
   }
@@ -167,7 +206,11 @@ async function pointAtTheirs(key: TenantKey, rivals: TenantKey[]): Promise<strin
     // Nothing but the key itself may decide.
     for (const rival of rivals) await client.query(`alter table ${rival.table} drop constraint "${rival.name}"`);
     const set = assignments.map(({ column }, place) => `${column} = $${place + 2}`).join(", ");
-    await client.query(`update ${key.table} set ${set} where lab_id = $1 and ctid = $${assignments.length + 2}::tid`, [ours.id, ...assignments.map(({ value }) => value), ourRow["ctid"]]);
+    await client.query(`update ${key.table} set ${set} where lab_id = $1 and ctid = $${assignments.length + 2}::tid`, [
+      ours.id,
+      ...assignments.map(({ value }) => value),
+      ourRow["ctid"],
+    ]);
     await client.query("set constraints all immediate");
     return "taken";
   } catch (error) {
@@ -180,7 +223,9 @@ async function pointAtTheirs(key: TenantKey, rivals: TenantKey[]): Promise<strin
 }
 
 test("every foreign key restricts: nothing disappears with what it points at", async () => {
-  const { rows } = await owner("select conname, confdeltype, confupdtype from pg_constraint where contype = 'f' and connamespace = 'public'::regnamespace and (confdeltype <> 'r' or confupdtype not in ('r', 'a'))");
+  const { rows } = await owner(
+    "select conname, confdeltype, confupdtype from pg_constraint where contype = 'f' and connamespace = 'public'::regnamespace and (confdeltype <> 'r' or confupdtype not in ('r', 'a'))",
+  );
   expect(rows).toEqual([]);
 });
 
@@ -202,9 +247,13 @@ test("a pooled connection carries nothing from one transaction into the next", a
 });
 
 test("requests of two labs at once, on one small pool, each see their own people", async () => {
-  const idsOf = async (lab: TestLab) => (await owner<{ id: string }>("select person_id as id from memberships where lab_id = $1", [lab.id])).rows.map(({ id }) => id).sort();
+  const idsOf = async (lab: TestLab) =>
+    (await owner<{ id: string }>("select person_id as id from memberships where lab_id = $1", [lab.id])).rows
+      .map(({ id }) => id)
+      .sort();
   const expected = [await idsOf(ours), await idsOf(theirs)];
-  const ask = async (lab: TestLab) => (await lab.manager.client.get("/people")).body.people.map((person: { id: string }) => person.id);
+  const ask = async (lab: TestLab) =>
+    (await lab.manager.client.get("/people")).body.people.map((person: { id: string }) => person.id);
   const replies = await Promise.all(Array.from({ length: 40 }, (_, index) => ask(index % 2 === 0 ? ours : theirs)));
   replies.forEach((ids, index) => expect([...ids].sort()).toEqual(expected[index % 2]));
 });
@@ -212,9 +261,21 @@ test("requests of two labs at once, on one small pool, each see their own people
 test("the record's tables can be neither changed nor removed nor emptied by the app, nor emptied by the owner", async () => {
   for (const [table, grant] of Object.entries(grants)) {
     if (grant !== "insert-only") continue;
-    const column = (await owner<{ name: string }>("select column_name as name from information_schema.columns where table_schema = 'public' and table_name = $1 limit 1", [table])).rows[0]!.name;
-    for (const statement of [`update ${table} set ${column} = ${column}`, `delete from ${table}`, `truncate ${table} cascade`]) {
-      await expect(asApp(ours.id, (client) => client.query(statement)), statement).rejects.toMatchObject({ code: "42501" });
+    const column = (
+      await owner<{ name: string }>(
+        "select column_name as name from information_schema.columns where table_schema = 'public' and table_name = $1 limit 1",
+        [table],
+      )
+    ).rows[0]!.name;
+    for (const statement of [
+      `update ${table} set ${column} = ${column}`,
+      `delete from ${table}`,
+      `truncate ${table} cascade`,
+    ]) {
+      await expect(
+        asApp(ours.id, (client) => client.query(statement)),
+        statement,
+      ).rejects.toMatchObject({ code: "42501" });
     }
     await expect(owner(`truncate ${table} cascade`), table).rejects.toMatchObject({ code: "42501" });
   }
@@ -222,7 +283,10 @@ test("the record's tables can be neither changed nor removed nor emptied by the 
 
 test("hashes of passwords and tokens of resets are out of the app's reach", async () => {
   for (const table of ["credentials", "password_resets"]) {
-    await expect(asApp(ours.id, (client) => client.query(`select * from ${table}`), ours.manager.id), table).rejects.toMatchObject({ code: "42501" });
+    await expect(
+      asApp(ours.id, (client) => client.query(`select * from ${table}`), ours.manager.id),
+      table,
+    ).rejects.toMatchObject({ code: "42501" });
   }
 });
 
@@ -268,12 +332,17 @@ test("the trail takes only what follows its head, with the hash of its text, at 
     { at: "clock_timestamp() + interval '1 hour'" },
   ];
   for (const change of wrong) {
-    await expect(asApp(ours.id, (client) => client.query(entry(change))), JSON.stringify(change)).rejects.toMatchObject({ code: "23514" });
+    await expect(
+      asApp(ours.id, (client) => client.query(entry(change))),
+      JSON.stringify(change),
+    ).rejects.toMatchObject({ code: "23514" });
   }
 });
 
 test("migrations go forward in time, all of them are applied, and the server knows how many there are", async () => {
-  const journal = JSON.parse(fs.readFileSync(path.resolve(import.meta.dirname, "../../drizzle/meta/_journal.json"), "utf8")) as { entries: { when: number; tag: string }[] };
+  const journal = JSON.parse(
+    fs.readFileSync(path.resolve(import.meta.dirname, "../../drizzle/meta/_journal.json"), "utf8"),
+  ) as { entries: { when: number; tag: string }[] };
   const whens = journal.entries.map(({ when }) => when);
   expect(whens).toEqual([...new Set(whens)].sort((a, b) => a - b));
   expect(journal.entries).toHaveLength(MIGRATION_COUNT);
@@ -283,5 +352,11 @@ test("migrations go forward in time, all of them are applied, and the server kno
 
 test("the owner's address never reaches the server", async () => {
   const { loadConfig } = await import("@wavekeep/api/config");
-  expect(() => loadConfig({ DATABASE_URL: server.database.appUrl, DATABASE_OWNER_URL: server.database.ownerUrl, WAVEKEEP_SESSION_KEY: "x".repeat(40) })).toThrow(/belongs to the migrating step alone/);
+  expect(() =>
+    loadConfig({
+      DATABASE_URL: server.database.appUrl,
+      DATABASE_OWNER_URL: server.database.ownerUrl,
+      WAVEKEEP_SESSION_KEY: "x".repeat(40),
+    }),
+  ).toThrow(/belongs to the migrating step alone/);
 });

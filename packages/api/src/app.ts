@@ -22,6 +22,12 @@ export interface AppOptions {
   catcher?: MailCatcher;
 }
 
+/** What the log keeps of a request: no cookies, no tokens, no query. */
+const logged = {
+  req: (req: { method: string; url: string }) => ({ method: req.method, url: req.url.split("?")[0] }),
+  res: (res: { statusCode: number }) => ({ status: res.statusCode }),
+};
+
 /** JSON bodies are forms and settings; files come as multipart and have their own limits. */
 const JSON_LIMIT = "1mb";
 
@@ -32,7 +38,7 @@ export function createApp(services: Services, options: AppOptions = {}): Express
   app.set("trust proxy", config.trustProxy);
   app.set("query parser", "simple");
   app.use(securityHeaders(config.secureCookies));
-  app.use(pinoHttp({ logger, autoLogging: { ignore: (req) => req.method === "GET" }, serializers: { req: (req: { method: string; url: string }) => ({ method: req.method, url: req.url.split("?")[0] }) } }));
+  app.use(pinoHttp({ logger, autoLogging: { ignore: (req) => req.method === "GET" }, serializers: logged }));
 
   app.get("/api/docs", (_req, res) => void res.type("html").send(openApiPage(config.version)));
   if (options.catcher !== undefined) app.get("/dev/mail", mailPage(options.catcher));
@@ -48,7 +54,11 @@ export function createApp(services: Services, options: AppOptions = {}): Express
     checkReplies: config.test,
     onRefused: (ctx, action, route) =>
       inLab(db, ctx, async (tx) => {
-        await writeTrail(tx, ctx, { action: "action.refused", about: { kind: "route", id: route, label: routes[route].summary }, why: action });
+        await writeTrail(tx, ctx, {
+          action: "action.refused",
+          about: { kind: "route", id: route, label: routes[route].summary },
+          why: action,
+        });
       }),
   };
   mount(api, routes.health, async () => {

@@ -13,7 +13,10 @@ const environment = z.object({
   PORT: z.coerce.number().int().min(0).max(65535).default(4310),
   HOST: z.string().min(1).default("127.0.0.1"),
   DATABASE_URL: z.string().regex(/^postgres(ql)?:\/\//, "DATABASE_URL must begin with postgres://"),
-  SMTP_URL: z.string().regex(/^smtps?:\/\//, "SMTP_URL must begin with smtp:// or smtps://").optional(),
+  SMTP_URL: z
+    .string()
+    .regex(/^smtps?:\/\//, "SMTP_URL must begin with smtp:// or smtps://")
+    .optional(),
   MAIL_FROM: z.string().min(3).default("Wavekeep <wavekeep@localhost>"),
   ROLE: z.enum(["all", "web", "worker"]).default("all"),
   WAVEKEEP_DATA_DIR: z.string().min(1).default(".wavekeep"),
@@ -81,7 +84,10 @@ export function loadConfig(env: NodeJS.ProcessEnv): Config {
   }
   const e = parsed.data;
   const dataDir = path.resolve(e.WAVEKEEP_DATA_DIR);
-    const publicUrl = (e.PUBLIC_URL ?? `http://${e.HOST === "0.0.0.0" ? "127.0.0.1" : e.HOST}:${e.PORT}`).replace(/\/$/, "");
+  const publicUrl = (e.PUBLIC_URL ?? `http://${e.HOST === "0.0.0.0" ? "127.0.0.1" : e.HOST}:${e.PORT}`).replace(
+    /\/$/,
+    "",
+  );
   return {
     port: e.PORT,
     host: e.HOST,

@@ -29,7 +29,14 @@ async function main(): Promise<void> {
   boss.on("error", (error) => logger.error({ err: error }, "the job queue reported an error"));
   await boss.start();
   const analyser = openAnalyser({ onFault: (error) => logger.error({ err: error as Error }, "an analysis failed") });
-  const services: Services = { config, db, logger, jobs: makeJobs(boss), signer: openSigningKey(config.signingKeyFile), analyser };
+  const services: Services = {
+    config,
+    db,
+    logger,
+    jobs: makeJobs(boss),
+    signer: openSigningKey(config.signingKeyFile),
+    analyser,
+  };
   const catcher = config.demo && config.smtpUrl === null ? await openCatcher() : undefined;
   const smtpUrl = config.smtpUrl ?? catcher?.url ?? null;
   if (smtpUrl === null) logger.warn("SMTP_URL is not set: mail waits in the outbox.");
@@ -48,7 +55,9 @@ async function main(): Promise<void> {
     const forced = setTimeout(() => process.exit(1), PATIENCE_MS + 1_500);
     forced.unref();
     if (server !== null) await close(server);
-    await boss.stop({ graceful: true, timeout: 3_000 }).catch((error: unknown) => logger.error({ err: error as Error }, "the job queue did not stop cleanly"));
+    await boss
+      .stop({ graceful: true, timeout: 3_000 })
+      .catch((error: unknown) => logger.error({ err: error as Error }, "the job queue did not stop cleanly"));
     sender?.close();
     await catcher?.close();
     await analyser.close();
@@ -60,10 +69,14 @@ async function main(): Promise<void> {
 
 /** @throws {ConfigError} when the schema is older or newer than this server, which was given no owner to migrate it */
 async function assertSchema(db: Database): Promise<void> {
-  const { rows } = await db.orm.execute<{ count: number }>(sql`select count(*)::int as count from drizzle.__drizzle_migrations`);
+  const { rows } = await db.orm.execute<{ count: number }>(
+    sql`select count(*)::int as count from drizzle.__drizzle_migrations`,
+  );
   const count = rows[0]!.count;
   if (count !== MIGRATION_COUNT) {
-    throw new ConfigError(`The database's schema is ${count < MIGRATION_COUNT ? "older" : "newer"} than this server (${count} of ${MIGRATION_COUNT} migrations). Run the migrating step of this version first.`);
+    throw new ConfigError(
+      `The database's schema is ${count < MIGRATION_COUNT ? "older" : "newer"} than this server (${count} of ${MIGRATION_COUNT} migrations). Run the migrating step of this version first.`,
+    );
   }
 }
 

@@ -59,8 +59,11 @@ function catalogue(db: Queries): Queries {
  * to decide. Only ever on a database of a test's own.
  */
 export async function dropChecks(db: Queries): Promise<void> {
-  const { rows } = await db.query("select conrelid::regclass::text as \"table\", conname as name from pg_constraint where contype = 'c' and connamespace = 'public'::regnamespace");
-  for (const { table, name } of rows as { table: string; name: string }[]) await db.query(`alter table ${table} drop constraint "${name}"`);
+  const { rows } = await db.query(
+    "select conrelid::regclass::text as \"table\", conname as name from pg_constraint where contype = 'c' and connamespace = 'public'::regnamespace",
+  );
+  for (const { table, name } of rows as { table: string; name: string }[])
+    await db.query(`alter table ${table} drop constraint "${name}"`);
 }
 
 let counter = 0;
@@ -74,7 +77,9 @@ let counter = 0;
 export async function fillTable(db: Queries, table: string, labId: string): Promise<Record<string, unknown>> {
   const columns = await listColumns(db, table);
   // The widest key first: a narrower one over the same columns then holds as well.
-  const keys = (await listTenantKeys(catalogue(db))).filter((key) => key.table === table).sort((a, b) => b.columns.length - a.columns.length);
+  const keys = (await listTenantKeys(catalogue(db)))
+    .filter((key) => key.table === table)
+    .sort((a, b) => b.columns.length - a.columns.length);
   const pointing = new Set<string>();
   const values: Record<string, unknown> = {};
   for (const column of columns) {
@@ -84,7 +89,8 @@ export async function fillTable(db: Queries, table: string, labId: string): Prom
   if ("lab_id" in values) values["lab_id"] = labId;
   for (const key of keys) {
     const wanted = key.columns.filter((column) => column !== "lab_id");
-    if (wanted.length === 0 || wanted.every((column) => columns.find(({ name }) => name === column)!.nullable)) continue;
+    if (wanted.length === 0 || wanted.every((column) => columns.find(({ name }) => name === column)!.nullable))
+      continue;
     if (wanted.every((column) => pointing.has(column))) continue;
     // Made new each time, so that unique keys are kept.
     const pointed = await fillTable(catalogue(db), key.target, labId);
@@ -93,7 +99,8 @@ export async function fillTable(db: Queries, table: string, labId: string): Prom
   }
   if (table === "memberships") Object.assign(values, { person_id: await newPerson(db), roles: [] });
   if (table === "trail_entries") return appendToTrail(db, labId);
-  if (table === "trail_personal" || table === "signed_heads") values["number"] = (await appendToTrail(catalogue(db), labId))["number"];
+  if (table === "trail_personal" || table === "signed_heads")
+    values["number"] = (await appendToTrail(catalogue(db), labId))["number"];
   const names = Object.keys(values);
   const { rows } = await db.query(
     `insert into ${table} (${names.map((name) => `"${name}"`).join(", ")}) values (${names.map((_, place) => `$${place + 1}`).join(", ")}) returning *, ctid::text as ctid`,
@@ -104,7 +111,10 @@ export async function fillTable(db: Queries, table: string, labId: string): Prom
 
 async function newPerson(db: Queries): Promise<string> {
   const id = randomUUID();
-  await catalogue(db).query("insert into people (id, email, name, created_at) values ($1, $2, 'Somebody', now())", [id, `${id}@somewhere.example`]);
+  await catalogue(db).query("insert into people (id, email, name, created_at) values ($1, $2, 'Somebody', now())", [
+    id,
+    `${id}@somewhere.example`,
+  ]);
   return id;
 }
 

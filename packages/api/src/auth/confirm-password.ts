@@ -23,12 +23,18 @@ export interface PasswordProof {
 export async function confirmPassword(db: Database, personId: string, password: string): Promise<PasswordProof> {
   const limit = limits.confirmation(personId);
   await assertNotLocked(db, limit, "Confirming with your password");
-  const { rows } = await inNoLab(db, personId, (tx) => tx.execute<{ password_hash: string }>(sql`select password_hash from own_credentials()`));
+  const { rows } = await inNoLab(db, personId, (tx) =>
+    tx.execute<{ password_hash: string }>(sql`select password_hash from own_credentials()`),
+  );
   if (!(await secretFits(rows[0]?.password_hash ?? null, password))) {
     await countTry(db, limit);
-    throw problem("wrong-password", "This is not your password. Nothing was signed and nothing is lost; type it again.", {
-      fields: [{ path: "password", message: "This is not your password." }],
-    });
+    throw problem(
+      "wrong-password",
+      "This is not your password. Nothing was signed and nothing is lost; type it again.",
+      {
+        fields: [{ path: "password", message: "This is not your password." }],
+      },
+    );
   }
   await forgetTries(db, limit);
   return { personId, kind: "password", [proven]: true };

@@ -16,11 +16,23 @@ const MINUTE = 60;
 
 /** Every limit of the product in one place. */
 export const limits = {
-  signInOfAddress: (email: string): Limit => ({ key: `sign-in:${email.toLowerCase()}`, tries: 8, windowSeconds: 15 * MINUTE }),
+  signInOfAddress: (email: string): Limit => ({
+    key: `sign-in:${email.toLowerCase()}`,
+    tries: 8,
+    windowSeconds: 15 * MINUTE,
+  }),
   signInFromHost: (host: string): Limit => ({ key: `sign-in-from:${host}`, tries: 100, windowSeconds: 15 * MINUTE }),
   confirmation: (personId: string): Limit => ({ key: `confirm:${personId}`, tries: 8, windowSeconds: 15 * MINUTE }),
-  pin: (deviceId: string, personId: string): Limit => ({ key: `pin:${deviceId}:${personId}`, tries: 5, windowSeconds: 15 * MINUTE }),
-  resetOfAddress: (email: string): Limit => ({ key: `reset:${email.toLowerCase()}`, tries: 5, windowSeconds: 60 * MINUTE }),
+  pin: (deviceId: string, personId: string): Limit => ({
+    key: `pin:${deviceId}:${personId}`,
+    tries: 5,
+    windowSeconds: 15 * MINUTE,
+  }),
+  resetOfAddress: (email: string): Limit => ({
+    key: `reset:${email.toLowerCase()}`,
+    tries: 5,
+    windowSeconds: 60 * MINUTE,
+  }),
   resetFromHost: (host: string): Limit => ({ key: `reset-from:${host}`, tries: 60, windowSeconds: 60 * MINUTE }),
   tokenFromHost: (host: string): Limit => ({ key: `token-from:${host}`, tries: 200, windowSeconds: 15 * MINUTE }),
 };
@@ -55,7 +67,9 @@ const minutes = (seconds: number): string => (seconds <= 90 ? "a minute" : `${Ma
 export async function assertNotLocked(db: Database, limit: Limit, what: string): Promise<void> {
   const seconds = await lockedFor(db, limit);
   if (seconds > 0) {
-    throw problem("locked", `${what} failed too often and is locked for ${minutes(seconds)}. Nothing was changed.`, { retryAfterSeconds: seconds });
+    throw problem("locked", `${what} failed too often and is locked for ${minutes(seconds)}. Nothing was changed.`, {
+      retryAfterSeconds: seconds,
+    });
   }
 }
 
@@ -63,6 +77,8 @@ export async function assertNotLocked(db: Database, limit: Limit, what: string):
 export async function assertRate(db: Database, limit: Limit): Promise<void> {
   const { count, endsInSeconds } = await countTry(db, limit);
   if (count > limit.tries) {
-    throw problem("too-many", `There were too many tries from here. Try again in ${minutes(endsInSeconds)}.`, { retryAfterSeconds: endsInSeconds });
+    throw problem("too-many", `There were too many tries from here. Try again in ${minutes(endsInSeconds)}.`, {
+      retryAfterSeconds: endsInSeconds,
+    });
   }
 }

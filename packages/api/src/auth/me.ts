@@ -38,7 +38,15 @@ export async function readMe({ db, config }: Services, facts: SessionFacts): Pro
   };
 }
 
-const signIns = z.array(z.object({ email: z.string(), password: z.string(), who: z.string().optional(), name: z.string().optional(), role: z.string().optional() }));
+const signIns = z.array(
+  z.object({
+    email: z.string(),
+    password: z.string(),
+    who: z.string().optional(),
+    name: z.string().optional(),
+    role: z.string().optional(),
+  }),
+);
 
 /** The demo's sign-ins, from the file that the seeding start left in the data folder. */
 function demoPeople(config: Config): Me["demoPeople"] {
@@ -49,5 +57,12 @@ function demoPeople(config: Config): Me["demoPeople"] {
     // No demo lab was seeded in this data folder.
     return [];
   }
-  return signIns.parse(JSON.parse(text)).map(({ email, password, who, name, role }) => ({ email, password, name: name ?? who ?? email, role: role ?? (name === undefined ? "" : (who ?? "")) }));
+  return signIns
+    .parse(JSON.parse(text))
+    .map(({ email, password, who, name, role }) => ({
+      email,
+      password,
+      name: name ?? who ?? email,
+      role: role ?? (name === undefined ? "" : (who ?? "")),
+    }));
 }

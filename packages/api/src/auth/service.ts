@@ -11,10 +11,17 @@ import { assertNotLocked, assertRate, countTry, forgetTries, limits, lockedFor }
 import { hashSecret, newToken, secretFits, tokenHash } from "./passwords.ts";
 import * as queries from "./queries.ts";
 
-const mismatch = () => problem("wrong-credentials", "This e-mail address and password do not belong together. Check both; a new password can be asked for below.");
+const mismatch = () =>
+  problem(
+    "wrong-credentials",
+    "This e-mail address and password do not belong together. Check both; a new password can be asked for below.",
+  );
 
 /** Who it is, by address and password; kept in the trail of their labs when refused. */
-export async function checkSignIn(services: Services, input: { email: string; password: string; host: string }): Promise<{ personId: string }> {
+export async function checkSignIn(
+  services: Services,
+  input: { email: string; password: string; host: string },
+): Promise<{ personId: string }> {
   const { db } = services;
   const ofAddress = limits.signInOfAddress(input.email);
   const fromHost = limits.signInFromHost(input.host);
@@ -24,7 +31,13 @@ export async function checkSignIn(services: Services, input: { email: string; pa
   if (!(await secretFits(found?.passwordHash ?? null, input.password)) || found === null) {
     const { count } = await countTry(db, ofAddress);
     await countTry(db, fromHost);
-    await recordRefusedSignIn(services, input.email, count >= ofAddress.tries ? "too many wrong passwords: locked for a quarter of an hour" : "wrong address or password");
+    await recordRefusedSignIn(
+      services,
+      input.email,
+      count >= ofAddress.tries
+        ? "too many wrong passwords: locked for a quarter of an hour"
+        : "wrong address or password",
+    );
     throw mismatch();
   }
   await forgetTries(db, ofAddress);
@@ -36,12 +49,19 @@ async function recordRefusedSignIn({ db }: Services, email: string, why: string)
   const labs = await inNoLab(db, null, (tx) => queries.listLabsOfEmail(tx, email));
   const contexts = labs.length === 0 ? [houseContext()] : labs.map((lab) => asWavekeep(lab));
   for (const ctx of contexts) {
-    await inLab(db, ctx, (tx) => writeTrail(tx, ctx, { action: "session.refused", about: { kind: "person", id: "", label: email }, why }));
+    await inLab(db, ctx, (tx) =>
+      writeTrail(tx, ctx, { action: "session.refused", about: { kind: "person", id: "", label: email }, why }),
+    );
   }
 }
 
 /** The lab to work in after signing in: where the person was last, else the first by name. Null for nobody's member. */
-export async function enterLab(services: Services, personId: string, wantedLabId: string | null, benchName: string | null): Promise<string | null> {
+export async function enterLab(
+  services: Services,
+  personId: string,
+  wantedLabId: string | null,
+  benchName: string | null,
+): Promise<string | null> {
   const labs = await inNoLab(services.db, personId, (tx) => queries.listMyLabs(tx));
   const last = [...labs].sort((a, b) => (b.lastSeenAt?.getTime() ?? 0) - (a.lastSeenAt?.getTime() ?? 0))[0];
   const lab = wantedLabId === null ? last : labs.find((candidate) => candidate.id === wantedLabId);
@@ -60,14 +80,18 @@ export async function enterLab(services: Services, personId: string, wantedLabId
 }
 
 /** Trail context for a person's own doings: their current lab, else the house with their name. */
-const ownContext = (ctx: Context | null, personId: string, name: string): Context => ctx ?? { ...houseContext(), personId, personName: name };
+const ownContext = (ctx: Context | null, personId: string, name: string): Context =>
+  ctx ?? { ...houseContext(), personId, personName: name };
 
 export async function signOutEverywhere({ db }: Services, ctx: Context | null, personId: string): Promise<void> {
   const me = await findPerson(db, personId);
   const own = ownContext(ctx, personId, me.name);
   await inLab(db, own, async (tx) => {
     await queries.endSessionsOf(tx, personId);
-    await writeTrail(tx, own, { action: "session.ended-everywhere", about: { kind: "person", id: personId, label: me.name } });
+    await writeTrail(tx, own, {
+      action: "session.ended-everywhere",
+      about: { kind: "person", id: personId, label: me.name },
+    });
   });
 }
 
@@ -88,27 +112,44 @@ export async function forgetPassword(services: Services, input: { email: string;
       ...resetMail({ name: reset.name, link: `${config.publicUrl}/reset?token=${token}` }),
       causeKey: `password-reset:${reset.resetId}`,
     });
-    await writeTrail(tx, ctx, { action: "password.reset-asked", about: { kind: "person", id: reset.personId, label: reset.email } });
+    await writeTrail(tx, ctx, {
+      action: "password.reset-asked",
+      about: { kind: "person", id: reset.personId, label: reset.email },
+    });
   });
 }
 
 /** A new password by a mailed token: every session of the person ends. */
-export async function resetPassword({ db }: Services, input: { token: string; password: string; host: string }): Promise<void> {
+export async function resetPassword(
+  { db }: Services,
+  input: { token: string; password: string; host: string },
+): Promise<void> {
   await assertRate(db, limits.tokenFromHost(input.host));
   const newHash = await hashSecret(input.password);
   const ctx = houseContext();
   const email = await inLab(db, ctx, async (tx) => {
     const personId = await queries.finishReset(tx, tokenHash(input.token), newHash);
-    if (personId === null) throw problem("gone", "This link was used or is older than an hour. Nothing was changed; ask for a new one.");
+    if (personId === null)
+      throw problem("gone", "This link was used or is older than an hour. Nothing was changed; ask for a new one.");
     await queries.endSessionsOf(tx, personId);
     const me = await queries.findPersonByReset(tx, personId);
-    await writeTrail(tx, ctx, { action: "password.changed", about: { kind: "person", id: personId, label: me.email }, why: "by a mailed link" });
+    await writeTrail(tx, ctx, {
+      action: "password.changed",
+      about: { kind: "person", id: personId, label: me.email },
+      why: "by a mailed link",
+    });
     return me.email;
   });
   await forgetTries(db, limits.signInOfAddress(email));
 }
 
-export async function changePassword({ db }: Services, ctx: Context | null, personId: string, sid: string, input: { current: string; password: string }): Promise<void> {
+export async function changePassword(
+  { db }: Services,
+  ctx: Context | null,
+  personId: string,
+  sid: string,
+  input: { current: string; password: string },
+): Promise<void> {
   await confirmOwn(db, personId, input.current);
   const newHash = await hashSecret(input.password);
   const me = await findPerson(db, personId);
@@ -120,7 +161,12 @@ export async function changePassword({ db }: Services, ctx: Context | null, pers
   });
 }
 
-export async function changePin({ db }: Services, ctx: Context | null, personId: string, input: { current: string; pin: string }): Promise<void> {
+export async function changePin(
+  { db }: Services,
+  ctx: Context | null,
+  personId: string,
+  input: { current: string; pin: string },
+): Promise<void> {
   await confirmOwn(db, personId, input.current);
   const newHash = await hashSecret(input.pin);
   const me = await findPerson(db, personId);
@@ -137,7 +183,11 @@ export async function changeName({ db }: Services, ctx: Context | null, personId
   const own = ownContext(ctx, personId, me.name);
   await inLab(db, own, async (tx) => {
     await queries.saveOwnName(tx, personId, name);
-    await writeTrail(tx, own, { action: "name.changed", about: { kind: "person", id: personId, label: me.name }, personal: { nameBefore: me.name, nameAfter: name } });
+    await writeTrail(tx, own, {
+      action: "name.changed",
+      about: { kind: "person", id: personId, label: me.name },
+      personal: { nameBefore: me.name, nameAfter: name },
+    });
   });
 }
 
@@ -147,7 +197,9 @@ async function confirmOwn(db: Services["db"], personId: string, password: string
     await confirmPassword(db, personId, password);
   } catch (error) {
     if (error instanceof Error && "kind" in error && error.kind === "wrong-password") {
-      throw problem("wrong-password", "This is not your present password. Nothing was changed.", { fields: [{ path: "current", message: "This is not your present password." }] });
+      throw problem("wrong-password", "This is not your present password. Nothing was changed.", {
+        fields: [{ path: "current", message: "This is not your present password." }],
+      });
     }
     throw error;
   }
@@ -163,10 +215,18 @@ export const findBench = ({ db }: Services, token: string | null): Promise<queri
   token === null ? Promise.resolve(null) : inNoLab(db, null, (tx) => queries.findBenchDevice(tx, tokenHash(token)));
 
 /** By name and PIN on a shared PC. Five wrong PINs lock that person there for a quarter of an hour. */
-export async function checkBenchSignIn(services: Services, token: string | null, input: { personId: string; pin: string }): Promise<{ device: queries.BenchDevice }> {
+export async function checkBenchSignIn(
+  services: Services,
+  token: string | null,
+  input: { personId: string; pin: string },
+): Promise<{ device: queries.BenchDevice }> {
   const { db } = services;
   const device = await findBench(services, token);
-  if (token === null || device === null) throw problem("not-allowed", "This PC is not enrolled for bench mode. Sign in with your password; a lab manager can enrol it in Settings.");
+  if (token === null || device === null)
+    throw problem(
+      "not-allowed",
+      "This PC is not enrolled for bench mode. Sign in with your password; a lab manager can enrol it in Settings.",
+    );
   const limit = limits.pin(device.id, input.personId);
   await assertNotLocked(db, limit, "Your PIN on this PC");
   const found = await inNoLab(db, null, (tx) => queries.findBenchCredentials(tx, tokenHash(token), input.personId));
@@ -175,11 +235,21 @@ export async function checkBenchSignIn(services: Services, token: string | null,
     const left = limit.tries - count;
     const ctx = await benchContext(services, device);
     await inLab(db, ctx, (tx) =>
-      writeTrail(tx, ctx, { action: "session.refused", about: { kind: "person", id: input.personId, label: found?.name ?? "nobody here" }, why: `wrong PIN at ${device.name}` }),
+      writeTrail(tx, ctx, {
+        action: "session.refused",
+        about: { kind: "person", id: input.personId, label: found?.name ?? "nobody here" },
+        why: `wrong PIN at ${device.name}`,
+      }),
     );
-    throw problem("wrong-credentials", left > 0 ? `This PIN does not fit. ${left === 1 ? "One try is" : `${left} tries are`} left; the password works too.` : "This PIN does not fit, and is now locked here for a quarter of an hour. The password works.", {
-      fields: [{ path: "pin", message: "This PIN does not fit." }],
-    });
+    throw problem(
+      "wrong-credentials",
+      left > 0
+        ? `This PIN does not fit. ${left === 1 ? "One try is" : `${left} tries are`} left; the password works too.`
+        : "This PIN does not fit, and is now locked here for a quarter of an hour. The password works.",
+      {
+        fields: [{ path: "pin", message: "This PIN does not fit." }],
+      },
+    );
   }
   await forgetTries(db, limit);
   return { device };

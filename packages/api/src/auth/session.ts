@@ -44,10 +44,22 @@ export function sessionMiddleware(config: Config, db: Database): RequestHandler 
   return session({
     name: cookieNames(config).session,
     secret: config.sessionKey,
-    store: new Store({ pool: db.pool, tableName: "sessions", createTableIfMissing: false, pruneSessionInterval: false, disableTouch: true }),
+    store: new Store({
+      pool: db.pool,
+      tableName: "sessions",
+      createTableIfMissing: false,
+      pruneSessionInterval: false,
+      disableTouch: true,
+    }),
     resave: false,
     saveUninitialized: false,
-    cookie: { httpOnly: true, sameSite: "lax", secure: config.secureCookies, maxAge: SESSION_HOURS * 3600 * 1000, path: "/" },
+    cookie: {
+      httpOnly: true,
+      sameSite: "lax",
+      secure: config.secureCookies,
+      maxAge: SESSION_HOURS * 3600 * 1000,
+      path: "/",
+    },
   });
 }
 
@@ -68,7 +80,8 @@ export const idleMiddleware: RequestHandler = (req, _res, next) => {
   next();
 };
 
-export const idleSeconds = (req: Request): number => (typeof req.session?.benchDeviceId === "string" ? BENCH_IDLE_SECONDS : IDLE_SECONDS);
+export const idleSeconds = (req: Request): number =>
+  typeof req.session?.benchDeviceId === "string" ? BENCH_IDLE_SECONDS : IDLE_SECONDS;
 
 /** Person signed in; null otherwise. */
 export const personOf = (req: Request): string | null => req.session?.personId ?? null;
@@ -92,20 +105,29 @@ export function contextOf(db: Database, req: Request): Promise<Context | null> {
 export const forgetContext = (req: Request): void => void contexts.delete(req);
 
 /** Begin a session under a new id, so that a cookie from before the sign-in is worth nothing. */
-export async function beginSession(req: Request, data: { personId: string; labId: string | null; bench: { id: string; name: string } | null }): Promise<void> {
-  await new Promise<void>((resolve, reject) => req.session.regenerate((error: unknown) => (error ? reject(error as Error) : resolve())));
+export async function beginSession(
+  req: Request,
+  data: { personId: string; labId: string | null; bench: { id: string; name: string } | null },
+): Promise<void> {
+  await new Promise<void>((resolve, reject) =>
+    req.session.regenerate((error: unknown) => (error ? reject(error as Error) : resolve())),
+  );
   req.session.personId = data.personId;
   req.session.labId = data.labId;
   req.session.benchDeviceId = data.bench?.id ?? null;
   req.session.benchName = data.bench?.name ?? null;
   req.session.seenAt = Date.now();
   forgetContext(req);
-  await new Promise<void>((resolve, reject) => req.session.save((error: unknown) => (error ? reject(error as Error) : resolve())));
+  await new Promise<void>((resolve, reject) =>
+    req.session.save((error: unknown) => (error ? reject(error as Error) : resolve())),
+  );
 }
 
 export async function endSession(req: Request): Promise<void> {
   forgetContext(req);
-  await new Promise<void>((resolve, reject) => req.session.destroy((error: unknown) => (error ? reject(error as Error) : resolve())));
+  await new Promise<void>((resolve, reject) =>
+    req.session.destroy((error: unknown) => (error ? reject(error as Error) : resolve())),
+  );
 }
 
 /** A cookie's value, or null. */
@@ -123,7 +145,8 @@ export function readCookie(req: Request, name: string): string | null {
   return null;
 }
 
-const token = (config: Config, what: string): string => createHmac("sha256", config.sessionKey).update(`csrf:${what}`).digest("base64url");
+const token = (config: Config, what: string): string =>
+  createHmac("sha256", config.sessionKey).update(`csrf:${what}`).digest("base64url");
 
 /** Token for the header `x-csrf-token`: bound to the session, or to a visit's cookie before sign-in. */
 export function csrfToken(config: Config, req: Request, res: Response): string {
@@ -132,7 +155,13 @@ export function csrfToken(config: Config, req: Request, res: Response): string {
   let visit = readCookie(req, anonymous);
   if (visit === null || visit.length < 20) {
     visit = randomBytes(18).toString("base64url");
-    res.cookie(anonymous, visit, { httpOnly: true, sameSite: "strict", secure: config.secureCookies, maxAge: ANONYMOUS_HOURS * 3600 * 1000, path: "/" });
+    res.cookie(anonymous, visit, {
+      httpOnly: true,
+      sameSite: "strict",
+      secure: config.secureCookies,
+      maxAge: ANONYMOUS_HOURS * 3600 * 1000,
+      path: "/",
+    });
   }
   return token(config, `visit:${visit}`);
 }
@@ -146,16 +175,27 @@ export function csrfMiddleware(config: Config): RequestHandler {
   return (req, _res, next) => {
     if (req.method === "GET" || req.method === "HEAD" || req.method === "OPTIONS") return next();
     const visit = readCookie(req, cookieNames(config).anonymous);
-    const expected = personOf(req) !== null ? token(config, `session:${req.sessionID}`) : visit === null ? null : token(config, `visit:${visit}`);
+    const expected =
+      personOf(req) !== null
+        ? token(config, `session:${req.sessionID}`)
+        : visit === null
+          ? null
+          : token(config, `visit:${visit}`);
     const sent = req.get("x-csrf-token") ?? "";
     const site = req.get("sec-fetch-site");
     const foreign = site !== undefined && site !== "same-origin" && site !== "none";
     if (expected === null || foreign || !sameText(sent, expected)) {
       // Who was signed out meanwhile must hear that, and not about a token.
       if (personOf(req) === null && !foreign && readCookie(req, cookieNames(config).session) !== null) {
-        throw problem("session-ended", "You were signed out, on another device or after a while without use. Sign in again; what you typed is still in the form.");
+        throw problem(
+          "session-ended",
+          "You were signed out, on another device or after a while without use. Sign in again; what you typed is still in the form.",
+        );
       }
-      throw problem("csrf", "This page was open before you signed in or out elsewhere. Reload it and try again; nothing was changed.");
+      throw problem(
+        "csrf",
+        "This page was open before you signed in or out elsewhere. Reload it and try again; nothing was changed.",
+      );
     }
     next();
   };

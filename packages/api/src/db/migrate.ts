@@ -26,7 +26,11 @@ const APP_ROLE = "wavekeep_app";
  * @throws when the owner may not make roles and they are missing, or a migration fails (nothing of that one is kept)
  */
 export async function migrate(ownerUrl: string, options: MigrateOptions): Promise<void> {
-  const client = new pg.Client({ connectionString: ownerUrl, options: "-c timezone=UTC", application_name: "wavekeep-migrate" });
+  const client = new pg.Client({
+    connectionString: ownerUrl,
+    options: "-c timezone=UTC",
+    application_name: "wavekeep-migrate",
+  });
   // Notices (a policy that was not there to be dropped) are no news.
   client.on("notice", () => {});
   await client.connect();
@@ -50,7 +54,9 @@ async function makeRoles(client: pg.Client, appRole: MigrateOptions["appRole"]):
   await makeRole(client, "wavekeep_seeder", "nologin");
   await makeRole(client, "wavekeep_definer", "nologin");
   await client.query(`grant ${APP_ROLE} to wavekeep_seeder`);
-  const { rows } = await client.query<{ superuser: boolean }>("select rolsuper as superuser from pg_roles where rolname = current_user");
+  const { rows } = await client.query<{ superuser: boolean }>(
+    "select rolsuper as superuser from pg_roles where rolname = current_user",
+  );
   // Who is no superuser must be a member of a role to give it functions.
   if (rows[0]?.superuser !== true) await client.query("grant wavekeep_definer to current_user");
   if (appRole === null) return;
@@ -72,26 +78,45 @@ async function makeRole(client: pg.Client, name: string, attributes: string): Pr
     await client.query(`create role ${client.escapeIdentifier(name)} ${attributes}`);
   } catch (error) {
     if ((error as { code?: string }).code !== DUPLICATE_OBJECT) {
-      throw new Error(`The role ${name} is missing and could not be made: ${(error as Error).message}. Make it once as an administrator of the server, or give the owner CREATEROLE.`);
+      throw new Error(
+        `The role ${name} is missing and could not be made: ${(error as Error).message}. Make it once as an administrator of the server, or give the owner CREATEROLE.`,
+        { cause: error },
+      );
     }
   }
 }
 
 /** Row security holds nobody who may bypass it. */
 async function refuseStrongAppRole(client: pg.Client, name: string): Promise<void> {
-  const { rows } = await client.query<{ strong: boolean }>("select rolsuper or rolbypassrls as strong from pg_roles where rolname = $1", [name]);
+  const { rows } = await client.query<{ strong: boolean }>(
+    "select rolsuper or rolbypassrls as strong from pg_roles where rolname = $1",
+    [name],
+  );
   if (rows[0]?.strong === true) {
-    throw new Error(`The app's role ${name} is a superuser or may bypass row security, so labs would not be kept apart. Give DATABASE_URL a role without these.`);
+    throw new Error(
+      `The app's role ${name} is a superuser or may bypass row security, so labs would not be kept apart. Give DATABASE_URL a role without these.`,
+    );
   }
 }
 
 async function makeQueues(ownerUrl: string): Promise<void> {
-  const boss = new PgBoss({ connectionString: ownerUrl, schema: "pgboss", migrate: true, supervise: false, schedule: false, max: 1 });
+  const boss = new PgBoss({
+    connectionString: ownerUrl,
+    schema: "pgboss",
+    migrate: true,
+    supervise: false,
+    schedule: false,
+    max: 1,
+  });
   boss.on("error", () => {});
   await boss.start();
   try {
     for (const name of Object.values(queues)) {
-      if ((await boss.getQueue(name)) === null) await boss.createQueue(name, { name, policy: ticks.some((tick) => tick.queue === name) ? "short" : "standard" });
+      if ((await boss.getQueue(name)) === null)
+        await boss.createQueue(name, {
+          name,
+          policy: ticks.some((tick) => tick.queue === name) ? "short" : "standard",
+        });
     }
     for (const { queue, cron } of ticks) await boss.schedule(queue, cron, {}, { tz: "UTC" });
   } finally {

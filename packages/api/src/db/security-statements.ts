@@ -39,7 +39,10 @@ function tableStatements(table: string, grant: Grant): string {
 
 export function securityStatements(): string {
   const folder = path.join(import.meta.dirname, "security");
-  const files = fs.readdirSync(folder).filter((name) => name.endsWith(".sql")).sort();
+  const files = fs
+    .readdirSync(folder)
+    .filter((name) => name.endsWith(".sql"))
+    .sort();
   const parts = [
     "grant usage on schema public to wavekeep_app;",
     ...files.map((name) => fs.readFileSync(path.join(folder, name), "utf8").trim()),

@@ -95,7 +95,8 @@ export async function recordNow(tx: Tx): Promise<Date> {
 export const hasRole = (ctx: Context, role: Role): boolean => ctx.roles.includes(role);
 
 /** True when the person owns the instrument, or stands in for its owner. */
-export const ownsInstrument = (ctx: Context, instrumentId: string): boolean => ctx.ownedInstrumentIds.includes(instrumentId);
+export const ownsInstrument = (ctx: Context, instrumentId: string): boolean =>
+  ctx.ownedInstrumentIds.includes(instrumentId);
 
 /**
  * Refuse a form that was filled in on an older state of its row.
@@ -104,6 +105,9 @@ export const ownsInstrument = (ctx: Context, instrumentId: string): boolean => c
  */
 export function assertFresh(stored: { version: number }, sent: { version: number }, what: string): void {
   if (stored.version !== sent.version) {
-    throw problem("stale", `${what} was changed by somebody else while you were editing. Nothing of yours was lost: compare, and save again.`);
+    throw problem(
+      "stale",
+      `${what} was changed by somebody else while you were editing. Nothing of yours was lost: compare, and save again.`,
+    );
   }
 }

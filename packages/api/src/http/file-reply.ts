@@ -14,7 +14,10 @@ export interface FileReply {
 }
 
 export const isFileReply = (value: unknown): value is FileReply =>
-  typeof value === "object" && value !== null && "file" in value && (value as FileReply).file.bytes instanceof Uint8Array;
+  typeof value === "object" &&
+  value !== null &&
+  "file" in value &&
+  (value as FileReply).file.bytes instanceof Uint8Array;
 
 /** Types that a browser may show on our own origin. */
 const shownInline = new Set(["application/pdf", "image/png", "image/jpeg"]);

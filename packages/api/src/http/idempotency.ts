@@ -30,8 +30,14 @@ export async function runOnce<T>(db: Database, attempt: Attempt, handler: () => 
   const key = attempt.req.get("idempotency-key");
   const { ctx } = attempt;
   if (key === undefined || attempt.req.method === "GET" || ctx === null || ctx.personId === null) return handler();
-  if (!/^[\x21-\x7e]{8,200}$/.test(key)) throw problem("bad-request", "The Idempotency-Key must be 8 to 200 plain characters.");
-  const requestHash = sha256Hex(canonicalText({ input: JSON.parse(JSON.stringify(attempt.input ?? null)), files: attempt.files.map((file) => [file.name, sha256Hex(file.bytes)]) }));
+  if (!/^[\x21-\x7e]{8,200}$/.test(key))
+    throw problem("bad-request", "The Idempotency-Key must be 8 to 200 plain characters.");
+  const requestHash = sha256Hex(
+    canonicalText({
+      input: JSON.parse(JSON.stringify(attempt.input ?? null)),
+      files: attempt.files.map((file) => [file.name, sha256Hex(file.bytes)]),
+    }),
+  );
   const claim = { route: attempt.name, key, requestHash, claimed: false };
 
   const before = await findReply<T>(db, ctx, claim);
@@ -70,7 +76,10 @@ async function findReply<T>(db: Database, ctx: Context, claim: Claim): Promise<{
   const [row] = await inLab(db, ctx, (tx) => tx.select().from(idempotencyKeys).where(claimed(ctx, claim)));
   if (row === undefined) return null;
   if (row.requestHash !== claim.requestHash) {
-    throw problem("repeated-request", "This key was used for a different request. Nothing was changed; send this one with a new key.");
+    throw problem(
+      "repeated-request",
+      "This key was used for a different request. Nothing was changed; send this one with a new key.",
+    );
   }
   if (row.status === null) {
     throw problem("repeated-request", "This was sent before and has been carried out. Reload the page to see it.");

@@ -25,6 +25,12 @@ function sentence(issue: z.core.$ZodIssue): string {
 }
 
 const wordFor = (expected: string): string =>
-  ({ string: "text", number: "a number", int: "a whole number", boolean: "yes or no", array: "a list", object: "a group of fields", null: "empty" })[
-    expected
-  ] ?? expected;
+  ({
+    string: "text",
+    number: "a number",
+    int: "a whole number",
+    boolean: "yes or no",
+    array: "a list",
+    object: "a group of fields",
+    null: "empty",
+  })[expected] ?? expected;

@@ -85,7 +85,11 @@ export type Reply<R extends RouteContract> = R extends { replyType: string }
  *
  * @example mount(api, routes.acknowledgeAlert, ({ ctx, params, body }) => acknowledgeAlert(api.db, ctx, params.alertId, body))
  */
-export function mount<R extends RouteContract>(api: Api, route: R, handler: (call: Call<R>) => Promise<Reply<R>>): void {
+export function mount<R extends RouteContract>(
+  api: Api,
+  route: R,
+  handler: (call: Call<R>) => Promise<Reply<R>>,
+): void {
   const name = nameOf(route);
   if (api.mounted.has(name)) throw new Error(`The route ${name} is mounted twice.`);
   api.mounted.add(name);
@@ -97,17 +101,23 @@ export function mount<R extends RouteContract>(api: Api, route: R, handler: (cal
     const needsLab = permission.public !== true && permission.signedIn !== true;
     const ctx = personId === null ? null : await api.contextOf(req);
     if (permission.public !== true && personId === null) throw problem("not-signed-in", "Sign in, then try again.");
-    if (needsLab && ctx === null) throw problem("not-allowed", "You are not a member of a lab here. Ask a lab manager for an invitation.");
+    if (needsLab && ctx === null)
+      throw problem("not-allowed", "You are not a member of a lab here. Ask a lab manager for an invitation.");
 
     // Who may not do it at all is refused before anything of the request is received.
     if (needsLab) await authorise(api, name, route.policy, ctx!, { params, body: req.body as unknown });
 
-    const received = route.upload === undefined ? { files: [], fields: {} } : await receiveFiles(req, res, route.upload);
+    const received =
+      route.upload === undefined ? { files: [], fields: {} } : await receiveFiles(req, res, route.upload);
     const query = route.query === undefined ? undefined : parse(route.query, req.query, "query");
     const body = route.body === undefined ? undefined : parse(route.body, req.body as unknown, "body");
 
     const call = { ctx, personId, params, query, body, ...received, http: { req, res } } as unknown as Call<R>;
-    const outcome = await runOnce(api.db, { name, req, ctx, input: { params, query, body }, files: received.files }, () => handler(call));
+    const outcome = await runOnce(
+      api.db,
+      { name, req, ctx, input: { params, query, body }, files: received.files },
+      () => handler(call),
+    );
     if (isFileReply(outcome)) return sendFile(req, res, outcome);
     if (res.headersSent) return;
     if (route.reply === undefined) {
@@ -127,7 +137,8 @@ export function assertEverythingMounted(api: Api): void {
   if (missing.length > 0) throw new Error(`Routes of the contract that are not mounted: ${missing.join(", ")}.`);
   for (const permission of Object.values(permissions) as Permission[]) {
     for (const relation of [permission.relation, permission.unless]) {
-      if (relation !== undefined && !api.relations.has(relation)) throw new Error(`Nobody can tell the relation ${relation}.`);
+      if (relation !== undefined && !api.relations.has(relation))
+        throw new Error(`Nobody can tell the relation ${relation}.`);
     }
   }
 }

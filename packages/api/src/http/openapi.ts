@@ -8,7 +8,11 @@ type Json = Record<string, unknown>;
 
 /** JSON Schema of a shape, as it is sent (input) or comes back (output). What has no schema of its own is any value. */
 const schemaOf = (shape: z.ZodType, io: "input" | "output"): Json => {
-  const { $schema: _, ...schema } = z.toJSONSchema(shape, { io, unrepresentable: "any", target: "draft-2020-12" }) as Json;
+  const { $schema: _, ...schema } = z.toJSONSchema(shape, {
+    io,
+    unrepresentable: "any",
+    target: "draft-2020-12",
+  }) as Json;
   return schema;
 };
 
@@ -22,19 +26,46 @@ export function policyWords(permission: Permission): string {
   if (permission.public === true) return "Anybody.";
   if (permission.signedIn === true) return "Whoever is signed in.";
   if (permission.member === true) return "Any member of the lab.";
-  const who = [...(permission.roles ?? []), ...(permission.relation === undefined ? [] : [permission.relation])].join(", ");
+  const who = [...(permission.roles ?? []), ...(permission.relation === undefined ? [] : [permission.relation])].join(
+    ", ",
+  );
   return `${who}${permission.unless === undefined ? "" : `; not who ${permission.unless.replaceAll("-", " ")}`}.`;
 }
 
 function operation(name: string, route: RouteContract): Json {
   const permission: Permission = permissions[route.policy];
   const change = route.method !== "get";
-  const params = [...route.path.matchAll(/:(\w+)/g)].map(([, key]) => ({ name: key, in: "path", required: true, schema: { type: "string", ...(key!.endsWith("Id") ? { format: "uuid" } : {}) } }));
-  const query = route.query === undefined ? [] : Object.entries((schemaOf(route.query, "input")["properties"] ?? {}) as Json).map(([key, schema]) => ({ name: key, in: "query", required: false, schema }));
+  const params = [...route.path.matchAll(/:(\w+)/g)].map(([, key]) => ({
+    name: key,
+    in: "path",
+    required: true,
+    schema: { type: "string", ...(key!.endsWith("Id") ? { format: "uuid" } : {}) },
+  }));
+  const query =
+    route.query === undefined
+      ? []
+      : Object.entries((schemaOf(route.query, "input")["properties"] ?? {}) as Json).map(([key, schema]) => ({
+          name: key,
+          in: "query",
+          required: false,
+          schema,
+        }));
   const headers = change
     ? [
-        { name: "x-csrf-token", in: "header", required: true, description: "csrfToken of GET /session.", schema: { type: "string" } },
-        { name: "Idempotency-Key", in: "header", required: false, description: "A repetition with the same key gets the first reply, for 24 hours.", schema: { type: "string", minLength: 8, maxLength: 200 } },
+        {
+          name: "x-csrf-token",
+          in: "header",
+          required: true,
+          description: "csrfToken of GET /session.",
+          schema: { type: "string" },
+        },
+        {
+          name: "Idempotency-Key",
+          in: "header",
+          required: false,
+          description: "A repetition with the same key gets the first reply, for 24 hours.",
+          schema: { type: "string", minLength: 8, maxLength: 200 },
+        },
       ]
     : [];
   return {
@@ -48,7 +79,9 @@ function operation(name: string, route: RouteContract): Json {
     responses: {
       ...success(route),
       "400": problemReply("The request could not be read, or a field needs another look."),
-      ...(permission.public === true ? {} : { "401": problemReply("Not signed in."), "403": problemReply("Not allowed.") }),
+      ...(permission.public === true
+        ? {}
+        : { "401": problemReply("Not signed in."), "403": problemReply("Not allowed.") }),
       "404": problemReply("Not here, or another lab's."),
       ...(change ? { "409": problemReply("Changed in the meantime, or not possible in this state.") } : {}),
     },
@@ -56,17 +89,42 @@ function operation(name: string, route: RouteContract): Json {
 }
 
 function requestBody(route: RouteContract): Json {
-  if (route.body !== undefined) return { requestBody: { required: true, content: { "application/json": { schema: schemaOf(route.body, "input") } } } };
+  if (route.body !== undefined)
+    return {
+      requestBody: { required: true, content: { "application/json": { schema: schemaOf(route.body, "input") } } },
+    };
   if (route.upload === undefined) return {};
   const { field, maxFiles, maxBytes } = route.upload;
-  const files = { type: "array", maxItems: maxFiles, items: { type: "string", format: "binary" }, description: `At most ${maxBytes} bytes each.` };
-  return { requestBody: { required: true, content: { "multipart/form-data": { schema: { type: "object", required: [field], properties: { [field]: files, part: { type: "string" } } } } } } };
+  const files = {
+    type: "array",
+    maxItems: maxFiles,
+    items: { type: "string", format: "binary" },
+    description: `At most ${maxBytes} bytes each.`,
+  };
+  return {
+    requestBody: {
+      required: true,
+      content: {
+        "multipart/form-data": {
+          schema: { type: "object", required: [field], properties: { [field]: files, part: { type: "string" } } },
+        },
+      },
+    },
+  };
 }
 
 function success(route: RouteContract): Json {
-  if (route.replyType !== undefined) return { "200": { description: "The bytes.", content: { [route.replyType]: { schema: { type: "string", format: "binary" } } } } };
+  if (route.replyType !== undefined)
+    return {
+      "200": {
+        description: "The bytes.",
+        content: { [route.replyType]: { schema: { type: "string", format: "binary" } } },
+      },
+    };
   if (route.reply === undefined) return { [route.method === "get" ? "200" : "204"]: { description: "Done." } };
-  return { "200": { description: "Done.", content: { "application/json": { schema: schemaOf(route.reply, "output") } } } };
+  return {
+    "200": { description: "Done.", content: { "application/json": { schema: schemaOf(route.reply, "output") } } },
+  };
 }
 
 let described: Json | undefined;
@@ -81,12 +139,24 @@ export function openApi(version: string): Json {
   }
   described = {
     openapi: "3.1.0",
-    info: { title: "Wavekeep", version, description: "Wavelength checks of a laboratory's spectrometers. Times are ISO 8601 in UTC; lists are paged by `after`; refusals are RFC 9457 problem documents with a stable `type`." },
+    info: {
+      title: "Wavekeep",
+      version,
+      description:
+        "Wavelength checks of a laboratory's spectrometers. Times are ISO 8601 in UTC; lists are paged by `after`; refusals are RFC 9457 problem documents with a stable `type`.",
+    },
     servers: [{ url: "/api" }],
     security: [{ session: [] }],
     paths,
     components: {
-      securitySchemes: { session: { type: "apiKey", in: "cookie", name: "wavekeep", description: "The session's cookie; its name ends in the server's port." } },
+      securitySchemes: {
+        session: {
+          type: "apiKey",
+          in: "cookie",
+          name: "wavekeep",
+          description: "The session's cookie; its name ends in the server's port.",
+        },
+      },
       schemas: { Problem: schemaOf(problemDocument, "output") },
     },
   };
@@ -100,7 +170,9 @@ export function openApiPage(version: string): string {
   const rows = (Object.entries(routes) as [string, RouteContract][])
     .map(([name, route]) => {
       const shape = (title: string, of: z.ZodType | undefined, io: "input" | "output") =>
-        of === undefined ? "" : `<details><summary>${title}</summary><pre>${escapeHtml(JSON.stringify(schemaOf(of, io), null, 2))}</pre></details>`;
+        of === undefined
+          ? ""
+          : `<details><summary>${title}</summary><pre>${escapeHtml(JSON.stringify(schemaOf(of, io), null, 2))}</pre></details>`;
       return `<section id="${name}"><h2><code>${route.method.toUpperCase()} /api${escapeHtml(route.path)}</code></h2><p>${escapeHtml(route.summary)}. <span class="note">${escapeHtml(policyWords(permissions[route.policy]))}</span></p>
 ${shape("Query", route.query, "input")}${shape("Sent", route.body, "input")}${shape("Reply", route.reply, "output")}</section>`;
     })

@@ -31,7 +31,10 @@ export async function authorise(
   }
   if (permission.unless !== undefined && (await holds(permission.unless))) {
     await api.onRefused(ctx, action, route);
-    throw problem("not-allowed", "You contributed to this check, so somebody else must review it. Nothing was changed.");
+    throw problem(
+      "not-allowed",
+      "You contributed to this check, so somebody else must review it. Nothing was changed.",
+    );
   }
 }
 

@@ -9,19 +9,19 @@ export const problemKinds = {
   "wrong-credentials": { status: 401, title: "These did not match" },
   "wrong-password": { status: 403, title: "The password did not match" },
   "not-allowed": { status: 403, title: "Not allowed" },
-  "csrf": { status: 403, title: "The page is out of date" },
+  csrf: { status: 403, title: "The page is out of date" },
   "not-found": { status: 404, title: "Not found" },
-  "gone": { status: 410, title: "No longer valid" },
-  "stale": { status: 409, title: "Changed in the meantime" },
-  "conflict": { status: 409, title: "Not possible in this state" },
+  gone: { status: 410, title: "No longer valid" },
+  stale: { status: 409, title: "Changed in the meantime" },
+  conflict: { status: 409, title: "Not possible in this state" },
   "already-exists": { status: 409, title: "This exists already" },
   "repeated-request": { status: 409, title: "This was sent before" },
   "too-large": { status: 413, title: "Too large" },
   "unsupported-type": { status: 415, title: "This kind of content is not taken" },
-  "unusable": { status: 422, title: "Readable, but not usable" },
-  "locked": { status: 423, title: "Locked for a while" },
+  unusable: { status: 422, title: "Readable, but not usable" },
+  locked: { status: 423, title: "Locked for a while" },
   "too-many": { status: 429, title: "Too many tries" },
-  "internal": { status: 500, title: "Something went wrong here" },
+  internal: { status: 500, title: "Something went wrong here" },
   "not-ready": { status: 503, title: "Not ready yet" },
 } as const satisfies Record<string, { status: number; title: string }>;
 
@@ -69,7 +69,9 @@ export class Problem extends Error {
  *
  * @param detail what happened, what was kept, what to do, in plain words
  */
-export const problem = (kind: ProblemKind, detail: string, extra?: ProblemExtra): Problem => new Problem(kind, detail, extra);
+export const problem = (kind: ProblemKind, detail: string, extra?: ProblemExtra): Problem =>
+  new Problem(kind, detail, extra);
 
 /** What is absent and what belongs to another lab read the same. */
-export const notFound = (what: string): Problem => problem("not-found", `${what} is not here. It may belong to another lab, or the address may be mistyped.`);
+export const notFound = (what: string): Problem =>
+  problem("not-found", `${what} is not here. It may belong to another lab, or the address may be mistyped.`);

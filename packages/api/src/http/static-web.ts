@@ -22,15 +22,13 @@ export function inTheme(page: string, theme: string | undefined): string {
     .replace(/favicon-paper(-[\w-]+)?\.svg/, `favicon-${theme}.svg`);
 }
 
-const themeOf = (cookies: string | undefined): string | undefined => /(?:^|;\s*)wavekeep-theme=([a-z-]+)/.exec(cookies ?? "")?.[1];
+const themeOf = (cookies: string | undefined): string | undefined =>
+  /(?:^|;\s*)wavekeep-theme=([a-z-]+)/.exec(cookies ?? "")?.[1];
 
 export function serveWeb(webDir: string): Router {
   const router = express.Router();
   const page = fs.readFileSync(path.join(webDir, "index.html"), "utf8");
-  router.use(
-    "/assets",
-    express.static(path.join(webDir, "assets"), { immutable: true, maxAge: "365d", index: false }),
-  );
+  router.use("/assets", express.static(path.join(webDir, "assets"), { immutable: true, maxAge: "365d", index: false }));
   router.use(express.static(webDir, { index: false, maxAge: "1h" }));
   const sendPage: RequestHandler = (req, res, next) => {
     if (req.method !== "GET" && req.method !== "HEAD") return next();

@@ -42,7 +42,10 @@ export async function receiveFiles(
 ): Promise<{ files: ReceivedFile[]; fields: Record<string, string> }> {
   const largest = `${Math.floor(limits.maxBytes / MEGABYTE)} MB`;
   const tooLarge = () =>
-    problem("too-large", `A file may be at most ${largest}${limits.maxFiles > 1 ? ", and one upload at most four times that" : ""}. This one was not read and nothing was stored; send it smaller or in parts.`);
+    problem(
+      "too-large",
+      `A file may be at most ${largest}${limits.maxFiles > 1 ? ", and one upload at most four times that" : ""}. This one was not read and nothing was stored; send it smaller or in parts.`,
+    );
   const type = req.headers["content-type"] ?? "";
   if (!/^multipart\/form-data\b/i.test(type)) {
     throw problem("unsupported-type", "Files are sent as a form (multipart/form-data). Nothing was stored.");
@@ -55,7 +58,13 @@ export async function receiveFiles(
   }
   const receive = multer({
     storage: multer.memoryStorage(),
-    limits: { fileSize: limits.maxBytes, files: limits.maxFiles, fields: 20, fieldSize: 64 * 1024, parts: limits.maxFiles + 20 },
+    limits: {
+      fileSize: limits.maxBytes,
+      files: limits.maxFiles,
+      fields: 20,
+      fieldSize: 64 * 1024,
+      parts: limits.maxFiles + 20,
+    },
   }).array(limits.field, limits.maxFiles);
   await new Promise<void>((resolve, reject) => {
     receive(req, res, (error: unknown) => {
@@ -63,15 +72,31 @@ export async function receiveFiles(
       if (error instanceof multer.MulterError) {
         if (error.code === "LIMIT_FILE_SIZE") return reject(tooLarge());
         if (error.code === "LIMIT_FILE_COUNT" || error.code === "LIMIT_PART_COUNT") {
-          return reject(problem("too-large", `At most ${limits.maxFiles} files are taken at once. Nothing was stored; send the rest afterwards.`));
+          return reject(
+            problem(
+              "too-large",
+              `At most ${limits.maxFiles} files are taken at once. Nothing was stored; send the rest afterwards.`,
+            ),
+          );
         }
-        return reject(problem("bad-request", `The form was not understood: files belong in the field "${limits.field}". Nothing was stored.`));
+        return reject(
+          problem(
+            "bad-request",
+            `The form was not understood: files belong in the field "${limits.field}". Nothing was stored.`,
+          ),
+        );
       }
       reject(problem("bad-request", "The upload broke off or its form is damaged. Nothing was stored; send it again."));
     });
   });
-  const files = ((req.files as Express.Multer.File[] | undefined) ?? []).map((file) => ({ name: fileName(file.originalname), bytes: file.buffer }));
-  if (files.length === 0) throw problem("invalid-input", "No file came with the form. Choose at least one.", { fields: [{ path: limits.field, message: "Choose a file." }] });
+  const files = ((req.files as Express.Multer.File[] | undefined) ?? []).map((file) => ({
+    name: fileName(file.originalname),
+    bytes: file.buffer,
+  }));
+  if (files.length === 0)
+    throw problem("invalid-input", "No file came with the form. Choose at least one.", {
+      fields: [{ path: limits.field, message: "Choose a file." }],
+    });
   const fields: Record<string, string> = {};
   for (const [key, value] of Object.entries((req.body ?? {}) as Record<string, unknown>)) {
     if (typeof value === "string") fields[key] = value;

@@ -21,13 +21,17 @@ export function makeJobs(boss: PgBoss): Jobs {
   return {
     async send(tx, queue, payload, options = {}) {
       const id = await boss.send(queue, payload, {
-        db: { executeSql: (text, values) => tx.execute(fromNumbered(text, values as unknown[])) as unknown as Promise<{ rows: unknown[] }> },
+        db: {
+          executeSql: (text, values) =>
+            tx.execute(fromNumbered(text, values as unknown[])) as unknown as Promise<{ rows: unknown[] }>,
+        },
         ...(options.startAfter === undefined ? {} : { startAfter: options.startAfter }),
         retryLimit: 8,
         retryDelay: 20,
         retryBackoff: true,
       });
-      if (id === null) throw new Error(`The queue ${queue} took no job. The database's migrations may be older than the server.`);
+      if (id === null)
+        throw new Error(`The queue ${queue} took no job. The database's migrations may be older than the server.`);
     },
   };
 }

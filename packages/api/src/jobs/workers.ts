@@ -19,7 +19,12 @@ export interface Ticks {
 /** How often a worker looks for jobs. */
 const POLL_SECONDS = 2;
 
-export async function startWorkers(boss: PgBoss, services: Services, sender: MailSender | null, ticks: Ticks): Promise<void> {
+export async function startWorkers(
+  boss: PgBoss,
+  services: Services,
+  sender: MailSender | null,
+  ticks: Ticks,
+): Promise<void> {
   const { logger } = services;
   const work = (queue: QueueName, handler: (payload: JobPayload) => Promise<void>) =>
     boss.work<JobPayload>(queue, { pollingIntervalSeconds: POLL_SECONDS, batchSize: 1 }, async ([job]) => {
@@ -35,16 +40,26 @@ export async function startWorkers(boss: PgBoss, services: Services, sender: Mai
       if (labId !== undefined && id !== undefined) await sender.deliver(labId, id);
     });
   }
-  await work(queues.dueAndOverdue, () => inEveryLab(services, "due and overdue", (lab) => ticks.dueAndOverdue(services, lab)));
-  await work(queues.asideDrafts, () => inEveryLab(services, "drafts left for a day", (lab) => ticks.asideDrafts(services, lab)));
-  await work(queues.signHeads, () => inEveryLab(services, "signing the head", async (lab) => void (await signDailyHead(services, lab))));
+  await work(queues.dueAndOverdue, () =>
+    inEveryLab(services, "due and overdue", (lab) => ticks.dueAndOverdue(services, lab)),
+  );
+  await work(queues.asideDrafts, () =>
+    inEveryLab(services, "drafts left for a day", (lab) => ticks.asideDrafts(services, lab)),
+  );
+  await work(queues.signHeads, () =>
+    inEveryLab(services, "signing the head", async (lab) => void (await signDailyHead(services, lab))),
+  );
   await work(queues.sweep, () => sweep(services));
   // What fell due while nothing ran is asked for now, not at the next full tick.
   for (const queue of [queues.asideDrafts, queues.dueAndOverdue]) await boss.send(queue, {});
 }
 
 /** One lab's failure does not keep the others waiting. */
-async function inEveryLab({ db, logger }: Services, what: string, visit: (lab: VisitedLab) => Promise<void>): Promise<void> {
+async function inEveryLab(
+  { db, logger }: Services,
+  what: string,
+  visit: (lab: VisitedLab) => Promise<void>,
+): Promise<void> {
   const labs = await inNoLab(db, null, (tx) => listLabsToVisit(tx));
   let failed: unknown;
   for (const lab of labs) {
@@ -69,8 +84,11 @@ async function sweep(services: Services): Promise<void> {
   });
   await inEveryLab(services, "sweeping", (lab) =>
     inLab(services.db, asWavekeep(lab), async (tx) => {
-      await tx.delete(idempotencyKeys).where(lt(idempotencyKeys.createdAt, sql`clock_timestamp() - interval '24 hours'`));
-      for (const id of await listWaitingMail(tx)) await services.jobs.send(tx, queues.deliverMail, { labId: lab.labId, id });
+      await tx
+        .delete(idempotencyKeys)
+        .where(lt(idempotencyKeys.createdAt, sql`clock_timestamp() - interval '24 hours'`));
+      for (const id of await listWaitingMail(tx))
+        await services.jobs.send(tx, queues.deliverMail, { labId: lab.labId, id });
     }),
   );
 }

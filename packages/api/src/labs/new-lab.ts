@@ -29,7 +29,9 @@ export async function openLab(
   const labId = newId();
   const token = newToken();
   const ctx = asWavekeep({ labId, isDemo: lab.isDemo ?? false, zone: lab.zone, statedNow: undefined });
-  await inLab(db, ctx, (tx) => createLab(tx, { id: labId, name: lab.name, zone: lab.zone, altitudeM: lab.altitudeM ?? null, isDemo: ctx.isDemo }));
+  await inLab(db, ctx, (tx) =>
+    createLab(tx, { id: labId, name: lab.name, zone: lab.zone, altitudeM: lab.altitudeM ?? null, isDemo: ctx.isDemo }),
+  );
   // A stated clock holds only once the lab is there and marked as a demo.
   const inTime = { ...ctx, statedNow: lab.statedNow };
   await inLab(db, inTime, async (tx) => {
@@ -47,7 +49,11 @@ export async function openLab(
     });
     const procedures = await addDefaultProcedures(tx, inTime);
     await writeTrail(tx, inTime, [
-      { action: "lab.created", about: { kind: "lab", id: labId, label: lab.name }, after: { zone: lab.zone, demo: ctx.isDemo } },
+      {
+        action: "lab.created",
+        about: { kind: "lab", id: labId, label: lab.name },
+        after: { zone: lab.zone, demo: ctx.isDemo },
+      },
       { action: "person.invited", about: { kind: "invitation", id, label: lab.email }, after: { roles: ["manager"] } },
       ...procedures,
     ]);
@@ -56,7 +62,9 @@ export async function openLab(
 }
 
 async function main(): Promise<void> {
-  const { values } = parseArgs({ options: { name: { type: "string" }, email: { type: "string" }, zone: { type: "string" } } });
+  const { values } = parseArgs({
+    options: { name: { type: "string" }, email: { type: "string" }, zone: { type: "string" } },
+  });
   const name = nameShape.safeParse(values.name ?? "");
   const email = emailShape.safeParse(values.email ?? "");
   const zone = values.zone ?? new Intl.DateTimeFormat().resolvedOptions().timeZone;
@@ -68,16 +76,23 @@ async function main(): Promise<void> {
     ownerUrl ? null : "DATABASE_OWNER_URL is not set: only the owner of the installation opens labs.",
   ].filter((line) => line !== null);
   if (wrong.length > 0 || !name.success || !email.success || !ownerUrl) {
-    process.stderr.write(`${wrong.join("\n")}\nFor example: npm run -s new-lab -- --name "Spectroscopy" --email manager@example.org --zone Europe/Berlin\n`);
+    process.stderr.write(
+      `${wrong.join("\n")}\nFor example: npm run -s new-lab -- --name "Spectroscopy" --email manager@example.org --zone Europe/Berlin\n`,
+    );
     process.exitCode = 1;
     return;
   }
   const db = openDatabase(ownerUrl, { max: 1 });
   try {
     const { token } = await openLab(db, { name: name.data, zone, email: email.data });
-    const publicUrl = (process.env["PUBLIC_URL"] ?? `http://127.0.0.1:${process.env["PORT"] ?? "4310"}`).replace(/\/$/, "");
+    const publicUrl = (process.env["PUBLIC_URL"] ?? `http://127.0.0.1:${process.env["PORT"] ?? "4310"}`).replace(
+      /\/$/,
+      "",
+    );
     process.stdout.write(`${publicUrl}/invitation/${token}\n`);
-    process.stderr.write(`The lab ${name.data} is open. The link above makes ${email.data} its manager; it can be used once, within two weeks.\n`);
+    process.stderr.write(
+      `The lab ${name.data} is open. The link above makes ${email.data} its manager; it can be used once, within two weeks.\n`,
+    );
   } finally {
     await db.close();
   }

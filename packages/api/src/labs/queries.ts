@@ -32,10 +32,14 @@ export interface VisitedLab {
 
 /** Every lab, for the ticks that ask what is due everywhere. */
 export async function listLabsToVisit(tx: Tx): Promise<VisitedLab[]> {
-  const { rows } = await tx.execute<{ lab_id: string; zone: string; is_demo: boolean }>(sql`select * from labs_to_visit()`);
+  const { rows } = await tx.execute<{ lab_id: string; zone: string; is_demo: boolean }>(
+    sql`select * from labs_to_visit()`,
+  );
   return rows.map((row) => ({ labId: row.lab_id, zone: row.zone, isDemo: row.is_demo }));
 }
 
 /** Open a lab: for the owner of the installation, and for the seeding role a demo one. */
-export const createLab = (tx: Tx, lab: { id: string; name: string; zone: string; altitudeM: number | null; isDemo: boolean }) =>
-  tx.execute(sql`select create_lab(${lab.id}, ${lab.name}, ${lab.zone}, ${lab.altitudeM}, ${lab.isDemo})`);
+export const createLab = (
+  tx: Tx,
+  lab: { id: string; name: string; zone: string; altitudeM: number | null; isDemo: boolean },
+) => tx.execute(sql`select create_lab(${lab.id}, ${lab.name}, ${lab.zone}, ${lab.altitudeM}, ${lab.isDemo})`);

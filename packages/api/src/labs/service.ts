@@ -35,16 +35,24 @@ export function isZone(zone: string): boolean {
   }
 }
 
-export function changeLab({ db, signer }: Services, ctx: Context, input: z.output<typeof changeLabInput>): Promise<LabSettings> {
+export function changeLab(
+  { db, signer }: Services,
+  ctx: Context,
+  input: z.output<typeof changeLabInput>,
+): Promise<LabSettings> {
   const { version, ...change } = input;
   if (!isZone(change.zone)) {
-    throw problem("invalid-input", `${change.zone} is no time zone that Wavekeep knows. Nothing was stored.`, { fields: [{ path: "zone", message: "Write it like Europe/Berlin." }] });
+    throw problem("invalid-input", `${change.zone} is no time zone that Wavekeep knows. Nothing was stored.`, {
+      fields: [{ path: "zone", message: "Write it like Europe/Berlin." }],
+    });
   }
   return inLab(db, ctx, async (tx) => {
     const stored = await lockLab(tx, ctx.labId);
     assertFresh(stored, { version }, "The lab's settings");
     const { headMail, ...open } = change;
-    const changed = (Object.keys(open) as (keyof typeof open)[]).filter((key) => canonicalText(stored[key]) !== canonicalText(open[key]));
+    const changed = (Object.keys(open) as (keyof typeof open)[]).filter(
+      (key) => canonicalText(stored[key]) !== canonicalText(open[key]),
+    );
     const mailChanged = stored.headMail !== headMail;
     if (changed.length === 0 && !mailChanged) return present(stored, signer.fingerprint);
     await saveLab(tx, ctx.labId, change);
@@ -52,7 +60,10 @@ export function changeLab({ db, signer }: Services, ctx: Context, input: z.outpu
     await writeTrail(tx, ctx, {
       action: "lab.changed",
       about: { kind: "lab", id: ctx.labId, label: change.name },
-      before: { ...pick(stored, changed), ...(mailChanged ? { headMail: stored.headMail === null ? "none" : "set" } : {}) },
+      before: {
+        ...pick(stored, changed),
+        ...(mailChanged ? { headMail: stored.headMail === null ? "none" : "set" } : {}),
+      },
       after: { ...pick(open, changed), ...(mailChanged ? { headMail: headMail === null ? "none" : "set anew" } : {}) },
       personal: mailChanged ? { headMailBefore: stored.headMail ?? "", headMailAfter: headMail ?? "" } : {},
     });
@@ -60,4 +71,5 @@ export function changeLab({ db, signer }: Services, ctx: Context, input: z.outpu
   });
 }
 
-const pick = <T extends object>(from: T, keys: readonly (keyof T)[]): Record<string, unknown> => Object.fromEntries(keys.map((key) => [key, from[key]]));
+const pick = <T extends object>(from: T, keys: readonly (keyof T)[]): Record<string, unknown> =>
+  Object.fromEntries(keys.map((key) => [key, from[key]]));

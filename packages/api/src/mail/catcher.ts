@@ -34,7 +34,13 @@ export async function openCatcher(): Promise<MailCatcher> {
       simpleParser(stream).then(
         (mail) => {
           const to = Array.isArray(mail.to) ? mail.to.map((address) => address.text).join(", ") : (mail.to?.text ?? "");
-          mails.unshift({ at: mail.date ?? new Date(), to, subject: mail.subject ?? "", text: mail.text ?? "", messageId: mail.messageId ?? "" });
+          mails.unshift({
+            at: mail.date ?? new Date(),
+            to,
+            subject: mail.subject ?? "",
+            text: mail.text ?? "",
+            messageId: mail.messageId ?? "",
+          });
           mails.length = Math.min(mails.length, KEPT);
           done();
         },
@@ -46,7 +52,11 @@ export async function openCatcher(): Promise<MailCatcher> {
   server.on("error", () => {});
   await new Promise<void>((resolve) => server.listen(0, "127.0.0.1", resolve));
   const { port } = server.server.address() as AddressInfo;
-  return { url: `smtp://127.0.0.1:${port}`, mails, close: () => new Promise((resolve) => server.close(() => resolve())) };
+  return {
+    url: `smtp://127.0.0.1:${port}`,
+    mails,
+    close: () => new Promise((resolve) => server.close(() => resolve())),
+  };
 }
 
 const escapeHtml = (text: string): string => text.replace(/[&<>"']/g, (sign) => `&#${sign.charCodeAt(0)};`);

@@ -22,7 +22,8 @@ export interface MailInput {
  * @returns false when the same cause was queued before, or the person is no member any more
  */
 export async function queueMail(tx: Tx, ctx: Context, jobs: Jobs, mail: MailInput): Promise<boolean> {
-  const to = "personId" in mail.to ? await addressOf(tx, ctx, mail.to.personId) : { personId: null, address: mail.to.address };
+  const to =
+    "personId" in mail.to ? await addressOf(tx, ctx, mail.to.personId) : { personId: null, address: mail.to.address };
   if (to === null) return false;
   const id = newId();
   const stored = await tx
@@ -45,7 +46,11 @@ export async function queueMail(tx: Tx, ctx: Context, jobs: Jobs, mail: MailInpu
   return true;
 }
 
-async function addressOf(tx: Tx, ctx: Context, personId: string): Promise<{ personId: string; address: string } | null> {
+async function addressOf(
+  tx: Tx,
+  ctx: Context,
+  personId: string,
+): Promise<{ personId: string; address: string } | null> {
   const [found] = await tx
     .select({ email: people.email, endedAt: memberships.endedAt })
     .from(memberships)

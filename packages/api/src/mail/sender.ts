@@ -38,7 +38,10 @@ export function openSender(db: Database, options: { smtpUrl: string; from: strin
               eq(mailOutbox.id, mailId),
               isNull(mailOutbox.sentAt),
               lt(mailOutbox.attempts, MOST_ATTEMPTS),
-              or(isNull(mailOutbox.claimedAt), lt(mailOutbox.claimedAt, new Date(now.getTime() - CLAIM_MINUTES * 60_000))),
+              or(
+                isNull(mailOutbox.claimedAt),
+                lt(mailOutbox.claimedAt, new Date(now.getTime() - CLAIM_MINUTES * 60_000)),
+              ),
             ),
           )
           .returning();
@@ -48,14 +51,27 @@ export function openSender(db: Database, options: { smtpUrl: string; from: strin
       const { mail, lab } = claimed;
       const ctx = asWavekeep({ labId, isDemo: lab.isDemo, zone: lab.zone });
       try {
-        await transport.sendMail({ to: mail.toAddress, subject: mail.subject, text: mail.text, messageId: mail.messageId, date: mail.queuedAt });
+        await transport.sendMail({
+          to: mail.toAddress,
+          subject: mail.subject,
+          text: mail.text,
+          messageId: mail.messageId,
+          date: mail.queuedAt,
+        });
       } catch (error) {
         await keepFailure(db, ctx, mail, error as Error);
         throw error;
       }
       await inLab(db, ctx, async (tx) => {
-        await tx.update(mailOutbox).set({ sentAt: await recordNow(tx), lastError: null }).where(eq(mailOutbox.id, mail.id));
-        await writeTrail(tx, ctx, { action: "mail.sent", about: { kind: "mail", id: mail.id, label: mail.toAddress }, after: { subject: mail.subject } });
+        await tx
+          .update(mailOutbox)
+          .set({ sentAt: await recordNow(tx), lastError: null })
+          .where(eq(mailOutbox.id, mail.id));
+        await writeTrail(tx, ctx, {
+          action: "mail.sent",
+          about: { kind: "mail", id: mail.id, label: mail.toAddress },
+          after: { subject: mail.subject },
+        });
       });
     },
   };
@@ -66,14 +82,28 @@ export async function listWaitingMail(tx: Tx): Promise<string[]> {
   const rows = await tx
     .select({ id: mailOutbox.id })
     .from(mailOutbox)
-    .where(and(isNull(mailOutbox.sentAt), lt(mailOutbox.attempts, MOST_ATTEMPTS), lt(mailOutbox.queuedAt, sql`clock_timestamp() - interval '30 minutes'`)))
+    .where(
+      and(
+        isNull(mailOutbox.sentAt),
+        lt(mailOutbox.attempts, MOST_ATTEMPTS),
+        lt(mailOutbox.queuedAt, sql`clock_timestamp() - interval '30 minutes'`),
+      ),
+    )
     .limit(500);
   return rows.map(({ id }) => id);
 }
 
-async function keepFailure(db: Database, ctx: Context, mail: typeof mailOutbox.$inferSelect, error: Error): Promise<void> {
+async function keepFailure(
+  db: Database,
+  ctx: Context,
+  mail: typeof mailOutbox.$inferSelect,
+  error: Error,
+): Promise<void> {
   await inLab(db, ctx, async (tx) => {
-    await tx.update(mailOutbox).set({ claimedAt: null, lastError: error.message.slice(0, 500) }).where(eq(mailOutbox.id, mail.id));
+    await tx
+      .update(mailOutbox)
+      .set({ claimedAt: null, lastError: error.message.slice(0, 500) })
+      .where(eq(mailOutbox.id, mail.id));
     if (mail.attempts < MOST_ATTEMPTS) return;
     await writeTrail(tx, ctx, {
       action: "mail.failed",

@@ -17,7 +17,19 @@ export const resetMail = ({ name, link }: { name: string; link: string }): MailT
   ),
 });
 
-export const invitationMail = ({ labName, invitedBy, roles, link, expiresOn }: { labName: string; invitedBy: string; roles: readonly string[]; link: string; expiresOn: string }): MailText => ({
+export const invitationMail = ({
+  labName,
+  invitedBy,
+  roles,
+  link,
+  expiresOn,
+}: {
+  labName: string;
+  invitedBy: string;
+  roles: readonly string[];
+  link: string;
+  expiresOn: string;
+}): MailText => ({
   subject: `${labName} invites you to Wavekeep`,
   text: letter(
     "Hello,",
@@ -28,12 +40,39 @@ export const invitationMail = ({ labName, invitedBy, roles, link, expiresOn }: {
   ),
 });
 
-export const rolesChangedMail = ({ name, labName, by, roles }: { name: string; labName: string; by: string; roles: readonly string[] }): MailText => ({
+export const rolesChangedMail = ({
+  name,
+  labName,
+  by,
+  roles,
+}: {
+  name: string;
+  labName: string;
+  by: string;
+  roles: readonly string[];
+}): MailText => ({
   subject: `Your roles in ${labName} changed`,
-  text: letter(`Hello ${name},`, `${by} changed what you may do in ${labName}: ${roles.length === 0 ? "no role of your own any more" : roles.join(" and ")}.`),
+  text: letter(
+    `Hello ${name},`,
+    `${by} changed what you may do in ${labName}: ${roles.length === 0 ? "no role of your own any more" : roles.join(" and ")}.`,
+  ),
 });
 
-export const headMail = ({ labName, number, hash, at, fingerprint, signature }: { labName: string; number: number; hash: string; at: string; fingerprint: string; signature: string }): MailText => ({
+export const headMail = ({
+  labName,
+  number,
+  hash,
+  at,
+  fingerprint,
+  signature,
+}: {
+  labName: string;
+  number: number;
+  hash: string;
+  at: string;
+  fingerprint: string;
+  signature: string;
+}): MailText => ({
   subject: `Head of the trail of ${labName}: entry ${number}`,
   text: letter(
     `The trail of ${labName} stood at entry ${number} on ${at}.`,

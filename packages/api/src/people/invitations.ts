@@ -15,10 +15,20 @@ export interface StatedClock {
   statedNow: Date;
 }
 
-async function findOpenOffer({ db }: Pick<Services, "db">, token: string, clock?: StatedClock): Promise<queries.OfferedRow> {
+async function findOpenOffer(
+  { db }: Pick<Services, "db">,
+  token: string,
+  clock?: StatedClock,
+): Promise<queries.OfferedRow> {
   const look = (tx: Parameters<typeof queries.findOffer>[0]) => queries.findOffer(tx, tokenHash(token));
-  const offer = await (clock === undefined ? inNoLab(db, null, look) : inLab(db, asWavekeep({ ...clock, isDemo: true, zone: "Etc/UTC" }), look));
-  if (offer === null) throw problem("not-found", "There is no such invitation. Check that the whole link was opened, or ask for a new one.");
+  const offer = await (clock === undefined
+    ? inNoLab(db, null, look)
+    : inLab(db, asWavekeep({ ...clock, isDemo: true, zone: "Etc/UTC" }), look));
+  if (offer === null)
+    throw problem(
+      "not-found",
+      "There is no such invitation. Check that the whole link was opened, or ask for a new one.",
+    );
   if (offer.state === "open") return offer;
   const sentences = {
     accepted: "This invitation was accepted already. Sign in instead.",
@@ -31,7 +41,13 @@ async function findOpenOffer({ db }: Pick<Services, "db">, token: string, clock?
 export async function readInvitation(services: Services, token: string, host: string) {
   await assertRate(services.db, limits.tokenFromHost(host));
   const offer = await findOpenOffer(services, token);
-  return { labName: offer.lab_name, email: offer.email, roles: knownRoles(offer.roles), invitedBy: offer.invited_by, knownPerson: offer.person_id !== null };
+  return {
+    labName: offer.lab_name,
+    email: offer.email,
+    roles: knownRoles(offer.roles),
+    invitedBy: offer.invited_by,
+    knownPerson: offer.person_id !== null,
+  };
 }
 
 /**
@@ -53,7 +69,9 @@ export async function acceptInvitation(
     const fit = passwordShape.safeParse(input.password);
     if (!fit.success) {
       const message = fit.error.issues[0]!.message;
-      throw problem("invalid-input", `The password needs another look: ${message} Nothing was stored.`, { fields: [{ path: "password", message }] });
+      throw problem("invalid-input", `The password needs another look: ${message} Nothing was stored.`, {
+        fields: [{ path: "password", message }],
+      });
     }
     newHash = await hashSecret(input.password);
   } else {
@@ -61,13 +79,22 @@ export async function acceptInvitation(
     await assertNotLocked(db, limit, "Signing in with this address");
     if (!(await secretFits(offer.password_hash, input.password))) {
       await countTry(db, limit);
-      throw problem("wrong-credentials", "You have a Wavekeep password already, and this is not it. Nothing was changed; a new one can be asked for on the sign-in page.", {
-        fields: [{ path: "password", message: "This is not your password." }],
-      });
+      throw problem(
+        "wrong-credentials",
+        "You have a Wavekeep password already, and this is not it. Nothing was changed; a new one can be asked for on the sign-in page.",
+        {
+          fields: [{ path: "password", message: "This is not your password." }],
+        },
+      );
     }
     await forgetTries(db, limit);
   }
-  const inItsLab = asWavekeep({ labId: offer.lab_id, isDemo: offer.is_demo, zone: offer.zone, statedNow: clock?.statedNow });
+  const inItsLab = asWavekeep({
+    labId: offer.lab_id,
+    isDemo: offer.is_demo,
+    zone: offer.zone,
+    statedNow: clock?.statedNow,
+  });
   return inLab(db, inItsLab, async (tx) => {
     const accepted = await queries.acceptOffer(tx, tokenHash(token), input.name, newHash);
     if (accepted === null) throw problem("gone", "This invitation is not open any more. Nothing was changed.");

@@ -3,7 +3,8 @@ import { role, type Role } from "../contract/common.ts";
 import type { Person } from "../contract/people.ts";
 import type { InvitationRow, MemberRow, listDeputies } from "./queries.ts";
 
-export const knownRoles = (stored: readonly string[]): Role[] => stored.filter((text): text is Role => role.safeParse(text).success);
+export const knownRoles = (stored: readonly string[]): Role[] =>
+  stored.filter((text): text is Role => role.safeParse(text).success);
 
 export function presentPerson(
   member: MemberRow,
@@ -31,12 +32,22 @@ export function presentPerson(
 const WAVEKEEP = { id: "00000000-0000-7000-8000-000000000000", name: "Wavekeep" };
 
 export function presentInvitation(row: InvitationRow, now: Date) {
-  const state = row.acceptedAt !== null ? "accepted" : row.withdrawnAt !== null ? "withdrawn" : row.expiresAt <= now ? "expired" : "open";
+  const state =
+    row.acceptedAt !== null
+      ? "accepted"
+      : row.withdrawnAt !== null
+        ? "withdrawn"
+        : row.expiresAt <= now
+          ? "expired"
+          : "open";
   return {
     id: row.id,
     email: row.email,
     roles: knownRoles(row.roles),
-    invitedBy: row.invitedById === null || row.invitedByName === null ? WAVEKEEP : { id: row.invitedById, name: row.invitedByName },
+    invitedBy:
+      row.invitedById === null || row.invitedByName === null
+        ? WAVEKEEP
+        : { id: row.invitedById, name: row.invitedByName },
     invitedAt: row.invitedAt.toISOString(),
     expiresAt: row.expiresAt.toISOString(),
     state: state as "open" | "accepted" | "withdrawn" | "expired",

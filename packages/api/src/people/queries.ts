@@ -29,7 +29,8 @@ const memberColumns = {
   version: memberships.version,
 };
 
-const members = (tx: Tx) => tx.select(memberColumns).from(memberships).innerJoin(people, eq(people.id, memberships.personId));
+const members = (tx: Tx) =>
+  tx.select(memberColumns).from(memberships).innerJoin(people, eq(people.id, memberships.personId));
 
 /** Members past and present, by name. */
 export const listMembers = (tx: Tx): Promise<MemberRow[]> => members(tx).orderBy(asc(people.name), asc(people.id));
@@ -41,12 +42,17 @@ export async function findOptionalMember(tx: Tx, personId: string): Promise<Memb
 
 /** The member's row, locked until the transaction ends. */
 export async function lockMember(tx: Tx, personId: string): Promise<MemberRow | null> {
-  await tx.select({ id: memberships.personId }).from(memberships).where(eq(memberships.personId, personId)).for("update");
+  await tx
+    .select({ id: memberships.personId })
+    .from(memberships)
+    .where(eq(memberships.personId, personId))
+    .for("update");
   return findOptionalMember(tx, personId);
 }
 
 /** Changes of who manages a lab go one after the other: two managers cannot remove each other at once. */
-export const lockManagers = (tx: Tx, labId: string) => tx.execute(sql`select pg_advisory_xact_lock(hashtextextended(${`managers:${labId}`}, 0))`);
+export const lockManagers = (tx: Tx, labId: string) =>
+  tx.execute(sql`select pg_advisory_xact_lock(hashtextextended(${`managers:${labId}`}, 0))`);
 
 /** Managers other than this person whose membership stands. */
 export async function countOtherManagers(tx: Tx, personId: string): Promise<number> {
@@ -79,12 +85,19 @@ export const listOwned = (tx: Tx): Promise<{ id: string; name: string; ownerId: 
 const principal = alias(people, "principal");
 export const listDeputies = (tx: Tx) =>
   tx
-    .select({ personId: deputies.personId, fromOn: deputies.fromOn, toOn: deputies.toOn, forId: principal.id, forName: principal.name })
+    .select({
+      personId: deputies.personId,
+      fromOn: deputies.fromOn,
+      toOn: deputies.toOn,
+      forId: principal.id,
+      forName: principal.name,
+    })
     .from(deputies)
     .innerJoin(principal, eq(principal.id, deputies.forPersonId))
     .orderBy(desc(deputies.toOn));
 
-export const saveDeputy = (tx: Tx, row: Omit<typeof deputies.$inferInsert, "id">) => tx.insert(deputies).values({ id: newId(), ...row });
+export const saveDeputy = (tx: Tx, row: Omit<typeof deputies.$inferInsert, "id">) =>
+  tx.insert(deputies).values({ id: newId(), ...row });
 
 const inviter = alias(people, "inviter");
 const invitationColumns = {
@@ -101,17 +114,30 @@ const invitationColumns = {
 export type InvitationRow = Awaited<ReturnType<typeof listInvitations>>[number];
 
 export const listInvitations = (tx: Tx) =>
-  tx.select(invitationColumns).from(invitations).leftJoin(inviter, eq(inviter.id, invitations.invitedBy)).orderBy(desc(invitations.invitedAt)).limit(200);
+  tx
+    .select(invitationColumns)
+    .from(invitations)
+    .leftJoin(inviter, eq(inviter.id, invitations.invitedBy))
+    .orderBy(desc(invitations.invitedAt))
+    .limit(200);
 
 export async function findOptionalInvitation(tx: Tx, invitationId: string): Promise<InvitationRow | null> {
-  const [row] = await tx.select(invitationColumns).from(invitations).leftJoin(inviter, eq(inviter.id, invitations.invitedBy)).where(eq(invitations.id, invitationId));
+  const [row] = await tx
+    .select(invitationColumns)
+    .from(invitations)
+    .leftJoin(inviter, eq(inviter.id, invitations.invitedBy))
+    .where(eq(invitations.id, invitationId));
   return row ?? null;
 }
 
 export const saveInvitation = (tx: Tx, row: typeof invitations.$inferInsert) => tx.insert(invitations).values(row);
 
 /** Withdraw open invitations: one by its id, or all of an address. @returns how many were open */
-export async function withdrawInvitations(tx: Tx, which: { id: string } | { email: string }, at: Date): Promise<number> {
+export async function withdrawInvitations(
+  tx: Tx,
+  which: { id: string } | { email: string },
+  at: Date,
+): Promise<number> {
   const rows = await tx
     .update(invitations)
     .set({ withdrawnAt: at })
@@ -135,7 +161,14 @@ export async function isMemberByEmail(tx: Tx, email: string): Promise<boolean> {
 const enroller = alias(people, "enroller");
 export const listBenchDevices = (tx: Tx) =>
   tx
-    .select({ id: benchDevices.id, name: benchDevices.name, enrolledAt: benchDevices.enrolledAt, lastUsedAt: benchDevices.lastUsedAt, byId: enroller.id, byName: enroller.name })
+    .select({
+      id: benchDevices.id,
+      name: benchDevices.name,
+      enrolledAt: benchDevices.enrolledAt,
+      lastUsedAt: benchDevices.lastUsedAt,
+      byId: enroller.id,
+      byName: enroller.name,
+    })
     .from(benchDevices)
     .innerJoin(enroller, eq(enroller.id, benchDevices.enrolledBy))
     .where(isNull(benchDevices.removedAt))
@@ -177,10 +210,19 @@ export async function findOffer(tx: Tx, tokenHash: string): Promise<OfferedRow |
 }
 
 /** Accept it: the person is made if need be, the membership begins; the transaction then works in that lab. */
-export async function acceptOffer(tx: Tx, tokenHash: string, name: string, passwordHash: string | null): Promise<{ personId: string; labId: string } | null> {
-  const { rows } = await tx.execute<{ person_id: string; lab_id: string }>(sql`select * from accept_invitation(${tokenHash}, ${name}, ${passwordHash})`);
+export async function acceptOffer(
+  tx: Tx,
+  tokenHash: string,
+  name: string,
+  passwordHash: string | null,
+): Promise<{ personId: string; labId: string } | null> {
+  const { rows } = await tx.execute<{ person_id: string; lab_id: string }>(
+    sql`select * from accept_invitation(${tokenHash}, ${name}, ${passwordHash})`,
+  );
   const row = rows[0];
   if (row === undefined) return null;
-  await tx.execute(sql`select set_config('app.lab', ${row.lab_id}, true), set_config('app.person', ${row.person_id}, true)`);
+  await tx.execute(
+    sql`select set_config('app.lab', ${row.lab_id}, true), set_config('app.person', ${row.person_id}, true)`,
+  );
   return { personId: row.person_id, labId: row.lab_id };
 }

@@ -17,9 +17,13 @@ export function mountPeople(api: Api, services: Services): void {
 
   mount(api, routes.listPeople, ({ ctx }) => service.listPeople(services, ctx));
   mount(api, routes.invite, ({ ctx, body }) => service.invite(services, ctx, body));
-  mount(api, routes.withdrawInvitation, ({ ctx, params }) => service.withdrawInvitation(services, ctx, params.invitationId));
+  mount(api, routes.withdrawInvitation, ({ ctx, params }) =>
+    service.withdrawInvitation(services, ctx, params.invitationId),
+  );
   mount(api, routes.changeRoles, ({ ctx, params, body }) => service.changeRoles(services, ctx, params.personId, body));
-  mount(api, routes.endMembership, ({ ctx, params, body }) => service.endMembership(services, ctx, params.personId, body));
+  mount(api, routes.endMembership, ({ ctx, params, body }) =>
+    service.endMembership(services, ctx, params.personId, body),
+  );
   mount(api, routes.appointDeputy, ({ ctx, body }) => service.appointDeputy(services, ctx, body));
 
   mount(api, routes.enrolBench, async ({ ctx, body, http }) => {

@@ -17,4 +17,5 @@ export function canonicalText(value: unknown): string {
 export const sha256Hex = (content: string | Uint8Array): string => createHash("sha256").update(content).digest("hex");
 
 /** What an entry holds in place of a name or an address: HMAC-SHA-256 with the entry's own salt, hex. */
-export const personalHash = (salt: string, value: string): string => createHmac("sha256", salt).update(value).digest("hex");
+export const personalHash = (salt: string, value: string): string =>
+  createHmac("sha256", salt).update(value).digest("hex");

@@ -48,7 +48,8 @@ export function presentEntry(row: EntryRow): TrailEntry {
 /** Digits in threes with narrow no-break spaces. */
 const grouped = (count: number): string => String(count).replace(/\B(?=(\d{3})+$)/g, "\u202f");
 
-const dateIn = (zone: string, at: Date): string => new Intl.DateTimeFormat("en-GB", { timeZone: zone, day: "numeric", month: "long", year: "numeric" }).format(at);
+const dateIn = (zone: string, at: Date): string =>
+  new Intl.DateTimeFormat("en-GB", { timeZone: zone, day: "numeric", month: "long", year: "numeric" }).format(at);
 
 export function chainSentence(chain: VerifiedChain, zone: string): string {
   if (chain.entryCount === 0 || chain.firstAt === null) return "The trail is empty.";

@@ -17,7 +17,8 @@ export interface EntryFilter {
 }
 
 /** Start of a date in a zone; the day after for its end. */
-const startOf = (date: string, zone: string, days = 0) => sql`((${date}::date + ${days}::int)::timestamp at time zone ${zone})`;
+const startOf = (date: string, zone: string, days = 0) =>
+  sql`((${date}::date + ${days}::int)::timestamp at time zone ${zone})`;
 
 function conditions(filter: EntryFilter, zone: string): SQL | undefined {
   const { kind } = filter;
@@ -25,7 +26,11 @@ function conditions(filter: EntryFilter, zone: string): SQL | undefined {
     filter.personId === undefined ? undefined : eq(trailEntries.personId, filter.personId),
     filter.instrumentId === undefined ? undefined : eq(trailEntries.instrumentId, filter.instrumentId),
     filter.checkId === undefined ? undefined : eq(trailEntries.checkId, filter.checkId),
-    kind === undefined ? undefined : kind.includes(".") ? eq(trailEntries.action, kind) : like(trailEntries.action, `${kind.replace(/[\\%_]/g, "\\$&")}.%`),
+    kind === undefined
+      ? undefined
+      : kind.includes(".")
+        ? eq(trailEntries.action, kind)
+        : like(trailEntries.action, `${kind.replace(/[\\%_]/g, "\\$&")}.%`),
     filter.fromOn === undefined ? undefined : gte(trailEntries.at, startOf(filter.fromOn, zone)),
     filter.toOn === undefined ? undefined : lt(trailEntries.at, startOf(filter.toOn, zone, 1)),
     filter.below === undefined ? undefined : lt(trailEntries.number, filter.below),
@@ -56,7 +61,10 @@ const entries = (tx: Tx) =>
   tx
     .select(entryColumns)
     .from(trailEntries)
-    .leftJoin(trailPersonal, and(eq(trailPersonal.labId, trailEntries.labId), eq(trailPersonal.number, trailEntries.number)));
+    .leftJoin(
+      trailPersonal,
+      and(eq(trailPersonal.labId, trailEntries.labId), eq(trailPersonal.number, trailEntries.number)),
+    );
 
 export type EntryRow = Awaited<ReturnType<typeof listEntriesAbove>>[number];
 
@@ -76,7 +84,9 @@ export async function listDays(tx: Tx, zone: string): Promise<{ on: string; coun
 }
 
 export async function listKinds(tx: Tx): Promise<string[]> {
-  const { rows } = await tx.execute<{ kind: string }>(sql`select distinct split_part(action, '.', 1) as kind from trail_entries order by 1`);
+  const { rows } = await tx.execute<{ kind: string }>(
+    sql`select distinct split_part(action, '.', 1) as kind from trail_entries order by 1`,
+  );
   return rows.map(({ kind }) => kind);
 }
 
@@ -90,10 +100,16 @@ export async function hashRowsNow(tx: Tx, rows: readonly { table: string; id: st
   return found.map(({ sha256 }) => sha256);
 }
 
-export const listSignedHeads = (tx: Tx) => tx.select().from(signedHeads).orderBy(asc(signedHeads.number), asc(signedHeads.signedAt));
+export const listSignedHeads = (tx: Tx) =>
+  tx.select().from(signedHeads).orderBy(asc(signedHeads.number), asc(signedHeads.signedAt));
 
 export async function findOptionalLastDailyHead(tx: Tx) {
-  const [row] = await tx.select().from(signedHeads).where(eq(signedHeads.cause, "daily")).orderBy(desc(signedHeads.number)).limit(1);
+  const [row] = await tx
+    .select()
+    .from(signedHeads)
+    .where(eq(signedHeads.cause, "daily"))
+    .orderBy(desc(signedHeads.number))
+    .limit(1);
   return row ?? null;
 }
 
@@ -109,7 +125,10 @@ export async function findOptionalLastEntry(tx: Tx): Promise<{ number: number; h
 /** Hash of the entries with these numbers. */
 export async function listHashes(tx: Tx, numbers: readonly number[]): Promise<Map<number, string>> {
   if (numbers.length === 0) return new Map();
-  const rows = await tx.select({ number: trailEntries.number, hash: trailEntries.hash }).from(trailEntries).where(inArray(trailEntries.number, [...numbers]));
+  const rows = await tx
+    .select({ number: trailEntries.number, hash: trailEntries.hash })
+    .from(trailEntries)
+    .where(inArray(trailEntries.number, [...numbers]));
   return new Map(rows.map(({ number, hash }) => [number, hash]));
 }
 

@@ -18,19 +18,29 @@ export interface SentenceFacts {
 type Sentence = (facts: SentenceFacts) => string;
 
 const text = (value: unknown): string =>
-  value === null || value === undefined || value === "" ? "none" : Array.isArray(value) ? value.map(text).join(", ") : typeof value === "object" ? JSON.stringify(value) : String(value);
+  value === null || value === undefined || value === ""
+    ? "none"
+    : Array.isArray(value)
+      ? value.map(text).join(", ")
+      : typeof value === "object"
+        ? JSON.stringify(value)
+        : String(value);
 const because = (why: string | null): string => (why === null || why === "" ? "" : `: “${why}”`);
 /** A finding of Wavekeep's own, not quoted. */
 const stated = (why: string | null): string => (why === null || why === "" ? "" : `: ${why.replace(/\.$/, "")}`);
 const forOwner = (after: Record<string, unknown>): string => (after["forOwner"] === true ? ", for the owner" : "");
 const verdict = (after: Record<string, unknown>): string =>
-  ({ pass: after["nearLimit"] === true ? "in tolerance, near the limit" : "in tolerance", inconclusive: "inconclusive", fail: "out of tolerance" })[
-    text(after["verdict"])
-  ] ?? "not judged";
+  ({
+    pass: after["nearLimit"] === true ? "in tolerance, near the limit" : "in tolerance",
+    inconclusive: "inconclusive",
+    fail: "out of tolerance",
+  })[text(after["verdict"])] ?? "not judged";
 const leftOut = ({ leftOut: count }: Record<string, unknown>): string =>
   typeof count !== "number" || count === 0 ? "nothing left out" : plural(count, "line left out", "lines left out");
-const list = (value: unknown): string => (Array.isArray(value) && value.length > 0 ? value.map(text).join(", ") : "no role");
-const plural = (value: unknown, one: string, many: string): string => (value === 1 ? `1 ${one}` : `${text(value)} ${many}`);
+const list = (value: unknown): string =>
+  Array.isArray(value) && value.length > 0 ? value.map(text).join(", ") : "no role";
+const plural = (value: unknown, one: string, many: string): string =>
+  value === 1 ? `1 ${one}` : `${text(value)} ${many}`;
 
 /** Units that names end in, as people read them. */
 const units: Record<string, string> = { Nm: "nm", M: "m", Px: "px", C: "°C", Hpa: "hPa" };
@@ -60,19 +70,22 @@ export const sentences: Record<TrailAction, Sentence> = {
   "person.invited": ({ label, after }) => `invited ${label} as ${list(after["roles"])}`,
   "invitation.accepted": ({ after }) => `accepted the invitation as ${list(after["roles"])}`,
   "invitation.withdrawn": ({ label }) => `withdrew the invitation of ${label}`,
-  "roles.changed": (f) => `changed what ${f.label} may do: ${list(f.before["roles"])} became ${list(f.after["roles"])}${approver(f)}`,
+  "roles.changed": (f) =>
+    `changed what ${f.label} may do: ${list(f.before["roles"])} became ${list(f.after["roles"])}${approver(f)}`,
   "membership.ended": ({ label, why }) => `ended the membership of ${label}${because(why)}`,
   "deputy.appointed": ({ label, personal, after }) =>
     `appointed ${label} deputy for ${personal["forPerson"] ?? "—"} from ${text(after["fromOn"])} to ${text(after["toOn"])}`,
   "bench.enrolled": ({ label }) => `enrolled ${label} as a shared PC`,
   "bench.removed": ({ label }) => `ended bench mode on ${label}`,
-  "session.begun": ({ after }) => (after["bench"] === undefined ? "signed in" : `signed in at the shared PC ${text(after["bench"])}`),
+  "session.begun": ({ after }) =>
+    after["bench"] === undefined ? "signed in" : `signed in at the shared PC ${text(after["bench"])}`,
   "session.refused": ({ label, why }) => `refused a sign-in of ${label}${because(why)}`,
   "session.ended-everywhere": () => "signed out on every device",
   "password.changed": () => "changed the password",
   "password.reset-asked": ({ label }) => `sent ${label} a link for a new password`,
   "pin.changed": () => "set a PIN for bench mode",
-  "name.changed": ({ personal }) => `changed the printed name from ${personal["nameBefore"] ?? "—"} to ${personal["nameAfter"] ?? "—"}`,
+  "name.changed": ({ personal }) =>
+    `changed the printed name from ${personal["nameBefore"] ?? "—"} to ${personal["nameAfter"] ?? "—"}`,
   "action.refused": ({ label, why }) => `was refused: ${label}${because(why)}`,
 
   "instrument.registered": ({ label }) => `registered ${label}`,
@@ -81,12 +94,15 @@ export const sentences: Record<TrailAction, Sentence> = {
   "configuration.begun": ({ label, why }) => `began a configuration of ${label}${because(why)}`,
   "configuration.changed": (f) => `changed the configuration of ${f.label}${changes(f)}`,
   "tolerance.changed": ({ label, why }) => `set a new tolerance for ${label}${because(why)}`,
-  "standing.changed": ({ label, before, after, why }) => `moved ${label} from ${text(before["standing"])} to ${text(after["standing"])}${because(why)}`,
+  "standing.changed": ({ label, before, after, why }) =>
+    `moved ${label} from ${text(before["standing"])} to ${text(after["standing"])}${because(why)}`,
   "hold.placed": ({ label, why }) => `put ${label} on hold${stated(why)}; a manager confirms or lifts it`,
-  "hold.confirmed": ({ label, after, why }) => `confirmed the hold on ${label}: ${text(after["standing"])}${because(why)}`,
+  "hold.confirmed": ({ label, after, why }) =>
+    `confirmed the hold on ${label}: ${text(after["standing"])}${because(why)}`,
   "hold.lifted": ({ label, why }) => `lifted the hold on ${label}${because(why)}`,
   "hold.ended": ({ label, why }) => `put ${label} back in service${stated(why)}`,
-  "due.moved": ({ label, before, after, why }) => `moved the next check of ${label} from ${text(before["dueOn"])} to ${text(after["dueOn"])}${because(why)}`,
+  "due.moved": ({ label, before, after, why }) =>
+    `moved the next check of ${label} from ${text(before["dueOn"])} to ${text(after["dueOn"])}${because(why)}`,
   "event.logged": ({ label, after }) => `logged for ${label}: ${text(after["title"])}`,
   "axis.entered": ({ label, after }) => `entered axis ${text(after["number"])} of ${label}`,
 
@@ -98,19 +114,25 @@ export const sentences: Record<TrailAction, Sentence> = {
   "procedure.approved": ({ label, after }) => `put the procedure ${label} version ${text(after["version"])} in force`,
   "line-list.added": ({ label }) => `added line list ${label}`,
 
-  "check.begun": ({ label, after }) => `began check ${label}${after["condition"] === undefined ? "" : `, ${text(after["condition"])}`}`,
+  "check.begun": ({ label, after }) =>
+    `began check ${label}${after["condition"] === undefined ? "" : `, ${text(after["condition"])}`}`,
   "captures.stored": ({ label, after }) =>
     `brought in ${plural(after["count"], "capture", "captures")} for ${label}${after["part"] === "dark" ? ", dark" : ""}, attempt ${text(after["attempt"])}; stored byte for byte before anything was read`,
-  "attempt.begun": ({ label, after, why }) => `abandoned an attempt of ${label} and began attempt ${text(after["attempt"])}${because(why)}`,
-  "analysis.made": ({ label, after }) => `analysed ${label}, version ${text(after["version"])}: ${after["verdict"] === null ? text(after["outcome"]) : verdict(after)}`,
+  "attempt.begun": ({ label, after, why }) =>
+    `abandoned an attempt of ${label} and began attempt ${text(after["attempt"])}${because(why)}`,
+  "analysis.made": ({ label, after }) =>
+    `analysed ${label}, version ${text(after["version"])}: ${after["verdict"] === null ? text(after["outcome"]) : verdict(after)}`,
   "line.left-out": ({ label, after, why }) =>
     `left out ${after["species"] ? `${text(after["species"])} ` : "the line at "}${text(after["wavelengthNm"])}\u202fnm in ${label}, ${text(after["reason"])}${because(why)}`,
-  "line.brought-back": ({ label, before }) => `took the line at ${text(before["wavelengthNm"])}\u202fnm back into ${label}`,
+  "line.brought-back": ({ label, before }) =>
+    `took the line at ${text(before["wavelengthNm"])}\u202fnm back into ${label}`,
   "draft.changed": (f) => `changed the draft of ${f.label}${changes(f)}`,
   "check.set-aside": ({ label, why }) => `set ${label} aside${because(why)}`,
-  "check.submitted": ({ label, after }) => `signed ${label} “made by” and submitted it: ${verdict(after)}; ${leftOut(after)}`,
+  "check.submitted": ({ label, after }) =>
+    `signed ${label} “made by” and submitted it: ${verdict(after)}; ${leftOut(after)}`,
   "check.returned": ({ label, why }) => `sent ${label} back${because(why)}`,
-  "check.approved": ({ label, after }) => `signed ${label} “reviewed and approved”: ${verdict(after)}${after["selfApproval"] === true ? ", a self-approval" : ""}; the record is locked`,
+  "check.approved": ({ label, after }) =>
+    `signed ${label} “reviewed and approved”: ${verdict(after)}${after["selfApproval"] === true ? ", a self-approval" : ""}; the record is locked`,
   "check.acknowledged": ({ label, after, why }) => `took note of ${label}${forOwner(after)}${because(why)}`,
   "check.voided": ({ label, why }) => `voided ${label}${because(why)}`,
   "as-left.asked": ({ label }) => `asked for an as-left check of ${label}`,

@@ -17,7 +17,8 @@ import { verifyChain } from "./verify.ts";
 export function listTrail({ db }: Services, ctx: Context, query: z.output<typeof trailQuery>) {
   const { after, limit, ...filter } = query;
   const below = after === undefined ? undefined : Number(after);
-  if (below !== undefined && (!Number.isSafeInteger(below) || below < 1)) throw problem("invalid-input", "This page of the trail does not exist. Begin at the newest entry.");
+  if (below !== undefined && (!Number.isSafeInteger(below) || below < 1))
+    throw problem("invalid-input", "This page of the trail does not exist. Begin at the newest entry.");
   return inLab(db, ctx, async (tx) => {
     const rows = await queries.listEntries(tx, { ...filter, below }, ctx.zone, limit + 1);
     const shown = rows.slice(0, limit);
@@ -33,7 +34,12 @@ export async function readChain({ db, signer }: Services, ctx: Context) {
   const chain = await verifyChain(db, ctx, signer);
   return inLab(db, ctx, async (tx) => {
     const counts = await queries.countChecksAndAttempts(tx);
-    return presentChain(chain, { zone: ctx.zone, checkedAt: await recordNow(tx), keyFingerprint: signer.fingerprint, ...counts });
+    return presentChain(chain, {
+      zone: ctx.zone,
+      checkedAt: await recordNow(tx),
+      keyFingerprint: signer.fingerprint,
+      ...counts,
+    });
   });
 }
 
@@ -50,9 +56,12 @@ export function signDailyHead(services: Services, lab: Parameters<typeof asWavek
     const now = await recordNow(tx);
     const today = dayOf(now, ctx.zone);
     const [head, last] = [await queries.findOptionalLastEntry(tx), await queries.findOptionalLastDailyHead(tx)];
-    if (head === null || (last !== null && (dayOf(last.signedAt, ctx.zone) === today || last.number >= head.number))) return false;
+    if (head === null || (last !== null && (dayOf(last.signedAt, ctx.zone) === today || last.number >= head.number)))
+      return false;
     const row = await findLab(tx, ctx.labId);
-    const managers = (await listMembers(tx)).filter((member) => member.endedAt === null && member.roles.includes("manager"));
+    const managers = (await listMembers(tx)).filter(
+      (member) => member.endedAt === null && member.roles.includes("manager"),
+    );
     const mail = headMail({
       labName: row.name,
       number: head.number,
@@ -61,8 +70,14 @@ export function signDailyHead(services: Services, lab: Parameters<typeof asWavek
       fingerprint: signer.fingerprint,
       signature: signer.sign(ctx.labId, head.number, head.hash),
     });
-    for (const manager of managers) await queueMail(tx, ctx, jobs, { to: { personId: manager.id }, ...mail, causeKey: `head:${today}:${manager.id}` });
-    if (row.headMail !== null) await queueMail(tx, ctx, jobs, { to: { address: row.headMail }, ...mail, causeKey: `head:${today}:outside` });
+    for (const manager of managers)
+      await queueMail(tx, ctx, jobs, {
+        to: { personId: manager.id },
+        ...mail,
+        causeKey: `head:${today}:${manager.id}`,
+      });
+    if (row.headMail !== null)
+      await queueMail(tx, ctx, jobs, { to: { address: row.headMail }, ...mail, causeKey: `head:${today}:outside` });
     const written = await writeTrail(tx, ctx, {
       action: "head.signed",
       about: { kind: "head", id: head.hash, label: `entry ${head.number}` },
@@ -74,4 +89,5 @@ export function signDailyHead(services: Services, lab: Parameters<typeof asWavek
 }
 
 /** Date in a zone, yyyy-mm-dd. */
-const dayOf = (at: Date, zone: string): string => new Intl.DateTimeFormat("en-CA", { timeZone: zone, year: "numeric", month: "2-digit", day: "2-digit" }).format(at);
+const dayOf = (at: Date, zone: string): string =>
+  new Intl.DateTimeFormat("en-CA", { timeZone: zone, year: "numeric", month: "2-digit", day: "2-digit" }).format(at);

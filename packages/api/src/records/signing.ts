@@ -2,7 +2,15 @@
  * Signing heads of the chain: Ed25519 (RFC 8032) with a key that the database does not hold. Who recomputes a chain from
  * the start can make its hashes fit, but not these signatures.
  */
-import { createHash, createPrivateKey, createPublicKey, generateKeyPairSync, sign, verify, type KeyObject } from "node:crypto";
+import {
+  createHash,
+  createPrivateKey,
+  createPublicKey,
+  generateKeyPairSync,
+  sign,
+  verify,
+  type KeyObject,
+} from "node:crypto";
 import fs from "node:fs";
 import path from "node:path";
 import { canonicalText } from "./canonical.ts";
@@ -27,7 +35,8 @@ const fingerprintOf = (key: KeyObject): string =>
 /** A signer from a PEM private key (PKCS 8). @throws when it is no Ed25519 key */
 export function signerFromPem(pem: string): HeadSigner {
   const privateKey = createPrivateKey(pem);
-  if (privateKey.asymmetricKeyType !== "ed25519") throw new Error("The signing key must be an Ed25519 private key in PEM form.");
+  if (privateKey.asymmetricKeyType !== "ed25519")
+    throw new Error("The signing key must be an Ed25519 private key in PEM form.");
   const publicKey = createPublicKey(privateKey);
   return {
     fingerprint: fingerprintOf(publicKey),
@@ -57,9 +66,14 @@ export function openSigningKey(file: string): HeadSigner {
 }
 
 /** Whether a stored signature fits its head and the key's fingerprint fits the key. */
-export function isSignedHeadValid(
-  head: { labId: string; number: number; hash: string; publicKey: string; keyFingerprint: string; signature: string },
-): boolean {
+export function isSignedHeadValid(head: {
+  labId: string;
+  number: number;
+  hash: string;
+  publicKey: string;
+  keyFingerprint: string;
+  signature: string;
+}): boolean {
   try {
     const key = createPublicKey(head.publicKey);
     return (

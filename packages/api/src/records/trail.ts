@@ -28,9 +28,26 @@ export const CHAIN_START = "0".repeat(64);
 /** The record an entry speaks of. A person's label is treated as personal data by itself. */
 export interface TrailSubject {
   kind:
-    | "lab" | "person" | "invitation" | "bench-device" | "instrument" | "configuration" | "event" | "source"
-    | "line-list" | "procedure" | "check" | "capture" | "analysis" | "axis" | "alert" | "impact-review" | "report"
-    | "mail" | "head" | "route";
+    | "lab"
+    | "person"
+    | "invitation"
+    | "bench-device"
+    | "instrument"
+    | "configuration"
+    | "event"
+    | "source"
+    | "line-list"
+    | "procedure"
+    | "check"
+    | "capture"
+    | "analysis"
+    | "axis"
+    | "alert"
+    | "impact-review"
+    | "report"
+    | "mail"
+    | "head"
+    | "route";
   id: string;
   /** As people call it: an instrument's name, a check's number. */
   label: string;
@@ -116,7 +133,8 @@ export async function writeTrail(
   });
   await tx.insert(trailEntries).values(entries);
   if (personals.length > 0) await tx.insert(trailPersonal).values(personals);
-  if (options.signWith !== undefined) await storeSignedHead(tx, ctx.labId, { number, hash, at }, options.signWith, "signature");
+  if (options.signWith !== undefined)
+    await storeSignedHead(tx, ctx.labId, { number, hash, at }, options.signWith, "signature");
   await keepRequestKey(tx, ctx, at);
   return { number, hash, at };
 }
@@ -148,7 +166,9 @@ async function hashRows(tx: Tx, inputs: readonly TrailInput[]): Promise<TrailDoc
   for (const input of inputs) {
     const hashed: TrailDocument["rows"] = [];
     for (const { table, id } of input.rows ?? []) {
-      const { rows } = await tx.execute<{ sha256: string | null }>(sql`select row_sha256(${table}, ${id}::uuid) as sha256`);
+      const { rows } = await tx.execute<{ sha256: string | null }>(
+        sql`select row_sha256(${table}, ${id}::uuid) as sha256`,
+      );
       const sha256 = rows[0]?.sha256;
       if (typeof sha256 !== "string") throw new Error(`The trail names ${table} ${id}, which is not there.`);
       hashed.push({ table, id, sha256 });
@@ -245,6 +265,7 @@ async function keepRequestKey(tx: Tx, ctx: Context, at: Date): Promise<void> {
       setWhere: sql`${idempotencyKeys.createdAt} < clock_timestamp() - interval '24 hours'`,
     })
     .returning({ key: idempotencyKeys.key });
-  if (kept.length === 0) throw problem("repeated-request", "This was sent before and has been carried out. Reload the page to see it.");
+  if (kept.length === 0)
+    throw problem("repeated-request", "This was sent before and has been carried out. Reload the page to see it.");
   claim.claimed = true;
 }

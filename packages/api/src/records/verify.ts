@@ -34,7 +34,11 @@ const BATCH = 500;
 /** Once a chain is broken, the first places tell what happened; a thousand more tell nothing new. */
 const MOST_BREAKS = 50;
 
-export async function verifyChain(db: Database, ctx: Context, signer: Pick<HeadSigner, "fingerprint">): Promise<VerifiedChain> {
+export async function verifyChain(
+  db: Database,
+  ctx: Context,
+  signer: Pick<HeadSigner, "fingerprint">,
+): Promise<VerifiedChain> {
   const breaks: ChainBreak[] = [];
   const note = (number: number, what: string) => void (breaks.length < MOST_BREAKS && breaks.push({ number, what }));
   let [number, head, entryCount] = [0, CHAIN_START, 0];
@@ -49,7 +53,13 @@ export async function verifyChain(db: Database, ctx: Context, signer: Pick<HeadS
     let nextHash = 0;
     batch.rows.forEach((row, index) => {
       const document = batch.documents[index] ?? null;
-      if (row.number !== number + 1) note(row.number, row.number === number + 2 ? `entry ${number + 1} is missing` : `entries ${number + 1} to ${row.number - 1} are missing`);
+      if (row.number !== number + 1)
+        note(
+          row.number,
+          row.number === number + 2
+            ? `entry ${number + 1} is missing`
+            : `entries ${number + 1} to ${row.number - 1} are missing`,
+        );
       if (row.previousHash !== head) note(row.number, "it does not link to the entry before it");
       if (lastAt !== null && row.at < lastAt) note(row.number, "its time lies before that of the entry before it");
       checkEntry(row, document, note);
@@ -57,7 +67,8 @@ export async function verifyChain(db: Database, ctx: Context, signer: Pick<HeadS
         if (!isRowName(named)) continue;
         const now = batch.hashes[nextHash++];
         if (now === null || now === undefined) note(row.number, `the ${words(named.table)} it speaks of is gone`);
-        else if (now !== named.sha256) note(row.number, `the ${words(named.table)} it speaks of was changed afterwards`);
+        else if (now !== named.sha256)
+          note(row.number, `the ${words(named.table)} it speaks of was changed afterwards`);
       }
       firstAt ??= row.at;
       [number, head, lastAt, entryCount] = [row.number, row.hash, row.at, entryCount + 1];
@@ -68,7 +79,8 @@ export async function verifyChain(db: Database, ctx: Context, signer: Pick<HeadS
 }
 
 const words = (table: string): string => `row in ${table.replaceAll("_", " ")}`;
-const isRowName = (row: { table: string; id: string }): boolean => /^[a-z_]+$/.test(row.table) && /^[0-9a-f-]{36}$/.test(row.id);
+const isRowName = (row: { table: string; id: string }): boolean =>
+  /^[a-z_]+$/.test(row.table) && /^[0-9a-f-]{36}$/.test(row.id);
 
 function parseDocument(canonical: string): TrailDocument | null {
   try {
@@ -98,17 +110,30 @@ function checkEntry(row: EntryRow, document: TrailDocument | null, note: (number
     [document.about.instrument, row.instrumentId],
     [document.about.check, row.checkId],
   ];
-  if (beside.some(([inText, inColumn]) => inText !== inColumn)) note(row.number, "its columns do not say what its text says");
+  if (beside.some(([inText, inColumn]) => inText !== inColumn))
+    note(row.number, "its columns do not say what its text says");
   // Disposal empties the personal data; what is still there must be what was hashed.
   for (const [key, value] of Object.entries(row.personal ?? {})) {
-    if (row.salt === null || document.personal[key] !== personalHash(row.salt, value)) note(row.number, "a name or address beside it was changed");
+    if (row.salt === null || document.personal[key] !== personalHash(row.salt, value))
+      note(row.number, "a name or address beside it was changed");
   }
 }
 
-async function verifyHeads(db: Database, ctx: Context, signer: Pick<HeadSigner, "fingerprint">, note: (number: number, what: string) => void) {
+async function verifyHeads(
+  db: Database,
+  ctx: Context,
+  signer: Pick<HeadSigner, "fingerprint">,
+  note: (number: number, what: string) => void,
+) {
   const { heads, hashes } = await inLab(db, ctx, async (tx) => {
     const found = await listSignedHeads(tx);
-    return { heads: found, hashes: await listHashes(tx, found.map((head) => head.number)) };
+    return {
+      heads: found,
+      hashes: await listHashes(
+        tx,
+        found.map((head) => head.number),
+      ),
+    };
   });
   let signaturesValid = true;
   for (const head of heads) {

@@ -1,6 +1,17 @@
 /** Sessions, resets, counters: of no lab, so without a lab's policy; what is secret is reached by definer functions only. */
 import { sql } from "drizzle-orm";
-import { index, integer, json, pgPolicy, pgTable, text, timestamp, uniqueIndex, uuid, varchar } from "drizzle-orm/pg-core";
+import {
+  index,
+  integer,
+  json,
+  pgPolicy,
+  pgTable,
+  text,
+  timestamp,
+  uniqueIndex,
+  uuid,
+  varchar,
+} from "drizzle-orm/pg-core";
 import { instant, newId } from "../columns.ts";
 import { people } from "./people.ts";
 

@@ -27,6 +27,11 @@ export const labs = pgTable(
   },
   (t) => [
     check("labs_warning_share", sql`${t.warningShare} between 0.3 and 1`),
-    pgPolicy("lab_apart", { for: "all", to: "public", using: sql`id = ${currentLab}`, withCheck: sql`id = ${currentLab}` }),
+    pgPolicy("lab_apart", {
+      for: "all",
+      to: "public",
+      using: sql`id = ${currentLab}`,
+      withCheck: sql`id = ${currentLab}`,
+    }),
   ],
 );

@@ -34,7 +34,12 @@ export const people = pgTable(
       to: "public",
       using: sql`id = ${currentPerson} or exists (select 1 from memberships m where m.person_id = people.id and m.lab_id = ${currentLab})`,
     }),
-    pgPolicy("own_row", { for: "update", to: "public", using: sql`id = ${currentPerson}`, withCheck: sql`id = ${currentPerson}` }),
+    pgPolicy("own_row", {
+      for: "update",
+      to: "public",
+      using: sql`id = ${currentPerson}`,
+      withCheck: sql`id = ${currentPerson}`,
+    }),
   ],
 );
 
@@ -76,8 +81,10 @@ export const memberships = pgTable(
 );
 
 /** Reference to a person as a member of the row's lab. */
-export const memberKey = (t: { labId: Parameters<typeof tenantKey>[0][0] }, column: Parameters<typeof tenantKey>[0][0]) =>
-  tenantKey([t.labId, column], [memberships.labId, memberships.personId]);
+export const memberKey = (
+  t: { labId: Parameters<typeof tenantKey>[0][0] },
+  column: Parameters<typeof tenantKey>[0][0],
+) => tenantKey([t.labId, column], [memberships.labId, memberships.personId]);
 
 /** An invitation by e-mail; the token itself is only in the mail. `invited_by` is null for the first manager of a lab. */
 export const invitations = pgTable(

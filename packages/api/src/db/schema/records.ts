@@ -1,6 +1,17 @@
 /** The trail: one hash chain a lab, its personal data beside it, its signed heads. All insert-only for the app's role. */
 import { sql } from "drizzle-orm";
-import { bigint, boolean, check, index, jsonb, pgTable, primaryKey, text, uniqueIndex, uuid } from "drizzle-orm/pg-core";
+import {
+  bigint,
+  boolean,
+  check,
+  index,
+  jsonb,
+  pgTable,
+  primaryKey,
+  text,
+  uniqueIndex,
+  uuid,
+} from "drizzle-orm/pg-core";
 import { id, instant, labId, tenant, tenantKey, tenantPolicy } from "../columns.ts";
 import { labs } from "./labs.ts";
 

@@ -64,26 +64,26 @@ $$;
 drop trigger if exists trail_entry_fits on trail_entries;
 create trigger trail_entry_fits before insert on trail_entries for each row execute function trail_entry_fits();
 --> statement-breakpoint
--- SHA-256 of a row as it stands: its columns that are not null, as JSON text, bytes by their own SHA-256. Columns that a
--- later migration adds are null in older rows and so leave their hashes as they were.
+-- SHA-256 of a row as it stands: over `name=hash;` of its columns that are not null, in the table's order, each hash the
+-- SHA-256 of the column's bytes or of its text. Columns that a later migration adds are null in older rows and so leave
+-- their hashes as they were.
 create or replace function row_sha256(table_name text, row_id uuid) returns text language plpgsql stable
-  set search_path = public, pg_temp set timezone = 'UTC' as $$
+  set search_path = public, pg_temp set timezone = 'UTC' set datestyle = 'ISO, YMD' set intervalstyle = 'postgres' set extra_float_digits = 1 as $$
 declare
-  columns text;
+  parts text;
   result text;
 begin
   select string_agg(
-      case when a.atttypid = 'bytea'::regtype then format('encode(sha256(%1$I), ''hex'') as %1$I', a.attname)
-           else format('%I', a.attname) end, ', ' order by a.attnum)
-    into columns
+      format('coalesce(%L || encode(sha256(%s), ''hex'') || '';'', '''')', a.attname || '=',
+        case when a.atttypid = 'bytea'::regtype then format('r.%I', a.attname) else format('convert_to(r.%I::text, ''UTF8'')', a.attname) end),
+      ' || ' order by a.attnum)
+    into parts
     from pg_attribute a
     where a.attrelid = to_regclass(format('public.%I', table_name)) and a.attnum > 0 and not a.attisdropped;
-  if columns is null then
+  if parts is null then
     return null;
   end if;
-  execute format(
-    'select encode(sha256(convert_to((select jsonb_object_agg(key, value) from jsonb_each(to_jsonb(r)) where value <> ''null''::jsonb)::text, ''UTF8'')), ''hex'')
-       from (select %s from public.%I where lab_id = $1 and id = $2) r', columns, table_name)
+  execute format('select encode(sha256(convert_to(%s, ''UTF8'')), ''hex'') from public.%I r where r.lab_id = $1 and r.id = $2', parts, table_name)
     into result using nullif(current_setting('app.lab', true), '')::uuid, row_id;
   return result;
 end
