@@ -68,6 +68,29 @@ function asTheyReallyAre(lines: readonly ReferenceLine[], random: ReturnType<typ
 }
 
 /**
+ * Heights as a lamp shows them through an instrument: published intensities run over four decades and on a scale of their own for every
+ * spectrum, so each spectrum is taken from its own strongest line, its decades halved, and scattered by a factor of two (one standard deviation).
+ */
+function heightsOf(
+  lines: readonly ReferenceLine[],
+  strongestCounts: number,
+  random: ReturnType<typeof createRandom>,
+): Record<string, number> {
+  const strongest = new Map<string, number>();
+  for (const line of lines) {
+    strongest.set(line.spectrum, Math.max(strongest.get(line.spectrum) ?? 0, line.relativeIntensity ?? 1));
+  }
+  return Object.fromEntries(
+    lines.map((line) => {
+      const share = (line.relativeIntensity ?? 1) / strongest.get(line.spectrum)!;
+      const ion = line.spectrum.endsWith(" I") ? 1 : 0.1;
+      const height = strongestCounts * ion * Math.sqrt(share) * Math.exp(0.7 * random.normal());
+      return [(line.wavelengthAirNm ?? line.wavelengthVacuumNm).toFixed(4), Math.min(height, 1.5 * strongestCounts)];
+    }),
+  );
+}
+
+/**
  * One check of the mix: an earlier axis wrong by up to 3 FWHM and 1 % in scale, or a range good to 5 % of its span.
  *
  * @param lamp  elements the analysis is told, when they are not the lamp's own
@@ -87,14 +110,12 @@ export function simulatedCheck(seed: number, mode: "earlier-axis" | "range", lam
     countsPerElectron: random.between(0.1, 1),
   });
   const published = builtInLineList.lines.filter((line) => elements.includes(line.element));
+  const lines = asTheyReallyAre(published, random);
+  const strongestCounts = random.between(8000, 60000);
   const sim = simulateCapture({
     seed: seed + 1_000_000,
     instrument,
-    lamp: {
-      lines: asTheyReallyAre(published, random),
-      strongestCounts: random.between(8000, 60000),
-      intensityScatter: 3,
-    },
+    lamp: { lines, strongestCounts, intensityScatter: 1, heightsCounts: heightsOf(lines, strongestCounts, random) },
     hotPixels: random.whole(4),
   });
   const exact = polynomialOf(trueAxis);

@@ -161,22 +161,19 @@ describe("estimateBaseline", () => {
 
 describe("estimatePhotonGain", () => {
   const line = (height: number, gain: number, misfit: number): LineScatter => {
-    const meanSignal = 0.3 * height;
-    const meanSquareSignal = 0.2 * height * height;
-    return {
-      excess: gain * meanSignal + misfit * meanSquareSignal,
-      readVariance: 100,
-      meanSignal,
-      meanSquareSignal,
-      degreesOfFreedom: 12,
-    };
+    const signal = 3 * height;
+    const squareSignal = 2 * height * height;
+    const moments = [12, 2.5 * height, 1.5 * height * height] as const;
+    return { excess: gain * signal + misfit * squareSignal, signal, squareSignal, readVariance: 100, moments };
   };
   const heights = [300, 600, 1200, 2500, 5000, 10000, 20000, 40000];
 
   it("finds photon noise alone, none, and photon noise beside a shape that does not fit", () => {
     expect(estimatePhotonGain(heights.map((h) => line(h, 0.6, 0)))).toBeCloseTo(0.6, 6);
     expect(estimatePhotonGain(heights.map((h) => line(h, 0, 0)))).toBe(0);
-    expect(estimatePhotonGain(heights.map((h) => line(h, 0.6, 0.0004)))).toBeCloseTo(0.6, 6);
+    expect(estimatePhotonGain(heights.map((h) => line(h, 0.6, 0.01)))).toBeLessThan(2);
+    const withCompanions = heights.map((h, i) => line(h, i % 3 === 0 ? 200 : 0.6, 0));
+    expect(estimatePhotonGain(withCompanions)).toBeCloseTo(0.6, 6);
     expect(estimatePhotonGain([])).toBe(0);
   });
 });

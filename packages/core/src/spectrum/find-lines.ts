@@ -5,11 +5,11 @@
  * Flags     saturated, blend, edge, spike, poor fit, weak, smoothed: kept, marked, left to the caller
  */
 import type { FittedLine, LineFlag, Spectrum } from "../analysis/types.ts";
-import { fitLines, type FittedShape, type LineStart } from "../lineshape/fit-line.ts";
+import { fitLines, type FittedShape, type LineFit, type LineStart } from "../lineshape/fit-line.ts";
 import { estimateBaseline } from "./baseline.ts";
 import { detectLines, type Candidate } from "./detect.ts";
 import { median } from "./median.ts";
-import { estimatePhotonGain, type LineScatter } from "./photon-gain.ts";
+import { estimatePhotonGain, leveragesOf, type LineScatter } from "./photon-gain.ts";
 import { findSaturation } from "./saturation.ts";
 
 export interface FindLinesOptions {
@@ -260,21 +260,50 @@ function estimateGain(prepared: Prepared, groups: Group[]): number {
     );
     if (fit.outcome === "refused" || !isSane(fit.lines[0]!, startsOf(prepared, group)[0]!)) continue;
     group.starts = fit.lines;
-    const m = samples.length;
-    const scatter = { excess: 0, readVariance: 0, meanSignal: 0, meanSquareSignal: 0, degreesOfFreedom: m - 5 };
-    for (let k = 0; k < m; k += 1) {
-      const residual = values[k]! - fit.fittedCounts[k]!;
-      const offset = positions[k]! - fit.windowCentre;
-      const signal = Math.max(0, fit.fittedCounts[k]! - fit.baseline[0] - fit.baseline[1] * offset);
-      scatter.excess += (residual * residual) / (m - 5);
-      scatter.readVariance += (unc[k]! * unc[k]!) / m;
-      scatter.meanSignal += signal / m;
-      scatter.meanSquareSignal += (signal * signal) / m;
-    }
-    scatter.excess -= scatter.readVariance;
-    scatters.push(scatter);
+    scatters.push(scatterOf(fit, positions, values, unc));
   }
   return estimatePhotonGain(scatters);
+}
+
+/** What a first fit leaves over, beside what each kind of noise would leave. */
+function scatterOf(
+  fit: Extract<LineFit, { outcome: "fitted" }>,
+  positions: Float64Array,
+  values: Float64Array,
+  unc: Float64Array,
+): LineScatter {
+  const m = positions.length;
+  const { centre, fwhm } = fit.lines[0]!;
+  const columns = Array.from({ length: 5 }, () => new Float64Array(m));
+  const signals = new Float64Array(m);
+  for (let k = 0; k < m; k += 1) {
+    const offset = positions[k]! - fit.windowCentre;
+    const signal = Math.max(0, fit.fittedCounts[k]! - fit.baseline[0] - fit.baseline[1] * offset);
+    const u = (positions[k]! - centre) / fwhm;
+    signals[k] = signal;
+    // Constant factors do not matter to the space that the columns span.
+    columns[0]![k] = signal;
+    columns[1]![k] = signal * u;
+    columns[2]![k] = signal * u * u;
+    columns[3]![k] = 1;
+    columns[4]![k] = offset;
+  }
+  const leverages = leveragesOf(columns);
+  let [excess, signal, squareSignal, readVariance] = [0, 0, 0, 0];
+  const moments: [number, number, number] = [0, 0, 0];
+  for (let k = 0; k < m; k += 1) {
+    const residual = values[k]! - fit.fittedCounts[k]!;
+    const free = Math.max(0, 1 - leverages[k]!);
+    const s = signals[k]!;
+    excess += residual * residual - free * unc[k]! * unc[k]!;
+    readVariance += (unc[k]! * unc[k]!) / m;
+    signal += free * s;
+    squareSignal += free * s * s;
+    moments[0] += free * free;
+    moments[1] += free * free * s;
+    moments[2] += free * free * s * s;
+  }
+  return { excess, signal, squareSignal, readVariance, moments };
 }
 
 interface FittedGroup {

@@ -1,88 +1,125 @@
 /**
  * How the scatter grows with the signal: counts per detected electron, told apart from a line shape that does not fit.
  *
- * Model   variance of a sample about a first, evenly weighted fit = read noise² + gain x signal + (misfit x signal)²; photon noise grows
- *         with the signal, a wrong shape with its square, so that lines of different height part the two
- * Solved  iterated weighted least squares over lines, neither term below zero; the weight of a line takes in the scatter of its own
- *         variance estimate (2 / degrees of freedom) and that misfit differs from line to line; misfit is looked for only where photon
- *         noise alone does not explain the lines, because from a few lines the two are hard to part
+ * Model   variance of a sample = read noise² + gain x signal + (misfit x signal)²; photon noise grows with the signal, a wrong shape with
+ *         its square, so that lines of different height part the two: gain is where the straight line of (excess / signal) against height
+ *         meets height zero
+ * Seen    the sum of squared residuals of an evenly weighted fit is on average sum of variance x (1 - leverage): a narrow line's few bright
+ *         samples are followed by the fit and show little of their noise, so the leverage of each sample counts
+ * Solved  median over the lines, because a line with an unresolved companion has an excess of any size; where the gain rises with the height
+ *         (M. G. Kendall, Biometrika 30, 81, 1938) the straight line's value at height zero (P. K. Sen, JASA 63, 1379, 1968); then
+ *         the weighted mean of the lines that agree with it
  */
+import { median } from "./median.ts";
 
 export interface LineScatter {
-  /** Mean squared residual, corrected for the fitted parameters, less the mean squared read noise, counts². */
+  /** Sum of squared residuals less what the read noise leaves of itself, counts². */
   excess: number;
-  /** Mean squared read noise, counts². */
+  /** Sum of (1 - leverage) x fitted signal above the baseline, counts. */
+  signal: number;
+  /** Sum of (1 - leverage) x signal², counts². */
+  squareSignal: number;
+  /** Mean read noise², counts², and the sums of (1 - leverage)² x 1, signal, signal²: for the scatter of `excess`. */
   readVariance: number;
-  /** Mean of the fitted signal above the baseline, counts. */
-  meanSignal: number;
-  /** Mean of its square, counts². */
-  meanSquareSignal: number;
-  degreesOfFreedom: number;
+  moments: readonly [number, number, number];
 }
 
-const rounds = 8;
-/** Mean squared deviation of the lines, in their own standard deviations, up to which photon noise alone explains them. */
-const explainedUpTo = 2.5;
-
-interface Terms {
-  gain: number;
-  gainUnc: number;
-}
+const agreeingSigmas = 3;
+const trimRounds = 3;
+/** Photon noise is believed when at least this share of the lines shows it. */
+const leastAgreeing = 1 / 3;
+/** Kendall's rank correlation of gain and height above which the shape, not the photons, makes the scatter. */
+const misfitCorrelation = 0.5;
+const fewestForRank = 4;
 
 /** Counts per electron; 0 where the lines show no photon noise (or there is none to judge by). */
 export function estimatePhotonGain(lines: readonly LineScatter[]): number {
-  if (lines.length === 0) return 0;
-  const alone = solve(lines, false);
-  const { gain, gainUnc } = deviation(lines, alone.gain) <= explainedUpTo ? alone : solve(lines, true);
-  return gain > gainUnc ? gain : 0;
+  const seen = lines.filter((line) => line.signal > 0);
+  if (seen.length === 0) return 0;
+  const gains = seen.map((line) => line.excess / line.signal);
+  const { correlation, atHeightZero } = trendWithHeight(seen, gains);
+  let gain = correlation > misfitCorrelation ? atHeightZero : median(gains);
+  let weights = 0;
+  for (let round = 0; round < trimRounds && gain > 0; round += 1) {
+    weights = 0;
+    let sum = 0;
+    let agreeing = 0;
+    seen.forEach((line, k) => {
+      const variance = varianceOf(line, gain) / (line.signal * line.signal);
+      const off = gains[k]! - gain;
+      if (off * off > agreeingSigmas * agreeingSigmas * variance) return;
+      agreeing += 1;
+      weights += 1 / variance;
+      sum += gains[k]! / variance;
+    });
+    if (agreeing < leastAgreeing * seen.length) return 0;
+    gain = sum / weights;
+  }
+  // A gain that can't be told from none would only widen every interval, since it can't go below zero.
+  return gain > 0 && gain * gain * weights > 1 ? gain : 0;
 }
 
-/** Mean squared deviation of the lines from photon noise alone, each in its own standard deviations. */
-function deviation(lines: readonly LineScatter[], gain: number): number {
+/** Kendall's correlation of gain and height, and the Theil-Sen line of gain against height at height zero. */
+function trendWithHeight(
+  lines: readonly LineScatter[],
+  gains: readonly number[],
+): { correlation: number; atHeightZero: number } {
+  const heights = lines.map((line) => line.squareSignal / line.signal);
+  const slopes: number[] = [];
+  let concordance = 0;
+  for (let a = 0; a < lines.length; a += 1) {
+    for (let b = 0; b < a; b += 1) {
+      const step = heights[a]! - heights[b]!;
+      if (step === 0) continue;
+      const slope = (gains[a]! - gains[b]!) / step;
+      slopes.push(slope);
+      concordance += Math.sign(slope);
+    }
+  }
+  if (lines.length < fewestForRank || slopes.length === 0) return { correlation: 0, atHeightZero: 0 };
+  const slope = median(slopes);
+  return {
+    correlation: concordance / slopes.length,
+    atHeightZero: median(gains.map((gain, k) => gain - slope * heights[k]!)),
+  };
+}
+
+/**
+ * Leverages of the samples of an evenly weighted fit: diagonal of the projection on its columns, by modified Gram-Schmidt.
+ *
+ * @param columns  derivatives of the fitted curve with respect to each parameter, all of one length; overwritten
+ */
+export function leveragesOf(columns: Float64Array[]): Float64Array {
+  const m = columns[0]!.length;
+  const leverages = new Float64Array(m);
+  columns.forEach((column, k) => {
+    const before = norm(column);
+    for (let other = 0; other < k; other += 1) {
+      const basis = columns[other]!;
+      let dot = 0;
+      for (let i = 0; i < m; i += 1) dot += basis[i]! * column[i]!;
+      for (let i = 0; i < m; i += 1) column[i] = column[i]! - dot * basis[i]!;
+    }
+    const after = norm(column);
+    // A column that the others already hold adds no leverage.
+    const scale = after > 1e-9 * before ? 1 / after : 0;
+    for (let i = 0; i < m; i += 1) {
+      column[i] = column[i]! * scale;
+      leverages[i] = leverages[i]! + column[i]! * column[i]!;
+    }
+  });
+  return leverages;
+}
+
+function norm(values: Float64Array): number {
   let sum = 0;
-  for (const line of lines) {
-    const variance = line.readVariance + gain * line.meanSignal;
-    const off = (line.excess + line.readVariance - variance) / variance;
-    sum += (off * off * line.degreesOfFreedom) / 2;
-  }
-  return sum / lines.length;
+  for (let i = 0; i < values.length; i += 1) sum += values[i]! * values[i]!;
+  return Math.sqrt(sum);
 }
 
-function solve(lines: readonly LineScatter[], withMisfit: boolean): Terms {
-  let gain = 0;
-  let misfit = 0;
-  let gainUnc = 0;
-  for (let round = 0; round < rounds; round += 1) {
-    let a11 = 0;
-    let a12 = 0;
-    let a22 = 0;
-    let b1 = 0;
-    let b2 = 0;
-    for (const line of lines) {
-      const { meanSignal: s, meanSquareSignal: q } = line;
-      const variance = line.readVariance + gain * s + misfit * q;
-      // Misfit varies from line to line by about as much as it is (seen on real captures).
-      const spread = misfit * q;
-      const weight = 1 / ((2 / line.degreesOfFreedom) * variance * variance + spread * spread);
-      a11 += weight * s * s;
-      a12 += weight * s * q;
-      a22 += weight * q * q;
-      b1 += weight * s * line.excess;
-      b2 += weight * q * line.excess;
-    }
-    const determinant = a11 * a22 - a12 * a12;
-    if (!(a11 > 0) || !(a22 > 0)) return { gain: 0, gainUnc: 0 };
-    const both = withMisfit && determinant > 1e-9 * a11 * a22;
-    gain = both ? (a22 * b1 - a12 * b2) / determinant : b1 / a11;
-    misfit = both ? (a11 * b2 - a12 * b1) / determinant : 0;
-    gainUnc = both ? Math.sqrt(a22 / determinant) : 1 / Math.sqrt(a11);
-    if (gain < 0) {
-      gain = 0;
-      misfit = both ? Math.max(0, b2 / a22) : 0;
-    } else if (misfit < 0) {
-      misfit = 0;
-      gain = Math.max(0, b1 / a11);
-    }
-  }
-  return { gain, gainUnc };
+/** Variance of a line's excess under read and photon noise. */
+function varianceOf({ readVariance, moments }: LineScatter, gain: number): number {
+  return (
+    2 * (readVariance * readVariance * moments[0] + 2 * readVariance * gain * moments[1] + gain * gain * moments[2])
+  );
 }
