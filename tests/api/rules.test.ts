@@ -257,6 +257,11 @@ describe("alerts that open and close by themselves", () => {
     const kind = tight.summary.result!.verdict === "pass" ? "near-limit" : "inconclusive";
     expect(["pass", "inconclusive"]).toContain(tight.summary.result!.verdict);
     expect((await openAlerts(bench)).map((alert) => alert.kind)).toEqual([kind]);
+    const { rows: mails } = await server.database.owner.query<{ to_person_id: string }>(
+      "select to_person_id from mail_outbox where lab_id = $1 and subject like '%Plover%'",
+      [lab.id],
+    );
+    expect(mails).toEqual([{ to_person_id: lab.manager.id }]);
     await approve(lab.manager.client, tight);
     expect((await openAlerts(bench)).map((alert) => alert.kind)).toEqual([kind]);
 

@@ -1,44 +1,61 @@
 /** Alerts that a check's verdict opens when it is submitted, and closes when it is approved. */
 import type { StoredResult } from "../db/schema/analyses.ts";
-import type { Context, Tx } from "../db/tenancy.ts";
+import { recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { findInstrument, findStanding } from "../instruments/queries.ts";
 import { isInUse } from "../instruments/states.ts";
 import type { Standing } from "../contract/common.ts";
 import type { CheckRecord } from "../checks/queries.ts";
 import { percentText, worstText } from "../checks/words.ts";
 import type { TrailInput } from "../records/trail.ts";
-import { closeAlerts, openAlert, type AlertKind } from "./open-and-close.ts";
+import { queueMail } from "../mail/outbox.ts";
+import type { HoldWork } from "../checks/work.ts";
+import { closeAlerts, openAlert, type AlertCause, type AlertKind } from "./open-and-close.ts";
 
-/** A pass near the limit, or an inconclusive check; a failing one is told by its hold. */
+/** A pass near the limit, or an inconclusive check: the owner is mailed when the alert opens. A failing one is told by its hold. */
 export async function openVerdictAlerts(
   tx: Tx,
   ctx: Context,
-  check: CheckRecord,
-  result: StoredResult,
-  reasons: readonly string[],
+  work: HoldWork,
+  { check, result, reasons }: { check: CheckRecord; result: StoredResult; reasons: readonly string[] },
 ): Promise<TrailInput[]> {
   const { instrument } = await findInstrument(tx, check.instrumentId);
+  const said = whatToSay(instrument.name, check.number, result, reasons);
+  if (said === null) return [];
   const about = { instrumentId: instrument.id, configurationId: check.configurationId };
+  const entries = await openAlert(tx, ctx, { ...said, about, checkId: check.id });
+  if (entries.length > 0) {
+    await queueMail(tx, ctx, work.jobs, {
+      to: { personId: instrument.ownerId },
+      subject: `${said.title}, ${check.number}`,
+      text: `${said.detail}\n\nThe alert closes by itself when the next good check proves it.\n\n${work.config.publicUrl}/checks/${check.id}\n`,
+      causeKey: `${said.kind}:${check.id}:${check.number}:${(await recordNow(tx)).toISOString()}`,
+    });
+  }
+  return entries;
+}
+
+function whatToSay(
+  instrumentName: string,
+  checkNumber: string,
+  result: StoredResult,
+  reasons: readonly string[],
+): Pick<AlertCause, "kind" | "title" | "detail"> | null {
   if (result.verdict === "pass" && result.nearLimit) {
     const used = result.toleranceUsed === null ? "" : `, ${percentText(result.toleranceUsed)} of it used`;
-    return openAlert(tx, ctx, {
+    return {
       kind: "near-limit",
-      about,
-      checkId: check.id,
-      title: `${instrument.name} is near its limit`,
-      detail: `${worstText(result) ?? "A line is above the warning limit"}${used} (${check.number}).`,
-    });
+      title: `${instrumentName} is near its limit`,
+      detail: `${worstText(result) ?? "A line is above the warning limit"}${used} (${checkNumber}).`,
+    };
   }
   if (result.verdict === "inconclusive") {
-    return openAlert(tx, ctx, {
+    return {
       kind: "inconclusive",
-      about,
-      checkId: check.id,
-      title: `The last check of ${instrument.name} is inconclusive`,
-      detail: `${reasons[0] ?? `${worstText(result) ?? "A line"}, inside the guard band.`} (${check.number})`,
-    });
+      title: `The last check of ${instrumentName} is inconclusive`,
+      detail: `${reasons[0] ?? `${worstText(result) ?? "A line"}, inside the guard band.`} (${checkNumber})`,
+    };
   }
-  return [];
+  return null;
 }
 
 /** What an approved check proves: called after a hold has been ended, so that the standing is the new one. */

@@ -83,7 +83,11 @@ export function submitCheck(
       const caused =
         analysis.verdict === "fail"
           ? await placeHold(tx, ctx, work, { check, analysis, cause: "submitted" })
-          : await openVerdictAlerts(tx, ctx, check, analysis.result, analysis.analysis.verdict?.reasons ?? []);
+          : await openVerdictAlerts(tx, ctx, work, {
+              check,
+              result: analysis.result,
+              reasons: analysis.analysis.verdict?.reasons ?? [],
+            });
       const reply = await readCheck(tx, ctx, checkId);
       await writeTrail(
         tx,
