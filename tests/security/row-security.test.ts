@@ -290,11 +290,13 @@ test("hashes of passwords and tokens of resets are out of the app's reach", asyn
   }
 });
 
+const stateClock = "select set_config('app.stated_now', '2020-01-01T00:00:00Z', true)";
+
 test("a stated clock is refused to the app's role, in any lab", async () => {
   await owner("update labs set is_demo = true where id = $1", [ours.id]);
   for (const lab of [ours.id, theirs.id]) {
     const stated = asApp(lab, async (client) => {
-      await client.query("select set_config('app.stated_now', '2020-01-01T00:00:00Z', true)");
+      await client.query(stateClock);
       return client.query("select record_now()");
     });
     await expect(stated).rejects.toMatchObject({ code: "42501" });
@@ -302,12 +304,42 @@ test("a stated clock is refused to the app's role, in any lab", async () => {
   await owner("update labs set is_demo = false where id = $1", [ours.id]);
 });
 
-test("the app cannot open a lab, and the seeding role no lab that is not a demo", async () => {
-  const open = "select create_lab(gen_random_uuid(), 'A lab', 'Europe/Berlin', null, false)";
-  await expect(asApp(null, (client) => client.query(open))).rejects.toMatchObject({ code: "42501" });
-  // By the session's role, as `session_user` sees it: the owner cannot take that on, so the function's text is what is read.
-  const { rows } = await owner<{ body: string }>("select prosrc as body from pg_proc where proname = 'create_lab'");
-  expect(rows[0]!.body).toMatch(/session_user = 'wavekeep_seeder' and not demo/);
+/** As the seeding role signs in to the database: its session's own user, rolled back. */
+async function asSeeder<T>(labId: string | null, work: (client: PoolClient) => Promise<T>): Promise<T> {
+  const client = await server.database.owner.connect();
+  try {
+    await client.query("set session authorization wavekeep_seeder");
+    await client.query("begin");
+    await client.query("select set_config('app.lab', $1, true)", [labId ?? ""]);
+    return await work(client);
+  } finally {
+    await client.query("rollback");
+    await client.query("reset session authorization");
+    client.release();
+  }
+}
+
+const open = (isDemo: boolean) => `select create_lab(gen_random_uuid(), 'A lab', 'Europe/Berlin', null, ${isDemo})`;
+
+test("the seeding role states the clock in a demo lab alone, and sees and opens no other", async () => {
+  const clock = async (client: PoolClient) => {
+    await client.query(stateClock);
+    return (await client.query<{ now: Date }>("select record_now() as now")).rows[0]!.now.toISOString();
+  };
+  await expect(asSeeder(ours.id, clock)).rejects.toMatchObject({ code: "42501" });
+  expect((await asSeeder(ours.id, (client) => client.query("select 1 from labs"))).rowCount).toBe(0);
+  await expect(asSeeder(null, (client) => client.query(open(false)))).rejects.toMatchObject({ code: "42501" });
+  await expect(asSeeder(null, (client) => client.query(open(true)))).resolves.toMatchObject({ rowCount: 1 });
+
+  await owner("update labs set is_demo = true where id = $1", [ours.id]);
+  expect(await asSeeder(ours.id, clock)).toBe("2020-01-01T00:00:00.000Z");
+  await owner("update labs set is_demo = false where id = $1", [ours.id]);
+});
+
+test("the app opens no lab, not even a demo", async () => {
+  for (const isDemo of [true, false]) {
+    await expect(asApp(null, (client) => client.query(open(isDemo)))).rejects.toMatchObject({ code: "42501" });
+  }
 });
 
 test("the trail takes only what follows its head, with the hash of its text, at the clock's time", async () => {

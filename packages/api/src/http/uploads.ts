@@ -50,10 +50,12 @@ export async function receiveFiles(
   if (!/^multipart\/form-data\b/i.test(type)) {
     throw problem("unsupported-type", "Files are sent as a form (multipart/form-data). Nothing was stored.");
   }
-  const declared = Number(req.headers["content-length"] ?? "0");
+  const declared = Number(req.headers["content-length"]);
+  // Without a stated size nothing would bound what is held in memory; every browser states it.
+  if (!Number.isFinite(declared)) {
+    throw problem("bad-request", "The upload does not state its size (Content-Length). Nothing was stored.");
+  }
   if (declared > limits.maxBytes * Math.min(limits.maxFiles, REQUEST_FILES) + OVERHEAD_BYTES) {
-    // The body is not read at all, so the connection cannot be used again.
-    res.setHeader("Connection", "close");
     throw tooLarge();
   }
   const receive = multer({
