@@ -1,6 +1,7 @@
 /** The rail, the theme and the person on a narrow window: a sheet over the page. */
 import { Dialog as Radix } from "radix-ui";
 import { useMe } from "../shared/session.ts";
+import { DialogSheet } from "../ui/dialog.tsx";
 import type { MenuGroup } from "../ui/menu.tsx";
 import { ThemeMenu } from "../ui/theme-menu.tsx";
 import { Find } from "./find.tsx";
@@ -20,7 +21,7 @@ export function NarrowSheet({
   return (
     <Radix.Root open onOpenChange={(next) => !next && onClose()}>
       <Radix.Portal>
-        <Radix.Content className="shell-sheet" aria-describedby={undefined}>
+        <DialogSheet className="shell-sheet" described={false}>
           <div className="flex items-baseline justify-between">
             <Radix.Title className="type-label">
               {shows === "find" ? "Find" : `${me.lab.name}${me.lab.isDemo ? ", demo" : ""}`}
@@ -32,7 +33,7 @@ export function NarrowSheet({
           ) : (
             <MenuSheet groups={groups} onClose={onClose} />
           )}
-        </Radix.Content>
+        </DialogSheet>
       </Radix.Portal>
     </Radix.Root>
   );

@@ -81,8 +81,8 @@ export function CheckSide({
 function MadeFrom({ check, analysis }: { check: Check; analysis: Analysis }) {
   const may = useMay();
   const version = check.analysisVersion;
-  const captures =
-    check.attempts.find((attempt) => attempt.number === (version?.attempt ?? check.currentAttempt))?.captures ?? [];
+  const attempt = check.attempts.find((item) => item.number === (version?.attempt ?? check.currentAttempt));
+  const captures = (attempt?.captures ?? []).filter((capture) => capture.refusal === null);
   const first = captures[0];
   const rows = first?.reading?.rows;
   const received = captures.at(-1);

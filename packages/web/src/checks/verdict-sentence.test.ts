@@ -55,6 +55,10 @@ describe("the verdict as a sentence", () => {
     );
     expect(text).toMatch(/^Inconclusive: Hg 546\.075 nm is required and was left out\. The worst line/);
   });
+  test("a first axis has no error to judge", () => {
+    expect(verdictSentence(analysis([line({ errorNm: null })], null))).toMatch(/^Not judged: no axis was in force/);
+    expect(verdictSentence(analysis([line({})], null))).toBe("Not judged: no tolerance reaches these lines.");
+  });
   test("a refusal is no verdict", () => {
     const refused = analysis([], null, { outcome: "refused", reason: "Empty file." });
     expect(verdictSentence(refused)).toBe("Not judged: the captures could not be analysed.");

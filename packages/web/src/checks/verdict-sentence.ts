@@ -50,10 +50,12 @@ const afterColon = (sentence: string) => {
  */
 export function verdictSentence(analysis: Analysis, qualifier = ""): string {
   const { verdict } = analysis;
-  if (verdict === null)
-    return analysis.outcome === "identified"
-      ? "Not judged: no tolerance reaches these lines."
-      : notIdentified[analysis.outcome];
+  if (verdict === null) {
+    if (analysis.outcome !== "identified") return notIdentified[analysis.outcome];
+    return analysis.lines.every((line) => line.errorNm === null)
+      ? "Not judged: no axis was in force that could err. This one is the first."
+      : "Not judged: no tolerance reaches these lines.";
+  }
   const state = verdictState(verdict.verdict, verdict.nearLimit);
   const head = `${verdictHeads[state as keyof typeof verdictHeads]}${qualifier}`;
   const worst = worstOf(analysis, verdict);

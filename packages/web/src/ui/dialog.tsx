@@ -18,12 +18,37 @@ interface DialogProps {
   closeLabel?: string;
 }
 
+interface SheetProps {
+  className: string;
+  /** True when a `Radix.Description` stands inside. */
+  described: boolean;
+  children: ReactNode;
+}
+
+/** What lies over the page. Whoever had the focus when it opened has it again when it closes. */
+export function DialogSheet({ className, described, children }: SheetProps) {
+  const [opener] = useState(() => document.activeElement);
+  return (
+    <Radix.Content
+      className={className}
+      {...(described ? {} : { "aria-describedby": undefined })}
+      onCloseAutoFocus={(event) => {
+        // Radix gives it to a trigger of its own, and our dialogs have none.
+        event.preventDefault();
+        if (opener instanceof HTMLElement) opener.focus();
+      }}
+    >
+      {children}
+    </Radix.Content>
+  );
+}
+
 export function Dialog({ open, onClose, title, lead, children, actions, closeLabel = "Cancel" }: DialogProps) {
   return (
     <Radix.Root open={open} onOpenChange={(next) => !next && onClose()}>
       <Radix.Portal>
         <Radix.Overlay className="overlay" />
-        <Radix.Content className="dialog" {...(lead === undefined ? { "aria-describedby": undefined } : {})}>
+        <DialogSheet className="dialog" described={lead !== undefined}>
           <Radix.Title className="type-head">{title}</Radix.Title>
           {lead !== undefined && <Radix.Description className="mt-2">{lead}</Radix.Description>}
           <div className="mt-4">{children}</div>
@@ -31,7 +56,7 @@ export function Dialog({ open, onClose, title, lead, children, actions, closeLab
             {actions}
             <Button onClick={onClose}>{closeLabel}</Button>
           </div>
-        </Radix.Content>
+        </DialogSheet>
       </Radix.Portal>
     </Radix.Root>
   );
@@ -93,7 +118,7 @@ export function PasswordDialog({
     <Radix.Root open={open} onOpenChange={(next) => !next && !busy && close()}>
       <Radix.Portal>
         <Radix.Overlay className="overlay" />
-        <Radix.Content className="dialog" {...(lead === undefined ? { "aria-describedby": undefined } : {})}>
+        <DialogSheet className="dialog" described={lead !== undefined}>
           <form onSubmit={(event) => void confirm(event)}>
             <Radix.Title className="type-head">{title}</Radix.Title>
             {lead !== undefined && <Radix.Description className="mt-2">{lead}</Radix.Description>}
@@ -116,7 +141,7 @@ export function PasswordDialog({
               </Button>
             </div>
           </form>
-        </Radix.Content>
+        </DialogSheet>
       </Radix.Portal>
     </Radix.Root>
   );
