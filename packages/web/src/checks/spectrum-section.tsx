@@ -40,7 +40,7 @@ export function SpectrumSection({ check, analysis, chosen, onChoose }: SpectrumS
   const captures =
     check.attempts
       .find((attempt) => attempt.number === (check.analysisVersion?.attempt ?? check.currentAttempt))
-      ?.captures.filter((capture) => capture.part === "lamp") ?? [];
+      ?.captures.filter((capture) => capture.part === "lamp" && capture.refusal === null) ?? [];
   const limits = [...new Set(analysis.setup.tolerance.map((segment) => segment.toleranceNm))];
   const height =
     limits.length === 1 && limits[0] !== undefined

@@ -67,6 +67,7 @@ export function FleetTable({ rows, todayOn }: FleetTableProps) {
     {
       key: "name",
       head: "Instrument",
+      className: "@min-[980px]:whitespace-nowrap",
       cell: (row) => (
         <>
           <Link to={`/instruments/${row.id}`} className="strong hover:underline">

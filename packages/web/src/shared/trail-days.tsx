@@ -137,7 +137,7 @@ function Entry({ entry }: { entry: TrailEntry }) {
         <span className="type-note min-w-0 truncate -mt-[2px]">
           {entry.about !== null &&
             (entry.about.to === null ? (
-              entry.about.label
+              <span className="inline-flex min-h-6 items-center">{entry.about.label}</span>
             ) : (
               <Link to={entry.about.to} className="text-accent inline-flex min-h-6 items-center hover:underline">
                 {entry.about.label}
