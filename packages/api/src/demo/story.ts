@@ -129,7 +129,7 @@ export const instruments: DemoInstrument[] = [
   },
   {
     name: "Redshank", kind: "scanning", maker: "Fenland Instruments (invented)", model: "Scan 320", serial: "FI-320-77", owner: "oto", place: "Optics room", purchasedDaysAgo: 3100, registeredDaysAgo: 536,
-    axisKind: "wavelength", firstNm: 200, lastNm: 900, fwhmNm: 0.9, laserNm: null, samples: 7001, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: 320, fullScaleCounts: null,
+    axisKind: "wavelength", firstNm: 200, lastNm: 900, fwhmNm: 0.9, laserNm: null, samples: 3501, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: 320, fullScaleCounts: null,
     toleranceNm: 0.2, intervalDays: 28, graceDays: 0, firstDueDaysAgo: 535, assignedTo: "alix", statedReproducibilityNm: 0.01, repeats: 3,
     sourceOn: (daysAgo) => (daysAgo > 145 ? "HA-1" : "HA-2"),
     errorNm: (nm, daysAgo) => -0.02 - (0.115 - (0.06 * (daysAgo - 31)) / 500) * along(nm, 404, 867),
@@ -146,7 +146,7 @@ export const instruments: DemoInstrument[] = [
   },
   {
     name: "Knot", kind: "spectrophotometer", maker: "Saltmarsh Optics (invented)", model: "UV 60", serial: "SO-60-1188", owner: "oto", place: "Wet bench", purchasedDaysAgo: 2050, registeredDaysAgo: 536,
-    axisKind: "wavelength", firstNm: 230, lastNm: 700, fwhmNm: 1.6, laserNm: null, samples: 4701, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: null, fullScaleCounts: null,
+    axisKind: "wavelength", firstNm: 230, lastNm: 700, fwhmNm: 1.6, laserNm: null, samples: 2351, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: null, fullScaleCounts: null,
     toleranceNm: 1, intervalDays: 50, graceDays: 5, firstDueDaysAgo: 530, assignedTo: "tam", statedReproducibilityNm: 0.05, repeats: 2,
     sourceOn: () => "HG-1",
     errorNm: (nm) => 0.19 + 0.24 * along(nm, 254, 579),
@@ -154,7 +154,7 @@ export const instruments: DemoInstrument[] = [
   },
   {
     name: "Sanderling", kind: "spectrophotometer", maker: "Saltmarsh Optics (invented)", model: "UV 88", serial: "SO-88-2107", owner: "oto", place: "Wet bench", purchasedDaysAgo: 700, registeredDaysAgo: 536,
-    axisKind: "wavelength", firstNm: 400, lastNm: 700, fwhmNm: 1.2, laserNm: null, samples: 3001, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: null, fullScaleCounts: null,
+    axisKind: "wavelength", firstNm: 400, lastNm: 700, fwhmNm: 1.2, laserNm: null, samples: 1501, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: null, fullScaleCounts: null,
     toleranceNm: 1, intervalDays: 50, graceDays: 5, firstDueDaysAgo: 528, assignedTo: "alix", statedReproducibilityNm: 0.05, repeats: 2,
     sourceOn: () => "D-S",
     errorNm: (_nm, _daysAgo, temperatureC) => -0.2 - 0.055 * (temperatureC - 21.6),
@@ -178,7 +178,7 @@ export const instruments: DemoInstrument[] = [
   },
   {
     name: "Godwit", kind: "scanning", maker: "Fenland Instruments (invented)", model: "Scan 320", serial: "FI-320-112", owner: "oto", place: "Optics room", purchasedDaysAgo: 20, registeredDaysAgo: 6,
-    axisKind: "wavelength", firstNm: 220, lastNm: 750, fwhmNm: 0.9, laserNm: null, samples: 5301, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: 320, fullScaleCounts: null,
+    axisKind: "wavelength", firstNm: 220, lastNm: 750, fwhmNm: 0.9, laserNm: null, samples: 2651, pixelPitchUm: null, groovesPerMm: 1200, focalLengthMm: 320, fullScaleCounts: null,
     toleranceNm: 0.2, intervalDays: 28, graceDays: 3, firstDueDaysAgo: -2, assignedTo: "alix", statedReproducibilityNm: 0.01, repeats: 2,
     sourceOn: () => "HA-2", errorNm: () => 0, scatterNm: 0.004, checks: [], events: [],
   },
