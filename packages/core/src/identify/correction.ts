@@ -9,13 +9,26 @@ import { type Bounds, orderCount, type Problem } from "./problem.ts";
 
 const n = orderCount;
 
+/** Standard deviations of what is believed about the four terms, nm. */
+function priorSd(bounds: Bounds, k: number): number {
+  if (k === 0) return bounds.endNm;
+  if (k === 1) return bounds.scaleNm;
+  return 0.6 * (k === 2 ? bounds.curvatureNm : bounds.cubicNm);
+}
+
 /** Adds what is believed about the four terms to the normal matrix. */
 export function addPrior(normal: Float64Array, bounds: Bounds): void {
-  const sds = [bounds.endNm, bounds.scaleNm, 0.6 * bounds.curvatureNm, 0.4 * bounds.cubicNm];
   for (let k = 0; k < n; k++) {
-    const sd = sds[k] as number;
+    const sd = priorSd(bounds, k);
     normal[k * n + k] = (normal[k * n + k] as number) + 1 / (sd * sd);
   }
+}
+
+/** How far an axis bends beyond what is usual, as the logarithm of a likelihood (0 or less); offset and scale are free. */
+export function bendPenalty(correction: Float64Array, bounds: Bounds): number {
+  const curvature = (correction[2] as number) / priorSd(bounds, 2);
+  const cubic = (correction[3] as number) / priorSd(bounds, 3);
+  return -0.5 * (curvature * curvature + cubic * cubic);
 }
 
 /** Cholesky factor into the lower triangle; false where the matrix is not positive definite. */

@@ -29,7 +29,7 @@ import { buildProblem, type Problem } from "./problem.ts";
 import { type ReferenceTable, referenceTable } from "./reference-table.ts";
 import { correctedNm, endNm, type Evidence, evidenceFor, type Odds, oddsFor, strongCount } from "./score.ts";
 import { findSecondOrder } from "./second-order.ts";
-import { type Hypothesis, searchAxes } from "./search.ts";
+import { type Hypothesis, sameAxis, searchAxes } from "./search.ts";
 
 /** Largest chance probability of an identification. */
 export const largestChance = 0.05;
@@ -40,7 +40,7 @@ const leastStrongShare = 0.6;
 const leastOwnShare = 0.4;
 const leastNamed = 3;
 /** Axes looked at closely. */
-const polished = 6;
+const polished = 5;
 /** Two axes that agree at this share of the explained lines are one identification, less the lines they differ in. */
 const samePlaceShare = 0.7;
 const agreementShare = 0.3;
@@ -159,7 +159,13 @@ function ask(input: IdentifyInput, elements: readonly string[], wide: boolean): 
 function candidatesOf({ problem, table, odds }: Question): Candidate[] {
   const found: Candidate[] = [];
   const hypotheses: Hypothesis[] = searchAxes(problem, table, odds);
-  for (const hypothesis of hypotheses.slice(0, polished)) {
+  for (const hypothesis of hypotheses) {
+    if (found.length === polished) break;
+    // Many starts end on one axis: naming its lines once is enough.
+    const isKnown = found.some((one) =>
+      sameAxis(problem, one.correction, hypothesis.correction, agreementShare * problem.fwhmNm),
+    );
+    if (isKnown) continue;
     const naming = nameLines(problem, table, hypothesis.correction);
     if (naming === null) continue;
     const { correction } = naming.fit;
@@ -348,7 +354,8 @@ function sharedPlaces(problem: Problem, best: Candidate, other: Candidate): numb
 /** Lines on which two nearly equal axes disagree stay without a name. */
 function dropDisputed(problem: Problem, best: Candidate, other: Candidate): void {
   for (let i = 0; i < problem.count; i++) {
-    if ((best.naming.reference[i] as number) < 0 || agreeAt(problem, best, other, i)) continue;
+    const reference = best.naming.reference[i] as number;
+    if (reference < 0 || reference === other.naming.reference[i] || agreeAt(problem, best, other, i)) continue;
     best.naming.reference[i] = -1;
     best.naming.components[i] = [];
     best.namedCount -= 1;

@@ -2,7 +2,7 @@
 import type { PixelAxis } from "../analysis/types.ts";
 import { chebyshevArgument, chebyshevBasis, chebyshevToPowers } from "../numeric/chebyshev.ts";
 import type { Naming } from "./name-lines.ts";
-import { orderCount, type Problem, type ProblemInput } from "./problem.ts";
+import { orderCount, type Problem, type ProblemInput, usualCubic } from "./problem.ts";
 import { cos, PI } from "../numeric/elementary.ts";
 
 /**
@@ -43,8 +43,9 @@ export function namedAxis(input: ProblemInput, problem: Problem, naming: Naming)
 function basePowers(input: ProblemInput): number[] {
   const { mode } = input;
   if (mode.kind === "earlier-axis") return mode.axis === "own" ? [0, 1] : mode.axis.coefficients.slice();
-  const slope = (mode.lastNm - mode.firstNm) / (input.lastPosition - input.firstPosition);
-  return [mode.firstNm - slope * input.firstPosition, slope];
+  const span = mode.lastNm - mode.firstNm;
+  const terms = [(mode.firstNm + mode.lastNm) / 2, span / 2, 0, usualCubic * span];
+  return Array.from(chebyshevToPowers(terms, input.firstPosition, input.lastPosition));
 }
 
 /** Covariance of the Chebyshev terms over the capture, rewritten for terms over [first, last]; zero for higher terms. */

@@ -4,7 +4,7 @@
  * Model    each found line is either a published line of the lamp, its wavelength scattered about it with a standard
  *          deviation s, or (share `strayShare`) anything else, equally likely anywhere in the window of length L:
  *          g(lambda) = strayShare + (1 - strayShare) L sum_j pi_j N(lambda - lambda_j; s),   sum pi_j = 1
- *          score = sum over lines of ln g - misses; pi_j leans on published intensities, more for the stronger lines
+ *          score = sum over lines of ln g - misses - unusual bending; pi_j leans on published intensities, more for the stronger lines
  * Chance   null model: the found lines lie independently and evenly over the window, whatever lamp it was. Under it each
  *          g has mean 1, so a given axis reaches a score of S or more with a probability of at most e^-S (Markov), and
  *          any of n distinguishable axes with at most n e^-S. n is the volume that the bounds allow over the volume of
@@ -13,6 +13,7 @@
  *          fibres and detectors hide lines, so that is weak evidence
  */
 import { exp, log, PI } from "../numeric/elementary.ts";
+import { bendPenalty } from "./correction.ts";
 import { orderCount, type Problem } from "./problem.ts";
 import { lowerBound, oddsOf, type ReferenceTable } from "./reference-table.ts";
 
@@ -125,11 +126,12 @@ export interface Evidence {
 export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds, correction: Float64Array): Evidence {
   const strong = strongCount(problem);
   const misses = missedCost(problem, table, correction);
+  const bend = bendPenalty(correction, problem.bounds);
   let best = Number.NEGATIVE_INFINITY;
   let bestWidth = 0;
   for (const share of widthShares) {
     const width = share * problem.fwhmNm;
-    let score = -misses;
+    let score = bend - misses;
     for (let rank = 0; rank < problem.byHeight.length; rank++) {
       const i = problem.byHeight[rank] as number;
       const pi = rank < strong ? odds.strong : odds.weak;

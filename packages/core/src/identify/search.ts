@@ -2,7 +2,7 @@
  * Search for axes on which the found lines fall on published ones.
  *
  * Two strong found lines, one towards each end, are tried on every published line they may be; with them fixed, the one
- * freedom left, how far the axis leaves its chord, is run through its bounds, and every strong line votes (see `score`).
+ * freedom left, how far the axis leaves its chord, is run through its bounds (for two third orders, where those matter), and every strong line votes (see `score`).
  * Several such pairs of anchors are tried, so that a stray among them costs nothing. The best axes are then refined:
  * soft assignment to the lines near, a least-squares correction of third order held by the bounds as by a prior, the
  * reach shrinking from step to step.
@@ -19,6 +19,7 @@ const anchorPairs = 5;
 const linesVoting = 13;
 const kept = 24;
 const anchorReferences = 14;
+const cubicShare = 0.35;
 
 export interface Hypothesis {
   /** a0..a3, nm. */
@@ -131,6 +132,9 @@ function coarseSearch(problem: Problem, table: ReferenceTable, odds: Odds): Floa
   const bend = new Float64Array(count);
   const best = new BestAxes(kept, halfWidth);
   const sagitta = 2 * bounds.curvatureNm;
+  // Where the third order may move a line by more than the kernel forgives, two values of it are tried.
+  const cubicStep = cubicShare * bounds.cubicNm;
+  const cubics = cubicStep > 0.25 * halfWidth ? [-cubicStep, cubicStep] : [0];
   for (const { left, right } of anchorsOf(problem)) {
     const ta = t[left] as number;
     const tb = t[right] as number;
@@ -142,37 +146,44 @@ function coarseSearch(problem: Problem, table: ReferenceTable, odds: Odds): Floa
     }
     const step = Math.min(sagitta, (0.7 * halfWidth) / Math.max(largestBend, 1e-6));
     const steps = Math.ceil(sagitta / step);
+    const leftReferences = referencesFor(problem, table, left);
     const rightReferences = referencesFor(problem, table, right);
-    for (const ja of referencesFor(problem, table, left)) {
-      const da = (table.nm[ja] as number) - (problem.baseNm[left] as number);
-      for (const jb of rightReferences) {
-        const db = (table.nm[jb] as number) - (problem.baseNm[right] as number);
-        const slope = (db - da) / (tb - ta);
-        if (Math.abs(slope) > bounds.scaleNm + halfWidth + 2 * sagitta) continue;
-        for (let k = 0; k < count; k++) {
-          const i = problem.byHeight[k] as number;
-          atChord[k] = (problem.baseNm[i] as number) + da + slope * ((t[i] as number) - ta) - fromNm;
-        }
-        for (let n = -steps; n <= steps; n++) {
-          const q = (n * sagitta) / steps;
-          // With the bend the straight part is no longer the chord: keep it within its bounds at both ends.
-          const a1 = slope + q * (ta + tb);
-          const a0 = da - slope * ta - q * (ta * tb + 1);
-          if (Math.abs(a1) > bounds.scaleNm + halfWidth) continue;
-          if (Math.abs(a0 + a1) > bounds.endNm + halfWidth || Math.abs(a0 - a1) > bounds.endNm + halfWidth) continue;
-          let product = 1;
+    for (const a3 of cubics) {
+      const leftNm = (problem.baseNm[left] as number) + a3 * thirdOrder(problem, left);
+      const rightNm = (problem.baseNm[right] as number) + a3 * thirdOrder(problem, right);
+      for (const ja of leftReferences) {
+        const da = (table.nm[ja] as number) - leftNm;
+        for (const jb of rightReferences) {
+          const slope = ((table.nm[jb] as number) - rightNm - da) / (tb - ta);
+          if (Math.abs(slope) > bounds.scaleNm + halfWidth + 2 * sagitta) continue;
           for (let k = 0; k < count; k++) {
-            const cell = Math.round(((atChord[k] as number) + q * (bend[k] as number)) * votes.cellsPerNm);
-            if (cell < 0 || cell >= cells) product *= 0.1;
-            else product *= (k < strong ? votes.strong[cell] : votes.weak[cell]) as number;
+            const i = problem.byHeight[k] as number;
+            const base = (problem.baseNm[i] as number) + a3 * thirdOrder(problem, i);
+            atChord[k] = base + da + slope * ((t[i] as number) - ta) - fromNm;
           }
-          if (product > best.threshold) best.offer(product, a0 + q / 2, a1, -q / 2);
+          for (let n = -steps; n <= steps; n++) {
+            const q = (n * sagitta) / steps;
+            // With the bend the straight part is no longer the chord: keep it within its bounds at both ends.
+            const a1 = slope + q * (ta + tb);
+            const a0 = da - slope * ta - q * (ta * tb + 1);
+            if (Math.abs(a1) > bounds.scaleNm + halfWidth) continue;
+            if (Math.abs(a0 + a1) > bounds.endNm + halfWidth || Math.abs(a0 - a1) > bounds.endNm + halfWidth) continue;
+            let product = 1;
+            for (let k = 0; k < count; k++) {
+              const cell = Math.round(((atChord[k] as number) + q * (bend[k] as number)) * votes.cellsPerNm);
+              if (cell < 0 || cell >= cells) product *= 0.1;
+              else product *= (k < strong ? votes.strong[cell] : votes.weak[cell]) as number;
+            }
+            if (product > best.threshold) best.offer(product, a0 + q / 2, a1, -q / 2, a3);
+          }
         }
       }
     }
   }
   return best.list();
 }
+
+const thirdOrder = (problem: Problem, i: number): number => problem.basis[i * orderCount + 3] as number;
 
 /** The best few axes seen, none within a half width of a better one. */
 class BestAxes {
@@ -181,6 +192,7 @@ class BestAxes {
   private readonly a0: Float64Array;
   private readonly a1: Float64Array;
   private readonly a2: Float64Array;
+  private readonly a3: Float64Array;
   private size = 0;
   private readonly capacity: number;
   private readonly apartNm: number;
@@ -192,9 +204,10 @@ class BestAxes {
     this.a0 = new Float64Array(capacity + 1);
     this.a1 = new Float64Array(capacity + 1);
     this.a2 = new Float64Array(capacity + 1);
+    this.a3 = new Float64Array(capacity + 1);
   }
 
-  offer(score: number, a0: number, a1: number, a2: number): void {
+  offer(score: number, a0: number, a1: number, a2: number, a3: number): void {
     let at = this.size;
     for (let k = 0; k < this.size; k++) {
       const d0 = a0 - (this.a0[k] as number);
@@ -215,19 +228,23 @@ class BestAxes {
       this.a0[at] = this.a0[at - 1] as number;
       this.a1[at] = this.a1[at - 1] as number;
       this.a2[at] = this.a2[at - 1] as number;
+      this.a3[at] = this.a3[at - 1] as number;
       at -= 1;
     }
     this.scores[at] = score;
     this.a0[at] = a0;
     this.a1[at] = a1;
     this.a2[at] = a2;
+    this.a3[at] = a3;
     if (this.size === this.capacity) this.threshold = this.scores[this.capacity - 1] as number;
   }
 
   list(): Float64Array[] {
     const axes: Float64Array[] = [];
     for (let k = 0; k < this.size; k++) {
-      axes.push(Float64Array.of(this.a0[k] as number, this.a1[k] as number, this.a2[k] as number, 0));
+      axes.push(
+        Float64Array.of(this.a0[k] as number, this.a1[k] as number, this.a2[k] as number, this.a3[k] as number),
+      );
     }
     return axes;
   }
