@@ -44,6 +44,8 @@ export function fitAxis(
     fwhm: found.medianFwhm ?? 1,
   });
   if (fitted.outcome === "refused") {
+    // An instrument with an axis of its own is judged by it: that no new one can be fitted is no news.
+    if (spectrum.axisKind === "wavelength") return null;
     identified.warnings.push({ code: "no-axis", text: fitted.reason });
     return null;
   }

@@ -22,6 +22,8 @@ import type {
   ReferenceLine,
 } from "../analysis/types.ts";
 import { assumedReferenceUncNm, lineWavelengthNm } from "../linelist/built-in.ts";
+import { log } from "../numeric/elementary.ts";
+import { nameFewLines } from "./few-lines.ts";
 import { namedAxis } from "./named-axis.ts";
 import { type Naming, nameLines } from "./name-lines.ts";
 import { findOtherGases, findOtherLamp, nameOfElement, type OtherGas } from "./other-lamps.ts";
@@ -120,6 +122,8 @@ export function identifyLines(input: IdentifyInput): IdentifiedLines {
   const spanOk = Math.abs(input.lastPosition - input.firstPosition) > 0 && input.medianFwhm > 0;
   const usable = input.lines.filter((line) => !line.flags.includes("spike")).length;
   if (!spanOk || usable < leastNamed) {
+    const few = spanOk ? byFewLines(input) : null;
+    if (few !== null) return few;
     return unidentified(
       input,
       `${usable === 0 ? "No usable line was" : usable === 1 ? "Only one usable line was" : `Only ${usable} usable lines were`} ` +
@@ -320,6 +324,25 @@ function unidentified(input: IdentifyInput, reason: string): IdentifiedLines {
     warnings: [],
     missingLinesNm: [],
     otherGases: [],
+  };
+}
+
+/** Two lines of a lamp that shows no more, on an axis that is known. */
+function byFewLines(input: IdentifyInput): IdentifiedLines | null {
+  if (input.mode.kind !== "earlier-axis") return null;
+  const few = nameFewLines({ ...input, axis: input.mode.axis });
+  if (few === null || few.chanceProbability > largestChance) return null;
+  // No other pairing was allowed, so that chance is the only rival.
+  const margin = -log(few.chanceProbability);
+  return {
+    ...unidentified(input, ""),
+    outcome: "identified",
+    reason: null,
+    names: few.names,
+    axis: input.mode.axis === "own" ? null : input.mode.axis,
+    chanceProbability: few.chanceProbability,
+    margin,
+    note: noteOf(few.chanceProbability, margin),
   };
 }
 
