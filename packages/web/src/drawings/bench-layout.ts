@@ -102,15 +102,17 @@ function interpolate(xs: readonly number[], ys: readonly number[], x: number): n
  * on its trace. The ceiling, one height for the whole spectrum, is lowered by the baseline's median.
  */
 export function netDrawing(drawing: SpectrumDrawing): SpectrumDrawing {
-  const sorted = [...drawing.baseline].sort((a, b) => a - b);
+  // A drawing stored before baselines were kept with it has none: it is drawn as it was counted.
+  const baseline = (drawing.baseline as number[] | undefined) ?? drawing.counts.map(() => 0);
+  const sorted = [...baseline].sort((a, b) => a - b);
   const median = sorted[sorted.length >> 1] ?? 0;
   return {
     ...drawing,
-    counts: drawing.counts.map((counts, i) => counts - (drawing.baseline[i] ?? 0)),
-    baseline: drawing.baseline.map(() => 0),
+    counts: drawing.counts.map((counts, i) => counts - (baseline[i] ?? 0)),
+    baseline: baseline.map(() => 0),
     ceilingCounts: drawing.ceilingCounts === null ? null : drawing.ceilingCounts - median,
     fits: drawing.fits.map((fit) => {
-      const under = fit.x.map((x) => interpolate(drawing.x, drawing.baseline, x));
+      const under = fit.x.map((x) => interpolate(drawing.x, baseline, x));
       return {
         ...fit,
         counts: fit.counts.map((counts, i) => counts - (under[i] ?? 0)),

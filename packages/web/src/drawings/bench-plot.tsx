@@ -23,7 +23,7 @@ interface BenchPlotProps {
 const wash = (hex: string) => `${hex}29`;
 
 export function BenchPlot({ drawing, analysis, registers, ruler, view, width, palette }: BenchPlotProps) {
-  const { spectrumTop, zero, spectrumHeight, residualZero, rulerTop } = registers;
+  const { spectrumTop, zero, residualZero, rulerTop } = registers;
   // The canvas reaches from the spectrum's top to the ruler; its y is px down from there.
   const top = spectrumTop - 4;
   const height = rulerTop - top - 2;
@@ -88,7 +88,7 @@ export function BenchPlot({ drawing, analysis, registers, ruler, view, width, pa
     [view, width, top, registers, ruler, palette],
   );
   return (
-    <div className="absolute inset-x-0" style={{ top, height }} data-spectrum-height={spectrumHeight}>
+    <div className="absolute left-0" style={{ top, height, width }}>
       <Scatter
         key={`${palette.theme} ${palette.isPrint} ${view.join(" ")} ${width} ${ruler.max} ${ruler.ticks.length} ${ruler.up(100)}`}
         data={data}

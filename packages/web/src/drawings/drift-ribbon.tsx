@@ -154,7 +154,7 @@ export function DriftRibbon({ drift, series, todayOn: givenToday, onOpen, handle
           if (chosenPoint !== undefined && onOpen !== undefined) onOpen(chosenPoint.checkId);
         }}
       >
-        <div className="absolute inset-x-0" style={{ top: FLAGS, height: PLOT }}>
+        <div className="absolute left-0" style={{ top: FLAGS, height: PLOT, width }}>
           <RibbonPlot drift={drift} points={inView} span={span} errors={errors} palette={palette} width={width} />
         </div>
         <svg
@@ -381,7 +381,7 @@ function RibbonPlot({ drift, points, span, errors, palette, width }: PlotProps) 
     [drift.toleranceNm, drift.guardBandNm, points, palette],
   );
   // Chart.js takes its plugins when it is made: a new band asks for a new chart.
-  const key = `${palette.theme} ${palette.isPrint} ${width > 0} ${drift.toleranceNm} ${drift.guardBandNm} ${points.length} ${points[0]?.error ?? 0}`;
+  const key = `${palette.theme} ${palette.isPrint} ${width} ${drift.toleranceNm} ${drift.guardBandNm} ${points.length} ${points[0]?.error ?? 0}`;
   return <Scatter key={key} data={data} options={options} plugins={plugins} aria-hidden="true" />;
 }
 

@@ -1,6 +1,6 @@
-import { useEffect, useMemo, useState } from "react";
-import { flushSync } from "react-dom";
+import { useMemo } from "react";
 import { useTheme, type ThemeName } from "../shared/theme.ts";
+import { useIsPrint } from "./use-print.ts";
 
 const NAMES = [
   "ground",
@@ -42,13 +42,6 @@ function readPalette(theme: ThemeName, isPrint: boolean): Palette {
 /** The theme's colours for canvases, which know no CSS variables; followed through themes and printing. */
 export function usePalette(): Palette {
   const theme = useTheme();
-  const [isPrint, setPrint] = useState(false);
-  useEffect(() => {
-    const media = window.matchMedia("print");
-    // Before the page is printed there is one moment to draw it anew.
-    const follow = () => flushSync(() => setPrint(media.matches));
-    media.addEventListener("change", follow);
-    return () => media.removeEventListener("change", follow);
-  }, []);
+  const isPrint = useIsPrint();
   return useMemo(() => readPalette(theme, isPrint), [theme, isPrint]);
 }

@@ -1,6 +1,8 @@
 import { useLayoutEffect, useRef, useState, type RefObject } from "react";
+import { flushSync } from "react-dom";
+import { onPrint } from "./use-print.ts";
 
-/** Width of an element in whole px, followed as it changes; `initial` until it is on the page. */
+/** Width of an element in whole px, followed as it changes, on paper too; `initial` until it is on the page. */
 export function useWidth<E extends HTMLElement>(initial = 1032): [RefObject<E | null>, number] {
   const ref = useRef<E>(null);
   const [width, setWidth] = useState(initial);
@@ -14,7 +16,11 @@ export function useWidth<E extends HTMLElement>(initial = 1032): [RefObject<E | 
     measure();
     const observer = new ResizeObserver(measure);
     observer.observe(element);
-    return () => observer.disconnect();
+    const endPrint = onPrint(() => flushSync(measure));
+    return () => {
+      observer.disconnect();
+      endPrint();
+    };
   }, []);
   return [ref, width];
 }

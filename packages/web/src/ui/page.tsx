@@ -2,7 +2,7 @@
 import { useId, type ReactNode } from "react";
 import type { StatusState } from "./status.tsx";
 import { StatusShape } from "./status.tsx";
-import { useTitle } from "./use-title.ts";
+import { usePrintedFoot, useTitle } from "./use-title.ts";
 
 interface PageProps {
   /** A sentence wherever there is something to say. */
@@ -19,12 +19,16 @@ interface PageProps {
   actions?: ReactNode;
   /** One or two sentences below the title. */
   lead?: ReactNode;
+  /** Foot of every printed page: check number and record hash. */
+  foot?: string;
   children?: ReactNode;
 }
 
 /** Head of a page and the column that its sections stand in. */
-export function Page({ title, name, aside, state, status, actions, lead, children }: PageProps) {
-  useTitle(name ?? (typeof title === "string" ? title : "Wavekeep"));
+export function Page({ title, name, aside, state, status, actions, lead, foot, children }: PageProps) {
+  const shownName = name ?? (typeof title === "string" ? title : "Wavekeep");
+  useTitle(shownName);
+  usePrintedFoot(foot ?? shownName);
   return (
     <div className="page-column">
       <header className="book">

@@ -6,3 +6,14 @@ export function useTitle(name: string): void {
     document.title = name === "" || name === "Wavekeep" ? "Wavekeep" : `${name} · Wavekeep`;
   }, [name]);
 }
+
+/** What the foot of every printed page says at the left; the page's number stands at the right. */
+export function usePrintedFoot(text: string): void {
+  useEffect(() => {
+    const root = document.documentElement;
+    root.style.setProperty("--page-foot", JSON.stringify(text));
+    return () => {
+      root.style.removeProperty("--page-foot");
+    };
+  }, [text]);
+}
