@@ -45,7 +45,9 @@ export function PeopleTab() {
           </Button>
         )}
       </Section>
-      {data !== undefined && may("people.invite") && <Invitations invitations={data.invitations} />}
+      {data !== undefined && may("people.invite") && (
+        <Invitations invitations={data.invitations.filter((invitation) => invitation.state !== "accepted")} />
+      )}
       {data !== undefined && <BenchDevices devices={data.benchDevices} />}
       {dialog === "invite" && <InviteDialog onClose={() => setDialog(null)} />}
       {dialog === "deputy" && data !== undefined && (
