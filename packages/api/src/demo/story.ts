@@ -139,7 +139,7 @@ export const instruments: DemoInstrument[] = [
     name: "Turnstone", kind: "raman", maker: "Fenland Instruments (invented)", model: "Raman 785", serial: "FI-R785-12", owner: "oto", place: "Raman room", purchasedDaysAgo: 890, registeredDaysAgo: 537,
     axisKind: "wavelength", firstNm: 788, lastNm: 935, fwhmNm: 0.28, laserNm: 785, samples: 2048, pixelPitchUm: 14, groovesPerMm: 830, focalLengthMm: 200, fullScaleCounts: 65535,
     toleranceNm: 0.1, earlierTolerance: { toleranceNm: 0.12, changedDaysAgo: 4, time: "13:55", reason: "The new nitrate method asks for 0.10 nm." },
-    intervalDays: 28, graceDays: 3, firstDueDaysAgo: 536, assignedTo: "alix", statedReproducibilityNm: 0.006, repeats: 3,
+    intervalDays: 35, graceDays: 3, firstDueDaysAgo: 536, assignedTo: "alix", statedReproducibilityNm: 0.006, repeats: 3,
     sourceOn: () => "AR-1",
     errorNm: (nm) => 0.02 + 0.036 * along(nm, 794, 923),
     scatterNm: 0.0025, checks: [...plain(every(28, 32, 536), "alix", "10:50"), { daysAgo: 4, time: "10:41", by: "alix", condition: "as-found", until: "submitted", reviewedBy: "ida" }], events: [],
