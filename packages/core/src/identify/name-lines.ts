@@ -11,7 +11,7 @@
  *         against it, by no more than a factor of 90
  * Blends  published lines that no other found line claims and that lie within 0.6 FWHM of it (0.45 of its own, where
  *         that is more; broader than 1.9 times the usual it gets no name) belong to one found line.
- *         Companions below 12 % of the strongest of the group (0.5 % where they belong to another spectrum) give no name;
+ *         Companions below 12 % of the strongest of the group (1 % where they belong to another spectrum) give no name;
  *         what they may pull stays as uncertainty. If the place, judged by the other lines' axis, is nearer to one component
  *         than to the common centroid, the capture itself shows that this one carries most of the light: it gives the name,
  *         with its distance as uncertainty; else the centroid, whatever the published intensities, with half the
@@ -39,7 +39,7 @@ const broadReachShare = 0.45;
 const crowdRatio = 1.9;
 const companionShare = 0.12;
 /** Between spectra published intensities do not compare: only next to nothing is ignored there. */
-const companionShareOfOthers = 0.005;
+const companionShareOfOthers = 0.01;
 /** Published ratios are good to a factor of three: an ignored companion pulls by up to this times its published share. */
 const companionFactor = 2;
 const negligiblePullNm = 0.0003;
@@ -51,10 +51,10 @@ const carrierShare = 0.5;
 const leastOdds = 80;
 /** Of a faint line at or beyond the outermost explained one, where nothing bears the axis out, more is asked. */
 const leastOddsOutside = 400;
-/** Strays expected before any is seen: among lines near the faintest found one unlisted lines are common. */
+/** Strays expected before any is seen: near the limit of detection unlisted lines are common. */
 const brightStrays = 0.5;
 const faintStrays = 2;
-const faintFactor = 4;
+const faintSignalToNoise = 25;
 /** Lines of ions are seldom seen: what counts in place of the first two of their class. */
 const ionPrior = 0.2;
 const largestHeightPenalty = 4.5;
@@ -243,7 +243,9 @@ function decide(
   for (let i = 0; i < count; i++) {
     const share = shares[i] as number[];
     if (share.length === 0 || problem.usable[i] === 0 || (problem.widthRatio[i] as number) > crowdRatio) continue;
-    const own = agreement.shrink * (problem.lineUncNm[i] as number);
+    // Common agreement says nothing of lines whose tops are cut off or which hide others.
+    const isSound = problem.saturated[i] === 0 && problem.broad[i] === 0;
+    const own = (isSound ? agreement.shrink : 1) * (problem.lineUncNm[i] as number);
     const axis = fit.axisUncNm[i] as number;
     const sd = Math.sqrt(own * own + axis * axis + fit.scatterNm * fit.scatterNm);
     const most = (problem.saturated[i] === 1 ? saturatedGateShare : gateShare) * fwhmNm;
@@ -356,13 +358,11 @@ function keepLikely(
   let high = Number.NEGATIVE_INFINITY;
   let firstExplained = Number.POSITIVE_INFINITY;
   let lastExplained = Number.NEGATIVE_INFINITY;
-  let faintest = Number.POSITIVE_INFINITY;
   const strayHeights: number[] = [];
   const heights: number[] = [];
   for (let i = 0; i < count; i++) {
     low = Math.min(low, places[i] as number);
     high = Math.max(high, places[i] as number);
-    if (problem.usable[i] === 1) faintest = Math.min(faintest, problem.heightCounts[i] as number);
     if (naming.explained[i] === 1) {
       firstExplained = Math.min(firstExplained, places[i] as number);
       lastExplained = Math.max(lastExplained, places[i] as number);
@@ -393,7 +393,7 @@ function keepLikely(
       continue;
     }
     const height = problem.heightCounts[i] as number;
-    const isFaint = height < faintFactor * faintest;
+    const isFaint = (problem.signalToNoise[i] as number) < faintSignalToNoise;
     let strays = isFaint ? faintStrays : brightStrays;
     for (const other of strayHeights) if (other >= strayHeightShare * height) strays += 1;
     const brighter = (brightness(problem, table, i, reference) - usual) / scatter;

@@ -4,12 +4,12 @@
  * Another lamp is looked for with the same search, each element of the line list alone. A second gas is looked for on the
  * axis already found: prominent lines of another element on lines left without a name, scored as in `score`.
  */
-import type { LineList } from "../analysis/types.ts";
+import type { LineList, ReferenceLine } from "../analysis/types.ts";
 import { elementsOf } from "../linelist/built-in.ts";
 import { log } from "../numeric/elementary.ts";
 import type { Naming } from "./name-lines.ts";
 import type { Problem } from "./problem.ts";
-import { lowerBound, referenceTable } from "./reference-table.ts";
+import { isIon, lowerBound, referenceTable, type ReferenceTable } from "./reference-table.ts";
 import { correctedNm, strongCount } from "./score.ts";
 
 const names: Record<string, string> = {
@@ -82,7 +82,9 @@ export interface OtherGas {
   text: string;
 }
 
-const prominent = 0.3;
+const prominent = 0.05;
+const isProminent = (table: ReferenceTable, j: number): boolean =>
+  (table.strength[j] as number) >= prominent && !isIon(table.lines[j] as ReferenceLine);
 const nearShare = 0.2;
 const disputedShare = 0.5;
 /** ln of the odds that a second gas must reach: several prominent lines, each on an unnamed line. */
@@ -100,7 +102,7 @@ export function findOtherGases(input: Asked, problem: Problem, naming: Naming): 
   for (const element of otherElements(input.lineList, input.elements)) {
     const table = referenceTable(input.lineList, [element], [], low, high, problem.meaning);
     const strongest: number[] = [];
-    for (let j = 0; j < table.nm.length; j++) if ((table.strength[j] as number) >= prominent) strongest.push(j);
+    for (let j = 0; j < table.nm.length; j++) if (isProminent(table, j)) strongest.push(j);
     if (strongest.length < 2) continue;
     const width = nearShare * problem.fwhmNm;
     const gain = log(problem.spanNm / (strongest.length * 2 * width));
@@ -112,13 +114,15 @@ export function findOtherGases(input: Asked, problem: Problem, naming: Naming): 
         j < table.nm.length && (table.nm[j] as number) <= nm + width;
         j++
       ) {
-        if ((table.strength[j] as number) < prominent) continue;
+        if (!isProminent(table, j)) continue;
         lines.push(i);
         break;
       }
     }
     const evidence =
-      lines.length * gain - (strongest.length - lines.length) * 0.5 - (unnamed.length - lines.length) * 0.7;
+      lines.length * gain -
+      Math.min((strongest.length - lines.length) * 0.3, 3) -
+      (unnamed.length - lines.length) * 0.7;
     if (lines.length < 2 || evidence < leastEvidence) continue;
     const disputed: number[] = [];
     for (let i = 0; i < problem.count; i++) {
@@ -130,7 +134,7 @@ export function findOtherGases(input: Asked, problem: Problem, naming: Naming): 
         j < table.nm.length && (table.nm[j] as number) <= nm + reach;
         j++
       ) {
-        if ((table.strength[j] as number) >= prominent) disputed.push(i);
+        if (isProminent(table, j)) disputed.push(i);
       }
     }
     const places = lines.map((i) => correctedNm(problem, correction, i).toFixed(1)).sort();

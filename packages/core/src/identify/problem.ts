@@ -37,6 +37,7 @@ export interface Problem {
   /** Standard uncertainty of each line's position as a wavelength, nm, widened where its flags say so. */
   lineUncNm: Float64Array;
   heightCounts: Float64Array;
+  signalToNoise: Float64Array;
   /** Lines that may name themselves: spikes and lines at the edge may not. */
   usable: Uint8Array;
   saturated: Uint8Array;
@@ -110,6 +111,7 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
     baseNm: new Float64Array(count),
     lineUncNm: new Float64Array(count),
     heightCounts: new Float64Array(count),
+    signalToNoise: new Float64Array(count),
     usable: new Uint8Array(count),
     saturated: new Uint8Array(count),
     broad: new Uint8Array(count),
@@ -150,6 +152,7 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
     problem.widthRatio[i] = line.flags.includes("blend") ? 1 : Math.max(1, line.fwhm / input.medianFwhm);
     problem.lineUncNm[i] = Math.sqrt(unc * unc + share * share * fwhmNm * fwhmNm + hidden * hidden);
     problem.heightCounts[i] = line.peakHeightCounts;
+    problem.signalToNoise[i] = line.signalToNoise;
     problem.saturated[i] = isSaturated ? 1 : 0;
     problem.usable[i] = line.flags.includes("spike") ? 0 : 1;
   }
