@@ -239,7 +239,7 @@ export function CheckField({
         type="checkbox"
         {...input}
         aria-describedby={note === undefined ? undefined : `${id}-note`}
-        className="mt-[3px] h-[14px] w-[14px] flex-none accent-(--accent)"
+        className="mt-[3px] h-[14px] w-[14px] flex-none"
       />
       <div>
         <label htmlFor={id}>{label}</label>
