@@ -10,7 +10,7 @@
  *   brightness  published intensity to the power 0.8, times a log-normal factor of 3 (one sigma) per line and lamp, times a
  *               smooth detector response falling to 5 % at an end; strongest line at 60 to 4,000 times the noise
  *   found       lines above 6 times the noise; 4 % of them lost; closer than 0.8 FWHM: merged at their common centroid, as wide as their spread makes them
- *   strays      0.6 a capture on average, any height, anywhere but within a quarter of a FWHM of a published line of the lamp
+ *   strays      0.6 a capture on average, any height, anywhere but within half a FWHM of a published line of the lamp
  *               (on top of one nothing could tell them apart); room-light mercury in 5 % of captures of lamps without it
  *   saturation  in a quarter of captures the strongest one to three lines are cut off (flagged), off by 0.06 FWHM
  *   scatter     the stated uncertainty, and 0.01 FWHM more that is not stated
@@ -234,7 +234,7 @@ function draw(list: LineList, random: Random, options: GeneratorOptions): Genera
     if (emitted.some((one) => one.height > 2 && Math.abs(one.position - position) < 1.2 * fwhmPx)) continue;
     const onALine = seen.some((line) => {
       const nm = line.wavelengthAirNm ?? line.wavelengthVacuumNm;
-      return nm > low && nm < high && Math.abs(half + tOf(nm) * half - position) < 0.25 * fwhmPx;
+      return nm > low && nm < high && Math.abs(half + tOf(nm) * half - position) < 0.5 * fwhmPx;
     });
     if (onALine) continue;
     add(position, 6 * Math.exp(random.uniform() * Math.log(strongestRatio / 6)), null);

@@ -5,7 +5,8 @@
  * Place   known to 0.3 FWHM from the other lines; within 3.5 standard uncertainties (line, axis without that line, scatter)
  *         and 0.22 FWHM of a published line, with no other one that the axis could not tell from it; and among the lines
  *         next to it that are not much fainter, at least a third lie on published lines too
- * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 80: density of the place times
+ * Odds    P(the lamp's line) / P(a stray in its place, the lamp's own not seen) of at least 80 (outermost lines 160, faint ones there 400):
+ *         density of the place times
  *         s/(1 - s), s the share of its class (published lines of about its strength) that was found, against strays of its
  *         brightness spread evenly over the capture; a height far from what its published intensity leads to expect counts
  *         against it, by no more than a factor of 90
@@ -49,8 +50,9 @@ const leastShrink = 0.3;
 /** A component that may carry a blend: at least this share of the group's strongest. */
 const carrierShare = 0.5;
 const leastOdds = 80;
-/** Of a faint line at or beyond the outermost explained one, where nothing bears the axis out, more is asked. */
-const leastOddsOutside = 400;
+/** Of the outermost lines, where nothing beyond bears the axis out, more is asked; of faint ones most. */
+const leastOddsOutside = 160;
+const leastOddsOfFaintOutside = 400;
 /** Strays expected before any is seen: near the limit of detection unlisted lines are common. */
 const brightStrays = 0.5;
 const faintStrays = 2;
@@ -407,7 +409,8 @@ function keepLikely(
       Math.min(0.5 * z * z, largestHeightPenalty);
     naming.logOdds[i] = odds;
     const isOutside = (places[i] as number) <= firstExplained || (places[i] as number) >= lastExplained;
-    if (exp(odds) >= (isFaint && isOutside ? leastOddsOutside : leastOdds)) continue;
+    const least = !isOutside ? leastOdds : isFaint ? leastOddsOfFaintOutside : leastOddsOutside;
+    if (exp(odds) >= least) continue;
     naming.reference[i] = -1;
     naming.components[i] = [];
   }

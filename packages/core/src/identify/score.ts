@@ -150,6 +150,23 @@ export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds,
   };
 }
 
+/** ln g of every line, at one width; NaN for lines that may not name themselves. */
+export function lineEvidence(
+  problem: Problem,
+  table: ReferenceTable,
+  odds: Odds,
+  correction: Float64Array,
+  width: number,
+): Float64Array {
+  const evidence = new Float64Array(problem.count).fill(Number.NaN);
+  const strong = strongCount(problem);
+  problem.byHeight.forEach((i, rank) => {
+    const pi = rank < strong ? odds.strong : odds.weak;
+    evidence[i] = log(lineOdds(problem, table, odds.windowNm, pi, correctedNm(problem, correction, i), i, width));
+  });
+  return evidence;
+}
+
 /** g of one line. */
 function lineOdds(
   problem: Problem,
