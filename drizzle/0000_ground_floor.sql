@@ -238,6 +238,7 @@ CREATE TABLE "configurations" (
 	"instrument_id" uuid NOT NULL,
 	"ordinal" integer NOT NULL,
 	"name" text,
+	"replaces_id" uuid,
 	"from_on" date NOT NULL,
 	"to_on" date,
 	"ended_reason" text,
@@ -259,6 +260,8 @@ CREATE TABLE "configurations" (
 	"version" integer DEFAULT 0 NOT NULL,
 	CONSTRAINT "configurations_lab_id_id_pk" PRIMARY KEY("lab_id","id"),
 	CONSTRAINT "configurations_ordinal" UNIQUE("lab_id","instrument_id","ordinal"),
+	CONSTRAINT "configurations_replaced_once" UNIQUE("lab_id","replaces_id"),
+	CONSTRAINT "configurations_name" CHECK ("configurations"."name" <> ''),
 	CONSTRAINT "configurations_axis_kind" CHECK ("configurations"."axis_kind" in ('pixel', 'wavelength', 'step')),
 	CONSTRAINT "configurations_axis_meaning" CHECK ("configurations"."axis_meaning" in ('vacuum', 'standard-air', 'room-air')),
 	CONSTRAINT "configurations_range" CHECK ("configurations"."range_first_nm" < "configurations"."range_last_nm"),
@@ -690,6 +693,7 @@ ALTER TABLE "axes" ADD CONSTRAINT "axes_lab_id_configuration_id_configurations_l
 ALTER TABLE "axes" ADD CONSTRAINT "axes_lab_id_from_check_id_checks_lab_id_id_fk" FOREIGN KEY ("lab_id","from_check_id") REFERENCES "public"."checks"("lab_id","id") ON DELETE restrict ON UPDATE restrict;--> statement-breakpoint
 ALTER TABLE "axes" ADD CONSTRAINT "axes_lab_id_set_by_memberships_lab_id_person_id_fk" FOREIGN KEY ("lab_id","set_by") REFERENCES "public"."memberships"("lab_id","person_id") ON DELETE restrict ON UPDATE restrict;--> statement-breakpoint
 ALTER TABLE "configurations" ADD CONSTRAINT "configurations_lab_id_instrument_id_instruments_lab_id_id_fk" FOREIGN KEY ("lab_id","instrument_id") REFERENCES "public"."instruments"("lab_id","id") ON DELETE restrict ON UPDATE restrict;--> statement-breakpoint
+ALTER TABLE "configurations" ADD CONSTRAINT "configurations_lab_id_replaces_id_configurations_lab_id_id_fk" FOREIGN KEY ("lab_id","replaces_id") REFERENCES "public"."configurations"("lab_id","id") ON DELETE restrict ON UPDATE restrict;--> statement-breakpoint
 ALTER TABLE "configurations" ADD CONSTRAINT "configurations_lab_id_assigned_to_id_memberships_lab_id_person_id_fk" FOREIGN KEY ("lab_id","assigned_to_id") REFERENCES "public"."memberships"("lab_id","person_id") ON DELETE restrict ON UPDATE restrict;--> statement-breakpoint
 ALTER TABLE "configurations" ADD CONSTRAINT "configurations_lab_id_procedure_id_procedures_lab_id_id_fk" FOREIGN KEY ("lab_id","procedure_id") REFERENCES "public"."procedures"("lab_id","id") ON DELETE restrict ON UPDATE restrict;--> statement-breakpoint
 ALTER TABLE "configurations" ADD CONSTRAINT "configurations_lab_id_as_left_asked_by_check_id_checks_lab_id_id_fk" FOREIGN KEY ("lab_id","as_left_asked_by_check_id") REFERENCES "public"."checks"("lab_id","id") ON DELETE restrict ON UPDATE restrict;--> statement-breakpoint
@@ -763,6 +767,7 @@ CREATE INDEX "trail_entries_by_time" ON "trail_entries" USING btree ("lab_id","a
 CREATE UNIQUE INDEX "mail_outbox_cause" ON "mail_outbox" USING btree ("lab_id","cause_key");--> statement-breakpoint
 CREATE INDEX "mail_outbox_by_time" ON "mail_outbox" USING btree ("lab_id","queued_at");--> statement-breakpoint
 CREATE INDEX "idempotency_keys_by_time" ON "idempotency_keys" USING btree ("created_at");--> statement-breakpoint
+CREATE UNIQUE INDEX "configurations_name_in_use" ON "configurations" USING btree ("lab_id","instrument_id",lower(coalesce("name", ''))) WHERE "configurations"."to_on" is null;--> statement-breakpoint
 CREATE INDEX "configurations_by_due" ON "configurations" USING btree ("lab_id","due_on");--> statement-breakpoint
 CREATE INDEX "instrument_events_by_configuration" ON "instrument_events" USING btree ("lab_id","configuration_id","happened_on");--> statement-breakpoint
 CREATE UNIQUE INDEX "instruments_name_in_use" ON "instruments" USING btree ("lab_id",lower("name")) WHERE "instruments"."retired_at" is null;--> statement-breakpoint

@@ -360,8 +360,11 @@ describe("axes and configurations", () => {
       await measure(tam.client, id, { captures: [neonCapture("2024-09-17")], sourceId: neonId }),
     );
     expect(shifted.analysis!.verdict!.verdict).toBe("fail");
-    const before = await configurationOf(bench);
     const path = `/configurations/${id}/axes`;
+    const early = { checkId: shifted.summary.id, reason: "new axis", version: (await configurationOf(bench)).version };
+    expect((await lab.manager.client.post(path, early)).body.detail).toMatch(/is not approved yet/);
+    await approve(lab.manager.client, shifted);
+    const before = await configurationOf(bench);
     expect(
       (await tam.client.post(path, { checkId: shifted.summary.id, reason: "new axis", version: before.version }))
         .status,
@@ -380,7 +383,7 @@ describe("axes and configurations", () => {
     expect(left.analysis!.verdict!.verdict).toBe("pass");
     const { body: drift } = await tam.client.get(`/configurations/${id}/drift`).expect(200);
     expect(drift.events).toMatchObject([{ kind: "adjusted", title: "Adjusted, axis no. 2", breaksDrift: true }]);
-    const early = await tam.client.post("/events", {
+    const toCome = await tam.client.post("/events", {
       configurationId: id,
       kind: "moved",
       title: "Moved to bench 3",
@@ -388,7 +391,7 @@ describe("axes and configurations", () => {
       note: "",
       breaksDrift: true,
     });
-    expect(early.status).toBe(400);
+    expect(toCome.status).toBe(400);
   });
 
   test("a new grating ends a configuration and begins the next: histories are not joined", async () => {
@@ -403,6 +406,8 @@ describe("axes and configurations", () => {
     const today = new Intl.DateTimeFormat("sv-SE", { timeZone: "Europe/Berlin" }).format(new Date());
     const { body } = await lab.manager.client
       .post(`/instruments/${bench.id}/configurations`, {
+        replacesId: bench.currentConfigurationId,
+        presentName: null,
         reason: "grating of 1 200 lines",
         fromOn: today,
         configuration: { ...plain, name: "1 200 lines", rangeFirstNm: 550, rangeLastNm: 900 },
@@ -413,6 +418,7 @@ describe("axes and configurations", () => {
       .expect(200);
     expect(body.configurations).toHaveLength(2);
     expect(body.configurations[0]).toMatchObject({ toOn: today, standing: { standing: "retired" } });
+    expect(body.configurations[1]).toMatchObject({ replacesId: bench.currentConfigurationId, name: "1 200 lines" });
     expect(body).toMatchObject({
       state: "not-judged",
       currentConfigurationId: body.configurations[1].id,

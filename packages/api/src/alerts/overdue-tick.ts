@@ -4,6 +4,7 @@ import type { Standing } from "../contract/common.ts";
 import type { Database } from "../db/connection.ts";
 import { configurations, instruments, sources } from "../db/schema/index.ts";
 import { asWavekeep, inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
+import { calledText, configurationPath } from "../instruments/called.ts";
 import { dateIn, dayText, daysBetween, dueText } from "../instruments/dates.ts";
 import { findStanding, listManagers, lockConfiguration } from "../instruments/queries.ts";
 import type { Jobs } from "../jobs/jobs.ts";
@@ -34,7 +35,8 @@ async function openOverdue(tx: Tx, ctx: Context, work: TickWork, today: string):
     .select({
       configurationId: configurations.id,
       instrumentId: instruments.id,
-      name: instruments.name,
+      instrumentName: instruments.name,
+      configurationName: configurations.name,
       ownerId: instruments.ownerId,
     })
     .from(configurations)
@@ -58,11 +60,12 @@ async function openOverdue(tx: Tx, ctx: Context, work: TickWork, today: string):
     // What is out of use is not due: it is held by something stronger.
     if (standing !== "in-service" && standing !== "restricted") continue;
     const dueOn = configuration.dueOn!;
+    const called = calledText(one.instrumentName, one.configurationName);
     const opened = await openAlert(tx, ctx, {
       kind: "overdue",
       about: { instrumentId: one.instrumentId, configurationId: one.configurationId },
       checkId: null,
-      title: `The check of ${one.name} is overdue`,
+      title: `The check of ${called} is overdue`,
       detail: `It was due on ${dayText(dueOn)}.`,
     });
     if (opened.length === 0) continue;
@@ -75,8 +78,8 @@ async function openOverdue(tx: Tx, ctx: Context, work: TickWork, today: string):
     for (const personId of told) {
       await queueMail(tx, ctx, work.jobs, {
         to: { personId },
-        subject: `The check of ${one.name} is overdue`,
-        text: `The check of ${one.name} was due on ${dayText(dueOn)} and is ${dueText(daysBetween(today, dueOn))}.\n\n${work.config.publicUrl}/instruments/${one.instrumentId}\n`,
+        subject: `The check of ${called} is overdue`,
+        text: `The check of ${called} was due on ${dayText(dueOn)} and is ${dueText(daysBetween(today, dueOn))}.\n\n${work.config.publicUrl}${configurationPath(one)}\n`,
         causeKey: `overdue:${one.configurationId}:${dueOn}:${personId}`,
       });
     }

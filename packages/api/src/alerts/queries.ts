@@ -1,7 +1,7 @@
 /** Alerts: SQL only. */
 import { and, desc, eq, isNotNull, isNull, sql } from "drizzle-orm";
 import { alias } from "drizzle-orm/pg-core";
-import { alerts, checks, instruments, people, sources } from "../db/schema/index.ts";
+import { alerts, checks, configurations, instruments, people, sources } from "../db/schema/index.ts";
 import type { Tx } from "../db/tenancy.ts";
 import { notFound } from "../http/problem.ts";
 
@@ -22,6 +22,7 @@ export function listAlertRows(tx: Tx, filter: AlertFilter) {
     .select({
       alert: alerts,
       instrumentName: instruments.name,
+      configurationName: configurations.name,
       ownerId: instruments.ownerId,
       ownerName: owner.name,
       sourceLabel: sources.label,
@@ -30,6 +31,10 @@ export function listAlertRows(tx: Tx, filter: AlertFilter) {
     })
     .from(alerts)
     .leftJoin(instruments, and(eq(instruments.labId, alerts.labId), eq(instruments.id, alerts.instrumentId)))
+    .leftJoin(
+      configurations,
+      and(eq(configurations.labId, alerts.labId), eq(configurations.id, alerts.configurationId)),
+    )
     .leftJoin(owner, eq(owner.id, instruments.ownerId))
     .leftJoin(sources, and(eq(sources.labId, alerts.labId), eq(sources.id, alerts.sourceId)))
     .leftJoin(checks, and(eq(checks.labId, alerts.labId), eq(checks.id, alerts.checkId)))

@@ -107,6 +107,8 @@ export function presentAlert(ctx: Context, row: AlertRow): Alert {
     detail: alert.detail,
     instrumentId: alert.instrumentId,
     instrumentName: row.instrumentName,
+    configurationId: alert.configurationId,
+    configurationName: row.configurationName,
     sourceId: alert.sourceId,
     sourceLabel: row.sourceLabel,
     owner: row.ownerId === null ? null : { id: row.ownerId, name: row.ownerName ?? "" },

@@ -1,7 +1,8 @@
 /** Alerts that a check's verdict opens when it is submitted, and closes when it is approved. */
 import type { StoredResult } from "../db/schema/analyses.ts";
 import { recordNow, type Context, type Tx } from "../db/tenancy.ts";
-import { findInstrument, findStanding } from "../instruments/queries.ts";
+import { calledText } from "../instruments/called.ts";
+import { findConfiguration, findInstrument, findStanding } from "../instruments/queries.ts";
 import { isInUse } from "../instruments/states.ts";
 import type { Standing } from "../contract/common.ts";
 import type { CheckRecord } from "../checks/queries.ts";
@@ -19,7 +20,8 @@ export async function openVerdictAlerts(
   { check, result, reasons }: { check: CheckRecord; result: StoredResult; reasons: readonly string[] },
 ): Promise<TrailInput[]> {
   const { instrument } = await findInstrument(tx, check.instrumentId);
-  const said = whatToSay(instrument.name, check.number, result, reasons);
+  const { name } = await findConfiguration(tx, check.configurationId);
+  const said = whatToSay(calledText(instrument.name, name), check.number, result, reasons);
   if (said === null) return [];
   const about = { instrumentId: instrument.id, configurationId: check.configurationId };
   const entries = await openAlert(tx, ctx, { ...said, about, checkId: check.id });
@@ -35,7 +37,7 @@ export async function openVerdictAlerts(
 }
 
 function whatToSay(
-  instrumentName: string,
+  called: string,
   checkNumber: string,
   result: StoredResult,
   reasons: readonly string[],
@@ -44,14 +46,14 @@ function whatToSay(
     const used = result.toleranceUsed === null ? "" : `, ${percentText(result.toleranceUsed)} of it used`;
     return {
       kind: "near-limit",
-      title: `${instrumentName} is near its limit`,
+      title: `${called} is near its limit`,
       detail: `${worstText(result) ?? "A line is above the warning limit"}${used} (${checkNumber}).`,
     };
   }
   if (result.verdict === "inconclusive") {
     return {
       kind: "inconclusive",
-      title: `The last check of ${instrumentName} is inconclusive`,
+      title: `The last check of ${called} is inconclusive`,
       detail: `${reasons[0] ?? `${worstText(result) ?? "A line"}, inside the guard band.`} (${checkNumber})`,
     };
   }

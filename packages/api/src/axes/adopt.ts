@@ -1,5 +1,5 @@
 /** Putting an axis in force: the first one of a configuration when its check is approved, a later one by a manager's decision. */
-import { desc, eq } from "drizzle-orm";
+import { eq } from "drizzle-orm";
 import type { Dispersion } from "@wavekeep/core";
 import type { z } from "zod";
 import type { adoptAxisInput, Configuration } from "../contract/instruments.ts";
@@ -8,9 +8,10 @@ import type { Database } from "../db/connection.ts";
 import { axes, configurations, instrumentEvents } from "../db/schema/index.ts";
 import { inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
+import { calledText } from "../instruments/called.ts";
 import { dateIn } from "../instruments/dates.ts";
 import { aboutConfiguration, lockForChange, readConfiguration } from "../instruments/configurations.ts";
-import type { ConfigurationRow, InstrumentRow } from "../instruments/queries.ts";
+import { findAxisAt, type ConfigurationRow, type InstrumentRow } from "../instruments/queries.ts";
 import {
   findCheck,
   findOptionalAnalysis,
@@ -19,6 +20,7 @@ import {
   type CheckRecord,
   type SubmissionRow,
 } from "../checks/queries.ts";
+import { findLastAxisNumber } from "./queries.ts";
 import { writeTrail, type TrailInput } from "../records/trail.ts";
 
 /** The first axis of a configuration that had none, from the approved check that fitted it. Nothing where one is in force. */
@@ -30,13 +32,13 @@ export async function adoptFirstAxis(
   const { check, submission, configuration, instrument } = from;
   const analysis = await findOptionalAnalysis(tx, { id: submission.analysisId });
   const dispersion = analysis?.analysis.dispersion ?? null;
-  if (dispersion === null || (await findLastNumber(tx, configuration.id)) > 0) return [];
+  if (dispersion === null || (await findLastAxisNumber(tx, configuration.id)) > 0) return [];
   const entered = await insertAxis(tx, ctx, {
     configurationId: configuration.id,
     number: 1,
     dispersion,
     checkId: check.id,
-    reason: `Fitted by ${check.number}, approved`,
+    reason: `The first, fitted by ${check.number}`,
     setBy: null,
   });
   return [
@@ -49,7 +51,7 @@ export async function adoptFirstAxis(
   ];
 }
 
-/** A manager puts the axis that a submitted check has fitted in force. It is an adjustment: the drift series breaks here. */
+/** A manager puts the axis that an approved check has fitted in force. It is an adjustment: the drift series breaks here. */
 export function adoptAxis(
   db: Database,
   ctx: Context,
@@ -59,9 +61,8 @@ export function adoptAxis(
   return inLab(db, ctx, async (tx) => {
     const { stored, instrument } = await lockForChange(tx, ctx, configurationId, input);
     const check = await findCheck(tx, input.checkId);
-    const dispersion = await findAdoptable(tx, check, stored);
-    const number = (await findLastNumber(tx, configurationId)) + 1;
     const now = await recordNow(tx);
+    const { dispersion, number } = await findAdoptable(tx, check, stored, now);
     const entered = await insertAxis(tx, ctx, {
       configurationId,
       number,
@@ -94,7 +95,12 @@ export function adoptAxis(
       axisEntry(stored, instrument, check, { ...entered, number, dispersion, why: input.reason }),
       {
         action: "event.logged",
-        about: { kind: "event", id: eventId, label: instrument.name, instrumentId: instrument.id },
+        about: {
+          kind: "event",
+          id: eventId,
+          label: calledText(instrument.name, stored.name),
+          instrumentId: instrument.id,
+        },
         after: { kind: "adjusted", title, happenedOn, note: input.reason, breaksDrift: true },
         rows: [{ table: "instrument_events", id: eventId }],
       },
@@ -103,7 +109,12 @@ export function adoptAxis(
   });
 }
 
-async function findAdoptable(tx: Tx, check: CheckRecord, configuration: ConfigurationRow): Promise<Dispersion> {
+async function findAdoptable(
+  tx: Tx,
+  check: CheckRecord,
+  configuration: ConfigurationRow,
+  now: Date,
+): Promise<{ dispersion: Dispersion; number: number }> {
   if (check.configurationId !== configuration.id)
     throw problem(
       "conflict",
@@ -116,10 +127,10 @@ async function findAdoptable(tx: Tx, check: CheckRecord, configuration: Configur
     );
   const state = await findState(tx, check.id);
   const submission = await findOptionalSubmission(tx, check.id);
-  if (submission === null || (state !== "submitted" && state !== "approved"))
+  if (submission === null || state !== "approved")
     throw problem(
       "conflict",
-      `${check.number} is not submitted; only a signed check gives an axis. Nothing was changed.`,
+      `${check.number} is not approved yet; only a reviewed and approved check gives an axis. Nothing was changed.`,
     );
   const analysis = await findOptionalAnalysis(tx, { id: submission.analysisId });
   const dispersion = analysis?.analysis.dispersion ?? null;
@@ -128,17 +139,13 @@ async function findAdoptable(tx: Tx, check: CheckRecord, configuration: Configur
       "unusable",
       `${check.number} fitted no axis: too few of its lines could be used. Nothing was changed.`,
     );
-  return dispersion;
-}
-
-async function findLastNumber(tx: Tx, configurationId: string): Promise<number> {
-  const [row] = await tx
-    .select({ number: axes.number })
-    .from(axes)
-    .where(eq(axes.configurationId, configurationId))
-    .orderBy(desc(axes.number))
-    .limit(1);
-  return row?.number ?? 0;
+  const inForce = await findAxisAt(tx, configuration.id, now);
+  if (inForce !== null && inForce.fromCheckId === check.id)
+    throw problem(
+      "conflict",
+      `The axis of ${check.number} is in force already, as no. ${inForce.number}. Nothing was changed.`,
+    );
+  return { dispersion, number: (await findLastAxisNumber(tx, configuration.id)) + 1 };
 }
 
 async function insertAxis(

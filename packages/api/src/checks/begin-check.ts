@@ -7,6 +7,7 @@ import type { Database } from "../db/connection.ts";
 import { checkAttempts, checkDrafts, checks, sources, submissions, type StoredDraft } from "../db/schema/index.ts";
 import { inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
+import { calledText } from "../instruments/called.ts";
 import { yearIn } from "../instruments/dates.ts";
 import {
   findAxisAt,
@@ -15,7 +16,7 @@ import {
   takeNumber,
   type ConfigurationRow,
 } from "../instruments/queries.ts";
-import { assertNotRetired } from "../instruments/service.ts";
+import { assertNotRetired } from "../instruments/rules.ts";
 import { findProcedure } from "../procedures/queries.ts";
 import { writeTrail } from "../records/trail.ts";
 import { addContributor, addEvent, findCheck } from "./queries.ts";
@@ -29,7 +30,7 @@ export function beginCheck(db: Database, ctx: Context, input: z.output<typeof be
     if (configuration.toOn !== null)
       throw problem(
         "conflict",
-        `This configuration of ${instrument.name} has ended: begin the check on the present one.`,
+        `This configuration of ${calledText(instrument.name, configuration.name)} has ended: begin the check on a present one.`,
       );
     const followsCheckId =
       input.followsCheckId ?? (input.condition === "as-left" ? configuration.asLeftAskedByCheckId : null);
@@ -68,7 +69,7 @@ export function beginCheck(db: Database, ctx: Context, input: z.output<typeof be
       about: { kind: "check", id, label: number, instrumentId: instrument.id, checkId: id },
       after: {
         condition: input.condition,
-        instrument: instrument.name,
+        instrument: calledText(instrument.name, configuration.name),
         procedure: `${procedure.code}, version ${procedure.version}`,
         followsCheckId,
       },

@@ -9,6 +9,7 @@ import { newId } from "../db/columns.ts";
 import { configurations, standingEntries } from "../db/schema/index.ts";
 import { recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { openImpactReview } from "../impact/open-review.ts";
+import { calledText } from "../instruments/called.ts";
 import { momentText } from "../instruments/dates.ts";
 import {
   findInstrument,
@@ -67,13 +68,21 @@ export async function placeHold(
       kind: "out-of-tolerance",
       about: { instrumentId: instrument.id, configurationId: configuration.id },
       checkId: check.id,
-      title: `${instrument.name} is out of tolerance`,
+      title: `${calledText(instrument.name, configuration.name)} is out of tolerance`,
       detail: `${finding} (${check.number}, ${check.condition === "as-left" ? "as left" : "as found"}).`,
     })),
   );
   const review = await openImpactReview(tx, ctx, { check, result: analysis.result, wasInUse });
   if (review !== null) entries.push(review.entry);
-  await tellPeople(tx, ctx, work, { instrument, check, finding, reviewNumber: review?.number ?? null, wasInUse });
+  const called = calledText(instrument.name, configuration.name);
+  await tellPeople(tx, ctx, work, {
+    instrument,
+    called,
+    check,
+    finding,
+    reviewNumber: review?.number ?? null,
+    wasInUse,
+  });
   return entries;
 }
 
@@ -118,7 +127,7 @@ const aboutConfiguration = (
 ): TrailInput["about"] => ({
   kind: "configuration",
   id: configuration.id,
-  label: instrument.name,
+  label: calledText(instrument.name, configuration.name),
   instrumentId: instrument.id,
   checkId: check.id,
 });
@@ -129,21 +138,22 @@ async function tellPeople(
   work: HoldWork,
   told: {
     instrument: InstrumentRow;
+    called: string;
     check: CheckRecord;
     finding: string;
     reviewNumber: string | null;
     wasInUse: boolean;
   },
 ): Promise<void> {
-  const { instrument, check, finding } = told;
+  const { instrument, called, check, finding } = told;
   const now = await recordNow(tx);
   const managers = await listManagers(tx);
   const people = [instrument.ownerId, ...managers.map((manager) => manager.personId)];
   const paragraphs = [
     `${finding}.`,
     told.wasInUse
-      ? `${instrument.name} has been on hold since ${momentText(ctx.zone, now)}: a lab manager confirms the hold or lifts it, and an as-left check is asked for.`
-      : `${instrument.name} was out of use already; an as-left check is asked for.`,
+      ? `${called} has been on hold since ${momentText(ctx.zone, now)}: a lab manager confirms the hold or lifts it, and an as-left check is asked for.`
+      : `${called} was out of use already; an as-left check is asked for.`,
     told.reviewNumber === null
       ? null
       : `Impact review ${told.reviewNumber} waits for its owner: which results since the last good check are in doubt, and what is done about them.`,
@@ -152,7 +162,7 @@ async function tellPeople(
   for (const personId of new Set(people)) {
     await queueMail(tx, ctx, work.jobs, {
       to: { personId },
-      subject: `${instrument.name} is out of tolerance${told.wasInUse ? " and on hold" : ""}, ${check.number}`,
+      subject: `${called} is out of tolerance${told.wasInUse ? " and on hold" : ""}, ${check.number}`,
       text: `${paragraphs.filter((text) => text !== null).join("\n\n")}\n`,
       causeKey: `hold:${check.id}:${personId}:${now.toISOString()}`,
     });

@@ -46,7 +46,7 @@ export interface CheckFilter {
   states?: readonly CheckState[];
   verdict?: "pass" | "inconclusive" | "fail";
   personId?: string;
-  /** Part of a check's number or of an instrument's name. */
+  /** Part of a check's number, or of its instrument's or configuration's name. */
   text?: string;
   /** Keyset: rows begun before this one. */
   after?: { begunAt: string; id: string };
@@ -81,7 +81,7 @@ export async function listCheckRows(tx: Tx, filter: CheckFilter): Promise<CheckR
   }
   if (filter.text !== undefined && filter.text.trim() !== "") {
     const pattern = `%${filter.text.trim().replace(/[\\%_]/g, (sign) => `\\${sign}`)}%`;
-    conditions.push(sql`(c.number ilike ${pattern} or i.name ilike ${pattern})`);
+    conditions.push(sql`(c.number ilike ${pattern} or i.name ilike ${pattern} or cf.name ilike ${pattern})`);
   }
   if (filter.after !== undefined)
     conditions.push(sql`(c.begun_at, c.id) < (${filter.after.begunAt}::timestamptz, ${filter.after.id}::uuid)`);

@@ -1,5 +1,6 @@
 /** One check with all that its page shows, and what this person may do with it now. */
 import { inArray } from "drizzle-orm";
+import { readFittedAxis } from "../axes/read-axes.ts";
 import type { Check } from "../contract/checks.ts";
 import { listReceipts } from "../captures/receipts.ts";
 import { sources } from "../db/schema/index.ts";
@@ -73,6 +74,7 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
     },
     draft: { ...draft.inputs, version: draft.version },
     ...(await readInForce(tx, record, draft)),
+    fittedAxis: await readFittedAxis(tx, ctx, record, summary.state, analysis),
     sources: await readSources(tx, ctx, draft),
     attempts: await readAttempts(tx, record, draft, versions),
     currentAttempt: draft.currentAttempt,

@@ -8,6 +8,7 @@ import type { acknowledgeCheckInput, approveInput, Check, returnInput } from "..
 import { checkDrafts, configurations } from "../db/schema/index.ts";
 import { asWavekeep, hasRole, inLab, ownsInstrument, recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
+import { aboutConfiguration } from "../instruments/configurations.ts";
 import { onlyOnce } from "../instruments/conflicts.ts";
 import { addDays, dateIn } from "../instruments/dates.ts";
 import { findInstrument, lockConfiguration } from "../instruments/queries.ts";
@@ -152,13 +153,7 @@ async function takeEffect(tx: Tx, ctx: Context, check: CheckRecord, submission: 
       .where(eq(configurations.id, configuration.id));
     entries.push({
       action: "due.moved",
-      about: {
-        kind: "configuration",
-        id: configuration.id,
-        label: instrument.name,
-        instrumentId: instrument.id,
-        checkId: check.id,
-      },
+      about: { ...aboutConfiguration(configuration, instrument), checkId: check.id },
       before: { dueOn: configuration.dueOn },
       after: { dueOn },
       why: `${check.number} is approved; the interval is ${configuration.intervalDays} days`,

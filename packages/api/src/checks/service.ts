@@ -19,6 +19,7 @@ export function listChecks(
   return inLab(db, ctx, async (tx) => {
     const rows = await listCheckRows(tx, {
       instrumentId: query.instrumentId,
+      configurationId: query.configurationId,
       states: query.state === undefined ? undefined : [query.state],
       verdict: query.verdict,
       personId: query.personId,

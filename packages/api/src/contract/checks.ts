@@ -61,6 +61,13 @@ export const check = z.object({
   draft: draftInput,
   tolerance: z.object({ version: z.number().int(), segments: z.array(toleranceSegment), changedSince: z.boolean() }),
   axisInForce: z.object({ number: z.number().int(), degree: z.number().int(), inForceFrom: instant }).nullable(),
+  /** What became, or can become, of the axis this check fitted. */
+  fittedAxis: z.object({
+    /** The number under which it was put in force. */
+    adopted: z.object({ number: z.number().int(), inForceFrom: instant, by: personRef }).nullable(),
+    /** It can be put in force now, as this number, in place of the one in force. */
+    next: z.object({ number: z.number().int(), replaces: z.number().int().nullable(), configurationVersion: version }).nullable(),
+  }).nullable(),
   sources: z.array(z.object({ id, label: z.string(), name: z.string(), reviewDueOn: z.string().nullable(), pastReview: z.boolean() })),
   attempts: z.array(attempt), currentAttempt: z.number().int(),
   analysis: analysisShape.nullable(), analysisVersion: analysisVersion.nullable(), analyses: z.array(analysisVersion),
@@ -83,5 +90,5 @@ export const approveInput = z.object({
   seen: z.object({ attempts: z.literal(true), leftOut: z.literal(true), settings: z.literal(true), tolerance: z.literal(true) }),
 });
 export const acknowledgeCheckInput = z.object({ note: reason });
-export const checksQuery = pageQuery.extend({ instrumentId: id.optional(), state: checkState.optional(), verdict: z.enum(["pass", "inconclusive", "fail"]).optional(), personId: id.optional(), q: z.string().max(100).optional() });
+export const checksQuery = pageQuery.extend({ instrumentId: id.optional(), configurationId: id.optional(), state: checkState.optional(), verdict: z.enum(["pass", "inconclusive", "fail"]).optional(), personId: id.optional(), q: z.string().max(100).optional() });
 export const checksReply = page(checkSummary);

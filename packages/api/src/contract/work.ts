@@ -5,7 +5,7 @@ import { fleetRow } from "./instruments.ts";
 
 export const alertKind = z.enum(["out-of-tolerance", "near-limit", "inconclusive", "overdue", "source-review"]);
 export const alert = z.object({
-  id, kind: alertKind, title: z.string(), detail: z.string(), instrumentId: id.nullable(), instrumentName: z.string().nullable(), sourceId: id.nullable(), sourceLabel: z.string().nullable(),
+  id, kind: alertKind, title: z.string(), detail: z.string(), instrumentId: id.nullable(), instrumentName: z.string().nullable(), configurationId: id.nullable(), configurationName: z.string().nullable(), sourceId: id.nullable(), sourceLabel: z.string().nullable(),
   owner: personRef.nullable(), checkId: id.nullable(), checkNumber: z.string().nullable(), state: shownState.nullable(),
   openedAt: instant, closedAt: instant.nullable(), closedBecause: z.string().nullable(), reopenedCount: z.number().int(),
   acknowledged: z.object({ by: personRef, at: instant, note: z.string(), forOwner: z.boolean() }).nullable(), mayAcknowledge: z.boolean(), version,
@@ -16,7 +16,7 @@ export const alertsReply = page(alert);
 export const acknowledgeAlertInput = z.object({ note: reason, version });
 
 export const impactReview = z.object({
-  id, number: z.string(), instrumentId: id, instrumentName: z.string(), configurationId: id, owner: personRef, check: z.object({ id, number: z.string() }), 
+  id, number: z.string(), instrumentId: id, instrumentName: z.string(), configurationId: id, configurationName: z.string().nullable(), owner: personRef, check: z.object({ id, number: z.string() }), 
   /** Exposure window: from the last good check (null: none on record) to the failing one. */
   windowFrom: instant.nullable(), windowFromCheck: z.object({ id, number: z.string() }).nullable(), windowTo: instant,
   largestErrorNm: z.number().nullable(), largestAtNm: z.number().nullable(), openedAt: instant, state: z.enum(["open", "decided"]),

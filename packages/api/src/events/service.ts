@@ -6,10 +6,10 @@ import type { Database } from "../db/connection.ts";
 import { instrumentEvents } from "../db/schema/index.ts";
 import { inLab, recordNow, type Context } from "../db/tenancy.ts";
 import { listSeries } from "../drift/queries.ts";
+import { calledText } from "../instruments/called.ts";
 import { dateIn } from "../instruments/dates.ts";
 import { findConfiguration, findInstrument } from "../instruments/queries.ts";
-import { refuseFields } from "../instruments/rules.ts";
-import { assertNotRetired } from "../instruments/service.ts";
+import { assertNotRetired, refuseFields } from "../instruments/rules.ts";
 import { writeTrail } from "../records/trail.ts";
 import { presentEvent, type InstrumentEvent } from "./present.ts";
 
@@ -39,7 +39,12 @@ export function logEvent(db: Database, ctx: Context, input: z.output<typeof logE
     );
     await writeTrail(tx, ctx, {
       action: "event.logged",
-      about: { kind: "event", id: event.id, label: instrument.name, instrumentId: instrument.id },
+      about: {
+        kind: "event",
+        id: event.id,
+        label: calledText(instrument.name, configuration.name),
+        instrumentId: instrument.id,
+      },
       after: {
         kind: input.kind,
         title: input.title,

@@ -1,7 +1,7 @@
 /** Impact reviews: SQL only. */
 import { and, desc, eq } from "drizzle-orm";
 import { alias } from "drizzle-orm/pg-core";
-import { checks, impactDecisions, impactReviews, instruments, people } from "../db/schema/index.ts";
+import { checks, configurations, impactDecisions, impactReviews, instruments, people } from "../db/schema/index.ts";
 import type { Tx } from "../db/tenancy.ts";
 import { notFound } from "../http/problem.ts";
 
@@ -15,6 +15,7 @@ export function listReviewRows(tx: Tx, by: { reviewId?: string; checkId?: string
     .select({
       review: impactReviews,
       instrumentName: instruments.name,
+      configurationName: configurations.name,
       ownerId: instruments.ownerId,
       ownerName: owner.name,
       checkNumber: checks.number,
@@ -26,6 +27,10 @@ export function listReviewRows(tx: Tx, by: { reviewId?: string; checkId?: string
     .innerJoin(
       instruments,
       and(eq(instruments.labId, impactReviews.labId), eq(instruments.id, impactReviews.instrumentId)),
+    )
+    .innerJoin(
+      configurations,
+      and(eq(configurations.labId, impactReviews.labId), eq(configurations.id, impactReviews.configurationId)),
     )
     .innerJoin(owner, eq(owner.id, instruments.ownerId))
     .innerJoin(checks, and(eq(checks.labId, impactReviews.labId), eq(checks.id, impactReviews.checkId)))

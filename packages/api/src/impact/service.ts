@@ -44,17 +44,15 @@ export function decideImpact(
         if (row.decision !== null)
           throw problem("conflict", `${row.review.number} is decided already; a decision stays as it was made.`);
         const id = newId();
-        await tx
-          .insert(impactDecisions)
-          .values({
-            labId: ctx.labId,
-            id,
-            reviewId,
-            ...input,
-            decidedAt: await recordNow(tx),
-            decidedBy: ctx.personId!,
-            forOwner,
-          });
+        await tx.insert(impactDecisions).values({
+          labId: ctx.labId,
+          id,
+          reviewId,
+          ...input,
+          decidedAt: await recordNow(tx),
+          decidedBy: ctx.personId!,
+          forOwner,
+        });
         const reply = present(ctx, await findReview(tx, reviewId));
         await writeTrail(tx, ctx, {
           action: "impact.decided",
@@ -82,6 +80,7 @@ function present(ctx: Context, row: ReviewRow): ImpactReview {
     instrumentId: review.instrumentId,
     instrumentName: row.instrumentName,
     configurationId: review.configurationId,
+    configurationName: row.configurationName,
     owner: { id: row.ownerId, name: row.ownerName },
     check: { id: review.checkId, number: row.checkNumber },
     windowFrom: review.windowFrom?.toISOString() ?? null,

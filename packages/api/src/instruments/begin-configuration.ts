@@ -12,12 +12,17 @@ export interface BeginConfiguration {
   instrumentId: string;
   ordinal: number;
   fromOn: string;
+  /** The one that ended where this one begins, or null. */
+  replacesId: string | null;
   configuration: ConfigurationInput;
   tolerance: StoredSegment[];
   firstDueOn: string;
   procedureId: string;
   reason: string;
 }
+
+/** A name that was typed, or null where none was. */
+export const givenName = (name: string | null): string | null => (name === "" ? null : name);
 
 /** Columns a manager may set, without the axis, which is a row of its own. */
 export function configurationColumns(input: Omit<ConfigurationInput, "axisCoefficients">) {
@@ -36,7 +41,7 @@ export function configurationColumns(input: Omit<ConfigurationInput, "axisCoeffi
     warningShare,
   } = input;
   return {
-    name,
+    name: givenName(name),
     axisKind,
     axisMeaning,
     rangeFirstNm,
@@ -65,6 +70,7 @@ export async function beginConfiguration(
     instrumentId: begin.instrumentId,
     ordinal: begin.ordinal,
     fromOn: begin.fromOn,
+    replacesId: begin.replacesId,
     ...configurationColumns(begin.configuration),
     dueOn: begin.firstDueOn,
     procedureId: begin.procedureId,

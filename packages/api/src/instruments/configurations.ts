@@ -16,22 +16,32 @@ import { configurations, standingEntries, toleranceVersions } from "../db/schema
 import { asWavekeep, inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
 import { writeTrail, type TrailInput } from "../records/trail.ts";
-import { configurationColumns } from "./begin-configuration.ts";
+import { configurationColumns, givenName } from "./begin-configuration.ts";
+import { calledText } from "./called.ts";
 import { changedOnly } from "./changes.ts";
 import { dateIn } from "./dates.ts";
 import { presentConfiguration } from "./present.ts";
 import {
   findAxisAt,
+  findConfiguration,
   findInstrument,
   findLatestTolerance,
   findStanding,
   listConfigurations,
   lockConfiguration,
+  lockInstrument,
+  lockPresentConfigurations,
   type ConfigurationRow,
   type InstrumentRow,
 } from "./queries.ts";
-import { assertCanBeAssigned, configurationProblems, refuseFields, toleranceProblems } from "./rules.ts";
-import { assertNotRetired } from "./service.ts";
+import {
+  assertCanBeAssigned,
+  assertNotRetired,
+  configurationProblems,
+  nameProblem,
+  refuseFields,
+  toleranceProblems,
+} from "./rules.ts";
 import { assertFreshFor } from "./stale.ts";
 
 export function changeConfiguration(
@@ -42,8 +52,19 @@ export function changeConfiguration(
 ): Promise<Configuration> {
   refuseFields(configurationProblems(input, ""));
   return inLab(db, ctx, async (tx) => {
+    // The instrument first: names are its own to keep apart.
+    await lockInstrument(tx, (await findConfiguration(tx, configurationId)).instrumentId);
     const { stored, instrument } = await lockForChange(tx, ctx, configurationId, input);
     if (stored.axisKind !== input.axisKind) await assertNoAxisYet(tx, configurationId);
+    const others = (await lockPresentConfigurations(tx, instrument.id)).filter((one) => one.id !== configurationId);
+    if (others.length > 0)
+      refuseFields(
+        nameProblem(
+          givenName(input.name),
+          others.map((one) => one.name ?? ""),
+          "name",
+        ),
+      );
     const next = configurationColumns(input);
     const change = changedOnly(stored, next);
     await tx
@@ -53,7 +74,7 @@ export function changeConfiguration(
     const reply = await readConfiguration(tx, configurationId);
     await writeTrail(tx, ctx, {
       action: "configuration.changed",
-      about: aboutConfiguration(stored, instrument),
+      about: aboutConfiguration({ ...stored, name: next.name }, instrument),
       ...change,
     });
     return reply;
@@ -125,7 +146,7 @@ export function changeStanding(
     if (before.standing === input.standing && before.restriction === restriction && before.setBy !== null) {
       throw problem(
         "conflict",
-        `${instrument.name} is ${input.standing.replaceAll("-", " ")} already. Nothing was changed.`,
+        `${calledText(instrument.name, stored.name)} is ${input.standing.replaceAll("-", " ")} already. Nothing was changed.`,
       );
     }
     const id = newId();
@@ -216,10 +237,11 @@ export async function lockForChange(
 ): Promise<{ stored: ConfigurationRow; instrument: InstrumentRow }> {
   const stored = await lockConfiguration(tx, configurationId);
   const { instrument } = await findInstrument(tx, stored.instrumentId);
-  await assertFreshFor(tx, ctx, stored, sent, { id: configurationId, what: `The configuration of ${instrument.name}` });
+  const called = calledText(instrument.name, stored.name);
+  await assertFreshFor(tx, ctx, stored, sent, { id: configurationId, what: called });
   assertNotRetired(instrument);
   if (stored.toOn !== null)
-    throw problem("conflict", `This configuration of ${instrument.name} has ended; its record stays as it is.`);
+    throw problem("conflict", `This configuration of ${called} has ended; its record stays as it is.`);
   return { stored, instrument };
 }
 
@@ -229,7 +251,7 @@ export const aboutConfiguration = (
 ): TrailInput["about"] => ({
   kind: "configuration",
   id: configuration.id,
-  label: instrument.name,
+  label: calledText(instrument.name, configuration.name),
   instrumentId: instrument.id,
 });
 
@@ -237,7 +259,7 @@ async function assertNoAxisYet(tx: Tx, configurationId: string): Promise<void> {
   if ((await findAxisAt(tx, configurationId, await recordNow(tx))) !== null) {
     throw problem(
       "conflict",
-      "The kind of axis can't be changed once an axis is in force: end this configuration and begin the next. Nothing was stored.",
+      "The kind of axis can't be changed once an axis is in force: it is another instrument to its history. Replace what was replaced instead. Nothing was stored.",
     );
   }
 }

@@ -1,7 +1,7 @@
-/** The fleet: every instrument with its current configuration, standing and last check, in one query. */
+/** The fleet: every present configuration with its standing and last check, in one query; an instrument shows its worst. */
 import { sql } from "drizzle-orm";
-import type { InstrumentKind, Standing, StripLine } from "../contract/common.ts";
-import type { FleetRow } from "../contract/instruments.ts";
+import type { InstrumentKind, ShownState, Standing, StripLine } from "../contract/common.ts";
+import type { ConfigurationState, FleetRow } from "../contract/instruments.ts";
 import type { StoredResult } from "../db/schema/analyses.ts";
 import type { Tx } from "../db/tenancy.ts";
 import { daysBetween, toInstant } from "./dates.ts";
@@ -16,6 +16,7 @@ interface Row extends Record<string, unknown> {
   owner_name: string;
   retired_at: string | null;
   configuration_id: string;
+  configuration_name: string | null;
   range_first_nm: number;
   range_last_nm: number;
   laser_nm: number | null;
@@ -32,26 +33,40 @@ interface Row extends Record<string, unknown> {
   strip: StripLine[] | null;
 }
 
+/** One configuration as a row of the fleet: due and assigned are its own. */
+export type FleetConfiguration = Omit<FleetRow, "configurations">;
+
+export interface FleetFilter {
+  /** Only this instrument. */
+  instrumentId?: string;
+  /** Only this configuration, also when it has ended. */
+  configurationId?: string;
+  /** Retired instruments too, each with its last configuration. */
+  withRetired?: boolean;
+}
+
 /**
- * Rows by tolerance used, the most first; those without a check and the retired ones last.
+ * Present configurations, those of one instrument beside each other, the worst first.
  *
  * @param today date in the lab's zone
- * @param options.instrumentId only this one
  */
-export async function listFleet(
+export async function listFleetConfigurations(
   tx: Tx,
   today: string,
-  options: { instrumentId?: string; withRetired?: boolean } = {},
-): Promise<FleetRow[]> {
+  options: FleetFilter = {},
+): Promise<FleetConfiguration[]> {
   const { rows } = await tx.execute<Row>(sql`
     select i.id, i.name, i.kind, i.place, i.owner_id, owner.name as owner_name, i.retired_at,
-      c.id as configuration_id, c.range_first_nm, c.range_last_nm, (c.optics ->> 'laserNm')::float8 as laser_nm,
+      c.id as configuration_id, c.name as configuration_name, c.range_first_nm, c.range_last_nm, (c.optics ->> 'laserNm')::float8 as laser_nm,
       c.due_on, c.as_left_asked_by_check_id is not null as as_left_asked, c.assigned_to_id as assigned_id, assigned.name as assigned_name,
       st.standing, st.restriction,
       last.check_id, last.number as check_number, last.measured_at, last.result, last.strip
     from instruments i
     join people owner on owner.id = i.owner_id
-    join lateral (select * from configurations c where c.lab_id = i.lab_id and c.instrument_id = i.id order by c.ordinal desc limit 1) c on true
+    join configurations c on c.lab_id = i.lab_id and c.instrument_id = i.id
+      and case when ${options.configurationId ?? null}::uuid is not null then c.id = ${options.configurationId ?? null}::uuid
+        when i.retired_at is null then c.to_on is null
+        else c.ordinal = (select max(o.ordinal) from configurations o where o.lab_id = i.lab_id and o.instrument_id = i.id) end
     left join people assigned on assigned.id = c.assigned_to_id
     join lateral (select s.standing, s.restriction from standing_entries s
       where s.lab_id = c.lab_id and s.configuration_id = c.id order by s.sequence desc limit 1) st on true
@@ -63,10 +78,54 @@ export async function listFleet(
       order by s.measured_at desc, s.submitted_at desc limit 1) last on true
     where (${options.instrumentId ?? null}::uuid is null or i.id = ${options.instrumentId ?? null}::uuid)
       and (${options.withRetired ?? false} or i.retired_at is null)`);
-  return rows.map((row) => present(row, today)).sort(byToleranceUsed);
+  return rows.map((row) => present(row, today)).sort(byWorst);
 }
 
-function present(row: Row, today: string): FleetRow {
+/** Rows by tolerance used, the most first; those without a check and the retired ones last. */
+export async function listFleet(tx: Tx, today: string, options: FleetFilter = {}): Promise<FleetRow[]> {
+  return fleetOf(await listFleetConfigurations(tx, today, options));
+}
+
+/** An instrument's row: its worst configuration, with whatever falls due first. @param rows the worst of each first */
+export function fleetOf(rows: readonly FleetConfiguration[]): FleetRow[] {
+  const byInstrument = new Map<string, FleetConfiguration[]>();
+  for (const row of rows) byInstrument.set(row.id, [...(byInstrument.get(row.id) ?? []), row]);
+  return [...byInstrument.values()].map(rowOf).sort(byToleranceUsed);
+}
+
+function rowOf(present: FleetConfiguration[]): FleetRow {
+  const due = present
+    .filter((one) => one.dueOn !== null)
+    .reduce<FleetConfiguration | null>(
+      (first, one) => (first === null || one.dueOn! < first.dueOn! ? one : first),
+      null,
+    );
+  const { dueOn, dueDays, assignedTo } = due ?? present[0]!;
+  return {
+    ...present[0]!,
+    dueOn,
+    dueDays,
+    assignedTo,
+    asLeftAsked: present.some((one) => one.asLeftAsked),
+    configurations: present.map(stateIn),
+  };
+}
+
+const stateIn = (row: FleetConfiguration): ConfigurationState => ({
+  id: row.configurationId,
+  name: row.configurationName,
+  state: row.state,
+  restriction: row.restriction,
+  toleranceUsed: row.toleranceUsed,
+  dueOn: row.dueOn,
+  dueDays: row.dueDays,
+  asLeftAsked: row.asLeftAsked,
+  assignedTo: row.assignedTo,
+  lastCheckId: row.lastCheckId,
+  lastCheckNumber: row.lastCheckNumber,
+});
+
+function present(row: Row, today: string): FleetConfiguration {
   const { result } = row;
   return {
     id: row.id,
@@ -76,6 +135,7 @@ function present(row: Row, today: string): FleetRow {
     owner: { id: row.owner_id, name: row.owner_name },
     retiredAt: row.retired_at === null ? null : toInstant(row.retired_at).toISOString(),
     configurationId: row.configuration_id,
+    configurationName: row.configuration_name,
     rangeFirstNm: row.range_first_nm,
     rangeLastNm: row.range_last_nm,
     laserNm: row.laser_nm,
@@ -98,4 +158,26 @@ function present(row: Row, today: string): FleetRow {
 function byToleranceUsed(a: FleetRow, b: FleetRow): number {
   const rank = (row: FleetRow) => (row.retiredAt !== null ? -2 : (row.toleranceUsed ?? -1));
   return rank(b) - rank(a) || (a.name < b.name ? -1 : 1);
+}
+
+/** What waits for somebody first, then what may not be used, then how near the limit it is. */
+const worstFirst: readonly ShownState[] = [
+  "on-hold",
+  "out-of-tolerance",
+  "quarantined",
+  "out-of-service",
+  "restricted",
+  "inconclusive",
+  "near-limit",
+  "not-judged",
+  "in-tolerance",
+  "retired",
+];
+
+function byWorst(a: FleetConfiguration, b: FleetConfiguration): number {
+  return (
+    worstFirst.indexOf(a.state) - worstFirst.indexOf(b.state) ||
+    (b.toleranceUsed ?? -1) - (a.toleranceUsed ?? -1) ||
+    ((a.configurationName ?? "") < (b.configurationName ?? "") ? -1 : 1)
+  );
 }

@@ -24,6 +24,8 @@ export function presentConfiguration({
     name: configuration.name,
     fromOn: configuration.fromOn,
     toOn: configuration.toOn,
+    endedReason: configuration.endedReason,
+    replacesId: configuration.replacesId,
     axisKind: configuration.axisKind as Configuration["axisKind"],
     axisMeaning: configuration.axisMeaning as Configuration["axisMeaning"],
     rangeFirstNm: configuration.rangeFirstNm,

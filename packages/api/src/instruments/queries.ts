@@ -1,5 +1,5 @@
 /** Instruments and configurations: SQL only. */
-import { and, asc, count, desc, eq, isNull, lte, sql } from "drizzle-orm";
+import { and, asc, count, desc, eq, isNull, lte, max, sql } from "drizzle-orm";
 import {
   alerts,
   axes,
@@ -56,16 +56,23 @@ export async function lockConfiguration(tx: Tx, configurationId: string): Promis
   return row;
 }
 
-/** The instrument's newest configuration. */
-export async function findCurrentConfiguration(tx: Tx, instrumentId: string): Promise<ConfigurationRow> {
-  const [row] = await tx
+/** The instrument's present configurations in the order they were begun, held until the transaction ends. */
+export function lockPresentConfigurations(tx: Tx, instrumentId: string): Promise<ConfigurationRow[]> {
+  return tx
     .select()
     .from(configurations)
-    .where(eq(configurations.instrumentId, instrumentId))
-    .orderBy(desc(configurations.ordinal))
-    .limit(1);
-  if (row === undefined) throw notFound("A configuration of this instrument");
-  return row;
+    .where(and(eq(configurations.instrumentId, instrumentId), isNull(configurations.toOn)))
+    .orderBy(asc(configurations.ordinal))
+    .for("update");
+}
+
+/** The number after the last one along the instrument's life. */
+export async function findNextOrdinal(tx: Tx, instrumentId: string): Promise<number> {
+  const [row] = await tx
+    .select({ last: max(configurations.ordinal) })
+    .from(configurations)
+    .where(eq(configurations.instrumentId, instrumentId));
+  return (row?.last ?? 0) + 1;
 }
 
 /** The tolerance in force at an instant: the newest version that had begun by then. */
@@ -163,7 +170,10 @@ export async function countOpenAlerts(tx: Tx, instrumentId: string): Promise<num
   return row!.open;
 }
 
-export async function countChecks(tx: Tx, instrumentId: string): Promise<{ count: number; firstAt: Date | null }> {
+export async function countChecks(
+  tx: Tx,
+  of: { instrumentId: string } | { configurationId: string },
+): Promise<{ count: number; firstAt: Date | null }> {
   const [row] = await tx
     .select({
       count: count(),
@@ -172,7 +182,9 @@ export async function countChecks(tx: Tx, instrumentId: string): Promise<{ count
       ),
     })
     .from(checks)
-    .where(eq(checks.instrumentId, instrumentId));
+    .where(
+      "instrumentId" in of ? eq(checks.instrumentId, of.instrumentId) : eq(checks.configurationId, of.configurationId),
+    );
   return row!;
 }
 

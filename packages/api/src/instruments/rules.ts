@@ -4,7 +4,7 @@ import type { configurationInput } from "../contract/instruments.ts";
 import type { toleranceSegment } from "../contract/common.ts";
 import { problem } from "../http/problem.ts";
 import type { Tx } from "../db/tenancy.ts";
-import { findOptionalMember } from "./queries.ts";
+import { findOptionalMember, type InstrumentRow } from "./queries.ts";
 
 type ConfigurationInput = z.output<typeof configurationInput>;
 type Segment = z.output<typeof toleranceSegment>;
@@ -79,6 +79,14 @@ export function toleranceProblems(segments: readonly Segment[], path: string): F
   return fields;
 }
 
+/** Among the present configurations of an instrument each is called by a name of its own. */
+export function nameProblem(name: string | null, taken: readonly string[], path: string): FieldNote[] {
+  if (name === null)
+    return [{ path, message: "Give it a name, such as its channel or grating: with more than one, each has its own." }];
+  const isTaken = taken.some((other) => other.toLowerCase() === name.toLowerCase());
+  return isTaken ? [{ path, message: `Another one is called ${name} already; choose another name.` }] : [];
+}
+
 /** An owner is any present member but a pure auditor. */
 export async function assertCanOwn(tx: Tx, personId: string): Promise<{ name: string }> {
   const member = await findOptionalMember(tx, personId);
@@ -102,4 +110,10 @@ export async function assertCanBeAssigned(tx: Tx, personId: string): Promise<voi
       ? "This person is no member of the lab now."
       : `${member.name} is neither technician nor manager and can't make a check.`;
   throw problem("invalid-input", `${message} Nothing was stored.`, { fields: [{ path: "assignedToId", message }] });
+}
+
+/** @throws problem "conflict" for what only a living instrument can have */
+export function assertNotRetired(instrument: Pick<InstrumentRow, "name" | "retiredAt">): void {
+  if (instrument.retiredAt !== null)
+    throw problem("conflict", `${instrument.name} is retired: its record stays, and nothing new is made for it.`);
 }

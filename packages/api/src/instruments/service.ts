@@ -1,4 +1,4 @@
-/** Instruments: register, change, retire, and end one configuration to begin the next. */
+/** Instruments: register, change, retire. */
 import { eq } from "drizzle-orm";
 import type { z } from "zod";
 import type {
@@ -6,15 +6,12 @@ import type {
   createInstrumentInput,
   FleetRow,
   Instrument,
-  nextConfigurationInput,
   retireInput,
 } from "../contract/instruments.ts";
-import { closeAlerts } from "../alerts/open-and-close.ts";
 import { newId } from "../db/columns.ts";
 import type { Database } from "../db/connection.ts";
-import { configurations, instruments, standingEntries } from "../db/schema/index.ts";
-import { asWavekeep, inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
-import { problem } from "../http/problem.ts";
+import { instruments } from "../db/schema/index.ts";
+import { asWavekeep, inLab, recordNow, type Context } from "../db/tenancy.ts";
 import { findProcedureForKind } from "../procedures/queries.ts";
 import { writeTrail } from "../records/trail.ts";
 import { beginConfiguration } from "./begin-configuration.ts";
@@ -22,18 +19,11 @@ import { changedOnly } from "./changes.ts";
 import { nameTaken } from "./conflicts.ts";
 import { dateIn } from "./dates.ts";
 import { listFleet } from "./fleet.ts";
-import {
-  findCurrentConfiguration,
-  findStanding,
-  lockConfiguration,
-  lockInstrument,
-  type InstrumentRow,
-} from "./queries.ts";
+import { endConfigurations } from "./end-configurations.ts";
+import { lockInstrument, lockPresentConfigurations } from "./queries.ts";
 import { readInstrument } from "./read-instrument.ts";
-import { assertCanOwn, configurationProblems, refuseFields, toleranceProblems } from "./rules.ts";
+import { assertCanOwn, assertNotRetired, configurationProblems, refuseFields, toleranceProblems } from "./rules.ts";
 import { assertFreshFor } from "./stale.ts";
-
-const everyKind = ["out-of-tolerance", "near-limit", "inconclusive", "overdue"] as const;
 
 export function listInstruments(db: Database, ctx: Context): Promise<{ items: FleetRow[] }> {
   return inLab(db, ctx, async (tx) => ({
@@ -41,8 +31,13 @@ export function listInstruments(db: Database, ctx: Context): Promise<{ items: Fl
   }));
 }
 
-export function readLabInstrument(db: Database, ctx: Context, instrumentId: string): Promise<Instrument> {
-  return inLab(db, ctx, (tx) => readInstrument(tx, ctx, instrumentId));
+export function readLabInstrument(
+  db: Database,
+  ctx: Context,
+  instrumentId: string,
+  configurationId?: string,
+): Promise<Instrument> {
+  return inLab(db, ctx, (tx) => readInstrument(tx, ctx, instrumentId, configurationId));
 }
 
 /** Register an instrument; its one configuration is made silently. */
@@ -66,27 +61,26 @@ export function createInstrument(
         const now = await recordNow(tx);
         const id = newId();
         const { name, kind, maker, model, serial, ownerId, place, altitudeM, purchasedOn } = input;
-        await tx
-          .insert(instruments)
-          .values({
-            labId: ctx.labId,
-            id,
-            name,
-            kind,
-            maker,
-            model,
-            serial,
-            ownerId,
-            place,
-            altitudeM,
-            purchasedOn,
-            registeredAt: now,
-            registeredBy: ctx.personId,
-          });
+        await tx.insert(instruments).values({
+          labId: ctx.labId,
+          id,
+          name,
+          kind,
+          maker,
+          model,
+          serial,
+          ownerId,
+          place,
+          altitudeM,
+          purchasedOn,
+          registeredAt: now,
+          registeredBy: ctx.personId,
+        });
         const begun = await beginConfiguration(tx, ctx, {
           instrumentId: id,
           ordinal: 1,
           fromOn: purchasedOn ?? dateIn(ctx.zone, now),
+          replacesId: null,
           configuration: input.configuration,
           tolerance: input.tolerance,
           firstDueOn: input.firstDueOn,
@@ -165,119 +159,23 @@ export function retireInstrument(
     await assertFreshFor(tx, ctx, stored, input, { id: instrumentId, what: stored.name });
     assertNotRetired(stored);
     const now = await recordNow(tx);
-    const current = await lockConfiguration(tx, (await findCurrentConfiguration(tx, instrumentId)).id);
-    const rows = [await endStanding(tx, ctx, current.id, input.reason, now)];
-    await tx
-      .update(configurations)
-      .set({ toOn: dateIn(ctx.zone, now), endedReason: input.reason, dueOn: null, version: current.version + 1 })
-      .where(eq(configurations.id, current.id));
+    const ended = await endConfigurations(tx, ctx, await lockPresentConfigurations(tx, instrumentId), {
+      toOn: dateIn(ctx.zone, now),
+      reason: input.reason,
+      alertsClosed: "The instrument was retired.",
+    });
     await tx
       .update(instruments)
       .set({ retiredAt: now, retiredReason: input.reason, version: stored.version + 1 })
       .where(eq(instruments.id, instrumentId));
-    const closed = await closeAlerts(tx, { configurationId: current.id }, everyKind, "The instrument was retired.");
     const reply = await readInstrument(tx, ctx, instrumentId);
     await writeTrail(tx, ctx, {
       action: "instrument.retired",
       about: { kind: "instrument", id: instrumentId, label: stored.name, instrumentId },
       why: input.reason,
-      rows,
+      rows: ended.rows,
     });
-    if (closed.length > 0) await writeTrail(tx, asWavekeep(ctx), closed);
+    if (ended.closed.length > 0) await writeTrail(tx, asWavekeep(ctx), ended.closed);
     return reply;
   });
-}
-
-/** Replacing a grating, detector, slit or laser ends a configuration and begins the next; their histories are never joined. */
-export function nextConfiguration(
-  db: Database,
-  ctx: Context,
-  instrumentId: string,
-  input: z.output<typeof nextConfigurationInput>,
-): Promise<Instrument> {
-  refuseFields([
-    ...configurationProblems(input.configuration, "configuration."),
-    ...toleranceProblems(input.tolerance, "tolerance."),
-  ]);
-  return inLab(db, ctx, async (tx) => {
-    const stored = await lockInstrument(tx, instrumentId);
-    await assertFreshFor(tx, ctx, stored, input, { id: instrumentId, what: stored.name });
-    assertNotRetired(stored);
-    const current = await lockConfiguration(tx, (await findCurrentConfiguration(tx, instrumentId)).id);
-    if (input.fromOn < current.fromOn) {
-      refuseFields([
-        {
-          path: "fromOn",
-          message: `The configuration before began on ${current.fromOn}; the next one can't begin earlier.`,
-        },
-      ]);
-    }
-    const now = await recordNow(tx);
-    const ended = await endStanding(tx, ctx, current.id, input.reason, now);
-    await tx
-      .update(configurations)
-      .set({ toOn: input.fromOn, endedReason: input.reason, dueOn: null, version: current.version + 1 })
-      .where(eq(configurations.id, current.id));
-    const begun = await beginConfiguration(tx, ctx, {
-      instrumentId,
-      ordinal: current.ordinal + 1,
-      fromOn: input.fromOn,
-      configuration: input.configuration,
-      tolerance: input.tolerance,
-      firstDueOn: input.firstDueOn,
-      procedureId: current.procedureId,
-      reason: input.reason,
-    });
-    await tx
-      .update(instruments)
-      .set({ version: stored.version + 1 })
-      .where(eq(instruments.id, instrumentId));
-    const closed = await closeAlerts(tx, { configurationId: current.id }, everyKind, "The configuration was ended.");
-    const reply = await readInstrument(tx, ctx, instrumentId);
-    await writeTrail(tx, ctx, {
-      action: "configuration.begun",
-      about: { kind: "configuration", id: begun.id, label: stored.name, instrumentId },
-      before: { configurationId: current.id, name: current.name },
-      after: {
-        fromOn: input.fromOn,
-        configuration: input.configuration,
-        tolerance: input.tolerance,
-        dueOn: input.firstDueOn,
-      },
-      why: input.reason,
-      rows: [ended, ...begun.rows],
-    });
-    if (closed.length > 0) await writeTrail(tx, asWavekeep(ctx), closed);
-    return reply;
-  });
-}
-
-async function endStanding(
-  tx: Tx,
-  ctx: Context,
-  configurationId: string,
-  reason: string,
-  since: Date,
-): Promise<{ table: string; id: string }> {
-  const standing = await findStanding(tx, configurationId);
-  const id = newId();
-  await tx
-    .insert(standingEntries)
-    .values({
-      labId: ctx.labId,
-      id,
-      configurationId,
-      sequence: standing.sequence + 1,
-      standing: "retired",
-      since,
-      reason,
-      setBy: ctx.personId,
-    });
-  return { table: "standing_entries", id };
-}
-
-/** @throws problem "conflict" for what only a living instrument can have */
-export function assertNotRetired(instrument: Pick<InstrumentRow, "name" | "retiredAt">): void {
-  if (instrument.retiredAt !== null)
-    throw problem("conflict", `${instrument.name} is retired: its record stays, and nothing new is made for it.`);
 }

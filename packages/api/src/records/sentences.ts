@@ -91,8 +91,13 @@ export const sentences: Record<TrailAction, Sentence> = {
   "instrument.registered": ({ label }) => `registered ${label}`,
   "instrument.changed": (f) => `changed ${f.label}${changes(f)}`,
   "instrument.retired": ({ label, why }) => `retired ${label}${because(why)}`,
-  "configuration.begun": ({ label, why }) => `began a configuration of ${label}${because(why)}`,
-  "configuration.changed": (f) => `changed the configuration of ${f.label}${changes(f)}`,
+  "configuration.begun": ({ label, before, why }) =>
+    before["configurationId"] === undefined
+      ? `added the configuration ${label}${because(why)}`
+      : `began the configuration ${label}${typeof before["name"] === "string" ? `, in place of ${before["name"]}` : ", in place of the one before"}${because(why)}`,
+  // A plain instrument's history never shows the word.
+  "configuration.changed": (f) => `changed the set-up of ${f.label}${changes(f)}`,
+  "configuration.ended": ({ label, why }) => `ended the configuration ${label}${because(why)}`,
   "tolerance.changed": ({ label, why }) => `set a new tolerance for ${label}${because(why)}`,
   "standing.changed": ({ label, before, after, why }) =>
     `moved ${label} from ${text(before["standing"])} to ${text(after["standing"])}${because(why)}`,

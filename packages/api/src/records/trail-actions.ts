@@ -28,6 +28,7 @@ export const trailActions = [
   "instrument.retired",
   "configuration.begun",
   "configuration.changed",
+  "configuration.ended",
   "tolerance.changed",
   "standing.changed",
   "hold.placed",

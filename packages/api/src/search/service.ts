@@ -1,4 +1,4 @@
-/** Find instruments, check numbers and people of the lab. */
+/** Find instruments (and their configurations by name), check numbers and people of the lab. */
 import { sql } from "drizzle-orm";
 import type { z } from "zod";
 import type { searchQuery, searchReply } from "../contract/work.ts";
@@ -13,6 +13,7 @@ interface Row extends Record<string, unknown> {
   label: string;
   note: string;
   rank: number;
+  configuration_id: string | null;
 }
 
 export function search(
@@ -21,7 +22,9 @@ export function search(
   { q }: z.output<typeof searchQuery>,
 ): Promise<z.input<typeof searchReply>> {
   return inLab(db, ctx, async (tx) => {
-    const { rows } = await tx.execute<Row>(sql`select kind, id, label, note, rank from search_lab(${q})`);
+    const { rows } = await tx.execute<Row>(
+      sql`select kind, id, label, note, rank, configuration_id from search_lab(${q})`,
+    );
     // What begins with the words typed comes first; within that, instruments, checks, people as the function lists them.
     const ordered = rows
       .map((row, index) => ({ row, index }))
@@ -30,8 +33,9 @@ export function search(
   });
 }
 
-function pathOf({ kind, id }: Row): string {
-  if (kind === "instrument") return `/instruments/${id}`;
+function pathOf({ kind, id, configuration_id: configurationId }: Row): string {
+  if (kind === "instrument")
+    return `/instruments/${id}${configurationId === null ? "" : `?configuration=${configurationId}`}`;
   if (kind === "check") return `/checks/${id}`;
   return `/records?person=${id}`;
 }

@@ -6,6 +6,7 @@ import { toInstant } from "../instruments/dates.ts";
 
 export interface HoldRow {
   configurationId: string;
+  configurationName: string | null;
   instrumentId: string;
   instrumentName: string;
   since: Date;
@@ -17,6 +18,7 @@ export interface HoldRow {
 
 interface RawHold extends Record<string, unknown> {
   configuration_id: string;
+  configuration_name: string | null;
   instrument_id: string;
   name: string;
   since: string;
@@ -29,7 +31,7 @@ interface RawHold extends Record<string, unknown> {
 /** Configurations on hold now, the longest first. */
 export async function listHolds(tx: Tx): Promise<HoldRow[]> {
   const { rows } = await tx.execute<RawHold>(sql`
-    select c.id as configuration_id, i.id as instrument_id, i.name, st.since, st.reason, st.set_by, st.check_id, k.number
+    select c.id as configuration_id, c.name as configuration_name, i.id as instrument_id, i.name, st.since, st.reason, st.set_by, st.check_id, k.number
     from configurations c
     join instruments i on i.lab_id = c.lab_id and i.id = c.instrument_id
     join lateral (select s.* from standing_entries s where s.lab_id = c.lab_id and s.configuration_id = c.id order by s.sequence desc limit 1) st on true
@@ -38,6 +40,7 @@ export async function listHolds(tx: Tx): Promise<HoldRow[]> {
     order by st.since`);
   return rows.map((row) => ({
     configurationId: row.configuration_id,
+    configurationName: row.configuration_name,
     instrumentId: row.instrument_id,
     instrumentName: row.name,
     since: toInstant(row.since),

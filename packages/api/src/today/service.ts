@@ -2,14 +2,14 @@
 import type { Context, Tx } from "../db/tenancy.ts";
 import { hasRole, inLab, ownsInstrument, recordNow } from "../db/tenancy.ts";
 import type { Database } from "../db/connection.ts";
-import type { FleetRow } from "../contract/instruments.ts";
 import type { TodayReply } from "../contract/work.ts";
 import { listAlertRows, type AlertRow } from "../alerts/queries.ts";
 import { listCheckRows, type CheckRow } from "../checks/list-checks.ts";
 import { countText, percentText, verdictText, worstText } from "../checks/words.ts";
 import { listReviewRows, type ReviewRow } from "../impact/queries.ts";
 import { addDays, clockText, dateIn, daysBetween, dueText, shortDayText } from "../instruments/dates.ts";
-import { listFleet } from "../instruments/fleet.ts";
+import { calledText, checkOfText, configurationPath } from "../instruments/called.ts";
+import { fleetOf, listFleetConfigurations, type FleetConfiguration } from "../instruments/fleet.ts";
 import { findLab } from "../labs/queries.ts";
 import { listContributedChecks, listHolds, listSourcesDue, type HoldRow, type SourceDue } from "./queries.ts";
 import { todaySentence } from "./sentence.ts";
@@ -25,7 +25,8 @@ export interface TodayFacts {
   ctx: Context;
   today: string;
   now: Date;
-  fleet: FleetRow[];
+  /** Every present configuration: what is due and asked for is its own. */
+  configurations: FleetConfiguration[];
   holds: HoldRow[];
   submitted: CheckRow[];
   drafts: CheckRow[];
@@ -55,7 +56,7 @@ export function readToday(db: Database, ctx: Context): Promise<TodayReply> {
       sentence: todaySentence(items),
       items,
       due: dueList(facts, sourcesDue),
-      fleet: facts.fleet,
+      fleet: fleetOf(facts.configurations),
     };
   });
 }
@@ -77,7 +78,7 @@ async function gather(tx: Tx, ctx: Context): Promise<TodayFacts> {
     ctx,
     today,
     now,
-    fleet: await listFleet(tx, today),
+    configurations: await listFleetConfigurations(tx, today),
     holds: await listHolds(tx),
     submitted,
     drafts,
@@ -106,7 +107,7 @@ function holdItems(facts: TodayFacts): TodayItem[] {
   return facts.holds
     .filter((hold) => !hold.decided)
     .map((hold) => {
-      const row = facts.fleet.find((one) => one.configurationId === hold.configurationId);
+      const row = facts.configurations.find((one) => one.configurationId === hold.configurationId);
       const since =
         dateIn(facts.ctx.zone, hold.since) === facts.today
           ? clockText(facts.ctx.zone, hold.since)
@@ -118,10 +119,10 @@ function holdItems(facts: TodayFacts): TodayItem[] {
         key: `hold:${hold.configurationId}`,
         kind: "hold-decision",
         state: "out-of-tolerance",
-        title: `${hold.instrumentName} is out of tolerance, on hold since ${since}; your decision waits.`,
+        title: `${calledText(hold.instrumentName, hold.configurationName)} is out of tolerance, on hold since ${since}; your decision waits.`,
         detail: `${hold.reason}${doubt}${row?.asLeftAsked === true ? " An as-left check is asked for." : ""}`,
         link: hold.checkId === null ? null : { label: hold.checkNumber ?? "Check", to: `/checks/${hold.checkId}` },
-        action: { label: "Confirm or lift the hold", to: `/instruments/${hold.instrumentId}?do=hold` },
+        action: { label: "Confirm or lift the hold", to: configurationPath(hold, { doing: "hold" }) },
       };
     });
 }
@@ -142,7 +143,7 @@ function reviewItems(facts: TodayFacts): TodayItem[] {
       key: `review:${row.summary.id}`,
       kind: "review",
       state: null,
-      title: `Review the check of ${row.summary.instrumentName}, ${row.summary.number}.`,
+      title: `Review the check of ${calledOf(row)}, ${row.summary.number}.`,
       detail: `${row.submittedBy?.name ?? ""}, ${when(facts, new Date(row.summary.submittedAt!))}. ${resultText(row)}`,
       link: null,
       action: { label: "Review and sign", to: `/checks/${row.summary.id}` },
@@ -174,7 +175,7 @@ function returnedItems(facts: TodayFacts): TodayItem[] {
       key: `returned:${row.summary.id}`,
       kind: "returned",
       state: null,
-      title: `${row.summary.number} of ${row.summary.instrumentName} was sent back.`,
+      title: `${row.summary.number} of ${calledOf(row)} was sent back.`,
       detail: row.lastEvent.comment ?? "",
       link: null,
       action: { label: "Go on with it", to: `/checks/${row.summary.id}/edit` },
@@ -189,7 +190,7 @@ function impactItems(facts: TodayFacts): TodayItem[] {
       key: `impact:${row.review.id}`,
       kind: "impact",
       state: null,
-      title: `Which results of ${row.instrumentName} are in doubt? ${row.review.number} waits for you.`,
+      title: `Which results of ${calledText(row.instrumentName, row.configurationName)} are in doubt? ${row.review.number} waits for you.`,
       detail: `Results ${windowText(facts, row)}${row.windowFromNumber === null ? "; no good check is on record before" : `, since ${row.windowFromNumber}`}.`,
       link: { label: row.checkNumber, to: `/checks/${row.review.checkId}` },
       action: { label: "Decide", to: `/impact/${row.review.id}` },
@@ -226,7 +227,7 @@ function dueItems(facts: TodayFacts): TodayItem[] {
   const { ctx, today } = facts;
   const [manager, technician] = [hasRole(ctx, "manager"), hasRole(ctx, "technician")];
   if (!manager && !technician) return [];
-  return facts.fleet
+  return facts.configurations
     .filter((row) => row.asLeftAsked || (row.dueDays !== null && row.dueDays < (technician ? soonDays + 1 : 0)))
     .filter((row) => technician || !row.asLeftAsked)
     .filter((row) => row.assignedTo === null || manager || row.assignedTo.id === ctx.personId)
@@ -237,22 +238,25 @@ function dueItems(facts: TodayFacts): TodayItem[] {
         row.toleranceUsed === null ? "no check yet" : `${percentText(row.toleranceUsed)} used at the last one`;
       const assigned = row.assignedTo === null ? "" : `, given to ${row.assignedTo.name}`;
       const due = row.dueOn === null ? "" : `Due ${shortDayText(row.dueOn, today)}${assigned}; ${last}.`;
+      const at = { ...row, instrumentId: row.id };
       const begin = { label: "Start a check", to: `/checks/new?configuration=${row.configurationId}` };
       return {
         key: `due:${row.configurationId}`,
         kind: overdue && !row.asLeftAsked ? "overdue" : "due",
         state: null,
         title: row.asLeftAsked
-          ? `An as-left check of ${row.name} is asked for.`
-          : `${possessive(row.name)} check is ${dueText(row.dueDays!)}.`,
+          ? `An as-left check of ${calledText(row.name, row.configurationName)} is asked for.`
+          : `${sentenceStart(checkOfText(row.name, row.configurationName))} is ${dueText(row.dueDays!)}.`,
         detail: row.asLeftAsked ? `${worstText(row) ?? "It was out of tolerance"} at the last check.` : due,
-        link: { label: row.name, to: `/instruments/${row.id}` },
-        action: technician ? begin : { label: "Reassign", to: `/instruments/${row.id}?do=due` },
+        link: { label: calledText(row.name, row.configurationName), to: configurationPath(at) },
+        action: technician ? begin : { label: "Reassign", to: configurationPath(at, { doing: "due" }) },
       };
     });
 }
 
-const possessive = (name: string): string => (name.endsWith("s") ? `${name}’` : `${name}’s`);
+const sentenceStart = (text: string): string => text[0]!.toUpperCase() + text.slice(1);
+
+const calledOf = ({ summary }: CheckRow): string => calledText(summary.instrumentName, summary.configurationName);
 
 function draftItems(facts: TodayFacts): TodayItem[] {
   return facts.drafts
@@ -262,7 +266,7 @@ function draftItems(facts: TodayFacts): TodayItem[] {
       key: `draft:${row.summary.id}`,
       kind: "draft",
       state: null,
-      title: `${row.summary.number} of ${row.summary.instrumentName} is ${row.summary.state === "set-aside" ? "set aside" : "not submitted yet"}.`,
+      title: `${row.summary.number} of ${calledOf(row)} is ${row.summary.state === "set-aside" ? "set aside" : "not submitted yet"}.`,
       detail: `Begun ${when(facts, new Date(row.summary.begunAt))}; ${row.captureCount === 0 ? "no capture yet" : countText(row.captureCount, "capture")}.`,
       link: null,
       action: { label: "Go on with it", to: `/checks/${row.summary.id}/edit` },
@@ -275,23 +279,23 @@ function recentItems(facts: TodayFacts): TodayItem[] {
     key: `recent:${row.summary.id}`,
     kind: "recent",
     state: null,
-    title: `${row.summary.number} of ${row.summary.instrumentName}, approved.`,
+    title: `${row.summary.number} of ${calledOf(row)}, approved.`,
     detail: `${row.summary.approvedBy?.name ?? ""}, ${when(facts, new Date(row.summary.approvedAt!))}. ${resultText(row)}`,
     link: { label: "Open", to: `/checks/${row.summary.id}` },
     action: null,
   }));
 }
 
-function dueList({ fleet, today }: TodayFacts, sources: SourceDue[]): TodayReply["due"] {
-  const instruments = fleet
+function dueList({ configurations, today }: TodayFacts, sources: SourceDue[]): TodayReply["due"] {
+  const instruments = configurations
     .filter((row) => row.dueOn !== null && row.dueDays! <= rulerDays)
     .map((row) => ({
-      label: row.name,
+      label: calledText(row.name, row.configurationName),
       note:
         row.checkedAt === null && row.dueDays! >= 0 ? "first check" : dueText(row.dueDays!).replace(/^due (in )/, "$1"),
       on: row.dueOn!,
       days: row.dueDays!,
-      to: `/instruments/${row.id}`,
+      to: configurationPath({ ...row, instrumentId: row.id }),
     }));
   const reviews = sources.map((source) => ({
     label: source.label,

@@ -72,8 +72,10 @@ export const configurations = pgTable(
     instrumentId: uuid("instrument_id").notNull(),
     /** 1, 2, 3… along the instrument's life. */
     ordinal: integer("ordinal").notNull(),
-    /** null for a plain instrument, whose pages never show the word. */
+    /** null for a plain instrument, whose pages never show the word; two present ones each have their own. */
     name: text("name"),
+    /** The one that ended where this one began: its grating, detector, slit or laser was replaced. */
+    replacesId: uuid("replaces_id"),
     fromOn: date("from_on").notNull(),
     toOn: date("to_on"),
     endedReason: text("ended_reason"),
@@ -99,11 +101,17 @@ export const configurations = pgTable(
   (t): PgTableExtraConfigValue[] => [
     ...tenant(t),
     unique("configurations_ordinal").on(t.labId, t.instrumentId, t.ordinal),
+    uniqueIndex("configurations_name_in_use")
+      .on(t.labId, t.instrumentId, sql`lower(coalesce(${t.name}, ''))`)
+      .where(sql`${t.toOn} is null`),
+    unique("configurations_replaced_once").on(t.labId, t.replacesId),
+    check("configurations_name", sql`${t.name} <> ''`),
     check("configurations_axis_kind", sql`${t.axisKind} in ('pixel', 'wavelength', 'step')`),
     check("configurations_axis_meaning", sql`${t.axisMeaning} in ('vacuum', 'standard-air', 'room-air')`),
     check("configurations_range", sql`${t.rangeFirstNm} < ${t.rangeLastNm}`),
     check("configurations_interval", sql`${t.intervalDays} > 0 and ${t.graceDays} >= 0`),
     tenantKey([t.labId, t.instrumentId], [instruments.labId, instruments.id]),
+    tenantKey([t.labId, t.replacesId], [t.labId, t.id]),
     memberKey(t, t.assignedToId),
     tenantKey([t.labId, t.procedureId], [procedures.labId, procedures.id]),
     tenantKey([t.labId, t.asLeftAskedByCheckId], [checks.labId, checks.id]),

@@ -1,6 +1,6 @@
 -- The role that owns the functions above cannot log in; it sees the few tables they need, across labs.
 grant usage, create on schema public to wavekeep_definer;
-grant select on labs, people, credentials, memberships, invitations, bench_devices, password_resets, instruments, checks to wavekeep_definer;
+grant select on labs, people, credentials, memberships, invitations, bench_devices, password_resets, instruments, configurations, checks to wavekeep_definer;
 grant insert on labs, people, credentials, memberships, password_resets to wavekeep_definer;
 grant update on credentials, memberships, invitations, password_resets to wavekeep_definer;
 --> statement-breakpoint
@@ -20,6 +20,8 @@ drop policy if exists definer on password_resets;
 create policy definer on password_resets to wavekeep_definer using (true) with check (true);
 drop policy if exists definer on instruments;
 create policy definer on instruments for select to wavekeep_definer using (true);
+drop policy if exists definer on configurations;
+create policy definer on configurations for select to wavekeep_definer using (true);
 drop policy if exists definer on checks;
 create policy definer on checks for select to wavekeep_definer using (true);
 drop policy if exists seeds_demo_labs on labs;
