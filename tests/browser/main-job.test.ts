@@ -253,7 +253,7 @@ test("the owner decides the impact review", async () => {
     .getByRole("link", { name: /^Alerts/ })
     .first()
     .click();
-  await page.getByRole("listitem").filter({ hasText: "Ruff" }).getByRole("link", { name: /^IR-/ }).click();
+  await page.getByRole("listitem").filter({ hasText: "Ruff" }).getByRole("link", { name: /^IR-/ }).first().click();
   await page.getByText(numbers.second).waitFor();
   await page.getByText(numbers.failed).first().waitFor();
   await page.getByLabel("Results").selectOption("some");
