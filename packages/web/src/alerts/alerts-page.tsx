@@ -8,7 +8,7 @@ import { Asked, Older } from "../shared/asked.tsx";
 import { DialogForm } from "../shared/dialog-form.tsx";
 import { FormArea, rulesOf } from "../shared/form.tsx";
 import { useUrlFilter } from "../shared/use-url-filter.ts";
-import { counted, countWord, sentenceCase } from "../shared/words.ts";
+import { calledWords, configurationPath, counted, countWord, sentenceCase } from "../shared/words.ts";
 import {
   Button,
   Empty,
@@ -108,7 +108,7 @@ export function AlertsPage() {
                 className="border-hairline flex flex-wrap items-baseline justify-between gap-x-8 gap-y-1 border-b py-3"
               >
                 <span>
-                  <TextLink to={`/impact/${review.id}`}>{review.number}</TextLink> <b>{review.instrumentName}</b>
+                  <TextLink to={`/impact/${review.id}`}>{review.number}</TextLink> <b>{calledWords(review)}</b>
                   <span className="text-quiet">
                     ,{" "}
                     {review.windowFrom === null ? (
@@ -136,8 +136,8 @@ export function AlertsPage() {
 
 function AlertRow({ alert, filled, onAcknowledge }: { alert: Alert; filled: boolean; onAcknowledge: () => void }) {
   const to =
-    alert.instrumentId !== null
-      ? `/instruments/${alert.instrumentId}`
+    alert.instrumentId !== null && alert.configurationId !== null
+      ? configurationPath({ ...alert, instrumentId: alert.instrumentId, configurationId: alert.configurationId })
       : alert.sourceId !== null
         ? `/sources/${alert.sourceId}`
         : null;
@@ -174,7 +174,13 @@ function AlertRow({ alert, filled, onAcknowledge }: { alert: Alert; filled: bool
       </div>
       <div className="flex flex-none flex-wrap items-center gap-4 pl-7 book:pl-0">
         {alert.checkId !== null && <TextLink to={`/checks/${alert.checkId}`}>{alert.checkNumber}</TextLink>}
-        {to !== null && <TextLink to={to}>{alert.instrumentName ?? alert.sourceLabel}</TextLink>}
+        {to !== null && (
+          <TextLink to={to}>
+            {alert.instrumentName === null
+              ? alert.sourceLabel
+              : calledWords({ ...alert, instrumentName: alert.instrumentName })}
+          </TextLink>
+        )}
         {alert.closedAt === null && alert.mayAcknowledge && (
           <Button filled={filled} onClick={onAcknowledge}>
             Acknowledge

@@ -3,7 +3,7 @@ import type { Check } from "@wavekeep/api/contract";
 import { useState } from "react";
 import { useParams } from "react-router";
 import { Asked } from "../shared/asked.tsx";
-import { conditionWords, shortName } from "../shared/words.ts";
+import { calledWords, conditionWords, configurationPath, shortName } from "../shared/words.ts";
 import {
   formatClock,
   formatDay,
@@ -47,7 +47,7 @@ function LoadedCheck({ check }: { check: Check }) {
   const maker = summary.begunBy;
   return (
     <Page
-      name={`${summary.number}, ${summary.instrumentName}`}
+      name={`${summary.number}, ${calledWords(summary)}`}
       title={analysis === null ? `${summary.number} has no result yet.` : verdictSentence(analysis)}
       state={analysis === null ? undefined : analysisState(analysis)}
       aside={<CheckAside check={check} />}
@@ -86,7 +86,7 @@ function LoadedCheck({ check }: { check: Check }) {
         </div>
       </Section>
       {analysis !== null && analysis.dispersion !== null && (
-        <DispersionSection dispersion={analysis.dispersion} analysis={analysis} />
+        <DispersionSection check={check} dispersion={analysis.dispersion} analysis={analysis} />
       )}
       <AttemptsSection check={check} />
       <AnalysesSection check={check} />
@@ -110,8 +110,7 @@ function CheckAside({ check }: { check: Check }) {
     <div className="flex flex-wrap gap-x-2 book:block">
       <p className="strong text-ink">{summary.number}</p>
       <p>
-        <TextLink to={`/instruments/${summary.instrumentId}`}>{summary.instrumentName}</TextLink>
-        {summary.configurationName !== null && `, ${summary.configurationName}`}
+        <TextLink to={configurationPath(summary)}>{calledWords(summary)}</TextLink>
       </p>
       <p className="hidden book:block">Verification, {conditionWords[summary.condition]}</p>
       <p>
@@ -146,7 +145,7 @@ function CheckLead({ check }: { check: Check }) {
       {analysis !== null && analysis.reason !== null && <p>{analysis.reason}</p>}
       {check.hold !== null && (
         <p>
-          {summary.instrumentName} is on hold since <When at={check.hold.since} />
+          {calledWords(summary)} is on hold since <When at={check.hold.since} />
           {check.hold.decided ? "; the decision is made." : "; a manager confirms or lifts it."}{" "}
           {check.impactReview !== null && (
             <TextLink to={`/impact/${check.impactReview.id}`}>{check.impactReview.number}</TextLink>

@@ -7,7 +7,7 @@ import type { z } from "zod";
 import { acknowledgeCheckInput } from "@wavekeep/api/contract";
 import { DialogForm } from "../shared/dialog-form.tsx";
 import { FormArea, rulesOf } from "../shared/form.tsx";
-import { counted } from "../shared/words.ts";
+import { calledWords, counted } from "../shared/words.ts";
 import {
   Button,
   FileLink,
@@ -181,7 +181,7 @@ function AcknowledgeDialog({ check, onClose }: { check: Check; onClose: () => vo
   return (
     <DialogForm
       title={`Acknowledge ${check.summary.number}`}
-      lead={`You have seen how ${check.summary.instrumentName} stands. Your note is kept with the check and in the trail.`}
+      lead={`You have seen how ${calledWords(check.summary)} stands. Your note is kept with the check and in the trail.`}
       confirmLabel="Acknowledge"
       form={form}
       onClose={onClose}

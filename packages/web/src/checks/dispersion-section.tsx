@@ -1,7 +1,9 @@
 /** The fitted axis: coefficients, what the fit leaves, and its uncertainty across the range. */
+import type { Check } from "@wavekeep/api/contract";
 import type { Analysis, Dispersion } from "@wavekeep/core";
 import { sentenceCase } from "../shared/words.ts";
 import { Decimal, FactList, formatNumber, MINUS, NARROW_SPACE, Section, Table } from "../ui/index.ts";
+import { FittedAxis } from "./fitted-axis.tsx";
 import { lineName } from "./verdict-sentence.ts";
 
 const degreeWords = ["constant", "linear", "quadratic", "cubic"];
@@ -24,7 +26,13 @@ function Coefficient({ value }: { value: number }) {
   );
 }
 
-export function DispersionSection({ dispersion, analysis }: { dispersion: Dispersion; analysis: Analysis }) {
+interface DispersionSectionProps {
+  check: Check;
+  dispersion: Dispersion;
+  analysis: Analysis;
+}
+
+export function DispersionSection({ check, dispersion, analysis }: DispersionSectionProps) {
   const { axisUnit } = analysis;
   const nameOf = (index: number) => {
     const line = analysis.lines[index];
@@ -36,6 +44,7 @@ export function DispersionSection({ dispersion, analysis }: { dispersion: Disper
       title="Dispersion"
       note="Wavelength as a polynomial of the position, weighted by each line’s uncertainty; u is standard."
     >
+      <FittedAxis check={check} />
       <div className="grid gap-x-10 gap-y-6 wide:grid-cols-[minmax(0,1fr)_316px]">
         <div className="max-w-[440px]">
           <Table

@@ -5,6 +5,7 @@ import { useForm } from "react-hook-form";
 import { useNavigate } from "react-router";
 import { z } from "zod";
 import { DialogForm } from "../shared/dialog-form.tsx";
+import { calledWords } from "../shared/words.ts";
 import { FormArea, rulesOf } from "../shared/form.tsx";
 import { useNewAttempt, useSetAside } from "./queries.ts";
 import type { DraftKeeper } from "./use-draft.ts";
@@ -34,7 +35,7 @@ export function SetAsideDialog({ check, keeper, onClose }: DraftDialogProps) {
       title={`Set ${summary.number} aside`}
       lead={
         fails
-          ? `Its last verdict is out of tolerance: ${summary.instrumentName} is put on hold, as if it were submitted. The draft and its attempts stay listed.`
+          ? `Its last verdict is out of tolerance: ${calledWords(summary)} is put on hold, as if it were submitted. The draft and its attempts stay listed.`
           : "The draft and its attempts stay listed; it can be taken up again."
       }
       confirmLabel="Set aside"

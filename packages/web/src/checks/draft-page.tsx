@@ -5,7 +5,7 @@ import { useQueryClient } from "@tanstack/react-query";
 import { useMemo, useState } from "react";
 import { useNavigate } from "react-router";
 import { useKeepFromLeaving } from "../shared/form.tsx";
-import { conditionWords } from "../shared/words.ts";
+import { calledWords, conditionWords, configurationPath } from "../shared/words.ts";
 import { Button, formatInstant, formatTime, Page, PasswordDialog, TextButton, TextLink, useZone } from "../ui/index.ts";
 import { ConditionsSection } from "./conditions-section.tsx";
 import { NewAttemptDialog, SetAsideDialog } from "./draft-dialogs.tsx";
@@ -40,8 +40,8 @@ export function DraftPage({ check }: { check: Check }) {
   const close = () => setDoing(null);
   return (
     <Page
-      name={`New check of ${summary.instrumentName}, ${summary.number}`}
-      title={`New check of ${summary.instrumentName}`}
+      name={`New check of ${calledWords(summary)}, ${summary.number}`}
+      title={`New check of ${calledWords(summary)}`}
       aside={<DraftAside check={check} />}
       lead={<KeptNote keeper={keeper} check={check} />}
       actions={
@@ -80,7 +80,7 @@ function DraftAside({ check }: { check: Check }) {
       <p className="strong text-ink">{summary.number}</p>
       <p>Verification, {conditionWords[summary.condition]}</p>
       <p>
-        <TextLink to={`/instruments/${summary.instrumentId}`}>{summary.instrumentName}</TextLink>
+        <TextLink to={configurationPath(summary)}>{calledWords(summary)}</TextLink>
       </p>
       <p className="hidden book:block">{formatInstant(summary.begunAt, zone)}</p>
       <p>Attempt {check.currentAttempt}</p>
@@ -137,7 +137,7 @@ function SubmitDialog({
       meaning="made by"
       lead={
         fails
-          ? `${summary.instrumentName} is out of tolerance: it is put on hold as you submit, its owner is told, and an as-left check is asked for. A second person reviews the check.`
+          ? `${calledWords(summary)} is out of tolerance: it is put on hold as you submit, its owner is told, and an as-left check is asked for. A second person reviews the check.`
           : "A second person reviews it; until then it can be sent back, but no more be changed."
       }
       confirmLabel="Sign and submit"

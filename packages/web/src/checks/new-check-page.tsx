@@ -1,11 +1,12 @@
 /** New check: begun with its instrument and condition, then one page from the first file to the signature. */
-import { beginCheckInput } from "@wavekeep/api/contract";
+import { beginCheckInput, type ConfigurationState, type FleetRow } from "@wavekeep/api/contract";
 import { useState } from "react";
 import { useNavigate, useParams, useSearchParams } from "react-router";
 import { Asked } from "../shared/asked.tsx";
 import { Refused } from "../shared/form.tsx";
 import { NotForYou } from "../shared/not-for-you.tsx";
-import { Button, Empty, LinkButton, Page, Section, SelectField, useMay } from "../ui/index.ts";
+import { calledWords } from "../shared/words.ts";
+import { Button, Empty, formatDate, LinkButton, Page, Section, SelectField, useMay } from "../ui/index.ts";
 import { DraftPage } from "./draft-page.tsx";
 import { useBeginCheck, useCheck, useFleet } from "./queries.ts";
 
@@ -46,6 +47,16 @@ function LoadDraft({ checkId }: { checkId: string }) {
   return <DraftPage check={check.data} />;
 }
 
+/** `near infrared, as-left check asked for`. */
+function configurationLabel(item: ConfigurationState): string {
+  const due = item.asLeftAsked
+    ? "as-left check asked for"
+    : item.dueOn === null || item.dueDays === null
+      ? null
+      : `due ${formatDate(item.dueOn)}`;
+  return [item.name, due].filter((part) => part !== null).join(", ");
+}
+
 /** A check has its number from the moment it is begun, so that gaps stay visible: it begins by a press, never by an address. */
 function BeginPage() {
   const [search, setSearch] = useSearchParams();
@@ -53,15 +64,26 @@ function BeginPage() {
   const fleet = useFleet();
   const begin = useBeginCheck((check) => void navigate(`/checks/${check.summary.id}/edit`, { replace: true }));
   const rows = (fleet.data?.items ?? []).filter((row) => row.retiredAt === null);
-  const chosen = rows.find((row) => row.configurationId === search.get("configuration"));
+  const asked = search.get("configuration");
+  const row = rows.find(
+    (one) => one.configurations.some((item) => item.id === asked) || one.id === search.get("instrument"),
+  );
+  const chosen = row?.configurations.find((item) => item.id === asked);
+  const called =
+    row === undefined ? null : calledWords({ instrumentName: row.name, configurationName: chosen?.name ?? null });
   const follows = search.get("follows");
   const [condition, setCondition] = useState<"as-found" | "as-left" | null>(null);
   const shown = condition ?? (chosen?.asLeftAsked === true || follows !== null ? "as-left" : "as-found");
+  const chooseInstrument = (next: FleetRow | undefined) => {
+    const only = next?.configurations.length === 1 ? next.configurations[0] : undefined;
+    const query: Record<string, string> =
+      next === undefined ? {} : only === undefined ? { instrument: next.id } : { configuration: only.id };
+    setSearch(query, { replace: true });
+  };
   const start = () => {
-    const configurationId = chosen?.configurationId ?? search.get("configuration");
-    if (configurationId === null || begin.isPending) return;
+    if (asked === null || begin.isPending) return;
     const body = beginCheckInput.safeParse({
-      configurationId,
+      configurationId: asked,
       condition: shown,
       followsCheckId: shown === "as-left" ? (follows ?? chosen?.lastCheckId ?? null) : null,
     });
@@ -69,7 +91,7 @@ function BeginPage() {
   };
   return (
     <Page
-      title={chosen === undefined ? "New check" : `New check of ${chosen.name}`}
+      title={called === null ? "New check" : `New check of ${called}`}
       aside="Checks"
       lead="It gets its number when it is begun, and stays listed from then on."
     >
@@ -89,17 +111,28 @@ function BeginPage() {
                 <SelectField
                   label="Instrument"
                   placeholder="Choose an instrument"
-                  value={search.get("configuration") ?? ""}
-                  onChange={(event) =>
-                    setSearch(event.target.value === "" ? {} : { configuration: event.target.value }, { replace: true })
-                  }
-                  choices={[
-                    ...rows.map((row) => ({ value: row.configurationId, label: `${row.name}, ${row.place}` })),
-                    ...(chosen === undefined && search.get("configuration") !== null
-                      ? [{ value: search.get("configuration") ?? "", label: "the configuration you came from" }]
-                      : []),
-                  ]}
+                  value={row?.id ?? ""}
+                  onChange={(event) => chooseInstrument(rows.find((one) => one.id === event.target.value))}
+                  choices={rows.map((one) => ({
+                    value: one.id,
+                    label: one.place === "" ? one.name : `${one.name}, ${one.place}`,
+                  }))}
                 />
+                {row !== undefined && row.configurations.length > 1 && (
+                  <SelectField
+                    label="Configuration"
+                    placeholder="Choose which"
+                    value={chosen?.id ?? ""}
+                    onChange={(event) =>
+                      setSearch(
+                        event.target.value === "" ? { instrument: row.id } : { configuration: event.target.value },
+                        { replace: true },
+                      )
+                    }
+                    choices={row.configurations.map((item) => ({ value: item.id, label: configurationLabel(item) }))}
+                    note="Each has its own axis, tolerance and drift: choose the one the captures come from."
+                  />
+                )}
                 <SelectField
                   label="Condition"
                   value={shown}
@@ -116,7 +149,7 @@ function BeginPage() {
                 />
                 <Refused error={begin.error} />
                 <div className="flex flex-wrap gap-3">
-                  <Button filled type="submit" busy={begin.isPending} disabled={search.get("configuration") === null}>
+                  <Button filled type="submit" busy={begin.isPending} disabled={asked === null}>
                     Begin the check
                   </Button>
                   <LinkButton to="/checks">Cancel</LinkButton>

@@ -2,6 +2,7 @@
 import { keepPreviousData, useInfiniteQuery, useQuery, useQueryClient } from "@tanstack/react-query";
 import type {
   acknowledgeCheckInput,
+  adoptAxisInput,
   approveInput,
   beginCheckInput,
   Check,
@@ -76,6 +77,12 @@ export const useBeginCheck = (done: (check: Check) => void) =>
     done,
   );
 
+/** Asks for a check anew: after a refusal, so that its form knows what stands now. */
+export function useRefreshCheck(checkId: string): () => void {
+  const client = useQueryClient();
+  return () => void client.invalidateQueries({ queryKey: keys.one(checkId) });
+}
+
 /** Puts a reply of the server in place of what was shown, without asking again. */
 export function useKeepCheck(checkId: string): (check: Check) => void {
   const client = useQueryClient();
@@ -112,6 +119,13 @@ export const useReturnCheck = (checkId: string, done: () => void) =>
   useChange(
     (body: z.input<typeof returnInput>, idempotencyKey) =>
       api.post("returnCheck", { checkId }, body, { idempotencyKey }),
+    done,
+  );
+
+export const useAdoptAxis = (configurationId: string, done: () => void) =>
+  useChange(
+    (body: z.input<typeof adoptAxisInput>, idempotencyKey) =>
+      api.post("adoptAxis", { configurationId }, body, { idempotencyKey }),
     done,
   );
 

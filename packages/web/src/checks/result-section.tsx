@@ -137,7 +137,7 @@ export function ResultSection({ check, keeper, local, isTravelling }: ResultSect
         </Section>
       )}
       {isCurrent && analysis !== null && analysis.dispersion !== null && (
-        <DispersionSection dispersion={analysis.dispersion} analysis={analysis} />
+        <DispersionSection check={check} dispersion={analysis.dispersion} analysis={analysis} />
       )}
       {leavingOut !== null && analysis !== null && (
         <LeaveOutDialog line={leavingOut} analysis={analysis} keeper={keeper} onClose={() => setLeavingOut(null)} />

@@ -7,7 +7,7 @@ import { useForm } from "react-hook-form";
 import type { z } from "zod";
 import { DialogForm } from "../shared/dialog-form.tsx";
 import { FormArea, rulesOf } from "../shared/form.tsx";
-import { counted } from "../shared/words.ts";
+import { calledWords, counted } from "../shared/words.ts";
 import { Button, CheckField, formatLimit, PasswordDialog, TextButton } from "../ui/index.ts";
 import { approveCheck, useReturnCheck } from "./queries.ts";
 import { settingsWords } from "./check-facts.tsx";
@@ -115,7 +115,7 @@ function ApproveDialog({ check, open, onClose }: { check: Check; open: boolean; 
       onClose={onClose}
       title={`Approve ${check.summary.number}`}
       meaning="reviewed and approved"
-      lead={`The record of ${check.summary.instrumentName} is locked, and its report is made.`}
+      lead={`The record of ${calledWords(check.summary)} is locked, and its report is made.`}
       confirmLabel="Approve and sign"
       onConfirm={async (password) => {
         await approveCheck(

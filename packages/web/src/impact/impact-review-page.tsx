@@ -5,6 +5,7 @@ import { useParams } from "react-router";
 import type { z } from "zod";
 import { Asked } from "../shared/asked.tsx";
 import { FormArea, FormSelect, Refused, rulesOf, showAtFields, useKeepFromLeaving } from "../shared/form.tsx";
+import { calledWords, configurationPath } from "../shared/words.ts";
 import {
   Button,
   Fact,
@@ -41,21 +42,20 @@ export function ImpactReviewPage() {
 }
 
 function titleOf(review: ImpactReview): string {
-  if (review.decision !== null)
-    return `${affectedWords[review.decision.affected]}: ${review.instrumentName} is decided.`;
-  return `Which results of ${review.instrumentName} fall in its window?`;
+  if (review.decision !== null) return `${affectedWords[review.decision.affected]}: ${calledWords(review)} is decided.`;
+  return `Which results of ${calledWords(review)} fall in its window?`;
 }
 
 function LoadedReview({ review }: { review: ImpactReview }) {
   return (
     <Page
-      name={`${review.number}, ${review.instrumentName}`}
+      name={`${review.number}, ${calledWords(review)}`}
       title={titleOf(review)}
       aside={
         <div className="flex flex-wrap gap-x-2 book:block">
           <p className="strong text-ink">{review.number}</p>
           <p>
-            <TextLink to={`/instruments/${review.instrumentId}`}>{review.instrumentName}</TextLink>
+            <TextLink to={configurationPath(review)}>{calledWords(review)}</TextLink>
           </p>
           <p>
             Opened <When at={review.openedAt} as="day" />

@@ -77,19 +77,19 @@ export function configurationValues(configuration: Configuration): Configuration
 
 const grid = "grid gap-x-6 gap-y-4 book:grid-cols-2 wide:grid-cols-4";
 
-export function AxisSection({ withName, withCoefficients }: { withName: boolean; withCoefficients: boolean }) {
+interface AxisSectionProps {
+  /** Why it has a name; null where there is only one, which needs none. */
+  nameNote: string | null;
+  withCoefficients: boolean;
+}
+
+export function AxisSection({ nameNote, withCoefficients }: AxisSectionProps) {
   const axisKind = useWatch<WithConfiguration, "configuration.axisKind">({ name: "configuration.axisKind" });
   return (
     <Section title="Axis and range" note="Units stand beside the fields; a comma or a point will do.">
       <div className={grid}>
-        {withName && (
-          <FormText
-            name="configuration.name"
-            label="Name of this configuration"
-            note="Channel or grating; leave it empty where there is only one"
-            className="book:col-span-2"
-            empty={null}
-          />
+        {nameNote !== null && (
+          <FormText name="configuration.name" label="Name" note={nameNote} className="book:col-span-2" empty={null} />
         )}
         <FormNumber name="configuration.rangeFirstNm" label="Range from" unit="nm" />
         <FormNumber name="configuration.rangeLastNm" label="Range to" unit="nm" />

@@ -84,6 +84,7 @@ export function DriftSection({ instrument, configuration, plain = false }: Drift
               text="Each check is a point here, with its uncertainty, between the limits; moves, lamps and adjustments are marked. The first check makes the first point."
               action={
                 instrument.retiredAt === null &&
+                configuration.toOn === null &&
                 may("check.begin") && (
                   <LinkButton to={`/checks/new?configuration=${configuration.id}`}>Start a check</LinkButton>
                 )

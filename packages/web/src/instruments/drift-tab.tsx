@@ -43,6 +43,7 @@ export function DriftTab({ instrument, configuration, show }: DriftTabProps) {
           <Empty
             text="Nothing was logged for it yet."
             action={
+              configuration.toOn === null &&
               may("event.log", { instrumentId: instrument.id }) && (
                 <Button onClick={() => show("event")}>Log an event</Button>
               )

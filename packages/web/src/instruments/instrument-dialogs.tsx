@@ -2,6 +2,7 @@
 import {
   changeStandingInput,
   changeToleranceInput,
+  endConfigurationInput,
   eventKind,
   logEventInput,
   moveDueDateInput,
@@ -13,14 +14,15 @@ import { Controller, useForm, useWatch } from "react-hook-form";
 import type { z } from "zod";
 import { DialogForm } from "../shared/dialog-form.tsx";
 import { FormArea, FormSelect, FormText, rulesOf, showAtFields, useFormVersion } from "../shared/form.tsx";
-import { eventKindWords, sentenceCase, standingWords } from "../shared/words.ts";
+import { calledWords, eventKindWords, sentenceCase, standingWords } from "../shared/words.ts";
 import { CheckField, dayOf, formatDate, formatLimit, useMay, useZone } from "../ui/index.ts";
 import { ReasonField, ToleranceFields } from "./configuration-fields.tsx";
 import { useOwnerChoices } from "./identity-fields.tsx";
 import {
   useChangeStanding,
   useChangeTolerance,
-  useInstrument,
+  useEndConfiguration,
+  useRefreshInstrument,
   useLogEvent,
   useMoveDueDate,
   useRetireInstrument,
@@ -32,14 +34,20 @@ export interface DialogProps {
   onClose: () => void;
 }
 
-export function InstrumentDialogs({ doing, ...props }: DialogProps & { doing: string | null }) {
+const calledOf = (instrument: Instrument, configuration: Configuration) =>
+  calledWords({ instrumentName: instrument.name, configurationName: configuration.name });
+
+export function InstrumentDialogs({ doing, onEnded, ...props }: DialogProps & EndProps & { doing: string | null }) {
   const may = useMay();
   if (props.instrument.retiredAt !== null) return null;
+  if (doing === "retire" && may("instrument.change")) return <RetireDialog {...props} />;
+  // What has ended is looked at, not changed.
+  if (props.configuration.toOn !== null) return null;
+  if (doing === "end" && may("instrument.change")) return <EndDialog {...props} onEnded={onEnded} />;
   if (doing === "event" && may("event.log", { instrumentId: props.instrument.id })) return <EventDialog {...props} />;
   if (doing === "hold" && may("standing.change")) return <StandingDialog {...props} />;
   if (doing === "tolerance" && may("tolerance.change")) return <ToleranceDialog {...props} />;
   if (doing === "due" && may("due.change")) return <DueDialog {...props} />;
-  if (doing === "retire" && may("instrument.change")) return <RetireDialog {...props} />;
   return null;
 }
 
@@ -60,7 +68,7 @@ function EventDialog({ instrument, configuration, onClose }: DialogProps) {
   });
   return (
     <DialogForm
-      title={`Log an event of ${instrument.name}`}
+      title={`Log an event of ${calledOf(instrument, configuration)}`}
       lead="It stands as a mark in the drift ribbon and in the trail."
       confirmLabel="Log the event"
       form={form}
@@ -106,7 +114,7 @@ function holdWords({ standing: { reason, checkNumber } }: Configuration): string
 const standingChoices = ["out-of-service", "restricted", "in-service", "quarantined", "on-hold"] as const;
 
 function StandingDialog({ instrument, configuration, onClose }: DialogProps) {
-  const current = useInstrument(instrument.id);
+  const refresh = useRefreshInstrument(instrument.id);
   const { version, takeCurrent } = useFormVersion(configuration.version);
   const change = useChangeStanding(configuration.id, onClose);
   const isHold = configuration.standing.standing === "on-hold";
@@ -137,7 +145,11 @@ function StandingDialog({ instrument, configuration, onClose }: DialogProps) {
       : sentenceCase(standingWords[value]);
   return (
     <DialogForm
-      title={isHold ? `Confirm or lift the hold of ${instrument.name}` : `Change the standing of ${instrument.name}`}
+      title={
+        isHold
+          ? `Confirm or lift the hold of ${calledOf(instrument, configuration)}`
+          : `Change the standing of ${calledOf(instrument, configuration)}`
+      }
       lead={
         isHold
           ? `On hold: ${holdWords(configuration)}. Out of service or restricted, it comes back by an as-left check that passes and is approved. Lifted, it is in service at once, on your reason.`
@@ -159,7 +171,7 @@ function StandingDialog({ instrument, configuration, onClose }: DialogProps) {
           {
             onError: (error) => {
               showAtFields(error, form.setError);
-              void current.refetch();
+              refresh();
             },
           },
         )
@@ -181,7 +193,7 @@ function StandingDialog({ instrument, configuration, onClose }: DialogProps) {
 }
 
 function ToleranceDialog({ instrument, configuration, onClose }: DialogProps) {
-  const current = useInstrument(instrument.id);
+  const refresh = useRefreshInstrument(instrument.id);
   const { version, takeCurrent } = useFormVersion(configuration.version);
   const change = useChangeTolerance(configuration.id, onClose);
   const shape = changeToleranceInput.omit({ version: true });
@@ -191,7 +203,7 @@ function ToleranceDialog({ instrument, configuration, onClose }: DialogProps) {
   });
   return (
     <DialogForm
-      title={`Change the tolerance of ${instrument.name}`}
+      title={`Change the tolerance of ${calledOf(instrument, configuration)}`}
       lead={`Now ±${formatLimit(configuration.tolerance.segments[0]?.toleranceNm ?? 0)}, version ${configuration.tolerance.version}. A check whose first capture came before keeps the old one; the change shows in reports for a year.`}
       confirmLabel="Set the tolerance"
       form={form}
@@ -213,7 +225,7 @@ function ToleranceDialog({ instrument, configuration, onClose }: DialogProps) {
           {
             onError: (error) => {
               showAtFields(error, form.setError);
-              void current.refetch();
+              refresh();
             },
           },
         )
@@ -226,7 +238,7 @@ function ToleranceDialog({ instrument, configuration, onClose }: DialogProps) {
 }
 
 function DueDialog({ instrument, configuration, onClose }: DialogProps) {
-  const current = useInstrument(instrument.id);
+  const refresh = useRefreshInstrument(instrument.id);
   const { version, takeCurrent } = useFormVersion(configuration.version);
   const people = useOwnerChoices();
   const change = useMoveDueDate(configuration.id, onClose);
@@ -237,7 +249,7 @@ function DueDialog({ instrument, configuration, onClose }: DialogProps) {
   });
   return (
     <DialogForm
-      title={`Next check of ${instrument.name}`}
+      title={`Next check of ${calledOf(instrument, configuration)}`}
       lead={
         configuration.dueOn === null
           ? "No date is set."
@@ -259,7 +271,7 @@ function DueDialog({ instrument, configuration, onClose }: DialogProps) {
           {
             onError: (error) => {
               showAtFields(error, form.setError);
-              void current.refetch();
+              refresh();
             },
           },
         )
@@ -274,8 +286,55 @@ function DueDialog({ instrument, configuration, onClose }: DialogProps) {
   );
 }
 
+interface EndProps {
+  /** Called when the configuration has ended, before the page shows it. */
+  onEnded: () => void;
+}
+
+function EndDialog({ instrument, configuration, onClose, onEnded }: DialogProps & EndProps) {
+  const zone = useZone();
+  const refresh = useRefreshInstrument(instrument.id);
+  const { version, takeCurrent } = useFormVersion(configuration.version);
+  const change = useEndConfiguration(configuration.id, onEnded);
+  const shape = endConfigurationInput.omit({ version: true });
+  const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
+    resolver: rulesOf(shape),
+    defaultValues: { toOn: dayOf(new Date(), zone), reason: "" },
+  });
+  return (
+    <DialogForm
+      title={`End ${calledOf(instrument, configuration)}`}
+      lead="Nothing takes its place. Its checks, axes and drift stay and can be read; no check can be begun on it any more, and nothing falls due."
+      confirmLabel="End it"
+      form={form}
+      onClose={onClose}
+      busy={change.isPending}
+      error={change.error}
+      onKeepMine={() => {
+        takeCurrent();
+        change.reset();
+      }}
+      onTakeTheirs={onClose}
+      onSubmit={(values) =>
+        change.mutate(
+          { ...values, version },
+          {
+            onError: (error) => {
+              showAtFields(error, form.setError);
+              refresh();
+            },
+          },
+        )
+      }
+    >
+      <FormText name="toOn" label="Ended on" type="date" />
+      <ReasonField />
+    </DialogForm>
+  );
+}
+
 function RetireDialog({ instrument, onClose }: DialogProps) {
-  const current = useInstrument(instrument.id);
+  const refresh = useRefreshInstrument(instrument.id);
   const { version, takeCurrent } = useFormVersion(instrument.version);
   const change = useRetireInstrument(instrument.id, onClose);
   const shape = retireInput.omit({ version: true });
@@ -301,7 +360,7 @@ function RetireDialog({ instrument, onClose }: DialogProps) {
         change.mutate(
           { ...values, version },
           {
-            onError: () => void current.refetch(),
+            onError: refresh,
           },
         )
       }

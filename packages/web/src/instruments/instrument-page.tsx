@@ -3,7 +3,7 @@ import type { Configuration, Instrument } from "@wavekeep/api/contract";
 import type { ReactNode } from "react";
 import { Navigate, useParams, useSearchParams } from "react-router";
 import { Asked } from "../shared/asked.tsx";
-import { kindWords } from "../shared/words.ts";
+import { calledWords, kindWords } from "../shared/words.ts";
 import {
   Button,
   formatNumber,
@@ -37,7 +37,8 @@ const tabWords: Record<(typeof tabs)[number], string> = {
 
 export function InstrumentPage() {
   const { instrumentId = "", tab } = useParams();
-  const instrument = useInstrument(instrumentId);
+  const [search] = useSearchParams();
+  const instrument = useInstrument(instrumentId, search.get("configuration"));
   if (tab !== undefined && !(tabs as readonly string[]).includes(tab))
     return <Navigate to={`/instruments/${instrumentId}`} replace />;
   if (instrument.data === undefined) {
@@ -57,20 +58,25 @@ export function InstrumentPage() {
 function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (typeof tabs)[number] | undefined }) {
   const [search, setSearch] = useSearchParams();
   const may = useMay();
-  const open = instrument.configurations.filter((item) => item.toOn === null);
-  const configuration =
-    instrument.configurations.find((item) => item.id === search.get("configuration")) ??
-    instrument.configurations.find((item) => item.id === instrument.currentConfigurationId) ??
-    instrument.configurations[0];
-  if (configuration === undefined) return <Page title={instrument.name} lead="It has no configuration yet." />;
+  const asked = search.get("configuration") ?? instrument.currentConfigurationId;
+  // What state and sentence speak of: while another one is asked for, the one seen last stays whole.
+  const configuration = instrument.configurations.find((item) => item.id === instrument.shownConfigurationId)!;
+  const choices = instrument.configurations.filter((item) => item.toOn === null || item.id === asked);
+  const called = calledWords({ instrumentName: instrument.name, configurationName: configuration.name });
   const doing = search.get("do");
-  const show = (what: string | null) =>
-    setSearch((before) => {
-      const next = new URLSearchParams(before);
-      if (what === null) next.delete("do");
-      else next.set("do", what);
-      return next;
-    });
+  const goTo = (to: { configuration?: string | null; do?: string | null }, replace = false) =>
+    setSearch(
+      (before) => {
+        const next = new URLSearchParams(before);
+        for (const [key, value] of Object.entries(to)) {
+          if (value === null) next.delete(key);
+          else next.set(key, value);
+        }
+        return next;
+      },
+      { replace, preventScrollReset: replace },
+    );
+  const show = (what: string | null) => goTo({ do: what });
   const base = `/instruments/${instrument.id}`;
   const kept = search.get("configuration") === null ? "" : `?configuration=${configuration.id}`;
   const shownTabs = tabs.filter((item) => item !== "history" || may("records.read", { instrumentId: instrument.id }));
@@ -84,17 +90,21 @@ function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (t
       }
     />
   );
-  const changes = may("instrument.change") && instrument.retiredAt === null;
+  const changes = may("instrument.change") && instrument.retiredAt === null && configuration.toOn === null;
   const forms = { instrument, configuration, onClose: () => show(null) };
-  const form = !changes ? null : doing === "next" ? (
-    <NextConfigurationForm {...forms} />
+  const onBegun = (reply: Instrument) => {
+    const isOne = reply.configurations.filter((item) => item.toOn === null).length === 1;
+    goTo({ do: null, configuration: isOne ? null : reply.shownConfigurationId });
+  };
+  const form = !changes ? null : doing === "replace" || doing === "add" ? (
+    <NextConfigurationForm {...forms} key={doing} kind={doing} onBegun={onBegun} />
   ) : doing === "optics" ? (
     <OpticsForm {...forms} />
   ) : null;
   return (
     <Page
-      name={instrument.name}
-      title={instrument.name}
+      name={called}
+      title={called}
       status={status}
       aside={
         <>
@@ -115,16 +125,13 @@ function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (t
       {form ?? (
         <>
           <div className="book mt-8">
-            <div className="book-margin hidden book:block">
-              {open.length > 1 && (
+            <div className={`book-margin no-print ${choices.length > 1 ? "mb-4 book:mb-0" : "hidden book:block"}`}>
+              {choices.length > 1 && (
                 <Switches
                   label="Configuration"
-                  value={configuration.id}
-                  onChange={(id) => setSearch({ configuration: id }, { replace: true })}
-                  choices={open.map((item, index) => ({
-                    value: item.id,
-                    label: item.name ?? `configuration ${index + 1}`,
-                  }))}
+                  value={asked}
+                  onChange={(id) => goTo({ configuration: id, do: null }, true)}
+                  choices={choices.map((item) => ({ value: item.id, label: switchWord(item) }))}
                 />
               )}
             </div>
@@ -141,7 +148,7 @@ function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (t
           <TabMatter instrument={instrument} configuration={configuration} tab={tab} show={show} />
         </>
       )}
-      <InstrumentDialogs {...forms} doing={doing} />
+      <InstrumentDialogs {...forms} doing={doing} onEnded={() => goTo({ do: null, configuration: null })} />
     </Page>
   );
 }
@@ -158,17 +165,21 @@ function TabMatter({
   tab,
   show,
 }: PartProps & { tab: (typeof tabs)[number] | undefined }): ReactNode {
-  if (tab === "checks") return <ChecksTab instrument={instrument} />;
+  if (tab === "checks") return <ChecksTab instrument={instrument} configuration={configuration} />;
   if (tab === "drift") return <DriftTab configuration={configuration} instrument={instrument} show={show} />;
   if (tab === "optics") return <OpticsTab instrument={instrument} configuration={configuration} show={show} />;
   if (tab === "history") return <HistoryTab instrument={instrument} />;
   return <OverviewTab instrument={instrument} configuration={configuration} show={show} />;
 }
 
+/** Its name; one that has ended says so. */
+const switchWord = (item: Configuration) =>
+  item.toOn === null ? (item.name ?? "present") : `${item.name ?? "the one before"}, ended`;
+
 /** What may be done here now: the decision on a hold goes first, then a check. */
 function Actions({ instrument, configuration, show }: PartProps) {
   const may = useMay();
-  if (instrument.retiredAt !== null) return null;
+  if (instrument.retiredAt !== null || configuration.toOn !== null) return null;
   const awaitsDecision = configuration.standing.standing === "on-hold";
   const decides = awaitsDecision && may("standing.change");
   const checks = may("check.begin");

@@ -12,6 +12,7 @@ const row = (over: Partial<FleetRow>): FleetRow =>
     retiredAt: null,
     dueDays: 5,
     toleranceUsed: 0.5,
+    configurationName: null,
     laserNm: null,
     rangeFirstNm: 200,
     rangeLastNm: 850,
@@ -34,6 +35,7 @@ describe("a row of the fleet", () => {
   test("a Raman bench is known by its laser, the others by their range", () => {
     expect(kindNote(row({}))).toBe("array, 200–850\u202fnm");
     expect(kindNote(row({ kind: "raman", laserNm: 532 }))).toBe("Raman, 532\u202fnm");
+    expect(kindNote(row({ configurationName: "visible" }))).toBe("visible, array, 200–850\u202fnm");
   });
   test("the one nearest its limit comes first, the unjudged and the retired last", () => {
     const names = [

@@ -74,7 +74,7 @@ function NewInstrumentForm() {
               />
             }
           />
-          <AxisSection withName withCoefficients />
+          <AxisSection nameNote={null} withCoefficients />
           <OpticsSection />
           <Section title="Tolerance" note="The largest error allowed, by segment of the range.">
             <ToleranceFields name="tolerance" />

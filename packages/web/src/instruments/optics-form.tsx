@@ -5,7 +5,7 @@ import { z } from "zod";
 import { Refused, rulesOf, showAtFields, useFormVersion, useKeepFromLeaving } from "../shared/form.tsx";
 import { Button, Section } from "../ui/index.ts";
 import { AxisSection, configurationValues, DecisionSection, OpticsSection } from "./configuration-fields.tsx";
-import { useChangeConfiguration, useInstrument } from "./queries.ts";
+import { useChangeConfiguration, useRefreshInstrument } from "./queries.ts";
 
 const shape = z.object({ configuration: configurationInput });
 
@@ -18,7 +18,7 @@ export function OpticsForm({
   configuration: Configuration;
   onClose: () => void;
 }) {
-  const current = useInstrument(instrument.id);
+  const refresh = useRefreshInstrument(instrument.id);
   const { version, takeCurrent } = useFormVersion(configuration.version);
   const change = useChangeConfiguration(configuration.id, onClose);
   const form = useForm<z.input<typeof shape>, unknown, z.output<typeof shape>>({
@@ -32,7 +32,7 @@ export function OpticsForm({
       {
         onError: (error) => {
           showAtFields(error, form.setError);
-          void current.refetch();
+          refresh();
         },
       },
     ),
@@ -40,12 +40,15 @@ export function OpticsForm({
   return (
     <FormProvider {...form}>
       <form onSubmit={(event) => void submit(event)} noValidate>
-        <AxisSection withName={instrument.configurations.length > 1} withCoefficients={false} />
+        <AxisSection
+          nameNote={instrument.configurations.length > 1 ? "Channel, grating, slit or laser" : null}
+          withCoefficients={false}
+        />
         <OpticsSection />
         <DecisionSection withFirstDue={false} />
         <Section
           title="Save"
-          note="For what was mistyped or measured anew. A replaced part begins the next configuration instead."
+          note="For what was mistyped or measured anew. A replaced part has its own button: what it was stays on record."
         >
           <Refused
             error={change.error}

@@ -17,6 +17,7 @@ import {
   When,
 } from "../ui/index.ts";
 import { sentenceCase, standingWords } from "../shared/words.ts";
+import { AxesSection } from "./axes-section.tsx";
 import { axisWords, intervalWords } from "./overview-tab.tsx";
 
 interface OpticsTabProps {
@@ -37,11 +38,13 @@ const axisKindWords = { pixel: "pixels", wavelength: "wavelength", step: "motor 
 export function OpticsTab({ instrument, configuration, show }: OpticsTabProps) {
   const zone = useZone();
   const may = useMay();
-  const changes = may("instrument.change") && instrument.retiredAt === null;
+  const isPresent = instrument.retiredAt === null && configuration.toOn === null;
+  const changes = may("instrument.change") && isPresent;
   const { optics, decisionRule, tolerance, standing } = configuration;
   const plain = (value: number | null, unit: string) =>
     withUnit(value, unit, value !== null && !Number.isInteger(value) ? 2 : 0);
-  const ended = instrument.configurations.filter((item) => item.toOn !== null);
+  const ended = instrument.configurations.filter((item) => item.toOn !== null && item.id !== configuration.id);
+  const present = instrument.configurations.filter((item) => item.toOn === null);
   return (
     <>
       <Section
@@ -65,7 +68,7 @@ export function OpticsTab({ instrument, configuration, show }: OpticsTabProps) {
         <p className="type-note mt-2 max-w-[720px]">
           Version {tolerance.version}: {tolerance.reason}
         </p>
-        {may("tolerance.change") && instrument.retiredAt === null && (
+        {may("tolerance.change") && isPresent && (
           <Button className="mt-4" onClick={() => show("tolerance")}>
             Change the tolerance
           </Button>
@@ -138,29 +141,26 @@ export function OpticsTab({ instrument, configuration, show }: OpticsTabProps) {
             ]}
           />
         </div>
-        {configuration.axis !== null && configuration.axisKind !== "wavelength" && (
-          <p className="type-note mt-3 break-words">
-            λ(p)/nm, ascending powers of the pixel:{" "}
-            {configuration.axis.coefficients.map((value) => String(value).replaceAll("-", "−")).join(",  ")}
-          </p>
-        )}
         {optics.adjustmentNote !== null && optics.adjustmentNote !== "" && (
           <p className="mt-3 max-w-[720px]">{optics.adjustmentNote}</p>
         )}
         {changes && (
           <div className="mt-4 flex flex-wrap gap-3">
             <Button onClick={() => show("optics")}>Change axis, optics or interval</Button>
-            <Button onClick={() => show("next")}>Begin the next configuration</Button>
+            <Button onClick={() => show("replace")}>Replace a part</Button>
+            <Button onClick={() => show("add")}>Add a channel or grating</Button>
+            {present.length > 1 && <Button onClick={() => show("end")}>End this one</Button>}
           </div>
         )}
       </Section>
+      <AxesSection configuration={configuration} />
       <Section title="Standing">
         <p>
           {sentenceCase(standingWords[standing.standing])}
           {standing.restriction !== null && ` to ${standing.restriction}`} since <When at={standing.since} />.{" "}
           <span className="text-quiet">{standing.reason}</span>
         </p>
-        {may("standing.change") && instrument.retiredAt === null && (
+        {may("standing.change") && isPresent && (
           <Button className="mt-4" onClick={() => show("hold")}>
             {standing.standing === "on-hold" ? "Confirm or lift the hold" : "Change the standing"}
           </Button>

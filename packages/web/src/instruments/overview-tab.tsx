@@ -1,6 +1,6 @@
 /** Overview of an instrument: drift, the last check's errors, recent checks with what comes next. */
 import type { Configuration, Instrument } from "@wavekeep/api/contract";
-import { useNavigate } from "react-router";
+import { useNavigate, useSearchParams } from "react-router";
 import { DrawingLinks, LineStrip, useDrawing } from "../drawings/index.ts";
 import { ChecksTable } from "../shared/checks-table.tsx";
 import { conditionWords, counted } from "../shared/words.ts";
@@ -92,8 +92,12 @@ export function opticsWords({ optics }: Pick<Configuration, "optics">): string {
   return parts.length === 0 ? "not recorded" : parts.join(", ");
 }
 
-const meaningWords = { vacuum: "vacuum", "standard-air": "standard air", "room-air": "air of the room" } as const;
-const degreeWords = [
+export const meaningWords = {
+  vacuum: "vacuum",
+  "standard-air": "standard air",
+  "room-air": "air of the room",
+} as const;
+export const degreeWords = [
   "constant",
   "linear",
   "quadratic",
@@ -127,6 +131,7 @@ export function toleranceWords({ tolerance }: Pick<Configuration, "tolerance">):
 }
 
 function RecentChecks({ instrument, configuration, show }: TabProps) {
+  const [search] = useSearchParams();
   const zone = useZone();
   const may = useMay();
   const next =
@@ -152,7 +157,13 @@ function RecentChecks({ instrument, configuration, show }: TabProps) {
           ? undefined
           : `${instrument.checkCount} since ${formatShortDay(instrument.firstCheckAt, zone)}.`
       }
-      links={instrument.checkCount > 0 && <TextLink to={`/instruments/${instrument.id}/checks`}>All checks</TextLink>}
+      links={
+        instrument.checkCount > 0 && (
+          <TextLink to={`/instruments/${instrument.id}/checks${search.size === 0 ? "" : `?${search}`}`}>
+            All checks
+          </TextLink>
+        )
+      }
     >
       <div className="grid gap-x-10 gap-y-6 wide:grid-cols-[minmax(0,1fr)_312px]">
         {instrument.recentChecks.length === 0 ? (
@@ -176,7 +187,7 @@ function RecentChecks({ instrument, configuration, show }: TabProps) {
               { label: "Procedure", value: configuration.procedureTitle },
             ]}
           />
-          {may("due.change") && instrument.retiredAt === null && (
+          {may("due.change") && instrument.retiredAt === null && configuration.toOn === null && (
             <p className="mt-3 text-right">
               <TextButton onClick={() => show("due")}>Move the due date or assign</TextButton>
             </p>

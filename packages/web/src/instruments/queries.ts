@@ -1,11 +1,13 @@
 /** Questions and changes about instruments and their configurations. */
-import { queryOptions, useInfiniteQuery, useQuery } from "@tanstack/react-query";
+import { queryOptions, useInfiniteQuery, useQuery, useQueryClient } from "@tanstack/react-query";
 import type {
   changeConfigurationInput,
   changeInstrumentInput,
   changeStandingInput,
   changeToleranceInput,
   createInstrumentInput,
+  endConfigurationInput,
+  Instrument,
   logEventInput,
   moveDueDateInput,
   nextConfigurationInput,
@@ -17,9 +19,12 @@ import { useChange } from "../shared/use-change.ts";
 
 const keys = {
   fleet: ["instruments"] as const,
-  one: (instrumentId: string) => ["instruments", instrumentId] as const,
+  every: (instrumentId: string) => ["instruments", instrumentId] as const,
+  one: (instrumentId: string, configurationId: string | null) =>
+    ["instruments", instrumentId, configurationId] as const,
+  axes: (configurationId: string) => ["axes", configurationId] as const,
   drift: (configurationId: string) => ["drift", configurationId] as const,
-  checks: (instrumentId: string) => ["checks", "of-instrument", instrumentId] as const,
+  checks: (of: ChecksOf) => ["checks", "of-instrument", of] as const,
   trail: (instrumentId: string) => ["trail", "of-instrument", instrumentId] as const,
   people: ["people"] as const,
 };
@@ -30,10 +35,27 @@ export const fleetQuery = queryOptions({
 });
 export const useFleet = () => useQuery(fleetQuery);
 
-export const useInstrument = (instrumentId: string) =>
+/** One instrument as one of its configurations stands; without one, as its worst stands. */
+export const useInstrument = (instrumentId: string, configurationId: string | null = null) =>
   useQuery({
-    queryKey: keys.one(instrumentId),
-    queryFn: ({ signal }) => api.get("readInstrument", { instrumentId }, undefined, { signal }),
+    queryKey: keys.one(instrumentId, configurationId),
+    queryFn: ({ signal }) =>
+      api.get("readInstrument", { instrumentId }, { configurationId: configurationId ?? undefined }, { signal }),
+    // Of the same instrument: what was seen last stays until the other configuration is there.
+    placeholderData: (last) => (last?.id === instrumentId ? last : undefined),
+  });
+
+/** Asks for an instrument anew: after a refusal, so that the form knows what stands now. */
+export function useRefreshInstrument(instrumentId: string): () => void {
+  const client = useQueryClient();
+  return () => void client.invalidateQueries({ queryKey: keys.every(instrumentId) });
+}
+
+export const useAxes = (configurationId: string, enabled: boolean) =>
+  useQuery({
+    queryKey: keys.axes(configurationId),
+    queryFn: ({ signal }) => api.get("listAxes", { configurationId }, undefined, { signal }),
+    enabled,
   });
 
 export const useDrift = (configurationId: string) =>
@@ -42,12 +64,14 @@ export const useDrift = (configurationId: string) =>
     queryFn: ({ signal }) => api.get("readDrift", { configurationId }, undefined, { signal }),
   });
 
-/** Checks of one instrument, newest first, page by page. */
-export const useInstrumentChecks = (instrumentId: string) =>
+type ChecksOf = { instrumentId: string } | { configurationId: string };
+
+/** Checks of one instrument or configuration, newest first, page by page. */
+export const useInstrumentChecks = (of: ChecksOf) =>
   useInfiniteQuery({
-    queryKey: keys.checks(instrumentId),
+    queryKey: keys.checks(of),
     queryFn: ({ pageParam, signal }) =>
-      api.get("listChecks", {}, { instrumentId, after: pageParam ?? undefined, limit: 50 }, { signal }),
+      api.get("listChecks", {}, { ...of, after: pageParam ?? undefined, limit: 50 }, { signal }),
     initialPageParam: null as string | null,
     getNextPageParam: (last) => last.next,
   });
@@ -79,10 +103,17 @@ export const useChangeInstrument = (instrumentId: string, done: () => void) =>
 export const useRetireInstrument = (instrumentId: string, done: () => void) =>
   useChange((body: z.input<typeof retireInput>) => api.post("retireInstrument", { instrumentId }, body), done);
 
-export const useNextConfiguration = (instrumentId: string, done: () => void) =>
+export const useNextConfiguration = (instrumentId: string, done: (reply: Instrument) => void) =>
   useChange(
     (body: z.input<typeof nextConfigurationInput>, idempotencyKey) =>
       api.post("nextConfiguration", { instrumentId }, body, { idempotencyKey }),
+    done,
+  );
+
+export const useEndConfiguration = (configurationId: string, done: (reply: Instrument) => void) =>
+  useChange(
+    (body: z.input<typeof endConfigurationInput>, idempotencyKey) =>
+      api.post("endConfiguration", { configurationId }, body, { idempotencyKey }),
     done,
   );
 

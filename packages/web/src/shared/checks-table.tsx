@@ -13,7 +13,7 @@ import {
   When,
   type Column,
 } from "../ui/index.ts";
-import { checkStateWords, conditionWords, shortName } from "./words.ts";
+import { checkStateWords, conditionWords, configurationPath, shortName } from "./words.ts";
 
 /** Where a check is opened: a draft where it is made, everything else where it is read. */
 export const checkPath = (check: Pick<CheckSummary, "id" | "state">): string =>
@@ -46,10 +46,18 @@ interface ChecksTableProps {
   caption: string;
   /** One instrument's checks: its name is not repeated. */
   ofInstrument?: boolean;
+  /** With `ofInstrument`: which of its configurations each was made on. */
+  withConfiguration?: boolean;
   compact?: boolean;
 }
 
-export function ChecksTable({ checks, caption, ofInstrument = false, compact = false }: ChecksTableProps) {
+export function ChecksTable({
+  checks,
+  caption,
+  ofInstrument = false,
+  withConfiguration = false,
+  compact = false,
+}: ChecksTableProps) {
   const decimals = Math.max(2, ...checks.map((check) => uncertaintyDecimals(check.result?.worst?.expandedUncNm) ?? 0));
   const columns: Column<CheckSummary>[] = [
     {
@@ -62,6 +70,9 @@ export function ChecksTable({ checks, caption, ofInstrument = false, compact = f
         </Link>
       ),
     },
+    ...(withConfiguration
+      ? [{ key: "configuration", head: "Configuration", cell: (check: CheckSummary) => check.configurationName ?? "–" }]
+      : []),
     ...(ofInstrument
       ? []
       : [
@@ -70,7 +81,7 @@ export function ChecksTable({ checks, caption, ofInstrument = false, compact = f
             head: "Instrument",
             cell: (check: CheckSummary) => (
               <>
-                <Link to={`/instruments/${check.instrumentId}`} className="strong hover:underline">
+                <Link to={configurationPath(check)} className="strong hover:underline">
                   {check.instrumentName}
                 </Link>{" "}
                 <span className="type-note">
@@ -161,6 +172,9 @@ export function ChecksTable({ checks, caption, ofInstrument = false, compact = f
                 <span className="strong">{ofInstrument ? check.number : check.instrumentName}</span>{" "}
                 <span className="type-note">
                   {!ofInstrument && `${check.number}, `}
+                  {(withConfiguration || !ofInstrument) &&
+                    check.configurationName !== null &&
+                    `${check.configurationName}, `}
                   <When at={dateOf(check)} as="short" />
                 </span>
               </span>

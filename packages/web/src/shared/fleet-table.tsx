@@ -16,13 +16,16 @@ import {
 } from "../ui/index.ts";
 import { kindNotes, speciesWord } from "./words.ts";
 
-/** `array, 340–1030 nm`; a Raman bench is known by its laser. */
-export function kindNote(row: Pick<FleetRow, "kind" | "laserNm" | "rangeFirstNm" | "rangeLastNm">): string {
+/** `array, 340–1030 nm`; a Raman bench is known by its laser; with several configurations, the one shown goes first. */
+export function kindNote(
+  row: Pick<FleetRow, "kind" | "laserNm" | "rangeFirstNm" | "rangeLastNm" | "configurationName">,
+): string {
   const span =
     row.kind === "raman" && row.laserNm !== null
       ? formatNumber(row.laserNm, { decimals: Number.isInteger(row.laserNm) ? 0 : 1 })
       : `${formatNumber(row.rangeFirstNm)}–${formatNumber(row.rangeLastNm)}`;
-  return `${kindNotes[row.kind]}, ${span}${NARROW_SPACE}nm`;
+  const name = row.configurationName === null ? "" : `${row.configurationName}, `;
+  return `${name}${kindNotes[row.kind]}, ${span}${NARROW_SPACE}nm`;
 }
 
 /** Most used first; what was never judged and what is retired last, by name. */

@@ -21,6 +21,18 @@ export const kindWords: Record<InstrumentKind, string> = {
   raman: "Raman bench",
 };
 
+/** What a configuration is called: its instrument, with its own name where it has one: `Dunlin`, `Curlew (visible)`. */
+export const calledWords = (of: { instrumentName: string; configurationName: string | null }): string =>
+  of.configurationName === null ? of.instrumentName : `${of.instrumentName} (${of.configurationName})`;
+
+/** Where a configuration is looked at; a plain instrument's address stays plain. */
+export const configurationPath = (of: {
+  instrumentId: string;
+  configurationId: string;
+  configurationName: string | null;
+}): string =>
+  `/instruments/${of.instrumentId}${of.configurationName === null ? "" : `?configuration=${of.configurationId}`}`;
+
 /** Kind of an instrument as a note beside its name in a row. */
 export const kindNotes: Record<InstrumentKind, string> = {
   array: "array",
