@@ -31,7 +31,13 @@ async function main(): Promise<void> {
     await analyser.close();
     await db.close();
   }
-  const signIns = Object.values(people).map(({ name, email, shownRole }) => ({ email, password: DEMO_PASSWORD, who: `${name}, ${shownRole}`, name, role: shownRole }));
+  const signIns = Object.values(people).map(({ name, email, shownRole }) => ({
+    email,
+    password: DEMO_PASSWORD,
+    who: `${name}, ${shownRole}`,
+    name,
+    role: shownRole,
+  }));
   process.stdout.write(`${JSON.stringify(signIns)}\n`);
 }
 

@@ -3,7 +3,17 @@
  *
  * Demo data. The same seed, instrument and day give the same bytes.
  */
-import { arraySpectrometer, createRandom, ramanBench, scanningMonochromator, simulateCapture, spectrophotometer, type CaptureDialect, type SimulatedInstrument, type TrueAxis } from "@wavekeep/core/testing";
+import {
+  arraySpectrometer,
+  createRandom,
+  ramanBench,
+  scanningMonochromator,
+  simulateCapture,
+  spectrophotometer,
+  type CaptureDialect,
+  type SimulatedInstrument,
+  type TrueAxis,
+} from "@wavekeep/core/testing";
 import { lampLines } from "./lamps.ts";
 import { roomTemperatureC, type DemoInstrument, type DemoSource } from "./story.ts";
 
@@ -15,9 +25,17 @@ const EXPOSURE_COUNTS = 46_000;
 /** What a capture at more than twice that exposure looks like: its strong lines are flat at the ceiling. */
 const OVEREXPOSURE = 2.5;
 
-export interface DemoCapture { name: string; bytes: Buffer }
+export interface DemoCapture {
+  name: string;
+  bytes: Buffer;
+}
 
-const dialects: Record<DemoInstrument["kind"], CaptureDialect> = { array: "tab-with-metadata", scanning: "comma", spectrophotometer: "semicolon-decimal-comma", raman: "tab-with-metadata" };
+const dialects: Record<DemoInstrument["kind"], CaptureDialect> = {
+  array: "tab-with-metadata",
+  scanning: "comma",
+  spectrophotometer: "semicolon-decimal-comma",
+  raman: "tab-with-metadata",
+};
 
 /** Day's room temperature as the lab's thermometer reads it, °C to a tenth. */
 export function roomOn(dayOfYear: number, daysAgo: number): number {
@@ -28,44 +46,87 @@ export function roomOn(dayOfYear: number, daysAgo: number): number {
 export function simulateRepeats(
   instrument: DemoInstrument,
   source: DemoSource,
-  day: { daysAgo: number; on: string; temperatureC: number; attempt: number; isOverexposed: boolean; ordinal: number; condition: "as-found" | "as-left" },
+  day: {
+    daysAgo: number;
+    on: string;
+    temperatureC: number;
+    attempt: number;
+    isOverexposed: boolean;
+    ordinal: number;
+    condition: "as-found" | "as-left";
+  },
 ): DemoCapture[] {
   const seed = DEMO_SEED + 1009 * nameNumber(instrument.name) + 17 * day.daysAgo + 5 * day.attempt + 31 * day.ordinal;
   const scatterNm = instrument.scatterNm * createRandom(seed).normal();
   // As found lies before whatever was done on that day, as left after it.
-  const simulated = simulatedInstrument(instrument, day.daysAgo + (day.condition === "as-found" ? 0.5 : 0), day.temperatureC, scatterNm);
+  const simulated = simulatedInstrument(
+    instrument,
+    day.daysAgo + (day.condition === "as-found" ? 0.5 : 0),
+    day.temperatureC,
+    scatterNm,
+  );
   const lines = lampLines(source.elements, instrument.firstNm, instrument.lastNm);
   const exposure = EXPOSURE_COUNTS * (day.isOverexposed ? OVEREXPOSURE : 1);
   const strongest = Math.max(...lines.map(({ strength }) => strength));
   // One lamp keeps its own ratios of intensities; two lamps of a kind differ.
   const lampRandom = createRandom(DEMO_SEED + 13 * nameNumber(source.label));
-  const heightsCounts = Object.fromEntries(lines.map(({ wavelengthNm, strength }) => [wavelengthNm.toFixed(4), (exposure * strength * lampRandom.between(0.8, 1.05)) / strongest]));
+  const heightsCounts = Object.fromEntries(
+    lines.map(({ wavelengthNm, strength }) => [
+      wavelengthNm.toFixed(4),
+      (exposure * strength * lampRandom.between(0.8, 1.05)) / strongest,
+    ]),
+  );
   return Array.from({ length: instrument.repeats }, (_, repeat) => {
     const { text } = simulateCapture({
       seed: seed + 101 * (repeat + 1),
       instrument: simulated,
       lamp: { lines: lines.map(({ line }) => line), strongestCounts: exposure, intensityScatter: 1, heightsCounts },
       dialect: dialects[instrument.kind],
-      metadata: { Instrument: instrument.name, Serial: instrument.serial, Date: day.on, Source: source.label, ...(instrument.fullScaleCounts === null ? {} : { "Full scale": String(instrument.fullScaleCounts) }) },
+      metadata: {
+        Instrument: instrument.name,
+        Serial: instrument.serial,
+        Date: day.on,
+        Source: source.label,
+        ...(instrument.fullScaleCounts === null ? {} : { "Full scale": String(instrument.fullScaleCounts) }),
+      },
     });
     const attempt = day.attempt > 1 ? `-b${day.attempt}` : "";
-    return { name: `${instrument.name.toLowerCase()}-${source.label.toLowerCase()}-${day.on}${attempt}-${repeat + 1}.${instrument.kind === "array" || instrument.kind === "raman" ? "txt" : "csv"}`, bytes: Buffer.from(text, "utf8") };
+    return {
+      name: `${instrument.name.toLowerCase()}-${source.label.toLowerCase()}-${day.on}${attempt}-${repeat + 1}.${instrument.kind === "array" || instrument.kind === "raman" ? "txt" : "csv"}`,
+      bytes: Buffer.from(text, "utf8"),
+    };
   });
 }
 
 /** Slope and offset of an error that is straight over the range. */
-function straightError(instrument: DemoInstrument, daysAgo: number, temperatureC: number): { atFirst: number; atLast: number } {
-  return { atFirst: instrument.errorNm(instrument.firstNm, daysAgo, temperatureC), atLast: instrument.errorNm(instrument.lastNm, daysAgo, temperatureC) };
+function straightError(
+  instrument: DemoInstrument,
+  daysAgo: number,
+  temperatureC: number,
+): { atFirst: number; atLast: number } {
+  return {
+    atFirst: instrument.errorNm(instrument.firstNm, daysAgo, temperatureC),
+    atLast: instrument.errorNm(instrument.lastNm, daysAgo, temperatureC),
+  };
 }
 
-function simulatedInstrument(instrument: DemoInstrument, daysAgo: number, temperatureC: number, scatterNm: number): SimulatedInstrument {
+function simulatedInstrument(
+  instrument: DemoInstrument,
+  daysAgo: number,
+  temperatureC: number,
+  scatterNm: number,
+): SimulatedInstrument {
   const { atFirst, atLast } = straightError(instrument, daysAgo, temperatureC);
   const isPixel = instrument.axisKind === "pixel";
   const changes: Partial<SimulatedInstrument> = {
     fileAxis: isPixel ? "pixel" : "nm",
     samples: instrument.samples,
-    trueAxis: isPixel ? { kind: "polynomial", coefficients: withoutError(instrument, atFirst, atLast, scatterNm) } : nmAxis(instrument),
-    axisError: isPixel ? { offsetNm: 0, scaleNm: 0 } : { offsetNm: 0.5 * (atFirst + atLast) + scatterNm, scaleNm: atLast - atFirst },
+    trueAxis: isPixel
+      ? { kind: "polynomial", coefficients: withoutError(instrument, atFirst, atLast, scatterNm) }
+      : nmAxis(instrument),
+    axisError: isPixel
+      ? { offsetNm: 0, scaleNm: 0 }
+      : { offsetNm: 0.5 * (atFirst + atLast) + scatterNm, scaleNm: atLast - atFirst },
     fwhm: { value: instrument.fwhmNm, unit: "nm" },
     axisDecimals: instrument.kind === "spectrophotometer" || instrument.kind === "scanning" ? 2 : 4,
   };
@@ -78,7 +139,8 @@ function simulatedInstrument(instrument: DemoInstrument, daysAgo: number, temper
 /** The instrument's own nm axis: a gently bent one for arrays, equal steps for those that scan. */
 function nmAxis(instrument: DemoInstrument): TrueAxis {
   const { firstNm, lastNm, samples } = instrument;
-  if (instrument.kind === "array" || instrument.kind === "raman") return { kind: "polynomial", coefficients: bentAxis(firstNm, lastNm, samples) };
+  if (instrument.kind === "array" || instrument.kind === "raman")
+    return { kind: "polynomial", coefficients: bentAxis(firstNm, lastNm, samples) };
   return { kind: "stepped", firstNm, stepNm: (lastNm - firstNm) / (samples - 1) };
 }
 
@@ -97,7 +159,9 @@ export function bentAxis(firstNm: number, lastNm: number, samples: number): numb
 function withoutError(instrument: DemoInstrument, atFirst: number, atLast: number, scatterNm: number): number[] {
   const slope = (atLast - atFirst) / (instrument.lastNm - instrument.firstNm);
   const offset = atFirst + scatterNm - slope * instrument.firstNm;
-  return bentAxis(instrument.firstNm, instrument.lastNm, instrument.samples).map((coefficient, power) => (coefficient - (power === 0 ? offset : 0)) / (1 + slope));
+  return bentAxis(instrument.firstNm, instrument.lastNm, instrument.samples).map(
+    (coefficient, power) => (coefficient - (power === 0 ? offset : 0)) / (1 + slope),
+  );
 }
 
 function nameNumber(name: string): number {

@@ -10,7 +10,6 @@ import { submitCheck } from "../checks/submit-check.ts";
 import type { CheckWork } from "../checks/work.ts";
 import type { Config } from "../config.ts";
 import { seedingProof } from "../auth/confirm-password.ts";
-import { hashSecret } from "../auth/passwords.ts";
 import { loadContext } from "../auth/context.ts";
 import type { Check, DraftInput } from "../contract/checks.ts";
 import type { Database } from "../db/connection.ts";
@@ -31,7 +30,12 @@ import { bentAxis, roomOn, simulateRepeats } from "./simulate.ts";
 import { DEMO_PASSWORD, lab, people, sources, type DemoCheck, type DemoInstrument, type PersonKey } from "./story.ts";
 import { CHECK_MINUTES, moment, timeline, type Step } from "./timeline.ts";
 
-export interface StoryServices { db: Database; analyser: Analyser; signer: HeadSigner; config: Config }
+export interface StoryServices {
+  db: Database;
+  analyser: Analyser;
+  signer: HeadSigner;
+  config: Config;
+}
 
 /** First day of the story, before anything is registered. */
 const OPENED_DAYS_AGO = 545;
@@ -61,7 +65,10 @@ class Teller {
   private readonly instrumentIds = new Map<string, { id: string; configurationId: string }>();
   private readonly checkIds = new Map<DemoCheck, { id: string; revision: number }>();
 
-  constructor(private readonly services: StoryServices, private readonly today: string) {}
+  constructor(
+    private readonly services: StoryServices,
+    private readonly today: string,
+  ) {}
 
   private get full(): Services {
     return { ...this.services, jobs: this.jobs } as Services;
@@ -91,20 +98,32 @@ class Teller {
       if (isApprover) {
         const { people: members } = await listPeople(this.full, ida);
         const member = members.find((one) => one.id === this.personIds.get(key))!;
-        await changeRoles(this.full, await this.as("ida", at), member.id, { roles, isApprover, version: member.version });
+        await changeRoles(this.full, await this.as("ida", at), member.id, {
+          roles,
+          isApprover,
+          version: member.version,
+        });
       }
     }
   }
 
   private async join(key: PersonKey, token: string, at: Date): Promise<void> {
-    const accepted = await acceptInvitation(this.services, token, { name: people[key].name, password: DEMO_PASSWORD, host: "demo" }, { labId: this.labId, statedNow: at });
+    const accepted = await acceptInvitation(
+      this.services,
+      token,
+      { name: people[key].name, password: DEMO_PASSWORD, host: "demo" },
+      { labId: this.labId, statedNow: at },
+    );
     this.personIds.set(key, accepted.personId);
   }
 
   /** The link in the mail, as the invited person would follow it. */
   private async mailedToken(invitationId: string): Promise<string> {
     const rows = await inLab(this.services.db, asWavekeep({ labId: this.labId, isDemo: true, zone: lab.zone }), (tx) =>
-      tx.select({ text: mailOutbox.text }).from(mailOutbox).where(like(mailOutbox.causeKey, `invitation:${invitationId}%`)),
+      tx
+        .select({ text: mailOutbox.text })
+        .from(mailOutbox)
+        .where(like(mailOutbox.causeKey, `invitation:${invitationId}%`)),
     );
     const token = /\/invitation\/([\w-]+)/.exec(rows[0]?.text ?? "")?.[1];
     if (token === undefined) throw new Error("The invitation's mail holds no link.");
@@ -118,7 +137,12 @@ class Teller {
   private async registerSource(source: (typeof sources)[number], builtIntoInstrumentId: string | null): Promise<void> {
     const ctx = await this.as("ida", moment(this.today, OPENED_DAYS_AGO - 4, "10:00"));
     const { reviewInDays, builtInto: _, ...stated } = source;
-    const stored = await createSource(this.services.db, ctx, { ...stated, laserLineNm: null, builtIntoInstrumentId, reviewDueOn: addDays(this.today, reviewInDays) });
+    const stored = await createSource(this.services.db, ctx, {
+      ...stated,
+      laserLineNm: null,
+      builtIntoInstrumentId,
+      reviewDueOn: addDays(this.today, reviewInDays),
+    });
     this.sourceIds.set(source.label, stored.id);
   }
 
@@ -127,13 +151,26 @@ class Teller {
     const { id, configurationId } = this.instrumentIds.get(step.instrument.name)!;
     if (step.kind === "event") {
       const { kind, title, note, breaksDrift, by, daysAgo } = step.event;
-      await logEvent(this.services.db, await this.as(by, step.at), { configurationId, kind, title, note, breaksDrift, happenedOn: addDays(this.today, -daysAgo) });
+      await logEvent(this.services.db, await this.as(by, step.at), {
+        configurationId,
+        kind,
+        title,
+        note,
+        breaksDrift,
+        happenedOn: addDays(this.today, -daysAgo),
+      });
       return;
     }
     if (step.kind === "tolerance") {
       const ctx = await this.as("ida", step.at);
-      const stored = (await readLabInstrument(this.services.db, ctx, id)).configurations.find((one) => one.id === configurationId)!;
-      await changeTolerance(this.services.db, ctx, configurationId, { segments: segmentsOf(step.instrument, step.instrument.toleranceNm), reason: step.instrument.earlierTolerance!.reason, version: stored.version });
+      const stored = (await readLabInstrument(this.services.db, ctx, id)).configurations.find(
+        (one) => one.id === configurationId,
+      )!;
+      await changeTolerance(this.services.db, ctx, configurationId, {
+        segments: segmentsOf(step.instrument, step.instrument.toleranceNm),
+        reason: step.instrument.earlierTolerance!.reason,
+        version: stored.version,
+      });
       return;
     }
     if (step.kind === "check") return this.makeCheck(step.instrument, step.check, step.at, step.ordinal);
@@ -144,7 +181,12 @@ class Teller {
     const { name, kind, maker, model, serial, place } = instrument;
     const earlier = instrument.earlierTolerance;
     const stored = await createInstrument(this.services.db, await this.as("ida", at), {
-      name, kind, maker, model, serial, place,
+      name,
+      kind,
+      maker,
+      model,
+      serial,
+      place,
       ownerId: this.personIds.get(instrument.owner)!,
       altitudeM: null,
       purchasedOn: addDays(this.today, -instrument.purchasedDaysAgo),
@@ -173,11 +215,13 @@ class Teller {
         setupReproducibilityNm: instrument.statedReproducibilityNm,
         decisionRule: { kind: "guarded", r: 1 },
         warningShare: 0.75,
-        axisCoefficients: instrument.axisKind === "pixel" ? bentAxis(instrument.firstNm, instrument.lastNm, instrument.samples) : null,
+        axisCoefficients:
+          instrument.axisKind === "pixel" ? bentAxis(instrument.firstNm, instrument.lastNm, instrument.samples) : null,
       },
     });
     this.instrumentIds.set(name, { id: stored.id, configurationId: stored.currentConfigurationId });
-    for (const source of sources.filter(({ builtInto }) => builtInto === name)) await this.registerSource(source, stored.id);
+    for (const source of sources.filter(({ builtInto }) => builtInto === name))
+      await this.registerSource(source, stored.id);
   }
 
   private async makeCheck(instrument: DemoInstrument, story: DemoCheck, at: Date, ordinal: number): Promise<void> {
@@ -188,19 +232,41 @@ class Teller {
     const temperatureC = roomOn(dayOfYear(on), story.daysAgo);
     const later = (minutes: number) => this.as(story.by, new Date(at.getTime() + minutes * 60_000));
 
-    let check = await beginCheck(db, await later(0), { configurationId, condition: story.condition, followsCheckId: null });
+    let check = await beginCheck(db, await later(0), {
+      configurationId,
+      condition: story.condition,
+      followsCheckId: null,
+    });
     const id = check.summary.id;
-    const keep = async (minutes: number, change: Partial<DraftInput>): Promise<Check> => saveDraft(db, await later(minutes), id, { ...check.draft, ...change });
-    check = await keep(1, { sourceIds: [this.sourceIds.get(source.label)!], minutesSinceSwitchOn: source.warmUpMinutes + 5 + (ordinal % 4) * 5, temperatureC, pressureHpa: null, fullScaleCounts: instrument.fullScaleCounts });
+    const keep = async (minutes: number, change: Partial<DraftInput>): Promise<Check> =>
+      saveDraft(db, await later(minutes), id, { ...check.draft, ...change });
+    check = await keep(1, {
+      sourceIds: [this.sourceIds.get(source.label)!],
+      minutesSinceSwitchOn: source.warmUpMinutes + 5 + (ordinal % 4) * 5,
+      temperatureC,
+      pressureHpa: null,
+      fullScaleCounts: instrument.fullScaleCounts,
+    });
 
     const attempt = async (minutes: number, number: number, isOverexposed: boolean): Promise<Check> => {
-      const files = simulateRepeats(instrument, source, { daysAgo: story.daysAgo, on, temperatureC, attempt: number, isOverexposed, ordinal, condition: story.condition });
+      const files = simulateRepeats(instrument, source, {
+        daysAgo: story.daysAgo,
+        on,
+        temperatureC,
+        attempt: number,
+        isOverexposed,
+        ordinal,
+        condition: story.condition,
+      });
       await addCaptures({ db, analyser }, await later(minutes), id, { part: "lamp", files });
       return analyseCheck({ db, analyser }, await later(minutes + 1), id, { version: check.draft.version });
     };
     if (story.badFirstAttempt) {
       check = await attempt(2, 1, true);
-      check = await newAttempt(db, await later(8), id, { reason: "Exposure too long: strong lines are flat at the ceiling.", version: check.draft.version });
+      check = await newAttempt(db, await later(8), id, {
+        reason: "Exposure too long: strong lines are flat at the ceiling.",
+        version: check.draft.version,
+      });
     }
     check = await attempt(15, story.badFirstAttempt ? 2 : 1, false);
     if (story.leaveOut) {
@@ -215,19 +281,32 @@ class Teller {
   private async approve(story: DemoCheck, at: Date): Promise<void> {
     const ctx = await this.as(story.reviewedBy, at);
     const { id, revision } = this.checkIds.get(story)!;
-    const check = await approveCheck(this.work, ctx, id, { revision, seen: { attempts: true, leftOut: true, settings: true, tolerance: true } }, seedingProof(ctx.personId!));
+    const check = await approveCheck(
+      this.work,
+      ctx,
+      id,
+      { revision, seen: { attempts: true, leftOut: true, settings: true, tolerance: true } },
+      seedingProof(ctx.personId!),
+    );
     if (story.ownerNote === undefined) return;
-    const instrument = [...this.instrumentIds].find(([, { id: instrumentId }]) => instrumentId === check.summary.instrumentId)!;
+    const instrument = [...this.instrumentIds].find(
+      ([, { id: instrumentId }]) => instrumentId === check.summary.instrumentId,
+    )!;
     const owner = (await readLabInstrument(this.services.db, ctx, instrument[1].id)).owner;
     const key = [...this.personIds].find(([, personId]) => personId === owner.id)![0];
-    await acknowledgeCheck(this.work, await this.as(key, new Date(at.getTime() + 20 * 60_000)), id, { note: story.ownerNote });
+    await acknowledgeCheck(this.work, await this.as(key, new Date(at.getTime() + 20 * 60_000)), id, {
+      note: story.ownerNote,
+    });
   }
 
   /** Mail of the story's past was handed over in its own time; that of the last days is left for the server to send. */
   async setOldMailAside(): Promise<void> {
     const bare = asWavekeep({ labId: this.labId, isDemo: true, zone: lab.zone });
     await inLab(this.services.db, bare, async (tx) => {
-      const waiting = await tx.select().from(mailOutbox).where(and(eq(mailOutbox.labId, this.labId), isNull(mailOutbox.sentAt)));
+      const waiting = await tx
+        .select()
+        .from(mailOutbox)
+        .where(and(eq(mailOutbox.labId, this.labId), isNull(mailOutbox.sentAt)));
       const liveFrom = moment(this.today, MAIL_IS_LIVE_DAYS, "00:00");
       for (const mail of waiting.filter(({ queuedAt }) => queuedAt < liveFrom)) {
         await tx.update(mailOutbox).set({ sentAt: mail.queuedAt, attempts: 1 }).where(eq(mailOutbox.id, mail.id));
@@ -236,7 +315,9 @@ class Teller {
   }
 }
 
-const segmentsOf = (instrument: DemoInstrument, toleranceNm: number) => [{ fromNm: instrument.firstNm, toNm: instrument.lastNm, toleranceNm }];
+const segmentsOf = (instrument: DemoInstrument, toleranceNm: number) => [
+  { fromNm: instrument.firstNm, toNm: instrument.lastNm, toleranceNm },
+];
 
 function dayOfYear(date: string): number {
   return Math.floor((Date.parse(`${date}T12:00:00Z`) - Date.parse(`${date.slice(0, 4)}-01-01T12:00:00Z`)) / DAY_MS);

@@ -28,15 +28,22 @@ export function timeline(today: string): Step[] {
   const steps: Step[] = [];
   for (const instrument of instruments) {
     steps.push({ kind: "register", at: moment(today, instrument.registeredDaysAgo, "09:00"), instrument });
-    for (const event of instrument.events) steps.push({ kind: "event", at: moment(today, event.daysAgo, event.time), instrument, event });
+    for (const event of instrument.events)
+      steps.push({ kind: "event", at: moment(today, event.daysAgo, event.time), instrument, event });
     const earlier = instrument.earlierTolerance;
     if (earlier) steps.push({ kind: "tolerance", at: moment(today, earlier.changedDaysAgo, earlier.time), instrument });
-    const sameDay = (check: DemoCheck) => instrument.checks.filter(({ daysAgo }) => daysAgo === check.daysAgo).length > 1;
+    const sameDay = (check: DemoCheck) =>
+      instrument.checks.filter(({ daysAgo }) => daysAgo === check.daysAgo).length > 1;
     instrument.checks.forEach((check, ordinal) => {
       const at = moment(today, check.daysAgo, check.time);
       steps.push({ kind: "check", at, instrument, check, ordinal });
       if (check.until === "approved") {
-        steps.push({ kind: "approve", at: sameDay(check) ? minutesLater(at, SAME_DAY_REVIEW_MINUTES) : moment(today, check.daysAgo - 1, "09:40"), instrument, check });
+        steps.push({
+          kind: "approve",
+          at: sameDay(check) ? minutesLater(at, SAME_DAY_REVIEW_MINUTES) : moment(today, check.daysAgo - 1, "09:40"),
+          instrument,
+          check,
+        });
       }
     });
   }
