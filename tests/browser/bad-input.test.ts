@@ -120,14 +120,16 @@ test("two people edit one instrument: the second is told, nothing typed is lost"
   const save = (page: Page) => page.getByRole("main").locator('button[type="submit"]').click();
   await ida.getByLabel("Place", { exact: true }).fill("Wet bench, left");
   await save(ida);
-  await ida.getByRole("heading", { level: 1, name: "Sanderling" }).waitFor();
+  await ida.getByRole("heading", { level: 1, name: "Sanderling", exact: true }).waitFor();
   await other.getByLabel("Place", { exact: true }).fill("Wet bench, right");
   await save(other);
   await other.getByRole("alert").waitFor();
   expect(await other.getByLabel("Place", { exact: true }).inputValue()).toBe("Wet bench, right");
+  // What stands now is asked for before it is written over.
+  await other.waitForLoadState("networkidle");
   await other.getByRole("button", { name: "Keep what I typed" }).click();
   await save(other);
-  await other.getByRole("heading", { level: 1, name: "Sanderling" }).waitFor();
+  await other.getByRole("heading", { level: 1, name: "Sanderling", exact: true }).waitFor();
   await other
     .getByText(/Wet bench, right/)
     .first()

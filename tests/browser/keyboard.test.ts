@@ -57,8 +57,8 @@ test("a technician makes a check and signs it", async () => {
   expect(await page.getByRole("button", { name: /^Remove source/ }).count()).toBe(1);
   await typeInto(page, page.getByLabel("Since lamp was switched on"), "30");
   await typeInto(page, page.getByLabel("Room temperature"), "21.6");
-  await tabTo(page, page.getByRole("button", { name: "Add files" }));
   const chooser = page.waitForEvent("filechooser");
+  await tabTo(page, page.getByRole("button", { name: "Add files" }));
   await page.keyboard.press("Enter");
   await (
     await chooser

@@ -101,7 +101,7 @@ test("a manager sees the four things, signs, and the axis is in force", async ()
   await approveCheck(page);
   await page.getByRole("link", { name: "Ruff", exact: true }).first().click();
   await page.getByRole("link", { name: "Optics and tolerance" }).click();
-  await page.getByText(/λ\(p\)\/nm/).waitFor();
+  await page.getByText(/λ\(p\)\/nm/).first().waitFor();
 });
 
 test("in tolerance: a line left out for what is seen, with the verdict of every line beside", async () => {
@@ -259,7 +259,7 @@ test("the owner decides the impact review", async () => {
   await page.getByLabel("Results").selectOption("some");
   await page.getByLabel("Work it concerns").fill("S-0412\nS-0413");
   await page.getByRole("button", { name: "Record the decision" }).click();
-  await page.getByText("Fill this in.").waitFor();
+  await page.getByText("Write a reason, at least a few words.").waitFor();
   await page.getByLabel("What is done, and why").fill("Both samples are measured again.");
   await page.getByRole("button", { name: "Record the decision" }).click();
   await page.getByRole("heading", { level: 1, name: /Some results are affected/ }).waitFor();

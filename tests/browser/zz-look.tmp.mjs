@@ -1,0 +1,20 @@
+import { chromium } from "playwright-core";
+const base = "http://127.0.0.1:4391";
+const browser = await chromium.launch({ executablePath: "/usr/bin/chromium" });
+const open = async (who, width, theme) => {
+  const context = await browser.newContext({ viewport: { width, height: width === 375 ? 800 : 900 }, baseURL: base, locale: "en-GB" });
+  if (theme) await context.addCookies([{ name: "wavekeep-theme", value: theme, url: base }]);
+  const page = await context.newPage();
+  page.on("pageerror", (e) => console.log("PAGEERROR", e.message));
+  page.on("console", (m) => m.type() === "error" && console.log("CONSOLE", m.text()));
+  await page.goto("/");
+  await page.getByLabel("E-mail").fill(who);
+  await page.getByLabel("Password", { exact: true }).fill("bench-book-2027");
+  await page.getByRole("button", { name: "Sign in" }).click();
+  await page.getByRole("heading", { level: 1 }).waitFor();
+  await page.waitForTimeout(800);
+  return page;
+};
+const shot = async (page, name) => { await page.waitForTimeout(700); await page.screenshot({ path: `/tmp/configurations/shots/${name}.png`, fullPage: true });
+  const over = await page.evaluate(() => document.documentElement.scrollWidth - window.innerWidth); if (over > 0) console.log(name, "scrolls sideways", over); };
+export { browser, open, shot, base };
