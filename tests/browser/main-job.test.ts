@@ -101,7 +101,10 @@ test("a manager sees the four things, signs, and the axis is in force", async ()
   await approveCheck(page);
   await page.getByRole("link", { name: "Ruff", exact: true }).first().click();
   await page.getByRole("link", { name: "Optics and tolerance" }).click();
-  await page.getByText(/λ\(p\)\/nm/).first().waitFor();
+  await page
+    .getByText(/λ\(p\)\/nm/)
+    .first()
+    .waitFor();
 });
 
 test("in tolerance: a line left out for what is seen, with the verdict of every line beside", async () => {
