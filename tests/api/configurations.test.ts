@@ -329,6 +329,9 @@ describe("an axis from its fit to its use", () => {
       next: null,
     });
 
+    const before = await approve(lab.manager.client, await submit(tam.client, await neon("2024-08-29")));
+    expect(before.fittedAxis).toMatchObject({ adopted: null, next: { number: 2, replaces: 1 } });
+
     // The bench has moved: by axis 1 it fails, so a range names its lines and fits a new axis.
     const failing = await neon("2024-09-17");
     expect(failing.analysis!.verdict!.verdict).toBe("fail");
@@ -348,6 +351,17 @@ describe("an axis from its fit to its use", () => {
     await lab.manager.client.post(path, { ...put, version: await version() }).expect(200);
     const twice = await lab.manager.client.post(path, { ...put, version: await version() });
     expect([twice.status, twice.body.detail]).toEqual([409, expect.stringMatching(/in force already, as no. 2/)]);
+
+    // What was measured before says how the bench was: it is not offered any more, and refused.
+    expect((await lab.manager.client.get(`/checks/${before.summary.id}`)).body.fittedAxis).toMatchObject({
+      next: null,
+    });
+    const back = await lab.manager.client.post(path, {
+      checkId: before.summary.id,
+      reason: "back to how it was",
+      version: await version(),
+    });
+    expect([back.status, back.body.detail]).toEqual([409, expect.stringMatching(/measured before axis no. 2/)]);
 
     const after = await neon("2024-09-17");
     expect(after.axisInForce).toMatchObject({ number: 2 });

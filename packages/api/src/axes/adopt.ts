@@ -20,7 +20,7 @@ import {
   type CheckRecord,
   type SubmissionRow,
 } from "../checks/queries.ts";
-import { findLastAxisNumber } from "./queries.ts";
+import { findLastAxisNumber, findMeasuredSince } from "./queries.ts";
 import { writeTrail, type TrailInput } from "../records/trail.ts";
 
 /** The first axis of a configuration that had none, from the approved check that fitted it. Nothing where one is in force. */
@@ -144,6 +144,11 @@ async function findAdoptable(
     throw problem(
       "conflict",
       `The axis of ${check.number} is in force already, as no. ${inForce.number}. Nothing was changed.`,
+    );
+  if (inForce !== null && submission.measuredAt < (await findMeasuredSince(tx, inForce)))
+    throw problem(
+      "conflict",
+      `${check.number} was measured before axis no. ${inForce.number}, which is in force: it says how the instrument was. Make a new check to go back. Nothing was changed.`,
     );
   return { dispersion, number: (await findLastAxisNumber(tx, configuration.id)) + 1 };
 }

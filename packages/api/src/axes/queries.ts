@@ -1,7 +1,9 @@
 /** Axes of a configuration: SQL only. */
 import { and, asc, eq, max } from "drizzle-orm";
+import { findOptionalSubmission } from "../checks/queries.ts";
 import { axes, checks, people } from "../db/schema/index.ts";
 import type { Tx } from "../db/tenancy.ts";
+import type { AxisRow } from "../instruments/queries.ts";
 
 /** 0 where none was ever in force. */
 export async function findLastAxisNumber(tx: Tx, configurationId: string): Promise<number> {
@@ -26,3 +28,9 @@ export function listAxisRows(tx: Tx, by: { configurationId: string } | { fromChe
 }
 
 export type AxisListRow = Awaited<ReturnType<typeof listAxisRows>>[number];
+
+/** Since when an axis says how the instrument stands: when its captures were measured, or when it was typed in. */
+export async function findMeasuredSince(tx: Tx, axis: Pick<AxisRow, "fromCheckId" | "inForceFrom">): Promise<Date> {
+  const submission = axis.fromCheckId === null ? null : await findOptionalSubmission(tx, axis.fromCheckId);
+  return submission?.measuredAt ?? axis.inForceFrom;
+}

@@ -4,8 +4,8 @@ import type { AxisEntry } from "../contract/instruments.ts";
 import type { Database } from "../db/connection.ts";
 import { hasRole, inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
 import { findAxisAt, findConfiguration } from "../instruments/queries.ts";
-import type { AnalysisRow, CheckRecord } from "../checks/queries.ts";
-import { findLastAxisNumber, listAxisRows, type AxisListRow } from "./queries.ts";
+import { findOptionalSubmission, type AnalysisRow, type CheckRecord } from "../checks/queries.ts";
+import { findLastAxisNumber, findMeasuredSince, listAxisRows, type AxisListRow } from "./queries.ts";
 
 /** Newest first. */
 export function listAxes(db: Database, ctx: Context, configurationId: string): Promise<{ items: AxisEntry[] }> {
@@ -46,12 +46,16 @@ export async function readFittedAxis(
   analysis: AnalysisRow | null,
 ): Promise<Check["fittedAxis"]> {
   const configuration = await findConfiguration(tx, check.configurationId);
+  const isSigned = state === "submitted" || state === "approved";
   const isFitted = analysis !== null && analysis.analysis.dispersion !== null;
-  if (!isFitted || configuration.axisKind === "wavelength") return null;
+  if (!isSigned || !isFitted || configuration.axisKind === "wavelength") return null;
   const adopted = (await listAxisRows(tx, { fromCheckId: check.id })).at(-1);
   const inForce = await findAxisAt(tx, configuration.id, await recordNow(tx));
-  const isOffered =
-    state === "approved" && hasRole(ctx, "manager") && configuration.toOn === null && inForce?.fromCheckId !== check.id;
+  const isNewer =
+    inForce === null ||
+    (inForce.fromCheckId !== check.id &&
+      (await findOptionalSubmission(tx, check.id))!.measuredAt >= (await findMeasuredSince(tx, inForce)));
+  const isOffered = state === "approved" && hasRole(ctx, "manager") && configuration.toOn === null && isNewer;
   return {
     adopted:
       adopted === undefined

@@ -61,7 +61,10 @@ function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (t
   const asked = search.get("configuration") ?? instrument.currentConfigurationId;
   // What state and sentence speak of: while another one is asked for, the one seen last stays whole.
   const configuration = instrument.configurations.find((item) => item.id === instrument.shownConfigurationId)!;
-  const choices = instrument.configurations.filter((item) => item.toOn === null || item.id === asked);
+  const choices = [
+    ...instrument.configurations.filter((item) => item.toOn === null),
+    ...instrument.configurations.filter((item) => item.toOn !== null && item.id === asked),
+  ];
   const called = calledWords({ instrumentName: instrument.name, configurationName: configuration.name });
   const doing = search.get("do");
   const goTo = (to: { configuration?: string | null; do?: string | null }, replace = false) =>
@@ -80,16 +83,7 @@ function LoadedInstrument({ instrument, tab }: { instrument: Instrument; tab: (t
   const base = `/instruments/${instrument.id}`;
   const kept = search.get("configuration") === null ? "" : `?configuration=${configuration.id}`;
   const shownTabs = tabs.filter((item) => item !== "history" || may("records.read", { instrumentId: instrument.id }));
-  const status = (
-    <Status
-      state={instrument.state}
-      word={
-        instrument.state === "restricted" && instrument.restriction !== null
-          ? `restricted to ${instrument.restriction}`
-          : undefined
-      }
-    />
-  );
+  const status = <Status state={instrument.state} word={stateWord(instrument, configuration)} />;
   const changes = may("instrument.change") && instrument.retiredAt === null && configuration.toOn === null;
   const forms = { instrument, configuration, onClose: () => show(null) };
   const onBegun = (reply: Instrument) => {
@@ -170,6 +164,14 @@ function TabMatter({
   if (tab === "optics") return <OpticsTab instrument={instrument} configuration={configuration} show={show} />;
   if (tab === "history") return <HistoryTab instrument={instrument} />;
   return <OverviewTab instrument={instrument} configuration={configuration} show={show} />;
+}
+
+/** What is said in place of the state's own word. */
+function stateWord(instrument: Instrument, configuration: Configuration): string | undefined {
+  if (instrument.retiredAt === null && configuration.toOn !== null) return "ended";
+  return instrument.state === "restricted" && instrument.restriction !== null
+    ? `restricted to ${instrument.restriction}`
+    : undefined;
 }
 
 /** Its name; one that has ended says so. */
