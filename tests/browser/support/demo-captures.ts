@@ -1,6 +1,7 @@
 /** Captures of the demo lab's instruments as they would write them today, made by the demo's own simulator. */
 import { simulateRepeats } from "@wavekeep/api/demo/simulate";
-import { instruments, sources } from "@wavekeep/api/demo/story";
+import { sources } from "@wavekeep/api/demo/cast";
+import { instruments } from "@wavekeep/api/demo/story";
 import type { CaptureFile } from "./steps.ts";
 
 /**

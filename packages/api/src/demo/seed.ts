@@ -9,7 +9,7 @@ import { loadConfig } from "../config.ts";
 import { openDatabase } from "../db/connection.ts";
 import { dateIn } from "../instruments/dates.ts";
 import { openSigningKey } from "../records/signing.ts";
-import { DEMO_PASSWORD, lab, people } from "./story.ts";
+import { DEMO_PASSWORD, lab, people } from "./cast.ts";
 import { tellStory } from "./tell-story.ts";
 
 async function main(): Promise<void> {

@@ -15,7 +15,8 @@ import {
   type TrueAxis,
 } from "@wavekeep/core/testing";
 import { lampLines } from "./lamps.ts";
-import { roomTemperatureC, type DemoInstrument, type DemoSource } from "./story.ts";
+import type { DemoSource } from "./cast.ts";
+import { roomTemperatureC, type DemoInstrument } from "./story.ts";
 
 /** Everything in the demo lab follows from this number and the day of the first start. */
 export const DEMO_SEED = 20_270_309;

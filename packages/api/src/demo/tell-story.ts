@@ -27,7 +27,8 @@ import type { HeadSigner } from "../records/signing.ts";
 import type { Services } from "../services.ts";
 import { createSource } from "../sources/service.ts";
 import { bentAxis, roomOn, simulateRepeats } from "./simulate.ts";
-import { DEMO_PASSWORD, lab, people, sources, type DemoCheck, type DemoInstrument, type PersonKey } from "./story.ts";
+import { DEMO_PASSWORD, lab, people, sources, type PersonKey } from "./cast.ts";
+import type { DemoCheck, DemoInstrument } from "./story.ts";
 import { CHECK_MINUTES, moment, timeline, type Step } from "./timeline.ts";
 
 export interface StoryServices {
@@ -61,6 +62,7 @@ class Teller {
   private readonly jobs: Jobs = { send: () => Promise.resolve() };
   private labId = "";
   private readonly personIds = new Map<PersonKey, string>();
+  private readonly contexts = new Map<PersonKey, Context>();
   private readonly sourceIds = new Map<string, string>();
   private readonly instrumentIds = new Map<string, { id: string; configurationId: string }>();
   private readonly checkIds = new Map<DemoCheck, { id: string; revision: number }>();
@@ -77,10 +79,12 @@ class Teller {
     return { ...this.services, jobs: this.jobs };
   }
 
-  /** A person's context at an instant of the story. */
+  /** A person's context at an instant of the story; asked anew only after roles or owners have changed. */
   private async as(key: PersonKey, at: Date): Promise<Context> {
-    const ctx = await loadContext(this.services.db, this.personIds.get(key)!, this.labId);
+    let ctx = this.contexts.get(key) ?? null;
+    ctx ??= await loadContext(this.services.db, this.personIds.get(key)!, this.labId);
     if (ctx === null) throw new Error(`${people[key].name} is no member of the demo lab.`);
+    this.contexts.set(key, ctx);
     return { ...ctx, statedNow: at };
   }
 
@@ -103,6 +107,7 @@ class Teller {
           isApprover,
           version: member.version,
         });
+        this.contexts.clear();
       }
     }
   }
@@ -219,6 +224,7 @@ class Teller {
           instrument.axisKind === "pixel" ? bentAxis(instrument.firstNm, instrument.lastNm, instrument.samples) : null,
       },
     });
+    this.contexts.clear();
     this.instrumentIds.set(name, { id: stored.id, configurationId: stored.currentConfigurationId });
     for (const source of sources.filter(({ builtInto }) => builtInto === name))
       await this.registerSource(source, stored.id);
@@ -246,6 +252,7 @@ class Teller {
       temperatureC,
       pressureHpa: null,
       fullScaleCounts: instrument.fullScaleCounts,
+      note: story.note ?? "",
     });
 
     const attempt = async (minutes: number, number: number, isOverexposed: boolean): Promise<Check> => {

@@ -1,7 +1,8 @@
 /** What happens in the story, in the order of its times. */
 import { TZDate } from "@date-fns/tz";
 import { addDays } from "../instruments/dates.ts";
-import { instruments, lab, type DemoCheck, type DemoEvent, type DemoInstrument } from "./story.ts";
+import { lab } from "./cast.ts";
+import { instruments, type DemoCheck, type DemoEvent, type DemoInstrument } from "./story.ts";
 
 export type Step =
   | { kind: "register"; at: Date; instrument: DemoInstrument }

@@ -50,7 +50,7 @@ export async function startWorkers(
     inEveryLab(services, "signing the head", async (lab) => void (await signDailyHead(services, lab))),
   );
   await work(queues.sweep, () => sweep(services));
-  // What fell due while nothing ran is asked for now, not at the next full tick.
+  // What fell due while nothing ran is asked about at once, not at the next full tick.
   for (const queue of [queues.asideDrafts, queues.dueAndOverdue]) await boss.send(queue, {});
 }
 
