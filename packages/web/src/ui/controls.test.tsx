@@ -120,8 +120,31 @@ test("a state is a shape and a word; a quantity without an uncertainty says so",
   expect(document.body.textContent).toContain("+0.313\u202fnm (U not estimated)");
 });
 
-test("numbers of a column keep room for its most decimals", () => {
-  const { container } = render(<Decimal value={0.15} decimals={2} columnDecimals={3} />);
-  expect(container.querySelector("span span")?.getAttribute("style")).toContain("calc(3 * 1ch + 0.27em)");
-  expect(container.textContent).toBe("0.15");
+test("numbers of a column keep room for its most decimals, each one piece of text", () => {
+  const { container } = render(
+    <table>
+      <tbody>
+        <tr>
+          <td>
+            <Decimal value={588.1895} decimals={4} columnDecimals={4} />
+          </td>
+          <td>
+            <Decimal value={0.15} decimals={2} columnDecimals={3} unit="nm" />
+          </td>
+          <td>
+            <Decimal value={12} decimals={0} columnDecimals={2} />
+          </td>
+        </tr>
+      </tbody>
+    </table>,
+  );
+  expect(screen.getByRole("row", { name: "588.1895 0.15 nm 12" })).toBeTruthy();
+  const numbers = [...container.querySelectorAll("td span span")] as HTMLElement[];
+  expect(numbers.map((number) => number.childNodes.length)).toEqual([1, 1, 1]);
+  expect(numbers.map((number) => number.style.display)).toEqual(["", "", ""]);
+  expect(numbers.map((number) => number.getAttribute("style"))).toEqual([
+    null,
+    "padding-right: 1ch;",
+    "padding-right: calc(2 * 1ch + 0.27em);",
+  ]);
 });

@@ -3,28 +3,29 @@ import { formatNumber, NARROW_SPACE, NO_BREAK, quantityParts, type NumberStyle }
 
 interface DecimalProps extends NumberStyle {
   value: number | null | undefined;
-  /** Most places of the column; the fraction's box is as wide as they need, so that points align. */
+  /** Most places of the column; room is kept for those this number lacks, so that points align. */
   columnDecimals?: number;
   unit?: string;
   className?: string;
 }
 
+/** Room after a number for the digits, and for the point (0.27em), that others of its column have and it has not. */
+function roomFor(missing: number, hasPoint: boolean): string | undefined {
+  if (missing <= 0) return undefined;
+  return hasPoint ? `${missing}ch` : `calc(${missing} * 1ch + 0.27em)`;
+}
+
 /**
- * A number aligned on its decimal point: integer part right-aligned by the cell, then point and fraction in a box of
- * `n * 1ch + 0.27em`, n = the most decimals in the column.
+ * A number aligned on its decimal point: right-aligned by the cell, with room kept behind it for the places it lacks.
+ * The number itself stays one piece of text, so that it is read aloud, and copied, whole.
  */
 export function Decimal({ value, columnDecimals, unit, className, ...style }: DecimalProps) {
   const text = formatNumber(value, style);
-  const [whole = "", fraction] = text.split(".");
+  const fraction = text.split(".")[1];
   const places = columnDecimals ?? style.decimals ?? 0;
   return (
     <span className={`whitespace-nowrap ${className ?? ""}`}>
-      {whole}
-      {places > 0 && (
-        <span style={{ display: "inline-block", minWidth: `calc(${places} * 1ch + 0.27em)`, textAlign: "left" }}>
-          {fraction === undefined ? "" : `.${fraction}`}
-        </span>
-      )}
+      <span style={{ paddingRight: roomFor(places - (fraction?.length ?? 0), fraction !== undefined) }}>{text}</span>
       {unit !== undefined && `${NARROW_SPACE}${unit}`}
     </span>
   );
