@@ -1,5 +1,6 @@
 /** What forms share: plain words for what a shape refuses, fields bound to the form library, and the stale form. */
 import { zodResolver } from "@hookform/resolvers/zod";
+import { useIsFetching } from "@tanstack/react-query";
 import { useEffect, useState, type ReactNode } from "react";
 import {
   Controller,
@@ -190,16 +191,31 @@ interface RefusedProps {
 }
 
 /** What the server refused, above the buttons; what it says of a field stands at the field. A stale form keeps what was typed and offers both ways on. */
-export function Refused({ error, onKeepMine, onTakeTheirs }: RefusedProps) {
+export function Refused({ error, ...ways }: RefusedProps) {
   if (error === null || error === undefined) return null;
   return (
     <div className="my-4">
       <ProblemNote error={error} withFields={false} />
-      {isStale(error) && (onKeepMine !== undefined || onTakeTheirs !== undefined) && (
-        <div className="mt-3 flex flex-wrap gap-3">
-          {onKeepMine !== undefined && <Button onClick={onKeepMine}>Keep what I typed</Button>}
-          {onTakeTheirs !== undefined && <Button onClick={onTakeTheirs}>Show what stands now</Button>}
-        </div>
+      {isStale(error) && <WaysOn {...ways} />}
+    </div>
+  );
+}
+
+/** What stands now is asked for after a refusal; until it is here, either way on would take what was just refused. */
+function WaysOn({ onKeepMine, onTakeTheirs }: Omit<RefusedProps, "error">) {
+  const isAsking = useIsFetching() > 0;
+  if (onKeepMine === undefined && onTakeTheirs === undefined) return null;
+  return (
+    <div className="mt-3 flex flex-wrap gap-3">
+      {onKeepMine !== undefined && (
+        <Button busy={isAsking} onClick={onKeepMine}>
+          Keep what I typed
+        </Button>
+      )}
+      {onTakeTheirs !== undefined && (
+        <Button busy={isAsking} onClick={onTakeTheirs}>
+          Show what stands now
+        </Button>
       )}
     </div>
   );
