@@ -61,8 +61,9 @@ test("enrolled, a name and a PIN open it, and it locks", async () => {
     .filter({ hasText: "Optics room" })
     .getByRole("button", { name: "End bench mode" })
     .click();
-  // The bench's session ends with the bench.
+  // The bench's session ends with the bench, and the door says so.
   await page.getByRole("heading", { level: 1, name: "Sign in" }).waitFor();
+  await page.getByText("Bench mode on this PC was ended, and with it you were signed out.").waitFor();
 });
 
 test("after two minutes at rest the bench is covered; what was typed is there for the same person", async () => {

@@ -62,7 +62,9 @@ export function Shell() {
       </MemberProvider>
       {isLocked && (
         <div className="lock-cover">
-          <Suspense>{me !== undefined && <SignIn me={me} lastPerson={kept.person} />}</Suspense>
+          <Suspense>
+            {me !== undefined && <SignIn me={me} lastPerson={kept.person} wasAtBench={kept.bench !== null} />}
+          </Suspense>
         </div>
       )}
       <ScrollRestoration />
@@ -85,7 +87,11 @@ function BeforeSignIn({ me, error, retry }: { me: Me | undefined; error: Error |
       </main>
     );
   }
-  return <Suspense>{me.person === null ? <SignIn me={me} lastPerson={null} /> : <ChooseLab me={me} />}</Suspense>;
+  return (
+    <Suspense>
+      {me.person === null ? <SignIn me={me} lastPerson={null} wasAtBench={false} /> : <ChooseLab me={me} />}
+    </Suspense>
+  );
 }
 
 function Frame({ isLocked }: { isLocked: boolean }) {

@@ -14,9 +14,19 @@ interface SignInPageProps {
   me: Me;
   /** Whose page waits below, when a session ended by itself. */
   lastPerson: { name: string; email: string } | null;
+  /** That session was one of a shared PC. */
+  wasAtBench: boolean;
 }
 
-export function SignInPage({ me, lastPerson }: SignInPageProps) {
+/** Why the session ended, as far as this device can tell. */
+function whyEnded(isBench: boolean, wasAtBench: boolean): string {
+  if (isBench) return "Locked at rest.";
+  return wasAtBench
+    ? "Bench mode on this PC was ended, and with it you were signed out."
+    : "You were signed out at rest.";
+}
+
+export function SignInPage({ me, lastPerson, wasAtBench }: SignInPageProps) {
   const bench = useQuery({
     queryKey: ["bench"],
     queryFn: ({ signal }) => api.get("readBench", {}, undefined, { signal }),
@@ -34,10 +44,10 @@ export function SignInPage({ me, lastPerson }: SignInPageProps) {
     ) : undefined;
   return (
     <Door title={asBench ? "Who is at the bench?" : "Sign in"} beside={beside}>
-      {lastPerson !== null && (
+      {lastPerson !== null && !bench.isPending && (
         <p className="mb-4">
-          {asBench ? "Locked at rest." : "You were signed out at rest."} The page waits as it was, with what was typed,
-          for {lastPerson.name}.
+          {whyEnded(device !== null, wasAtBench && bench.isSuccess)} The page waits as it was, with what was typed, for{" "}
+          {lastPerson.name}.
         </p>
       )}
       <Suspense>
