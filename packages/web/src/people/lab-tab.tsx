@@ -4,6 +4,7 @@ import { useQuery } from "@tanstack/react-query";
 import { changeLabInput, type LabSettings } from "@wavekeep/api/contract";
 import { Controller, useForm } from "react-hook-form";
 import { api, type RouteBody } from "../shared/api.ts";
+import { useKeepFromLeaving } from "../shared/form.tsx";
 import { useMay } from "../shared/session.ts";
 import { useChange } from "../shared/use-change.ts";
 import { Button } from "../ui/button.tsx";
@@ -67,6 +68,7 @@ function LabForm({ lab }: { lab: LabSettings }) {
   });
   const change = useChange((input: RouteBody<"changeLab">) => api.put("changeLab", {}, input));
   const { errors, isDirty } = form.formState;
+  useKeepFromLeaving(isDirty && !change.isSuccess);
   const zones = Intl.supportedValuesOf("timeZone");
   // A zone under an older name is kept as it stands.
   const choices = (zones.includes(lab.zone) ? zones : [lab.zone, ...zones]).map((zone) => ({

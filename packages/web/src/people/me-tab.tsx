@@ -4,6 +4,7 @@ import { changeMeInput, changePasswordInput, changePinInput } from "@wavekeep/ap
 import type { ReactNode } from "react";
 import { useForm } from "react-hook-form";
 import { api, type RouteBody } from "../shared/api.ts";
+import { useKeepFromLeaving } from "../shared/form.tsx";
 import { useMe } from "../shared/session.ts";
 import { chooseTheme, themeNames, themeWords, useTheme } from "../shared/theme.ts";
 import { useChange } from "../shared/use-change.ts";
@@ -86,7 +87,11 @@ function FormSection({
 
 function NameForm({ name, email }: { name: string; email: string }) {
   const form = useForm({ resolver: zodResolver(changeMeInput), defaultValues: { name } });
-  const change = useChange((input: RouteBody<"changeMe">) => api.put("changeMe", {}, input));
+  const change = useChange(
+    (input: RouteBody<"changeMe">) => api.put("changeMe", {}, input),
+    (_, kept) => form.reset(kept),
+  );
+  useKeepFromLeaving(form.formState.isDirty);
   return (
     <FormSection
       title="Name"
@@ -114,7 +119,8 @@ function PasswordChange() {
     (input: RouteBody<"changePassword">) => api.put("changePassword", {}, input),
     () => form.reset(),
   );
-  const { errors } = form.formState;
+  const { errors, isDirty } = form.formState;
+  useKeepFromLeaving(isDirty);
   return (
     <FormSection
       title="Password"
@@ -149,7 +155,8 @@ function PinForm({ hasPin }: { hasPin: boolean }) {
     (input: RouteBody<"changePin">) => api.put("changePin", {}, input),
     () => form.reset(),
   );
-  const { errors } = form.formState;
+  const { errors, isDirty } = form.formState;
+  useKeepFromLeaving(isDirty);
   return (
     <FormSection
       title="PIN"
