@@ -85,9 +85,7 @@ function LoadedCheck({ check }: { check: Check }) {
           <CheckSide check={check} analysis={analysis} chosen={chosen} />
         </div>
       </Section>
-      {analysis !== null && analysis.dispersion !== null && (
-        <DispersionSection check={check} dispersion={analysis.dispersion} analysis={analysis} />
-      )}
+      {analysis !== null && <DispersionSection check={check} analysis={analysis} />}
       <AttemptsSection check={check} />
       <AnalysesSection check={check} />
       <EventsSection check={check} />

@@ -1,6 +1,6 @@
 /** The fitted axis: coefficients, what the fit leaves, and its uncertainty across the range. */
 import type { Check } from "@wavekeep/api/contract";
-import type { Analysis, Dispersion } from "@wavekeep/core";
+import type { Analysis } from "@wavekeep/core";
 import { sentenceCase } from "../shared/words.ts";
 import { Decimal, FactList, formatNumber, MINUS, NARROW_SPACE, Section, Table } from "../ui/index.ts";
 import { FittedAxis } from "./fitted-axis.tsx";
@@ -26,14 +26,10 @@ function Coefficient({ value }: { value: number }) {
   );
 }
 
-interface DispersionSectionProps {
-  check: Check;
-  dispersion: Dispersion;
-  analysis: Analysis;
-}
-
-export function DispersionSection({ check, dispersion, analysis }: DispersionSectionProps) {
-  const { axisUnit } = analysis;
+/** Shown only where an axis was fitted: a capture that brings wavelengths of its own needs none. */
+export function DispersionSection({ check, analysis }: { check: Check; analysis: Analysis }) {
+  const { axisUnit, dispersion } = analysis;
+  if (dispersion === null || analysis.axisKind === "wavelength") return null;
   const nameOf = (index: number) => {
     const line = analysis.lines[index];
     return line === undefined ? "A line" : sentenceCase(lineName(line, axisUnit));
@@ -81,7 +77,7 @@ export function DispersionSection({ check, dispersion, analysis }: DispersionSec
               ...coefficients.map((value, power) => ({ label: `c${power}`, value: <Coefficient value={value} /> })),
               {
                 label: "Left by the fit, rms",
-                value: `${axisUnit === "nm" ? "" : `${formatNumber(dispersion.rmsPx, { decimals: 3 })}${NARROW_SPACE}${axisUnit}, `}${formatNumber(dispersion.rmsNm, { decimals: 4 })}${NARROW_SPACE}nm`,
+                value: `${formatNumber(dispersion.rmsPx, { decimals: 3 })}${NARROW_SPACE}${axisUnit}, ${formatNumber(dispersion.rmsNm, { decimals: 4 })}${NARROW_SPACE}nm`,
               },
               {
                 label: "Leaving each out, rms",

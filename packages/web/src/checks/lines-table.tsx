@@ -13,6 +13,7 @@ import {
   Table,
   uncertaintyDecimals,
 } from "../ui/index.ts";
+import { hasNoEarlierAxis } from "./verdict-sentence.ts";
 
 interface LinesTableProps {
   analysis: Analysis;
@@ -39,12 +40,14 @@ function speciesNote(line: LineResult): string {
 
 const isAside = (line: LineResult) => line.status === "left-out" || line.status === "refused";
 
-function rowReason(line: LineResult, by: string | undefined): string | null {
+/** Why a line was not judged. Where no axis could err (a first check) the title says so for all lines at once. */
+function rowReason(line: LineResult, isFirstAxis: boolean, by: string | undefined): string | null {
   if (line.leftOut !== null && line.status === "left-out") {
     const head = `${by === undefined ? "Left out" : by}: ${leaveOutWords[line.leftOut.reason]}.`;
     return `${head} ${line.leftOut.note}`;
   }
-  return line.status === "judged" ? null : line.reason;
+  if (line.status === "judged" || (isFirstAxis && line.status === "not-judged")) return null;
+  return line.reason;
 }
 
 /** Reference wavelengths are written with as many places as their source gives, at most four. */
@@ -52,6 +55,8 @@ const referenceDecimals = (line: LineResult) => Math.min(4, (String(line.wavelen
 
 export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: LinesTableProps) {
   const theme = useTheme();
+  const isFirstAxis = hasNoEarlierAxis(analysis);
+  const reasonOf = (line: LineResult) => rowReason(line, isFirstAxis, leftOutBy);
   const rows: Row[] = analysis.lines
     .map((line, index) => ({ line, index }))
     .sort(
@@ -87,7 +92,7 @@ export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: Li
           isChosen={(row) => row.index === chosen}
           onChoose={(row) => onChoose(row.index)}
           rowClassName={({ line }) => (isAside(line) ? "left-out" : "")}
-          rowNote={({ line }) => rowReason(line, leftOutBy)}
+          rowNote={({ line }) => reasonOf(line)}
           columns={[
             {
               key: "reference",
@@ -229,7 +234,7 @@ export function LinesTable({ analysis, chosen, onChoose, leftOutBy, action }: Li
                   )}
                 </span>
               </button>
-              {rowReason(line, leftOutBy) !== null && <p className="type-note">{rowReason(line, leftOutBy)}</p>}
+              {reasonOf(line) !== null && <p className="type-note">{reasonOf(line)}</p>}
               {action !== undefined && <div className="mt-1">{action(line, index)}</div>}
             </li>
           ))}

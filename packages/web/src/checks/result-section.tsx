@@ -136,9 +136,7 @@ export function ResultSection({ check, keeper, local, isTravelling }: ResultSect
           </div>
         </Section>
       )}
-      {isCurrent && analysis !== null && analysis.dispersion !== null && (
-        <DispersionSection check={check} dispersion={analysis.dispersion} analysis={analysis} />
-      )}
+      {isCurrent && analysis !== null && <DispersionSection check={check} analysis={analysis} />}
       {leavingOut !== null && analysis !== null && (
         <LeaveOutDialog line={leavingOut} analysis={analysis} keeper={keeper} onClose={() => setLeavingOut(null)} />
       )}

@@ -29,6 +29,10 @@ const notIdentified: Record<Exclude<Analysis["outcome"], "identified">, string> 
   refused: "Not judged: the captures could not be analysed.",
 };
 
+/** True where nothing said before what the instrument indicates, so that no line can have an error: a first check. */
+export const hasNoEarlierAxis = (analysis: Analysis): boolean =>
+  analysis.outcome === "identified" && analysis.lines.every((line) => line.errorNm === null);
+
 /** Shape of an analysis's verdict. */
 export const analysisState = (analysis: Analysis): StatusState =>
   analysis.verdict === null
@@ -52,7 +56,7 @@ export function verdictSentence(analysis: Analysis, qualifier = ""): string {
   const { verdict } = analysis;
   if (verdict === null) {
     if (analysis.outcome !== "identified") return notIdentified[analysis.outcome];
-    return analysis.lines.every((line) => line.errorNm === null)
+    return hasNoEarlierAxis(analysis)
       ? "Not judged: no axis was in force that could err. This one is the first."
       : "Not judged: no tolerance reaches these lines.";
   }
