@@ -134,12 +134,18 @@ function Entry({ entry }: { entry: TrailEntry }) {
         >
           <b>{entry.actor}</b> {entry.sentence}
         </button>
-        <span className="type-note min-w-0 truncate -mt-[2px]">
+        <span className="type-note min-w-0 -mt-[2px]">
           {entry.about !== null &&
             (entry.about.to === null ? (
-              <span className="inline-flex min-h-6 items-center">{entry.about.label}</span>
+              <span title={entry.about.label} className="line-clamp-2 min-h-6 pt-1 wrap-anywhere">
+                {entry.about.label}
+              </span>
             ) : (
-              <Link to={entry.about.to} className="text-accent inline-flex min-h-6 items-center hover:underline">
+              <Link
+                to={entry.about.to}
+                title={entry.about.label}
+                className="text-accent line-clamp-2 min-h-6 w-fit pt-1 wrap-anywhere hover:underline"
+              >
                 {entry.about.label}
               </Link>
             ))}
