@@ -231,7 +231,7 @@ describe("the client served", () => {
     expect(plain.headers["cache-control"]).toBe("no-cache");
     const dark = await asked.get("/").set("cookie", "other=1; wavekeep-theme=dark-room-amber");
     expect(dark.text).toContain('data-theme="dark-room-amber"');
-    expect(dark.text).toContain('content="#080100"');
+    expect(dark.text).toContain('content="#050200"');
     expect(dark.text).toContain("/favicon-dark-room-amber.svg");
     const odd = await asked.get("/").set("cookie", 'wavekeep-theme="><script>');
     expect(odd.text).toContain('data-theme="paper"');

@@ -8,8 +8,8 @@ const grounds: Record<string, string> = {
   paper: "#F6F5F1",
   ink: "#14181E",
   "dark-room": "#080100",
-  "dark-room-amber": "#080100",
-  "dark-room-green": "#080100",
+  "dark-room-amber": "#050200",
+  "dark-room-green": "#000301",
 };
 
 /** The page in a theme; an unknown one leaves it as built. */
