@@ -286,13 +286,19 @@ function recentItems(facts: TodayFacts): TodayItem[] {
   }));
 }
 
+/** What the ruler says of a date, as the fleet does: an as-left check that was asked for goes before any date. */
+function rulerNote(row: TodayFacts["configurations"][number]): string {
+  if (row.asLeftAsked) return "as-left check";
+  if (row.checkedAt === null && row.dueDays! >= 0) return "first check";
+  return dueText(row.dueDays!).replace(/^due (in )/, "$1");
+}
+
 function dueList({ configurations, today }: TodayFacts, sources: SourceDue[]): TodayReply["due"] {
   const instruments = configurations
     .filter((row) => row.dueOn !== null && row.dueDays! <= rulerDays)
     .map((row) => ({
       label: calledText(row.name, row.configurationName),
-      note:
-        row.checkedAt === null && row.dueDays! >= 0 ? "first check" : dueText(row.dueDays!).replace(/^due (in )/, "$1"),
+      note: rulerNote(row),
       on: row.dueOn!,
       days: row.dueDays!,
       to: configurationPath({ ...row, instrumentId: row.id }),
