@@ -129,7 +129,7 @@ function Entry({ entry }: { entry: TrailEntry }) {
           type="button"
           aria-expanded={isOpen}
           aria-controls={id}
-          className="max-w-[640px] text-left hover:underline hover:decoration-(--graph) hover:underline-offset-3"
+          className="max-w-[640px] self-start text-left hover:underline hover:decoration-(--graph) hover:underline-offset-3"
           onClick={() => setOpen(!isOpen)}
         >
           <b>{entry.actor}</b> {entry.sentence}
