@@ -416,9 +416,6 @@ describe("a check that fails", () => {
     );
     expect(manager.items[0].title).toMatch(/^Curlew is out of tolerance, on hold since .*; your decision waits\.$/);
     expect(manager.fleet[0]).toMatchObject({ name: "Curlew", state: "on-hold", asLeftAsked: true });
-    expect(manager.due.find((item: { label: string }) => item.label === "Curlew")).toMatchObject({
-      note: "as-left check",
-    });
     const { body: owner } = await olga.client.get("/today").expect(200);
     expect(owner.items.map((item: { kind: string }) => item.kind)).toEqual(expect.arrayContaining(["impact", "alert"]));
     expect(owner.sentence).toMatch(/wait for you\.$/);

@@ -1,7 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { addDays, dateIn, daysBetween, dueText, momentText, yearIn } from "../instruments/dates.ts";
 import { errorText, toleranceText } from "../checks/words.ts";
-import { todaySentence } from "./sentence.ts";
+import { rulerNote, todaySentence } from "./sentence.ts";
 
 const items = (...kinds: Parameters<typeof todaySentence>[0][number]["kind"][]) => kinds.map((kind) => ({ kind }));
 
@@ -15,6 +15,17 @@ describe("the day in one sentence", () => {
     expect(todaySentence(items("recent"))).toBe("Nothing waits for you.");
     expect(todaySentence([])).toBe("Nothing waits for you.");
   });
+});
+
+test("the ruler of days: an as-left check goes before a first one, and both before the date", () => {
+  const checked = { asLeftAsked: false, checkedAt: "2027-01-04T10:00:00Z", dueDays: 6 };
+  expect([
+    rulerNote(checked),
+    rulerNote({ ...checked, dueDays: -1 }),
+    rulerNote({ ...checked, asLeftAsked: true, dueDays: -1 }),
+    rulerNote({ ...checked, checkedAt: null }),
+    rulerNote({ ...checked, checkedAt: null, dueDays: -2 }),
+  ]).toEqual(["in 6 days", "overdue 1 day", "as-left check", "first check", "overdue 2 days"]);
 });
 
 describe("dates are cut in the lab's zone", () => {

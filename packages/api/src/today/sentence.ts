@@ -1,6 +1,7 @@
-/** The day in one sentence: what kinds of things wait, and how many. */
+/** The day in words: what kinds of things wait, and how many; what the ruler of days says of a date. */
 import type { TodayReply } from "../contract/work.ts";
 import { listText } from "../checks/words.ts";
+import { dueText } from "../instruments/dates.ts";
 
 type Kind = TodayReply["items"][number]["kind"];
 
@@ -37,4 +38,11 @@ export function todaySentence(items: readonly Pick<TodayReply["items"][number], 
   const text = listText(parts.map(({ count, one, many }) => `${numbers[count] ?? count} ${count === 1 ? one : many}`));
   const single = parts.length === 1 && parts[0]!.count === 1;
   return `${text[0]!.toUpperCase()}${text.slice(1)} ${single ? "waits" : "wait"} for you.`;
+}
+
+/** `in 6 days`, `overdue 1 day`, `first check`. As in the fleet, an as-left check that was asked for goes before any date. */
+export function rulerNote(row: { asLeftAsked: boolean; checkedAt: string | null; dueDays: number }): string {
+  if (row.asLeftAsked) return "as-left check";
+  if (row.checkedAt === null && row.dueDays >= 0) return "first check";
+  return dueText(row.dueDays).replace(/^due (in )/, "$1");
 }

@@ -12,7 +12,7 @@ import { calledText, checkOfText, configurationPath } from "../instruments/calle
 import { fleetOf, listFleetConfigurations, type FleetConfiguration } from "../instruments/fleet.ts";
 import { findLab } from "../labs/queries.ts";
 import { listContributedChecks, listHolds, listSourcesDue, type HoldRow, type SourceDue } from "./queries.ts";
-import { todaySentence } from "./sentence.ts";
+import { rulerNote, todaySentence } from "./sentence.ts";
 
 export type TodayItem = TodayReply["items"][number];
 
@@ -286,19 +286,12 @@ function recentItems(facts: TodayFacts): TodayItem[] {
   }));
 }
 
-/** What the ruler says of a date, as the fleet does: an as-left check that was asked for goes before any date. */
-function rulerNote(row: TodayFacts["configurations"][number]): string {
-  if (row.asLeftAsked) return "as-left check";
-  if (row.checkedAt === null && row.dueDays! >= 0) return "first check";
-  return dueText(row.dueDays!).replace(/^due (in )/, "$1");
-}
-
 function dueList({ configurations, today }: TodayFacts, sources: SourceDue[]): TodayReply["due"] {
   const instruments = configurations
     .filter((row) => row.dueOn !== null && row.dueDays! <= rulerDays)
     .map((row) => ({
       label: calledText(row.name, row.configurationName),
-      note: rulerNote(row),
+      note: rulerNote({ ...row, dueDays: row.dueDays! }),
       on: row.dueOn!,
       days: row.dueDays!,
       to: configurationPath({ ...row, instrumentId: row.id }),
