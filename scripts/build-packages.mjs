@@ -12,6 +12,7 @@ const programs = {
   "seed-demo": "demo/seed.ts",
   "new-lab": "labs/new-lab.ts",
   "analysis-worker": "checks/analysis-worker.ts",
+  "report-worker": "records/report-worker.ts",
 };
 
 const webDir = path.join(projectDir, "packages/web");

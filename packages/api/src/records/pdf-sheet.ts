@@ -49,14 +49,33 @@ const faces = {
 } as const;
 type Face = keyof typeof faces;
 
-const fonts = Object.entries({
+const fontFiles = {
   "latin-regular": latinRegular,
   "latin-strong": latinStrong,
   "ext-regular": latinExtRegular,
   "ext-strong": latinExtStrong,
   "greek-regular": greekRegular,
   "greek-strong": greekStrong,
-}).map(([name, base64]) => [name, Buffer.from(base64, "base64")] as const);
+};
+type FontName = keyof typeof fontFiles;
+
+/** Fonts as pdfkit parsed them, and widths at size 1, for all sheets of this thread: parsing costs more than printing. */
+const parsedFonts = new Map<FontName, Buffer>();
+const widths = new Map<string, number>();
+/** Texts of reports repeat; those that do not (names, numbers) must not pile up. */
+const MOST_WIDTHS = 20_000;
+
+/** pdfkit takes a parsed font wherever it takes a font's bytes, though its types name the bytes alone. */
+function fontOf(name: FontName): Buffer {
+  const known = parsedFonts.get(name);
+  if (known !== undefined) return known;
+  const bytes = Buffer.from(fontFiles[name], "base64");
+  const { _font: embedded } = new PDFDocument({ autoFirstPage: false }).font(bytes) as unknown as {
+    _font: { font: Buffer };
+  };
+  parsedFonts.set(name, embedded.font);
+  return embedded.font;
+}
 
 /** Face of a character; what none has is printed as a question mark in the Latin one. */
 function faceOf(codePoint: number): Face {
@@ -108,7 +127,7 @@ export class PdfSheet {
   readonly bodyWidth = pageWidth - 2 * margin;
   private readonly doc: PDFKit.PDFDocument;
   private readonly chunks: Buffer[] = [];
-  private readonly widths = new Map<string, number>();
+  private readonly registered = new Set<FontName>();
   private y = margin;
 
   /** @param createdAt fixed, so that the same report is the same bytes */
@@ -128,7 +147,6 @@ export class PdfSheet {
         ModDate: info.createdAt,
       },
     });
-    for (const [name, bytes] of fonts) this.doc.registerFont(name, bytes);
     this.doc.on("data", (chunk: Buffer) => this.chunks.push(chunk));
   }
 
@@ -285,7 +303,12 @@ export class PdfSheet {
   }
 
   private use(face: Face, style: TextStyle): void {
-    this.doc.font(faces[face][style.weight === "strong" ? 1 : 0]).fontSize(style.size ?? 9);
+    const name = faces[face][style.weight === "strong" ? 1 : 0];
+    if (!this.registered.has(name)) {
+      this.doc.registerFont(name, fontOf(name));
+      this.registered.add(name);
+    }
+    this.doc.font(name).fontSize(style.size ?? 9);
   }
 
   private width(text: string, style: TextStyle): number {
@@ -297,11 +320,12 @@ export class PdfSheet {
     const size = style.size ?? 9;
     if (run.face === null) return narrowGap * size;
     const key = `${style.weight ?? "regular"} ${run.face} ${run.text}`;
-    let perPoint = this.widths.get(key);
+    let perPoint = widths.get(key);
     if (perPoint === undefined) {
       this.use(run.face, { ...style, size: 1 });
       perPoint = this.doc.widthOfString(run.text);
-      this.widths.set(key, perPoint);
+      if (widths.size >= MOST_WIDTHS) widths.clear();
+      widths.set(key, perPoint);
     }
     return perPoint * size;
   }

@@ -2,13 +2,13 @@
 import { reports } from "../db/schema/index.ts";
 import { asWavekeep, inLab, type Context } from "../db/tenancy.ts";
 import type { Database } from "../db/connection.ts";
+import type { Analyser } from "../checks/analyser.ts";
 import { findCheck, findOptionalReport, findState } from "../checks/queries.ts";
 import type { FileReply } from "../http/file-reply.ts";
 import { isUniqueViolation } from "../instruments/conflicts.ts";
 import { yearIn } from "../instruments/dates.ts";
 import { takeNumber } from "../instruments/queries.ts";
 import { sha256Hex } from "./canonical.ts";
-import { renderReport } from "./report.ts";
 import { gatherReport, type ReportFacts } from "./report-facts.ts";
 import type { HeadSigner } from "./signing.ts";
 import { writeTrail } from "./trail.ts";
@@ -16,6 +16,7 @@ import { writeTrail } from "./trail.ts";
 export interface ReportWork {
   db: Database;
   signer: Pick<HeadSigner, "fingerprint">;
+  analyser: Pick<Analyser, "drawReport">;
 }
 
 /**
@@ -36,7 +37,7 @@ export async function ensureReport(
     const number = await takeNumber(tx, ctx, "report", yearIn(ctx.zone, gathered.madeAt));
     return { ...gathered, check, number };
   });
-  const bytes = await renderReport(facts, work.signer.fingerprint);
+  const bytes = await work.analyser.drawReport({ facts, keyFingerprint: work.signer.fingerprint });
   const row = {
     labId: ctx.labId,
     checkId,
@@ -76,7 +77,8 @@ export async function readReport(work: ReportWork, ctx: Context, checkId: string
   }));
   if (!approved) {
     const facts = await inLab(work.db, ctx, (tx) => gatherReport(tx, ctx, checkId, null));
-    return pdf(await renderReport(facts, work.signer.fingerprint), `${check.number}-draft.pdf`);
+    const bytes = await work.analyser.drawReport({ facts, keyFingerprint: work.signer.fingerprint });
+    return pdf(bytes, `${check.number}-draft.pdf`);
   }
   const report = await ensureReport(work, ctx, checkId);
   await inLab(work.db, ctx, (tx) =>
