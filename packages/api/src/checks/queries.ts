@@ -281,6 +281,16 @@ export async function findOptionalReport(tx: Tx, checkId: string): Promise<typeo
   return row ?? null;
 }
 
+/** What a check's page says of its report, without the bytes. */
+export async function findOptionalReportHead(
+  tx: Tx,
+  checkId: string,
+): Promise<Pick<typeof reports.$inferSelect, "number" | "sha256" | "madeAt"> | null> {
+  const { number, sha256, madeAt } = reports;
+  const [row] = await tx.select({ number, sha256, madeAt }).from(reports).where(eq(reports.checkId, checkId));
+  return row ?? null;
+}
+
 export function listFollowers(tx: Tx, checkId: string): Promise<{ id: string; number: string }[]> {
   return tx
     .select({ id: checks.id, number: checks.number })

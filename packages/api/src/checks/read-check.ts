@@ -1,7 +1,7 @@
 /** One check with all that its page shows, and what this person may do with it now. */
 import { inArray } from "drizzle-orm";
 import { readFittedAxis } from "../axes/read-axes.ts";
-import type { Check } from "../contract/checks.ts";
+import type { CaptureReceipt, Check } from "../contract/checks.ts";
 import { listReceipts } from "../captures/receipts.ts";
 import { sources } from "../db/schema/index.ts";
 import { hasRole, ownsInstrument, recordNow, type Context, type Tx } from "../db/tenancy.ts";
@@ -14,7 +14,7 @@ import {
   findStanding,
   findToleranceAt,
 } from "../instruments/queries.ts";
-import { listReviewRows } from "../impact/queries.ts";
+import { findOptionalReviewOf } from "../impact/queries.ts";
 import { findProcedure } from "../procedures/queries.ts";
 import { approveRefusal } from "./approval.ts";
 import { holdOfCheck } from "./hold.ts";
@@ -22,9 +22,8 @@ import { listCheckRows } from "./list-checks.ts";
 import {
   findCheck,
   findDraft,
-  findFirstCaptureAt,
   findOptionalAnalysis,
-  findOptionalReport,
+  findOptionalReportHead,
   findOptionalSubmission,
   listAnalysisVersions,
   listAttempts,
@@ -58,8 +57,9 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
   });
   const shownVersion = versions.find((version) => version.version === analysis?.version);
   const follows = record.followsCheckId === null ? null : await findCheck(tx, record.followsCheckId);
-  const [review] = await listReviewRows(tx, { checkId });
-  const report = await findOptionalReport(tx, checkId);
+  const review = await findOptionalReviewOf(tx, checkId);
+  const report = await findOptionalReportHead(tx, checkId);
+  const receipts = await listReceipts(tx, checkId);
   return {
     summary,
     state: summary.state,
@@ -73,10 +73,10 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
       repeats: procedure.repeats,
     },
     draft: { ...draft.inputs, version: draft.version },
-    ...(await readInForce(tx, record, draft)),
+    ...(await readInForce(tx, record, draft, receipts)),
     fittedAxis: await readFittedAxis(tx, ctx, record, summary.state, analysis),
     sources: await readSources(tx, ctx, draft),
-    attempts: await readAttempts(tx, record, draft, versions),
+    attempts: await readAttempts(tx, record, draft, versions, receipts),
     currentAttempt: draft.currentAttempt,
     analysis: analysis?.analysis ?? null,
     analysisVersion: shownVersion === undefined ? null : presentVersion(shownVersion),
@@ -102,7 +102,7 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
     follows: follows === null ? null : { id: follows.id, number: follows.number },
     followedBy: await listFollowers(tx, checkId),
     hold: await readHold(tx, record),
-    impactReview: review === undefined ? null : { id: review.review.id, number: review.review.number },
+    impactReview: review,
     report:
       report === null ? null : { number: report.number, sha256: report.sha256, madeAt: report.madeAt.toISOString() },
     may: await mayNow(tx, ctx, record, draft, summary.state, analysis),
@@ -121,12 +121,14 @@ async function readInForce(
   tx: Tx,
   check: CheckRecord,
   draft: DraftRow,
+  receipts: readonly CaptureReceipt[],
 ): Promise<Pick<Check, "tolerance" | "axisInForce">> {
   const now = await recordNow(tx);
-  const firstAt = (await findFirstCaptureAt(tx, check.id)) ?? now;
-  const attemptAt = (await findFirstCaptureAt(tx, check.id, draft.currentAttempt)) ?? now;
-  const tolerance = await findToleranceAt(tx, check.configurationId, firstAt);
+  const firstOf = (some: readonly CaptureReceipt[]) => (some[0] === undefined ? now : new Date(some[0].receivedAt));
+  const firstAt = firstOf(receipts);
+  const attemptAt = firstOf(receipts.filter(({ attempt }) => attempt === draft.currentAttempt));
   const latest = await findLatestTolerance(tx, check.configurationId);
+  const tolerance = latest.inForceFrom <= firstAt ? latest : await findToleranceAt(tx, check.configurationId, firstAt);
   const axis = await findAxisAt(tx, check.configurationId, attemptAt);
   return {
     tolerance: {
@@ -159,9 +161,9 @@ async function readAttempts(
   check: CheckRecord,
   draft: DraftRow,
   versions: Awaited<ReturnType<typeof listAnalysisVersions>>,
+  receipts: readonly CaptureReceipt[],
 ): Promise<Check["attempts"]> {
   const attempts = await listAttempts(tx, check.id);
-  const receipts = await listReceipts(tx, check.id);
   return attempts.map((attempt) => {
     const made = versions.filter((version) => version.attempt === attempt.number);
     const last = made.at(-1);

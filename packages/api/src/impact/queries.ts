@@ -54,6 +54,13 @@ export function listReviewRows(tx: Tx, by: { reviewId?: string; checkId?: string
 
 export type ReviewRow = Awaited<ReturnType<typeof listReviewRows>>[number];
 
+/** The review that a check caused, by number; null where it caused none. */
+export async function findOptionalReviewOf(tx: Tx, checkId: string): Promise<{ id: string; number: string } | null> {
+  const { id, number } = impactReviews;
+  const [row] = await tx.select({ id, number }).from(impactReviews).where(eq(impactReviews.checkId, checkId));
+  return row ?? null;
+}
+
 /** @throws problem "not-found" */
 export async function findReview(tx: Tx, reviewId: string): Promise<ReviewRow> {
   const [row] = await listReviewRows(tx, { reviewId });
