@@ -81,6 +81,6 @@ export async function findCaptureWithBytes(
 }
 
 /** A reading of the same capture by the same core is kept once. */
-export async function keepReading(tx: Tx, row: typeof captureReadings.$inferInsert): Promise<void> {
-  await tx.insert(captureReadings).values(row).onConflictDoNothing();
+export async function keepReadings(tx: Tx, rows: (typeof captureReadings.$inferInsert)[]): Promise<void> {
+  await tx.insert(captureReadings).values(rows).onConflictDoNothing();
 }

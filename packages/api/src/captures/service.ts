@@ -16,7 +16,7 @@ import { Problem, problem } from "../http/problem.ts";
 import type { ReceivedFile } from "../http/uploads.ts";
 import { sha256Hex } from "../records/canonical.ts";
 import { writeTrail } from "../records/trail.ts";
-import { findCaptureWithBytes, findFirstSeen, findLastPosition, keepBytes, keepReading } from "./queries.ts";
+import { findCaptureWithBytes, findFirstSeen, findLastPosition, keepBytes, keepReadings } from "./queries.ts";
 import { listReceipts } from "./receipts.ts";
 
 export interface CaptureServices {
@@ -32,12 +32,12 @@ export async function addCaptures(
   upload: { part: CaptureReceipt["part"]; files: readonly ReceivedFile[] },
 ): Promise<z.input<typeof uploadReply>> {
   const stored = await storeCaptures(db, ctx, checkId, upload);
-  for (const { id, file } of stored.captures) {
-    // A fault in reading takes nothing back: the capture is stored, its receipt says that it was not read, and the analysis tries again.
-    await readStored({ db, analyser }, ctx, { id, name: file.name, bytes: file.bytes }).catch((error: unknown) => {
-      if (!(error instanceof Problem)) throw error;
-    });
-  }
+  await readStored(
+    { db, analyser },
+    ctx,
+    stored.captures.map(({ id, file }) => ({ id, name: file.name, bytes: file.bytes })),
+    { faults: "left-unread" },
+  );
   const receipts = await inLab(db, ctx, (tx) => listReceipts(tx, checkId));
   const ids = new Set(stored.captures.map(({ id }) => id));
   return { captures: receipts.filter(({ id }) => ids.has(id)), attempt: stored.attempt };
@@ -113,23 +113,44 @@ async function storeCaptures(
   });
 }
 
-/** Read a stored capture in a worker and keep what was read. The bytes are safe whatever comes of it. */
+/**
+ * Read stored captures in the workers and keep what was read. The bytes are safe whatever comes of it.
+ *
+ * @param options.faults  `left-unread`: a fault in reading takes nothing back; the receipt says that the capture was not
+ *   read, and the analysis tries again. By default the first fault is thrown once the others are kept.
+ */
 export async function readStored(
   { db, analyser }: CaptureServices,
   ctx: Context,
-  capture: { id: string; name: string; bytes: Uint8Array },
+  unread: readonly { id: string; name: string; bytes: Uint8Array }[],
+  options: { faults?: "left-unread" } = {},
 ): Promise<void> {
-  const found = storableJson(await analyser.read(capture.bytes, capture.name));
-  await inLab(db, ctx, async (tx) =>
-    keepReading(tx, {
-      labId: ctx.labId,
-      captureId: capture.id,
-      coreVersion,
-      reading: found.reading,
-      refusal: found.refusal,
-      readAt: await recordNow(tx),
-    }),
+  if (unread.length === 0) return;
+  const outcomes = await Promise.allSettled(unread.map(({ bytes, name }) => analyser.read(bytes, name)));
+  const found = outcomes.flatMap((outcome, index) =>
+    outcome.status === "fulfilled" ? [{ captureId: unread[index]!.id, ...storableJson(outcome.value) }] : [],
   );
+  if (found.length > 0) {
+    await inLab(db, ctx, async (tx) => {
+      const readAt = await recordNow(tx);
+      await keepReadings(
+        tx,
+        found.map(({ captureId, reading, refusal }) => ({
+          labId: ctx.labId,
+          captureId,
+          coreVersion,
+          reading,
+          refusal,
+          readAt,
+        })),
+      );
+    });
+  }
+  for (const outcome of outcomes) {
+    if (outcome.status === "fulfilled") continue;
+    if (options.faults === "left-unread" && outcome.reason instanceof Problem) continue;
+    throw outcome.reason;
+  }
 }
 
 /** A capture exactly as it arrived; that somebody took a copy is in the trail. */

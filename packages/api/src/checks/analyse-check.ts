@@ -80,7 +80,7 @@ async function readUnread(work: Pick<CheckWork, "db" | "analyser">, ctx: Context
     );
     return rows.map(({ capture }) => ({ id: capture.id, name: capture.fileName, bytes: bytes.get(capture.sha256)! }));
   });
-  for (const capture of unread) await readStored(work, ctx, capture);
+  await readStored(work, ctx, unread);
 }
 
 async function prepare(tx: Tx, ctx: Context, checkId: string, input: { version: number }): Promise<Prepared> {
