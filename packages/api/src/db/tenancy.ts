@@ -72,9 +72,13 @@ export function inLab<T>(db: Database, ctx: Context, work: (tx: Tx) => Promise<T
       set_config('app.person', ${ctx.personId ?? ""}, true),
       set_config('app.roles', ${ctx.roles.join(",")}, true),
       set_config('app.stated_now', ${ctx.statedNow?.toISOString() ?? ""}, true)`);
+    if (ctx.statedNow !== undefined) statedClocks.set(tx, null);
     return work(tx);
   });
 }
+
+/** Transactions under a stated clock, which stands still: the database is asked once, and refuses whom it refuses. */
+const statedClocks = new WeakMap<Tx, Date | null>();
 
 /** A short transaction for one person in no lab: their own row, and the listed definer functions. */
 export function inNoLab<T>(db: Database, personId: string | null, work: (tx: Tx) => Promise<T>): Promise<T> {
@@ -87,8 +91,12 @@ export function inNoLab<T>(db: Database, personId: string | null, work: (tx: Tx)
 
 /** The record's clock: the database's, to the millisecond, or the stated one while a demo lab is seeded. */
 export async function recordNow(tx: Tx): Promise<Date> {
+  const known = statedClocks.get(tx);
+  if (known instanceof Date) return known;
   const { rows } = await tx.execute<{ now: Date | string }>(sql`select record_now() as now`);
-  return new Date(rows[0]!.now);
+  const now = new Date(rows[0]!.now);
+  if (known === null) statedClocks.set(tx, now);
+  return now;
 }
 
 /** True when the person holds the role in this lab, of their own or as a deputy. */

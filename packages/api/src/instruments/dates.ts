@@ -1,13 +1,18 @@
 /** Dates in the lab's zone, and how they are written in sentences (`14 Jan 2027`, `08:42 CET`). */
 
+/** Making a format costs far more than using it: one a zone. */
+const dateFormats = new Map<string, Intl.DateTimeFormat>();
+function dateFormat(zone: string): Intl.DateTimeFormat {
+  const known = dateFormats.get(zone);
+  if (known !== undefined) return known;
+  const made = new Intl.DateTimeFormat("en-GB", { timeZone: zone, year: "numeric", month: "2-digit", day: "2-digit" });
+  dateFormats.set(zone, made);
+  return made;
+}
+
 /** `yyyy-mm-dd` of an instant in an IANA zone. */
 export function dateIn(zone: string, instant: Date): string {
-  const parts = new Intl.DateTimeFormat("en-GB", {
-    timeZone: zone,
-    year: "numeric",
-    month: "2-digit",
-    day: "2-digit",
-  }).formatToParts(instant);
+  const parts = dateFormat(zone).formatToParts(instant);
   const part = (type: string) => parts.find((one) => one.type === type)?.value ?? "";
   return `${part("year").padStart(4, "0")}-${part("month")}-${part("day")}`;
 }

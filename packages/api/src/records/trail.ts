@@ -16,6 +16,7 @@ import type { Context, Tx } from "../db/tenancy.ts";
 import { problem } from "../http/problem.ts";
 import { canonicalText, personalHash, sha256Hex } from "./canonical.ts";
 import type { HeadSigner } from "./signing.ts";
+import { hashRowsNow } from "./queries.ts";
 import type { TrailAction } from "./trail-actions.ts";
 
 export type EntryShape = z.infer<typeof entryShape>;
@@ -162,20 +163,18 @@ export async function storeSignedHead(
 
 /** SHA-256 of each row named, as the database holds it now. Before the lock: the rows are there already. */
 async function hashRows(tx: Tx, inputs: readonly TrailInput[]): Promise<TrailDocument["rows"][]> {
-  const all: TrailDocument["rows"][] = [];
-  for (const input of inputs) {
-    const hashed: TrailDocument["rows"] = [];
-    for (const { table, id } of input.rows ?? []) {
-      const { rows } = await tx.execute<{ sha256: string | null }>(
-        sql`select row_sha256(${table}, ${id}::uuid) as sha256`,
-      );
-      const sha256 = rows[0]?.sha256;
+  const hashes = await hashRowsNow(
+    tx,
+    inputs.flatMap((input) => input.rows ?? []),
+  );
+  let next = 0;
+  return inputs.map((input) =>
+    (input.rows ?? []).map(({ table, id }) => {
+      const sha256 = hashes[next++];
       if (typeof sha256 !== "string") throw new Error(`The trail names ${table} ${id}, which is not there.`);
-      hashed.push({ table, id, sha256 });
-    }
-    all.push(hashed);
-  }
-  return all;
+      return { table, id, sha256 };
+    }),
+  );
 }
 
 function buildEntry(
