@@ -227,6 +227,22 @@ describe("bench mode", () => {
     await bench.readSession();
   });
 
+  test("from the enrolment on the PC locks after two minutes, also for the manager who enrolled it", async () => {
+    const desk = await server.visit();
+    await desk.signIn(lab.manager.email, password);
+    expect(await desk.readSession()).toMatchObject({ bench: null, idleSeconds: 1200 });
+    await desk.post("/bench/devices", { name: "Desk PC" }).expect(204);
+    expect(await desk.readSession()).toMatchObject({
+      person: { id: lab.manager.id },
+      bench: { deviceName: "Desk PC", lockAfterSeconds: 120 },
+      idleSeconds: 120,
+    });
+    const { body } = await lab.manager.client.get("/people");
+    const { id } = body.benchDevices.find((device: { name: string }) => device.name === "Desk PC");
+    await lab.manager.client.delete(`/bench/devices/${id}`).expect(204);
+    expect((await desk.get("/instruments")).status).toBe(401);
+  });
+
   test("a PIN is set with the password; only who has one is named on the shared PC, and only there", async () => {
     expect((await bench.get("/bench")).body).toEqual({ device: { name: "Bench PC", labName: "People" }, people: [] });
     expect((await technician.client.put("/me/pin", { current: "wrong", pin: "2468" })).body.fields).toMatchObject([

@@ -123,6 +123,12 @@ export async function beginSession(
   );
 }
 
+/** The session goes on as one of this shared PC, with its short idle lock. */
+export function moveToBench(req: Request, bench: { id: string; name: string }): void {
+  req.session.benchDeviceId = bench.id;
+  req.session.benchName = bench.name;
+}
+
 export async function endSession(req: Request): Promise<void> {
   forgetContext(req);
   await new Promise<void>((resolve, reject) =>

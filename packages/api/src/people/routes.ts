@@ -1,5 +1,5 @@
 import { hostOf, signInPerson } from "../auth/routes.ts";
-import { cookieNames } from "../auth/session.ts";
+import { cookieNames, moveToBench } from "../auth/session.ts";
 import { routes } from "../contract/routes.ts";
 import { mount, type Api } from "../http/mount.ts";
 import type { Services } from "../services.ts";
@@ -27,8 +27,9 @@ export function mountPeople(api: Api, services: Services): void {
   mount(api, routes.appointDeputy, ({ ctx, body }) => service.appointDeputy(services, ctx, body));
 
   mount(api, routes.enrolBench, async ({ ctx, body, http }) => {
-    const token = await service.enrolBench(services, ctx, body.name);
-    http.res.cookie(cookieNames(services.config).bench, token, {
+    const device = await service.enrolBench(services, ctx, body.name);
+    moveToBench(http.req, { id: device.id, name: body.name });
+    http.res.cookie(cookieNames(services.config).bench, device.token, {
       httpOnly: true,
       sameSite: "lax",
       secure: services.config.secureCookies,

@@ -238,11 +238,10 @@ export async function appointDeputy(
   });
 }
 
-/** Enrol the PC the request comes from. @returns the token for its cookie */
-export async function enrolBench({ db }: Services, ctx: Context, name: string): Promise<string> {
-  const token = newToken();
+/** Enrol the PC the request comes from. @returns the device, and the token for its cookie */
+export async function enrolBench({ db }: Services, ctx: Context, name: string): Promise<{ id: string; token: string }> {
+  const [id, token] = [newId(), newToken()];
   await inLab(db, ctx, async (tx) => {
-    const id = newId();
     await queries.saveBenchDevice(tx, {
       id,
       labId: ctx.labId,
@@ -253,7 +252,7 @@ export async function enrolBench({ db }: Services, ctx: Context, name: string): 
     });
     await writeTrail(tx, ctx, { action: "bench.enrolled", about: { kind: "bench-device", id, label: name } });
   });
-  return token;
+  return { id, token };
 }
 
 export async function removeBench({ db }: Services, ctx: Context, deviceId: string): Promise<void> {
