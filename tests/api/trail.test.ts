@@ -292,6 +292,28 @@ test("the trail reads as sentences, filtered by person, thing, kind and day", as
   expect(await items("toOn=2001-01-01")).toEqual([]);
 });
 
+test("dates and conditions are words in the sentences; the facts keep their ISO form", () => {
+  const facts = { label: "Dunlin", before: {}, after: {}, why: null, personal: {} };
+  expect(sentences["due.moved"]({ ...facts, before: { dueOn: "2026-12-08" }, after: { dueOn: "2026-12-29" } })).toBe(
+    "moved the next check of Dunlin from 8 Dec 2026 to 29 Dec 2026",
+  );
+  expect(sentences["check.begun"]({ ...facts, label: "CHK-2026-0001", after: { condition: "as-found" } })).toBe(
+    "began check CHK-2026-0001, as found",
+  );
+  expect(
+    sentences["source.changed"]({
+      ...facts,
+      label: "HA-1",
+      before: { reviewDueOn: null },
+      after: { reviewDueOn: "2027-03-01" },
+    }),
+  ).toBe("changed the source HA-1 (review due on from none to 1 Mar 2027)");
+  // A number that only looks like one is left alone.
+  expect(sentences["certificate.stored"]({ ...facts, label: "HA-1", after: { fileName: "K-2026-13-08.pdf" } })).toBe(
+    "stored the certificate K-2026-13-08.pdf of HA-1",
+  );
+});
+
 test("every action has a sentence, which reads without the facts it may lack", () => {
   for (const action of trailActions) {
     const sentence = sentences[action]({ label: "X", before: {}, after: {}, why: null, personal: {} });

@@ -2,6 +2,7 @@
  * The trail as people read it: one sentence an action, without the actor's name, which stands strong before it.
  * Exhaustive: an action without a sentence does not compile.
  */
+import { dayText } from "../instruments/dates.ts";
 import type { TrailDocument } from "./trail.ts";
 import type { TrailAction } from "./trail-actions.ts";
 
@@ -24,7 +25,13 @@ const text = (value: unknown): string =>
       ? value.map(text).join(", ")
       : typeof value === "object"
         ? JSON.stringify(value)
-        : String(value);
+        : words(String(value));
+
+/** Words as people write them where the facts keep a code's: dates, and the condition an instrument was measured in. */
+const words = (fact: string): string =>
+  fact === "as-found" || fact === "as-left"
+    ? fact.replace("-", " ")
+    : fact.replace(/\b\d{4}-(0[1-9]|1[0-2])-(0[1-9]|[12]\d|3[01])\b(?!T)/g, dayText);
 const because = (why: string | null): string => (why === null || why === "" ? "" : `: “${why}”`);
 /** A finding of Wavekeep's own, not quoted. */
 const stated = (why: string | null): string => (why === null || why === "" ? "" : `: ${why.replace(/\.$/, "")}`);
