@@ -394,6 +394,7 @@ describe("a check that fails", () => {
     const mail = (await mailsTo(olga)).at(-1)!;
     expect(mail.subject).toContain("Curlew is out of tolerance and on hold");
     expect(mail.text).toMatch(/reads \+0\.\d+ ± 0\.\d+.nm where 0\.30.nm is allowed/);
+    expect(mail.text).toContain(`Check ${failed.summary.number}, as found: `);
     expect(mail.text).toContain(`/checks/${failed.summary.id}`);
   });
 

@@ -150,7 +150,7 @@ async function tellPeople(
   const managers = await listManagers(tx);
   const people = [instrument.ownerId, ...managers.map((manager) => manager.personId)];
   const paragraphs = [
-    `${finding}.`,
+    `Check ${check.number}, ${check.condition === "as-left" ? "as left" : "as found"}: ${finding}.`,
     told.wasInUse
       ? `${called} has been on hold since ${momentText(ctx.zone, now)}: a lab manager confirms the hold or lifts it, and an as-left check is asked for.`
       : `${called} was out of use already; an as-left check is asked for.`,
