@@ -323,6 +323,31 @@ describe("alerts that open and close by themselves", () => {
     expect(await openAlerts(bench)).toEqual([]);
   });
 
+  test("a check that waits for its review is not overdue, neither for the tick nor on Today; sent back, it is again", async () => {
+    const bench = await argonBench("Lapwing", 0.2, { firstDueOn: "2026-01-05" });
+    const said = async () => {
+      const { body: today } = await tam.client.get("/today").expect(200);
+      const item = today.items.find((one: { key: string }) => one.key === `due:${bench.currentConfigurationId}`);
+      const due = today.due.find((one: { label: string }) => one.label === "Lapwing");
+      const row = today.fleet.find((one: { name: string }) => one.name === "Lapwing");
+      return { item: item?.kind ?? null, note: due.note.replace(/ \d+ days?$/, ""), awaitsReview: row.awaitsReview };
+    };
+    expect(await said()).toEqual({ item: "overdue", note: "overdue", awaitsReview: false });
+    const check = await submit(
+      tam.client,
+      await measure(tam.client, bench.currentConfigurationId, { captures: argon(), sourceId: argonId }),
+    );
+    await openDueAlerts(server.services, labVisit());
+    expect(await openAlerts(bench)).toEqual([]);
+    expect(await said()).toEqual({ item: null, note: "awaits review", awaitsReview: true });
+    await lab.manager.client
+      .post(`/checks/${check.summary.id}/return`, { revision: check.revision, comment: "say which slit was in" })
+      .expect(200);
+    await openDueAlerts(server.services, labVisit());
+    expect((await openAlerts(bench)).map((alert) => alert.kind)).toEqual(["overdue"]);
+    expect(await said()).toEqual({ item: "overdue", note: "overdue", awaitsReview: false });
+  });
+
   test("an approved pass moves the due date on by the interval and closes what was overdue", async () => {
     const bench = await argonBench("Ruff", 0.2, { firstDueOn: "2026-01-05" });
     await openDueAlerts(server.services, labVisit());

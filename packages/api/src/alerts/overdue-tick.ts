@@ -1,5 +1,6 @@
 /** What is overdue as of now in one lab: alerts and, once a due date, a mail. Asking again changes nothing. */
-import { and, eq, isNotNull, isNull, lt, sql } from "drizzle-orm";
+import { and, eq, isNotNull, isNull, lt, not, sql } from "drizzle-orm";
+import { awaitsReview } from "../checks/list-checks.ts";
 import type { Standing } from "../contract/common.ts";
 import type { Database } from "../db/connection.ts";
 import { configurations, instruments, sources } from "../db/schema/index.ts";
@@ -50,6 +51,7 @@ async function openOverdue(tx: Tx, ctx: Context, work: TickWork, today: string):
         isNull(configurations.toOn),
         isNotNull(configurations.dueOn),
         sql`${configurations.dueOn} + ${configurations.graceDays} < ${today}::date`,
+        not(awaitsReview(sql`${configurations.labId}`, sql`${configurations.id}`)),
       ),
     )
     .orderBy(configurations.id);

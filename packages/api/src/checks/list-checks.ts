@@ -5,6 +5,13 @@ import type { StoredResult } from "../db/schema/analyses.ts";
 import type { Tx } from "../db/tenancy.ts";
 import { toInstant } from "../instruments/dates.ts";
 
+/** In a query on `configurations`: whether a check of the one named waits for its review. Then it is not overdue. */
+export const awaitsReview = (labId: SQL, configurationId: SQL): SQL => sql`exists (
+    select 1 from checks w
+    join lateral (select e.kind from check_events e where e.lab_id = w.lab_id and e.check_id = w.id and e.kind <> 'acknowledged'
+      order by e.sequence desc limit 1) moved on true
+    where w.lab_id = ${labId} and w.configuration_id = ${configurationId} and moved.kind = 'submitted')`;
+
 interface Row extends Record<string, unknown> {
   id: string;
   number: string;

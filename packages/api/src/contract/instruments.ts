@@ -113,6 +113,8 @@ export const fleetRow = z.object({
   worst: z.object({ wavelengthNm: z.number(), species: z.string(), errorNm: z.number(), expandedUncNm: z.number(), toleranceNm: z.number() }).nullable(),
   strip: z.array(stripLine), checkedAt: instant.nullable(), lastCheckId: id.nullable(), lastCheckNumber: z.string().nullable(),
   dueOn: date.nullable(), dueDays: z.number().int().nullable(), asLeftAsked: z.boolean(), assignedTo: personRef.nullable(),
+  /** A check of the configuration whose date this is waits for its review: it is not overdue. */
+  awaitsReview: z.boolean(),
   /** The present ones, the worst first. */
   configurations: z.array(configurationState),
 });

@@ -4,6 +4,7 @@ import type { InstrumentKind, ShownState, Standing, StripLine } from "../contrac
 import type { ConfigurationState, FleetRow } from "../contract/instruments.ts";
 import type { StoredResult } from "../db/schema/analyses.ts";
 import type { Tx } from "../db/tenancy.ts";
+import { awaitsReview as reviewAwaited } from "../checks/list-checks.ts";
 import { daysBetween, toInstant } from "./dates.ts";
 import { shownStateOf } from "./states.ts";
 
@@ -22,6 +23,7 @@ interface Row extends Record<string, unknown> {
   laser_nm: number | null;
   due_on: string | null;
   as_left_asked: boolean;
+  awaits_review: boolean;
   assigned_id: string | null;
   assigned_name: string | null;
   standing: Standing;
@@ -58,7 +60,8 @@ export async function listFleetConfigurations(
   const { rows } = await tx.execute<Row>(sql`
     select i.id, i.name, i.kind, i.place, i.owner_id, owner.name as owner_name, i.retired_at,
       c.id as configuration_id, c.name as configuration_name, c.range_first_nm, c.range_last_nm, (c.optics ->> 'laserNm')::float8 as laser_nm,
-      c.due_on, c.as_left_asked_by_check_id is not null as as_left_asked, c.assigned_to_id as assigned_id, assigned.name as assigned_name,
+      c.due_on, c.as_left_asked_by_check_id is not null as as_left_asked,
+      ${reviewAwaited(sql`c.lab_id`, sql`c.id`)} as awaits_review, c.assigned_to_id as assigned_id, assigned.name as assigned_name,
       st.standing, st.restriction,
       last.check_id, last.number as check_number, last.measured_at, last.result, last.strip
     from instruments i
@@ -94,17 +97,16 @@ export function fleetOf(rows: readonly FleetConfiguration[]): FleetRow[] {
 }
 
 function rowOf(present: FleetConfiguration[]): FleetRow {
-  const due = present
+  // What waits for its review was checked: another configuration's date comes before it.
+  const [due] = present
     .filter((one) => one.dueOn !== null)
-    .reduce<FleetConfiguration | null>(
-      (first, one) => (first === null || one.dueOn! < first.dueOn! ? one : first),
-      null,
-    );
-  const { dueOn, dueDays, assignedTo } = due ?? present[0]!;
+    .sort((a, b) => Number(a.awaitsReview) - Number(b.awaitsReview) || a.dueDays! - b.dueDays!);
+  const { dueOn, dueDays, awaitsReview, assignedTo } = due ?? present[0]!;
   return {
     ...present[0]!,
     dueOn,
     dueDays,
+    awaitsReview,
     assignedTo,
     asLeftAsked: present.some((one) => one.asLeftAsked),
     configurations: present.map(stateIn),
@@ -151,6 +153,7 @@ function present(row: Row, today: string): FleetConfiguration {
     dueOn: row.due_on,
     dueDays: row.due_on === null ? null : daysBetween(today, row.due_on),
     asLeftAsked: row.as_left_asked,
+    awaitsReview: row.awaits_review,
     assignedTo: row.assigned_id === null ? null : { id: row.assigned_id, name: row.assigned_name ?? "" },
   };
 }

@@ -18,14 +18,15 @@ describe("the day in one sentence", () => {
 });
 
 test("the ruler of days: an as-left check goes before a first one, and both before the date", () => {
-  const checked = { asLeftAsked: false, checkedAt: "2027-01-04T10:00:00Z", dueDays: 6 };
+  const checked = { asLeftAsked: false, awaitsReview: false, checkedAt: "2027-01-04T10:00:00Z", dueDays: 6 };
   expect([
     rulerNote(checked),
     rulerNote({ ...checked, dueDays: -1 }),
     rulerNote({ ...checked, asLeftAsked: true, dueDays: -1 }),
+    rulerNote({ ...checked, awaitsReview: true, dueDays: -1 }),
     rulerNote({ ...checked, checkedAt: null }),
     rulerNote({ ...checked, checkedAt: null, dueDays: -2 }),
-  ]).toEqual(["in 6 days", "overdue 1 day", "as-left check", "first check", "overdue 2 days"]);
+  ]).toEqual(["in 6 days", "overdue 1 day", "as-left check", "awaits review", "first check", "overdue 2 days"]);
 });
 
 describe("dates are cut in the lab's zone", () => {

@@ -40,9 +40,18 @@ export function todaySentence(items: readonly Pick<TodayReply["items"][number], 
   return `${text[0]!.toUpperCase()}${text.slice(1)} ${single ? "waits" : "wait"} for you.`;
 }
 
-/** `in 6 days`, `overdue 1 day`, `first check`. As in the fleet, an as-left check that was asked for goes before any date. */
-export function rulerNote(row: { asLeftAsked: boolean; checkedAt: string | null; dueDays: number }): string {
+/**
+ * `in 6 days`, `overdue 1 day`, `first check`. As in the fleet, an as-left check that was asked for goes before any date,
+ * and so does a check that waits for its review.
+ */
+export function rulerNote(row: {
+  asLeftAsked: boolean;
+  awaitsReview: boolean;
+  checkedAt: string | null;
+  dueDays: number;
+}): string {
   if (row.asLeftAsked) return "as-left check";
+  if (row.awaitsReview) return "awaits review";
   if (row.checkedAt === null && row.dueDays >= 0) return "first check";
   return dueText(row.dueDays).replace(/^due (in )/, "$1");
 }

@@ -228,7 +228,10 @@ function dueItems(facts: TodayFacts): TodayItem[] {
   const [manager, technician] = [hasRole(ctx, "manager"), hasRole(ctx, "technician")];
   if (!manager && !technician) return [];
   return facts.configurations
-    .filter((row) => row.asLeftAsked || (row.dueDays !== null && row.dueDays < (technician ? soonDays + 1 : 0)))
+    .filter(
+      (row) =>
+        row.asLeftAsked || (!row.awaitsReview && row.dueDays !== null && row.dueDays < (technician ? soonDays + 1 : 0)),
+    )
     .filter((row) => technician || !row.asLeftAsked)
     .filter((row) => row.assignedTo === null || manager || row.assignedTo.id === ctx.personId)
     .sort((a, b) => Number(b.asLeftAsked) - Number(a.asLeftAsked) || (a.dueDays ?? 0) - (b.dueDays ?? 0))

@@ -10,6 +10,9 @@ import { useFleet } from "./queries.ts";
 
 const filters = ["kind", "state", "owner", "due", "retired"] as const;
 
+/** A check that waits for its review was made: its date says nothing until that is decided. */
+const isOverdue = (row: FleetRow): boolean => !row.awaitsReview && (row.dueDays ?? 0) < 0;
+
 /** `Nine instruments: one on hold, one near its limit, one overdue.` */
 export function fleetSentence(rows: readonly FleetRow[]): string {
   const inUse = rows.filter((row) => row.retiredAt === null);
@@ -22,7 +25,7 @@ export function fleetSentence(rows: readonly FleetRow[]): string {
       [count((row) => row.state === "out-of-service" || row.state === "quarantined"), "out of service"],
       [count((row) => row.state === "inconclusive"), "inconclusive"],
       [count((row) => row.state === "near-limit"), "near the limit"],
-      [count((row) => (row.dueDays ?? 0) < 0), "overdue"],
+      [count(isOverdue), "overdue"],
     ] as const
   ).filter(([number]) => number > 0);
   const head = `${sentenceCase(countWord(inUse.length))} ${inUse.length === 1 ? "instrument" : "instruments"}`;
@@ -41,7 +44,7 @@ export function InstrumentsPage() {
       (filter.kind === undefined || row.kind === filter.kind) &&
       (filter.state === undefined || row.state === filter.state) &&
       (filter.owner === undefined || row.owner.id === filter.owner) &&
-      (filter.due !== "overdue" || (row.dueDays ?? 0) < 0) &&
+      (filter.due !== "overdue" || isOverdue(row)) &&
       (filter.retired === "shown" || row.retiredAt === null),
   );
   const owners = new Map(rows.map((row) => [row.owner.id, row.owner.name]));

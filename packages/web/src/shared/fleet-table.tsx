@@ -34,10 +34,11 @@ export function byToleranceUsed(a: FleetRow, b: FleetRow): number {
   return (b.toleranceUsed ?? -1) - (a.toleranceUsed ?? -1) || (a.name < b.name ? -1 : 1);
 }
 
-/** What is due, in words: an as-left check that was asked for goes before any date. */
+/** What is due, in words: an as-left check that was asked for goes before any date, and so does a review that is awaited. */
 function DueCell({ row, todayOn }: { row: FleetRow; todayOn: string }) {
   if (row.retiredAt !== null) return <span className="text-quiet">retired</span>;
   if (row.asLeftAsked) return <>as-left check</>;
+  if (row.awaitsReview) return <>awaits review</>;
   if (row.dueOn === null || row.dueDays === null) return <span className="text-quiet">no date</span>;
   if (row.dueDays > 10) return <>{formatShortDate(row.dueOn, todayOn)}</>;
   return <Due on={row.dueOn} days={row.dueDays} />;

@@ -21,8 +21,9 @@ import { useToday } from "./queries.ts";
 
 /** One sentence about how the fleet stands to its dates. */
 function dueNote(due: TodayReply["due"]): string {
-  // An as-left check that was asked for is said as that, whatever date stood before.
-  const overdue = due.filter((item) => item.days < 0 && item.note !== "as-left check").length;
+  // An as-left check that was asked for, or a check that waits for its review, is said as that, whatever date stood before.
+  const isDated = ({ note }: { note: string }) => note !== "as-left check" && note !== "awaits review";
+  const overdue = due.filter((item) => item.days < 0 && isDated(item)).length;
   const span = "The weeks ahead.";
   if (overdue === 0) return `${span} Nothing is overdue.`;
   return `${span} ${sentenceCase(countWord(overdue))} ${overdue === 1 ? "is" : "are"} overdue.`;
