@@ -3,7 +3,7 @@ import type { Check } from "../contract/checks.ts";
 import type { AxisEntry } from "../contract/instruments.ts";
 import type { Database } from "../db/connection.ts";
 import { hasRole, inLab, recordNow, type Context, type Tx } from "../db/tenancy.ts";
-import { findAxisAt, findConfiguration } from "../instruments/queries.ts";
+import { findAxisAt, findConfiguration, type ConfigurationRow } from "../instruments/queries.ts";
 import { findOptionalSubmission, type AnalysisRow, type CheckRecord } from "../checks/queries.ts";
 import { findLastAxisNumber, findMeasuredSince, listAxisRows, type AxisListRow } from "./queries.ts";
 
@@ -41,11 +41,18 @@ const setBy = ({ axis, setByName }: AxisListRow): AxisEntry["by"] =>
 export async function readFittedAxis(
   tx: Tx,
   ctx: Context,
-  check: CheckRecord,
-  state: Check["state"],
-  analysis: AnalysisRow | null,
+  {
+    check,
+    configuration,
+    state,
+    analysis,
+  }: {
+    check: CheckRecord;
+    configuration: ConfigurationRow;
+    state: Check["state"];
+    analysis: AnalysisRow | null;
+  },
 ): Promise<Check["fittedAxis"]> {
-  const configuration = await findConfiguration(tx, check.configurationId);
   const isSigned = state === "submitted" || state === "approved";
   const isFitted = analysis !== null && analysis.analysis.dispersion !== null;
   if (!isSigned || !isFitted || configuration.axisKind === "wavelength") return null;

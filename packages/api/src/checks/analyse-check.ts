@@ -210,7 +210,7 @@ async function keep(
   await addContributor(tx, ctx, check.id, "analysed");
   if ((await findState(tx, check.id)) === "set-aside")
     await addEvent(tx, ctx, { checkId: check.id, kind: "resumed", revision: draft.revision });
-  const reply = await readCheck(tx, ctx, check.id);
+  const reply = await readCheck(tx, ctx, check);
   await writeTrail(tx, ctx, [
     {
       action: "analysis.made",

@@ -78,7 +78,7 @@ export function saveDraft(db: Database, ctx: Context, checkId: string, input: Dr
       await addContributor(tx, ctx, checkId, "edited");
       if (inputs.leftOut.length > draft.inputs.leftOut.length) await addContributor(tx, ctx, checkId, "left-out");
     }
-    return readCheck(tx, ctx, checkId);
+    return readCheck(tx, ctx, check);
   });
 }
 
@@ -142,7 +142,7 @@ export function newAttempt(
     await addContributor(tx, ctx, checkId, "edited");
     if ((await findState(tx, checkId)) === "set-aside")
       await addEvent(tx, ctx, { checkId, kind: "resumed", revision: draft.revision });
-    const reply = await readCheck(tx, ctx, checkId);
+    const reply = await readCheck(tx, ctx, check);
     await writeTrail(tx, ctx, {
       action: "attempt.begun",
       about: aboutCheck(check),
@@ -187,7 +187,7 @@ export async function setAsideLocked(
   const last = await findOptionalAnalysis(tx, { checkId: check.id });
   const hold =
     last?.verdict === "fail" ? await placeHold(tx, ctx, work, { check, analysis: last, cause: "set-aside" }) : [];
-  const reply = await readCheck(tx, ctx, check.id);
+  const reply = await readCheck(tx, ctx, check);
   await writeTrail(tx, ctx, {
     action: "check.set-aside",
     about: aboutCheck(check),

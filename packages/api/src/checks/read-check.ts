@@ -13,6 +13,7 @@ import {
   findLatestTolerance,
   findStanding,
   findToleranceAt,
+  type ConfigurationRow,
 } from "../instruments/queries.ts";
 import { findOptionalReviewOf } from "../impact/queries.ts";
 import { findProcedure } from "../procedures/queries.ts";
@@ -36,14 +37,16 @@ import {
   type DraftRow,
 } from "./queries.ts";
 
-/** @throws problem "not-found" */
-export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<Check> {
-  const record = await findCheck(tx, checkId);
+/** @param of the check, or its id where nobody has read it yet @throws problem "not-found" */
+export async function readCheck(tx: Tx, ctx: Context, of: CheckRecord | string): Promise<Check> {
+  const record = typeof of === "string" ? await findCheck(tx, of) : of;
+  const checkId = record.id;
   const [row] = await listCheckRows(tx, { checkId, limit: 1 });
   if (row === undefined) throw notFound("This check");
   const { summary } = row;
   const draft = await findDraft(tx, checkId);
   const procedure = await findProcedure(tx, record.procedureId);
+  const configuration = await findConfiguration(tx, record.configurationId);
   const analysis = await findShownAnalysis(tx, record, draft);
   const versions = await listAnalysisVersions(tx, checkId);
   const presentVersion = (version: (typeof versions)[number]): Check["analyses"][number] => ({
@@ -74,7 +77,7 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
     },
     draft: { ...draft.inputs, version: draft.version },
     ...(await readInForce(tx, record, draft, receipts)),
-    fittedAxis: await readFittedAxis(tx, ctx, record, summary.state, analysis),
+    fittedAxis: await readFittedAxis(tx, ctx, { check: record, configuration, state: summary.state, analysis }),
     sources: await readSources(tx, ctx, draft),
     attempts: await readAttempts(tx, record, draft, versions, receipts),
     currentAttempt: draft.currentAttempt,
@@ -105,7 +108,7 @@ export async function readCheck(tx: Tx, ctx: Context, checkId: string): Promise<
     impactReview: review,
     report:
       report === null ? null : { number: report.number, sha256: report.sha256, madeAt: report.madeAt.toISOString() },
-    may: await mayNow(tx, ctx, record, draft, summary.state, analysis),
+    may: await mayNow(tx, ctx, { check: record, configuration, draft, state: summary.state, analysis }),
   };
 }
 
@@ -194,12 +197,20 @@ async function readHold(tx: Tx, check: CheckRecord): Promise<Check["hold"]> {
 async function mayNow(
   tx: Tx,
   ctx: Context,
-  check: CheckRecord,
-  draft: DraftRow,
-  state: Check["state"],
-  analysis: AnalysisRow | null,
+  {
+    check,
+    configuration,
+    draft,
+    state,
+    analysis,
+  }: {
+    check: CheckRecord;
+    configuration: ConfigurationRow;
+    draft: DraftRow;
+    state: Check["state"];
+    analysis: AnalysisRow | null;
+  },
 ): Promise<Check["may"]> {
-  const configuration = await findConfiguration(tx, check.configurationId);
   const worker = hasRole(ctx, "technician") || hasRole(ctx, "manager");
   const edit = worker && draft.open && configuration.toOn === null;
   const refusal = state === "submitted" ? await approveRefusal(tx, ctx, check.id) : null;

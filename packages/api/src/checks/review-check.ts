@@ -61,7 +61,7 @@ export function returnCheck(
         text: `${ctx.personName} sent ${check.number} back:\n\n${input.comment}\n\nIts captures and results are kept; change what is asked for, analyse and submit again.\n\n${work.config.publicUrl}/checks/${checkId}\n`,
         causeKey: `returned:${checkId}:${submission.revision}`,
       });
-      const reply = await readCheck(tx, ctx, checkId);
+      const reply = await readCheck(tx, ctx, check);
       await writeTrail(tx, ctx, {
         action: "check.returned",
         about: aboutCheck(check),
@@ -223,7 +223,7 @@ export function acknowledgeCheck(
       revision: submission.revision,
       comment: input.note,
     });
-    const reply = await readCheck(tx, ctx, checkId);
+    const reply = await readCheck(tx, ctx, check);
     await writeTrail(tx, ctx, {
       action: "check.acknowledged",
       about: aboutCheck(check),

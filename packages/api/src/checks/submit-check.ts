@@ -88,7 +88,7 @@ export function submitCheck(
               result: analysis.result,
               reasons: analysis.analysis.verdict?.reasons ?? [],
             });
-      const reply = await readCheck(tx, ctx, checkId);
+      const reply = await readCheck(tx, ctx, check);
       await writeTrail(
         tx,
         ctx,
