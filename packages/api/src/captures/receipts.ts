@@ -8,9 +8,7 @@ import { findFirstSeen } from "./queries.ts";
 
 /** Every capture of a check, in the order they came. */
 export async function listReceipts(tx: Tx, checkId: string): Promise<CaptureReceipt[]> {
-  const rows = await listCaptures(tx, checkId);
-  if (rows.length === 0) return [];
-  const numbers = await trailNumbers(tx, checkId);
+  const [rows, numbers] = await Promise.all([listCaptures(tx, checkId), trailNumbers(tx, checkId)]);
   const firstSeen = await findFirstSeen(tx, [
     ...new Set(rows.filter((row) => row.capture.seenBeforeCaptureId !== null).map((row) => row.capture.sha256)),
   ]);

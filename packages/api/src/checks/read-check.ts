@@ -41,14 +41,48 @@ import {
 export async function readCheck(tx: Tx, ctx: Context, of: CheckRecord | string): Promise<Check> {
   const record = typeof of === "string" ? await findCheck(tx, of) : of;
   const checkId = record.id;
-  const [row] = await listCheckRows(tx, { checkId, limit: 1 });
+  const [
+    draft,
+    [row],
+    procedure,
+    configuration,
+    versions,
+    receipts,
+    attempts,
+    events,
+    signatures,
+    contributors,
+    followedBy,
+    hold,
+    follows,
+    review,
+    report,
+  ] = await Promise.all([
+    findDraft(tx, checkId),
+    listCheckRows(tx, { checkId, limit: 1 }),
+    findProcedure(tx, record.procedureId),
+    findConfiguration(tx, record.configurationId),
+    listAnalysisVersions(tx, checkId),
+    listReceipts(tx, checkId),
+    listAttempts(tx, checkId),
+    listEvents(tx, checkId),
+    listSignatures(tx, checkId),
+    listContributors(tx, checkId),
+    listFollowers(tx, checkId),
+    readHold(tx, record),
+    record.followsCheckId === null ? null : findCheck(tx, record.followsCheckId),
+    findOptionalReviewOf(tx, checkId),
+    findOptionalReportHead(tx, checkId),
+  ]);
   if (row === undefined) throw notFound("This check");
   const { summary } = row;
-  const draft = await findDraft(tx, checkId);
-  const procedure = await findProcedure(tx, record.procedureId);
-  const configuration = await findConfiguration(tx, record.configurationId);
-  const analysis = await findShownAnalysis(tx, record, draft);
-  const versions = await listAnalysisVersions(tx, checkId);
+  const [analysis, inForce, namedSources] = await Promise.all([
+    findShownAnalysis(tx, record, draft),
+    readInForce(tx, record, draft, receipts),
+    readSources(tx, ctx, draft),
+  ]);
+  const shown = { check: record, configuration, state: summary.state, analysis };
+  const [fittedAxis, may] = await Promise.all([readFittedAxis(tx, ctx, shown), mayNow(tx, ctx, { ...shown, draft })]);
   const presentVersion = (version: (typeof versions)[number]): Check["analyses"][number] => ({
     version: version.version,
     attempt: version.attempt,
@@ -59,10 +93,6 @@ export async function readCheck(tx: Tx, ctx: Context, of: CheckRecord | string):
     changed: version.changed,
   });
   const shownVersion = versions.find((version) => version.version === analysis?.version);
-  const follows = record.followsCheckId === null ? null : await findCheck(tx, record.followsCheckId);
-  const review = await findOptionalReviewOf(tx, checkId);
-  const report = await findOptionalReportHead(tx, checkId);
-  const receipts = await listReceipts(tx, checkId);
   return {
     summary,
     state: summary.state,
@@ -76,15 +106,15 @@ export async function readCheck(tx: Tx, ctx: Context, of: CheckRecord | string):
       repeats: procedure.repeats,
     },
     draft: { ...draft.inputs, version: draft.version },
-    ...(await readInForce(tx, record, draft, receipts)),
-    fittedAxis: await readFittedAxis(tx, ctx, { check: record, configuration, state: summary.state, analysis }),
-    sources: await readSources(tx, ctx, draft),
-    attempts: await readAttempts(tx, record, draft, versions, receipts),
+    ...inForce,
+    fittedAxis,
+    sources: namedSources,
+    attempts: presentAttempts(attempts, draft, versions, receipts),
     currentAttempt: draft.currentAttempt,
     analysis: analysis?.analysis ?? null,
     analysisVersion: shownVersion === undefined ? null : presentVersion(shownVersion),
     analyses: versions.map(presentVersion),
-    events: (await listEvents(tx, checkId)).map(({ event, name }) => ({
+    events: events.map(({ event, name }) => ({
       id: event.id,
       kind: event.kind as Check["events"][number]["kind"],
       at: event.at.toISOString(),
@@ -92,7 +122,7 @@ export async function readCheck(tx: Tx, ctx: Context, of: CheckRecord | string):
       comment: event.comment,
       revision: event.revision,
     })),
-    signatures: (await listSignatures(tx, checkId)).map((signature) => ({
+    signatures: signatures.map((signature) => ({
       id: signature.id,
       printedName: signature.printedName,
       role: signature.role,
@@ -101,14 +131,14 @@ export async function readCheck(tx: Tx, ctx: Context, of: CheckRecord | string):
       zone: signature.zone,
       contentSha256: signature.contentSha256,
     })),
-    contributors: await listContributors(tx, checkId),
+    contributors,
     follows: follows === null ? null : { id: follows.id, number: follows.number },
-    followedBy: await listFollowers(tx, checkId),
-    hold: await readHold(tx, record),
+    followedBy,
+    hold,
     impactReview: review,
     report:
       report === null ? null : { number: report.number, sha256: report.sha256, madeAt: report.madeAt.toISOString() },
-    may: await mayNow(tx, ctx, { check: record, configuration, draft, state: summary.state, analysis }),
+    may,
   };
 }
 
@@ -130,9 +160,11 @@ async function readInForce(
   const firstOf = (some: readonly CaptureReceipt[]) => (some[0] === undefined ? now : new Date(some[0].receivedAt));
   const firstAt = firstOf(receipts);
   const attemptAt = firstOf(receipts.filter(({ attempt }) => attempt === draft.currentAttempt));
-  const latest = await findLatestTolerance(tx, check.configurationId);
+  const [latest, axis] = await Promise.all([
+    findLatestTolerance(tx, check.configurationId),
+    findAxisAt(tx, check.configurationId, attemptAt),
+  ]);
   const tolerance = latest.inForceFrom <= firstAt ? latest : await findToleranceAt(tx, check.configurationId, firstAt);
-  const axis = await findAxisAt(tx, check.configurationId, attemptAt);
   return {
     tolerance: {
       version: tolerance.version,
@@ -159,14 +191,12 @@ async function readSources(tx: Tx, ctx: Context, draft: DraftRow): Promise<Check
   });
 }
 
-async function readAttempts(
-  tx: Tx,
-  check: CheckRecord,
+function presentAttempts(
+  attempts: Awaited<ReturnType<typeof listAttempts>>,
   draft: DraftRow,
   versions: Awaited<ReturnType<typeof listAnalysisVersions>>,
   receipts: readonly CaptureReceipt[],
-): Promise<Check["attempts"]> {
-  const attempts = await listAttempts(tx, check.id);
+): Check["attempts"] {
   return attempts.map((attempt) => {
     const made = versions.filter((version) => version.attempt === attempt.number);
     const last = made.at(-1);
