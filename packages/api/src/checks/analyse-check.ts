@@ -107,29 +107,35 @@ async function prepare(tx: Tx, ctx: Context, checkId: string, input: { version: 
       kept: "Every file is stored as it came, and stays in the list.",
     });
   }
-  const configuration = await findConfiguration(tx, check.configurationId);
-  const { instrument } = await findInstrument(tx, check.instrumentId);
-  const lab = await findLab(tx, ctx.labId);
-  const procedure = await findProcedure(tx, check.procedureId);
-  const firstAt = (await findFirstCaptureAt(tx, checkId))!;
-  const attemptAt = (await findFirstCaptureAt(tx, checkId, draft.currentAttempt))!;
-  const tolerance = await findToleranceAt(tx, configuration.id, firstAt);
-  const axis = await findAxisAt(tx, configuration.id, attemptAt);
+  const [configuration, { instrument }, lab, procedure, firstAt, attemptAt, namedSources, bytes] = await Promise.all([
+    findConfiguration(tx, check.configurationId),
+    findInstrument(tx, check.instrumentId),
+    findLab(tx, ctx.labId),
+    findProcedure(tx, check.procedureId),
+    findFirstCaptureAt(tx, checkId),
+    findFirstCaptureAt(tx, checkId, draft.currentAttempt),
+    listNamedSources(tx, draft.inputs),
+    loadBytes(
+      tx,
+      readable.map((row) => row.capture.sha256),
+    ),
+  ]);
+  const [tolerance, axis, history] = await Promise.all([
+    findToleranceAt(tx, configuration.id, firstAt!),
+    findAxisAt(tx, configuration.id, attemptAt!),
+    findReproducibility(tx, ctx, configuration.id, checkId),
+  ]);
   const setup = buildSetup({
     configuration,
     procedure,
-    sources: await listNamedSources(tx, draft.inputs),
+    sources: namedSources,
     draft: draft.inputs,
     tolerance: tolerance.segments,
     axis,
     altitudeM: instrument.altitudeM ?? lab.altitudeM,
-    history: await findReproducibility(tx, ctx, configuration.id, checkId),
+    history,
     reading: lamp.reading!,
   });
-  const bytes = await loadBytes(
-    tx,
-    readable.map((row) => row.capture.sha256),
-  );
   return {
     check,
     draft,

@@ -91,25 +91,48 @@ export async function gatherReport(tx: Tx, ctx: Context, checkId: string, number
       `${check.number} has no result yet, so there is nothing to print. Analyse its captures first.`,
     );
   const inputs = submission?.inputs ?? draft.inputs;
-  const { instrument, ownerName } = await findInstrument(tx, check.instrumentId);
-  const configuration = await findConfiguration(tx, check.configurationId);
-  const receipts = await listReceipts(tx, checkId);
+  const [
+    { instrument, ownerName },
+    configuration,
+    receipts,
+    versions,
+    events,
+    madeAt,
+    lab,
+    procedure,
+    attempts,
+    signatures,
+    head,
+  ] = await Promise.all([
+    findInstrument(tx, check.instrumentId),
+    findConfiguration(tx, check.configurationId),
+    listReceipts(tx, checkId),
+    listAnalysisVersions(tx, checkId),
+    listEvents(tx, checkId),
+    recordNow(tx),
+    findLab(tx, ctx.labId),
+    findProcedure(tx, check.procedureId),
+    listAttempts(tx, checkId),
+    listSignatures(tx, checkId),
+    findOptionalLastEntry(tx),
+  ]);
   const measuredAt = submission?.measuredAt ?? (receipts[0] === undefined ? null : new Date(receipts[0].receivedAt));
-  const firstAt = receipts[0] === undefined ? await recordNow(tx) : new Date(receipts[0].receivedAt);
-  const tolerance = await findToleranceAt(tx, configuration.id, firstAt);
-  const axis = await findAxisAt(tx, configuration.id, measuredAt ?? firstAt);
-  const versions = await listAnalysisVersions(tx, checkId);
-  const events = await listEvents(tx, checkId);
+  const firstAt = receipts[0] === undefined ? madeAt : new Date(receipts[0].receivedAt);
+  const [tolerance, axis, namedSources] = await Promise.all([
+    findToleranceAt(tx, configuration.id, firstAt),
+    findAxisAt(tx, configuration.id, measuredAt ?? firstAt),
+    listReportSources(tx, inputs, dateIn(ctx.zone, measuredAt ?? firstAt)),
+  ]);
   return {
     number,
-    madeAt: await recordNow(tx),
-    lab: await findLab(tx, ctx.labId),
+    madeAt,
+    lab,
     check,
     revision: submission?.revision ?? draft.revision,
     instrument,
     ownerName,
     configuration,
-    procedure: await findProcedure(tx, check.procedureId),
+    procedure,
     inputs,
     analysis: analysis.analysis,
     analysisSha256: analysis.sha256,
@@ -118,18 +141,18 @@ export async function gatherReport(tx: Tx, ctx: Context, checkId: string, number
     tolerance,
     toleranceChanges: await listToleranceChanges(tx, configuration.id, tolerance.version, firstAt),
     axis: analysis.axisNumber === null || axis === null ? null : { number: axis.number, inForceFrom: axis.inForceFrom },
-    sources: await listReportSources(tx, inputs, dateIn(ctx.zone, measuredAt ?? firstAt)),
+    sources: namedSources,
     receipts,
-    attempts: (await listAttempts(tx, checkId)).map((attempt) => ({ number: attempt.number, reason: attempt.reason })),
+    attempts: attempts.map((attempt) => ({ number: attempt.number, reason: attempt.reason })),
     changes: versions.map(({ version, attempt, changed }) => ({ version, attempt, changed })),
     comments: events.flatMap(({ event, name }) =>
       event.comment === null
         ? []
         : [{ kind: event.kind, byName: name ?? "Wavekeep", at: event.at, comment: event.comment }],
     ),
-    signatures: await listSignatures(tx, checkId),
+    signatures,
     contentSha256: submission?.contentSha256 ?? null,
-    head: await findOptionalLastEntry(tx),
+    head,
   };
 }
 
