@@ -57,12 +57,10 @@ function demoPeople(config: Config): Me["demoPeople"] {
     // No demo lab was seeded in this data folder.
     return [];
   }
-  return signIns
-    .parse(JSON.parse(text))
-    .map(({ email, password, who, name, role }) => ({
-      email,
-      password,
-      name: name ?? who ?? email,
-      role: role ?? (name === undefined ? "" : (who ?? "")),
-    }));
+  return signIns.parse(JSON.parse(text)).map(({ email, password, who, name, role }) => ({
+    email,
+    password,
+    name: name ?? who ?? email,
+    role: role ?? (name === undefined ? "" : (who ?? "")),
+  }));
 }

@@ -6,8 +6,15 @@ export const instant = z.iso.datetime({ offset: true });
 export const date = z.iso.date();
 export const name = z.string().trim().min(1, "Write a name.").max(120, "At most 120 characters.");
 export const note = z.string().trim().max(4000, "At most 4 000 characters.");
-export const reason = z.string().trim().min(3, "Write a reason, at least a few words.").max(4000, "At most 4 000 characters.");
-export const email = z.email("This is not an e-mail address.").max(254).transform((text) => text.toLowerCase());
+export const reason = z
+  .string()
+  .trim()
+  .min(3, "Write a reason, at least a few words.")
+  .max(4000, "At most 4 000 characters.");
+export const email = z
+  .email("This is not an e-mail address.")
+  .max(254)
+  .transform((text) => text.toLowerCase());
 /** Version of a row that two people may edit: sent back with a change, refused as stale when it has moved on. */
 export const version = z.number().int().nonnegative();
 
@@ -32,7 +39,10 @@ export type ProblemDocument = z.infer<typeof problemDocument>;
 
 /** A keyset page: `next` goes back as `after`. */
 export const page = <T extends z.ZodType>(item: T) => z.object({ items: z.array(item), next: z.string().nullable() });
-export const pageQuery = z.object({ after: z.string().max(200).optional(), limit: z.coerce.number().int().min(1).max(200).default(50) });
+export const pageQuery = z.object({
+  after: z.string().max(200).optional(),
+  limit: z.coerce.number().int().min(1).max(200).default(50),
+});
 
 export const instrumentKind = z.enum(["array", "scanning", "spectrophotometer", "raman"]);
 export type InstrumentKind = z.infer<typeof instrumentKind>;
@@ -41,7 +51,16 @@ export type Standing = z.infer<typeof standing>;
 export const verdict = z.enum(["pass", "inconclusive", "fail"]);
 /** State shown for a configuration: the shape and word of design.md. */
 export const shownState = z.enum([
-  "in-tolerance", "near-limit", "out-of-tolerance", "inconclusive", "not-judged", "on-hold", "restricted", "out-of-service", "quarantined", "retired",
+  "in-tolerance",
+  "near-limit",
+  "out-of-tolerance",
+  "inconclusive",
+  "not-judged",
+  "on-hold",
+  "restricted",
+  "out-of-service",
+  "quarantined",
+  "retired",
 ]);
 export type ShownState = z.infer<typeof shownState>;
 export const condition = z.enum(["as-found", "as-left"]);
@@ -70,22 +89,43 @@ export type StripLine = z.infer<typeof stripLine>;
 export const checkState = z.enum(["begun", "set-aside", "submitted", "returned", "approved", "void"]);
 export type CheckState = z.infer<typeof checkState>;
 export const checkSummary = z.object({
-  id, number: z.string(),
-  instrumentId: id, instrumentName: z.string(), configurationId: id, configurationName: z.string().nullable(),
-  condition, state: checkState,
-  begunAt: instant, begunBy: personRef,
-  submittedAt: instant.nullable(), approvedAt: instant.nullable(), approvedBy: personRef.nullable(),
+  id,
+  number: z.string(),
+  instrumentId: id,
+  instrumentName: z.string(),
+  configurationId: id,
+  configurationName: z.string().nullable(),
+  condition,
+  state: checkState,
+  begunAt: instant,
+  begunBy: personRef,
+  submittedAt: instant.nullable(),
+  approvedAt: instant.nullable(),
+  approvedBy: personRef.nullable(),
   attemptCount: z.number().int(),
   /** Of the submitted analysis, else of the draft's last one; null before any. */
-  result: z.object({
-    outcome: z.enum(["identified", "ambiguous", "unidentified", "refused"]),
-    verdict: verdict.nullable(), nearLimit: z.boolean(),
-    toleranceUsed: z.number().nullable(),
-    /** Share of the tolerance that the worst line's guard band takes. */
-    guardShare: z.number().nullable(),
-    judgedCount: z.number().int(), lineCount: z.number().int(), leftOutCount: z.number().int(),
-    worst: z.object({ wavelengthNm: z.number(), species: z.string(), errorNm: z.number(), expandedUncNm: z.number(), toleranceNm: z.number() }).nullable(),
-    withEveryLine: z.object({ verdict, nearLimit: z.boolean(), toleranceUsed: z.number().nullable() }).nullable(),
-  }).nullable(),
+  result: z
+    .object({
+      outcome: z.enum(["identified", "ambiguous", "unidentified", "refused"]),
+      verdict: verdict.nullable(),
+      nearLimit: z.boolean(),
+      toleranceUsed: z.number().nullable(),
+      /** Share of the tolerance that the worst line's guard band takes. */
+      guardShare: z.number().nullable(),
+      judgedCount: z.number().int(),
+      lineCount: z.number().int(),
+      leftOutCount: z.number().int(),
+      worst: z
+        .object({
+          wavelengthNm: z.number(),
+          species: z.string(),
+          errorNm: z.number(),
+          expandedUncNm: z.number(),
+          toleranceNm: z.number(),
+        })
+        .nullable(),
+      withEveryLine: z.object({ verdict, nearLimit: z.boolean(), toleranceUsed: z.number().nullable() }).nullable(),
+    })
+    .nullable(),
 });
 export type CheckSummary = z.infer<typeof checkSummary>;

@@ -16,7 +16,9 @@ export const changeMeInput = z.object({ name });
 /** Who is signed in, where, and what they may do. `person` is null before sign-in. */
 export const me = z.object({
   person: z.object({ id, name: z.string(), email: z.string(), hasPin: z.boolean() }).nullable(),
-  lab: z.object({ id, name: z.string(), zone: z.string(), isDemo: z.boolean(), altitudeM: z.number().nullable() }).nullable(),
+  lab: z
+    .object({ id, name: z.string(), zone: z.string(), isDemo: z.boolean(), altitudeM: z.number().nullable() })
+    .nullable(),
   roles: z.array(role),
   isApprover: z.boolean(),
   /** Instruments this person owns or stands in for; owning gives rights that no role gives. */
@@ -34,31 +36,76 @@ export const me = z.object({
 export type Me = z.infer<typeof me>;
 
 export const person = z.object({
-  id, name: z.string(), email: z.string(), roles: z.array(role), isApprover: z.boolean(),
+  id,
+  name: z.string(),
+  email: z.string(),
+  roles: z.array(role),
+  isApprover: z.boolean(),
   owns: z.array(z.object({ id, name: z.string() })),
   deputyFor: z.array(z.object({ person: personRef, fromOn: date, toOn: date })),
-  joinedAt: instant, endedAt: instant.nullable(), lastSeenAt: instant.nullable(), version,
+  joinedAt: instant,
+  endedAt: instant.nullable(),
+  lastSeenAt: instant.nullable(),
+  version,
 });
 export type Person = z.infer<typeof person>;
-export const invitation = z.object({ id, email: z.string(), roles: z.array(role), invitedBy: personRef, invitedAt: instant, expiresAt: instant, state: z.enum(["open", "accepted", "withdrawn", "expired"]) });
-export const peopleReply = z.object({ people: z.array(person), invitations: z.array(invitation), benchDevices: z.array(z.object({ id, name: z.string(), enrolledAt: instant, enrolledBy: personRef, lastUsedAt: instant.nullable() })) });
+export const invitation = z.object({
+  id,
+  email: z.string(),
+  roles: z.array(role),
+  invitedBy: personRef,
+  invitedAt: instant,
+  expiresAt: instant,
+  state: z.enum(["open", "accepted", "withdrawn", "expired"]),
+});
+export const peopleReply = z.object({
+  people: z.array(person),
+  invitations: z.array(invitation),
+  benchDevices: z.array(
+    z.object({ id, name: z.string(), enrolledAt: instant, enrolledBy: personRef, lastUsedAt: instant.nullable() }),
+  ),
+});
 export const inviteInput = z.object({ email, roles: z.array(role).min(1, "Choose at least one role.") });
-export const invitationReply = z.object({ labName: z.string(), email: z.string(), roles: z.array(role), invitedBy: z.string(), knownPerson: z.boolean() });
+export const invitationReply = z.object({
+  labName: z.string(),
+  email: z.string(),
+  roles: z.array(role),
+  invitedBy: z.string(),
+  knownPerson: z.boolean(),
+});
 export const acceptInvitationInput = z.object({ name, password: z.string().max(200) });
 export const changeRolesInput = z.object({ roles: z.array(role), isApprover: z.boolean(), version });
 export const endMembershipInput = z.object({ reason: z.string().trim().max(4000), version });
 export const appointDeputyInput = z.object({ personId: id, forPersonId: id, fromOn: date, toOn: date });
 
 export const enrolBenchInput = z.object({ name });
-export const benchReply = z.object({ device: z.object({ name: z.string(), labName: z.string() }).nullable(), people: z.array(personRef) });
+export const benchReply = z.object({
+  device: z.object({ name: z.string(), labName: z.string() }).nullable(),
+  people: z.array(personRef),
+});
 export const benchSignInInput = z.object({ personId: id, pin });
 
 export const labSettings = z.object({
-  id, name: z.string(), zone: z.string(), altitudeM: z.number().nullable(), isDemo: z.boolean(), selfApproval: z.boolean(),
-  warningShare: z.number(), decisionRule, headMail: z.string().nullable(), signingKeyFingerprint: z.string(), version,
+  id,
+  name: z.string(),
+  zone: z.string(),
+  altitudeM: z.number().nullable(),
+  isDemo: z.boolean(),
+  selfApproval: z.boolean(),
+  warningShare: z.number(),
+  decisionRule,
+  headMail: z.string().nullable(),
+  signingKeyFingerprint: z.string(),
+  version,
 });
 export type LabSettings = z.infer<typeof labSettings>;
 export const changeLabInput = z.object({
-  name, zone: z.string().max(60), altitudeM: z.number().min(-430).max(6000).nullable(), selfApproval: z.boolean(),
-  warningShare: z.number().min(0.3).max(1), decisionRule, headMail: email.nullable(), version,
+  name,
+  zone: z.string().max(60),
+  altitudeM: z.number().min(-430).max(6000).nullable(),
+  selfApproval: z.boolean(),
+  warningShare: z.number().min(0.3).max(1),
+  decisionRule,
+  headMail: email.nullable(),
+  version,
 });
