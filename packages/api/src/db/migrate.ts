@@ -60,7 +60,8 @@ async function makeRoles(client: pg.Client, appRole: MigrateOptions["appRole"]):
   // Who is no superuser must be a member of a role to give it functions.
   if (rows[0]?.superuser !== true) await client.query("grant wavekeep_definer to current_user");
   if (appRole === null) return;
-  const login = `login password ${client.escapeLiteral(appRole.password)} nosuperuser nobypassrls nocreatedb nocreaterole`;
+  // A new role has no powers unless they are given; to name them, even to deny them, takes a superuser in `alter role`.
+  const login = `login password ${client.escapeLiteral(appRole.password)}`;
   if (appRole.name === APP_ROLE) {
     const { rowCount } = await client.query("select 1 from pg_roles where rolname = $1 and rolcanlogin", [APP_ROLE]);
     if (rowCount === 0) await client.query(`alter role ${APP_ROLE} ${login}`);

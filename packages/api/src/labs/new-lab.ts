@@ -15,6 +15,7 @@ import { createLab } from "./queries.ts";
 import { isZone } from "./service.ts";
 
 const INVITATION_DAYS = 14;
+const UNDEFINED_FUNCTION = "42883";
 
 /**
  * Open a lab and invite its first manager.
@@ -93,6 +94,12 @@ async function main(): Promise<void> {
     process.stderr.write(
       `The lab ${name.data} is open. The link above makes ${email.data} its manager; it can be used once, within two weeks.\n`,
     );
+  } catch (error) {
+    if ((error as { cause?: { code?: string } }).cause?.code !== UNDEFINED_FUNCTION) throw error;
+    process.stderr.write(
+      "The database has no Wavekeep schema yet, or an older one. Run npm start once with the same variables, then this again. No lab was opened.\n",
+    );
+    process.exitCode = 1;
   } finally {
     await db.close();
   }
