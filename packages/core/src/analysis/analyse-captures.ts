@@ -170,6 +170,7 @@ function settingsProblem(spectrum: Spectrum, setup: AnalysisSetup, lineList: Lin
     }
     return null;
   }
+  if (mode.kind === "none") return null;
   if (mode.axis === "own") {
     return spectrum.axisKind === "wavelength"
       ? null

@@ -20,7 +20,7 @@ export interface IndicatingAxis extends ReferenceMedium {
 export function indicatingAxisOf(spectrum: Spectrum, setup: AnalysisSetup): IndicatingAxis | null {
   const { mode } = setup;
   if (spectrum.axisKind === "wavelength") return ownAxis(spectrum, referenceMedium(setup.axisMeaning, setup.room));
-  if (mode.kind === "range" || mode.axis === "own") return null;
+  if (mode.kind !== "earlier-axis" || mode.axis === "own") return null;
   return earlierAxis(mode.axis, spectrum, referenceMedium(mode.axis.meaning, setup.room));
 }
 

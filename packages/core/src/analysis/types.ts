@@ -9,7 +9,7 @@
 
 /** What the first column of a capture counts. A pixel axis counts samples from 0, centre of the first. */
 export type AxisKind = "pixel" | "wavelength" | "wavenumber" | "step";
-export type AxisUnit = "px" | "nm" | "Å" | "µm" | "cm-1" | "step";
+export type AxisUnit = "px" | "nm" | "Å" | "µm" | "cm-1" | "eV" | "step";
 export type Medium = "air" | "vacuum";
 /** What a wavelength axis means: vacuum, standard air (15 °C, 101 325 Pa, dry) or the air of the room. */
 export type AxisMeaning = "vacuum" | "standard-air" | "room-air";
@@ -170,7 +170,38 @@ export type IdentificationMode =
   /** The file's own wavelength axis (axisKind wavelength) or an earlier pixel axis. */
   | { kind: "earlier-axis"; axis: PixelAxis | "own" }
   /** First and last wavelength of the capture, each good to 5 % of the span. */
-  | { kind: "range"; firstNm: number; lastNm: number };
+  | { kind: "range"; firstNm: number; lastNm: number }
+  /** Nothing but the lamp's elements; the wavelength may rise or fall with the pixel. */
+  | { kind: "none" };
+
+/** What a capture shows: bright lines of a lamp, or the absorption bands of a standard. */
+export type SampleKind = "emission" | "absorption";
+
+/** Profile of a line; each is averaged over the pixel on a pixel axis. `empirical` is learned from the capture's own strong lines. */
+export type LineShapeName =
+  "gaussian" | "lorentzian" | "voigt" | "pseudo-voigt" | "exponentially-modified-gaussian" | "box" | "empirical";
+/** `automatic`: one shape for the whole capture, chosen from its strong lines by an information criterion. */
+export type LineShapeChoice = LineShapeName | "automatic";
+
+/**
+ * What a line's position means. `fitted`: centre of symmetry of the fitted shape, for a skewed one its first moment. The other two
+ * are an instrument's own way of reading a maximum. A configuration keeps one; a change is an event in its series.
+ */
+export type PositionDefinition = "fitted" | "highest-sample" | "three-point-parabola";
+
+/** Certified bands of an absorption standard, for one spectral bandwidth of the instrument. */
+export interface BandCertificate {
+  material: string;
+  /** Spectral bandwidth that the values are certified for, nm; null where the certificate names none. */
+  bandwidthNm: number | null;
+  bands: { wavelengthNm: number; expandedUncNm: number; coverageFactor: number }[];
+}
+
+/** The line that a wavenumber axis of Raman shifts counts from. */
+export interface LaserLine {
+  wavelengthVacuumNm: number;
+  uncNm: number;
+}
 
 export interface ToleranceSegment {
   fromNm: number;
@@ -228,6 +259,27 @@ export interface AnalysisSetup {
   degree: number | null;
   /** False-alarm rate of detection, expected false lines per capture (default 0.01). */
   falseLinesPerCapture: number;
+
+  // What follows came later: setups stored before lack it, and absence means the default.
+
+  /** Default `emission`. */
+  sampleKind?: SampleKind;
+  /** Absorption: the standard's certificate, and the instrument's spectral bandwidth, nm. */
+  bandCertificate?: BandCertificate | null;
+  spectralBandwidthNm?: number | null;
+  /** Default `gaussian`. */
+  lineShape?: LineShapeChoice;
+  /** Default `fitted`. */
+  positionDefinition?: PositionDefinition;
+  /** Unit of every `toleranceNm` of `tolerance`: on a wavenumber axis it may be cm-1. Default nm. */
+  toleranceUnit?: "nm" | "cm-1";
+  /** A wavenumber axis counts Raman shifts from this line; null or absent: absolute wavenumbers in vacuum. */
+  laser?: LaserLine | null;
+  /**
+   * How an earlier pixel axis becomes the new one: `fit` all coefficients anew (default), or only its offset, or offset and scale,
+   * curvature and its covariance kept from the earlier axis.
+   */
+  axisUpdate?: "fit" | "offset" | "offset-and-scale";
 }
 
 export interface BudgetEntry {
@@ -389,5 +441,6 @@ export interface CaptureInput {
   name: string;
   bytes: Uint8Array;
   sha256: string | null;
-  part: "lamp" | "dark";
+  /** `reference`: the empty beam or the blank that a sample's transmittance is taken against. */
+  part: "lamp" | "dark" | "reference";
 }

@@ -147,6 +147,9 @@ export function identifyLines(input: IdentifyInput): IdentifiedLines {
         `found; at least ${leastNamed} are needed to name any. Expose longer, or use a lamp with more lines in this range.`,
     );
   }
+  if (input.mode.kind === "none") {
+    return unidentified(input, "Nothing is known of the range: give the first and last wavelength, or an earlier axis.");
+  }
   const question = ask(input, input.elements, false);
   if (question.table.nm.length === 0) {
     return unidentified(input, `The line list has no line of ${lampOf(input.elements)} in this range.`);

@@ -43,6 +43,8 @@ export function namedAxis(input: ProblemInput, problem: Problem, naming: Naming)
 function basePowers(input: ProblemInput): number[] {
   const { mode } = input;
   if (mode.kind === "earlier-axis") return mode.axis === "own" ? [0, 1] : mode.axis.coefficients.slice();
+  // With the lamp's elements alone the axis found takes the place of a believed one.
+  if (mode.kind === "none") return [0, 1];
   const span = mode.lastNm - mode.firstNm;
   const terms = [(mode.firstNm + mode.lastNm) / 2, span / 2, 0, usualCubic * span];
   return Array.from(chebyshevToPowers(terms, input.firstPosition, input.lastPosition));

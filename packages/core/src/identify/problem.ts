@@ -86,7 +86,7 @@ export function baseNmAt(input: ProblemInput, position: number): number {
     const t = 2 * share - 1;
     return mode.firstNm + (mode.lastNm - mode.firstNm) * (share + usualCubic * (4 * t * t - 3) * t);
   }
-  if (mode.axis !== "own") return axisNm(mode.axis, position);
+  if (mode.kind === "earlier-axis" && mode.axis !== "own") return axisNm(mode.axis, position);
   return input.axisKind === "wavenumber" ? 1e7 / position : position;
 }
 
