@@ -43,6 +43,7 @@ describe("elementary functions against mpmath at 60 digits", () => {
     ["acos", 2.5],
     ["erf", 1],
     ["erfc", 3],
+    ["erfcx", 3],
   ])("%s stays below %f ulp", (name, limit) => {
     expect(worst(name, (error, exact) => error / ulp(exact))).toBeLessThan(limit);
   });

@@ -6,4 +6,4 @@
  */
 export { exp, expm1, hypot, log, log10, log1p, pow } from "./exponential.ts";
 export { acos, asin, atan, atan2, cos, PI, sin, tan } from "./trigonometric.ts";
-export { erf, erfc, lgamma, regularizedBeta, regularizedGammaP, regularizedGammaQ } from "./special.ts";
+export { erf, erfc, erfcx, lgamma, regularizedBeta, regularizedGammaP, regularizedGammaQ } from "./special.ts";

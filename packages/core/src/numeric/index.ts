@@ -4,3 +4,4 @@ export * from "./distributions.ts";
 export * from "./linear-least-squares.ts";
 export * from "./chebyshev.ts";
 export * from "./levenberg-marquardt.ts";
+export * from "./faddeeva.ts";
