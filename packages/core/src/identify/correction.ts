@@ -10,7 +10,7 @@ import { type Bounds, orderCount, type Problem } from "./problem.ts";
 const n = orderCount;
 
 /** Standard deviations of what is believed about the four terms, nm. */
-function priorSd(bounds: Bounds, k: number): number {
+export function priorSd(bounds: Bounds, k: number): number {
   if (k === 0) return bounds.endNm;
   if (k === 1) return bounds.scaleNm;
   return 0.6 * (k === 2 ? bounds.curvatureNm : bounds.cubicNm);

@@ -25,22 +25,13 @@ import { assumedReferenceUncNm, lineWavelengthNm } from "../linelist/built-in.ts
 import { log } from "../numeric/elementary.ts";
 import { nameFewLines } from "./few-lines.ts";
 import { namedAxis } from "./named-axis.ts";
-import { type Naming, nameLines } from "./name-lines.ts";
+import { agreeAt, agreement, ask, type Candidate, candidatesAlone, candidatesOf, strongShare } from "./candidates.ts";
+import type { Naming } from "./name-lines.ts";
 import { findOtherGases, findOtherLamp, nameOfElement, type OtherGas } from "./other-lamps.ts";
-import { buildProblem, type Problem } from "./problem.ts";
-import { type ReferenceTable, referenceTable } from "./reference-table.ts";
-import {
-  correctedNm,
-  endNm,
-  type Evidence,
-  evidenceFor,
-  lineEvidence,
-  type Odds,
-  oddsFor,
-  strongCount,
-} from "./score.ts";
+import type { Problem } from "./problem.ts";
+import type { ReferenceTable } from "./reference-table.ts";
+import { correctedNm, endNm, lineEvidence } from "./score.ts";
 import { findSecondOrder } from "./second-order.ts";
-import { type Hypothesis, sameAxis, searchAxes } from "./search.ts";
 
 /** Largest chance probability of an identification. */
 export const largestChance = 0.05;
@@ -58,11 +49,8 @@ const supportReach = 4;
 const leastSupport = 0.3;
 /** Neighbours fainter than this share of a line may be anything: they do not speak for or against it. */
 const comparableHeight = 0.3;
-/** Axes looked at closely. */
-const polished = 5;
 /** Two axes that agree at this share of the explained lines are one identification, less the lines they differ in. */
 const samePlaceShare = 0.7;
-const agreementShare = 0.3;
 const prominentStrength = 0.3;
 
 export interface LineName {
@@ -117,19 +105,6 @@ export interface IdentifiedLines {
   otherGases: OtherGas[];
 }
 
-interface Candidate {
-  correction: Float64Array;
-  naming: Naming;
-  evidence: Evidence;
-  namedCount: number;
-}
-
-interface Question {
-  problem: Problem;
-  table: ReferenceTable;
-  odds: Odds;
-}
-
 /**
  * Name the lines of a capture.
  *
@@ -147,17 +122,15 @@ export function identifyLines(input: IdentifyInput): IdentifiedLines {
         `found; at least ${leastNamed} are needed to name any. Expose longer, or use a lamp with more lines in this range.`,
     );
   }
-  if (input.mode.kind === "none") {
-    return unidentified(input, "Nothing is known of the range: give the first and last wavelength, or an earlier axis.");
-  }
+  if (input.mode.kind === "none") return answer(input, candidatesAlone(input, input.elements));
   const question = ask(input, input.elements, false);
   if (question.table.nm.length === 0) {
     return unidentified(input, `The line list has no line of ${lampOf(input.elements)} in this range.`);
   }
-  const narrow = answer(input, question);
+  const narrow = answer(input, candidatesOf(question));
   if (narrow.outcome === "identified" || input.mode.kind === "range") return narrow;
   // An axis further off than it should be: worth following, as long as the evidence pays for the wider search.
-  const wide = answer(input, ask(input, input.elements, true));
+  const wide = answer(input, candidatesOf(ask(input, input.elements, true)));
   if (wide.outcome !== "identified") return narrow.outcome === "ambiguous" ? narrow : orOtherLamp(input, wide, narrow);
   wide.warnings.unshift({
     code: "axis-far-off",
@@ -170,50 +143,18 @@ function orOtherLamp(input: IdentifyInput, wide: IdentifiedLines, narrow: Identi
   return wide.outcome === "ambiguous" && narrow.chanceProbability > wide.chanceProbability ? wide : narrow;
 }
 
-function ask(input: IdentifyInput, elements: readonly string[], wide: boolean): Question {
-  const problem = buildProblem(input, wide);
-  const reach = problem.bounds.endNm + problem.fwhmNm;
-  const low = Math.min(problem.baseFirstNm, problem.baseLastNm) - reach;
-  const high = Math.max(problem.baseFirstNm, problem.baseLastNm) + reach;
-  const table = referenceTable(input.lineList, elements, input.expectedLinesNm, low, high, problem.meaning);
-  return { problem, table, odds: oddsFor(table, high - low) };
-}
-
-/** Candidates of one question, best first. */
-function candidatesOf({ problem, table, odds }: Question): Candidate[] {
-  const found: Candidate[] = [];
-  const hypotheses: Hypothesis[] = searchAxes(problem, table, odds);
-  for (const hypothesis of hypotheses) {
-    if (found.length === polished) break;
-    // Many starts end on one axis: naming its lines once is enough.
-    const isKnown = found.some((one) =>
-      sameAxis(problem, one.correction, hypothesis.correction, agreementShare * problem.fwhmNm),
-    );
-    if (isKnown) continue;
-    const naming = nameLines(problem, table, hypothesis.correction);
-    if (naming === null) continue;
-    const { correction } = naming.fit;
-    const refined = evidenceFor(problem, table, odds, correction);
-    let namedCount = 0;
-    for (const reference of naming.reference) if (reference >= 0) namedCount += 1;
-    found.push({ correction, naming, evidence: refined, namedCount });
-  }
-  return found.sort((a, b) => b.evidence.value - a.evidence.value);
-}
-
-function answer(input: IdentifyInput, question: Question): IdentifiedLines {
-  const { problem } = question;
-  const candidates = candidatesOf(question);
+function answer(input: IdentifyInput, candidates: readonly Candidate[]): IdentifiedLines {
   const best = candidates[0];
   if (best === undefined) {
-    return refuse(input, question, 1, 0, "No axis within the bounds brings the lines onto published ones.");
+    return refuse(input, 1, 0, "No axis within the bounds brings the lines onto published ones.");
   }
+  const { problem } = best;
   let margin = Number.POSITIVE_INFINITY;
   let rival: Candidate | null = null;
   for (const other of candidates.slice(1)) {
     const lead = best.evidence.value - other.evidence.value;
-    if (sharedPlaces(problem, best, other) >= samePlaceShare) {
-      if (lead < leastMargin) dropDisputed(problem, best, other);
+    if (agreement(best, other) >= samePlaceShare) {
+      if (lead < leastMargin) dropDisputed(best, other);
       continue;
     }
     if (lead < margin) {
@@ -224,11 +165,10 @@ function answer(input: IdentifyInput, question: Question): IdentifiedLines {
   // No rival among the axes looked at: the margin is at least what separates the best from pure chance.
   if (!Number.isFinite(margin)) margin = Math.max(best.evidence.value, 0);
   const chance = best.evidence.chanceProbability;
-  const { explained, strong } = strongShare(problem, best);
+  const { explained, strong } = strongShare(best);
   if (chance > largestChance) {
     return refuse(
       input,
-      question,
       chance,
       margin,
       `${best.namedCount} of ${problem.byHeight.length} lines agree with ${lampOf(input.elements)}, ` +
@@ -242,7 +182,6 @@ function answer(input: IdentifyInput, question: Question): IdentifiedLines {
   if (!enough && !enoughWithOthers) {
     return refuse(
       input,
-      question,
       chance,
       margin,
       `Only ${explained} of the ${strong} strongest lines belong to ${lampOf(input.elements)}.`,
@@ -251,11 +190,11 @@ function answer(input: IdentifyInput, question: Question): IdentifiedLines {
   const usable = problem.byHeight.length;
   if (usable >= crowdedFrom && best.evidence.value < leastEvidencePerLine * usable) {
     const sentence = `${usable} lines so close together would fit ${lampOf(input.elements)} nearly as well on many an axis.`;
-    return refuse(input, question, chance, margin, sentence);
+    return refuse(input, chance, margin, sentence);
   }
   if (rival !== null && margin < leastMargin) {
     return {
-      ...unidentified(input, ambiguityOf(problem, best, rival)),
+      ...unidentified(input, ambiguityOf(best, rival)),
       outcome: "ambiguous",
       chanceProbability: chance,
       margin,
@@ -264,22 +203,20 @@ function answer(input: IdentifyInput, question: Question): IdentifiedLines {
   }
   if (best.namedCount < leastNamed) {
     const sentence = `The lines fit ${lampOf(input.elements)}, but only ${best.namedCount} of them can be told from their neighbours for sure.`;
-    return refuse(input, question, chance, margin, sentence);
+    return refuse(input, chance, margin, sentence);
   }
-  dropUnsupported(question, best);
-  return accept(input, question, best, otherGases, chance, margin);
+  dropUnsupported(best);
+  return accept(input, best, otherGases, chance, margin);
 }
 
 function accept(
   input: IdentifyInput,
-  question: Question,
   best: Candidate,
   otherGases: OtherGas[],
   chance: number,
   margin: number,
 ): IdentifiedLines {
-  const { problem, table } = question;
-  const { naming } = best;
+  const { problem, table, naming } = best;
   const warnings: { code: string; text: string }[] = [];
   for (const gas of otherGases) {
     for (const i of gas.disputed) {
@@ -306,7 +243,7 @@ function accept(
     outcome: "identified",
     reason: null,
     names,
-    axis: namedAxis(input, problem, naming),
+    axis: namedAxis(problem, input.lines, naming),
     chanceProbability: chance,
     margin,
     note: noteOf(chance, margin),
@@ -316,19 +253,14 @@ function accept(
   };
 }
 
-function refuse(
-  input: IdentifyInput,
-  question: Question,
-  chance: number,
-  margin: number,
-  sentence: string,
-): IdentifiedLines {
-  const other = findOtherLamp(input, question.problem, (elements) => {
-    const asked = ask({ ...input, expectedLinesNm: [] }, elements, false);
-    const best = candidatesOf(asked)[0];
+function refuse(input: IdentifyInput, chance: number, margin: number, sentence: string): IdentifiedLines {
+  const other = findOtherLamp(input, (elements) => {
+    const asked = { ...input, expectedLinesNm: [] };
+    const best = (
+      input.mode.kind === "none" ? candidatesAlone(asked, elements) : candidatesOf(ask(asked, elements, false))
+    )[0];
     if (best === undefined || best.evidence.chanceProbability > largestChance) return null;
-    const share = strongShare(asked.problem, best);
-    return { evidence: best.evidence.value, ...share };
+    return { evidence: best.evidence.value, lines: best.problem.byHeight.length, ...strongShare(best) };
   });
   return {
     ...unidentified(input, other ?? `${sentence} Check the lamp, the range and the exposure.`),
@@ -372,39 +304,11 @@ function byFewLines(input: IdentifyInput): IdentifiedLines | null {
   };
 }
 
-/** Strong lines, and how many of them lie on a published line. */
-function strongShare(problem: Problem, candidate: Candidate): { explained: number; strong: number } {
-  const strong = strongCount(problem);
-  let explained = 0;
-  for (let rank = 0; rank < strong; rank++) {
-    explained += candidate.naming.explained[problem.byHeight[rank] as number] as number;
-  }
-  return { explained, strong };
-}
-
-/** Whether two axes say the same of a line, to a fraction of its width. */
-function agreeAt(problem: Problem, a: Candidate, b: Candidate, i: number): boolean {
-  const apart = Math.abs(correctedNm(problem, a.correction, i) - correctedNm(problem, b.correction, i));
-  return apart <= agreementShare * problem.fwhmNm;
-}
-
-/** Share of the lines that the better axis explains where the other one says the same. */
-function sharedPlaces(problem: Problem, best: Candidate, other: Candidate): number {
-  let same = 0;
-  let all = 0;
-  for (let i = 0; i < problem.count; i++) {
-    if (best.naming.explained[i] === 0) continue;
-    all += 1;
-    if (agreeAt(problem, best, other, i)) same += 1;
-  }
-  return all === 0 ? 0 : same / all;
-}
-
 /** Lines on which two nearly equal axes disagree stay without a name. */
-function dropDisputed(problem: Problem, best: Candidate, other: Candidate): void {
-  for (let i = 0; i < problem.count; i++) {
+function dropDisputed(best: Candidate, other: Candidate): void {
+  for (let i = 0; i < best.problem.count; i++) {
     const reference = best.naming.reference[i] as number;
-    if (reference < 0 || reference === other.naming.reference[i] || agreeAt(problem, best, other, i)) continue;
+    if (reference < 0 || reference === other.naming.reference[i] || agreeAt(best, other, i)) continue;
     best.naming.reference[i] = -1;
     best.naming.components[i] = [];
     best.namedCount -= 1;
@@ -415,7 +319,8 @@ function dropDisputed(problem: Problem, best: Candidate, other: Candidate): void
  * An axis may be right over most of a capture and run astray at an end, where crowded lines still find something to lie on.
  * There the lines around say so: taken together they are explained no better than by accident.
  */
-function dropUnsupported({ problem, table, odds }: Question, best: Candidate): void {
+function dropUnsupported(best: Candidate): void {
+  const { problem, table, odds } = best;
   const width = best.evidence.standardDeviationNm;
   const evidence = lineEvidence(problem, table, odds, best.correction, width);
   const order = problem.byHeight.slice().sort((a, b) => (problem.t[a] as number) - (problem.t[b] as number));
@@ -442,12 +347,13 @@ function dropUnsupported({ problem, table, odds }: Question, best: Candidate): v
   }
 }
 
-function ambiguityOf(problem: Problem, best: Candidate, rival: Candidate): string {
+function ambiguityOf(best: Candidate, rival: Candidate): string {
+  const { problem } = best;
   const end = (candidate: Candidate): string => {
     const first = problem.byHeight.reduce((a, b) => ((problem.t[a] as number) <= (problem.t[b] as number) ? a : b));
     const last = problem.byHeight.reduce((a, b) => ((problem.t[a] as number) >= (problem.t[b] as number) ? a : b));
-    const from = correctedNm(problem, candidate.correction, first).toFixed(1);
-    const to = correctedNm(problem, candidate.correction, last).toFixed(1);
+    const from = (candidate.places[first] as number).toFixed(1);
+    const to = (candidate.places[last] as number).toFixed(1);
     return `${candidate.namedCount} lines named with the outermost at ${from} and ${to} nm`;
   };
   return (
@@ -508,7 +414,7 @@ function missingLines(input: IdentifyInput, problem: Problem, table: ReferenceTa
     const nm = table.nm[j] as number;
     if (nm < low || nm > high) continue;
     const wanted =
-      input.expectedLinesNm.length > 0 ? table.expected[j] : (table.strength[j] as number) >= prominentStrength;
+      input.expectedLinesNm.length > 0 ? table.expected[j] === 1 : (table.strength[j] as number) >= prominentStrength;
     if (!wanted) continue;
     let seen = false;
     for (let i = 0; i < problem.count && !seen; i++) {

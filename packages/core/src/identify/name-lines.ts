@@ -21,8 +21,7 @@
 import { exp, log } from "../numeric/elementary.ts";
 import { fitCorrection, type CorrectionFit } from "./correction.ts";
 import type { Problem } from "./problem.ts";
-import type { ReferenceLine } from "../analysis/types.ts";
-import { isIon, lowerBound, type ReferenceTable } from "./reference-table.ts";
+import { lowerBound, type ReferenceTable } from "./reference-table.ts";
 import { correctedNm } from "./score.ts";
 
 const gateSds = 3.5;
@@ -145,8 +144,8 @@ function dropWeakCompanions(table: ReferenceTable, share: number[]): number {
   let pull = 0;
   for (const j of share) {
     const ratio = (table.brightness[j] as number) / (table.brightness[strongest] as number);
-    const isSame = table.lines[j]?.spectrum === table.lines[strongest]?.spectrum;
-    if (ratio >= (isSame ? companionShare : companionShareOfOthers) || table.expected[j]) share[kept++] = j;
+    const isSame = table.spectrum[j] === table.spectrum[strongest];
+    if (ratio >= (isSame ? companionShare : companionShareOfOthers) || table.expected[j] === 1) share[kept++] = j;
     else pull += companionFactor * ratio * Math.abs((table.nm[j] as number) - (table.nm[strongest] as number));
   }
   share.length = kept;
@@ -444,14 +443,14 @@ const medianOf = (sorted: readonly number[]): number =>
 /** Share of the published lines of about the same strength, in the same spectrum and in range, that were found. */
 function shareFound(table: ReferenceTable, found: Uint8Array, reference: number, low: number, high: number): number {
   const strength = table.strength[reference] as number;
-  const { spectrum } = table.lines[reference] as { spectrum: string };
+  const spectrum = table.spectrum[reference];
   let all = 0;
   let seen = 0;
   for (let widening = 0; widening < 2; widening++) {
     all = 0;
     seen = 0;
     for (let j = lowerBound(table.nm, low); j < table.nm.length && (table.nm[j] as number) <= high; j++) {
-      if (j === reference || (table.lines[j] as { spectrum: string }).spectrum !== spectrum) continue;
+      if (j === reference || table.spectrum[j] !== spectrum) continue;
       const ratio = (table.strength[j] as number) / strength;
       if (ratio < 1 / 3 || (widening === 0 && ratio > 3)) continue;
       all += 1;
@@ -459,5 +458,5 @@ function shareFound(table: ReferenceTable, found: Uint8Array, reference: number,
     }
     if (all >= 4) break;
   }
-  return (seen + (isIon(table.lines[reference] as ReferenceLine) ? ionPrior : 1)) / (all + 2);
+  return (seen + (table.ion[reference] === 1 ? ionPrior : 1)) / (all + 2);
 }

@@ -1,8 +1,8 @@
 /** The identified axis in the shape others use: powers of the pixel, covariance in Chebyshev terms between its outermost lines. */
-import type { PixelAxis } from "../analysis/types.ts";
+import type { FittedLine, PixelAxis } from "../analysis/types.ts";
 import { chebyshevArgument, chebyshevBasis, chebyshevToPowers } from "../numeric/chebyshev.ts";
 import type { Naming } from "./name-lines.ts";
-import { orderCount, type Problem, type ProblemInput, usualCubic } from "./problem.ts";
+import { orderCount, type Problem, usualCubic } from "./problem.ts";
 import { cos, PI } from "../numeric/elementary.ts";
 
 /**
@@ -10,10 +10,10 @@ import { cos, PI } from "../numeric/elementary.ts";
  *
  * @returns null on a wavenumber axis, whose wavelength is no polynomial, and with fewer than two named lines
  */
-export function namedAxis(input: ProblemInput, problem: Problem, naming: Naming): PixelAxis | null {
-  if (input.axisKind === "wavenumber") return null;
+export function namedAxis(problem: Problem, lines: readonly FittedLine[], naming: Naming): PixelAxis | null {
+  if (problem.axisKind === "wavenumber") return null;
   const { firstPosition, lastPosition } = problem;
-  const base = basePowers(input);
+  const base = basePowers(problem);
   const correction = chebyshevToPowers(naming.fit.correction, firstPosition, lastPosition);
   const coefficients = Array.from(
     { length: Math.max(base.length, orderCount) },
@@ -24,7 +24,7 @@ export function namedAxis(input: ProblemInput, problem: Problem, naming: Naming)
   let named = 0;
   for (let i = 0; i < problem.count; i++) {
     if ((naming.reference[i] as number) < 0) continue;
-    const position = (input.lines[i] as { position: number }).position;
+    const position = (lines[i] as FittedLine).position;
     first = Math.min(first, position);
     last = Math.max(last, position);
     named += 1;
@@ -40,14 +40,12 @@ export function namedAxis(input: ProblemInput, problem: Problem, naming: Naming)
   };
 }
 
-function basePowers(input: ProblemInput): number[] {
-  const { mode } = input;
+function basePowers({ mode, firstPosition, lastPosition }: Problem): number[] {
   if (mode.kind === "earlier-axis") return mode.axis === "own" ? [0, 1] : mode.axis.coefficients.slice();
-  // With the lamp's elements alone the axis found takes the place of a believed one.
-  if (mode.kind === "none") return [0, 1];
+  if (mode.kind === "none") throw new RangeError("an axis without a belief to correct");
   const span = mode.lastNm - mode.firstNm;
   const terms = [(mode.firstNm + mode.lastNm) / 2, span / 2, 0, usualCubic * span];
-  return Array.from(chebyshevToPowers(terms, input.firstPosition, input.lastPosition));
+  return Array.from(chebyshevToPowers(terms, firstPosition, lastPosition));
 }
 
 /** Covariance of the Chebyshev terms over the capture, rewritten for terms over [first, last]; zero for higher terms. */

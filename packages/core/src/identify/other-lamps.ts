@@ -4,12 +4,12 @@
  * Another lamp is looked for with the same search, each element of the line list alone. A second gas is looked for on the
  * axis already found: prominent lines of another element on lines left without a name, scored as in `score`.
  */
-import type { LineList, ReferenceLine } from "../analysis/types.ts";
+import type { LineList } from "../analysis/types.ts";
 import { elementsOf } from "../linelist/built-in.ts";
 import { log } from "../numeric/elementary.ts";
 import type { Naming } from "./name-lines.ts";
 import type { Problem } from "./problem.ts";
-import { isIon, lowerBound, referenceTable, type ReferenceTable } from "./reference-table.ts";
+import { lowerBound, referenceTable, type ReferenceTable } from "./reference-table.ts";
 import { correctedNm, strongCount } from "./score.ts";
 
 const names: Record<string, string> = {
@@ -36,6 +36,8 @@ function otherElements(list: LineList, own: readonly string[]): string[] {
 
 export interface LampAnswer {
   evidence: number;
+  /** Usable lines in all. */
+  lines: number;
   explained: number;
   strong: number;
 }
@@ -50,11 +52,7 @@ interface Asked {
  *
  * @param tryLamp answer for one set of elements, null where it does not convince
  */
-export function findOtherLamp(
-  input: Asked,
-  problem: Problem,
-  tryLamp: (elements: string[]) => LampAnswer | null,
-): string | null {
+export function findOtherLamp(input: Asked, tryLamp: (elements: string[]) => LampAnswer | null): string | null {
   let best: { element: string; answer: LampAnswer } | null = null;
   for (const element of otherElements(input.lineList, input.elements)) {
     const answer = tryLamp([element]);
@@ -62,13 +60,13 @@ export function findOtherLamp(
     if (best === null || answer.evidence > best.answer.evidence) best = { element, answer };
   }
   if (best === null) return null;
-  const { explained, strong } = best.answer;
+  const { explained, strong, lines } = best.answer;
   const own = input.elements.map(nameOfElement).join(" and ");
   const other = nameOfElement(best.element);
   return (
     `${explained} of ${strong} strong lines belong to ${other}, not ${own}. ` +
     `Is the lamp ${other}, or does it hold ${other} as well? Nothing was named; choose the right lamp and analyse again. ` +
-    (problem.byHeight.length > strong ? `${problem.byHeight.length} lines were found in all.` : "")
+    (lines > strong ? `${lines} lines were found in all.` : "")
   ).trim();
 }
 
@@ -84,7 +82,7 @@ export interface OtherGas {
 
 const prominent = 0.05;
 const isProminent = (table: ReferenceTable, j: number): boolean =>
-  (table.strength[j] as number) >= prominent && !isIon(table.lines[j] as ReferenceLine);
+  (table.strength[j] as number) >= prominent && table.ion[j] === 0;
 const nearShare = 0.2;
 const disputedShare = 0.5;
 /** ln of the odds that a second gas must reach: several prominent lines, each on an unnamed line. */

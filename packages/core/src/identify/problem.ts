@@ -12,6 +12,7 @@
  */
 import type { AxisKind, AxisMeaning, FittedLine, IdentificationMode } from "../analysis/types.ts";
 import { axisNm } from "../dispersion/axis.ts";
+import { log } from "../numeric/elementary.ts";
 
 export const orderCount = 4;
 
@@ -47,11 +48,18 @@ export interface Problem {
   widthRatio: Float64Array;
   /** Indices of usable lines, strongest first. */
   byHeight: number[];
+  /** Indices of all lines along the capture. */
+  byPlace: number[];
   fwhmNm: number;
   spanNm: number;
   baseFirstNm: number;
   baseLastNm: number;
   bounds: Bounds;
+  /** The belief that the axis is a correction of: an earlier axis, or a range (its own ends where only the lamp is known). */
+  mode: IdentificationMode;
+  axisKind: AxisKind;
+  /** Logarithm of the density that is believed of offset and scale, per nm². */
+  logDensity: number;
   meaning: AxisMeaning;
   firstPosition: number;
   lastPosition: number;
@@ -104,6 +112,7 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
   const baseLastNm = baseNmAt(input, lastPosition);
   const spanNm = Math.abs(baseLastNm - baseFirstNm);
   const fwhmNm = (input.medianFwhm * spanNm) / (lastPosition - firstPosition);
+  const bounds = boundsOf(input.mode, spanNm, fwhmNm, wide);
   const problem: Problem = {
     count,
     t: new Float64Array(count),
@@ -117,11 +126,19 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
     broad: new Uint8Array(count),
     widthRatio: new Float64Array(count),
     byHeight: [],
+    byPlace: [],
     fwhmNm,
     spanNm,
     baseFirstNm,
     baseLastNm,
-    bounds: boundsOf(input.mode, spanNm, fwhmNm, wide),
+    bounds,
+    mode: input.mode,
+    axisKind: input.axisKind,
+    logDensity: log(
+      input.mode.kind === "range" || wide
+        ? 1 / (2 * bounds.endNm * bounds.endNm)
+        : 1 / (4 * bounds.scaleNm * (bounds.endNm - bounds.scaleNm)),
+    ),
     meaning:
       input.mode.kind === "earlier-axis" && input.mode.axis !== "own" ? input.mode.axis.meaning : input.axisMeaning,
     firstPosition,
@@ -156,7 +173,11 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
     problem.saturated[i] = isSaturated ? 1 : 0;
     problem.usable[i] = line.flags.includes("spike") ? 0 : 1;
   }
-  for (let i = 0; i < count; i++) if (problem.usable[i] === 1) problem.byHeight.push(i);
+  for (let i = 0; i < count; i++) {
+    problem.byPlace.push(i);
+    if (problem.usable[i] === 1) problem.byHeight.push(i);
+  }
+  problem.byPlace.sort((a, b) => (problem.t[a] as number) - (problem.t[b] as number));
   problem.byHeight.sort(
     (a, b) =>
       (problem.saturated[b] as number) - (problem.saturated[a] as number) ||

@@ -7,6 +7,8 @@
  *           their neutral atom (low-pressure lamps; common practice, no source).
  * Medium    wavelengths as the axis means them: vacuum, or air with vacuum below 200 nm. The air of the room differs
  *           from standard air by less than the offset that is searched for anyway.
+ * Kept      the sorted lines of a lamp are kept from one question to the next, by content: the same question gives the
+ *           same bits, kept or not
  */
 import type { AxisMeaning, LineList, ReferenceLine } from "../analysis/types.ts";
 import { lineWavelengthNm, linesOf } from "../linelist/built-in.ts";
@@ -21,6 +23,24 @@ const ionBrightness = 0.03;
 /** An expected line of a procedure is taken to be well visible. */
 const expectedStrength = 0.5;
 const expectedWithinNm = 0.01;
+/** Lamps whose sorted lines are kept. */
+const mostKept = 48;
+
+/** All published lines of a lamp, ascending on the axis' medium. */
+export interface LampTable {
+  nm: Float64Array;
+  lines: readonly ReferenceLine[];
+  /** Published intensity; NaN where there is none. */
+  intensity: Float64Array;
+  /** Number of each line's spectrum, and of its element. */
+  spectrum: Int32Array;
+  element: Int32Array;
+  /** 1 for lines of ions. */
+  ion: Uint8Array;
+  /** Spectra and elements in all. */
+  spectra: number;
+  elements: number;
+}
 
 export interface ReferenceTable {
   /** Ascending, nm, in the medium of the axis. */
@@ -29,13 +49,70 @@ export interface ReferenceTable {
   strength: Float64Array;
   /** Published intensity on one scale a spectrum, not cut at 1: for comparing neighbours. */
   brightness: Float64Array;
-  lines: ReferenceLine[];
-  expected: boolean[];
+  /** Number of each line's spectrum. */
+  spectrum: Int32Array;
+  /** 1 for lines of ions. */
+  ion: Uint8Array;
+  lines: readonly ReferenceLine[];
+  /** 1 for a procedure's own lines. */
+  expected: Uint8Array;
 }
 
 /** Wavelength of a published line as the axis means wavelengths, nm. */
 export function wavelengthOnAxis(line: ReferenceLine, meaning: AxisMeaning): number {
   return meaning === "vacuum" ? line.wavelengthVacuumNm : lineWavelengthNm(line).wavelengthNm;
+}
+
+const keptTables = new WeakMap<LineList, Map<string, LampTable>>();
+
+/** The lines of some elements, sorted and without doubles. */
+export function lampTable(list: LineList, elements: readonly string[], meaning: AxisMeaning): LampTable {
+  let tables = keptTables.get(list);
+  if (tables === undefined) {
+    tables = new Map();
+    keptTables.set(list, tables);
+  }
+  const key = `${meaning === "vacuum" ? "vacuum" : "air"}|${elements.join("|")}`;
+  const known = tables.get(key);
+  if (known !== undefined) return known;
+  const made = makeLampTable(list, elements, meaning);
+  if (tables.size >= mostKept) tables.clear();
+  tables.set(key, made);
+  return made;
+}
+
+function makeLampTable(list: LineList, elements: readonly string[], meaning: AxisMeaning): LampTable {
+  const sorted = linesOf(list, elements)
+    .map((line) => ({ line, nm: wavelengthOnAxis(line, meaning) }))
+    .sort((a, b) => a.nm - b.nm);
+  const kept: { line: ReferenceLine; nm: number }[] = [];
+  for (const entry of sorted) {
+    const { line, nm } = entry;
+    const before = kept[kept.length - 1];
+    if (before !== undefined && before.line.spectrum === line.spectrum && nm - before.nm < sameLineNm) {
+      // Two measurements of one line: the one with the smaller stated uncertainty, the stronger intensity of the two.
+      const better = uncertaintyOf(line) < uncertaintyOf(before.line) ? line : before.line;
+      const intensity = line.relativeIntensity ?? before.line.relativeIntensity;
+      before.line = { ...better, relativeIntensity: better.relativeIntensity ?? intensity };
+      before.nm = wavelengthOnAxis(before.line, meaning);
+      continue;
+    }
+    kept.push(entry);
+  }
+  kept.sort((a, b) => a.nm - b.nm);
+  const lines = kept.map((entry) => entry.line);
+  const spectra = [...new Set(lines.map((line) => line.spectrum))];
+  const names = [...new Set(lines.map((line) => line.element))];
+  return {
+    nm: Float64Array.from(kept, (entry) => entry.nm),
+    lines,
+    intensity: Float64Array.from(lines, (line) => line.relativeIntensity ?? Number.NaN),
+    spectrum: Int32Array.from(lines, (line) => spectra.indexOf(line.spectrum)),
+    element: Int32Array.from(lines, (line) => names.indexOf(line.element)),
+    ion: Uint8Array.from(lines, (line) => (isIon(line) ? 1 : 0)),
+    spectra: spectra.length,
+    elements: names.length,
+  };
 }
 
 /**
@@ -51,69 +128,74 @@ export function referenceTable(
   toNm: number,
   meaning: AxisMeaning,
 ): ReferenceTable {
-  const kept: { line: ReferenceLine; nm: number }[] = [];
-  for (const line of linesOf(list, elements)) {
-    const nm = wavelengthOnAxis(line, meaning);
-    if (nm < fromNm || nm > toNm) continue;
-    const before = kept[kept.length - 1];
-    if (before !== undefined && before.line.spectrum === line.spectrum && nm - before.nm < sameLineNm) {
-      // Two measurements of one line: the one with the smaller stated uncertainty, the stronger intensity of the two.
-      const better = uncertaintyOf(line) < uncertaintyOf(before.line) ? line : before.line;
-      const intensity = line.relativeIntensity ?? before.line.relativeIntensity;
-      before.line = { ...better, relativeIntensity: better.relativeIntensity ?? intensity };
-      before.nm = wavelengthOnAxis(before.line, meaning);
-      continue;
-    }
-    kept.push({ line, nm });
-  }
-  kept.sort((a, b) => a.nm - b.nm);
-  const scale = scaleBySpectrum(kept.map((entry) => entry.line));
-  const neutral = new Set(kept.filter((entry) => !isIon(entry.line)).map((entry) => entry.line.element));
-  const nm = new Float64Array(kept.length);
-  const strength = new Float64Array(kept.length);
-  const brightness = new Float64Array(kept.length);
-  const expected: boolean[] = [];
-  kept.forEach((entry, k) => {
-    const { line } = entry;
-    nm[k] = entry.nm;
-    const unit = scale.get(line.spectrum);
-    let value =
-      unit === undefined
-        ? 1
-        : line.relativeIntensity === null
-          ? strengthWithoutIntensity
-          : line.relativeIntensity / unit;
-    const isRare = isIon(line) && neutral.has(line.element);
-    brightness[k] = isRare ? value * ionBrightness : value;
+  const lamp = lampTable(list, elements, meaning);
+  const first = lowerBound(lamp.nm, fromNm);
+  let last = lowerBound(lamp.nm, toNm);
+  while (last < lamp.nm.length && (lamp.nm[last] as number) <= toNm) last += 1;
+  const count = Math.max(0, last - first);
+  const scale = thirdStrongest(lamp, first, last);
+  const hasNeutral = new Uint8Array(lamp.elements);
+  for (let j = first; j < last; j++) if (lamp.ion[j] === 0) hasNeutral[lamp.element[j] as number] = 1;
+  const table: ReferenceTable = {
+    nm: lamp.nm.subarray(first, first + count),
+    strength: new Float64Array(count),
+    brightness: new Float64Array(count),
+    spectrum: lamp.spectrum.subarray(first, first + count),
+    ion: lamp.ion.subarray(first, first + count),
+    lines: lamp.lines.slice(first, first + count),
+    expected: new Uint8Array(count),
+  };
+  for (let k = 0; k < count; k++) {
+    const j = first + k;
+    const unit = scale[lamp.spectrum[j] as number] as number;
+    const intensity = lamp.intensity[j] as number;
+    let value = unit === 0 ? 1 : Number.isNaN(intensity) ? strengthWithoutIntensity : intensity / unit;
+    const isRare = lamp.ion[j] === 1 && hasNeutral[lamp.element[j] as number] === 1;
+    table.brightness[k] = isRare ? value * ionBrightness : value;
     if (isRare) value = Math.min(1, value) * ionOdds;
-    const known = lineWavelengthNm(line).wavelengthNm;
-    const isExpected = expectedLinesNm.some((wanted) => Math.abs(wanted - known) <= expectedWithinNm);
-    if (isExpected) value = Math.max(value, expectedStrength);
-    strength[k] = Math.min(1, value);
-    expected.push(isExpected);
-  });
-  return { nm, strength, brightness, lines: kept.map((entry) => entry.line), expected };
+    if (expectedLinesNm.length > 0) {
+      const known = lineWavelengthNm(lamp.lines[j] as ReferenceLine).wavelengthNm;
+      if (expectedLinesNm.some((wanted) => Math.abs(wanted - known) <= expectedWithinNm)) {
+        value = Math.max(value, expectedStrength);
+        table.expected[k] = 1;
+      }
+    }
+    table.strength[k] = Math.min(1, value);
+  }
+  return table;
 }
 
 /** Whether a line belongs to an ion rather than to the neutral atom. */
 export const isIon = (line: ReferenceLine): boolean => !line.spectrum.endsWith(" I") && line.spectrum.includes(" ");
 const uncertaintyOf = (line: ReferenceLine): number => line.uncertaintyNm ?? Number.POSITIVE_INFINITY;
 
-/** Third-strongest published intensity of each spectrum (the strongest where there are fewer than three). */
-function scaleBySpectrum(lines: readonly ReferenceLine[]): Map<string, number> {
-  const bySpectrum = new Map<string, number[]>();
-  for (const line of lines) {
-    if (line.relativeIntensity === null) continue;
-    const values = bySpectrum.get(line.spectrum);
-    if (values === undefined) bySpectrum.set(line.spectrum, [line.relativeIntensity]);
-    else values.push(line.relativeIntensity);
+/** Third-strongest published intensity of each spectrum among some lines (the strongest where there are fewer than three; 0: none stated). */
+export function thirdStrongest(lamp: LampTable, first: number, last: number): Float64Array {
+  const top = new Float64Array(3 * lamp.spectra);
+  for (let j = first; j < last; j++) {
+    const value = lamp.intensity[j] as number;
+    if (Number.isNaN(value)) continue;
+    const k = 3 * (lamp.spectrum[j] as number);
+    if (value > (top[k] as number)) {
+      top[k + 2] = top[k + 1] as number;
+      top[k + 1] = top[k] as number;
+      top[k] = value;
+    } else if (value > (top[k + 1] as number)) {
+      top[k + 2] = top[k + 1] as number;
+      top[k + 1] = value;
+    } else if (value > (top[k + 2] as number)) top[k + 2] = value;
   }
-  const scale = new Map<string, number>();
-  for (const [spectrum, values] of bySpectrum) {
-    values.sort((a, b) => b - a);
-    scale.set(spectrum, (values.length >= 3 ? values[2] : values[0]) as number);
-  }
+  const scale = new Float64Array(lamp.spectra);
+  for (let s = 0; s < lamp.spectra; s++) scale[s] = (top[3 * s + 2] as number) || (top[3 * s] as number);
   return scale;
+}
+
+/** Strength of one line in a window whose scales are known (`thirdStrongest`); ions as beside their neutral atom. */
+export function strengthIn(lamp: LampTable, scale: Float64Array, j: number): number {
+  const unit = scale[lamp.spectrum[j] as number] as number;
+  const intensity = lamp.intensity[j] as number;
+  const value = unit === 0 ? 1 : Number.isNaN(intensity) ? strengthWithoutIntensity : Math.min(1, intensity / unit);
+  return lamp.ion[j] === 1 ? value * ionOdds : value;
 }
 
 /** Odds, up to a factor, that a found line is this one: strength to a power below 1, with a floor. */

@@ -4,24 +4,27 @@
  * Model    each found line is either a published line of the lamp, its wavelength scattered about it with a standard
  *          deviation s, or (share `strayShare`) anything else, equally likely anywhere in the window of length L:
  *          g(lambda) = strayShare + (1 - strayShare) L sum_j pi_j N(lambda - lambda_j; s),   sum pi_j = 1
- *          score = sum over lines of ln g - misses - unusual bending; pi_j leans on published intensities, more for the stronger lines
+ *          score = sum over lines of ln g - misses; pi_j leans on published intensities, more for the stronger lines
+ * Evidence ln of the Bayes factor: the likelihood ratio, product of g, averaged over what is believed of the axis (`problem`), by
+ *          Laplace's approximation about the best axis: score + ln prior density + (4/2) ln 2 pi - ln det(H)/2, H the curvature of
+ *          the score plus the precision of the belief; mean over the standard deviations s tried
  * Chance   null model: the found lines lie independently and evenly over the window, whatever lamp it was. Under it each
- *          g has mean 1, so a given axis reaches a score of S or more with a probability of at most e^-S (Markov), and
- *          any of n distinguishable axes with at most n e^-S. n is the volume that the bounds allow over the volume of
- *          one axis to within s, times the number of widths s tried. An upper bound, not an estimate.
+ *          g has mean 1 and so has their product averaged over all axes: it reaches e^S or more with a probability of at
+ *          most e^-S (Markov). An upper bound, not an estimate
  * Misses   prominent lines of the lamp that should be in the window and were not found lower the score a little: lamps,
  *          fibres and detectors hide lines, so that is weak evidence
  */
 import { exp, log, PI } from "../numeric/elementary.ts";
-import { bendPenalty } from "./correction.ts";
+import { addPrior, bendPenalty, factorise, priorSd } from "./correction.ts";
 import { orderCount, type Problem } from "./problem.ts";
 import { lowerBound, oddsOf, type ReferenceTable } from "./reference-table.ts";
 
 /** Share of found lines that are no listed line of the lamp: impurities, room light, weak unlisted lines. */
-const strayShare = 0.12;
+export const strayShare = 0.12;
 /** Strong found lines lean more on published intensities than weak ones. */
 const strongPower = 0.7;
 const weakPower = 0.3;
+export const coarsePowers = { strong: strongPower, weak: weakPower } as const;
 const missCost = 0.5;
 const prominent = 0.3;
 /** Standard deviations tried, shares of the FWHM. */
@@ -115,39 +118,100 @@ export function endNm(problem: Problem, correction: Float64Array, t: number): nu
 }
 
 export interface Evidence {
-  /** Score less the logarithm of the number of distinguishable axes, at the best of the widths tried. */
+  /** ln of the Bayes factor over lines scattered at random; see the module's header. */
   value: number;
-  /** exp(-value) times the number of widths, at most 1. */
+  /** exp(-value), at most 1. */
   chanceProbability: number;
+  /** The width that explains the lines best. */
   standardDeviationNm: number;
 }
 
-/** Evidence for one axis: best over the widths tried. */
+const widths = widthShares.length;
+const root2Pi = Math.sqrt(2 * PI);
+const hessian = Array.from({ length: widths }, () => new Float64Array(orderCount * orderCount));
+const product = new Float64Array(widths);
+const scoreAt = new Float64Array(widths);
+const sdAt = new Float64Array(widths);
+const sumAt = new Float64Array(widths);
+/** Lines whose g are multiplied before a logarithm is taken. */
+const linesPerLog = 24;
+
+/** Evidence for one axis: mean over the widths tried. */
 export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds, correction: Float64Array): Evidence {
   const strong = strongCount(problem);
-  const misses = missedCost(problem, table, correction);
-  const bend = bendPenalty(correction, problem.bounds);
-  let best = Number.NEGATIVE_INFINITY;
-  let bestWidth = 0;
-  for (const share of widthShares) {
-    const width = share * problem.fwhmNm;
-    let score = bend - misses;
-    for (let rank = 0; rank < problem.byHeight.length; rank++) {
-      const i = problem.byHeight[rank] as number;
-      const pi = rank < strong ? odds.strong : odds.weak;
-      score += log(lineOdds(problem, table, odds.windowNm, pi, correctedNm(problem, correction, i), i, width));
+  const { byHeight, basis, bounds, fwhmNm } = problem;
+  const { nm } = table;
+  const scale = ((1 - strayShare) * odds.windowNm) / root2Pi;
+  for (let w = 0; w < widths; w++) {
+    (hessian[w] as Float64Array).fill(0);
+    scoreAt[w] = 0;
+  }
+  product.fill(1);
+  for (let rank = 0; rank < byHeight.length; rank++) {
+    const i = byHeight[rank] as number;
+    const pi = rank < strong ? odds.strong : odds.weak;
+    const own = problem.lineUncNm[i] as number;
+    const at = correctedNm(problem, correction, i);
+    for (let w = 0; w < widths; w++) {
+      const width = (widthShares[w] as number) * fwhmNm;
+      sdAt[w] = Math.sqrt(width * width + own * own);
+      sumAt[w] = 0;
     }
-    const value = score - log(distinguishableAxes(problem, width));
-    if (value > best) {
-      best = value;
-      bestWidth = width;
+    const reach = 4 * (sdAt[widths - 1] as number);
+    for (let j = lowerBound(nm, at - reach); j < nm.length; j++) {
+      const d = (nm[j] as number) - at;
+      if (d > reach) break;
+      for (let w = widths - 1; w >= 0; w--) {
+        const u = d / (sdAt[w] as number);
+        if (u > 4 || u < -4) break;
+        sumAt[w] = (sumAt[w] as number) + (pi[j] as number) * exp(-0.5 * u * u);
+      }
+    }
+    const k = i * orderCount;
+    for (let w = 0; w < widths; w++) {
+      const sd = sdAt[w] as number;
+      const g = strayShare + (scale * (sumAt[w] as number)) / sd;
+      product[w] = (product[w] as number) * g;
+      const weight = (1 - strayShare / g) / (sd * sd);
+      if (weight === 0) continue;
+      const h = hessian[w] as Float64Array;
+      for (let r = 0; r < orderCount; r++) {
+        const br = weight * (basis[k + r] as number);
+        for (let c = 0; c <= r; c++)
+          h[r * orderCount + c] = (h[r * orderCount + c] as number) + br * (basis[k + c] as number);
+      }
+    }
+    if (rank % linesPerLog === linesPerLog - 1 || rank === byHeight.length - 1) {
+      for (let w = 0; w < widths; w++) scoreAt[w] = (scoreAt[w] as number) + log(product[w] as number);
+      product.fill(1);
     }
   }
-  return {
-    value: best,
-    chanceProbability: Math.min(1, widthShares.length * exp(-best)),
-    standardDeviationNm: bestWidth,
-  };
+  const shared =
+    bendPenalty(correction, bounds) -
+    missedCost(problem, table, correction) +
+    problem.logDensity +
+    log((2 * PI) / (priorSd(bounds, 2) * priorSd(bounds, 3)));
+  let best = Number.NEGATIVE_INFINITY;
+  let bestWidth = 0;
+  for (let w = 0; w < widths; w++) {
+    const h = hessian[w] as Float64Array;
+    addPrior(h, bounds);
+    let value = (scoreAt[w] as number) + shared;
+    if (factorise(h)) {
+      let diagonal = 1;
+      for (let r = 0; r < orderCount; r++) diagonal *= h[r * orderCount + r] as number;
+      value -= log(diagonal);
+    } else value = Number.NEGATIVE_INFINITY;
+    scoreAt[w] = value;
+    if (value > best) {
+      best = value;
+      bestWidth = (widthShares[w] as number) * fwhmNm;
+    }
+  }
+  let sum = 0;
+  for (let w = 0; w < widths; w++) sum += exp((scoreAt[w] as number) - best);
+  const value = best + log(sum / widths);
+  return { value, chanceProbability: Math.min(1, exp(-value)), standardDeviationNm: bestWidth };
 }
 
 /** ln g of every line, at one width; NaN for lines that may not name themselves. */
@@ -189,28 +253,26 @@ function lineOdds(
   return strayShare + ((1 - strayShare) * windowNm * sum) / (sd * Math.sqrt(2 * PI));
 }
 
-/** Number of axes within the bounds that differ by more than one standard deviation. */
-export function distinguishableAxes(problem: Problem, width: number): number {
-  const { bounds } = problem;
-  const cell = 2.5 * width;
-  const along = (half: number): number => Math.max(1, (2 * half) / cell);
-  const ends = along(bounds.endNm) * along(Math.min(bounds.scaleNm, bounds.endNm));
-  return ends * along(bounds.curvatureNm) * along(bounds.cubicNm);
-}
-
+/** What the prominent lines cost that should be in the capture and were not found. */
 function missedCost(problem: Problem, table: ReferenceTable, correction: Float64Array): number {
   const a = endNm(problem, correction, -1);
   const b = endNm(problem, correction, 1);
   const low = Math.min(a, b) + problem.fwhmNm;
   const high = Math.max(a, b) - problem.fwhmNm;
+  const within = 0.8 * problem.fwhmNm;
+  const { byPlace } = problem;
+  const { count } = problem;
   let cost = 0;
-  for (let j = lowerBound(table.nm, low); j < table.nm.length && (table.nm[j] as number) <= high; j++) {
+  // Published lines ascend, and so do the found ones along the capture, one way or the other.
+  let at = a <= b ? 0 : count - 1;
+  const step = a <= b ? 1 : -1;
+  for (let j = lowerBound(table.nm, low); j < table.nm.length; j++) {
+    const nm = table.nm[j] as number;
+    if (nm > high) break;
     const strength = table.strength[j] as number;
     if (strength < prominent) continue;
-    let found = false;
-    for (let i = 0; i < problem.count && !found; i++) {
-      found = Math.abs(correctedNm(problem, correction, i) - (table.nm[j] as number)) < 0.8 * problem.fwhmNm;
-    }
+    while (at >= 0 && at < count && correctedNm(problem, correction, byPlace[at] as number) <= nm - within) at += step;
+    const found = at >= 0 && at < count && correctedNm(problem, correction, byPlace[at] as number) < nm + within;
     if (!found) cost += missCost * strength;
   }
   return cost;

@@ -257,7 +257,7 @@ const normal = new Float64Array(orderCount * orderCount);
 const right = new Float64Array(orderCount);
 
 /** Refine one axis; null where it leaves the bounds or holds fewer than three lines. */
-function refine(problem: Problem, table: ReferenceTable, odds: Odds, start: Float64Array): Float64Array | null {
+export function refine(problem: Problem, table: ReferenceTable, odds: Odds, start: Float64Array): Float64Array | null {
   const correction = Float64Array.from(start);
   const strong = strongCount(problem);
   const { bounds, fwhmNm } = problem;

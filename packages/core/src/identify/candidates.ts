@@ -1,0 +1,186 @@
+/**
+ * Candidates: axes that may be the capture's, with the names they would give, for one question (lamp, belief about the range).
+ *
+ * With an earlier axis or a range the search runs within the bounds of the belief (`search`). With the lamp alone it runs over all
+ * spans and places (`search-alone`); each axis found there is then asked about as if its own ends had been given as a range, but
+ * with the evidence that so free a choice leaves.
+ */
+import { log } from "../numeric/elementary.ts";
+import type { IdentifyInput } from "./identify-lines.ts";
+import { type Naming, nameLines } from "./name-lines.ts";
+import { buildProblem, type Problem, usualCubic } from "./problem.ts";
+import { type ReferenceTable, referenceTable } from "./reference-table.ts";
+import { longestNm, leastSpanNm, mostSpanNm, scalesOf, shortestNm } from "./scale-tables.ts";
+import { correctedNm, type Evidence, evidenceFor, type Odds, oddsFor, strongCount } from "./score.ts";
+import { BestLampAxes, type LampAxis, searchTriple, triplesOf } from "./search-alone.ts";
+import { refine, searchAxes } from "./search.ts";
+
+/** Axes looked at closely. */
+const polished = 5;
+const agreementShare = 0.3;
+/** Triples of lines tried, round by round, with the lamp alone. */
+const rounds = [2, 3, 4, 6] as const;
+/** An answer beyond doubt ends the rounds. */
+const decisiveEvidence = 15;
+const decisiveLead = 8;
+const decisiveShare = 0.75;
+
+export interface Question {
+  problem: Problem;
+  table: ReferenceTable;
+  odds: Odds;
+}
+
+export interface Candidate extends Question {
+  correction: Float64Array;
+  naming: Naming;
+  evidence: Evidence;
+  namedCount: number;
+  /** Wavelength of every line on this axis, nm. */
+  places: Float64Array;
+}
+
+interface Hypothesis extends Question {
+  correction: Float64Array;
+  evidence: Evidence;
+  places: Float64Array;
+}
+
+/** The question for some elements; `wide`: an earlier axis is trusted less. */
+export function ask(input: IdentifyInput, elements: readonly string[], wide: boolean): Question {
+  const problem = buildProblem(input, wide);
+  const reach = problem.bounds.endNm + problem.fwhmNm;
+  const low = Math.min(problem.baseFirstNm, problem.baseLastNm) - reach;
+  const high = Math.max(problem.baseFirstNm, problem.baseLastNm) + reach;
+  const table = referenceTable(input.lineList, elements, input.expectedLinesNm, low, high, problem.meaning);
+  return { problem, table, odds: oddsFor(table, high - low) };
+}
+
+/** Candidates of one question, best first. */
+export function candidatesOf(question: Question): Candidate[] {
+  const { problem, table, odds } = question;
+  const hypotheses = searchAxes(problem, table, odds).map((one) => ({
+    ...question,
+    ...one,
+    places: placesOf(problem, one.correction),
+  }));
+  return polish(hypotheses);
+}
+
+/** Candidates with nothing known but the elements, best first. */
+export function candidatesAlone(input: IdentifyInput, elements: readonly string[]): Candidate[] {
+  const problem = buildProblem(input);
+  const scales = scalesOf(input.lineList, elements, problem.meaning);
+  const triples = triplesOf(problem);
+  const best = new BestLampAxes();
+  const known = new Set<LampAxis>();
+  const hypotheses: Hypothesis[] = [];
+  let candidates: Candidate[] = [];
+  let next = 0;
+  for (const size of rounds) {
+    if (next >= triples.length) break;
+    for (const end = Math.min(triples.length, next + size); next < end; next++) {
+      searchTriple(problem, scales, triples[next] as (typeof triples)[number], best);
+    }
+    for (const axis of best.axes) {
+      if (known.has(axis)) continue;
+      known.add(axis);
+      const hypothesis = hypothesisFrom(input, elements, axis);
+      if (hypothesis !== null) hypotheses.push(hypothesis);
+    }
+    hypotheses.sort((a, b) => b.evidence.value - a.evidence.value);
+    candidates = polish(hypotheses);
+    if (isDecided(candidates)) break;
+  }
+  return candidates;
+}
+
+/** An axis found with the lamp alone, asked about as a range would be. */
+function hypothesisFrom(input: IdentifyInput, elements: readonly string[], axis: LampAxis): Hypothesis | null {
+  const [c0, c1, c2, c3] = axis.terms as unknown as [number, number, number, number];
+  const firstNm = c0 - c1 + c2 - c3;
+  const lastNm = c0 + c1 + c2 + c3;
+  const span = lastNm - firstNm;
+  const question = ask({ ...input, mode: { kind: "range", firstNm, lastNm } }, elements, false);
+  const { problem, table, odds } = question;
+  if (table.nm.length < 2) return null;
+  const width = Math.abs(span);
+  const places = Math.max(longestNm - shortestNm - width, (longestNm - shortestNm) / 4);
+  problem.logDensity = -log(width * places * log(mostSpanNm / leastSpanNm));
+  const start = Float64Array.of(c0 - (firstNm + lastNm) / 2, c1 - span / 2, c2, c3 - usualCubic * span);
+  const correction = refine(problem, table, odds, start);
+  if (correction === null) return null;
+  const evidence = evidenceFor(problem, table, odds, correction);
+  return { ...question, correction, evidence, places: placesOf(problem, correction) };
+}
+
+function placesOf(problem: Problem, correction: Float64Array): Float64Array {
+  const places = new Float64Array(problem.count);
+  for (let i = 0; i < problem.count; i++) places[i] = correctedNm(problem, correction, i);
+  return places;
+}
+
+/** Names for the best few hypotheses (sorted, best first). */
+function polish(hypotheses: readonly Hypothesis[]): Candidate[] {
+  const found: Candidate[] = [];
+  for (const hypothesis of hypotheses) {
+    if (found.length === polished) break;
+    const { problem, table, odds } = hypothesis;
+    // Many starts end on one axis: naming its lines once is enough.
+    if (found.some((one) => isSame(one.places, hypothesis.places, agreementShare * problem.fwhmNm))) continue;
+    const naming = nameLines(problem, table, hypothesis.correction);
+    if (naming === null) continue;
+    const { correction } = naming.fit;
+    const evidence = evidenceFor(problem, table, odds, correction);
+    let namedCount = 0;
+    for (const reference of naming.reference) if (reference >= 0) namedCount += 1;
+    const places = placesOf(problem, correction);
+    found.push({ problem, table, odds, correction, naming, evidence, namedCount, places });
+  }
+  return found.sort((a, b) => b.evidence.value - a.evidence.value);
+}
+
+function isSame(a: Float64Array, b: Float64Array, toleranceNm: number): boolean {
+  for (let i = 0; i < a.length; i++) {
+    if (Math.abs((a[i] as number) - (b[i] as number)) > toleranceNm) return false;
+  }
+  return true;
+}
+
+function isDecided(candidates: readonly Candidate[]): boolean {
+  const best = candidates[0];
+  if (best === undefined || best.evidence.value < decisiveEvidence) return false;
+  const { explained, strong } = strongShare(best);
+  if (explained < decisiveShare * strong) return false;
+  return candidates.every(
+    (other) =>
+      other === best || agreement(best, other) >= 0.7 || best.evidence.value - other.evidence.value >= decisiveLead,
+  );
+}
+
+/** Strong lines, and how many of them lie on a published line. */
+export function strongShare({ problem, naming }: Candidate): { explained: number; strong: number } {
+  const strong = strongCount(problem);
+  let explained = 0;
+  for (let rank = 0; rank < strong; rank++) {
+    explained += naming.explained[problem.byHeight[rank] as number] as number;
+  }
+  return { explained, strong };
+}
+
+/** Whether two axes say the same of a line, to a fraction of its width. */
+export function agreeAt(a: Candidate, b: Candidate, i: number): boolean {
+  return Math.abs((a.places[i] as number) - (b.places[i] as number)) <= agreementShare * a.problem.fwhmNm;
+}
+
+/** Share of the lines that the better axis explains where the other one says the same. */
+export function agreement(best: Candidate, other: Candidate): number {
+  let same = 0;
+  let all = 0;
+  for (let i = 0; i < best.problem.count; i++) {
+    if (best.naming.explained[i] === 0) continue;
+    all += 1;
+    if (agreeAt(best, other, i)) same += 1;
+  }
+  return all === 0 ? 0 : same / all;
+}
