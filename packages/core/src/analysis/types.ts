@@ -31,6 +31,8 @@ export interface Spectrum {
   fullScaleCounts: number | null;
   /** Number of scans that were summed (not averaged) into each sample. */
   scansSummed: number;
+  /** Set once a new axis was applied: which. A spectrum that has it is not corrected again. Absent = as recorded. */
+  correctedBy?: { coefficients: number[]; meaning: AxisMeaning; isResampled: boolean };
 }
 
 /** What a file said, as read: shown to the person, printed by `analyse`. */
@@ -280,11 +282,39 @@ export interface AnalysisSetup {
    * curvature and its covariance kept from the earlier axis.
    */
   axisUpdate?: "fit" | "offset" | "offset-and-scale";
+  /** Family of a new pixel axis: a polynomial (default), or the geometry of the spectrometer, for which `optics` must be known. */
+  axisFamily?: Dispersion["family"];
+  /** Geometry of an array spectrometer as far as it is known; what the lines can tell better is fitted. Absent or null: not known. */
+  optics?: ArrayOptics | null;
+  /**
+   * Resolution of the instrument's display or drive, nm, as the lab states it; it moves all lines alike. Absent or null: with a set-up
+   * reproducibility at most a tenth of the sample step is assumed on an evenly spaced wavelength axis, else it is left out and named.
+   */
+  displayResolutionNm?: number | null;
+}
+
+/** Geometry of a spectrometer with a flat detector behind a plane grating. */
+export interface ArrayOptics {
+  groovesPerMm: number;
+  order: number;
+  focalLengthMm: number;
+  pixelPitchUm: number;
+  /** Angle between the incoming beam and the optical axis of the camera, degrees. */
+  includedAngleDeg: number;
 }
 
 export interface BudgetEntry {
   contribution:
-    "reference" | "fit" | "repeatability" | "set-up" | "resolution" | "dispersion" | "air" | "temperature" | "blend";
+    | "reference"
+    | "fit"
+    | "repeatability"
+    | "set-up"
+    | "resolution"
+    | "dispersion"
+    | "air"
+    | "temperature"
+    | "blend"
+    | "laser";
   uncNm: number;
   /** null = infinite. */
   degreesOfFreedom: number | null;
@@ -331,6 +361,17 @@ export interface LineResult extends Omit<FittedLine, "windowFirst" | "windowLast
   /** Used in the dispersion fit. */
   usedInAxis: boolean;
   residualNm: number | null;
+  /** |error| + U: for use where a known error is left uncorrected. Absent where `errorNm` is null. */
+  errorForUseNm?: number;
+  /**
+   * JCGM 106: of a line in tolerance (or inconclusive) the probability that its true error lies outside, of a line out of tolerance
+   * that it lies inside. Absent = not judged.
+   */
+  specificRisk?: number;
+  /** Influence of the line on the fitted axis at its own place, 0..1 (0: not used). Absent = it was no candidate for the axis. */
+  leverage?: number;
+  /** `residualNm` over its own standard deviation. Absent = it was no candidate for the axis. */
+  studentisedResidual?: number;
 }
 
 export interface VerdictSummary {
@@ -351,10 +392,16 @@ export interface SegmentResult extends ToleranceSegment {
   largestErrorForUseNm: number | null;
   worstLine: number | null;
   notJudgedBecause: string | null;
+  /**
+   * Largest |error| + U of the fitted error curve anywhere in the segment, between its lines too, with the error, its U and the place.
+   * Absent or null = not judged, or no error curve could be fitted.
+   */
+  fitted?: { errorForUseNm: number; errorNm: number; expandedUncNm: number; atNm: number } | null;
 }
 
 export interface Dispersion {
-  family: "polynomial";
+  /** `grating`: fitted as the geometry of the spectrometer; `coefficients` and `axis` are a polynomial that follows it to 1e-6 px. */
+  family: "polynomial" | "grating";
   degree: number;
   degreeChosenBy: "given" | "leave-one-out" | "earlier-axis";
   /** nm, ascending powers of the pixel; of the axis' own unit on a step axis, and of nm on a wavelength axis (a correction). */
@@ -366,6 +413,24 @@ export interface Dispersion {
   /** 11 equally spaced pixels, first to last. */
   samples: { px: number; nm: number; uncNm: number }[];
   rejected: { line: number; reason: string }[];
+  /**
+   * How well each family predicts lines it was not fitted to, where both were tried: evidence which describes the instrument.
+   * Absent = only one was.
+   */
+  families?: { family: "polynomial" | "grating"; parameters: number; leaveOneOutRmsNm: number; note: string }[];
+  /** Fitted geometry of the family `grating`, each parameter with its standard uncertainty (0: held). Absent = a polynomial. */
+  geometry?: { parameter: string; value: number; unc: number; unit: string }[];
+  /** How an earlier axis was moved: a line that stood at pixel p + offset + scale (p - centre) stands at p. Absent = fitted anew. */
+  update?: {
+    kind: "offset" | "offset-and-scale";
+    offsetPx: number;
+    offsetUncPx: number;
+    centrePx: number;
+    scale: number;
+    scaleUnc: number;
+    /** Whether the curvature's own uncertainty was known from the earlier axis; else `axis` states too little. */
+    isCurvatureUncKnown: boolean;
+  };
 }
 
 /** One check as a point of its drift series. Straight line of error against wavelength, weighted. */
@@ -406,6 +471,8 @@ export interface Analysis {
   verdict: VerdictSummary | null;
   /** The verdict with every line that could be judged, none left out by a person. */
   verdictWithEveryLine: VerdictSummary | null;
+  /** Probability that the true errors of all judged lines lie within their tolerances together. Absent or null = none was judged. */
+  jointConformanceProbability?: number | null;
   segments: SegmentResult[];
   dispersion: Dispersion | null;
   driftPoint: DriftPoint | null;
