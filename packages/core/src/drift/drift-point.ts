@@ -16,23 +16,38 @@ export interface DriftLine {
   ownUncNm: number;
 }
 
+/** The weighted line of error against wavelength, as the stated uncertainties alone give it. */
+export interface ErrorLine {
+  firstNm: number;
+  lastNm: number;
+  midNm: number;
+  rangeNm: number;
+  midErrorNm: number;
+  scaleErrorNm: number;
+  /** nm², not grown by scatter; the scale error's is 0 where it is not known. */
+  midVarianceNm2: number;
+  scaleVarianceNm2: number;
+  covarianceNm2: number;
+  /** Sum of (residual / u)². */
+  chiSquare: number;
+  degreesOfFreedom: number;
+  /** False with one line, or all at one wavelength. */
+  hasSlope: boolean;
+}
+
 const leastUncNm = 1e-9;
 
-/**
- * @param lines        judged lines, at least one
- * @param sharedUncNm  standard uncertainty that moves all lines together, nm
- * @returns null without lines; with one line (or all at one wavelength) the scale error is 0 and `rangeNm` is 0: it is not known
- */
-export function driftPointOf(lines: readonly DriftLine[], sharedUncNm: number): DriftPoint | null {
+/** @returns null without lines */
+export function errorLineOf(lines: readonly DriftLine[]): ErrorLine | null {
   if (lines.length === 0) return null;
-  let first = Number.POSITIVE_INFINITY;
-  let last = Number.NEGATIVE_INFINITY;
+  let firstNm = Number.POSITIVE_INFINITY;
+  let lastNm = Number.NEGATIVE_INFINITY;
   for (const { wavelengthNm } of lines) {
-    if (wavelengthNm < first) first = wavelengthNm;
-    if (wavelengthNm > last) last = wavelengthNm;
+    if (wavelengthNm < firstNm) firstNm = wavelengthNm;
+    if (wavelengthNm > lastNm) lastNm = wavelengthNm;
   }
-  const midNm = (first + last) / 2;
-  const rangeNm = last - first;
+  const midNm = (firstNm + lastNm) / 2;
+  const rangeNm = lastNm - firstNm;
   let sw = 0;
   let sx = 0;
   let sxx = 0;
@@ -59,12 +74,35 @@ export function driftPointOf(lines: readonly DriftLine[], sharedUncNm: number): 
     const residual = (errorNm - midErrorNm - x * scaleErrorNm) / u;
     chiSquare += residual * residual;
   }
-  const dof = lines.length - (hasSlope ? 2 : 1);
-  const inflation = dof > 0 ? Math.max(1, chiSquare / dof) : 1;
-  const shared = sharedUncNm * sharedUncNm;
-  const midVariance = (hasSlope ? sxx / determinant : 1 / sw) * inflation + shared;
-  const scaleVariance = hasSlope ? (sw / determinant) * inflation : 0;
-  const covariance = hasSlope ? (-sx / determinant) * inflation : 0;
+  return {
+    firstNm,
+    lastNm,
+    midNm,
+    rangeNm,
+    midErrorNm,
+    scaleErrorNm,
+    midVarianceNm2: hasSlope ? sxx / determinant : 1 / sw,
+    scaleVarianceNm2: hasSlope ? sw / determinant : 0,
+    covarianceNm2: hasSlope ? -sx / determinant : 0,
+    chiSquare,
+    degreesOfFreedom: lines.length - (hasSlope ? 2 : 1),
+    hasSlope,
+  };
+}
+
+/**
+ * @param lines        judged lines, at least one
+ * @param sharedUncNm  standard uncertainty that moves all lines together, nm
+ * @returns null without lines; with one line (or all at one wavelength) the scale error is 0 and `rangeNm` is 0: it is not known
+ */
+export function driftPointOf(lines: readonly DriftLine[], sharedUncNm: number): DriftPoint | null {
+  const line = errorLineOf(lines);
+  if (line === null) return null;
+  const { midErrorNm, scaleErrorNm, degreesOfFreedom } = line;
+  const inflation = degreesOfFreedom > 0 ? Math.max(1, line.chiSquare / degreesOfFreedom) : 1;
+  const midVariance = line.midVarianceNm2 * inflation + sharedUncNm * sharedUncNm;
+  const scaleVariance = line.scaleVarianceNm2 * inflation;
+  const covariance = line.covarianceNm2 * inflation;
 
   // A straight line is largest at one of its ends.
   const atEnd = (x: number): { error: number; unc: number } => ({
@@ -75,8 +113,8 @@ export function driftPointOf(lines: readonly DriftLine[], sharedUncNm: number): 
   const high = atEnd(0.5);
   const largest = Math.abs(high.error) >= Math.abs(low.error) ? high : low;
   return {
-    midNm,
-    rangeNm,
+    midNm: line.midNm,
+    rangeNm: line.rangeNm,
     midErrorNm,
     midErrorUncNm: Math.sqrt(midVariance),
     scaleErrorNm,
@@ -84,6 +122,6 @@ export function driftPointOf(lines: readonly DriftLine[], sharedUncNm: number): 
     covarianceNm2: covariance,
     largestErrorNm: largest.error,
     largestErrorUncNm: 2 * largest.unc,
-    largestAtNm: largest === high ? last : first,
+    largestAtNm: largest === high ? line.lastNm : line.firstNm,
   };
 }
