@@ -5,3 +5,4 @@ export * from "./linear-least-squares.ts";
 export * from "./chebyshev.ts";
 export * from "./levenberg-marquardt.ts";
 export * from "./faddeeva.ts";
+export * from "./multivariate-normal.ts";
