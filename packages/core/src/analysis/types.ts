@@ -63,6 +63,10 @@ export interface FileFacts {
   damagedLines: { line: number; reason: string }[];
   /** Plain sentences about guesses a person should see. */
   remarks: string[];
+  /** The lines point down in the file and the signal was turned over; absent = as written. */
+  inverted?: boolean;
+  /** Tables below one another, or blocks of a compound file; absent = one. */
+  tables?: number;
 }
 
 /** Corrections of the reader's guesses. */
@@ -75,6 +79,28 @@ export interface ReadOptions {
   decimal?: FileFacts["decimal"];
   fullScaleCounts?: number;
   scansSummed?: number;
+  /** Column of intensities by its heading (letter case ignored), or in a compound file the title of the block; `intensityColumn` wins. Absent = guessed. */
+  intensityName?: string;
+  /** Sign that groups thousands; `none`: no sign does. Absent = any but the decimal sign, where it can be nothing else. */
+  thousands?: "," | "." | " " | "'" | "none";
+  /** Where the comma is delimiter and decimal sign at once: how many pieces (1 or 2) make each column. Absent = told from all rows, or asked. */
+  cellsPerColumn?: number[];
+  /** `true`: lines point down, the signal is turned over; `false`: it stays as written. Absent = told from the signal, with a remark. */
+  inverted?: boolean;
+  /** Lines at the beginning of the file that are not looked at. Absent = 0. */
+  skipLines?: number;
+  /** Which of several tables below one another, or blocks of a compound file, counted from 0. Absent = the longest, with a remark. */
+  table?: number;
+}
+
+/** One way to read a file that can be read in more than one. */
+export interface PossibleReading {
+  /** Given to `readCapture` (with the options of before), the file is read so. */
+  options: ReadOptions;
+  /** For people: what this reading makes of the file. */
+  description: string;
+  /** Numbers of the first data row as this reading has them. */
+  firstRow: number[];
 }
 
 /** A refusal while reading or analysing: typed, with a sentence for people. */
@@ -89,6 +115,8 @@ export interface Refusal {
     | "non-monotonic-axis"
     | "duplicate-positions"
     | "ambiguous-number-format"
+    | "damaged-data"
+    | "unsupported-content"
     | "no-such-column"
     | "different-axes"
     | "no-lines"
@@ -97,6 +125,8 @@ export interface Refusal {
   reason: string;
   /** 1-based line of the file where it was seen, when there is one. */
   line: number | null;
+  /** Two readings or more that fit alike: the person chooses one. Absent = nothing to choose. */
+  readings?: PossibleReading[];
 }
 
 export type ReadCapture = { outcome: "read"; spectrum: Spectrum; facts: FileFacts } | Refusal;
