@@ -8,6 +8,12 @@ export interface AnalysedState {
   captureIds: readonly string[];
 }
 
+const modeWords: Record<StoredDraft["mode"], string> = {
+  "earlier-axis": "the axis in force",
+  range: "a range",
+  none: "the lamp's elements alone",
+};
+
 const words: Partial<Record<keyof StoredDraft, (value: never) => string>> = {
   minutesSinceSwitchOn: (value: number | null) =>
     value === null ? "time since switch-on not stated" : `lamp on for ${value} min`,
@@ -16,7 +22,7 @@ const words: Partial<Record<keyof StoredDraft, (value: never) => string>> = {
   relativeHumidity: (value: number | null) =>
     value === null ? "humidity not measured" : `humidity ${Math.round(value * 100)} %`,
   fullScaleCounts: (value: number | null) => (value === null ? "full scale not stated" : `full scale ${value} counts`),
-  mode: (value: string) => (value === "range" ? "lines named by a range" : "lines named by the axis in force"),
+  mode: (value: StoredDraft["mode"]) => `lines named by ${modeWords[value]}`,
 };
 
 /** @param previous null for the first analysis of a check */

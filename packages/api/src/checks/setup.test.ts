@@ -81,6 +81,13 @@ describe("what the core is told", () => {
     expect(setupWith(own).setupReproducibility).toMatchObject({ unit: "nm", basis: "assumed" });
   });
 
+  test("with no axis in force lines may be named by a range, or by the lamp's elements alone", () => {
+    const range = { ...records.draft, mode: "range" as const, rangeFirstNm: 340, rangeLastNm: 1020 };
+    expect(setupWith({ axis: null, draft: range }).mode).toEqual({ kind: "range", firstNm: 340, lastNm: 1020 });
+    const alone = { ...records.draft, mode: "none" as const };
+    expect(setupWith({ axis: null, draft: alone }).mode).toEqual({ kind: "none" });
+  });
+
   test("the draft's full scale before the detector's own; no barometer: the lab's altitude", () => {
     expect(setupWith({}).reading).toEqual({ fullScaleCounts: 65535 });
     expect(setupWith({ draft: { ...records.draft, fullScaleCounts: 4095 } }).reading).toEqual({

@@ -154,12 +154,13 @@ function modeOf({ configuration, draft, axis, reading }: SetupRecords): Identifi
     );
   }
   if (draft.mode === "earlier-axis" && axis !== null) return { kind: "earlier-axis", axis: pixelAxis(axis) };
+  if (draft.mode === "none") return { kind: "none" };
   const firstNm = draft.rangeFirstNm ?? configuration.rangeFirstNm;
   const lastNm = draft.rangeLastNm ?? configuration.rangeLastNm;
   if (draft.mode === "earlier-axis") {
     throw problem(
       "unusable",
-      "No axis is in force for this configuration yet. Name the lines by the range instead: the first and last wavelength of the capture. The captures are kept.",
+      "No axis is in force for this configuration yet. Name the lines by the range instead (the first and last wavelength of the capture), or by the lamp alone. The captures are kept.",
     );
   }
   if (firstNm === lastNm)

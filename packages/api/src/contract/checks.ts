@@ -40,8 +40,8 @@ export const draftInput = z.object({
   pressureHpa: z.number().min(500).max(1100).nullable(),
   relativeHumidity: z.number().min(0).max(1).nullable(),
   fullScaleCounts: z.number().positive().nullable(),
-  /** How a pixel capture is named: the axis in force, or a range typed in. */
-  mode: z.enum(["earlier-axis", "range"]),
+  /** How a pixel capture is named: by the axis in force, a range typed in, or the lamp's elements alone. */
+  mode: z.enum(["earlier-axis", "range", "none"]),
   rangeFirstNm: z.number().nullable(),
   rangeLastNm: z.number().nullable(),
   leftOut: z.array(leftOutLine).max(200),

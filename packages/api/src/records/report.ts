@@ -102,7 +102,9 @@ function circumstances(sheet: PdfSheet, facts: ReportFacts): void {
       facts.axis === null
         ? setup.mode.kind === "earlier-axis"
           ? "the instrument's own"
-          : "none: lines named by a range"
+          : setup.mode.kind === "range"
+            ? "none: lines named by a range"
+            : "none: lines named by the lamp's elements alone"
         : `no. ${facts.axis.number}, since ${dayText(dateIn(lab.zone, facts.axis.inForceFrom))}`,
     ],
     ["Room", roomText(facts)],

@@ -103,7 +103,7 @@ export function ConditionsSection({ check, keeper, configuration, altitudeM }: C
             <SelectField
               label="Lines are named by"
               value={draft.mode}
-              onChange={(event) => change({ mode: event.target.value === "range" ? "range" : "earlier-axis" })}
+              onChange={(event) => change({ mode: event.target.value as typeof draft.mode })}
               choices={[
                 {
                   value: "earlier-axis",
@@ -114,7 +114,9 @@ export function ConditionsSection({ check, keeper, configuration, altitudeM }: C
                   disabled: check.axisInForce === null && draft.mode !== "earlier-axis",
                 },
                 { value: "range", label: "a range typed in" },
+                { value: "none", label: "the lamp alone" },
               ]}
+              note={draft.mode === "none" ? "Six lines or more must stand out; a range is surer" : undefined}
               error={refusals.get("mode")}
             />
             {draft.mode === "range" && (
