@@ -77,12 +77,12 @@ interface Family {
 }
 
 const families: readonly Family[] = [
-  { kind: "drift", share: 0.6, mid: ["trend"], scale: [] },
-  { kind: "drift", share: 0.1, mid: ["trend", "curvature"], scale: [] },
-  { kind: "drift", share: 0.2, mid: [], scale: [], placed: { effect: "onset", mid: true, scale: false } },
-  { kind: "scale", share: 0.6, mid: [], scale: ["trend"] },
-  { kind: "scale", share: 0.1, mid: [], scale: ["trend", "curvature"] },
-  { kind: "scale", share: 0.2, mid: [], scale: [], placed: { effect: "onset", mid: false, scale: true } },
+  { kind: "drift", share: 0.94, mid: ["trend"], scale: [] },
+  { kind: "drift", share: 0.01, mid: ["trend", "curvature"], scale: [] },
+  { kind: "drift", share: 0.05, mid: [], scale: [], placed: { effect: "onset", mid: true, scale: false } },
+  { kind: "scale", share: 0.94, mid: [], scale: ["trend"] },
+  { kind: "scale", share: 0.01, mid: [], scale: ["trend", "curvature"] },
+  { kind: "scale", share: 0.05, mid: [], scale: [], placed: { effect: "onset", mid: false, scale: true } },
   { kind: "by-size", share: 0.2, mid: ["trend"], scale: ["trend"] },
   { kind: "step", share: 0.55, mid: [], scale: [], placed: { effect: "step", mid: true, scale: false } },
   { kind: "step", share: 0.15, mid: [], scale: [], placed: { effect: "step", mid: false, scale: true } },
