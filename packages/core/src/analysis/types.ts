@@ -65,6 +65,8 @@ export interface FileFacts {
   remarks: string[];
   /** The lines point down in the file and the signal was turned over; absent = as written. */
   inverted?: boolean;
+  /** Which way the axis ran in the file; absent = from `first` to `last`. */
+  direction?: "up" | "down";
   /** Tables below one another, or blocks of a compound file; absent = one. */
   tables?: number;
 }
@@ -161,6 +163,12 @@ export interface FittedLine {
   /** Index of the lines that were fitted together share this group number. */
   group: number;
   flags: LineFlag[];
+  /** Degrees of freedom of `positionUnc` where its noise was learned from few samples; absent = as the scatter about the fit says. */
+  positionDegreesOfFreedom?: number;
+  /** Names of the files this line was taken from: of several exposures or windows; absent = all of the check's captures. */
+  takenFrom?: string[];
+  /** Scanned upwards minus scanned downwards, axis unit, with standard uncertainty; absent = not seen in both directions. */
+  backlash?: { value: number; unc: number };
 }
 
 /** One published line. */
@@ -214,6 +222,19 @@ export type LineShapeName =
   "gaussian" | "lorentzian" | "voigt" | "pseudo-voigt" | "exponentially-modified-gaussian" | "box" | "empirical";
 /** `automatic`: one shape for the whole capture, chosen from its strong lines by an information criterion. */
 export type LineShapeChoice = LineShapeName | "automatic";
+
+/** The shape that a capture's lines were fitted with. */
+export interface CaptureLineShape {
+  name: LineShapeName;
+  /** `evidence`: by an information criterion over the strong lines. */
+  chosenBy: "default" | "setup" | "evidence";
+  /** Shape parameter over the strong lines, and its scatter between them beyond their uncertainties; null: it has none, or no line shows it. */
+  parameter: { name: string; value: number; unc: number; scatter: number } | null;
+  /** Strong, single, unsaturated lines that it rests on. */
+  lines: number;
+  /** A sentence. */
+  note: string;
+}
 
 /**
  * What a line's position means. `fitted`: centre of symmetry of the fitted shape, for a skewed one its first moment. The other two
@@ -344,7 +365,8 @@ export interface BudgetEntry {
     | "air"
     | "temperature"
     | "blend"
-    | "laser";
+    | "laser"
+    | "bandwidth";
   uncNm: number;
   /** null = infinite. */
   degreesOfFreedom: number | null;
@@ -493,6 +515,10 @@ export interface Analysis {
   noiseCounts: number;
   /** Lag-one correlation of the quiet samples; > 0.2 is said as *smoothed*. */
   noiseCorrelation: number;
+  /** Correlation by lag, first entry lag one; empty = white. Absent = only lag one was measured. */
+  noiseAutocorrelation?: number[];
+  /** Shape that the lines were fitted with and who chose it; absent = gaussian, by default. */
+  lineShape?: CaptureLineShape;
   medianFwhm: number | null;
   lines: LineResult[];
   /** Published lines of the lamp inside the range that were expected (required or strong) and not found. */
@@ -503,6 +529,10 @@ export interface Analysis {
   verdictWithEveryLine: VerdictSummary | null;
   /** Probability that the true errors of all judged lines lie within their tolerances together. Absent or null = none was judged. */
   jointConformanceProbability?: number | null;
+  /** What the ordinate of an absorption spectrum was taken for; absent = an emission spectrum. */
+  ordinate?: "absorbance" | "transmittance" | "percent-transmittance";
+  /** Weighted mean over the lines of scanned upwards minus scanned downwards, nm; absent = not scanned in both directions. */
+  backlashNm?: { value: number; unc: number };
   segments: SegmentResult[];
   dispersion: Dispersion | null;
   driftPoint: DriftPoint | null;
@@ -540,4 +570,6 @@ export interface CaptureInput {
   sha256: string | null;
   /** `reference`: the empty beam or the blank that a sample's transmittance is taken against. */
   part: "lamp" | "dark" | "reference";
+  /** Exposure time, ms, where it is known; absent = read from the file's header, else told from the light. */
+  exposureMs?: number;
 }
