@@ -5,19 +5,19 @@
  * its reason; what can't be decided is refused in a sentence, never guessed.
  */
 import { textToBytes } from "../capture/decode.ts";
-import { driftPointOf } from "../drift/drift-point.ts";
 import { identifyLines, type IdentifiedLines } from "../identify/identify-lines.ts";
 import { builtInLineList } from "../linelist/built-in.ts";
 import { findLines, smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
-import { summarise, type JudgedLine } from "../uncertainty/conformity.ts";
 import { coreVersion } from "../version.ts";
 import { combineCaptures, type CombinedCaptures } from "./combine-captures.ts";
 import { drawSpectrum } from "./draw-spectrum.ts";
 import { findMisplaced, fitAxis, misplacedReason } from "./fit-axis.ts";
-import { indicatingAxisOf, type IndicatingAxis } from "./indicating-axis.ts";
-import { isLine, judgeLine, type JudgedLineResult } from "./judge-lines.ts";
+import { indicatingAxisOf } from "./indicating-axis.ts";
+import { driftPointOfLines, jointProbabilityOf, sharedUncOf, verdictsOf } from "./judge-check.ts";
+import { judgeLine, type JudgedLineResult } from "./judge-lines.ts";
+import { notIncludedIn } from "./line-budget.ts";
 import { repeatabilityOf } from "./repeatability.ts";
-import { judgeSegments } from "./segments.ts";
+import { errorCurveOf, judgeSegments } from "./segments.ts";
 import type {
   AnalysedCheck,
   Analysis,
@@ -32,6 +32,8 @@ import type {
 /** What may be exchanged beside the setup; a lab's own line list travels here, its version in the setup. */
 export interface AnalysisResources {
   lineList?: LineList;
+  /** False: no drawing is made, for callers that show none. Default true. */
+  withDrawing?: boolean;
 }
 
 /**
@@ -130,6 +132,8 @@ function analyseCombined(
   }
   const results = lines.map((one) => one.result);
   const verdicts = verdictsOf(lines, identified, setup, axis);
+  const driftPoint = driftPointOfLines(lines);
+  const curve = errorCurveOf(axis, dispersion, driftPoint, sharedUncOf(lines));
   const analysis: Analysis = {
     format: 1,
     coreVersion,
@@ -146,14 +150,18 @@ function analyseCombined(
     missingLinesNm: identified.missingLinesNm,
     verdict: verdicts.asAsked,
     verdictWithEveryLine: verdicts.withEveryLine,
-    segments: judgeSegments(results, setup.tolerance),
+    jointConformanceProbability: jointProbabilityOf(lines),
+    segments: judgeSegments(results, setup.tolerance, curve),
     dispersion,
-    driftPoint: driftOf(lines),
+    driftPoint,
     confidence: { chanceProbability: identified.chanceProbability, margin: identified.margin, note: identified.note },
-    notIncluded: setup.setupReproducibility === null && axis !== null ? ["set-up reproducibility"] : [],
+    notIncluded: notIncludedIn(axis, setup),
     warnings: [...warningsOf(found, combined), ...identified.warnings],
   };
-  return { analysis, drawing: drawSpectrum(spectrum, found, axis, dispersion) };
+  return {
+    analysis,
+    drawing: resources.withDrawing === false ? null : drawSpectrum(spectrum, found, axis, dispersion),
+  };
 }
 
 function settingsProblem(spectrum: Spectrum, setup: AnalysisSetup, lineList: LineList): string | null {
@@ -205,53 +213,6 @@ function tightestTolerance(setup: AnalysisSetup): number | null {
   for (const { toleranceNm } of setup.tolerance)
     if (tightest === null || toleranceNm < tightest) tightest = toleranceNm;
   return tightest;
-}
-
-function verdictsOf(
-  lines: JudgedLineResult[],
-  identified: IdentifiedLines,
-  setup: AnalysisSetup,
-  axis: IndicatingAxis | null,
-): { asAsked: Analysis["verdict"]; withEveryLine: Analysis["verdict"] } {
-  if (setup.tolerance.length === 0 || axis === null) return { asAsked: null, withEveryLine: null };
-  const namedCount = lines.filter(({ result }) => result.wavelengthNm !== null).length;
-  const judged = (withLeftOut: boolean): JudgedLine[] =>
-    lines.flatMap(({ result, judgement }, line) =>
-      judgement !== null && (withLeftOut || result.leftOut === null) ? [{ line, judgement }] : [],
-    );
-  const reasons = (withLeftOut: boolean): string[] => {
-    const found: string[] = [];
-    if (identified.outcome !== "identified")
-      found.push(identified.reason ?? "The lines could not be named with certainty.");
-    for (const required of setup.requiredLinesNm) {
-      const line = lines.find(
-        ({ result }) =>
-          result.wavelengthNm !== null &&
-          (isLine([required], result.wavelengthNm) || result.blendOfNm.some((part) => isLine([required], part))),
-      );
-      const label = `The required line ${required} nm`;
-      if (line === undefined) found.push(`${label} was not found.`);
-      else if (line.judgement === null) found.push(`${label} can't be judged. ${line.result.reason ?? ""}`.trim());
-      else if (!withLeftOut && line.result.leftOut !== null) found.push(`${label} was left out.`);
-    }
-    return found;
-  };
-  return {
-    asAsked: summarise(judged(false), namedCount, reasons(false)),
-    withEveryLine: summarise(judged(true), namedCount, reasons(true)),
-  };
-}
-
-function driftOf(lines: JudgedLineResult[]): Analysis["driftPoint"] {
-  const used = lines.filter(
-    ({ result }) => result.errorNm !== null && (result.status === "judged" || result.status === "not-judged"),
-  );
-  let shared = 0;
-  for (const { sharedUncNm } of used) shared += sharedUncNm / used.length;
-  return driftPointOf(
-    used.map(({ result, ownUncNm }) => ({ wavelengthNm: result.wavelengthNm!, errorNm: result.errorNm!, ownUncNm })),
-    shared,
-  );
 }
 
 function warningsOf(found: FoundLines, combined: CombinedCaptures): Analysis["warnings"] {

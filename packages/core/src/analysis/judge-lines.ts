@@ -1,14 +1,9 @@
-/**
- * From fitted and named lines to errors with their budgets and verdicts, line by line.
- *
- * Budget  reference, blend, fit, repeatability, display resolution, set-up reproducibility, temperature, air (JCGM 100); everything in nm,
- *         positions multiplied by the local dispersion. What is not known is left out and named in `notIncluded`.
- */
+/** From fitted and named lines to errors with their budgets (`line-budget.ts`) and verdicts, line by line. */
 import type { LineName } from "../identify/identify-lines.ts";
-import { isBeyondChance } from "../lineshape/fit-line.ts";
-import { combineContributions, type Contribution } from "../uncertainty/budget.ts";
+import { combineContributions } from "../uncertainty/budget.ts";
 import { judgeError, toleranceAt, type Judgement } from "../uncertainty/conformity.ts";
 import type { IndicatingAxis } from "./indicating-axis.ts";
+import { budgetOfLine, type LineRepeatability } from "./line-budget.ts";
 import type { AnalysisSetup, FittedLine, LeftOutLine, LineResult } from "./types.ts";
 
 /** A published wavelength is the same line as another within this, nm: lists print at least three decimals. */
@@ -23,6 +18,8 @@ export interface JudgedLineResult {
   /** Part of the standard uncertainty that belongs to this line alone, and the part all lines share, nm. */
   ownUncNm: number;
   sharedUncNm: number;
+  /** Signed share of each cause that moves all lines together, nm: `sharedCauses` in their order. */
+  sharedByCauseNm: readonly number[];
   /** May enter the dispersion fit. */
   fitsAxis: boolean;
 }
@@ -30,8 +27,8 @@ export interface JudgedLineResult {
 export interface LineInput {
   line: FittedLine;
   name: LineName | null;
-  /** Type A standard uncertainty of the mean position over repeats, axis units, or null with one capture. */
-  repeatability: { unc: number; degreesOfFreedom: number } | null;
+  /** What repeats show beyond the fit's own uncertainty, or null with one capture. */
+  repeatability: LineRepeatability | null;
 }
 
 export function isLine(list: readonly number[], wavelengthNm: number): boolean {
@@ -98,7 +95,14 @@ function unnamedResult(line: FittedLine, axis: IndicatingAxis | null): LineResul
 export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: AnalysisSetup): JudgedLineResult {
   const { line, name } = input;
   const result = unnamedResult(line, axis);
-  const judged: JudgedLineResult = { result, judgement: null, ownUncNm: 0, sharedUncNm: 0, fitsAxis: false };
+  const judged: JudgedLineResult = {
+    result,
+    judgement: null,
+    ownUncNm: 0,
+    sharedUncNm: 0,
+    sharedByCauseNm: [],
+    fitsAxis: false,
+  };
   if (name === null) return judged;
 
   const blend = blendWavelengths(name);
@@ -127,7 +131,7 @@ export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: 
     return judged;
   }
 
-  const { contributions, sharedUncNm } = contributionsOf(input, name, axis, setup);
+  const { contributions, sharedByCauseNm } = budgetOfLine(line, name, input.repeatability, axis, setup);
   const combined = combineContributions(contributions);
   const errorNm = axis.indicatedNm(line.position) - axis.referenceNm(name.wavelengthNm, name.medium);
   result.errorNm = errorNm;
@@ -135,10 +139,14 @@ export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: 
   result.errorExpandedUncNm = combined.expandedUncNm;
   result.coverageFactor = combined.coverageFactor;
   result.effectiveDegreesOfFreedom = combined.effectiveDegreesOfFreedom;
+  result.errorForUseNm = Math.abs(errorNm) + combined.expandedUncNm;
   result.budget = combined.budget;
   result.toleranceNm = toleranceNm;
-  judged.sharedUncNm = sharedUncNm;
-  judged.ownUncNm = Math.sqrt(Math.max(0, combined.uncNm * combined.uncNm - sharedUncNm * sharedUncNm));
+  let sharedVariance = 0;
+  for (const share of sharedByCauseNm) sharedVariance += share * share;
+  judged.sharedByCauseNm = sharedByCauseNm;
+  judged.sharedUncNm = Math.sqrt(sharedVariance);
+  judged.ownUncNm = Math.sqrt(Math.max(0, combined.uncNm * combined.uncNm - sharedVariance));
   if (refusedBecause !== null) return judged;
 
   const notJudged = whyNotJudged(name, setup, toleranceNm, combined.expandedUncNm);
@@ -153,6 +161,7 @@ export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: 
   result.guardBandNm = judgement.guardBandNm;
   result.toleranceUsed = judgement.toleranceUsed;
   result.conformanceProbability = judgement.conformanceProbability;
+  result.specificRisk = judgement.specificRisk;
   result.verdict = judgement.verdict;
   result.nearLimit = judgement.nearLimit;
   if (leftOut === null) result.status = "judged";
@@ -202,111 +211,4 @@ const leftOutWords: Record<LeftOutLine["reason"], string> = {
 
 function leftOutSentence(entry: LeftOutLine): string {
   return `Left out by a person: ${leftOutWords[entry.reason]}${entry.note === "" ? "" : ` (${entry.note})`}.`;
-}
-
-function contributionsOf(
-  input: LineInput,
-  name: LineName,
-  axis: IndicatingAxis,
-  setup: AnalysisSetup,
-): { contributions: Contribution[]; sharedUncNm: number } {
-  const { line, repeatability } = input;
-  const nmPerUnit = Math.abs(axis.slopeNm(line.position));
-  const scaled = isBeyondChance(line.reducedChiSquare, line.degreesOfFreedom);
-  const fitUnc = line.positionUnc;
-  const contributions: Contribution[] = [
-    {
-      contribution: "reference",
-      uncNm: name.referenceUncNm,
-      degreesOfFreedom: null,
-      sensitivity: 1,
-      assumed: name.referenceUncAssumed,
-      note: name.referenceUncAssumed
-        ? "the source states none: 0.001 nm assumed"
-        : `published (${name.referenceSource})`,
-    },
-    {
-      contribution: "fit",
-      uncNm: fitUnc * nmPerUnit,
-      degreesOfFreedom: scaled ? line.degreesOfFreedom : null,
-      sensitivity: nmPerUnit,
-      assumed: line.flags.includes("poor-fit") && line.degreesOfFreedom === 0,
-      note: scaled ? "centre of the line, scaled by the scatter about the fit" : "centre of the line, from the noise",
-    },
-  ];
-  if (name.blendUncNm > 0) {
-    contributions.push({
-      contribution: "blend",
-      uncNm: name.blendUncNm,
-      degreesOfFreedom: null,
-      sensitivity: 1,
-      assumed: true,
-      note: "half the spread of the blend's components over the square root of 3",
-    });
-  }
-  if (repeatability !== null) {
-    // The repeats scatter by their noise too, which the fit already holds: only what goes beyond it is added.
-    const beyond = repeatability.unc * repeatability.unc - fitUnc * fitUnc;
-    contributions.push({
-      contribution: "repeatability",
-      uncNm: beyond > 0 ? Math.sqrt(beyond) * nmPerUnit : 0,
-      degreesOfFreedom: repeatability.degreesOfFreedom,
-      sensitivity: nmPerUnit,
-      assumed: false,
-      note: `standard deviation of the mean of ${repeatability.degreesOfFreedom + 1} repeats, beyond the fit's own`,
-    });
-  }
-  if (axis.displayStepNm > 0) {
-    contributions.push({
-      contribution: "resolution",
-      uncNm: axis.displayStepNm / Math.sqrt(12),
-      degreesOfFreedom: null,
-      sensitivity: 1,
-      assumed: false,
-      note: "rounding of the axis as written, rectangular",
-    });
-  }
-  const shared: Contribution[] = [];
-  if (setup.setupReproducibility !== null) {
-    const { value, unit, basis, degreesOfFreedom } = setup.setupReproducibility;
-    const perUnit = unit === "px" ? axis.nmPerSample(line.position) : 1;
-    shared.push({
-      contribution: "set-up",
-      uncNm: value * perUnit,
-      degreesOfFreedom,
-      sensitivity: perUnit,
-      assumed: basis === "assumed",
-      note:
-        basis === "history"
-          ? "scatter between this configuration's own checks"
-          : basis === "stated"
-            ? "stated by the lab"
-            : "assumed: common practice, no source",
-    });
-  }
-  if (setup.temperatureEffect !== null) {
-    const { coefficientNmPerK, spreadK } = setup.temperatureEffect;
-    shared.push({
-      contribution: "temperature",
-      uncNm: Math.abs(coefficientNmPerK) * spreadK,
-      degreesOfFreedom: null,
-      sensitivity: coefficientNmPerK,
-      assumed: false,
-      note: `standard spread of the room, ${spreadK} K`,
-    });
-  }
-  const airUncNm = axis.airUncNm(name.wavelengthNm, name.medium);
-  if (airUncNm > 0) {
-    shared.push({
-      contribution: "air",
-      uncNm: airUncNm,
-      degreesOfFreedom: null,
-      sensitivity: 1,
-      assumed: false,
-      note: axis.airNote,
-    });
-  }
-  let sharedVariance = 0;
-  for (const { uncNm } of shared) sharedVariance += uncNm * uncNm;
-  return { contributions: [...contributions, ...shared], sharedUncNm: Math.sqrt(sharedVariance) };
 }

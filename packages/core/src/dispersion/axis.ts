@@ -36,12 +36,39 @@ export function axisUncNm(axis: PixelAxis, px: number): number | null {
   const covariance = axis.chebyshevCovariance;
   if (covariance === null) return null;
   const size = Math.round(Math.sqrt(covariance.length));
-  const t = axis.lastPx === axis.firstPx ? 0 : chebyshevArgument(px, axis.firstPx, axis.lastPx);
-  const basis = chebyshevBasis(size - 1, t);
+  return quadraticRoot(covariance, chebyshevBasis(size - 1, argumentOf(axis, px)));
+}
+
+/** Standard uncertainty of the local dispersion in nm per px; null where the covariance is not known. */
+export function axisSlopeUncNm(axis: PixelAxis, px: number): number | null {
+  const covariance = axis.chebyshevCovariance;
+  if (covariance === null || axis.lastPx === axis.firstPx) return null;
+  const size = Math.round(Math.sqrt(covariance.length));
+  const t = argumentOf(axis, px);
+  // T_j' = j U_j-1, with U_0 = 1, U_1 = 2 t, U_j+1 = 2 t U_j - U_j-1; t runs by 2 over the length of the axis.
+  const slope = new Float64Array(size);
+  let before = 0;
+  let current = 1;
+  for (let j = 1; j < size; j++) {
+    slope[j] = (j * current * 2) / (axis.lastPx - axis.firstPx);
+    const next = 2 * t * current - before;
+    before = current;
+    current = next;
+  }
+  return quadraticRoot(covariance, slope);
+}
+
+function argumentOf(axis: PixelAxis, px: number): number {
+  return axis.lastPx === axis.firstPx ? 0 : chebyshevArgument(px, axis.firstPx, axis.lastPx);
+}
+
+/** Root of v' C v, C row-major. */
+function quadraticRoot(covariance: readonly number[], vector: Float64Array): number {
+  const size = vector.length;
   let variance = 0;
   for (let i = 0; i < size; i++) {
     for (let j = 0; j < size; j++) {
-      variance += (basis[i] as number) * (basis[j] as number) * (covariance[i * size + j] as number);
+      variance += (vector[i] as number) * (vector[j] as number) * (covariance[i * size + j] as number);
     }
   }
   return Math.sqrt(Math.max(variance, 0));

@@ -52,12 +52,17 @@ export function combineContributions(contributions: readonly Contribution[]): Co
 export function coverageFactorFor(effectiveDegreesOfFreedom: number | null): number {
   if (effectiveDegreesOfFreedom === null || effectiveDegreesOfFreedom > 1e5) return 2;
   const dof = Math.max(1, Math.floor(effectiveDegreesOfFreedom + 1e-9));
+  if (dof > mostExactDof) {
+    // Student's quantile from the normal one, z = 2 (Abramowitz & Stegun 26.7.5); the next term is below 1e-9 here.
+    return 2 + (2.5 + (3.0625 + 2.859375 / dof) / dof) / dof;
+  }
   const known = factors.get(dof);
   if (known !== undefined) return known;
   const factor = studentQuantile((1 + coverageProbability) / 2, dof);
-  if (dof <= 200) factors.set(dof, factor);
+  factors.set(dof, factor);
   return factor;
 }
 
+const mostExactDof = 400;
 /** The same few degrees of freedom come up for every line. */
 const factors = new Map<number, number>();

@@ -12,6 +12,8 @@ export interface Judgement {
   /** |error| / tolerance. */
   toleranceUsed: number;
   conformanceProbability: number;
+  /** Of a line out of tolerance the probability that its true error lies inside, else that it lies outside (JCGM 106:2012, 9.3.2). */
+  specificRisk: number;
   verdict: Verdict;
   /** A pass above the warning share of the tolerance. */
   nearLimit: boolean;
@@ -33,11 +35,13 @@ export function judgeError(
   const size = Math.abs(error.errorNm);
   const guardBandNm = rule.kind === "simple" ? 0 : rule.r * error.expandedUncNm;
   const verdict: Verdict = size > toleranceNm ? "fail" : size > toleranceNm - guardBandNm ? "inconclusive" : "pass";
+  const probability = conformanceProbability(error, toleranceNm);
   return {
     toleranceNm,
     guardBandNm,
     toleranceUsed: size / toleranceNm,
-    conformanceProbability: conformanceProbability(error, toleranceNm),
+    conformanceProbability: probability,
+    specificRisk: verdict === "fail" ? probability : 1 - probability,
     verdict,
     nearLimit: verdict === "pass" && size > warningShare * toleranceNm,
   };

@@ -112,6 +112,7 @@ export const budgetWords: Record<BudgetEntry["contribution"], string> = {
   air: "Air",
   temperature: "Temperature",
   blend: "Blend",
+  laser: "Laser line",
 };
 
 export const flagWords: Record<LineFlag, string> = {
