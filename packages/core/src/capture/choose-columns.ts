@@ -3,7 +3,7 @@
  * nothing. Every guess a person should see becomes a remark; `ReadOptions` overrule all of them.
  */
 import type { AxisKind, AxisUnit, ReadOptions } from "../analysis/types.ts";
-import { readHeading, unitIn } from "./headings.ts";
+import { readHeading, unitIn, type HeadingMeaning } from "./headings.ts";
 
 export interface ColumnChoice {
   axisColumn: number | null;
@@ -13,18 +13,19 @@ export interface ColumnChoice {
   remarks: string[];
 }
 
-/** Longest wavelength taken for nanometres, and shortest for angstrom, where no unit is written. Common practice, no source. */
+/** Shortest and longest wavelength taken for nanometres, and shortest for angstrom, where no unit is written. Common practice, no source. */
+const leastNm = 100;
 const mostNm = 2600;
 const leastAngstrom = 1000;
 
-export const unitOfKind: Record<AxisKind, AxisUnit> = {
+const unitOfKind: Record<AxisKind, AxisUnit> = {
   pixel: "px",
   wavelength: "nm",
   wavenumber: "cm-1",
   step: "step",
 };
 
-function isStrictlyMonotonic(values: number[]): boolean {
+function isStrictlyMonotonic(values: readonly number[]): boolean {
   let direction = 0;
   for (let i = 1; i < values.length; i += 1) {
     const step = values[i]! - values[i - 1]!;
@@ -36,7 +37,10 @@ function isStrictlyMonotonic(values: number[]): boolean {
   return direction !== 0;
 }
 
-function mostlyOneWay(values: number[]): boolean {
+/** Share of the steps that must go one way for a column to be an axis with faults in it. */
+const leastOneWay = 0.8;
+
+function mostlyOneWay(values: readonly number[]): boolean {
   let up = 0;
   let down = 0;
   for (let i = 1; i < values.length; i += 1) {
@@ -44,11 +48,11 @@ function mostlyOneWay(values: number[]): boolean {
     if (step > 0) up += 1;
     else if (step < 0) down += 1;
   }
-  return Math.max(up, down) > 0.8 * (values.length - 1);
+  return Math.max(up, down) > leastOneWay * (values.length - 1);
 }
 
 /** Whole numbers in steps of one. */
-function countsSamples(values: number[]): boolean {
+function countsSamples(values: readonly number[]): boolean {
   for (let i = 0; i < values.length; i += 1) {
     const value = values[i]!;
     if (value !== Math.floor(value)) return false;
@@ -59,112 +63,151 @@ function countsSamples(values: number[]): boolean {
 
 /**
  * @param headings  one text a column, empty where there is none
- * @param sample    numbers of the first data rows, one array a column (NaN where missing)
+ * @param sample    numbers of the first data rows and of the last, one array a column (NaN where missing)
  * @param metadata  may name the axis' unit
  * @returns the choice, or a sentence when the corrections ask for what is not there
  */
 export function chooseColumns(
-  headings: string[],
-  sample: number[][],
+  headings: readonly string[],
+  sample: readonly number[][],
   metadata: Record<string, string>,
   options: ReadOptions,
 ): ColumnChoice | { problem: string } {
   const columns = sample.length;
   const remarks: string[] = [];
   const meanings = headings.map(readHeading);
-  const monotonic = sample.map((values) => isStrictlyMonotonic(values.filter((value) => value === value)));
-  const hasNumbers = sample.map((values) => values.some((value) => value === value));
+  const numbers = sample.map((values) => values.filter((value) => value === value));
 
   const outside = (column: number): boolean => !Number.isInteger(column) || column < 0 || column >= columns;
-  if (typeof options.axisColumn === "number" && outside(options.axisColumn)) {
-    return {
-      problem: `The file has ${columns} column${columns === 1 ? "" : "s"}; column ${options.axisColumn + 1} was asked for as axis.`,
-    };
-  }
+  const beyond = (column: number, as: string): { problem: string } => ({
+    problem: `The file has ${columns} column${columns === 1 ? "" : "s"}; column ${column + 1} was asked for as ${as}.`,
+  });
+  if (typeof options.axisColumn === "number" && outside(options.axisColumn)) return beyond(options.axisColumn, "axis");
   if (options.intensityColumn !== undefined && outside(options.intensityColumn)) {
-    return {
-      problem: `The file has ${columns} column${columns === 1 ? "" : "s"}; column ${options.intensityColumn + 1} was asked for as intensity.`,
-    };
+    return beyond(options.intensityColumn, "intensity");
+  }
+  let wanted = options.intensityColumn ?? null;
+  if (wanted === null && options.intensityName !== undefined) {
+    const found = columnNamed(headings, options.intensityName);
+    if (typeof found !== "number") return found;
+    wanted = found;
   }
 
   let axisColumn: number | null;
   if (options.axisColumn !== undefined) axisColumn = options.axisColumn;
   else if (columns === 1) axisColumn = null;
-  else
-    axisColumn = guessAxis(
-      meanings.map((m) => m.role === "axis" && m.kind !== "pixel"),
-      meanings.map((m) => m.role === "axis"),
-      monotonic,
-      sample,
-      options,
-      remarks,
-    );
+  else axisColumn = guessAxis({ meanings, numbers, wanted, kind: options.axisKind ?? null, remarks });
 
-  let intensityColumn = options.intensityColumn ?? -1;
-  if (intensityColumn < 0) {
-    const free = sample.map((_, column) => column).filter((column) => column !== axisColumn && hasNumbers[column]);
-    const plain = free.filter((column) => meanings[column]!.role !== "axis" && meanings[column]!.role !== "aside");
-    intensityColumn =
-      plain.find((column) => meanings[column]!.role === "intensity") ??
-      plain.find((column) => axisColumn === null || column > axisColumn) ??
-      plain[0] ??
-      free[0] ??
-      -1;
-    if (intensityColumn < 0) return { problem: "The file has no column of intensities." };
-    if (plain.length > 1) {
-      remarks.push(`${plain.length} columns could be intensities; column ${intensityColumn + 1} was taken.`);
-    }
-  }
+  const intensityColumn = wanted ?? guessIntensity(meanings, numbers, axisColumn, headings, remarks);
+  if (intensityColumn < 0) return { problem: "The file has no column of intensities." };
   if (intensityColumn === axisColumn) return { problem: "Axis and intensity can't be the same column." };
 
   const heading = axisColumn === null ? "" : headings[axisColumn]!;
-  const values = axisColumn === null ? [] : sample[axisColumn]!.filter((value) => value === value);
+  const values = axisColumn === null ? [] : numbers[axisColumn]!;
   const { kind, unit } = axisMeaning(heading, values, axisColumn, metadata, options, remarks);
   return { axisColumn, intensityColumn, axisKind: kind, axisUnit: unit, remarks };
 }
 
-function guessAxis(
-  namedOther: boolean[],
-  named: boolean[],
-  monotonic: boolean[],
-  sample: number[][],
-  options: ReadOptions,
-  remarks: string[],
-): number | null {
-  const free = (column: number): boolean => column !== options.intensityColumn;
-  // A wavelength beside a running number says more than the running number.
-  const wanted = options.axisKind === "pixel" ? named : namedOther;
-  const byName = wanted.findIndex((is, column) => is && free(column));
-  if (byName >= 0) return byName;
-  const byAnyName = named.findIndex((is, column) => is && free(column));
-  if (byAnyName >= 0) return byAnyName;
-  const rising = monotonic.map((is, column) => (is && free(column) ? column : -1)).filter((column) => column >= 0);
-  if (rising.length === 0) return free(0) ? 0 : 1;
-  // An axis with a few values out of order is refused later, by its line; no other column takes its place.
-  if (rising[0] !== 0 && free(0) && mostlyOneWay(sample[0]!)) return 0;
-  if (
-    rising.length > 1 &&
-    countsSamples(sample[rising[0]!]!.slice(0, -1)) &&
-    sample.length > 2 &&
-    rising[1]! < sample.length - 1
-  ) {
-    remarks.push(`Column ${rising[0]! + 1} only numbers the rows; column ${rising[1]! + 1} was taken as axis.`);
-    return rising[1]!;
+/** How a column is spoken of: by its heading, else by its number. */
+export function columnName(headings: readonly string[], column: number): string {
+  const heading = headings[column] ?? "";
+  return heading === "" ? `column ${column + 1}` : heading;
+}
+
+const plainName = (text: string): string => text.trim().toLowerCase().replace(/\s+/g, " ");
+const withoutUnit = (text: string): string => plainName(text.replace(/[([{][^)\]}]*[)\]}]/g, " "));
+
+/** The column with a heading: written the same, or the same without its unit in brackets, or the only one that holds the words. */
+function columnNamed(headings: readonly string[], name: string): number | { problem: string } {
+  const names = headings.map((_, column) => columnName(headings, column));
+  const wanted = plainName(name);
+  for (const same of [
+    (heading: string): boolean => plainName(heading) === wanted,
+    (heading: string): boolean => withoutUnit(heading) === wanted,
+    (heading: string): boolean => plainName(heading).includes(wanted),
+  ]) {
+    const found = names.flatMap((heading, column) => (same(heading) ? [column] : []));
+    if (found.length === 1 || (found.length > 1 && plainName(names[found[0]!]!) === wanted)) return found[0]!;
+    if (found.length > 1) break;
   }
-  return rising[0]!;
+  return { problem: `The file has no column "${name}"; it has ${listed(names)}.` };
+}
+
+function listed(names: readonly string[]): string {
+  const quoted = names.slice(0, 12).map((name) => `"${name}"`);
+  const more = names.length > 12 ? ` and ${names.length - 12} more` : "";
+  return quoted.length > 1 && more === ""
+    ? `${quoted.slice(0, -1).join(", ")} and ${quoted[quoted.length - 1]!}`
+    : quoted.join(", ") + more;
+}
+
+/** The column that sounds most like the signal itself; the first of several; one that is beside it (a dark) only where nothing else is. */
+function guessIntensity(
+  meanings: readonly HeadingMeaning[],
+  numbers: readonly number[][],
+  axisColumn: number | null,
+  headings: readonly string[],
+  remarks: string[],
+): number {
+  const free = numbers.flatMap((values, column) => (column !== axisColumn && values.length > 0 ? [column] : []));
+  const plain = free.filter((column) => meanings[column]!.role !== "axis" && meanings[column]!.role !== "aside");
+  const choice = plain.length > 0 ? plain : free;
+  // Columns before the axis are seldom the signal: running numbers, times.
+  const after = choice.filter((column) => axisColumn === null || column > axisColumn);
+  let best = -1;
+  for (const column of after.length > 0 ? after : choice) {
+    if (best < 0 || meanings[column]!.rank > meanings[best]!.rank) best = column;
+  }
+  if (best >= 0 && free.length > 1) {
+    const names = free.map((column) => columnName(headings, column));
+    remarks.push(
+      `${listed(names)} could be intensities; "${columnName(headings, best)}" was taken. Another can be chosen by its name.`,
+    );
+  }
+  return best;
+}
+
+function guessAxis(input: {
+  meanings: readonly HeadingMeaning[];
+  numbers: readonly number[][];
+  wanted: number | null;
+  kind: AxisKind | null;
+  remarks: string[];
+}): number | null {
+  const { meanings, numbers, wanted, remarks } = input;
+  const free = (column: number): boolean => column !== wanted && numbers[column]!.length > 0;
+  const byName = (wants: (meaning: HeadingMeaning) => boolean): number =>
+    meanings.findIndex((meaning, column) => meaning.role === "axis" && wants(meaning) && free(column));
+  // A wavelength beside a running number says more than the running number.
+  const order: AxisKind[] = input.kind === "pixel" ? ["pixel"] : ["wavelength", "wavenumber", "step"];
+  for (const kind of input.kind === null ? order : [input.kind, ...order]) {
+    const found = byName((meaning) => meaning.kind === kind);
+    if (found >= 0) return found;
+  }
+  const named = byName(() => true);
+  if (named >= 0) return named;
+  const rising = numbers.flatMap((values, column) => (free(column) && isStrictlyMonotonic(values) ? [column] : []));
+  if (rising.length === 0) return free(0) ? 0 : numbers.findIndex((_, column) => free(column));
+  // An axis with a few values out of order is refused later, by its line; no other column takes its place.
+  if (rising[0] !== 0 && free(0) && mostlyOneWay(numbers[0]!)) return 0;
+  const [first, second] = rising;
+  if (second !== undefined && second < numbers.length - 1 && countsSamples(numbers[first!]!.slice(0, -1))) {
+    remarks.push(`Column ${first! + 1} only numbers the rows; column ${second + 1} was taken as axis.`);
+    return second;
+  }
+  return first!;
 }
 
 function axisMeaning(
   heading: string,
-  values: number[],
+  values: readonly number[],
   axisColumn: number | null,
   metadata: Record<string, string>,
   options: ReadOptions,
   remarks: string[],
 ): { kind: AxisKind; unit: AxisUnit } {
   if (options.axisUnit !== undefined) {
-    const kind = kindOfUnit(options.axisUnit);
-    return { kind: options.axisKind ?? kind, unit: options.axisUnit };
+    return { kind: options.axisKind ?? kindOfUnit(options.axisUnit), unit: options.axisUnit };
   }
   if (options.axisKind !== undefined && options.axisKind !== "wavelength") {
     return { kind: options.axisKind, unit: unitOfKind[options.axisKind] };
@@ -177,15 +220,19 @@ function axisMeaning(
   const wavelength = options.axisKind === "wavelength" || said.kind === "wavelength";
   const fromMetadata = unitFromMetadata(metadata);
   if (fromMetadata !== null && (!wavelength || fromMetadata.kind === "wavelength")) return fromMetadata;
-  if (!wavelength && countsSamples(values.slice(0, -1))) return { kind: "pixel", unit: "px" };
-  const low = Math.min(...values.slice(0, 1), ...values.slice(-1));
-  const high = Math.max(...values.slice(0, 1), ...values.slice(-1));
-  if (wavelength || (low >= 100 && high <= 12000)) {
+  const ends = [values[0] ?? NaN, values[values.length - 1] ?? NaN];
+  const low = Math.min(...ends);
+  const high = Math.max(...ends);
+  // Whole steps of one are pixels where they begin like a count; from 200 to 800 they are a scan in nanometres.
+  const counts = !wavelength && countsSamples(values.slice(0, -1));
+  if (counts && (low <= 1 || low < leastNm || high > mostNm)) return { kind: "pixel", unit: "px" };
+  if (wavelength || (low >= leastNm && high <= 12000)) {
     const unit: AxisUnit = high > mostNm && low >= leastAngstrom ? "Å" : high < 30 ? "µm" : "nm";
+    const word = unit === "Å" ? "angstrom" : unit;
     remarks.push(
       wavelength
-        ? `The axis names no unit; its values from ${low} to ${high} were taken as ${unit === "Å" ? "angstrom" : unit}.`
-        : `The axis has no heading; its values from ${low} to ${high} were taken as wavelengths in ${unit === "Å" ? "angstrom" : unit}.`,
+        ? `The axis names no unit; its values from ${low} to ${high} were taken as ${word}.`
+        : `The axis has no heading that says what it counts; its values from ${low} to ${high} were taken as wavelengths in ${word}.`,
     );
     return { kind: "wavelength", unit };
   }
@@ -195,12 +242,15 @@ function axisMeaning(
 
 function unitFromMetadata(metadata: Record<string, string>): { kind: AxisKind; unit: AxisUnit } | null {
   for (const [key, value] of Object.entries(metadata)) {
-    if (!/(?:x|axis|abscissa|wave ?length).*unit|unit.*(?:x|axis|wave ?length)|^x ?axis$|^axis$/i.test(key)) continue;
-    const named = unitIn(value);
+    if (!axisKeys.test(key)) continue;
+    const named = unitIn(value) ?? unitIn(`(${value.trim()})`);
     if (named !== null) return named;
   }
   return null;
 }
+
+const axisKeys =
+  /(?:\bx|axis|abscissa|wave ?length).{0,40}unit|unit.{0,40}(?:\bx\b|axis|abscissa|wave ?length)|^x[ -]?(?:axis|label)?$|^axis|^abscissa|^units?$/i;
 
 function kindOfUnit(unit: AxisUnit): AxisKind {
   if (unit === "px") return "pixel";

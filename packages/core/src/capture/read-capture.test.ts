@@ -213,7 +213,7 @@ describe("readCapture", () => {
       "ambiguous-number-format",
     ],
     [Array.from({ length: 40 }, (_, i) => String(400 + i)).join("\n"), "no-such-column"],
-    ["##TITLE=lamp\n##XYDATA=(X++(Y..Y))\n400 1 2 3\n", "no-numbers"],
+    ["##TITLE=lamp\n##XYDATA=(X++(Y..Y))\n400 1 2 3\n", "damaged-data"],
   ] as const)("refuses %j as %s", (text, code) => {
     const { reason, code: found } = refusal(utf8.encode(text));
     expect(found).toBe(code);

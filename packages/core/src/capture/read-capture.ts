@@ -1,23 +1,24 @@
 /**
  * A capture's bytes to one spectrum: text, header, columns, axis. Nothing here throws or waits on any input; what can't be read is
- * refused with a sentence, and what was guessed is said in `facts.remarks`.
+ * refused with a sentence, and what was guessed is said in `facts.remarks`. Where two readings fit alike, the refusal carries both.
  */
-import type { AxisUnit, FileFacts, ReadCapture, ReadOptions, Refusal, Spectrum } from "../analysis/types.ts";
-import { chooseColumns, type ColumnChoice } from "./choose-columns.ts";
-import { decodeBytes, sliceText, textToBytes, type TextEncoding } from "./decode.ts";
-import { findDataBlock, makeRowReader, type DataBlock } from "./find-data-block.ts";
-import { readDetector, readMetadataLine } from "./headings.ts";
+import type { PossibleReading, ReadCapture, ReadOptions, Refusal } from "../analysis/types.ts";
+import { chooseColumns, columnName } from "./choose-columns.ts";
+import { fittingJoins, mostPieces, type PieceTable } from "./comma-twice.ts";
+import { offeredReadings, settleDecimalSign, type SignReading } from "./decimal-sign.ts";
+import { decodeBytes, textToBytes, type TextEncoding } from "./decode.ts";
+import { findDataBlock, type DataBlock } from "./find-data-block.ts";
+import { finishCapture } from "./finish-capture.ts";
+import { isJcamp, readJcamp } from "./jcamp.ts";
 import { indexLines, isBlankLine, type LineIndex } from "./line-index.ts";
+import { addMetadata, isMetadataFull, lineText, readHeader, type Header } from "./read-header.ts";
+import { findTables, readRows, sortUnread, type Rows, type TableSpan } from "./read-rows.ts";
 import { refuse } from "./refusal.ts";
-import { isMissingCell, scanNumber, splitCells } from "./scan-row.ts";
+import { isMissingCell, makeRowReader, scanNumber, splitCells, splitRow } from "./scan-row.ts";
 
-/** Fewer samples than this hold no line with a baseline beside it. */
-export const fewestRows = 8;
 const sampledRows = 400;
-const mostDamagedLines = 20;
-const mostMetadata = 200;
-
-const nmPerUnit: Partial<Record<AxisUnit, number>> = { Å: 0.1, µm: 1000 };
+/** Share of unread lines above which the layout is decided anew, from every line. */
+const mostUnreadShare = 0.05;
 
 /**
  * Read one capture.
@@ -41,16 +42,21 @@ export function readCapture(source: Uint8Array | string, name: string, options: 
   const lines = indexLines(bytes);
   if (allBlank(bytes, lines))
     return refuse("empty-file", "The file holds nothing but blank lines. Export the spectrum again.");
-  if (startsWith(bytes, "##TITLE")) {
-    return refuse(
-      "no-numbers",
-      "This is a JCAMP-DX file. Export the spectrum as two columns of text (CSV or tab-separated) instead.",
-      1,
-    );
-  }
+  if (isJcamp(bytes)) return readJcamp({ bytes, encoding, lines, name, options });
   const block = findDataBlock(bytes, lines, options);
   if (block === null) return refuseWithoutNumbers(bytes, lines);
-  return readBlock({ bytes, encoding, lines, block, name, options });
+  const file: TextFile = { bytes, encoding, lines, name, options };
+  const read = readTable(file, block);
+  if ("outcome" in read) return read;
+  return finishTable(file, read);
+}
+
+interface TextFile {
+  bytes: Uint8Array;
+  encoding: TextEncoding;
+  lines: LineIndex;
+  name: string;
+  options: ReadOptions;
 }
 
 function textOf(
@@ -68,15 +74,10 @@ function allBlank(bytes: Uint8Array, lines: LineIndex): boolean {
   return true;
 }
 
-function startsWith(bytes: Uint8Array, word: string): boolean {
-  for (let i = 0; i < word.length; i += 1) if (bytes[i] !== word.charCodeAt(i)) return false;
-  return true;
-}
-
 function refuseWithoutNumbers(bytes: Uint8Array, lines: LineIndex): Refusal {
   let separated = false;
   for (let line = 0; line < Math.min(lines.count, 200) && !separated; line += 1) {
-    for (let i = lines.starts[line]!; i < lines.ends[line]!; i += 1) {
+    for (let i = lines.starts[line]!; i < lines.ends[line]! && !separated; i += 1) {
       const byte = bytes[i]!;
       if (byte === 9 || byte === 44 || byte === 59) separated = true;
     }
@@ -89,48 +90,223 @@ function refuseWithoutNumbers(bytes: Uint8Array, lines: LineIndex): Refusal {
       );
 }
 
-interface BlockInput {
-  bytes: Uint8Array;
-  encoding: TextEncoding;
-  lines: LineIndex;
-  block: DataBlock;
-  name: string;
-  options: ReadOptions;
+interface ReadTable extends SignReading {
+  header: Header;
+  remarks: string[];
 }
 
-function readBlock({ bytes, encoding, lines, block, name, options }: BlockInput): ReadCapture {
-  const header = readHeader(bytes, encoding, lines, block);
-  const sample = sampleColumns(bytes, lines, block, block.decimal);
-  const chosen = chooseColumns(header.headings, sample, header.metadata, options);
-  if ("problem" in chosen) return refuse("no-such-column", `${chosen.problem} Choose the columns again.`);
-  const remarks = [...chosen.remarks];
+/** Dialect, columns and rows; the layout is decided again from every line where many rows can't be read. */
+function readTable(file: TextFile, found: DataBlock): ReadTable | Refusal {
+  const first = readWithBlock(file, found);
+  if ("outcome" in first) return first;
+  const { rows } = first;
+  if (rows.unreadCount <= mostUnreadShare * rows.counts.length) return first;
+  const again = findDataBlock(file.bytes, file.lines, file.options, true);
+  if (again === null) return first;
+  const second = readWithBlock(file, again);
+  return "outcome" in second || second.rows.counts.length <= rows.counts.length ? first : second;
+}
 
-  let decimal = block.decimal;
-  if (block.decimalIsOpen) {
-    const settled = settleDecimal(bytes, lines, block, chosen);
-    if (settled === null) {
-      return refuse(
+function readWithBlock(file: TextFile, found: DataBlock): ReadTable | Refusal {
+  const { bytes, encoding, lines, options } = file;
+  const joined = joinCommas(file, found);
+  if ("outcome" in joined) return joined;
+  const { block } = joined;
+  const header = readHeader(bytes, encoding, lines, block, Math.min(options.skipLines ?? 0, block.firstLine));
+  const readAs = (as: DataBlock): SignReading | Refusal => {
+    const chosen = chooseColumns(header.headings, sampleColumns(bytes, lines, as), header.metadata, options);
+    if ("problem" in chosen) return refuse("no-such-column", `${chosen.problem} Choose the columns again.`);
+    return { block: as, chosen, rows: readRows(bytes, lines, as, chosen.axisColumn, chosen.intensityColumn) };
+  };
+  const here = readAs(block);
+  if ("outcome" in here) return here;
+  const remarks = joined.remark === null ? [] : [joined.remark];
+  const plain = { ...here, header, remarks };
+  const mayDiffer = options.decimal === undefined && options.thousands === undefined && block.joins === null;
+  const brokenRows = here.rows.unread.some(({ isText }) => !isText);
+  if (!block.decimalIsOpen && !(mayDiffer && brokenRows)) return plain;
+  const there = readAs({ ...block, decimal: block.decimal === "." ? "," : "." });
+  if ("outcome" in there) return plain;
+  if (!block.decimalIsOpen) {
+    const better = there.rows.unreadCount < here.rows.unreadCount && there.rows.counts.length > here.rows.counts.length;
+    return better ? { ...there, header, remarks } : plain;
+  }
+  const settled = settleDecimalSign([here, there], bytes, lines, header.metadata);
+  if (settled === null) {
+    return {
+      ...refuse(
         "ambiguous-number-format",
         "The numbers can be read in two ways: a mark before three digits may be a decimal sign or group thousands. Say which sign is the decimal one.",
         block.firstLine + 1,
-      );
-    }
-    decimal = settled;
-    remarks.push(`The decimal sign was taken to be "${decimal}".`);
-  } else if (looksLikeSplitDecimals(block, sample)) {
+      ),
+      readings: offeredReadings([here, there], options),
+    };
+  }
+  if (settled.remark !== null) remarks.push(settled.remark);
+  return { ...settled.reading, header, remarks };
+}
+
+/** Where commas part the columns and nothing but whole numbers stands between them, the comma may be the decimal sign as well. */
+function joinCommas(file: TextFile, block: DataBlock): { block: DataBlock; remark: string | null } | Refusal {
+  const { bytes, encoding, lines, options } = file;
+  const keep = { block, remark: null };
+  const { columns } = block;
+  if (block.delimiter !== "," || block.joins !== null || block.wordColumns !== null) return keep;
+  if (columns < 3 || columns > mostPieces || (options.decimal === "." && options.delimiter === ",")) return keep;
+  const table = piecesOf(bytes, lines, block);
+  if (table === null || table.rows < 3) return keep;
+  const headingCount = countHeadings(file, block);
+  const ways = fittingJoins(table, headingCount).filter(
+    (way) => options.decimal === undefined || way.length < columns === (options.decimal === ","),
+  );
+  const [way] = ways;
+  const as = (joins: readonly number[]): DataBlock => ({
+    ...block,
+    decimal: ",",
+    columns: joins.length,
+    joins,
+    decimalIsOpen: false,
+  });
+  if (ways.length > 1) {
+    const offered = ways.map((joins): PossibleReading => {
+      const isPlain = joins.length === columns;
+      const shown = isPlain ? block : as(joins);
+      const header = readHeader(bytes, encoding, lines, shown);
+      const firstRow = sampleColumns(bytes, lines, shown, 1).map((values) => values[0] ?? NaN);
+      const names = joins.map((_, column) => columnName(header.headings, column)).join(", ");
+      return {
+        options: isPlain ? { ...options, delimiter: ",", decimal: "." } : { ...options, cellsPerColumn: [...joins] },
+        description: isPlain
+          ? `Commas only part the columns: ${columns} columns (${names}), the first row is ${firstRow.join(" and ")}.`
+          : `Commas part the columns and are the decimal sign too: ${joins.length} columns (${names}), the first row is ${firstRow.join(" and ")}.`,
+        firstRow,
+      };
+    });
+    return {
+      ...refuse(
+        "ambiguous-number-format",
+        "The comma may part the columns, or be the decimal sign as well; the numbers fit more than one way. Say which, or export with another separator (semicolon or tab).",
+        block.firstLine + 1,
+      ),
+      readings: offered,
+    };
+  }
+  if (way === undefined) {
+    if (!looksLikeSplitDecimals(table)) return keep;
     return refuse(
       "ambiguous-number-format",
       "The comma seems to be both the decimal sign and what parts the columns. Export with another separator (semicolon or tab) or with decimal points.",
       block.firstLine + 1,
     );
   }
+  if (way.length === columns) return keep;
+  return {
+    block: as(way),
+    remark: "The comma parts the columns and is the decimal sign as well; the numbers were put together so.",
+  };
+}
 
-  const rows = readRows(bytes, lines, { ...block, decimal }, chosen.axisColumn, chosen.intensityColumn);
-  collectFooter(rows.trailing, bytes, encoding, lines, header.metadata);
-  const { axis, counts } = rows;
-  const n = counts.length;
-  if (chosen.axisColumn === null && block.columns === 1) {
-    if (n > 2 && onlyRisesOrFalls(counts)) {
+/** Number of headings, parted by commas, in the line above the data; null where there are none. */
+function countHeadings(file: TextFile, block: DataBlock): number | null {
+  const { bytes, encoding, lines } = file;
+  for (let columns = block.columns; columns >= 2; columns -= 1) {
+    const { headings } = readHeader(bytes, encoding, lines, { ...block, columns });
+    const named = headings.filter((heading) => heading !== "").length;
+    if (named === columns) return columns;
+  }
+  return null;
+}
+
+/** Bounds of all pieces of all rows; null when one holds a point, a quote or anything but a whole number. */
+function piecesOf(bytes: Uint8Array, lines: LineIndex, block: DataBlock): PieceTable | null {
+  const pieces = block.columns;
+  const starts = new Int32Array((lines.count - block.firstLine) * pieces);
+  const ends = new Int32Array(starts.length);
+  const row = makeRowReader();
+  let rows = 0;
+  for (let line = block.firstLine; line < lines.count; line += 1) {
+    const from = lines.starts[line]!;
+    const to = lines.ends[line]!;
+    if (splitCells(bytes, from, to, ",", row.starts, row.ends) !== pieces) continue;
+    let isRow = true;
+    for (let p = 0; p < pieces; p += 1) {
+      const start = row.starts[p]!;
+      const end = row.ends[p]!;
+      if (bytes[start - 1] === 34) return null;
+      let digits = 0;
+      for (let i = start; i < end; i += 1) {
+        const byte = bytes[i]!;
+        if (byte >= 48 && byte <= 57) digits += 1;
+        else if (byte === 46) return null;
+        else if (i > start || (byte !== 45 && byte !== 43)) isRow = false;
+      }
+      if (digits === 0) isRow = false;
+      starts[rows * pieces + p] = start;
+      ends[rows * pieces + p] = end;
+    }
+    if (isRow) rows += 1;
+  }
+  return { bytes, starts, ends, rows, pieces };
+}
+
+/** `200,00,1234,56`: an even number of pieces, the first standing still while the second counts. */
+function looksLikeSplitDecimals({ bytes, starts, ends, rows, pieces }: PieceTable): boolean {
+  if (pieces !== 4) return false;
+  for (let r = 1; r < rows; r += 1) {
+    const [before, here] = [r - 1, r].map((one) =>
+      scanNumber(bytes, starts[one * pieces]!, ends[one * pieces]!, ".", "none"),
+    );
+    if (before === here) return true;
+  }
+  return false;
+}
+
+/** Numbers of the first rows, and of the last: the range of the axis tells its unit. */
+function sampleColumns(bytes: Uint8Array, lines: LineIndex, block: DataBlock, most = sampledRows): number[][] {
+  const sample: number[][] = Array.from({ length: block.columns }, () => []);
+  const row = makeRowReader();
+  const take = (line: number): boolean => {
+    const cells = splitRow(bytes, lines.starts[line]!, lines.ends[line]!, block, row);
+    if (cells < block.columns) return false;
+    let numbers = 0;
+    for (let c = 0; c < block.columns; c += 1) {
+      const value = scanNumber(bytes, row.starts[c]!, row.ends[c]!, block.decimal, block.thousands);
+      if (value === value) numbers += 1;
+      else if (block.wordColumns?.[c] !== 1 && !isMissingCell(bytes, row.starts[c]!, row.ends[c]!)) return false;
+    }
+    if (numbers === 0) return false;
+    for (let c = 0; c < block.columns; c += 1)
+      sample[c]!.push(scanNumber(bytes, row.starts[c]!, row.ends[c]!, block.decimal, block.thousands));
+    return true;
+  };
+  let line = block.firstLine;
+  for (let taken = 0; line < lines.count && taken < most; line += 1) if (take(line)) taken += 1;
+  if (most < sampledRows) return sample;
+  for (let last = lines.count - 1; last >= line; last -= 1) if (take(last)) break;
+  return sample;
+}
+
+function finishTable(file: TextFile, read: ReadTable): ReadCapture {
+  const { bytes, encoding, lines, name, options } = file;
+  const { block, chosen, rows, header } = read;
+  const remarks = [...read.remarks, ...chosen.remarks];
+  const tables = findTables(rows);
+  const table = chooseTable(tables, rows, options, remarks);
+  if ("outcome" in table) return table;
+  const other = sortUnread(bytes, encoding, lines, block, rows, table, header.headingLine);
+  for (const line of [...other.headerLines, ...other.footLines]) {
+    if (isMetadataFull(header.metadata)) break;
+    addMetadata(header.metadata, lineText(bytes, encoding, lines, line), block.delimiter);
+  }
+  if (other.headerLines.length > 0) {
+    const from = other.headerLines[0]! + 1;
+    remarks.push(`A second header stands in the middle of the data (line ${from}); its lines were passed over.`);
+  }
+  const counts = rows.counts.subarray(table.from, table.to);
+  const axis = rows.axis === null ? null : rows.axis.subarray(table.from, table.to);
+  const oneColumn = chosen.axisColumn === null && block.columns === 1;
+  if (oneColumn) {
+    if (counts.length > 2 && onlyRisesOrFalls(counts)) {
       return refuse(
         "no-such-column",
         "The file holds one column whose numbers only rise or fall: an axis without intensities. Export both columns.",
@@ -138,381 +314,75 @@ function readBlock({ bytes, encoding, lines, block, name, options }: BlockInput)
     }
     remarks.push("The file holds one column of numbers; they were read as intensities, one a pixel, counted from 0.");
   }
-  if (n < fewestRows) {
-    return refuse(
-      "too-few-rows",
-      `The file holds ${n} row${n === 1 ? "" : "s"} of numbers; a capture needs at least ${fewestRows}.`,
-      block.firstLine + 1,
-    );
-  }
-  if (rows.damaged.length > 0) {
+  if (other.damagedCount > 0) {
+    const named = other.damaged.slice(0, 5).map(({ line, reason }) => `line ${line} ${reason}`);
+    const more = other.damagedCount > 5 ? `, and ${other.damagedCount - 5} more` : "";
+    const one = other.damagedCount === 1;
     remarks.push(
-      `${rows.damagedCount} line${rows.damagedCount === 1 ? "" : "s"} could not be read and ${rows.damagedCount === 1 ? "was" : "were"} left out.`,
+      `${other.damagedCount} line${one ? "" : "s"} could not be read and ${one ? "was" : "were"} left out: ${named.join(", ")}${more}.`,
     );
   }
-
-  const positions = new Float64Array(n);
-  const asWritten = axis ?? Float64Array.from({ length: n }, (_, i) => i);
-  const descending = asWritten[n - 1]! < asWritten[0]!;
-  const wrong = checkAxis(asWritten, descending, rows.lineNumbers);
-  if (wrong !== null) return wrong;
-  fillPositions(positions, asWritten, chosen, remarks);
-  if (descending) {
-    positions.reverse();
-    remarks.push("The axis runs downwards in the file; the samples were turned round.");
-  }
-
-  const facts = describe({ name, rows, asWritten, header, block: { ...block, decimal }, chosen, encoding, remarks });
-  if (facts.missing === n)
-    return refuse("no-numbers", "The intensity column holds no number at all. Choose another column.");
-  const detector = readDetector(header.metadata);
-  const spectrum: Spectrum = {
-    axisKind: chosen.axisKind,
-    axisUnit: chosen.axisKind === "wavelength" ? "nm" : chosen.axisUnit,
-    wasDescending: descending,
-    positions,
-    counts: descending ? counts.reverse() : counts,
-    fullScaleCounts: options.fullScaleCounts ?? detector.fullScaleCounts,
-    scansSummed: options.scansSummed ?? detector.scansSummed ?? 1,
-  };
-  return { outcome: "read", spectrum, facts };
-}
-
-interface Header {
-  headings: string[];
-  metadata: Record<string, string>;
-}
-
-function readHeader(bytes: Uint8Array, encoding: TextEncoding, lines: LineIndex, block: DataBlock): Header {
-  const metadata: Record<string, string> = {};
-  let headings = Array.from({ length: block.columns }, () => "");
-  const row = makeRowReader();
-  let last = block.firstLine - 1;
-  while (last >= 0 && isBlankLine(bytes, lines.starts[last]!, lines.ends[last]!)) last -= 1;
-  if (last >= 0) {
-    let from = lines.starts[last]!;
-    const to = lines.ends[last]!;
-    while (from < to && (bytes[from] === 35 || bytes[from] === 37 || bytes[from] === 32)) from += 1;
-    // Some programs part the headings by another sign than the numbers.
-    let cells = 0;
-    for (const delimiter of [block.delimiter, "\t", ";", ","] as const) {
-      cells = splitCells(bytes, from, to, delimiter, row.starts, row.ends);
-      if (cells === block.columns) break;
-    }
-    const named =
-      cells === block.columns || (cells === block.columns + 1 && row.ends[cells - 1] === row.starts[cells - 1]);
-    const texts = headings.map((_, c) =>
-      c < cells ? sliceText(bytes, row.starts[c]!, row.ends[c]!, encoding).trim() : "",
-    );
-    if (named && texts.every((text) => !/[:=]$/.test(text)) && texts.some((text) => /\p{L}/u.test(text)))
-      headings = texts;
-    else last += 1;
-  } else last = 0;
-  for (let line = 0; line < Math.min(last, block.firstLine); line += 1) {
-    addMetadata(
-      metadata,
-      sliceText(bytes, lines.starts[line]!, Math.min(lines.ends[line]!, lines.starts[line]! + 1000), encoding),
-    );
-  }
-  return { headings, metadata };
-}
-
-function addMetadata(metadata: Record<string, string>, text: string): void {
-  const entry = readMetadataLine(text);
-  if (entry === null || Object.keys(metadata).length >= mostMetadata) return;
-  // defineProperty, because a file may well name a key "__proto__".
-  Object.defineProperty(metadata, entry.key, {
-    value: entry.value,
-    enumerable: true,
-    configurable: true,
-    writable: true,
+  const missing = tables.length === 1 ? rows.missing : countMissing(counts);
+  return finishCapture({
+    name,
+    axis,
+    counts,
+    chosen,
+    options,
+    metadata: header.metadata,
+    remarks,
+    lineOf: (row) => rows.lineNumbers[table.from + row]!,
+    facts: {
+      missing,
+      delimiter: block.delimiter,
+      decimal: block.decimal,
+      encoding,
+      headerLines: block.firstLine,
+      columns: header.headings.map((_, column) => columnName(header.headings, column)),
+      damagedLines: other.damaged,
+      ...(tables.length > 1 ? { tables: tables.length } : {}),
+    },
   });
 }
 
-function sampleColumns(
-  bytes: Uint8Array,
-  lines: LineIndex,
-  block: DataBlock,
-  decimal: DataBlock["decimal"],
-): number[][] {
-  const sample: number[][] = Array.from({ length: block.columns }, () => []);
-  const row = makeRowReader();
-  const take = (line: number): boolean => {
-    const cells = splitCells(bytes, lines.starts[line]!, lines.ends[line]!, block.delimiter, row.starts, row.ends);
-    if (cells < block.columns) return false;
-    for (let c = 0; c < block.columns; c += 1)
-      sample[c]!.push(scanNumber(bytes, row.starts[c]!, row.ends[c]!, decimal));
-    return true;
-  };
-  let line = block.firstLine;
-  for (let taken = 0; line < lines.count && taken < sampledRows; line += 1) if (take(line)) taken += 1;
-  // The last row too: the range of the axis tells its unit.
-  for (let last = lines.count - 1; last >= line; last -= 1) {
-    if (take(last) && sample.some((values) => values[values.length - 1] === values[values.length - 1])) break;
+/** The table asked for, else the longest, the first among equals. */
+function chooseTable(
+  tables: readonly TableSpan[],
+  rows: Rows,
+  options: ReadOptions,
+  remarks: string[],
+): TableSpan | Refusal {
+  const lengthOf = ({ from, to }: TableSpan): number => to - from;
+  let best = 0;
+  tables.forEach((table, index) => {
+    if (lengthOf(table) > lengthOf(tables[best]!)) best = index;
+  });
+  const wanted = options.table ?? best;
+  const table = tables[wanted];
+  if (table === undefined) {
+    return refuse(
+      "no-such-column",
+      `The file holds ${tables.length} table${tables.length === 1 ? "" : "s"}; table ${wanted + 1} was asked for. Choose again.`,
+    );
   }
-  return sample;
+  if (tables.length > 1) {
+    const line = rows.lineNumbers[table.from]!;
+    remarks.push(
+      `The file holds ${tables.length} tables below one another; the one from line ${line}${options.table === undefined ? ", the longest," : ""} was read.`,
+    );
+  }
+  return table;
 }
 
-/** Where both decimal signs read every number: the sign that keeps the axis in order, or that every axis value carries; else null. */
-function settleDecimal(
-  bytes: Uint8Array,
-  lines: LineIndex,
-  block: DataBlock,
-  chosen: ColumnChoice,
-): DataBlock["decimal"] | null {
-  const other = block.decimal === "." ? "," : ".";
-  const column = chosen.axisColumn ?? chosen.intensityColumn;
-  if (chosen.axisColumn !== null) {
-    const inOrder = (decimal: DataBlock["decimal"]): boolean =>
-      onlyRisesOrFalls(sampleColumns(bytes, lines, block, decimal)[column]!);
-    const here = inOrder(block.decimal);
-    const there = inOrder(other);
-    if (here !== there) return here ? block.decimal : other;
-  }
-  const row = makeRowReader();
-  const marks = { ",": 0, ".": 0 };
-  const plain = { axis: 0, intensity: 0 };
-  let rows = 0;
-  for (let line = block.firstLine; line < lines.count && rows < sampledRows; line += 1) {
-    const cells = splitCells(bytes, lines.starts[line]!, lines.ends[line]!, block.delimiter, row.starts, row.ends);
-    if (cells < block.columns) continue;
-    rows += 1;
-    for (const [name, c] of [
-      ["axis", chosen.axisColumn],
-      ["intensity", chosen.intensityColumn],
-    ] as const) {
-      if (c === null) continue;
-      let mark: "," | "." | null = null;
-      for (let i = row.starts[c]!; i < row.ends[c]!; i += 1) {
-        if (bytes[i] === 44) mark = ",";
-        else if (bytes[i] === 46) mark = ".";
-      }
-      if (mark === null) plain[name] += 1;
-      else marks[mark] += 1;
-    }
-  }
-  // A column of fixed decimals carries its sign in every cell; grouped thousands are missing from the small numbers.
-  const steady = (count: number): boolean => count === 0 || count === rows;
-  if (!steady(plain.axis) || !steady(plain.intensity)) return null;
-  return marks[","] > 0 ? "," : ".";
-}
-
-/** `200,00,1234,56`: pairs of whole numbers whose first stands still while the second counts. */
-function looksLikeSplitDecimals(block: DataBlock, sample: number[][]): boolean {
-  if (block.delimiter !== "," || block.columns !== 4) return false;
-  const [whole, part] = [sample[0]!, sample[1]!];
-  let repeats = 0;
-  for (let i = 0; i < whole.length; i += 1) {
-    if (whole[i] !== Math.floor(whole[i]!) || part[i] !== Math.floor(part[i]!) || part[i]! < 0) return false;
-    if (i > 0 && whole[i] === whole[i - 1]) repeats += 1;
-  }
-  return repeats > 0 && !onlyRisesOrFalls(part);
+function countMissing(counts: Float64Array): number {
+  let missing = 0;
+  for (let i = 0; i < counts.length; i += 1) if (counts[i] !== counts[i]) missing += 1;
+  return missing;
 }
 
 function onlyRisesOrFalls(values: ArrayLike<number>): boolean {
-  if (values.length < 2) return true;
   const direction = Math.sign(values[1]! - values[0]!);
   if (direction === 0) return false;
   for (let i = 1; i < values.length; i += 1) if (Math.sign(values[i]! - values[i - 1]!) !== direction) return false;
   return true;
-}
-
-interface Rows {
-  axis: Float64Array | null;
-  counts: Float64Array;
-  lineNumbers: Int32Array;
-  missing: number;
-  damaged: { line: number; reason: string }[];
-  damagedCount: number;
-  trailing: number[];
-}
-
-function readRows(
-  bytes: Uint8Array,
-  lines: LineIndex,
-  block: DataBlock,
-  axisColumn: number | null,
-  intensityColumn: number,
-): Rows {
-  const room = lines.count - block.firstLine;
-  const axis = axisColumn === null ? null : new Float64Array(room);
-  const counts = new Float64Array(room);
-  const lineNumbers = new Int32Array(room);
-  const row = makeRowReader();
-  const needed = Math.max(axisColumn ?? 0, intensityColumn) + 1;
-  let n = 0;
-  let missing = 0;
-  let unread: { line: number; reason: string; text: boolean }[] = [];
-  const damaged: { line: number; reason: string }[] = [];
-  let damagedCount = 0;
-  let lastRead = -1;
-  const fault = (line: number, reason: string): void => {
-    damagedCount += 1;
-    if (unread.length >= mostDamagedLines) return;
-    unread.push({ line, reason, text: !startsWithDigit(bytes, lines.starts[line]!, lines.ends[line]!) });
-  };
-  for (let line = block.firstLine; line < lines.count; line += 1) {
-    const from = lines.starts[line]!;
-    const to = lines.ends[line]!;
-    if (isBlankLine(bytes, from, to)) continue;
-    const cells = splitCells(bytes, from, to, block.delimiter, row.starts, row.ends);
-    if (cells < needed) {
-      fault(line, `has ${cells} column${cells === 1 ? "" : "s"} where ${needed} are needed`);
-      continue;
-    }
-    const value = scanNumber(bytes, row.starts[intensityColumn]!, row.ends[intensityColumn]!, block.decimal);
-    if (value !== value && !isMissingCell(bytes, row.starts[intensityColumn]!, row.ends[intensityColumn]!)) {
-      fault(line, "its intensity is no number");
-      continue;
-    }
-    if (axis !== null) {
-      const at = scanNumber(bytes, row.starts[axisColumn!]!, row.ends[axisColumn!]!, block.decimal);
-      if (at !== at) {
-        if (isMissingCell(bytes, row.starts[axisColumn!]!, row.ends[axisColumn!]!)) missing += 1;
-        fault(line, "its axis value is no number");
-        continue;
-      }
-      axis[n] = at;
-    }
-    if (value !== value) missing += 1;
-    counts[n] = value;
-    lineNumbers[n] = line + 1;
-    n += 1;
-    lastRead = line;
-    if (unread.length > 0) {
-      for (const one of unread)
-        if (damaged.length < mostDamagedLines) damaged.push({ line: one.line + 1, reason: one.reason });
-      unread = [];
-    }
-  }
-  // Words after the last row are the file's foot, not damage.
-  const trailing: number[] = [];
-  for (const one of unread) {
-    if (one.line > lastRead && one.text) {
-      trailing.push(one.line);
-      damagedCount -= 1;
-    } else if (damaged.length < mostDamagedLines) damaged.push({ line: one.line + 1, reason: one.reason });
-  }
-  return {
-    axis: axis === null ? null : axis.slice(0, n),
-    counts: counts.slice(0, n),
-    lineNumbers: lineNumbers.subarray(0, n),
-    missing,
-    damaged,
-    damagedCount,
-    trailing,
-  };
-}
-
-function startsWithDigit(bytes: Uint8Array, from: number, to: number): boolean {
-  for (let i = from; i < to; i += 1) {
-    const byte = bytes[i]!;
-    if (byte === 32 || byte === 9 || byte === 34 || byte === 43 || byte === 45) continue;
-    return byte >= 48 && byte <= 57;
-  }
-  return false;
-}
-
-function collectFooter(
-  trailing: number[],
-  bytes: Uint8Array,
-  encoding: TextEncoding,
-  lines: LineIndex,
-  metadata: Record<string, string>,
-): void {
-  for (const line of trailing)
-    addMetadata(
-      metadata,
-      sliceText(bytes, lines.starts[line]!, Math.min(lines.ends[line]!, lines.starts[line]! + 1000), encoding),
-    );
-}
-
-function checkAxis(axis: Float64Array, descending: boolean, lineNumbers: Int32Array): Refusal | null {
-  const direction = descending ? -1 : 1;
-  for (let i = 1; i < axis.length; i += 1) {
-    const step = (axis[i]! - axis[i - 1]!) * direction;
-    if (step > 0) continue;
-    const line = lineNumbers[i]!;
-    return step === 0
-      ? refuse(
-          "duplicate-positions",
-          `The axis value ${axis[i]!} stands twice (line ${line}). Each sample needs its own place on the axis.`,
-          line,
-        )
-      : refuse(
-          "non-monotonic-axis",
-          `The axis turns back at line ${line} (${axis[i - 1]!}, then ${axis[i]!}). Drop one spectrum a file, its axis only rising or only falling.`,
-          line,
-        );
-  }
-  return null;
-}
-
-/** Positions in file order: nm, pixels from 0, or as written. */
-function fillPositions(positions: Float64Array, axis: Float64Array, chosen: ColumnChoice, remarks: string[]): void {
-  const n = axis.length;
-  if (chosen.axisKind === "pixel" && chosen.axisColumn !== null) {
-    let whole = true;
-    for (let i = 0; i < n && whole; i += 1) whole = axis[i] === Math.floor(axis[i]!);
-    if (!whole && Math.abs(axis[n - 1]! - axis[0]!) !== n - 1) {
-      remarks.push("The axis column holds no pixel numbers; the samples were counted from 0 instead.");
-      for (let i = 0; i < n; i += 1) positions[i] = i;
-      return;
-    }
-    const first = Math.min(axis[0]!, axis[n - 1]!);
-    if (first === 1) remarks.push("The file counts its pixels from 1; Wavekeep counts them from 0.");
-    const offset = first === 1 ? 1 : 0;
-    for (let i = 0; i < n; i += 1) positions[i] = axis[i]! - offset;
-    return;
-  }
-  const factor = nmPerUnit[chosen.axisUnit];
-  if (chosen.axisUnit === "Å") for (let i = 0; i < n; i += 1) positions[i] = axis[i]! / 10;
-  else if (factor !== undefined) for (let i = 0; i < n; i += 1) positions[i] = axis[i]! * factor;
-  else positions.set(axis);
-}
-
-function describe(input: {
-  name: string;
-  rows: Rows;
-  asWritten: Float64Array;
-  header: Header;
-  block: DataBlock;
-  chosen: ColumnChoice;
-  encoding: TextEncoding;
-  remarks: string[];
-}): FileFacts {
-  const { rows, asWritten, header, block, chosen } = input;
-  let sum = 0;
-  let lost = 0; // Neumaier's compensation: the sum is that of the numbers as written
-  let max = Number.NEGATIVE_INFINITY;
-  for (let i = 0; i < rows.counts.length; i += 1) {
-    const value = rows.counts[i]!;
-    if (value !== value) continue;
-    const next = sum + value;
-    lost += Math.abs(sum) >= Math.abs(value) ? sum - next + value : value - next + sum;
-    sum = next;
-    if (value > max) max = value;
-  }
-  return {
-    name: input.name,
-    sha256: null,
-    rows: rows.counts.length,
-    axis: chosen.axisKind,
-    axisUnit: chosen.axisUnit,
-    first: asWritten[0]!,
-    last: asWritten[asWritten.length - 1]!,
-    intensitySum: sum + lost,
-    intensityMax: max,
-    metadata: header.metadata,
-    delimiter: block.delimiter,
-    decimal: block.decimal,
-    missing: rows.missing,
-    encoding: input.encoding,
-    headerLines: block.firstLine,
-    columns: header.headings.map((heading, column) => (heading === "" ? `column ${column + 1}` : heading)),
-    axisColumn: chosen.axisColumn,
-    intensityColumn: chosen.intensityColumn,
-    damagedLines: rows.damaged,
-    remarks: input.remarks,
-  };
 }

@@ -9,9 +9,21 @@
 export type Delimiter = "," | ";" | "\t" | " ";
 export type DecimalSign = "." | ",";
 
+/** Sign that groups thousands: `any` but the decimal sign, where it can be nothing else. */
+export type ThousandsSign = "," | "." | " " | "'" | "none" | "any";
+
 export interface RowFormat {
   delimiter: Delimiter;
   decimal: DecimalSign;
+  thousands: ThousandsSign;
+  /** Where the comma parts columns and is the decimal sign too: pieces (1 or 2) that make each column; else null. */
+  joins: readonly number[] | null;
+}
+
+/** Bounds of the cells of one line, filled by `splitCells` and `splitRow`. */
+export interface RowReader {
+  starts: Int32Array;
+  ends: Int32Array;
 }
 
 const tab = 9;
@@ -72,11 +84,65 @@ export function splitCells(
   return count;
 }
 
+export function makeRowReader(): RowReader {
+  return { starts: new Int32Array(mostColumns), ends: new Int32Array(mostColumns) };
+}
+
+/** Split one data line into the columns of a format: `splitCells`, and pieces put together where the comma is the decimal sign too. */
+export function splitRow(bytes: Uint8Array, from: number, to: number, format: RowFormat, row: RowReader): number {
+  const { starts, ends } = row;
+  const cells = splitCells(bytes, from, to, format.delimiter, starts, ends);
+  const { joins } = format;
+  if (joins === null) return cells;
+  let piece = 0;
+  let column = 0;
+  for (; column < joins.length && piece + joins[column]! <= cells; column += 1) {
+    starts[column] = starts[piece]!;
+    piece += joins[column]!;
+    ends[column] = ends[piece - 1]!;
+  }
+  return column < joins.length ? column : column + (cells - piece);
+}
+
+const apostrophe = 39;
+const markCodes: Record<ThousandsSign, number> = {
+  ",": comma,
+  ".": dot,
+  " ": space,
+  "'": apostrophe,
+  none: -1,
+  any: 0,
+};
+
+/** The grouping mark at an offset as comma, dot, space (also the unbreakable and the thin ones) or apostrophe; 0 for none. */
+function groupMark(bytes: Uint8Array, i: number): number {
+  const code = bytes[i]!;
+  if (code === comma || code === dot || code === space || code === apostrophe) return code;
+  if (code === 0xa0 || (code === 0xc2 && bytes[i + 1] === 0xa0)) return space;
+  if (code === 0xe2 && bytes[i + 1] === 0x80) {
+    const last = bytes[i + 2];
+    if (last === 0xaf || last === 0x89) return space;
+    if (last === 0x99) return apostrophe;
+  }
+  return 0;
+}
+
+function markLength(code: number): number {
+  return code === 0xe2 ? 3 : code === 0xc2 ? 2 : 1;
+}
+
 /**
  * The number written in a cell, or NaN when the cell holds none (ask `isMissingCell` whether it was blank).
- * Grouping marks are taken only where they can be nothing else: `1,234.5` with a decimal point, `1.234,5` with a decimal comma.
+ * Grouping marks are taken only where they can be nothing else: `1,234.5` with a decimal point, `1.234,5` with a decimal comma,
+ * one kind of mark in a number.
  */
-export function scanNumber(bytes: Uint8Array, from: number, to: number, decimal: DecimalSign): number {
+export function scanNumber(
+  bytes: Uint8Array,
+  from: number,
+  to: number,
+  decimal: DecimalSign,
+  thousands: ThousandsSign = "any",
+): number {
   let i = from;
   let negative = false;
   const first = bytes[i];
@@ -88,13 +154,13 @@ export function scanNumber(bytes: Uint8Array, from: number, to: number, decimal:
     i += 3;
   }
   const decimalCode = decimal === "." ? dot : comma;
-  const groupCode = decimal === "." ? comma : dot;
   let mantissa = 0;
   let significant = 0;
   let digits = 0;
   let exponent = 0;
   let seenDecimal = false;
   let sinceGroup = -1;
+  let mark = markCodes[thousands];
   for (; i < to; i += 1) {
     const code = bytes[i]!;
     if (code >= 48 && code <= 57) {
@@ -106,10 +172,14 @@ export function scanNumber(bytes: Uint8Array, from: number, to: number, decimal:
     } else if (code === decimalCode && !seenDecimal) {
       if (sinceGroup >= 0 && sinceGroup !== 3) return NaN;
       seenDecimal = true;
-    } else if (code === groupCode && !seenDecimal && digits > 0) {
+    } else {
+      const found = seenDecimal || digits === 0 || mark < 0 ? 0 : groupMark(bytes, i);
+      if (found === 0 || (mark !== 0 && found !== mark)) break;
       if (sinceGroup < 0 ? digits > 3 || significant === 0 : sinceGroup !== 3) return NaN;
+      mark = found;
       sinceGroup = 0;
-    } else break;
+      i += markLength(code) - 1;
+    }
   }
   if (digits === 0 || (!seenDecimal && sinceGroup >= 0 && sinceGroup !== 3)) return NaN;
   let power = 0;
@@ -135,27 +205,29 @@ export function scanNumber(bytes: Uint8Array, from: number, to: number, decimal:
   if (significant <= 15 && scale >= -22 && scale <= 22) {
     value = scale < 0 ? mantissa / powersOfTen[-scale]! : mantissa * powersOfTen[scale]!;
   } else {
-    value = Math.abs(convertSlowly(bytes, from, to, groupCode));
+    value = Math.abs(convertSlowly(bytes, from, to, decimalCode));
     if (value === Number.POSITIVE_INFINITY) return NaN;
   }
   return negative ? -value : value;
 }
 
-function convertSlowly(bytes: Uint8Array, from: number, to: number, groupCode: number): number {
+/** Digits, decimal sign and exponent handed to the language's own conversion; marks and the number's sign are left off. */
+function convertSlowly(bytes: Uint8Array, from: number, to: number, decimalCode: number): number {
   let text = "";
+  let inExponent = false;
   for (let k = from; k < to; k += 1) {
     const code = bytes[k]!;
-    if (code === groupCode || code >= 0x80 || code === 43 || code === 45) {
-      const before = k > from ? bytes[k - 1]! | 32 : 0;
-      if (code === 45 && (before === 101 || before === 100)) text += "-";
-      continue;
-    }
-    text += code === comma ? "." : (code | 32) === 100 ? "e" : String.fromCharCode(code);
+    if (code >= 48 && code <= 57) text += String.fromCharCode(code);
+    else if ((code | 32) === 101 || (code | 32) === 100) {
+      inExponent = true;
+      text += "e";
+    } else if (code === 45 && inExponent) text += "-";
+    else if (code === decimalCode) text += ".";
   }
   return Number(text);
 }
 
-/** True for a cell that stands for "no value": empty, `NaN`, `NA`, `N/A`, `null`, `inf`, dashes. */
+/** True for a cell that stands for "no value": empty, `NaN`, `NA`, `N/A`, `null`, `inf`, dashes, a worksheet's error words, asterisks. */
 export function isMissingCell(bytes: Uint8Array, from: number, to: number): boolean {
   if (to <= from) return true;
   if (to - from > 9) return false;
@@ -182,4 +254,20 @@ const missingWords = new Set([
   "1.#qnan",
   "1.#inf",
   "1.#ind",
+  "nan(ind)",
+  "n.a.",
+  "#n/a",
+  "#na",
+  "#nan",
+  "#num!",
+  "#value!",
+  "#div/0!",
+  "missing",
+  "?",
+  "*",
+  "**",
+  "***",
+  "****",
+  "*****",
+  "******",
 ]);

@@ -1,0 +1,99 @@
+/**
+ * Files in which the comma parts the columns and is the decimal sign too: `400,25,1234,5`.
+ *
+ * Every way to make columns of one or two pieces is held against all rows. A way fits when whole parts begin with no needless zero, the
+ * pieces that would be decimals are written as decimals are (equally many in every row, or never ending in a needless zero), and a first
+ * column results that is an axis: strictly rising or falling in steps of about one size. The number of headings decides where there are some.
+ */
+import { scanNumber } from "./scan-row.ts";
+
+/** More pieces than this are not tried: a plain table of numbers. */
+export const mostPieces = 8;
+/** Share of the steps that must be of about one size (within a factor 3 of the median). */
+const evenShare = 0.95;
+const evenFactor = 3;
+
+export interface PieceTable {
+  bytes: Uint8Array;
+  /** Bounds of piece p of row r at r * pieces + p. */
+  starts: Int32Array;
+  ends: Int32Array;
+  rows: number;
+  pieces: number;
+}
+
+/** Ways to put the pieces together that fit, each as pieces a column; the plain one (all 1) first where it fits. */
+export function fittingJoins(table: PieceTable, headingCount: number | null): number[][] {
+  const { pieces } = table;
+  const facts = Array.from({ length: pieces }, (_, p) => pieceFacts(table, p));
+  const ways = compositions(pieces).filter((way) => way.length >= 2);
+  const byHeadings = headingCount === null ? [] : ways.filter((way) => way.length === headingCount);
+  return (byHeadings.length > 0 ? byHeadings : ways).filter((way) => {
+    let piece = 0;
+    for (const width of way) {
+      if (facts[piece]!.hasNeedlessZero) return false;
+      if (width === 2 && !facts[piece + 1]!.canBeDecimals) return false;
+      piece += width;
+    }
+    return isEvenAxis(columnOf(table, 0, way[0]!));
+  });
+}
+
+/** All sequences of ones and twos with a given sum, fewest twos first. */
+function compositions(sum: number): number[][] {
+  const found: number[][] = [];
+  const extend = (way: number[], left: number): void => {
+    if (left === 0) found.push(way);
+    if (left >= 1) extend([...way, 1], left - 1);
+    if (left >= 2) extend([...way, 2], left - 2);
+  };
+  extend([], sum);
+  return found.sort((a, b) => b.length - a.length);
+}
+
+function pieceFacts(table: PieceTable, piece: number): { hasNeedlessZero: boolean; canBeDecimals: boolean } {
+  const { bytes, starts, ends, rows, pieces } = table;
+  let hasNeedlessZero = false;
+  let onlyDigits = true;
+  let width = -1;
+  let sameWidth = true;
+  let endsInZero = false;
+  for (let r = 0; r < rows; r += 1) {
+    const from = starts[r * pieces + piece]!;
+    const to = ends[r * pieces + piece]!;
+    const first = bytes[from]! === 45 || bytes[from]! === 43 ? from + 1 : from;
+    if (to - first > 1 && bytes[first] === 48) hasNeedlessZero = true;
+    for (let i = from; i < to && onlyDigits; i += 1) onlyDigits = bytes[i]! >= 48 && bytes[i]! <= 57;
+    if (width < 0) width = to - from;
+    else if (to - from !== width) sameWidth = false;
+    if (to - from > 1 && bytes[to - 1] === 48) endsInZero = true;
+  }
+  return { hasNeedlessZero, canBeDecimals: onlyDigits && width > 0 && (sameWidth || !endsInZero) };
+}
+
+/** Numbers of the column that begins at a piece and takes one or two of them. */
+export function columnOf(table: PieceTable, piece: number, width: number): Float64Array {
+  const { bytes, starts, ends, rows, pieces } = table;
+  const values = new Float64Array(rows);
+  for (let r = 0; r < rows; r += 1) {
+    const at = r * pieces + piece;
+    values[r] = scanNumber(bytes, starts[at]!, ends[at + width - 1]!, ",", "none");
+  }
+  return values;
+}
+
+function isEvenAxis(values: Float64Array): boolean {
+  const n = values.length;
+  if (n < 3) return false;
+  const steps = new Float64Array(n - 1);
+  const direction = Math.sign(values[1]! - values[0]!);
+  for (let i = 1; i < n; i += 1) {
+    const step = (values[i]! - values[i - 1]!) * direction;
+    if (!(step > 0)) return false;
+    steps[i - 1] = step;
+  }
+  const middle = Float64Array.from(steps).sort()[(n - 1) >> 1]!;
+  let even = 0;
+  for (const step of steps) if (step <= evenFactor * middle && evenFactor * step >= middle) even += 1;
+  return even >= evenShare * (n - 1);
+}
