@@ -163,6 +163,12 @@ export interface FittedLine {
   /** Index of the lines that were fitted together share this group number. */
   group: number;
   flags: LineFlag[];
+  /** Shape that was fitted; absent = gaussian. */
+  shape?: LineShapeName;
+  /** By name (`docs/methods/lines.md`), without unit; unc 0 where the value was held; absent = the shape has none. */
+  shapeParameters?: Record<string, { value: number; unc: number }>;
+  /** Of position, FWHM and area, then the shape parameter where it was free: row-major. Absent = not kept. */
+  covariance?: number[];
   /** Degrees of freedom of `positionUnc` where its noise was learned from few samples; absent = as the scatter about the fit says. */
   positionDegreesOfFreedom?: number;
   /** Names of the files this line was taken from: of several exposures or windows; absent = all of the check's captures. */

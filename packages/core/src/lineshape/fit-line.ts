@@ -62,6 +62,8 @@ export interface FitLinesOptions {
   shape?: Exclude<LineShapeName, "empirical"> | Profile;
   /** What is known of the shape parameter: unc 0 holds it; absent or null leaves it free. */
   shapeParameter?: KnownParameter | null;
+  /** Hand back the curve's derivatives by every parameter. */
+  withDerivatives?: boolean;
 }
 
 export type LineFitRefusal = "too-few-samples" | "not-converged" | "centre-outside-window" | "not-a-line";
@@ -81,6 +83,8 @@ export interface FittedWindowOfLines {
   fittedCounts: Float64Array;
   /** Shape parameter of the window's lines and its standard uncertainty (0 where it was held or stands at its limit); null: the shape has none. */
   shapeParameter: KnownParameter | null;
+  /** Where asked for: one column a parameter, counts per unit of it at each sample. */
+  derivatives?: Float64Array[];
 }
 
 export type LineFit = FittedWindowOfLines | { outcome: "refused"; reason: LineFitRefusal; detail: string };
@@ -131,12 +135,18 @@ export function fitLines(window: LineWindow, starts: readonly LineStart[], optio
     const refusal = refusalOf(solver.isLineAllowed(k));
     if (refusal !== null) return refusal;
   }
-  return resultOf(window, starts.length, m - fewest + 1, profile);
+  return resultOf(window, starts.length, m - fewest + 1, profile, options.withDerivatives ?? false);
 }
 
-function resultOf(window: LineWindow, lineCount: number, whiteDegreesOfFreedom: number, profile: Profile): LineFit {
+function resultOf(
+  window: LineWindow,
+  lineCount: number,
+  whiteDegreesOfFreedom: number,
+  profile: Profile,
+  withDerivatives: boolean,
+): LineFit {
   const { m, n, parameters: p } = solver;
-  let covariance = solver.covariance;
+  let covariance: Float64Array = solver.covariance;
   let degreesOfFreedom = whiteDegreesOfFreedom;
   let expectedChiSquare = whiteDegreesOfFreedom;
   const autocorrelation = autocorrelationOf(window);
@@ -194,7 +204,17 @@ function resultOf(window: LineWindow, lineCount: number, whiteDegreesOfFreedom: 
     shapeParameter: profile.hasParameter
       ? { value: solver.shapeParameter(), unc: s >= 0 ? Math.sqrt(growth * covariance[s * n + s]!) : 0 }
       : null,
+    ...(withDerivatives ? { derivatives: derivativesOf(window.countsUnc) } : {}),
   };
+}
+
+function derivativesOf(countsUnc: Float64Array): Float64Array[] {
+  const { m, n, columns, stride } = solver;
+  return Array.from({ length: n }, (_, a) => {
+    const column = columns.slice(a * stride, a * stride + m);
+    for (let i = 0; i < m; i++) column[i] = column[i]! * countsUnc[i]!;
+    return column;
+  });
 }
 
 /** From the parameters' covariance to that of centre, FWHM, area and shape parameter: only the FWHM is not one of the parameters. */

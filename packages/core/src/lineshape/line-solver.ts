@@ -43,7 +43,7 @@ export class LineSolver {
   /** (observed - fitted) / uncertainty. */
   residuals = new Float64Array(0);
   readonly parameters = new Float64Array(mostParameters);
-  covariance = new Float64Array(0);
+  covariance: Float64Array = new Float64Array(0);
   chiSquare = 0;
   iterations = 0;
   windowCentre = 0;

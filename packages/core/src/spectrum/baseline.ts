@@ -3,11 +3,13 @@
  *
  * Baseline  knots one a block (a 32nd of the capture), each the median of the block's quiet samples, straight between them; lines, bands
  *           and gaps are masked in a few rounds, and a block with too few quiet samples takes its knot from its neighbours
- * Noise     per block, 1.4826 times the median absolute deviation of the quiet residuals, median of three blocks
- * Lag one   correlation of neighbouring quiet residuals; above 0.2 the capture is said to be smoothed
+ * Noise     per block, 1.4826 times the median absolute deviation of the quiet residuals, median of three blocks; at least that of the
+ *           steps that the counts are written in (step / sqrt 12)
+ * Alike     autocorrelation of the quiet residuals by lag (`noise-correlation.ts`)
  * Source    common practice; the factor 1.4826 makes the deviation a standard deviation for normal noise
  */
 import { medianInPlace, selectInPlace } from "./median.ts";
+import { estimateAutocorrelation } from "./noise-correlation.ts";
 
 export interface Baseline {
   /** Counts, one a sample. */
@@ -18,6 +20,8 @@ export interface Baseline {
   medianNoiseCounts: number;
   /** Correlation of neighbouring quiet samples' noise, -1 to 1; 0 when too few samples are quiet. */
   lagOneCorrelation: number;
+  /** Correlation by lag, first entry lag one, as far as it can be told from none; empty for white noise. */
+  autocorrelation: Float64Array;
   /** 1 where the sample is quiet: no line, no gap. */
   quiet: Uint8Array;
 }
@@ -33,6 +37,12 @@ const medianOfThreeVariance = 0.61;
 const madToSd = 1.4826;
 /** The block's own knot takes up some of its scatter: share per sample by which the deviation is low. Found by simulation. */
 const knotShare = 1;
+/** Samples beside a high one that a line's flank may reach. */
+const flank = 3;
+/** The spread below the baseline is taken from at most so many samples. */
+const mostForSpread = 4096;
+
+let scratch = new Float64Array(0);
 
 /**
  * Estimate baseline and noise.
@@ -42,49 +52,69 @@ const knotShare = 1;
  */
 export function estimateBaseline(counts: Float64Array): Baseline {
   const n = counts.length;
+  if (scratch.length < n) scratch = new Float64Array(n);
   const block = Math.max(shortestBlock, Math.ceil(n / blocksWanted));
   const blocks = Math.max(1, Math.floor(n / block));
-  const edge = (b: number): number => (b === blocks ? n : b * block);
-  const centres = Float64Array.from({ length: blocks }, (_, b) => (edge(b) + edge(b + 1) - 1) / 2);
+  const edges = Int32Array.from({ length: blocks + 1 }, (_, b) => (b === blocks ? n : b * block));
+  const centres = Float64Array.from({ length: blocks }, (_, b) => (edges[b]! + edges[b + 1]! - 1) / 2);
   const knots = new Float64Array(blocks);
-  const scratch = new Float64Array(n);
   const baseline = new Float64Array(n);
   const quiet = new Uint8Array(n);
+  const leastNoise = leastNoiseOf(counts, quiet);
+
+  // Lines only add light: the lower third of each block is nearer the baseline than its median.
+  for (let b = 0; b < blocks; b += 1) knots[b] = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.3, 1);
+  let sd = 0;
+  let isSettled = false;
+  for (let round = 0; round < rounds && !isSettled; round += 1) {
+    interpolate(centres, fillGaps(knots), baseline);
+    sd = Math.max(lowerSpread(counts, baseline), leastNoise);
+    maskLines(counts, baseline, clipSigmas * sd, quiet);
+    isSettled = true;
+    for (let b = 0; b < blocks; b += 1) {
+      const least = Math.max(3, leastQuietShare * (edges[b + 1]! - edges[b]!));
+      const knot = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.5, least);
+      if (!(Math.abs(knot - knots[b]!) <= 0.01 * sd) && (knot === knot || knots[b] === knots[b])) isSettled = false;
+      knots[b] = knot;
+    }
+  }
+  interpolate(centres, fillGaps(knots), baseline);
+  const noise = blockNoise(counts, baseline, quiet, edges, Math.max(sd, leastNoise));
+  const noiseCounts = new Float64Array(n);
+  interpolate(centres, noise, noiseCounts);
+  for (let i = 0; i < n; i += 1) if (noiseCounts[i]! < leastNoise) noiseCounts[i] = leastNoise;
+  const alike = estimateAutocorrelation(counts, baseline, quiet, noiseCounts, block);
+  if (alike.noiseFactor !== 1) for (let i = 0; i < n; i += 1) noiseCounts[i] = noiseCounts[i]! * alike.noiseFactor;
+  return {
+    baseline,
+    noiseCounts,
+    medianNoiseCounts: Math.max(alike.noiseFactor * medianInPlace(noise, blocks), leastNoise),
+    lagOneCorrelation: alike.lagOne,
+    autocorrelation: alike.byLag,
+    quiet,
+  };
+}
+
+/** Marks the samples that are there; the least noise that such counts can have, by their span and the step they are written in. */
+function leastNoiseOf(counts: Float64Array, quiet: Uint8Array): number {
   let low = Number.POSITIVE_INFINITY;
   let high = Number.NEGATIVE_INFINITY;
-  for (let i = 0; i < n; i += 1) {
+  let step = Number.POSITIVE_INFINITY;
+  let before = NaN;
+  for (let i = 0; i < counts.length; i += 1) {
     const value = counts[i]!;
     if (value !== value) continue;
     if (value < low) low = value;
     if (value > high) high = value;
+    const change = value > before ? value - before : before - value;
+    if (change > 0 && change < step) step = change;
+    before = value;
     quiet[i] = 1;
   }
-  const leastNoise = high > low ? 1e-6 * (high - low) : 1e-12 * Math.max(Math.abs(high), 1e-300);
-
-  // Lines only add light: the lower third of each block is nearer the baseline than its median.
-  for (let b = 0; b < blocks; b += 1) knots[b] = quantileOf(counts, quiet, edge(b), edge(b + 1), 0.3, scratch, 1);
-  let sd = 0;
-  for (let round = 0; round < rounds; round += 1) {
-    interpolate(centres, fillGaps(knots), baseline);
-    sd = Math.max(lowerSpread(counts, baseline, scratch), leastNoise);
-    maskLines(counts, baseline, clipSigmas * sd, quiet);
-    for (let b = 0; b < blocks; b += 1) {
-      const least = Math.max(3, leastQuietShare * (edge(b + 1) - edge(b)));
-      knots[b] = quantileOf(counts, quiet, edge(b), edge(b + 1), 0.5, scratch, least);
-    }
-  }
-  interpolate(centres, fillGaps(knots), baseline);
-  const noise = blockNoise(counts, baseline, quiet, blocks, edge, scratch, Math.max(sd, leastNoise));
-  const noiseCounts = new Float64Array(n);
-  interpolate(centres, noise, noiseCounts);
-  for (let i = 0; i < n; i += 1) if (noiseCounts[i]! < leastNoise) noiseCounts[i] = leastNoise;
-  return {
-    baseline,
-    noiseCounts,
-    medianNoiseCounts: Math.max(medianInPlace(noise.slice(), blocks), leastNoise),
-    lagOneCorrelation: lagOneOf(counts, baseline, quiet, noiseCounts),
-    quiet,
-  };
+  if (!(high > low)) return 1e-12 * Math.max(Math.abs(high), 1e-300);
+  // A step that is a good share of the whole is the signal itself.
+  const byStep = step < 0.02 * (high - low) ? step / Math.sqrt(12) : 0;
+  return Math.max(1e-6 * (high - low), byStep);
 }
 
 function quantileOf(
@@ -93,13 +123,13 @@ function quantileOf(
   from: number,
   to: number,
   share: number,
-  scratch: Float64Array,
   least: number,
 ): number {
+  const values = scratch;
   let m = 0;
-  for (let i = from; i < to; i += 1) if (quiet[i] === 1) scratch[m++] = counts[i]!;
+  for (let i = from; i < to; i += 1) if (quiet[i] === 1) values[m++] = counts[i]!;
   if (m < least) return NaN;
-  return share === 0.5 ? medianInPlace(scratch, m) : selectInPlace(scratch, m, Math.floor(share * (m - 1)));
+  return share === 0.5 ? medianInPlace(values, m) : selectInPlace(values, m, Math.floor(share * (m - 1)));
 }
 
 /** Knots that are NaN become straight lines between their neighbours; all NaN becomes 0. */
@@ -119,49 +149,49 @@ function fillGaps(knots: Float64Array): Float64Array {
   return filled;
 }
 
+/** Straight lines between the knots, level beyond the outermost. */
 function interpolate(centres: Float64Array, knots: Float64Array, out: Float64Array): void {
+  const n = out.length;
   const last = centres.length - 1;
-  let b = 0;
-  for (let i = 0; i < out.length; i += 1) {
-    while (b < last - 1 && i > centres[b + 1]!) b += 1;
-    if (last === 0 || i <= centres[0]!) out[i] = knots[0]!;
-    else if (i >= centres[last]!) out[i] = knots[last]!;
-    else out[i] = knots[b]! + ((i - centres[b]!) / (centres[b + 1]! - centres[b]!)) * (knots[b + 1]! - knots[b]!);
+  let i = 0;
+  for (; i < n && (last === 0 || i <= centres[0]!); i += 1) out[i] = knots[0]!;
+  for (let b = 0; b < last; b += 1) {
+    const from = centres[b]!;
+    const start = knots[b]!;
+    const slope = (knots[b + 1]! - start) / (centres[b + 1]! - from);
+    const end = Math.min(n, Math.floor(centres[b + 1]!) + 1);
+    for (; i < end; i += 1) out[i] = start + (i - from) * slope;
   }
+  for (; i < n; i += 1) out[i] = knots[last]!;
 }
 
 /** Spread of what lies below the baseline: lines do not reach there. */
-function lowerSpread(counts: Float64Array, baseline: Float64Array, scratch: Float64Array): number {
+function lowerSpread(counts: Float64Array, baseline: Float64Array): number {
+  const values = scratch;
+  const n = counts.length;
+  const stride = Math.max(1, Math.floor(n / mostForSpread));
   let m = 0;
-  for (let i = 0; i < counts.length; i += 1) {
+  for (let i = 0; i < n; i += stride) {
     const residual = counts[i]! - baseline[i]!;
-    if (residual < 0) scratch[m++] = -residual;
+    if (residual < 0) values[m++] = -residual;
   }
-  return m === 0 ? 0 : madToSd * medianInPlace(scratch, m);
+  return m === 0 ? 0 : madToSd * medianInPlace(values, m);
 }
 
 /** Quiet = within the limit of the baseline, and no neighbour on either side far above it. */
 function maskLines(counts: Float64Array, baseline: Float64Array, limit: number, quiet: Uint8Array): void {
   const n = counts.length;
-  for (let i = 0; i < n; i += 1) {
-    const residual = counts[i]! - baseline[i]!;
-    quiet[i] = residual <= limit && residual >= -2 * limit ? 1 : 0;
-  }
   let reach = 0;
   for (let i = 0; i < n; i += 1) {
-    if (counts[i]! - baseline[i]! > limit) reach = 3;
-    else if (reach > 0) {
+    const residual = counts[i]! - baseline[i]!;
+    if (residual > limit) {
+      quiet[i] = 0;
+      if (reach < flank) for (let k = Math.max(0, i - flank); k < i; k += 1) quiet[k] = 0;
+      reach = flank;
+    } else if (reach > 0) {
       quiet[i] = 0;
       reach -= 1;
-    }
-  }
-  reach = 0;
-  for (let i = n - 1; i >= 0; i -= 1) {
-    if (counts[i]! - baseline[i]! > limit) reach = 3;
-    else if (reach > 0) {
-      quiet[i] = 0;
-      reach -= 1;
-    }
+    } else quiet[i] = residual >= -2 * limit ? 1 : 0;
   }
 }
 
@@ -169,20 +199,22 @@ function blockNoise(
   counts: Float64Array,
   baseline: Float64Array,
   quiet: Uint8Array,
-  blocks: number,
-  edge: (b: number) => number,
-  scratch: Float64Array,
+  edges: Int32Array,
   fallback: number,
 ): Float64Array {
+  const blocks = edges.length - 1;
+  const values = scratch;
   const raw = new Float64Array(blocks).fill(NaN);
+  let known = 0;
   for (let b = 0; b < blocks; b += 1) {
     let m = 0;
-    for (let i = edge(b); i < edge(b + 1); i += 1)
-      if (quiet[i] === 1) scratch[m++] = Math.abs(counts[i]! - baseline[i]!);
-    if (m >= 8) raw[b] = (1 + knotShare / m) * madToSd * medianInPlace(scratch, m);
+    for (let i = edges[b]!; i < edges[b + 1]!; i += 1)
+      if (quiet[i] === 1) values[m++] = Math.abs(counts[i]! - baseline[i]!);
+    if (m < 8) continue;
+    raw[b] = (1 + knotShare / m) * madToSd * medianInPlace(values, m);
+    known += 1;
   }
-  const known = raw.some((value) => value === value);
-  const filled = known ? fillGaps(raw) : raw.fill(fallback);
+  const filled = known > 0 ? fillGaps(raw) : raw.fill(fallback);
   const smooth = filled.slice();
   const three = new Float64Array(3);
   for (let b = 1; b + 1 < blocks; b += 1) {
@@ -191,7 +223,7 @@ function blockNoise(
     three[2] = filled[b + 1]!;
     smooth[b] = medianInPlace(three, 3);
   }
-  return shrinkToCommon(smooth, medianInPlace(filled, blocks), edge(1));
+  return shrinkToCommon(smooth, medianInPlace(filled, blocks), edges[1]!);
 }
 
 /**
@@ -205,21 +237,4 @@ function shrinkToCommon(noise: Float64Array, common: number, samplesPerBlock: nu
   const byChance = medianOfThreeVariance / samplesPerBlock;
   const kept = spread > 0 ? Math.max(0, 1 - byChance / spread) : 0;
   return noise.map((value) => common + kept * (value - common));
-}
-
-function lagOneOf(counts: Float64Array, baseline: Float64Array, quiet: Uint8Array, noise: Float64Array): number {
-  let products = 0;
-  let squares = 0;
-  let pairs = 0;
-  for (let i = 1; i < counts.length; i += 1) {
-    if (quiet[i] !== 1 || quiet[i - 1] !== 1) continue;
-    const a = (counts[i - 1]! - baseline[i - 1]!) / noise[i - 1]!;
-    const b = (counts[i]! - baseline[i]!) / noise[i]!;
-    // A few samples far out (a weak line that was not masked) must not make the noise look smooth.
-    if (Math.abs(a) > 4 || Math.abs(b) > 4) continue;
-    products += a * b;
-    squares += (a * a + b * b) / 2;
-    pairs += 1;
-  }
-  return pairs < 20 || squares === 0 ? 0 : Math.max(-1, Math.min(1, products / squares));
 }

@@ -1,6 +1,10 @@
 /**
  * Where lines stand, before any is fitted: peaks of the smoothed residual above a threshold with a stated false-alarm rate, told apart
  * from hot pixels and spikes by their width, split where a valley shows.
+ *
+ * Two searches: a narrow running mean keeps neighbours apart, a broad one, matched to the line, finds the weak ones between them. Each is a
+ * chance of a false line at every sample, so each gets half of the rate: threshold = normal quantile of 1 - rate / (2 samples), times
+ * the noise that the running mean leaves, measured on the quiet samples (correlation of the samples included).
  */
 import { normalQuantile } from "../numeric/distributions.ts";
 import type { Baseline } from "./baseline.ts";
@@ -39,6 +43,19 @@ const wingShare = 0.02;
 const wingWidths = 5;
 /** With narrower lines a single high sample may be a line's top. */
 const narrowestWithSpikes = 2.5;
+const mostForWidth = 40;
+
+let room = new Float64Array(0);
+/** Memory for the residual and three running means of it, kept between captures. */
+function takeRoom(n: number): { residual: Float64Array; first: Float64Array; second: Float64Array; third: Float64Array } {
+  if (room.length < 4 * n) room = new Float64Array(4 * n);
+  return {
+    residual: room.subarray(0, n),
+    first: room.subarray(n, 2 * n),
+    second: room.subarray(2 * n, 3 * n),
+    third: room.subarray(3 * n, 4 * n),
+  };
+}
 
 /**
  * @param counts    counts with gaps already filled by the baseline
@@ -52,62 +69,61 @@ export function detectLines(
   falseLinesPerCapture: number,
 ): Detection {
   const n = counts.length;
-  const residual = new Float64Array(n);
+  const { residual, first, second, third } = takeRoom(n);
   for (let i = 0; i < n; i += 1) residual[i] = counts[i]! - base.baseline[i]!;
-  const typicalWidth = findTypicalWidth(residual, base, saturated);
-  // Two searches, each a chance of a false line at every sample.
+  smooth(residual, 3, first);
+  const typicalWidth = findTypicalWidth(residual, first, base, saturated);
   const threshold = normalQuantile(1 - Math.min(0.4, falseLinesPerCapture / (2 * n)));
   const width = typicalWidth ?? 3;
   const candidates = width >= narrowestWithSpikes ? takeLoneSamples(residual, base, saturated) : [];
 
-  // Narrow smoothing keeps neighbours apart; broad smoothing, matched to the line, finds the weak ones between them.
   const narrowBox = oddAtLeastOne(width / 2);
-  const narrow = smooth(residual, narrowBox);
-  const tops = findTops(narrow, noiseOf(narrow, base), threshold, residual, base, narrowBox >> 1);
+  const narrow = narrowBox === 1 ? residual : first;
+  smooth(residual, narrowBox, narrow);
+  const tops = findTops(narrow, noiseFactor(narrow, base, third), threshold, residual, base, narrowBox >> 1);
   const broadBox = oddAtLeastOne(0.8 * width);
-  const broad = smooth(smooth(residual, broadBox), broadBox);
-  for (const top of findTops(broad, noiseOf(broad, base), threshold, residual, base, broadBox)) {
-    if (tops.every((other) => Math.abs(other - top) > 1.2 * width)) tops.push(top);
-  }
-  tops.sort((a, b) => a - b);
+  smooth(residual, broadBox, third);
+  smooth(third, broadBox, second);
+  const weak = findTops(second, noiseFactor(second, base, third), threshold, residual, base, broadBox);
+  addBetween(tops, weak, 1.2 * width);
 
-  for (const top of tops) {
-    const one = describe(narrow, residual, top, saturated, tops);
+  const reach = 1 + Math.round(width / 2);
+  for (let k = 0; k < tops.length; k += 1) {
+    const top = tops[k]!;
+    const one = describe(narrow, residual, top, saturated, tops[k - 1] ?? 0, tops[k + 1] ?? n - 1);
     if (typicalWidth !== null && one.width > bandShare * typicalWidth && !one.saturated) continue;
-    const others = tops.filter((other) => Math.abs(other - top) > width / 2);
-    const sharp = describe(
-      residual,
-      residual,
-      sharpestNear(residual, top, 1 + Math.round(width / 2)),
-      saturated,
-      others,
-    );
-    if (
-      typicalWidth !== null &&
-      typicalWidth >= narrowestToJudge &&
-      !one.saturated &&
-      sharp.height > strongSigmas * base.noiseCounts[sharp.top]! &&
-      sharp.width < spikeShare * typicalWidth
-    ) {
-      candidates.push({ ...sharp, spike: true });
-    } else candidates.push(one);
+    if (typicalWidth === null || typicalWidth < narrowestToJudge || one.saturated) {
+      candidates.push(one);
+      continue;
+    }
+    let left = k - 1;
+    let right = k + 1;
+    while (left >= 0 && top - tops[left]! <= width / 2) left -= 1;
+    while (right < tops.length && tops[right]! - top <= width / 2) right += 1;
+    const sharpest = sharpestNear(residual, top, reach);
+    const sharp = describe(residual, residual, sharpest, saturated, tops[left] ?? 0, tops[right] ?? n - 1);
+    const isSpike = sharp.height > strongSigmas * base.noiseCounts[sharp.top]! && sharp.width < spikeShare * typicalWidth;
+    candidates.push(isSpike ? { ...sharp, spike: true } : one);
   }
-  return { candidates: dropWings(dropTwins(candidates), width).sort((a, b) => a.centre - b.centre), typicalWidth };
+  candidates.sort((a, b) => a.centre - b.centre);
+  return { candidates: dropWings(dropTwins(candidates), width), typicalWidth };
 }
 
 function oddAtLeastOne(width: number): number {
   return 2 * Math.floor(width / 2) + 1;
 }
 
-/** Running mean over an odd number of samples, shorter at the ends. */
-function smooth(values: Float64Array, box: number): Float64Array {
-  if (box <= 1) return values;
+/** Running mean over an odd number of samples, shorter at the ends; `out` may be `values` itself only for a box of one. */
+function smooth(values: Float64Array, box: number, out: Float64Array): void {
   const n = values.length;
+  if (box <= 1) {
+    if (out !== values) out.set(values);
+    return;
+  }
   const half = (box - 1) / 2;
-  const out = new Float64Array(n);
   let sum = 0;
   let count = 0;
-  for (let i = 0; i < Math.min(half, n); i += 1) {
+  for (let i = 0; i < half && i < n; i += 1) {
     sum += values[i]!;
     count += 1;
   }
@@ -122,60 +138,76 @@ function smooth(values: Float64Array, box: number): Float64Array {
     }
     out[i] = sum / count;
   }
-  return out;
 }
 
-/** Noise of a smoothed residual as it is, correlation of the samples included: measured on the quiet samples. */
-function noiseOf(values: Float64Array, base: Baseline): Float64Array {
-  const n = values.length;
-  const ratios = new Float64Array(n);
+/** Noise of a smoothed residual over that of the samples, correlation of the samples included: measured on the quiet samples. */
+function noiseFactor(values: Float64Array, base: Baseline, ratios: Float64Array): number {
+  const { quiet, noiseCounts } = base;
   let m = 0;
-  for (let i = 0; i < n; i += 1) if (base.quiet[i] === 1) ratios[m++] = Math.abs(values[i]!) / base.noiseCounts[i]!;
-  const factor = m < 20 ? 1 : Math.max(1.4826 * medianInPlace(ratios, m), 1e-3);
-  const out = new Float64Array(n);
-  for (let i = 0; i < n; i += 1) out[i] = factor * base.noiseCounts[i]!;
-  return out;
+  for (let i = 0; i < values.length; i += 1) {
+    if (quiet[i] === 1) ratios[m++] = Math.abs(values[i]!) / noiseCounts[i]!;
+  }
+  return m < 20 ? 1 : Math.max(1.4826 * medianInPlace(ratios, m), 1e-3);
 }
 
-/** Tops above the threshold, one for each hill that a deep enough valley parts from its neighbours. */
+/** Tops above the threshold, one for each hill that a deep enough valley parts from its neighbours; ascending. */
 function findTops(
   values: Float64Array,
-  noise: Float64Array,
+  factor: number,
   threshold: number,
   residual: Float64Array,
   base: Baseline,
   ends: number,
 ): number[] {
   const n = values.length;
+  const { noiseCounts } = base;
+  const high = threshold * factor;
   const tops: number[] = [];
   let top = -1;
   let valley = -1;
-  const isDeep = (from: number, bottom: number, to: number): boolean => {
-    const lower = Math.min(values[from]!, values[to]!);
-    return lower - values[bottom]! > Math.max(valleySigmas * noise[bottom]!, valleyShare * lower);
+  const take = (at: number): void => {
+    // A top must stand out in the samples themselves, not only in their running mean over a step.
+    // At the ends the running mean is over fewer samples, and a line is cut off.
+    if (residual[at]! > noiseCounts[at]! && at >= ends && at < n - ends) tops.push(at);
   };
   for (let i = 0; i < n; i += 1) {
     const value = values[i]!;
-    const rises = i === 0 || value > values[i - 1]!;
     if (top >= 0 && (valley < 0 || value < values[valley]!)) valley = i;
-    if (!rises || value < threshold * noise[i]!) continue;
+    if (value < high * noiseCounts[i]! || (i > 0 && value <= values[i - 1]!)) continue;
     let end = i;
     while (end + 1 < n && values[end + 1] === value) end += 1;
     if (end + 1 < n && values[end + 1]! > value) continue;
     const at = (i + end) >> 1;
-    if (top >= 0 && valley >= 0 && valley < at && isDeep(top, valley, at)) {
-      tops.push(top);
+    if (top < 0) {
       top = at;
       valley = -1;
-    } else if (top < 0 || value > values[top]!) {
+      continue;
+    }
+    const lower = Math.min(values[top]!, value);
+    const isDeep =
+      valley >= 0 &&
+      valley < at &&
+      lower - values[valley]! > Math.max(valleySigmas * factor * noiseCounts[valley]!, valleyShare * lower);
+    if (isDeep) take(top);
+    if (isDeep || value > values[top]!) {
       top = at;
       valley = -1;
     }
   }
-  if (top >= 0) tops.push(top);
-  // A top must stand out in the samples themselves, not only in their running mean over a step.
-  // At the ends the running mean is over fewer samples, and a line is cut off.
-  return tops.filter((at) => residual[at]! > base.noiseCounts[at]! && at >= ends && at < n - ends);
+  if (top >= 0) take(top);
+  return tops;
+}
+
+/** Adds those of `more` that stand farther than `apart` from every one of `tops`; both ascending. */
+function addBetween(tops: number[], more: readonly number[], apart: number): void {
+  const count = tops.length;
+  let k = 0;
+  for (const at of more) {
+    while (k < count && tops[k]! < at) k += 1;
+    const isFree = (k === 0 || at - tops[k - 1]! > apart) && (k === count || tops[k]! - at > apart);
+    if (isFree && (tops.length === count || at - tops[tops.length - 1]! > apart)) tops.push(at);
+  }
+  if (tops.length > count) tops.sort((a, b) => a - b);
 }
 
 function sharpestNear(residual: Float64Array, top: number, reach: number): number {
@@ -194,8 +226,8 @@ function takeLoneSamples(residual: Float64Array, base: Baseline, saturated: Uint
   const spikes: Candidate[] = [];
   for (let i = 1; i + 1 < residual.length; i += 1) {
     const height = residual[i]!;
-    const higherNeighbour = Math.max(residual[i - 1]!, residual[i + 1]!);
-    const out = height - higherNeighbour;
+    if (height < strongSigmas * base.noiseCounts[i]!) continue;
+    const out = height - Math.max(residual[i - 1]!, residual[i + 1]!);
     if (saturated[i] === 1 || out < strongSigmas * base.noiseCounts[i]! || out < 0.5 * height) continue;
     spikes.push({ top: i, centre: i, width: 1, height, spike: true, saturated: false });
     residual[i] = (residual[i - 1]! + residual[i + 1]!) / 2;
@@ -203,30 +235,30 @@ function takeLoneSamples(residual: Float64Array, base: Baseline, saturated: Uint
   return spikes;
 }
 
-/** Half-height crossings on both sides of a top, not beyond the neighbouring tops. */
+/** Half-height crossings on both sides of a top, not beyond the limits. */
 function describe(
   shape: Float64Array,
   residual: Float64Array,
   top: number,
   saturated: Uint8Array,
-  tops: readonly number[],
+  leftLimit: number,
+  rightLimit: number,
 ): Candidate {
-  const n = shape.length;
-  let leftLimit = 0;
-  let rightLimit = n - 1;
-  for (const other of tops) {
-    if (other < top && other > leftLimit) leftLimit = other;
-    if (other > top && other < rightLimit) rightLimit = other;
-  }
   const half = shape[top]! / 2;
+  let isSaturated = false;
   let i = top;
-  while (i > leftLimit && shape[i]! > half) i -= 1;
+  while (i > leftLimit && shape[i]! > half) {
+    if (saturated[i] === 1) isSaturated = true;
+    i -= 1;
+  }
   const left = shape[i]! <= half && i < top ? i + (half - shape[i]!) / (shape[i + 1]! - shape[i]!) : NaN;
   let j = top;
-  while (j < rightLimit && shape[j]! > half) j += 1;
+  while (j < rightLimit && shape[j]! > half) {
+    if (saturated[j] === 1) isSaturated = true;
+    j += 1;
+  }
   const right = shape[j]! <= half && j > top ? j - (half - shape[j]!) / (shape[j - 1]! - shape[j]!) : NaN;
-  let isSaturated = false;
-  for (let k = Math.max(0, i); k <= Math.min(n - 1, j); k += 1) if (saturated[k] === 1) isSaturated = true;
+  if (saturated[i] === 1 || saturated[j] === 1) isSaturated = true;
   const leftReach = left === left ? top - left : right === right ? right - top : 1;
   const rightReach = right === right ? right - top : leftReach;
   const both = left === left && right === right;
@@ -241,14 +273,18 @@ function describe(
 }
 
 /** Median width of the strong tops; tops of one or two samples count only when nothing broader is there. */
-function findTypicalWidth(residual: Float64Array, base: Baseline, saturated: Uint8Array): number | null {
+function findTypicalWidth(
+  residual: Float64Array,
+  smoothed: Float64Array,
+  base: Baseline,
+  saturated: Uint8Array,
+): number | null {
   const n = residual.length;
-  const smoothed = smooth(residual, 3);
+  const { noiseCounts } = base;
   const tops: number[] = [];
   for (let i = 1; i + 1 < n; i += 1) {
     const value = smoothed[i]!;
-    if (value > strongSigmas * base.noiseCounts[i]! && value > smoothed[i - 1]! && value >= smoothed[i + 1]!)
-      tops.push(i);
+    if (value > strongSigmas * noiseCounts[i]! && value > smoothed[i - 1]! && value >= smoothed[i + 1]!) tops.push(i);
   }
   // The strongest in their surroundings, so that ripple on a flat top does not count as many narrow lines.
   tops.sort((a, b) => smoothed[b]! - smoothed[a]!);
@@ -256,10 +292,10 @@ function findTypicalWidth(residual: Float64Array, base: Baseline, saturated: Uin
   const taken: { left: number; right: number }[] = [];
   for (const top of tops) {
     if (taken.some((one) => top >= one.left && top <= one.right)) continue;
-    const one = describe(residual, residual, sharpestNear(residual, top, 1), saturated, []);
+    const one = describe(residual, residual, sharpestNear(residual, top, 1), saturated, 0, n - 1);
     taken.push({ left: one.centre - 1.5 * one.width, right: one.centre + 1.5 * one.width });
     if (!one.saturated) widths.push(one.width);
-    if (widths.length >= 40) break;
+    if (widths.length >= mostForWidth) break;
   }
   if (widths.length === 0) return null;
   const broad = widths.filter((width) => width >= narrowestToJudge);
@@ -268,22 +304,25 @@ function findTypicalWidth(residual: Float64Array, base: Baseline, saturated: Uin
 
 /** The two smoothings may find one spike twice. */
 function dropTwins(candidates: Candidate[]): Candidate[] {
-  return candidates.filter(
-    (one, k) =>
-      !candidates.some((other, m) => m < k && Math.abs(other.top - one.top) <= 1 && other.spike === one.spike),
-  );
+  return candidates.filter((one, k) => {
+    for (let m = k - 1; m >= 0 && one.centre - candidates[m]!.centre <= 3; m -= 1) {
+      const other = candidates[m]!;
+      if (Math.abs(other.top - one.top) <= 1 && other.spike === one.spike) return false;
+    }
+    return true;
+  });
 }
 
 /** What stands on the wing of a line fifty times as high is its wing, its ghost or the detector's ringing. */
 function dropWings(candidates: Candidate[], width: number): Candidate[] {
-  return candidates.filter(
-    (one) =>
-      one.spike ||
-      !candidates.some(
-        (other) =>
-          !other.spike &&
-          one.height < wingShare * other.height &&
-          Math.abs(other.centre - one.centre) < wingWidths * width,
-      ),
-  );
+  const reach = wingWidths * width;
+  const isWing = (one: Candidate, other: Candidate): boolean => !other.spike && one.height < wingShare * other.height;
+  return candidates.filter((one, k) => {
+    if (one.spike) return true;
+    for (let m = k - 1; m >= 0 && one.centre - candidates[m]!.centre < reach; m -= 1)
+      if (isWing(one, candidates[m]!)) return false;
+    for (let m = k + 1; m < candidates.length && candidates[m]!.centre - one.centre < reach; m += 1)
+      if (isWing(one, candidates[m]!)) return false;
+    return true;
+  });
 }

@@ -4,8 +4,9 @@
  * Model   variance of a sample = read noise² + gain x signal + (misfit x signal)²; photon noise grows with the signal, a wrong shape with
  *         its square, so that lines of different height part the two: gain is where the straight line of (excess / signal) against height
  *         meets height zero
- * Seen    the sum of squared residuals of an evenly weighted fit is on average sum of variance x (1 - leverage): a narrow line's few bright
- *         samples are followed by the fit and show little of their noise, so the leverage of each sample counts
+ * Seen    the sum of squared residuals of an evenly weighted fit is on average the trace of (1 - H) V, H the projection on the fit's
+ *         columns, V the covariance of the noise (its correlation by lag included): a narrow line's few bright samples are followed by
+ *         the fit and show little of their noise
  * Solved  median over the lines, because a line with an unresolved companion has an excess of any size; where the gain rises with the height
  *         (M. G. Kendall, Biometrika 30, 81, 1938) the straight line's value at height zero (P. K. Sen, JASA 63, 1379, 1968); then
  *         the weighted mean of the lines that agree with it
@@ -15,13 +16,20 @@ import { median } from "./median.ts";
 export interface LineScatter {
   /** Sum of squared residuals less what the read noise leaves of itself, counts². */
   excess: number;
-  /** Sum of (1 - leverage) x fitted signal above the baseline, counts. */
+  /** What a gain of one leaves of its noise: trace of (1 - H) V for V of the signal, counts. */
   signal: number;
   /** Sum of (1 - leverage) x signal², counts². */
   squareSignal: number;
   /** Mean read noise², counts², and the sums of (1 - leverage)² x 1, signal, signal²: for the scatter of `excess`. */
   readVariance: number;
   moments: readonly [number, number, number];
+}
+
+export interface PhotonGain {
+  /** Counts per electron; 0 where the lines show no photon noise (or there is none to judge by). */
+  gain: number;
+  /** Standard uncertainty of it over it; 0 where the gain is 0. */
+  relativeUnc: number;
 }
 
 const agreeingSigmas = 3;
@@ -32,10 +40,10 @@ const leastAgreeing = 1 / 3;
 const misfitCorrelation = 0.5;
 const fewestForRank = 4;
 
-/** Counts per electron; 0 where the lines show no photon noise (or there is none to judge by). */
-export function estimatePhotonGain(lines: readonly LineScatter[]): number {
+export function estimatePhotonGain(lines: readonly LineScatter[]): PhotonGain {
+  const none = { gain: 0, relativeUnc: 0 };
   const seen = lines.filter((line) => line.signal > 0);
-  if (seen.length === 0) return 0;
+  if (seen.length === 0) return none;
   const gains = seen.map((line) => line.excess / line.signal);
   const { correlation, atHeightZero } = trendWithHeight(seen, gains);
   let gain = correlation > misfitCorrelation ? atHeightZero : median(gains);
@@ -52,11 +60,11 @@ export function estimatePhotonGain(lines: readonly LineScatter[]): number {
       weights += 1 / variance;
       sum += gains[k]! / variance;
     });
-    if (agreeing < leastAgreeing * seen.length) return 0;
+    if (agreeing < leastAgreeing * seen.length) return none;
     gain = sum / weights;
   }
   // A gain that can't be told from none would only widen every interval, since it can't go below zero.
-  return gain > 0 && gain * gain * weights > 1 ? gain : 0;
+  return gain > 0 && gain * gain * weights > 1 ? { gain, relativeUnc: 1 / (gain * Math.sqrt(weights)) } : none;
 }
 
 /** Kendall's correlation of gain and height, and the Theil-Sen line of gain against height at height zero. */
@@ -85,14 +93,68 @@ function trendWithHeight(
 }
 
 /**
- * Leverages of the samples of an evenly weighted fit: diagonal of the projection on its columns, by modified Gram-Schmidt.
+ * What a first, evenly weighted fit of one line leaves over, beside what each kind of noise would leave.
  *
- * @param columns  derivatives of the fitted curve with respect to each parameter, all of one length; overwritten
+ * @param columns  derivatives of the fitted curve with respect to each parameter (constant factors do not matter); overwritten
  */
-export function leveragesOf(columns: Float64Array[]): Float64Array {
-  const m = columns[0]!.length;
+export function scatterOf(
+  columns: Float64Array[],
+  residuals: Float64Array,
+  signals: Float64Array,
+  unc: Float64Array,
+  autocorrelation: Float64Array,
+): LineScatter {
+  const m = residuals.length;
+  orthonormalise(columns);
+  const root = new Float64Array(m);
   const leverages = new Float64Array(m);
+  let [readFree, signalFree, squareSignal, readVariance, excess] = [0, 0, 0, 0, 0];
+  for (let i = 0; i < m; i += 1) {
+    root[i] = Math.sqrt(signals[i]!);
+    readFree += unc[i]! * unc[i]!;
+    signalFree += signals[i]!;
+    readVariance += (unc[i]! * unc[i]!) / m;
+    excess += residuals[i]! * residuals[i]!;
+  }
+  const product = new Float64Array(m);
+  for (const column of columns) {
+    for (let i = 0; i < m; i += 1) {
+      leverages[i] = leverages[i]! + column[i]! * column[i]!;
+      product[i] = column[i]! * unc[i]!;
+    }
+    readFree -= correlatedSquare(product, autocorrelation);
+    for (let i = 0; i < m; i += 1) product[i] = column[i]! * root[i]!;
+    signalFree -= correlatedSquare(product, autocorrelation);
+  }
+  const moments: [number, number, number] = [0, 0, 0];
+  for (let i = 0; i < m; i += 1) {
+    const free = Math.max(0, 1 - leverages[i]!);
+    const s = signals[i]!;
+    squareSignal += free * s * s;
+    moments[0] += free * free;
+    moments[1] += free * free * s;
+    moments[2] += free * free * s * s;
+  }
+  return { excess: excess - Math.max(0, readFree), signal: signalFree, squareSignal, readVariance, moments };
+}
+
+/** v'Rv, R the correlation by lag. */
+function correlatedSquare(v: Float64Array, autocorrelation: Float64Array): number {
+  const m = v.length;
+  let sum = 0;
+  for (let i = 0; i < m; i += 1) sum += v[i]! * v[i]!;
+  for (let lag = 1; lag <= autocorrelation.length && lag < m; lag += 1) {
+    let products = 0;
+    for (let i = lag; i < m; i += 1) products += v[i]! * v[i - lag]!;
+    sum += 2 * autocorrelation[lag - 1]! * products;
+  }
+  return sum;
+}
+
+/** An orthonormal basis of what the columns span, in their place, by modified Gram-Schmidt; a column that adds nothing becomes 0. */
+export function orthonormalise(columns: Float64Array[]): void {
   columns.forEach((column, k) => {
+    const m = column.length;
     const before = norm(column);
     for (let other = 0; other < k; other += 1) {
       const basis = columns[other]!;
@@ -101,14 +163,9 @@ export function leveragesOf(columns: Float64Array[]): Float64Array {
       for (let i = 0; i < m; i += 1) column[i] = column[i]! - dot * basis[i]!;
     }
     const after = norm(column);
-    // A column that the others already hold adds no leverage.
     const scale = after > 1e-9 * before ? 1 / after : 0;
-    for (let i = 0; i < m; i += 1) {
-      column[i] = column[i]! * scale;
-      leverages[i] = leverages[i]! + column[i]! * column[i]!;
-    }
+    for (let i = 0; i < m; i += 1) column[i] = column[i]! * scale;
   });
-  return leverages;
 }
 
 function norm(values: Float64Array): number {

@@ -1,0 +1,326 @@
+/**
+ * The line shape of a capture: which one, and what its strong lines say of its parameter.
+ *
+ * Strong lines   single, unsaturated, 30 noise deviations high or more, at most twelve
+ * Is a Gaussian  enough: the residuals of the strong lines' fits are projected on the third and fourth Hermite functions, less what the fit
+ *                could follow (score test; C. R. Rao, Proc. Camb. Phil. Soc. 44 (1948) 50); both sums within 3 standard deviations: it is
+ * Which          else the least BIC over the strong lines (G. Schwarz, Ann. Statist. 6 (1978) 461), the noise's scale free for every line:
+ *                sum of m ln(chi² / m) + k ln M, k = shape parameters of the whole capture, m and M samples of a line and of all; where the
+ *                noise is correlated, the first term over the sum of its correlations. BIC and not AICc, because a needless parameter costs
+ *                accuracy in every line, and hundreds of samples make a needed one plain
+ * Parameter      fitted to each strong line by itself, then their mean with a scatter between lines (R. DerSimonian, N. Laird, Control. Clin.
+ *                Trials 7 (1986) 177). A line's fit is given what the other lines say, never its own word twice, as a value with an uncertainty
+ */
+import type { CaptureLineShape, LineShapeChoice, LineShapeName } from "../analysis/types.ts";
+import { log } from "../numeric/elementary.ts";
+import { fitLines, type FittedWindowOfLines } from "../lineshape/fit-line.ts";
+import type { KnownParameter } from "../lineshape/line-solver.ts";
+import { profileOf, type Profile } from "../lineshape/profile.ts";
+import { startsOf, windowOf, type Group, type GroupWindow, type Prepared } from "./line-groups.ts";
+import { median } from "./median.ts";
+import { orthonormalise } from "./photon-gain.ts";
+
+/** A shape to fit a capture's lines with. */
+export interface ShapeInUse {
+  name: LineShapeName;
+  profile: Profile;
+  /** What the other strong lines say of the parameter, for a line whose top is at this sample; null: nothing, it is free. */
+  knownFor(top: number): KnownParameter | null;
+  report: CaptureLineShape;
+}
+
+export interface StrongLine {
+  group: Group;
+  window: GroupWindow;
+}
+
+const strongSigmas = 30;
+const mostStrong = 12;
+/** Narrower or broader than the typical line by this factor: no line to learn from. */
+const likeTypical = 1.7;
+const fewestSamplesOver = 4;
+const scoreSigmas = 3;
+const fewestForScore = 2;
+/** Share of a parameter's range that stands in for its uncertainty where no line shows it. */
+const unseenShare = 0.25;
+
+/** The shapes that evidence may choose; the pseudo-Voigt is left to the setup, since a true Voigt takes its place. */
+const candidates: LineShapeName[] = ["gaussian", "exponentially-modified-gaussian", "box", "voigt", "lorentzian"];
+
+const parameterNames: Partial<Record<LineShapeName, string>> = {
+  "pseudo-voigt": "lorentzShare",
+  voigt: "lorentzShare",
+  "exponentially-modified-gaussian": "tail",
+  box: "flatness",
+};
+
+export function parameterName(name: LineShapeName): string {
+  return parameterNames[name] ?? "parameter";
+}
+
+/** Strong single lines with whole windows, strongest first. */
+export function strongLines(prepared: Prepared, groups: readonly Group[], gain: number): StrongLine[] {
+  const { typicalWidth, readNoise, excluded, counts } = prepared;
+  const chosen = groups.filter(({ members, first, last }) => {
+    const one = members[0]!;
+    if (members.length > 1 || one.saturated || one.height < strongSigmas * readNoise[one.top]!) return false;
+    if (one.width > likeTypical * typicalWidth || one.width < typicalWidth / likeTypical) return false;
+    if (one.centre < 2 * one.width || one.centre > counts.length - 1 - 2 * one.width) return false;
+    for (let i = first; i <= last; i += 1) if (excluded[i] !== 0) return false;
+    return last - first + 1 >= 5 + fewestSamplesOver;
+  });
+  chosen.sort((a, b) => b.members[0]!.height - a.members[0]!.height);
+  return chosen.slice(0, mostStrong).map((group) => ({ group, window: windowOf(prepared, group, gain) }));
+}
+
+/** A fit of one strong line under noise taken as white: what it is compared by is corrected for correlation as a whole. */
+export function fitStrong(
+  prepared: Prepared,
+  { group, window }: StrongLine,
+  profile: Profile,
+  known: KnownParameter | null,
+  withDerivatives = false,
+): FittedWindowOfLines | null {
+  const fit = fitLines(
+    {
+      positions: window.positions,
+      counts: window.values,
+      countsUnc: window.unc,
+      pixelIntegrated: prepared.pixelIntegrated,
+      noiseCorrelation: 0,
+    },
+    startsOf(prepared, group),
+    { shape: profile, shapeParameter: known, withDerivatives },
+  );
+  return fit.outcome === "fitted" ? fit : null;
+}
+
+/** Sum of the correlations at all lags: by how much fewer samples tell than there are. */
+function redundancyOf(prepared: Prepared): number {
+  let sum = 1;
+  for (const value of prepared.autocorrelation) sum += 2 * value;
+  return Math.max(1, sum);
+}
+
+/** True where the strong lines show nothing that a Gaussian does not. */
+export function isGaussianEnough(prepared: Prepared, strong: readonly StrongLine[]): boolean {
+  const redundancy = redundancyOf(prepared);
+  const sums = [0, 0];
+  const variances = [0, 0];
+  let count = 0;
+  for (const line of strong) {
+    const fit = fitStrong(prepared, line, profileOf("gaussian"), null, true);
+    if (fit === null) continue;
+    count += 1;
+    const { positions, values, unc } = line.window;
+    const m = positions.length;
+    const columns = fit.derivatives!;
+    for (const column of columns) for (let i = 0; i < m; i += 1) column[i] = column[i]! / unc[i]!;
+    orthonormalise(columns);
+    const { centre, fwhm } = fit.lines[0]!;
+    const scatter = Math.max(1, fit.reducedChiSquare) * redundancy;
+    for (const order of [0, 1]) {
+      const wave = new Float64Array(m);
+      for (let i = 0; i < m; i += 1) {
+        const u = ((positions[i]! - centre) / fwhm) * 2.3548200450309493;
+        const hermite = order === 0 ? u * (u * u - 3) : u * u * (u * u - 6) + 3;
+        // Columns 2 of the fit is the curve per area, whatever its width.
+        wave[i] = hermite * Math.max(0, fit.fittedCounts[i]! - baselineAt(fit, positions[i]!)) / unc[i]!;
+      }
+      for (const column of columns) {
+        let dot = 0;
+        for (let i = 0; i < m; i += 1) dot += column[i]! * wave[i]!;
+        for (let i = 0; i < m; i += 1) wave[i] = wave[i]! - dot * column[i]!;
+      }
+      let square = 0;
+      let product = 0;
+      for (let i = 0; i < m; i += 1) {
+        square += wave[i]! * wave[i]!;
+        product += (wave[i]! * (values[i]! - fit.fittedCounts[i]!)) / unc[i]!;
+      }
+      if (!(square > 0)) continue;
+      // Each line's word in units of its own scatter, so that one odd line does not speak for all.
+      const weight = Math.min(1, strongSigmas / Math.sqrt(square));
+      sums[order]! += (weight * product) / Math.sqrt(scatter);
+      variances[order]! += weight * weight * square;
+    }
+  }
+  if (count < fewestForScore) return true;
+  return sums.every((sum, order) => sum * sum <= scoreSigmas * scoreSigmas * variances[order]!);
+}
+
+function baselineAt(fit: FittedWindowOfLines, position: number): number {
+  return fit.baseline[0] + fit.baseline[1] * (position - fit.windowCentre);
+}
+
+interface Pooled {
+  value: number;
+  unc: number;
+  scatter: number;
+}
+
+/** Mean of the lines' parameters with a scatter between them. */
+function pool(each: readonly KnownParameter[]): Pooled | null {
+  if (each.length === 0) return null;
+  let [w, ww, mean] = [0, 0, 0];
+  for (const { value, unc } of each) {
+    const weight = 1 / (unc * unc);
+    w += weight;
+    ww += weight * weight;
+    mean += weight * value;
+  }
+  mean /= w;
+  let q = 0;
+  for (const { value, unc } of each) q += ((value - mean) / unc) * ((value - mean) / unc);
+  const room = w - ww / w;
+  const scatter = each.length > 1 && room > 0 ? Math.sqrt(Math.max(0, (q - (each.length - 1)) / room)) : 0;
+  let [total, sum] = [0, 0];
+  for (const { value, unc } of each) {
+    const weight = 1 / (unc * unc + scatter * scatter);
+    total += weight;
+    sum += weight * value;
+  }
+  return { value: sum / total, unc: Math.sqrt(1 / total), scatter };
+}
+
+interface Learned {
+  pooled: Pooled | null;
+  /** By the top's sample index. */
+  each: Map<number, KnownParameter>;
+}
+
+/** The parameter of each strong line by itself, and over all. */
+function learn(prepared: Prepared, strong: readonly StrongLine[], profile: Profile): Learned {
+  const each = new Map<number, KnownParameter>();
+  const atLimit: number[] = [];
+  for (const line of strong) {
+    const fit = fitStrong(prepared, line, profile, null);
+    const found = fit?.shapeParameter ?? null;
+    if (found === null) continue;
+    each.set(line.group.members[0]!.top, found);
+    if (found.unc === 0) atLimit.push(line.group.members[0]!.top);
+  }
+  // A line whose parameter stands at its limit says so, about as surely as the others.
+  const uncs = [...each.values()].map((one) => one.unc).filter((unc) => unc > 0);
+  const usual = uncs.length > 0 ? median(uncs) : 0.1 * (profile.most - profile.least);
+  for (const top of atLimit) each.set(top, { value: each.get(top)!.value, unc: usual });
+  return { pooled: pool([...each.values()]), each };
+}
+
+function shapeOf(
+  name: LineShapeName,
+  profile: Profile,
+  learned: Learned | null,
+  chosenBy: CaptureLineShape["chosenBy"],
+  note: string,
+): ShapeInUse {
+  const unseen = { value: profile.usual, unc: unseenShare * (profile.most - profile.least) };
+  const knownFor = (top: number): KnownParameter | null => {
+    if (!profile.hasParameter) return null;
+    if (learned === null || learned.pooled === null) return unseen;
+    if (!learned.each.has(top)) {
+      const { value, unc, scatter } = learned.pooled;
+      return { value, unc: Math.sqrt(unc * unc + scatter * scatter) };
+    }
+    const others = pool([...learned.each].filter(([other]) => other !== top).map(([, one]) => one));
+    if (others === null) return null;
+    return { value: others.value, unc: Math.sqrt(others.unc * others.unc + others.scatter * others.scatter) };
+  };
+  const known = new Map<number, KnownParameter | null>();
+  const pooled = learned?.pooled ?? null;
+  return {
+    name,
+    profile,
+    knownFor: (top) => {
+      if (!known.has(top)) known.set(top, knownFor(top));
+      return known.get(top)!;
+    },
+    report: {
+      name,
+      chosenBy,
+      parameter: pooled === null ? null : { name: parameterName(name), ...pooled },
+      lines: learned?.each.size ?? 0,
+      note,
+    },
+  };
+}
+
+const words: Record<LineShapeName, string> = {
+  gaussian: "a Gaussian",
+  lorentzian: "a Lorentzian",
+  voigt: "a Voigt shape",
+  "pseudo-voigt": "a pseudo-Voigt shape",
+  "exponentially-modified-gaussian": "a Gaussian with an exponential tail",
+  box: "a box blurred by a Gaussian",
+  empirical: "the shape learned from the capture's own strong lines",
+};
+
+/** The Gaussian, as a default or because nothing speaks against it. */
+export function gaussianShape(chosenBy: CaptureLineShape["chosenBy"], lines: number): ShapeInUse {
+  const note =
+    chosenBy === "evidence"
+      ? lines < fewestForScore
+        ? "Too few strong single lines to tell their shape: a Gaussian is taken."
+        : `${lines} strong lines show nothing that a Gaussian does not.`
+      : "The lines are fitted with a Gaussian.";
+  const shape = shapeOf("gaussian", profileOf("gaussian"), null, chosenBy, note);
+  return { ...shape, report: { ...shape.report, lines } };
+}
+
+/** A shape that the setup names, with its parameter learned from the strong lines. */
+export function givenShape(
+  prepared: Prepared,
+  strong: readonly StrongLine[],
+  name: Exclude<LineShapeChoice, "automatic" | "empirical">,
+): ShapeInUse {
+  const profile = profileOf(name);
+  const learned = profile.hasParameter ? learn(prepared, strong, profile) : null;
+  const shape = shapeOf(name, profile, learned, "setup", `The lines are fitted with ${words[name]}, as set up.`);
+  return learned === null ? { ...shape, report: { ...shape.report, lines: strong.length } } : shape;
+}
+
+/** BIC of a shape over the strong lines, its parameter held at their common value; Infinity where it fits no line. */
+function criterion(
+  prepared: Prepared,
+  strong: readonly StrongLine[],
+  profile: Profile,
+  pooled: Pooled | null,
+): { perLine: number[]; samples: number } {
+  let samples = 0;
+  const perLine = strong.map((line) => {
+    const m = line.window.positions.length;
+    samples += m;
+    const known = pooled === null ? null : { value: pooled.value, unc: 0 };
+    const fit = fitStrong(prepared, line, profile, known);
+    if (fit === null) return Infinity;
+    const chiSquare = fit.reducedChiSquare * fit.degreesOfFreedom;
+    return m * log(Math.max(chiSquare / m, 1e-12));
+  });
+  return { perLine, samples };
+}
+
+/** The shape with the least BIC over the strong lines; a line that some shape does not fit at all is left out for all. */
+export function shapeByEvidence(prepared: Prepared, strong: readonly StrongLine[]): ShapeInUse {
+  const redundancy = redundancyOf(prepared);
+  const tried = candidates.map((name) => {
+    const profile = profileOf(name);
+    const learned = profile.hasParameter ? learn(prepared, strong, profile) : null;
+    return { name, profile, learned, ...criterion(prepared, strong, profile, learned?.pooled ?? null) };
+  });
+  const usable = strong.map((_, k) => tried.every(({ perLine }) => perLine[k]! < Infinity));
+  let best = tried[0]!;
+  let least = Infinity;
+  for (const one of tried) {
+    let sum = one.profile.hasParameter ? log(Math.max(one.samples, 1)) : 0;
+    one.perLine.forEach((value, k) => {
+      if (usable[k]) sum += value / redundancy;
+    });
+    if (sum >= least) continue;
+    best = one;
+    least = sum;
+  }
+  if (best.name === "gaussian") return gaussianShape("evidence", strong.length);
+  const note = `Of the shapes tried on ${strong.length} strong lines, ${words[best.name]} describes them best (least BIC).`;
+  const shape = shapeOf(best.name, best.profile, best.learned, "evidence", note);
+  return { ...shape, report: { ...shape.report, lines: strong.length } };
+}
