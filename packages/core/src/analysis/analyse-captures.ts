@@ -5,10 +5,13 @@
  * its reason; what can't be decided is refused in a sentence, never guessed.
  */
 import { textToBytes } from "../capture/decode.ts";
+import { refuse } from "../capture/refusal.ts";
 import { identifyLines, type IdentifiedLines } from "../identify/identify-lines.ts";
 import { builtInLineList } from "../linelist/built-in.ts";
 import { findLines, smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
 import { coreVersion } from "../version.ts";
+import { absorptionOf, combineAbsorption } from "./absorption-captures.ts";
+import { analyseBands, bandSettingsProblem } from "./analyse-bands.ts";
 import { combineCaptures, type CombinedCaptures } from "./combine-captures.ts";
 import { drawSpectrum } from "./draw-spectrum.ts";
 import { findMisplaced, fitAxis, misplacedReason } from "./fit-axis.ts";
@@ -50,6 +53,7 @@ export function analyseCapture(
   if (source instanceof Uint8Array) {
     return analyseCaptures([{ name: "capture", bytes: source, sha256: null, part: "lamp" }], setup, resources);
   }
+  if (setup.sampleKind === "absorption") return analyseAbsorption(absorptionOf(source), setup, resources);
   const combined: CombinedCaptures = {
     outcome: "read",
     spectrum: source,
@@ -72,9 +76,21 @@ export function analyseCaptures(
   setup: AnalysisSetup,
   resources: AnalysisResources = {},
 ): AnalysedCheck {
+  if (setup.sampleKind === "absorption") return analyseAbsorption(combineAbsorption(captures, setup), setup, resources);
   const combined = combineCaptures(captures, setup.reading);
   if (combined.outcome === "refused") return refused(combined.refusal, combined.files, setup, null);
   return analyseCombined(combined, setup, resources);
+}
+
+function analyseAbsorption(
+  combined: ReturnType<typeof combineAbsorption>,
+  setup: AnalysisSetup,
+  resources: AnalysisResources,
+): AnalysedCheck {
+  if (combined.outcome === "refused") return refused(combined.refusal, combined.files, setup, null);
+  const problem = bandSettingsProblem(combined.spectrum, setup);
+  if (problem !== null) return refused(refuse("bad-settings", problem), combined.files, setup, combined.spectrum);
+  return analyseBands(combined, setup, resources.withDrawing !== false);
 }
 
 function analyseCombined(
@@ -122,14 +138,15 @@ function analyseCombined(
       ),
     );
   let lines = judge();
-  let dispersion = fitAxis(spectrum, found, lines, setup, identified);
-  const misplaced = findMisplaced(found, dispersion, setup, identified);
+  let newAxis = fitAxis(spectrum, found, lines, setup, identified);
+  const misplaced = findMisplaced(found, newAxis.dispersion, setup, identified);
   if (misplaced.length > 0) {
     for (const index of misplaced) identified.names[index] = null;
     lines = judge();
     for (const index of misplaced) lines[index]!.result.reason = misplacedReason;
-    dispersion = fitAxis(spectrum, found, lines, setup, identified);
+    newAxis = fitAxis(spectrum, found, lines, setup, identified);
   }
+  const { dispersion } = newAxis;
   const results = lines.map((one) => one.result);
   const verdicts = verdictsOf(lines, identified, setup, axis);
   const driftPoint = driftPointOfLines(lines);
@@ -156,7 +173,7 @@ function analyseCombined(
     driftPoint,
     confidence: { chanceProbability: identified.chanceProbability, margin: identified.margin, note: identified.note },
     notIncluded: notIncludedIn(axis, setup),
-    warnings: [...warningsOf(found, combined), ...identified.warnings],
+    warnings: [...warningsOf(found, combined), ...identified.warnings, ...newAxis.warnings],
   };
   return {
     analysis,

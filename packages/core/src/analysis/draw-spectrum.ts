@@ -9,10 +9,13 @@ import type { Dispersion, Spectrum, SpectrumDrawing } from "./types.ts";
 
 const mostPairs = 4096;
 
+/** What of the lines found is drawn. */
+export type DrawnLines = Pick<FoundLines, "lines" | "windows" | "baseline" | "ceilingCounts">;
+
 /** @param axis,dispersion  the wavelength scale to draw on: the axis that indicates, else the new one, else the positions as they are */
 export function drawSpectrum(
   spectrum: Spectrum,
-  found: FoundLines,
+  found: DrawnLines,
   axis: IndicatingAxis | null,
   dispersion: Dispersion | null,
 ): SpectrumDrawing {

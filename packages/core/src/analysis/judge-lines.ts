@@ -1,6 +1,6 @@
 /** From fitted and named lines to errors with their budgets (`line-budget.ts`) and verdicts, line by line. */
 import type { LineName } from "../identify/identify-lines.ts";
-import { combineContributions } from "../uncertainty/budget.ts";
+import { combineContributions, type Contribution } from "../uncertainty/budget.ts";
 import { judgeError, toleranceAt, type Judgement } from "../uncertainty/conformity.ts";
 import type { IndicatingAxis } from "./indicating-axis.ts";
 import { budgetOfLine, type LineRepeatability } from "./line-budget.ts";
@@ -29,6 +29,8 @@ export interface LineInput {
   name: LineName | null;
   /** What repeats show beyond the fit's own uncertainty, or null with one capture. */
   repeatability: LineRepeatability | null;
+  /** Contributions of the line's own that only its kind of sample has; absent = none. */
+  extra?: readonly Contribution[];
 }
 
 export function isLine(list: readonly number[], wavelengthNm: number): boolean {
@@ -132,7 +134,7 @@ export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: 
   }
 
   const { contributions, sharedByCauseNm } = budgetOfLine(line, name, input.repeatability, axis, setup);
-  const combined = combineContributions(contributions);
+  const combined = combineContributions([...contributions, ...(input.extra ?? [])]);
   const errorNm = axis.indicatedNm(line.position) - axis.referenceNm(name.wavelengthNm, name.medium);
   result.errorNm = errorNm;
   result.errorUncNm = combined.uncNm;

@@ -64,7 +64,7 @@ export function budgetOfLine(
     {
       contribution: "fit",
       uncNm: line.positionUnc * nmPerUnit,
-      degreesOfFreedom: isScaled ? line.degreesOfFreedom : null,
+      degreesOfFreedom: line.positionDegreesOfFreedom ?? (isScaled ? line.degreesOfFreedom : null),
       sensitivity: nmPerUnit,
       assumed: line.flags.includes("poor-fit") && line.degreesOfFreedom === 0,
       note: isScaled ? "centre of the line, scaled by the scatter about the fit" : "centre of the line, from the noise",

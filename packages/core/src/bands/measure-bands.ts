@@ -27,8 +27,8 @@ export interface MeasuredBand {
   shiftPerNm2: number;
   windowFirst: number;
   windowLast: number;
-  /** The smooth curve: wavelengths and values. */
-  curve: { wavelengthsNm: Float64Array; values: Float64Array };
+  /** Value of the smooth curve at each sample of the window. */
+  curve: Float64Array;
 }
 
 /** Why a top could not be measured. */
@@ -131,8 +131,11 @@ export function measureBands(
   const bands = curves.map((curve, k): MeasuredBand | BandProblem => {
     const window = windows[k]!;
     if (curve === null || typeof window === "string") return window as BandProblem;
-    const top = curve.findMaximum(known.length > 1 ? shared : null);
-    return top === null ? "no-maximum" : bandOf(wavelengthsNm, ordinate, window, top, power, curve);
+    const top = curve.findMaximum(
+      known.length > 1 ? shared : null,
+      wavelengthsNm.subarray(window.first, window.last + 1),
+    );
+    return top === null ? "no-maximum" : bandOf(wavelengthsNm, ordinate, window, top, power);
   });
   return { bands, smoothedOver, noise: shared === null ? 0 : exp(0.5 * shared.logVariance) };
 }
@@ -247,7 +250,6 @@ function bandOf(
   window: Window,
   top: CurveMaximum,
   power: number,
-  curve: CurveProcess,
 ): MeasuredBand {
   let nearest = window.first;
   for (let i = window.first; i <= window.last; i += 1) {
@@ -263,6 +265,6 @@ function bandOf(
     shiftPerNm2: -0.5 * (top.thirdDerivative / top.curvature),
     windowFirst: window.first,
     windowLast: window.last,
-    curve: { wavelengthsNm: curve.positions, values: top.fitted },
+    curve: top.fitted,
   };
 }

@@ -68,11 +68,9 @@ export function ordinateOf(counts: Float64Array, kind: OrdinateKind): Ordinate {
   };
 }
 
-/** Noise of a beam: standard deviations from sample to sample, counts. */
+/** One beam: its counts, averaged over its captures. */
 export interface Beam {
   counts: Float64Array;
-  /** Scans or captures averaged into it. */
-  captures: number;
 }
 
 /**

@@ -48,7 +48,7 @@ export interface CurveMaximum {
   noise: number;
   /** Generalised sum of squares over its expectation at the noise that was settled on. */
   reducedChiSquare: number;
-  /** The smooth curve at each sample of the window. */
+  /** The smooth curve where it was asked for. */
   fitted: Float64Array;
 }
 
@@ -101,10 +101,6 @@ export class CurveProcess {
   private readonly longest: number;
   private readonly states: State[] = [];
   private kernelScale = NaN;
-
-  get positions(): Float64Array {
-    return this.window.positions;
-  }
 
   constructor(private readonly window: CurveWindow) {
     const { positions, relativeUnc, smoothedOver } = window;
@@ -246,8 +242,13 @@ export class CurveProcess {
     return [low, high];
   }
 
-  /** Maximum for a noise level shared with other bands (null: known from this band alone). */
-  findMaximum(shared: NoiseLevel | null): CurveMaximum | null {
+  /**
+   * The maximum.
+   *
+   * @param shared   noise level that several bands agree on; null where this band is alone
+   * @param drawnAt  where the smooth curve is wanted
+   */
+  findMaximum(shared: NoiseLevel | null, drawnAt: Float64Array): CurveMaximum | null {
     const prior =
       shared === null
         ? null
@@ -289,7 +290,7 @@ export class CurveProcess {
       }
     }
     position /= sum;
-    const fitted = this.curveAtSamples(best);
+    const fitted = this.curveAt(best, drawnAt);
     return {
       position: top.position + position,
       positionUnc: Math.sqrt(square / sum - position * position),
@@ -426,10 +427,10 @@ export class CurveProcess {
     return Math.max(0, inverse - square) + mean;
   }
 
-  private curveAtSamples(state: State): Float64Array {
+  private curveAt(state: State, drawnAt: Float64Array): Float64Array {
     this.at(state.logScale, state.logRatio);
     this.solveAlpha();
-    return this.window.positions.map((x) => this.derivativesAt(x).value);
+    return drawnAt.map((x) => this.derivativesAt(x).value);
   }
 }
 

@@ -113,6 +113,7 @@ export const budgetWords: Record<BudgetEntry["contribution"], string> = {
   temperature: "Temperature",
   blend: "Blend",
   laser: "Laser line",
+  bandwidth: "Bandwidth",
 };
 
 export const flagWords: Record<LineFlag, string> = {
