@@ -130,9 +130,9 @@ const leastBesideStep = 2;
  */
 export function chooseModel(series: DriftSeries, oddEvidence: ArrayLike<number>): ChosenModel {
   const { bases, sourceLevels } = basesOf(series);
-  const columns = new Map<string, Float64Array>();
+  const search = new Search(series, bases);
   const forms: DriftForm[] = [{ kind: "stable", mid: [], scale: [], logEvidence: log(kindPrior.stable) }];
-  for (const family of families) forms.push(...formsOf(family, series, bases, sourceLevels, oddEvidence, columns));
+  for (const family of families) forms.push(...formsOf(family, search, sourceLevels, oddEvidence));
   forms.sort((a, b) => b.logEvidence - a.logEvidence);
   const total = logSumExp(forms.map((form) => form.logEvidence));
   const probabilities = driftKinds.map((kind) =>
@@ -146,25 +146,55 @@ export function chooseModel(series: DriftSeries, oddEvidence: ArrayLike<number>)
   return { kind, probabilities, form: forms.find((form) => form.kind === kind)!, forms, sourceLevels };
 }
 
-function formsOf(
-  family: Family,
-  series: DriftSeries,
-  bases: Bases,
-  sourceLevels: boolean,
-  oddEvidence: ArrayLike<number>,
-  columns: Map<string, Float64Array>,
-): DriftForm[] {
-  const column = (term: DriftTerm): Float64Array => {
-    const key = "place" in term ? `${term.effect} ${term.place}` : term.effect;
-    const known = columns.get(key) ?? columnOf(term, series);
-    columns.set(key, known);
-    return known;
-  };
+/** Designs and gains that families share, each made once. */
+class Search {
+  private readonly designs = new Map<string, WeightedDesign | null>();
+  private readonly gains = new Map<string, Float64Array>();
+  private readonly columns = new Map<string, Float64Array>();
+
+  constructor(
+    readonly series: DriftSeries,
+    readonly bases: Bases,
+  ) {}
+
+  design(which: "mid" | "scale", effects: readonly PlacelessEffect[]): WeightedDesign | null {
+    const key = `${which} ${effects.join(" ")}`;
+    let design = this.designs.get(key);
+    if (design !== undefined) return design;
+    design = this.bases[which];
+    for (const effect of effects) design = design?.with(columnOf({ effect }, this.series)) ?? null;
+    this.designs.set(key, design);
+    return design;
+  }
+
+  /** What each place's column takes off the sum of squares, in the order of `placesOf`; NaN where it says nothing new. */
+  gainsOf(which: "mid" | "scale", effects: readonly PlacelessEffect[], effect: PlacedEffect): Float64Array {
+    const key = `${which} ${effects.join(" ")} ${effect}`;
+    let gains = this.gains.get(key);
+    if (gains !== undefined) return gains;
+    const design = this.design(which, effects);
+    gains = Float64Array.from(placesOf(effect, this.series.count), (place) => {
+      return design?.gainOf(this.column(effect, place)) ?? NaN;
+    });
+    this.gains.set(key, gains);
+    return gains;
+  }
+
+  private column(effect: PlacedEffect, place: number): Float64Array {
+    const key = `${effect} ${place}`;
+    const column = this.columns.get(key) ?? columnOf({ effect, place }, this.series);
+    this.columns.set(key, column);
+    return column;
+  }
+}
+
+function formsOf(family: Family, search: Search, sourceLevels: boolean, oddEvidence: ArrayLike<number>): DriftForm[] {
+  const { series, bases } = search;
+  const mid = search.design("mid", family.mid);
+  const scale = search.design("scale", family.scale);
+  if (mid === null || scale === null) return [];
   const midTerms: DriftTerm[] = family.mid.map((effect) => ({ effect }));
   const scaleTerms: DriftTerm[] = family.scale.map((effect) => ({ effect }));
-  const mid = withEvery(bases.mid, midTerms.map(column));
-  const scale = withEvery(bases.scale, scaleTerms.map(column));
-  if (mid === null || scale === null) return [];
   const prior = log(family.share * kindPrior[family.kind === "by-size" ? "drift" : family.kind]);
   const { placed } = family;
   if (placed === undefined) {
@@ -172,12 +202,14 @@ function formsOf(
     return [named(family, { kind: "drift", mid: midTerms, scale: scaleTerms, logEvidence }, series, sourceLevels)];
   }
   const places = placesOf(placed.effect, series.count);
+  const midGains = placed.mid ? search.gainsOf("mid", family.mid, placed.effect) : null;
+  const scaleGains = placed.scale ? search.gainsOf("scale", family.scale, placed.effect) : null;
   const forms: DriftForm[] = [];
-  for (const place of places) {
+  places.forEach((place, j) => {
+    const midGain = midGains === null ? 0 : midGains[j]!;
+    const scaleGain = scaleGains === null ? 0 : scaleGains[j]!;
+    if (midGain !== midGain || scaleGain !== scaleGain) return;
     const term: DriftTerm = { effect: placed.effect, place };
-    const midGain = placed.mid ? mid.gainOf(column(term)) : 0;
-    const scaleGain = placed.scale ? scale.gainOf(column(term)) : 0;
-    if (midGain === null || scaleGain === null) continue;
     const odd = placed.effect === "odd" ? oddEvidence[place]! : 0;
     forms.push({
       kind: family.kind === "by-size" ? "drift" : family.kind,
@@ -190,7 +222,7 @@ function formsOf(
         factor(bases.mid, mid, midGain, placed.mid ? 1 : 0) +
         factor(bases.scale, scale, scaleGain, placed.scale ? 1 : 0),
     });
-  }
+  });
   if (family.kind !== "by-size" || forms.length === 0) return forms;
   // Which term is larger is asked once, at the best place.
   const best = forms.reduce((a, b) => (b.logEvidence > a.logEvidence ? b : a));
@@ -205,12 +237,6 @@ function placesOf(effect: PlacedEffect, count: number): number[] {
   const places: number[] = [];
   for (let place = first; place <= last; place += stride) places.push(place);
   return places;
-}
-
-function withEvery(base: WeightedDesign, columns: readonly Float64Array[]): WeightedDesign | null {
-  let design: WeightedDesign | null = base;
-  for (const column of columns) design = design?.with(column) ?? null;
-  return design;
 }
 
 /** ln Bayes factor of a fuller design against its base, a further column's gain taken off its sum of squares. */
@@ -324,6 +350,7 @@ export function columnOf(term: DriftTerm, series: DriftSeries): Float64Array {
   const { count, years } = series;
   const column = new Float64Array(count);
   const middle = years[count - 1]! / 2;
+  const meanC = term.effect === "temperature" ? meanTemperatureC(series) : NaN;
   for (let i = 0; i < count; i++) {
     switch (term.effect) {
       case "trend":
@@ -333,7 +360,8 @@ export function columnOf(term: DriftTerm, series: DriftSeries): Float64Array {
         column[i] = (years[i]! - middle) * (years[i]! - middle);
         break;
       case "temperature":
-        column[i] = temperatureAbove(series, i);
+        // A check without a temperature is taken to have been at the mean, which says nothing of the effect.
+        column[i] = series.temperatureC[i] === series.temperatureC[i] ? series.temperatureC[i]! - meanC : 0;
         break;
       case "onset":
         column[i] = i > term.place ? years[i]! - years[term.place]! : 0;
@@ -359,12 +387,6 @@ export function meanTemperatureC(series: DriftSeries): number {
     known += 1;
   }
   return known === 0 ? NaN : sum / known;
-}
-
-/** A check without a temperature is taken to have been at the mean, which says nothing of the effect. */
-function temperatureAbove(series: DriftSeries, i: number): number {
-  const value = series.temperatureC[i]!;
-  return value === value ? value - meanTemperatureC(series) : 0;
 }
 
 /** Indicator columns of the levels: one a run, and one a source (but the first) where sources differ. */

@@ -8,9 +8,12 @@
  * The median is the library's; of an even number of slopes it takes the lower of the two middle ones, so the mirrored series is fitted
  * too and the mean of both is the median as it is defined. (The library's source was read: it uses no function that engines differ in.)
  */
+// @ts-expect-error the package brings no types; what is used of it is written below
 import { TheilSenRegression } from "ml-regression";
 import { normalQuantile } from "../numeric/distributions.ts";
 import { solveLeastSquares } from "../numeric/linear-least-squares.ts";
+
+const PairwiseSlopes = TheilSenRegression as new (x: readonly number[], y: readonly number[]) => { slope: number };
 
 export interface StraightLine {
   intercept: number;
@@ -73,8 +76,8 @@ export function theilSenLine(t: ArrayLike<number>, y: ArrayLike<number>, confide
   if (slopes.length === 0) return null;
   const times = Array.from(t);
   const values = Array.from(y);
-  const up = new TheilSenRegression(times, values);
-  const down = new TheilSenRegression(
+  const up = new PairwiseSlopes(times, values);
+  const down = new PairwiseSlopes(
     times,
     values.map((value) => -value),
   );
