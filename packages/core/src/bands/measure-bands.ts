@@ -119,7 +119,6 @@ export function measureBands(
     for (const other of smoothings) {
       if (other === 1 || other > longest) continue;
       const value = likelihood(power, other);
-      if (value < least - 20) break;
       if (value <= least) continue;
       least = value;
       smoothedOver = other;

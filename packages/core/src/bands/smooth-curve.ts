@@ -65,6 +65,8 @@ const averagedOver = [-1.4, 0, 1.4];
 /** Noise of one band beside that of the others: standard deviation of the logarithm of its variance. Found by simulation. */
 const noiseSpread = 0.7;
 const noiseCells = 61;
+/** Share of smoothed noise that stays white: rounding, and filters that are no exact running mean. */
+const whiteShare = 0.02;
 
 /** Logarithm of the noise variance, and the standard deviation of that. */
 export interface NoiseLevel {
@@ -127,7 +129,7 @@ export class CurveProcess {
       this.design[i * meanCount + 1] = (positions[i]! - this.middle) / this.half;
       for (let j = 0; j <= i; j += 1) {
         const lag = (positions[i]! - positions[j]!) / step;
-        const correlation = i === j ? 1 : Math.max(0, 1 - lag / smoothedOver);
+        const correlation = i === j ? 1 : (1 - whiteShare) * Math.max(0, 1 - lag / smoothedOver);
         this.noise[i * m + j] = correlation * relativeUnc[i]! * relativeUnc[j]!;
       }
     }
