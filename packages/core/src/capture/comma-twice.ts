@@ -26,6 +26,7 @@ export interface PieceTable {
 export function fittingJoins(table: PieceTable, headingCount: number | null): number[][] {
   const { pieces } = table;
   const facts = Array.from({ length: pieces }, (_, p) => pieceFacts(table, p));
+  const counted = countsRows(columnOf(table, 0, 1));
   const ways = compositions(pieces).filter((way) => way.length >= 2);
   const byHeadings = headingCount === null ? [] : ways.filter((way) => way.length === headingCount);
   return (byHeadings.length > 0 ? byHeadings : ways).filter((way) => {
@@ -35,6 +36,8 @@ export function fittingJoins(table: PieceTable, headingCount: number | null): nu
       if (width === 2 && !facts[piece + 1]!.canBeDecimals) return false;
       piece += width;
     }
+    // A first piece that counts the rows is a number by itself, unless it carries the same decimals throughout (`400,00`).
+    if (way[0] === 2 && counted && !facts[1]!.isConstant) return false;
     return isEvenAxis(columnOf(table, 0, way[0]!));
   });
 }
@@ -51,7 +54,18 @@ function compositions(sum: number): number[][] {
   return found.sort((a, b) => b.length - a.length);
 }
 
-function pieceFacts(table: PieceTable, piece: number): { hasNeedlessZero: boolean; canBeDecimals: boolean } {
+function countsRows(values: Float64Array): boolean {
+  for (let i = 1; i < values.length; i += 1) if (Math.abs(values[i]! - values[i - 1]!) !== 1) return false;
+  return true;
+}
+
+interface PieceFacts {
+  hasNeedlessZero: boolean;
+  canBeDecimals: boolean;
+  isConstant: boolean;
+}
+
+function pieceFacts(table: PieceTable, piece: number): PieceFacts {
   const { bytes, starts, ends, rows, pieces } = table;
   let hasNeedlessZero = false;
   let onlyDigits = true;
@@ -68,11 +82,13 @@ function pieceFacts(table: PieceTable, piece: number): { hasNeedlessZero: boolea
     else if (to - from !== width) sameWidth = false;
     if (to - from > 1 && bytes[to - 1] === 48) endsInZero = true;
   }
-  return { hasNeedlessZero, canBeDecimals: onlyDigits && width > 0 && (sameWidth || !endsInZero) };
+  const values = columnOf(table, piece, 1);
+  const isConstant = values.every((value) => value === values[0]);
+  return { hasNeedlessZero, isConstant, canBeDecimals: onlyDigits && width > 0 && (sameWidth || !endsInZero) };
 }
 
 /** Numbers of the column that begins at a piece and takes one or two of them. */
-export function columnOf(table: PieceTable, piece: number, width: number): Float64Array {
+function columnOf(table: PieceTable, piece: number, width: number): Float64Array {
   const { bytes, starts, ends, rows, pieces } = table;
   const values = new Float64Array(rows);
   for (let r = 0; r < rows; r += 1) {

@@ -50,19 +50,23 @@ export function settleDecimalSign(
   return { reading, remark: `The decimal sign was taken to be "${marked}".` };
 }
 
-/** What a person is offered. */
-export function offeredReadings(readings: readonly SignReading[], options: ReadOptions): PossibleReading[] {
-  return readings.map(({ block, chosen, rows }) => {
-    const group = block.decimal === "." ? "comma" : "point";
-    const sign = block.decimal === "." ? "point" : "comma";
-    const numbers = rows.axis === null ? [rows.counts[0]!] : [rows.axis[0]!, rows.counts[0]!];
+/** What a person is offered, shown on the first row that the readings read differently. */
+export function offeredReadings(
+  readings: readonly [SignReading, SignReading],
+  options: ReadOptions,
+): PossibleReading[] {
+  const [a, b] = readings.map(({ rows }) => rows) as [Rows, Rows];
+  const differs = (row: number): boolean => a.counts[row] !== b.counts[row] || a.axis?.[row] !== b.axis?.[row];
+  let row = 0;
+  while (row + 1 < a.counts.length && !differs(row)) row += 1;
+  return readings.map(({ block, rows }) => {
+    const [sign, group] = block.decimal === "." ? ["point", "comma"] : ["comma", "point"];
+    const numbersOf = (at: number): number[] =>
+      rows.axis === null ? [rows.counts[at]!] : [rows.axis[at]!, rows.counts[at]!];
     return {
       options: { ...options, decimal: block.decimal },
-      description: `Decimal ${sign}, a ${group} groups thousands: the first row is ${numbers.join(" and ")} (column ${[
-        ...(chosen.axisColumn === null ? [] : [chosen.axisColumn + 1]),
-        chosen.intensityColumn + 1,
-      ].join(" and ")}).`,
-      firstRow: numbers,
+      description: `Decimal ${sign}, a ${group} groups thousands: line ${rows.lineNumbers[row]!} is ${numbersOf(row).join(" and ")}.`,
+      firstRow: numbersOf(0),
     };
   });
 }

@@ -36,7 +36,7 @@ export function finishCapture(input: UnfinishedCapture): ReadCapture {
   if (n < fewestRows) {
     return refuse(
       "too-few-rows",
-      `The file holds ${n} row${n === 1 ? "" : "s"} of numbers; a capture needs at least ${fewestRows}.`,
+      `The file holds ${n} row${n === 1 ? "" : "s"} of numbers; a capture needs at least ${fewestRows}.${n > 0 && facts.columns.length >= fewestRows ? " Positions and intensities seem to stand in rows; export them as columns." : ""}`,
       n === 0 ? null : lineOf(0),
     );
   }

@@ -294,7 +294,7 @@ function finishTable(file: TextFile, read: ReadTable): ReadCapture {
   const table = chooseTable(tables, rows, options, remarks);
   if ("outcome" in table) return table;
   const other = sortUnread(bytes, encoding, lines, block, rows, table, header.headingLine);
-  for (const line of [...other.headerLines, ...other.footLines]) {
+  for (const line of other.metadataLines) {
     if (isMetadataFull(header.metadata)) break;
     addMetadata(header.metadata, lineText(bytes, encoding, lines, line), block.delimiter);
   }

@@ -191,8 +191,8 @@ export interface OtherLines {
   damagedCount: number;
   /** 0-based lines of a header in the middle of the data. */
   headerLines: number[];
-  /** 0-based lines after the last row. */
-  footLines: number[];
+  /** 0-based lines that may hold metadata: of second headers, above a later table, and after the last row. */
+  metadataLines: number[];
 }
 
 /** Sort the unread lines of one table (rows `table.from` to `table.to`) into damage, second headers and the file's foot. */
@@ -205,25 +205,32 @@ export function sortUnread(
   table: TableSpan,
   headingLine: number,
 ): OtherLines {
-  const result: OtherLines = { damaged: [], damagedCount: 0, headerLines: [], footLines: [] };
-  const last = table.to;
-  const within = rows.unread.filter(({ beforeRow }) => beforeRow > table.from && beforeRow <= last);
+  const result: OtherLines = { damaged: [], damagedCount: 0, headerLines: [], metadataLines: [] };
+  const { from: first, to: last } = table;
+  const within = rows.unread.filter(({ beforeRow }) => beforeRow >= first && beforeRow <= last);
   const headingText = headingLine < 0 ? null : textOf(bytes, encoding, lines, headingLine);
   for (let i = 0; i < within.length;) {
     let end = i + 1;
     while (end < within.length && within[end]!.beforeRow === within[i]!.beforeRow) end += 1;
     const group = within.slice(i, end);
     i = end;
-    const isFoot = group[0]!.beforeRow === last;
+    const before = group[0]!.beforeRow;
+    const isFoot = before === rows.counts.length;
+    // What stands above a later table, or between this one and the next, is no part of this one's data.
+    const isOutside = before === first || before === last;
     const words = group.filter(({ isText }) => isText);
-    const isHeader = words.some(({ line }) => looksLikeHeader(bytes, encoding, lines, block, line, headingText));
+    const isHeader =
+      isOutside || words.some(({ line }) => looksLikeHeader(bytes, encoding, lines, block, line, headingText));
     for (const { line, reason, isText } of group) {
-      if (isText && isFoot) result.footLines.push(line);
-      else if (isText && isHeader) result.headerLines.push(line);
-      else {
+      if (!isText && before === last && !isFoot) continue;
+      if (!isText || !isHeader) {
         result.damagedCount += 1;
         if (result.damaged.length < mostDamagedLines) result.damaged.push({ line: line + 1, reason });
+        continue;
       }
+      if (!isOutside) result.headerLines.push(line);
+      if (isFoot || (before < last && isKeyValue(textOf(bytes, encoding, lines, line))))
+        result.metadataLines.push(line);
     }
   }
   if (rows.unreadCount > rows.unread.length) result.damagedCount += rows.unreadCount - rows.unread.length;
@@ -233,6 +240,10 @@ export function sortUnread(
 function textOf(bytes: Uint8Array, encoding: TextEncoding, lines: LineIndex, line: number): string {
   const from = lines.starts[line]!;
   return sliceText(bytes, from, Math.min(lines.ends[line]!, from + 1000), encoding).trim();
+}
+
+function isKeyValue(text: string): boolean {
+  return /^[^:=]{1,80}[:=]/.test(text);
 }
 
 /** The headings again, a comment, a `key: value`, or words in every column. */
@@ -247,7 +258,7 @@ function looksLikeHeader(
   const text = textOf(bytes, encoding, lines, line);
   if (text === headingText) return true;
   if (!/\p{L}/u.test(text)) return false;
-  if (/^[#%[]/.test(text) || /^[^:=]{1,80}[:=]/.test(text)) return true;
+  if (/^[#%[]/.test(text) || isKeyValue(text)) return true;
   const row = makeRowReader();
   const cells = splitRow(bytes, lines.starts[line]!, lines.ends[line]!, block, row);
   if (cells !== block.columns || cells === 1) return false;

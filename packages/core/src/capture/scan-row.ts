@@ -104,6 +104,8 @@ export function splitRow(bytes: Uint8Array, from: number, to: number, format: Ro
   return column < joins.length ? column : column + (cells - piece);
 }
 
+/** A cell of more bytes is no number of a capture; the language's own conversion would labour over it. */
+const longestNumber = 400;
 const apostrophe = 39;
 const markCodes: Record<ThousandsSign, number> = {
   ",": comma,
@@ -143,6 +145,7 @@ export function scanNumber(
   decimal: DecimalSign,
   thousands: ThousandsSign = "any",
 ): number {
+  if (to - from > longestNumber) return NaN;
   let i = from;
   let negative = false;
   const first = bytes[i];
