@@ -3,29 +3,45 @@
  * is not the line it was taken for.
  */
 import { axisNm, axisSlope } from "../dispersion/axis.ts";
-import { fitDispersion } from "../dispersion/fit-dispersion.ts";
+import {
+  type DispersionOptions,
+  type DispersionPoint,
+  type DispersionRefusal,
+  fitDispersion,
+  type FittedDispersion,
+} from "../dispersion/fit-dispersion.ts";
+import { fitGratingDispersion } from "../dispersion/fit-grating-dispersion.ts";
+import { updateAxis } from "../dispersion/update-axis.ts";
 import type { IdentifiedLines } from "../identify/identify-lines.ts";
 import type { FoundLines } from "../spectrum/find-lines.ts";
 import type { JudgedLineResult } from "./judge-lines.ts";
 import { referenceMedium } from "./reference-medium.ts";
-import type { AnalysisSetup, AxisMeaning, Dispersion, Spectrum } from "./types.ts";
+import type { Analysis, AnalysisSetup, AxisMeaning, Dispersion, Spectrum } from "./types.ts";
 
 /** A rejected line is called an outlier when it lies this many of its own standard uncertainties off; else it was merely not sure enough. */
 const outlierSigmas = 2.5;
 
-/** A new axis from the named lines of a pixel or step axis; marks what was used and what was rejected. */
+export interface NewAxis {
+  dispersion: Dispersion | null;
+  warnings: Analysis["warnings"];
+}
+
+/**
+ * A new axis from the named lines: fitted anew, or the earlier one moved (`setup.axisUpdate`); of a pixel axis whose optics are known the
+ * geometry as well. Marks in `lines` what was used and what was rejected.
+ */
 export function fitAxis(
   spectrum: Spectrum,
   found: FoundLines,
   lines: JudgedLineResult[],
   setup: AnalysisSetup,
   identified: IdentifiedLines,
-): Dispersion | null {
-  if (identified.outcome !== "identified" || spectrum.axisKind === "wavenumber") return null;
+): NewAxis {
+  if (identified.outcome !== "identified" || spectrum.axisKind === "wavenumber")
+    return { dispersion: null, warnings: [] };
   const used = lines.map((_, index) => index).filter((index) => lines[index]!.fitsAxis);
-  const meaning = meaningOf(setup);
-  const medium = referenceMedium(meaning, setup.room);
-  const points = used.map((index) => {
+  const medium = referenceMedium(meaningOf(setup), setup.room);
+  const points = used.map((index): DispersionPoint => {
     const name = identified.names[index]!;
     const line = found.lines[index]!;
     return {
@@ -36,18 +52,12 @@ export function fitAxis(
       wavelengthUncNm: Math.sqrt(name.referenceUncNm * name.referenceUncNm + name.blendUncNm * name.blendUncNm),
     };
   });
-  const fitted = fitDispersion(points, {
-    degree: setup.degree,
-    firstPosition: spectrum.positions[0]!,
-    lastPosition: spectrum.positions[spectrum.positions.length - 1]!,
-    meaning,
-    fwhm: found.medianFwhm ?? 1,
-  });
+  const warnings: NewAxis["warnings"] = [];
+  const fitted = fitPoints(points, spectrum, found, setup, warnings);
   if (fitted.outcome === "refused") {
     // An instrument with an axis of its own is judged by it: that no new one can be fitted is no news.
-    if (spectrum.axisKind === "wavelength") return null;
-    identified.warnings.push({ code: "no-axis", text: fitted.reason });
-    return null;
+    if (spectrum.axisKind !== "wavelength") warnings.push({ code: "no-axis", text: fitted.reason });
+    return { dispersion: null, warnings };
   }
   const rejected = fitted.dispersion.rejected.map(({ line, reason }) => ({ line: used[line]!, reason }));
   used.forEach((index, point) => {
@@ -55,13 +65,59 @@ export function fitAxis(
     const isRejected = rejected.some((one) => one.line === index);
     result.usedInAxis = !isRejected;
     result.residualNm = fitted.residualsNm[point]!;
+    result.leverage = fitted.leverages[point]!;
+    result.studentisedResidual = fitted.studentisedResiduals[point]!;
     if (!isRejected) return;
     const { position, positionUnc, wavelengthUncNm } = points[point]!;
     const positionUncNm = positionUnc * axisSlope(fitted.dispersion.axis, position);
     const uncNm = Math.sqrt(positionUncNm * positionUncNm + wavelengthUncNm * wavelengthUncNm);
     if (Math.abs(result.residualNm) > outlierSigmas * uncNm) result.flags.push("outlier");
   });
-  return { ...fitted.dispersion, rejected };
+  return { dispersion: { ...fitted.dispersion, rejected }, warnings };
+}
+
+function fitPoints(
+  points: readonly DispersionPoint[],
+  spectrum: Spectrum,
+  found: FoundLines,
+  setup: AnalysisSetup,
+  warnings: NewAxis["warnings"],
+): FittedDispersion | DispersionRefusal {
+  const options: DispersionOptions = {
+    degree: setup.degree,
+    firstPosition: spectrum.positions[0]!,
+    lastPosition: spectrum.positions[spectrum.positions.length - 1]!,
+    meaning: meaningOf(setup),
+    fwhm: found.medianFwhm ?? 1,
+  };
+  const { mode, axisUpdate, optics } = setup;
+  const kind = axisUpdate ?? "fit";
+  if (kind !== "fit" && mode.kind === "earlier-axis" && mode.axis !== "own") {
+    const updated = updateAxis(mode.axis, points, { ...options, kind });
+    if (updated.outcome === "fitted" && updated.remark !== null) {
+      warnings.push({ code: "axis-update", text: updated.remark });
+    }
+    return updated;
+  }
+  const polynomial = fitDispersion(points, options);
+  if (polynomial.outcome === "refused" || spectrum.axisKind !== "pixel") return polynomial;
+  const isAsked = setup.axisFamily === "grating";
+  if (optics === undefined || optics === null) {
+    if (isAsked) {
+      const text =
+        "The axis was to follow the spectrometer's geometry, but its optics are not known: a polynomial was fitted.";
+      warnings.push({ code: "no-optics", text });
+    }
+    return polynomial;
+  }
+  const grating = fitGratingDispersion(points, optics, options, polynomial);
+  if (grating.outcome === "refused") {
+    if (isAsked) warnings.push({ code: "no-optics", text: `${grating.reason} A polynomial was fitted instead.` });
+    return polynomial;
+  }
+  if (isAsked) return grating;
+  polynomial.dispersion.families = grating.dispersion.families!;
+  return polynomial;
 }
 
 function meaningOf({ mode, axisMeaning }: AnalysisSetup): AxisMeaning {

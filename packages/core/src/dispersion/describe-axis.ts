@@ -21,8 +21,8 @@ export interface AxisParts {
   unc: ArrayLike<number>;
   /** Scatter beyond the stated uncertainties, nm. */
   excessScatterNm: number;
-  /** Reason of each point that was left out before the fit. */
-  setAside: ReadonlyMap<number, string>;
+  /** Reason of each point that was left out, where it is not simply its distance from the axis. */
+  rejectedBecause: ReadonlyMap<number, string>;
 }
 
 /** What is reported of an axis through `points`, those left out included. */
@@ -55,16 +55,12 @@ export function describeAxis(
   const rejected: Dispersion["rejected"] = [];
   points.forEach((_, line) => {
     if (isKept.has(line)) return;
-    const why = parts.setAside.get(line);
     const off = Math.abs(residualsNm[line] as number).toFixed(4);
-    rejected.push({
-      line,
-      reason:
-        why === undefined
-          ? `${off} nm from the axis through the other lines, whose scatter is ${scatter.toFixed(4)} nm: more than chance ` +
-            "allows, so it was left out of the axis."
-          : `${why}: it could add nothing to the axis and was left out of it.`,
-    });
+    const reason =
+      parts.rejectedBecause.get(line) ??
+      `${off} nm from the axis through the other lines, whose scatter is ${scatter.toFixed(4)} nm: more than chance ` +
+        "allows, so it was left out of the axis.";
+    rejected.push({ line, reason });
   });
   const { firstPosition, lastPosition } = options;
   const samples: Dispersion["samples"] = [];

@@ -28,12 +28,14 @@ import { ScatterFit } from "./scatter-fit.ts";
 
 /** Highest degree a grating instrument's axis is given (common practice, no source). */
 export const highestDegree = 5;
-const sparePoints = 2;
-const degreeTolerance = 1.05;
+/** Lines there must be beyond the number of coefficients. */
+export const sparePoints = 2;
+/** A simpler axis is taken when its leave-one-out RMS is within this factor of the best. */
+export const degreeTolerance = 1.05;
 /** Size at which a rejected line counts when degrees are compared, in leave-one-out RMS. */
 const outlierSize = 3;
 /** Scatter beyond the stated uncertainties is believed where chance alone would show it this seldom. */
-const scatterLevel = 0.1;
+export const scatterLevel = 0.1;
 
 export interface DispersionPoint {
   /** Position of the line, px (or the unit of the axis). */
@@ -224,7 +226,9 @@ function finish(
     leverages: fit.leverages,
     unc: fit.unc,
     excessScatterNm: Math.sqrt(fit.excessSquare),
-    setAside: vague,
+    rejectedBecause: new Map(
+      [...vague].map(([line, why]) => [line, `${why}: it could add nothing to the axis and was left out of it.`]),
+    ),
   });
 }
 
