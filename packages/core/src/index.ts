@@ -5,7 +5,14 @@
 export * from "./analysis/types.ts";
 export { analyseCapture, analyseCaptures, type AnalysisResources } from "./analysis/analyse-captures.ts";
 export { defaultSetup } from "./analysis/defaults.ts";
+export { errorPerCm, expandedUncPerCm } from "./analysis/wavenumber-axis.ts";
 export { readCapture } from "./capture/read-capture.ts";
+export { assessDrift } from "./drift/assess-drift.ts";
+export type * from "./drift/assess-drift.ts";
+export type { DriftKind } from "./drift/choose-model.ts";
+export { dayOfDate, dayOfIsoDate, isoDateOfDay } from "./drift/civil-date.ts";
+export { driftPointOf, type DriftLine } from "./drift/drift-point.ts";
+export type { DriftCheck } from "./drift/history.ts";
 export { axisNm, axisPx, axisSlope, axisUncNm, isMonotonic } from "./dispersion/axis.ts";
 export { builtInLineList, elementsOf, isFromMemory, lineWavelengthNm, linesOf } from "./linelist/built-in.ts";
 export { judgeError, toleranceAt } from "./uncertainty/conformity.ts";

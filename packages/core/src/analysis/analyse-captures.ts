@@ -21,6 +21,7 @@ import { judgeLine, type JudgedLineResult } from "./judge-lines.ts";
 import { notIncludedIn } from "./line-budget.ts";
 import { repeatabilityOf } from "./repeatability.ts";
 import { errorCurveOf, judgeSegments } from "./segments.ts";
+import { toleranceInNm, toVacuumWavelengths, toWavenumbers, turnedLike, wavenumberProblem } from "./wavenumber-axis.ts";
 import type {
   AnalysedCheck,
   Analysis,
@@ -63,7 +64,7 @@ export function analyseCapture(
     files: [],
     darkCount: 0,
   };
-  return analyseCombined(combined, setup, resources);
+  return analyseOnAxis(combined, setup, resources);
 }
 
 /**
@@ -79,7 +80,7 @@ export function analyseCaptures(
   if (setup.sampleKind === "absorption") return analyseAbsorption(combineAbsorption(captures, setup), setup, resources);
   const combined = combineCaptures(captures, setup.reading);
   if (combined.outcome === "refused") return refused(combined.refusal, combined.files, setup, null);
-  return analyseCombined(combined, setup, resources);
+  return analyseOnAxis(combined, setup, resources);
 }
 
 function analyseAbsorption(
@@ -91,6 +92,23 @@ function analyseAbsorption(
   const problem = bandSettingsProblem(combined.spectrum, setup);
   if (problem !== null) return refused(refuse("bad-settings", problem), combined.files, setup, combined.spectrum);
   return analyseBands(combined, setup, resources.withDrawing !== false);
+}
+
+/** Wavenumbers are analysed in vacuum wavelengths and come back as wavenumbers. */
+function analyseOnAxis(combined: CombinedCaptures, setup: AnalysisSetup, resources: AnalysisResources): AnalysedCheck {
+  if (combined.spectrum.axisKind !== "wavenumber") return analyseCombined(combined, setup, resources);
+  const laser = setup.laser ?? null;
+  const problem = wavenumberProblem(combined.spectrum, laser);
+  if (problem !== null) return refused(refuse("bad-settings", problem), combined.files, setup, combined.spectrum);
+  const inVacuum: CombinedCaptures = {
+    ...combined,
+    spectrum: toVacuumWavelengths(combined.spectrum, laser),
+    repeats: combined.repeats.map((repeat) => toVacuumWavelengths(repeat, laser)),
+    saturated: combined.saturated === null ? null : turnedLike(combined.saturated, laser),
+  };
+  const check = analyseCombined(inVacuum, { ...setup, axisMeaning: "vacuum" }, resources);
+  check.analysis.setup = setup;
+  return toWavenumbers(check, laser);
 }
 
 function analyseCombined(
@@ -126,7 +144,7 @@ function analyseCombined(
           lineList,
           mode: setup.mode,
           axisMeaning: setup.axisMeaning,
-          toleranceNm: tightestTolerance(setup),
+          toleranceNm: tightestTolerance(setup, firstPosition),
         });
   const repeatability = repeatabilityOf(combined, found, setup);
   const judge = (): JudgedLineResult[] =>
@@ -185,9 +203,6 @@ function settingsProblem(spectrum: Spectrum, setup: AnalysisSetup, lineList: Lin
   if (setup.lineListVersion !== lineList.version) {
     return `The analysis asks for line list ${setup.lineListVersion}; the one at hand is ${lineList.version}.`;
   }
-  if (spectrum.axisKind === "wavenumber") {
-    return "The axis is in wavenumbers (cm-1). Emission lines are judged on a wavelength or pixel axis: export the capture with one of those.";
-  }
   const { mode } = setup;
   if (mode.kind === "range") {
     if (!(mode.firstNm > 0 && mode.lastNm > 0) || mode.firstNm === mode.lastNm) {
@@ -225,11 +240,12 @@ function nothingFound(): IdentifiedLines {
   };
 }
 
-function tightestTolerance(setup: AnalysisSetup): number | null {
+/** In nm; one in cm-1 is smallest where the wavelength is, at the first position of an axis of wavelengths. */
+function tightestTolerance(setup: AnalysisSetup, firstNm: number): number | null {
   let tightest: number | null = null;
   for (const { toleranceNm } of setup.tolerance)
     if (tightest === null || toleranceNm < tightest) tightest = toleranceNm;
-  return tightest;
+  return tightest === null ? null : toleranceInNm(tightest, setup, firstNm, firstNm);
 }
 
 function warningsOf(found: FoundLines, combined: CombinedCaptures): Analysis["warnings"] {

@@ -31,9 +31,17 @@ export function indicatingAxisOf(spectrum: Spectrum, setup: AnalysisSetup): Indi
 }
 
 function ownAxis(spectrum: Spectrum, medium: ReferenceMedium): IndicatingAxis {
-  const { positions } = spectrum;
+  const { positions, ramanLaser } = spectrum;
   return {
     ...medium,
+    ...(ramanLaser === undefined
+      ? {}
+      : {
+          laserUncNm: (position: number): number => {
+            const ratio = position / ramanLaser.wavelengthVacuumNm;
+            return ramanLaser.uncNm * ratio * ratio;
+          },
+        }),
     indicatedNm: (position) => position,
     slopeNm: () => 1,
     nmPerSample: (position) => stepAt(positions, position),

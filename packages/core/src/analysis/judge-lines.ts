@@ -3,6 +3,7 @@ import type { LineName } from "../identify/identify-lines.ts";
 import { combineContributions, type Contribution } from "../uncertainty/budget.ts";
 import { judgeError, toleranceAt, type Judgement } from "../uncertainty/conformity.ts";
 import type { IndicatingAxis } from "./indicating-axis.ts";
+import { toleranceInNm } from "./wavenumber-axis.ts";
 import { budgetOfLine, type LineRepeatability } from "./line-budget.ts";
 import type { AnalysisSetup, FittedLine, LeftOutLine, LineResult } from "./types.ts";
 
@@ -60,6 +61,8 @@ function unnamedResult(line: FittedLine, axis: IndicatingAxis | null): LineResul
     reducedChiSquare: line.reducedChiSquare,
     degreesOfFreedom: line.degreesOfFreedom,
     flags: line.flags.slice(),
+    ...(line.takenFrom === undefined ? {} : { takenFrom: line.takenFrom }),
+    ...(line.backlash === undefined ? {} : { backlash: line.backlash }),
     wavelengthNm: null,
     medium: "air",
     element: null,
@@ -121,7 +124,10 @@ export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: 
     if (!result.flags.includes("blend")) result.flags.push("blend");
   }
   result.required = [name.wavelengthNm, ...blend].some((nm) => isLine(setup.requiredLinesNm, nm));
-  const toleranceNm = toleranceAt(setup.tolerance, name.wavelengthNm);
+  const stated = toleranceAt(setup.tolerance, name.wavelengthNm);
+  const referenceNm = axis === null ? name.wavelengthNm : axis.referenceNm(name.wavelengthNm, name.medium);
+  const indicatedNm = axis === null ? referenceNm : axis.indicatedNm(line.position);
+  const toleranceNm = stated === null ? null : toleranceInNm(stated, setup, indicatedNm, referenceNm);
   const refusedBecause = whyRefused(line, name, setup, toleranceNm);
   const leftOut = leftOutEntry(setup, name);
   result.leftOut = leftOut;
@@ -135,7 +141,7 @@ export function judgeLine(input: LineInput, axis: IndicatingAxis | null, setup: 
 
   const { contributions, sharedByCauseNm } = budgetOfLine(line, name, input.repeatability, axis, setup);
   const combined = combineContributions([...contributions, ...(input.extra ?? [])]);
-  const errorNm = axis.indicatedNm(line.position) - axis.referenceNm(name.wavelengthNm, name.medium);
+  const errorNm = indicatedNm - referenceNm;
   result.errorNm = errorNm;
   result.errorUncNm = combined.uncNm;
   result.errorExpandedUncNm = combined.expandedUncNm;

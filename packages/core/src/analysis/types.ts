@@ -33,6 +33,8 @@ export interface Spectrum {
   scansSummed: number;
   /** Set once a new axis was applied: which. A spectrum that has it is not corrected again. Absent = as recorded. */
   correctedBy?: { coefficients: number[]; meaning: AxisMeaning; isResampled: boolean };
+  /** The file counted Raman shifts from this line, and the positions were made of them; absent = it did not. */
+  ramanLaser?: LaserLine;
 }
 
 /** What a file said, as read: shown to the person, printed by `analyse`. */
