@@ -124,6 +124,8 @@ function analyseCombined(
   }
   const found = findLines(spectrum, {
     falseLinesPerCapture: setup.falseLinesPerCapture,
+    lineShape: setup.lineShape ?? "gaussian",
+    positionDefinition: setup.positionDefinition ?? "fitted",
     ...(combined.saturated === null ? {} : { saturated: combined.saturated, ceilingCounts: combined.ceilingCounts }),
   });
   const axis = indicatingAxisOf(spectrum, setup);
@@ -180,6 +182,8 @@ function analyseCombined(
     axisUnit: spectrum.axisUnit,
     noiseCounts: found.noiseCounts,
     noiseCorrelation: found.noiseCorrelation,
+    ...(found.noiseAutocorrelation === undefined ? {} : { noiseAutocorrelation: found.noiseAutocorrelation }),
+    ...(found.lineShape === undefined ? {} : { lineShape: found.lineShape }),
     medianFwhm: found.medianFwhm,
     lines: results,
     missingLinesNm: identified.missingLinesNm,

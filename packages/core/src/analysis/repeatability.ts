@@ -35,6 +35,8 @@ export function repeatabilityOf(
     (repeat) =>
       findLines(repeat, {
         falseLinesPerCapture: setup.falseLinesPerCapture,
+        lineShape: setup.lineShape ?? "gaussian",
+        positionDefinition: setup.positionDefinition ?? "fitted",
         ...(combined.saturated === null
           ? {}
           : { saturated: combined.saturated, ceilingCounts: combined.ceilingCounts }),

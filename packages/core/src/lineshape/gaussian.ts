@@ -15,8 +15,8 @@ const SQRT_HALF = 0.7071067811865476;
 const STEPS_PER_UNIT = 16;
 const FARTHEST = 9;
 const TERMS = 8;
-/** Per node: the integral up to it, then the coefficients of the Gaussian about it. */
-const STRIDE = TERMS + 1;
+/** Per node: the integral up to it, the coefficients of the Gaussian about it, then those of its integral from the second on. */
+const STRIDE = 2 * TERMS;
 const table = makeTable();
 
 function makeTable(): Float64Array {
@@ -32,7 +32,9 @@ function makeTable(): Float64Array {
     let factorial = 1;
     for (let n = 0; n < TERMS; n++) {
       if (n > 0) factorial *= n;
-      values[j * STRIDE + 1 + n] = ((n % 2 === 0 ? 1 : -1) * current * height) / factorial;
+      const coefficient = ((n % 2 === 0 ? 1 : -1) * current * height) / factorial;
+      values[j * STRIDE + 1 + n] = coefficient;
+      if (n > 0) values[j * STRIDE + TERMS + n] = coefficient / (n + 1);
       const next = u * current - n * before;
       before = current;
       current = next;
@@ -75,11 +77,9 @@ export function gaussianIntegral(u: number): number {
     h *
       (t[row + 1]! +
         h *
-          (t[row + 2]! / 2 +
+          (t[row + 9]! +
             h *
-              (t[row + 3]! / 3 +
-                h *
-                  (t[row + 4]! / 4 +
-                    h * (t[row + 5]! / 5 + h * (t[row + 6]! / 6 + h * (t[row + 7]! / 7 + (h * t[row + 8]!) / 8)))))));
+              (t[row + 10]! +
+                h * (t[row + 11]! + h * (t[row + 12]! + h * (t[row + 13]! + h * (t[row + 14]! + h * t[row + 15]!)))))));
   return u < 0 ? -integral : integral;
 }

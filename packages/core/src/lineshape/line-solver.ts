@@ -7,7 +7,7 @@
  *             keeps or leaves the region where the linear model can be trusted (centre within 0.7 FWHM, width within a factor of 2;
  *             damping after the gain ratio: H. B. Nielsen, IMM-REP-1999-05, Technical University of Denmark)
  * Solved      Cholesky's factor of the normal matrix scaled to a unit diagonal; a line window's condition is far below what that needs
- * Stops       when the next step is below a fiftieth of a joint standard error; that step is taken, so that what is left is its square
+ * Stops       when the next step is below a twentieth of a joint standard error; that step is taken, so that what is left is its square
  */
 import type { LineWindow } from "./fit-line.ts";
 import { gaussian, gaussianIntegral, SQRT_TWO_PI } from "./gaussian.ts";
@@ -15,7 +15,7 @@ import type { Profile } from "./profile.ts";
 
 export const PER_LINE = 3;
 const mostParameters = 40;
-const LEAST_STEP = 0.02;
+const LEAST_STEP = 0.05;
 const MOST_WIDTH_RATIO = 2;
 const MOST_SHIFT = 0.7;
 
@@ -56,6 +56,7 @@ export class LineSolver {
 
   private window!: LineWindow;
   private weights = new Float64Array(0);
+  private startChiSquare = 0;
   private held = 0;
   private priorValue = 0;
   private first = 0;
@@ -116,7 +117,6 @@ export class LineSolver {
   /** Brings a start into the limits; the background is the mean of what the lines leave over. */
   start(centres: readonly number[], fwhms: readonly number[], heights: readonly number[]): void {
     const p = this.parameters;
-    const { counts } = this.window;
     for (let k = 0; k < this.lineCount; k++) {
       const width = fwhms[k]! * this.profile.widthPerFwhm;
       p[PER_LINE * k] = Math.min(Math.max(centres[k]!, this.first), this.last);
@@ -126,15 +126,23 @@ export class LineSolver {
     if (this.shapeColumn >= 0) p[this.shapeColumn] = this.held;
     p[this.n - 2] = 0;
     p[this.n - 1] = 0;
-    this.evaluate(p);
+    this.startChiSquare = this.evaluate(p);
     let sum = 0;
     for (let i = 0; i < this.m; i++) sum += this.residuals[i]! / this.weights[i]!;
-    p[this.n - 2] = counts.length > 0 ? sum / this.m : 0;
+    const level = sum / this.m;
+    p[this.n - 2] = level;
+    // The background moves the residuals alone, not the derivatives.
+    for (let i = 0; i < this.m; i++) {
+      const before = this.residuals[i]!;
+      const after = before - level * this.weights[i]!;
+      this.startChiSquare += after * after - before * before;
+      this.residuals[i] = after;
+    }
   }
 
   search(mostIterations: number): SearchOutcome {
     const { n, parameters: p, trial, step, gradient } = this;
-    let chi = this.evaluate(p);
+    let chi = this.startChiSquare;
     this.buildNormal(p);
     let damping = 0;
     let growth = 2;
@@ -152,10 +160,11 @@ export class LineSolver {
         curvature += step[a]! * step[a]! * this.normal[a * n + a]!;
       }
       if (damping === 0 && slope <= LEAST_STEP * LEAST_STEP && this.isAllowed(p, step)) {
+        if (!isFresh) this.evaluate(p);
         for (let a = 0; a < n; a++) p[a] = p[a]! + step[a]!;
         this.clip(p);
         this.chiSquare = Math.max(0, chi - slope);
-        if (!isFresh) this.evaluate(p);
+        this.moveResiduals();
         return this.invert() ? "converged" : "singular";
       }
       if (!this.isWithinTrust(p, step) || !this.isAllowed(p, step)) {
@@ -191,6 +200,16 @@ export class LineSolver {
     }
     this.chiSquare = chi;
     return "iterations";
+  }
+
+  /** The last step is so short that the residuals follow it in a straight line. */
+  private moveResiduals(): void {
+    const { m, n, columns, stride, residuals, step } = this;
+    for (let a = 0; a < n; a++) {
+      const by = step[a]!;
+      const column = a * stride;
+      for (let i = 0; i < m; i++) residuals[i] = residuals[i]! - by * columns[column + i]!;
+    }
   }
 
   private clip(p: Float64Array): void {
@@ -498,7 +517,6 @@ export class LineSolver {
 
   /** The fitted curve at each sample, counts, from the residuals at hand: call after `search`, before another `load`. */
   fittedCounts(): Float64Array {
-    this.evaluate(this.parameters);
     const values = new Float64Array(this.m);
     for (let i = 0; i < this.m; i++) values[i] = this.window.counts[i]! - this.residuals[i]! / this.weights[i]!;
     return values;

@@ -37,10 +37,12 @@ const medianOfThreeVariance = 0.61;
 const madToSd = 1.4826;
 /** The block's own knot takes up some of its scatter: share per sample by which the deviation is low. Found by simulation. */
 const knotShare = 1;
+/** The rounds end when no knot moves by more than this share of the noise: a third of what a knot's own noise is. */
+const settledShare = 0.05;
 /** Samples beside a high one that a line's flank may reach. */
 const flank = 3;
 /** The spread below the baseline is taken from at most so many samples. */
-const mostForSpread = 4096;
+const mostForSpread = 1024;
 
 let scratch = new Float64Array(0);
 
@@ -74,7 +76,7 @@ export function estimateBaseline(counts: Float64Array): Baseline {
     for (let b = 0; b < blocks; b += 1) {
       const least = Math.max(3, leastQuietShare * (edges[b + 1]! - edges[b]!));
       const knot = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.5, least);
-      if (!(Math.abs(knot - knots[b]!) <= 0.01 * sd) && (knot === knot || knots[b] === knots[b])) isSettled = false;
+      if (!(Math.abs(knot - knots[b]!) <= settledShare * sd) && (knot === knot || knots[b] === knots[b])) isSettled = false;
       knots[b] = knot;
     }
   }
