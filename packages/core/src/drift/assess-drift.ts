@@ -119,11 +119,7 @@ export interface DriftAssessment {
  * @returns JSON-able; `too-few` with a reason instead of a guess
  */
 export function assessDrift(history: readonly DriftCheck[], settings: DriftSettings): DriftAssessment {
-  const ordered = history
-    .filter((check) => check.lines.length > 0 || check.point !== undefined)
-    .map((check, i) => ({ check, i }))
-    .sort((a, b) => a.check.day - b.check.day || a.i - b.i)
-    .map(({ check }) => check);
+  const ordered = byDate(history);
   const series = seriesOf(ordered);
   if (series === null || series.count < leastJudged) return tooFew(series);
   const odd = oddEvidenceOf(series, ordered);
@@ -181,8 +177,22 @@ function tooFew(series: DriftSeries | null): DriftAssessment {
   };
 }
 
-/** @param ordered  by date; each prefix is judged with nothing of what came after it */
-function signalsOf(ordered: readonly DriftCheck[]): DriftSignal[] {
+/** Checks that hold something, by date; those of one day stay in the order they were given. */
+function byDate(history: readonly DriftCheck[]): DriftCheck[] {
+  return history
+    .filter((check) => check.lines.length > 0 || check.point !== undefined)
+    .map((check, i) => ({ check, i }))
+    .sort((a, b) => a.check.day - b.check.day || a.i - b.i)
+    .map(({ check }) => check);
+}
+
+/**
+ * Signals of a history as it grew: each check is judged with nothing of what came after it.
+ *
+ * @param history  in any order; indices count by date
+ */
+export function signalsOf(history: readonly DriftCheck[]): DriftSignal[] {
+  const ordered = byDate(history);
   const signals: DriftSignal[] = [];
   const told = new Set<DriftKind>();
   let open: WatchedQuantity[] = [];
