@@ -4,18 +4,21 @@ import fs from "node:fs";
 import path from "node:path";
 import {
   analyseCapture,
+  analyseCaptures,
   coreVersion,
-  defaultSetup,
+  errorPerCm,
+  expandedUncPerCm,
   readCapture,
+  type AnalysedCheck,
   type Analysis,
-  type AnalysisSetup,
   type AxisUnit,
   type FileFacts,
-  type ReadCapture,
-  type ReadOptions,
-  type Spectrum,
+  type LineResult,
+  type PossibleReading,
 } from "@wavekeep/core";
+import { ownUnit, scaleOf } from "./axis-units.ts";
 import type { CommandOptions } from "./options.ts";
+import { setupOf } from "./setup-of.ts";
 
 type FileDocument = Pick<
   FileFacts,
@@ -29,10 +32,17 @@ type FileDocument = Pick<
   | "intensitySum"
   | "intensityMax"
   | "metadata"
-  | "delimiter"
   | "decimal"
   | "missing"
-> & { remarks: string[] };
+  | "columns"
+  | "damagedLines"
+  | "remarks"
+> & {
+  /** null where nothing parts columns: a file of one column, a JCAMP-DX table. */
+  delimiter: FileFacts["delimiter"] | null;
+  /** Heading of the column of intensities that was taken. */
+  channel: string;
+};
 
 export interface ResultDocument {
   file: FileDocument | { name: string; sha256: string | null };
@@ -44,6 +54,8 @@ export interface ResultDocument {
   confidence: { chanceProbability: number; margin: number } | null;
   notIncluded: string[];
   warnings: string[];
+  /** The ways to read a file that can be read in more than one; absent where there is nothing to choose. */
+  readings?: PossibleReading[];
   coreVersion: string;
   elapsedMs: number;
 }
@@ -55,8 +67,12 @@ export interface LineDocument {
   order: number;
   medium: "air" | "vacuum";
   species: string | null;
-  errorNm: number | null;
-  errorExpandedUncNm: number | null;
+  errorNm?: number | null;
+  errorExpandedUncNm?: number | null;
+  /** On an axis of wavenumbers these three stand instead of the two above. */
+  wavenumberPerCm?: number | null;
+  errorPerCm?: number | null;
+  errorExpandedUncPerCm?: number | null;
   coverageFactor: number | null;
   fwhm: number;
   area: number;
@@ -73,11 +89,8 @@ interface DispersionDocument {
   samples: { px: number; nm: number; uncNm: number }[];
 }
 
-/** Units of a file's axis in one nm; positions are printed in the file's own unit. */
-const unitsPerNm: Partial<Record<AxisUnit, number>> = { Å: 10, µm: 0.001 };
-
 export function analyseFile(file: string, options: CommandOptions): ResultDocument {
-  const begun = performance.now();
+  let begun = performance.now();
   const name = path.basename(file);
   const empty = {
     verdict: null,
@@ -88,11 +101,12 @@ export function analyseFile(file: string, options: CommandOptions): ResultDocume
     warnings: [],
     coreVersion,
   };
-  const refused = (facts: ResultDocument["file"], reason: string): ResultDocument => ({
+  const refusal = (facts: ResultDocument["file"], reason: string, readings?: PossibleReading[]): ResultDocument => ({
     file: facts,
     outcome: "refused",
     reason,
     ...empty,
+    ...(readings === undefined ? {} : { readings }),
     elapsedMs: performance.now() - begun,
   });
 
@@ -100,46 +114,42 @@ export function analyseFile(file: string, options: CommandOptions): ResultDocume
   try {
     bytes = fs.readFileSync(file);
   } catch (error) {
-    return refused(
+    return refusal(
       { name, sha256: null },
       `The file could not be opened (${(error as NodeJS.ErrnoException).code ?? "unknown"}).`,
     );
   }
   const sha256 = createHash("sha256").update(bytes).digest("hex");
-  const read = readFile(bytes, name, options);
-  if (read.outcome === "refused") return refused({ name, sha256 }, read.reason);
+  begun = performance.now();
+  // Bands of transmittance point down by nature.
+  const reading = options.absorption === null ? options.reading : { inverted: false, ...options.reading };
+  const read = readCapture(bytes, name, reading);
+  if (read.outcome === "refused") {
+    const says = read.line === null || read.reason.toLowerCase().includes(`line ${read.line}`);
+    return refusal({ name, sha256 }, says ? read.reason : `${read.reason} (Line ${read.line}.)`, read.readings);
+  }
   const { spectrum, facts } = read;
   const fileDocument = documentOf(facts, sha256);
   if (options.readOnly) {
     const reason = "Only read, as asked for: no line was looked for.";
     return { file: fileDocument, outcome: "unidentified", reason, ...empty, elapsedMs: performance.now() - begun };
   }
-  const setup = setupOf(spectrum, options);
-  if ("problem" in setup) return refused(fileDocument, setup.problem);
+  const setup = setupOf(spectrum, facts, options);
+  if ("problem" in setup) return refusal(fileDocument, setup.problem);
 
-  const { analysis } = analyseCapture(spectrum, setup);
-  const scale = unitsPerNm[facts.axisUnit] ?? 1;
+  // The ordinate of an absorption spectrum is told from its heading too: such a file goes in whole.
+  const check: AnalysedCheck =
+    options.absorption === null
+      ? analyseCapture(spectrum, setup, { withDrawing: false })
+      : analyseCaptures([{ name, bytes, sha256, part: "lamp" }], setup, { withDrawing: false });
+  const { analysis } = check;
   return {
     file: fileDocument,
     outcome: analysis.outcome,
     reason: analysis.reason ?? analysis.verdict?.reasons[0] ?? null,
     verdict: analysis.verdict?.verdict ?? null,
-    lines: analysis.lines.map((line) => ({
-      position: line.position * scale,
-      positionUnc: line.positionUnc * scale,
-      wavelengthNm: line.wavelengthNm,
-      order: line.order,
-      medium: line.medium,
-      species: line.species,
-      errorNm: line.errorNm,
-      errorExpandedUncNm: line.errorExpandedUncNm,
-      coverageFactor: line.coverageFactor,
-      fwhm: line.fwhm * scale,
-      area: line.areaCounts * scale,
-      flags: line.flags,
-      used: line.usedInAxis,
-    })),
-    dispersion: dispersionOf(analysis, scale),
+    lines: analysis.lines.map((line) => lineDocumentOf(line, facts.axisUnit)),
+    dispersion: dispersionOf(analysis, scaleOf(facts.axisUnit)),
     confidence: { chanceProbability: analysis.confidence.chanceProbability, margin: analysis.confidence.margin },
     notIncluded: analysis.notIncluded,
     warnings: analysis.warnings.map((warning) => warning.text),
@@ -148,101 +158,62 @@ export function analyseFile(file: string, options: CommandOptions): ResultDocume
   };
 }
 
-function readFile(bytes: Uint8Array, name: string, options: CommandOptions): ReadCapture {
-  const reading: ReadOptions = {};
-  if (options.axisKind !== null) reading.axisKind = options.axisKind;
-  if (options.fullScaleCounts !== null) reading.fullScaleCounts = options.fullScaleCounts;
-  if (options.scansSummed !== null) reading.scansSummed = options.scansSummed;
-  const read = readCapture(bytes, name, reading);
-  if (options.channel === null || read.outcome === "refused") return read;
-  const wanted = options.channel.trim().toLowerCase();
-  const column = read.facts.columns.findIndex((heading) => heading.trim().toLowerCase() === wanted);
-  if (column < 0) {
-    const reason = `The file has no column "${options.channel}"; it has ${read.facts.columns.map((one) => `"${one}"`).join(", ")}.`;
-    return { outcome: "refused", code: "no-such-column", reason, line: null };
-  }
-  return readCapture(bytes, name, { ...reading, intensityColumn: column });
-}
-
 function documentOf(facts: FileFacts, sha256: string): FileDocument {
-  const {
-    name,
-    rows,
-    axis,
-    axisUnit,
-    first,
-    last,
-    intensitySum,
-    intensityMax,
-    metadata,
-    delimiter,
-    decimal,
-    missing,
-    remarks,
-  } = facts;
+  const isParted = facts.columns.length > 1 && facts.format === undefined;
   return {
-    name,
+    name: facts.name,
     sha256,
-    rows,
-    axis,
-    axisUnit,
-    first,
-    last,
-    intensitySum,
-    intensityMax,
-    metadata,
-    delimiter,
-    decimal,
-    missing,
-    remarks,
+    rows: facts.rows,
+    axis: facts.axis,
+    axisUnit: facts.axisUnit,
+    first: facts.first,
+    last: facts.last,
+    intensitySum: facts.intensitySum,
+    intensityMax: facts.intensityMax,
+    metadata: facts.metadata,
+    delimiter: isParted ? facts.delimiter : null,
+    decimal: facts.decimal,
+    missing: facts.missing,
+    columns: facts.columns,
+    channel: facts.columns[facts.intensityColumn] ?? "",
+    damagedLines: facts.damagedLines,
+    remarks: facts.remarks,
   };
 }
 
-function setupOf(spectrum: Spectrum, options: CommandOptions): AnalysisSetup | { problem: string } {
-  if (options.outOfScope !== null) return { problem: options.outOfScope };
-  if (options.elements.length === 0)
-    return {
-      problem: "Say which lamp it is, for example --lamp Hg,Ar; or --read-only to see how the file is understood.",
-    };
-  if (spectrum.axisKind === "wavenumber") {
-    return {
-      problem:
-        "This version judges emission lines on pixel, step and wavelength axes; a cm-1 axis is only read (--read-only). Nothing was measured.",
-    };
-  }
-  const last = spectrum.positions.length - 1;
-  let mode: AnalysisSetup["mode"];
-  if (spectrum.axisKind === "wavelength") {
-    if (options.priorCoefficients !== null)
-      return { problem: "The file has a wavelength axis of its own; --prior speaks of pixels. Leave one of them out." };
-    mode = options.range === null ? { kind: "earlier-axis", axis: "own" } : { kind: "range", ...options.range };
-  } else if (options.priorCoefficients !== null) {
-    mode = {
-      kind: "earlier-axis",
-      axis: {
-        coefficients: options.priorCoefficients,
-        firstPx: spectrum.positions[0]!,
-        lastPx: spectrum.positions[last]!,
-        chebyshevCovariance: null,
-        degreesOfFreedom: null,
-        meaning: "standard-air",
-      },
-    };
-  } else if (options.range !== null) mode = { kind: "range", ...options.range };
-  else
-    return {
-      problem:
-        "The file counts pixels or steps: give --prior COEFFS.json (an earlier axis) or --range FIRST:LAST in nm.",
-    };
-  return defaultSetup({
-    elements: options.elements,
-    mode,
-    tolerance: options.tolerance === null ? [] : [{ fromNm: 0, toNm: 100000, toleranceNm: options.tolerance }],
-    decisionRule: options.rule,
-  });
+/** Published wavenumber of a line, cm-1: of its wavelength in vacuum, which indicated value and error are given in on such an axis. */
+function referencePerCm({ indicatedNm, errorNm }: LineResult): number | null {
+  return indicatedNm === null || errorNm === null ? null : 1e7 / (indicatedNm - errorNm);
 }
 
-/** The axis in powers of the file's own unit. */
+function lineDocumentOf(line: LineResult, axisUnit: AxisUnit): LineDocument {
+  const unit = ownUnit(axisUnit);
+  const { position } = line;
+  const errors =
+    axisUnit === "cm-1"
+      ? {
+          wavenumberPerCm: referencePerCm(line),
+          errorPerCm: errorPerCm(line),
+          errorExpandedUncPerCm: expandedUncPerCm(line),
+        }
+      : { errorNm: line.errorNm, errorExpandedUncNm: line.errorExpandedUncNm };
+  return {
+    position: unit.position(position),
+    positionUnc: unit.width(line.positionUnc, position),
+    wavelengthNm: line.wavelengthNm,
+    order: line.order,
+    medium: line.medium,
+    species: line.species,
+    ...errors,
+    coverageFactor: line.coverageFactor,
+    fwhm: unit.width(line.fwhm, position),
+    area: unit.width(line.areaCounts, position),
+    flags: line.flags,
+    used: line.usedInAxis,
+  };
+}
+
+/** The axis in powers of the file's own unit (of nm where that is an energy or a wavenumber). */
 function dispersionOf(analysis: Analysis, scale: number): DispersionDocument | null {
   const { dispersion } = analysis;
   if (dispersion === null) return null;
@@ -258,6 +229,6 @@ function dispersionOf(analysis: Analysis, scale: number): DispersionDocument | n
     coefficients,
     rmsPx: dispersion.rmsPx * scale,
     rmsNm: dispersion.rmsNm,
-    samples: dispersion.samples.map((sample) => ({ ...sample, px: sample.px * scale })),
+    samples: dispersion.samples.map(({ px, nm, uncNm }) => ({ px: px * scale, nm, uncNm })),
   };
 }

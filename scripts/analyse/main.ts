@@ -1,6 +1,7 @@
 import { analyseFile } from "./analyse-file.ts";
-import { readOptions, UsageError } from "./options.ts";
+import { readOptions } from "./options.ts";
 import { tableOf } from "./table.ts";
+import { UsageError } from "./usage.ts";
 
 /** @returns the exit code: 0, 1 when a file was refused, 2 when the command itself could not be understood */
 export function main(argv: string[]): number {

@@ -1,61 +1,86 @@
 /** The command line's words to what the core is told. */
 import fs from "node:fs";
 import { parseArgs } from "node:util";
-import { builtInLineList, elementsOf, type AxisKind, type DecisionRule } from "@wavekeep/core";
+import {
+  builtInLineList,
+  elementsOf,
+  type AxisUnit,
+  type BandCertificate,
+  type DecisionRule,
+  type ReadOptions,
+} from "@wavekeep/core";
+import { readCertificate } from "./read-certificate.ts";
+import { usage, UsageError } from "./usage.ts";
 
 export interface CommandOptions {
   files: string[];
   elements: string[];
   range: { firstNm: number; lastNm: number } | null;
   priorCoefficients: number[] | null;
-  axisKind: AxisKind | null;
-  fullScaleCounts: number | null;
-  scansSummed: number | null;
-  channel: string | null;
+  /** Axis, full scale, summed scans, channel, decimal sign and direction, where they were given. */
+  reading: ReadOptions;
+  /** Not null: the bands of an absorption standard are measured. */
+  absorption: { certificate: BandCertificate | null; bandwidthNm: number | null } | null;
   tolerance: number | null;
   rule: DecisionRule;
   readOnly: boolean;
   json: boolean;
-  /** Asked for, and not what this command does: said for every file, nothing is measured. */
-  outOfScope: string | null;
 }
 
-/** A sentence for the person at the terminal. */
-export class UsageError extends Error {}
-
-export const usage =
-  "npm run -s analyse -- FILE... --lamp Hg,Ar [--range 200:850] [--prior COEFFS.json] [--axis pixel|nm|cm-1|step] " +
-  "[--full-scale 65535] [--scans 1] [--channel NAME] [--tolerance 0.5] [--rule simple|guarded] [--read-only] [--json]";
-
-const axisWords: Record<string, AxisKind> = { pixel: "pixel", nm: "wavelength", "cm-1": "wavenumber", step: "step" };
+const axisWords: Record<string, AxisUnit> = { pixel: "px", nm: "nm", "cm-1": "cm-1", step: "step" };
 
 export function readOptions(argv: string[]): CommandOptions {
   const { values, positionals } = parse(argv);
   if (positionals.length === 0) throw new UsageError(`Name at least one file.\n${usage}`);
-  const axisKind = values.axis === undefined ? null : (axisWords[values.axis] ?? null);
-  if (values.axis !== undefined && axisKind === null) {
-    throw new UsageError(`--axis is pixel, nm, cm-1 or step; got "${values.axis}".`);
-  }
-  if (values.rule !== undefined && values.rule !== "simple" && values.rule !== "guarded") {
-    throw new UsageError(`--rule is simple or guarded; got "${values.rule}".`);
-  }
-  if (values.kind !== undefined && values.kind !== "emission" && values.kind !== "absorption") {
-    throw new UsageError(`--kind is emission or absorption; got "${values.kind}".`);
+  const isOneOf = (name: string, value: string | undefined, words: readonly string[]): void => {
+    if (value === undefined || words.includes(value)) return;
+    throw new UsageError(
+      `--${name} is ${words.slice(0, -1).join(", ")} or ${words[words.length - 1]!}; got "${value}".`,
+    );
+  };
+  isOneOf("axis", values.axis, Object.keys(axisWords));
+  isOneOf("rule", values.rule, ["simple", "guarded"]);
+  isOneOf("kind", values.kind, ["emission", "absorption"]);
+  isOneOf("decimal", values.decimal, [".", ","]);
+  isOneOf("inverted", values.inverted, ["yes", "no"]);
+  const isAbsorption = values.kind === "absorption";
+  if (!isAbsorption && (values.bands !== undefined || values.bandwidth !== undefined)) {
+    throw new UsageError("--bands and --bandwidth belong to --kind absorption.");
   }
   return {
     files: positionals,
     elements: readLamp(values.lamp),
     range: readRange(values.range),
     priorCoefficients: values.prior === undefined ? null : readPrior(values.prior),
-    axisKind,
-    fullScaleCounts: readPositive("--full-scale", values["full-scale"]),
-    scansSummed: readPositive("--scans", values.scans),
-    channel: values.channel ?? null,
+    reading: readingOf(values),
+    absorption: isAbsorption
+      ? {
+          certificate: values.bands === undefined ? null : readCertificate(values.bands),
+          bandwidthNm: readPositive("--bandwidth", values.bandwidth),
+        }
+      : null,
     tolerance: readPositive("--tolerance", values.tolerance),
     rule: values.rule === "simple" ? { kind: "simple" } : { kind: "guarded", r: 1 },
     readOnly: values["read-only"] === true,
     json: values.json === true,
-    outOfScope: outOfScope(values),
+  };
+}
+
+type Words = ReturnType<typeof parse>["values"];
+
+function readingOf(values: Words): ReadOptions {
+  const fullScaleCounts = readPositive("--full-scale", values["full-scale"]);
+  const scansSummed = readPositive("--scans", values.scans);
+  if (scansSummed !== null && scansSummed !== Math.round(scansSummed)) {
+    throw new UsageError(`--scans is the whole number of scans summed; got "${values.scans!}".`);
+  }
+  return {
+    ...(values.axis === undefined ? {} : { axisUnit: axisWords[values.axis]! }),
+    ...(fullScaleCounts === null ? {} : { fullScaleCounts }),
+    ...(scansSummed === null ? {} : { scansSummed }),
+    ...(values.channel === undefined ? {} : { intensityName: values.channel }),
+    ...(values.decimal === undefined ? {} : { decimal: values.decimal as "." | "," }),
+    ...(values.inverted === undefined ? {} : { inverted: values.inverted === "yes" }),
   };
 }
 
@@ -72,6 +97,8 @@ function parse(argv: string[]) {
         "full-scale": { type: "string" },
         scans: { type: "string" },
         channel: { type: "string" },
+        decimal: { type: "string" },
+        inverted: { type: "string" },
         kind: { type: "string" },
         bands: { type: "string" },
         bandwidth: { type: "string" },
@@ -84,13 +111,6 @@ function parse(argv: string[]) {
   } catch (error) {
     throw new UsageError(`${(error as Error).message}\n${usage}`);
   }
-}
-
-function outOfScope(values: { kind?: string; bands?: string; bandwidth?: string }): string | null {
-  if (values.kind === "absorption" || values.bands !== undefined || values.bandwidth !== undefined) {
-    return "This version measures emission lines only: absorption bands (--kind absorption, --bands, --bandwidth) are not judged. Nothing was measured.";
-  }
-  return null;
 }
 
 function readLamp(text: string | undefined): string[] {

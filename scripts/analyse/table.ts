@@ -1,5 +1,5 @@
 /** The same result for a person at the terminal. */
-import { roundResult } from "@wavekeep/core";
+import { roundResult, type AxisUnit } from "@wavekeep/core";
 import type { LineDocument, ResultDocument } from "./analyse-file.ts";
 
 export function tableOf(result: ResultDocument): string {
@@ -12,8 +12,10 @@ export function tableOf(result: ResultDocument): string {
   lines.push(`  ${result.outcome}${result.verdict === null ? "" : `, ${verdictWords[result.verdict]}`}`);
   if (result.reason !== null) lines.push(`  ${result.reason}`);
   if (result.lines.length > 0) {
-    lines.push(row(["position", "wavelength nm", "species", "error nm", "U nm", "FWHM", "flags"]));
-    for (const line of result.lines) lines.push(row(cellsOf(line)));
+    const unit = "errorPerCm" in result.lines[0]! ? "cm-1" : "nm";
+    lines.push(row(["position", "wavelength nm", "species", `error ${unit}`, `U ${unit}`, "FWHM", "flags"]));
+    const decimals = "rows" in result.file ? (decimalsOf[result.file.axisUnit] ?? 3) : 3;
+    for (const line of result.lines) lines.push(row(cellsOf(line, decimals)));
   }
   if (result.dispersion !== null) {
     const { degree, rmsNm, rmsPx } = result.dispersion;
@@ -21,21 +23,28 @@ export function tableOf(result: ResultDocument): string {
       `  axis of degree ${degree}, RMS ${rmsNm.toPrecision(3)} nm (${rmsPx.toPrecision(3)} of the file's unit)`,
     );
   }
-  if (result.notIncluded.length > 0 && result.lines.some((line) => line.errorNm !== null)) {
+  if (result.notIncluded.length > 0 && result.lines.some((line) => errorOf(line).error !== null)) {
     lines.push(`  U does not hold: ${result.notIncluded.join(", ")}`);
   }
   return `${lines.join("\n")}\n`;
 }
 
+/** Of a position, where not 3. */
+const decimalsOf: Partial<Record<AxisUnit, number>> = { eV: 6, µm: 6 };
 const verdictWords = { pass: "in tolerance", inconclusive: "inconclusive", fail: "out of tolerance" };
 
-function cellsOf(line: LineDocument): string[] {
-  const error =
-    line.errorNm === null || line.errorExpandedUncNm === null
-      ? null
-      : roundResult(line.errorNm, line.errorExpandedUncNm);
+function errorOf(line: LineDocument): { error: number | null; expandedUnc: number | null } {
+  return {
+    error: line.errorPerCm ?? line.errorNm ?? null,
+    expandedUnc: line.errorExpandedUncPerCm ?? line.errorExpandedUncNm ?? null,
+  };
+}
+
+function cellsOf(line: LineDocument, decimals: number): string[] {
+  const { error: found, expandedUnc } = errorOf(line);
+  const error = found === null || expandedUnc === null ? null : roundResult(found, expandedUnc);
   return [
-    line.position.toFixed(3),
+    line.position.toFixed(decimals),
     line.wavelengthNm === null ? "-" : line.wavelengthNm.toFixed(4),
     line.species ?? "-",
     error === null ? "-" : error.value,

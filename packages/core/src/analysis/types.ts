@@ -71,6 +71,8 @@ export interface FileFacts {
   direction?: "up" | "down";
   /** Tables below one another, or blocks of a compound file; absent = one. */
   tables?: number;
+  /** A JCAMP-DX file, whose `delimiter` says nothing; absent = delimited text. */
+  format?: "jcamp-dx";
 }
 
 /** Corrections of the reader's guesses. */

@@ -26,7 +26,7 @@ export interface UnfinishedCapture {
   lineOf: (row: number) => number;
   facts: Pick<
     FileFacts,
-    "missing" | "delimiter" | "decimal" | "encoding" | "headerLines" | "columns" | "damagedLines" | "tables"
+    "missing" | "delimiter" | "decimal" | "encoding" | "headerLines" | "columns" | "damagedLines" | "tables" | "format"
   >;
 }
 

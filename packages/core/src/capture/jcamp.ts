@@ -80,6 +80,7 @@ export function readJcamp(file: JcampFile): ReadCapture {
     remarks,
     lineOf,
     facts: {
+      format: "jcamp-dx",
       missing,
       delimiter: " ",
       decimal: ".",
