@@ -12,7 +12,7 @@
  */
 import type { Dispersion, PixelAxis } from "../analysis/types.ts";
 import { chebyshevArgument, chebyshevBasis } from "../numeric/chebyshev.ts";
-import { chiSquareUpperTail, normalQuantile } from "../numeric/distributions.ts";
+import { chiSquareUpperTail, studentQuantile } from "../numeric/distributions.ts";
 import { axisNm, axisSlope, isMonotonic } from "./axis.ts";
 import { chebyshevTerms } from "./chebyshev-terms.ts";
 import { describeAxis } from "./describe-axis.ts";
@@ -25,10 +25,12 @@ import {
 } from "./fit-dispersion.ts";
 
 const rounds = 50;
-/** Rejection: chance that any good line is rejected; lines there must be; share that may go. */
+/** Rejection: chance that any good line is rejected, share of the lines that may go, degrees of freedom there must be. */
 const rejectionLevel = 0.01;
-const fewestForRejection = 4;
 const rejectableShare = 0.2;
+const leastFreedom = 3;
+/** The others' variance over what is stated is taken as at least this: uncertainties that are stated too large do happen. */
+const leastScatter = 1e-3;
 /** Two lines tell a scale when they lie this share of the axis apart. */
 const leastSpan = 0.02;
 
@@ -61,7 +63,7 @@ export function updateAxis(
   const used = points.map((_, i) => i);
   let solution = solve(earlier, points, used, options.kind);
   const most = Math.floor(rejectableShare * points.length);
-  for (let n = 0; n < most && solution !== null && used.length > fewestForRejection; n++) {
+  for (let n = 0; n < most && solution !== null; n++) {
     const worst = mostRemarkable(solution);
     if (worst < 0) break;
     used.splice(worst, 1);
@@ -417,23 +419,26 @@ function movedAxis(
   };
 }
 
-/** Row whose residual is larger than chance allows, the largest of them; else -1. */
-function mostRemarkable({ residuals, leverages, unc }: Solution): number {
-  const limit = normalQuantile(1 - rejectionLevel / (2 * residuals.length));
+/** Row whose studentised deleted residual is larger than chance allows over all lines, the largest of them; else -1. */
+function mostRemarkable({ residuals, leverages, unc, update }: Solution): number {
+  const freedom = residuals.length - (update.kind === "offset" ? 1 : 2);
+  if (freedom < leastFreedom) return -1;
+  const room = Float64Array.from(leverages, (leverage) => Math.max(1 - leverage, 1e-6));
+  let sum = 0;
+  residuals.forEach((residual, k) => {
+    const ratio = residual / (unc[k] as number);
+    sum += ratio * ratio;
+  });
   let worst = -1;
-  let largest = limit;
-  // Scale of the others: the median, so that one bad line does not hide itself.
-  const ratios = Array.from(
-    residuals,
-    (value, k) => Math.abs(value) / ((unc[k] as number) * Math.sqrt(Math.max(1 - (leverages[k] as number), 1e-6))),
-  );
-  const sorted = ratios.slice().sort((a, b) => a - b);
-  const scale = Math.max(1, 1.4826 * (sorted[(sorted.length - 1) >> 1] as number));
-  ratios.forEach((ratio, k) => {
-    if (ratio / scale > largest) {
-      largest = ratio / scale;
+  let largest = 0;
+  residuals.forEach((residual, k) => {
+    const ratio = residual / (unc[k] as number);
+    const others = (sum - (ratio * ratio) / (room[k] as number)) / (freedom - 1);
+    const studentised = Math.abs(ratio) / Math.sqrt((room[k] as number) * Math.max(others, leastScatter));
+    if (studentised > largest) {
+      largest = studentised;
       worst = k;
     }
   });
-  return worst;
+  return largest > studentQuantile(1 - rejectionLevel / (2 * residuals.length), freedom - 1) ? worst : -1;
 }
