@@ -8,18 +8,18 @@ import { textToBytes } from "../capture/decode.ts";
 import { refuse } from "../capture/refusal.ts";
 import { identifyLines, type IdentifiedLines } from "../identify/identify-lines.ts";
 import { builtInLineList } from "../linelist/built-in.ts";
-import { findLines, smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
+import { smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
 import { coreVersion } from "../version.ts";
 import { absorptionOf, combineAbsorption } from "./absorption-captures.ts";
 import { analyseBands, bandSettingsProblem } from "./analyse-bands.ts";
-import { combineCaptures, type CombinedCaptures } from "./combine-captures.ts";
+import { combineCaptures, mapSpectra, type CombinedCaptures } from "./combine-captures.ts";
 import { drawSpectrum } from "./draw-spectrum.ts";
 import { findMisplaced, fitAxis, misplacedReason } from "./fit-axis.ts";
-import { indicatingAxisOf } from "./indicating-axis.ts";
+import { indicatingAxisOf, type IndicatingAxis } from "./indicating-axis.ts";
 import { driftPointOfLines, jointProbabilityOf, sharedUncOf, verdictsOf } from "./judge-check.ts";
 import { judgeLine, type JudgedLineResult } from "./judge-lines.ts";
 import { notIncludedIn } from "./line-budget.ts";
-import { repeatabilityOf } from "./repeatability.ts";
+import { measureLines } from "./measure-lines.ts";
 import { errorCurveOf, judgeSegments } from "./segments.ts";
 import { toleranceInNm, toVacuumWavelengths, toWavenumbers, turnedLike, wavenumberProblem } from "./wavenumber-axis.ts";
 import type {
@@ -28,6 +28,7 @@ import type {
   AnalysisSetup,
   CaptureInput,
   FileFacts,
+  FittedLine,
   LineList,
   Refusal,
   Spectrum,
@@ -63,6 +64,7 @@ export function analyseCapture(
     ceilingCounts: null,
     files: [],
     darkCount: 0,
+    remarks: [],
   };
   return analyseOnAxis(combined, setup, resources);
 }
@@ -100,12 +102,11 @@ function analyseOnAxis(combined: CombinedCaptures, setup: AnalysisSetup, resourc
   const laser = setup.laser ?? null;
   const problem = wavenumberProblem(combined.spectrum, laser);
   if (problem !== null) return refused(refuse("bad-settings", problem), combined.files, setup, combined.spectrum);
-  const inVacuum: CombinedCaptures = {
-    ...combined,
-    spectrum: toVacuumWavelengths(combined.spectrum, laser),
-    repeats: combined.repeats.map((repeat) => toVacuumWavelengths(repeat, laser)),
-    saturated: combined.saturated === null ? null : turnedLike(combined.saturated, laser),
-  };
+  const inVacuum = mapSpectra(
+    combined,
+    (spectrum) => toVacuumWavelengths(spectrum, laser),
+    (mask) => turnedLike(mask, laser),
+  );
   const check = analyseCombined(inVacuum, { ...setup, axisMeaning: "vacuum" }, resources);
   check.analysis.setup = setup;
   return toWavenumbers(check, laser);
@@ -116,18 +117,11 @@ function analyseCombined(
   setup: AnalysisSetup,
   resources: AnalysisResources,
 ): AnalysedCheck {
-  const { spectrum, files } = combined;
+  const { files } = combined;
   const lineList = resources.lineList ?? builtInLineList;
-  const problem = settingsProblem(spectrum, setup, lineList);
-  if (problem !== null) {
-    return refused({ outcome: "refused", code: "bad-settings", reason: problem, line: null }, files, setup, spectrum);
-  }
-  const found = findLines(spectrum, {
-    falseLinesPerCapture: setup.falseLinesPerCapture,
-    lineShape: setup.lineShape ?? "gaussian",
-    positionDefinition: setup.positionDefinition ?? "fitted",
-    ...(combined.saturated === null ? {} : { saturated: combined.saturated, ceilingCounts: combined.ceilingCounts }),
-  });
+  const problem = settingsProblem(combined.spectrum, setup, lineList);
+  if (problem !== null) return refused(refuse("bad-settings", problem), files, setup, combined.spectrum);
+  const { spectrum, found, repeatability, backlash } = measureLines(combined, setup);
   const axis = indicatingAxisOf(spectrum, setup);
   const n = spectrum.positions.length;
   const firstPosition = spectrum.positions[0]!;
@@ -148,7 +142,6 @@ function analyseCombined(
           axisMeaning: setup.axisMeaning,
           toleranceNm: tightestTolerance(setup, firstPosition),
         });
-  const repeatability = repeatabilityOf(combined, found, setup);
   const judge = (): JudgedLineResult[] =>
     found.lines.map((line, index) =>
       judgeLine(
@@ -185,6 +178,7 @@ function analyseCombined(
     ...(found.noiseAutocorrelation === undefined ? {} : { noiseAutocorrelation: found.noiseAutocorrelation }),
     ...(found.lineShape === undefined ? {} : { lineShape: found.lineShape }),
     medianFwhm: found.medianFwhm,
+    ...(backlash === null || axis === null ? {} : { backlashNm: backlashInNm(backlash, axis, found.lines) }),
     lines: results,
     missingLinesNm: identified.missingLinesNm,
     verdict: verdicts.asAsked,
@@ -229,6 +223,16 @@ function settingsProblem(spectrum: Spectrum, setup: AnalysisSetup, lineList: Lin
   return null;
 }
 
+/** Backlash in nm at the middle line; positive where the upward scan indicates more. */
+function backlashInNm(
+  { value, unc }: { value: number; unc: number },
+  axis: IndicatingAxis,
+  lines: readonly FittedLine[],
+): { value: number; unc: number } {
+  const slope = axis.slopeNm(lines[lines.length >> 1]!.position);
+  return { value: value * slope, unc: unc * Math.abs(slope) };
+}
+
 function nothingFound(): IdentifiedLines {
   return {
     outcome: "unidentified",
@@ -258,6 +262,7 @@ function warningsOf(found: FoundLines, combined: CombinedCaptures): Analysis["wa
     for (const text of file.remarks)
       warnings.push({ code: "reading", text: combined.files.length > 1 ? `${file.name}: ${text}` : text });
   }
+  for (const text of combined.remarks) warnings.push({ code: "captures", text });
   for (const text of found.notes) {
     const code =
       found.noiseCorrelation > smoothedAbove && text.includes("smoothed")

@@ -8,7 +8,7 @@
  */
 import { chiSquareUpperTail } from "../numeric/distributions.ts";
 import { findLines, type FoundLines } from "../spectrum/find-lines.ts";
-import type { CombinedCaptures } from "./combine-captures.ts";
+import type { CaptureGroup } from "./combine-captures.ts";
 import type { LineRepeatability } from "./line-budget.ts";
 import type { AnalysisSetup } from "./types.ts";
 
@@ -26,7 +26,7 @@ export interface RepeatedLine {
 
 /** One entry a line of `found`; null where fewer than two repeats show the line. */
 export function repeatabilityOf(
-  combined: CombinedCaptures,
+  combined: Omit<CaptureGroup, "names">,
   found: FoundLines,
   setup: AnalysisSetup,
 ): (LineRepeatability | null)[] {
