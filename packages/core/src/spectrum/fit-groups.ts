@@ -6,7 +6,7 @@
  * Position      as the setup defines it (`position-definition.ts`)
  */
 import type { FittedLine, LineFlag, PositionDefinition } from "../analysis/types.ts";
-import { fitLines, type FittedShape, type FittedWindowOfLines, type LineStart } from "../lineshape/fit-line.ts";
+import { fitLines, isBeyondChance, type FittedShape, type FittedWindowOfLines, type LineStart } from "../lineshape/fit-line.ts";
 import { parameterName, type ShapeInUse } from "./capture-shape.ts";
 import type { Candidate } from "./detect.ts";
 import { axisAt, splitGroup, startsOf, weigh, windowOf, type Group, type GroupWindow, type Prepared } from "./line-groups.ts";
@@ -42,10 +42,12 @@ const poorFitShare = 0.12;
 const weakSigmas = 6;
 /** Lines that tell the photon noise: this far above the noise, and at most so many. */
 const gainSigmas = 12;
-const mostForGain = 10;
+const mostForGain = 16;
 const fewestForGain = 7;
 /** Share of the width that stands in for an uncertainty where no fit was possible. Common practice, no source. */
 const unfittedUncShare = 0.25;
+/** From so many degrees of freedom on an interval is no wider than with all. */
+const negligibleFreedom = 200;
 const noCorrelation = new Float64Array(0);
 
 /** Counts per electron, from first fits of single lines of all heights; their curves stay with the groups. */
@@ -134,7 +136,7 @@ function resultOf(
   starts: LineStart[],
   settings: FitSettings,
 ): FittedGroup {
-  const { shape } = settings;
+  const { shape, gain } = settings;
   const { positions, unc, samples } = window;
   const { first, last } = group;
   const misfit = Math.sqrt(Math.max(0, fit.reducedChiSquare - 1)) * rootMeanSquare(unc);
@@ -159,6 +161,7 @@ function resultOf(
       group: -1,
       flags,
       shape: shape.name,
+      ...freedomOf(prepared, window, fit, k, gain),
       ...(fit.shapeParameter === null ? {} : { shapeParameters: { [parameterName(shape.name)]: fit.shapeParameter } }),
       covariance: line.covariance,
     };
@@ -167,6 +170,23 @@ function resultOf(
   for (let k = 0; k < positions.length; k += 1)
     baselineCounts[k] = fit.baseline[0] + fit.baseline[1] * (positions[k]! - fit.windowCentre);
   return { lines, window: { first, last, samples, fittedCounts: fit.fittedCounts, baselineCounts, countsUnc: unc } };
+}
+
+/** How well the noise is known that a line's uncertainty comes from: as well as the gain, as far as its photons make it. */
+function freedomOf(
+  prepared: Prepared,
+  window: GroupWindow,
+  fit: FittedWindowOfLines,
+  k: number,
+  gain: PhotonGain,
+): Pick<FittedLine, "positionDegreesOfFreedom"> {
+  if (gain.gain === 0 || isBeyondChance(fit.reducedChiSquare, fit.degreesOfFreedom)) return {};
+  const photons = gain.gain * fit.lines[k]!.peakHeightCounts;
+  const middle = window.samples[window.samples.length >> 1] ?? 0;
+  const read = prepared.readNoise[middle]! * prepared.readNoise[middle]!;
+  const relative = (gain.relativeUnc * photons) / (photons + read);
+  const freedom = 2 / (relative * relative);
+  return freedom < negligibleFreedom ? { positionDegreesOfFreedom: Math.max(1, freedom) } : {};
 }
 
 function isSane(line: FittedShape, start: LineStart): boolean {

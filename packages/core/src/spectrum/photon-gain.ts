@@ -9,13 +9,15 @@
  *         the fit and show little of their noise
  * Solved  median over the lines, because a line with an unresolved companion has an excess of any size; where the gain rises with the height
  *         (M. G. Kendall, Biometrika 30, 81, 1938) the straight line's value at height zero (P. K. Sen, JASA 63, 1379, 1968); then
- *         the weighted mean of the lines that agree with it
+ *         the weighted mean of the lines that agree with it, by the quantiles of chi-squared
  */
 import { median } from "./median.ts";
 
 export interface LineScatter {
   /** Sum of squared residuals less what the read noise leaves of itself, counts². */
   excess: number;
+  /** What the read noise leaves of itself, counts². */
+  readFree: number;
   /** What a gain of one leaves of its noise: trace of (1 - H) V for V of the signal, counts. */
   signal: number;
   /** Sum of (1 - leverage) x signal², counts². */
@@ -32,46 +34,67 @@ export interface PhotonGain {
   relativeUnc: number;
 }
 
-const agreeingSigmas = 3;
-const trimRounds = 3;
-/** Photon noise is believed when at least this share of the lines shows it. */
+/** Lines whose scatter lies outside what chi-squared gives to all but one in a thousand do not enter the mean. */
+const agreeingSigmas = 3.3;
+const trimRounds = 4;
+/** Photon noise is taken from the lines that agree when at least this share does; else the median speaks, which is on the safe side. */
 const leastAgreeing = 1 / 3;
-/** Kendall's rank correlation of gain and height above which the shape, not the photons, makes the scatter. */
+/** Kendall's rank correlation of gain and height above which the shape, not the photons, makes the scatter, and its significance. */
 const misfitCorrelation = 0.5;
-const fewestForRank = 4;
+const misfitSigmas = 2.5;
 
 export function estimatePhotonGain(lines: readonly LineScatter[]): PhotonGain {
   const none = { gain: 0, relativeUnc: 0 };
   const seen = lines.filter((line) => line.signal > 0);
   if (seen.length === 0) return none;
-  const gains = seen.map((line) => line.excess / line.signal);
-  const { correlation, atHeightZero } = trendWithHeight(seen, gains);
-  let gain = correlation > misfitCorrelation ? atHeightZero : median(gains);
+  const rough = Math.max(0, median(seen.map((line) => line.excess / line.signal)));
+  // The median of chi-squared lies below its mean, the more the fewer degrees of freedom a line has.
+  const gains = seen.map((line) => {
+    const middle = chiSquareShare(freedomOf(line, rough), 0);
+    return ((line.excess + line.readFree) / middle - line.readFree) / line.signal;
+  });
+  const { isMisfit, atHeightZero } = trendWithHeight(seen, gains);
+  let gain = isMisfit ? atHeightZero : median(gains);
   let weights = 0;
   for (let round = 0; round < trimRounds && gain > 0; round += 1) {
-    weights = 0;
-    let sum = 0;
-    let agreeing = 0;
-    seen.forEach((line, k) => {
-      const variance = varianceOf(line, gain) / (line.signal * line.signal);
-      const off = gains[k]! - gain;
-      if (off * off > agreeingSigmas * agreeingSigmas * variance) return;
+    let [sum, total, agreeing] = [0, 0, 0];
+    for (const line of seen) {
+      const freedom = freedomOf(line, gain);
+      const share = (line.excess + line.readFree) / (line.readFree + gain * line.signal);
+      if (share < chiSquareShare(freedom, -agreeingSigmas) || share > chiSquareShare(freedom, agreeingSigmas)) continue;
+      const weight = (line.signal * line.signal) / varianceOf(line, gain);
       agreeing += 1;
-      weights += 1 / variance;
-      sum += gains[k]! / variance;
-    });
-    if (agreeing < leastAgreeing * seen.length) return none;
-    gain = sum / weights;
+      total += weight;
+      sum += (weight * line.excess) / line.signal;
+    }
+    weights = total;
+    if (agreeing < leastAgreeing * seen.length) {
+      return { gain, relativeUnc: Math.sqrt(2 / seen.length) };
+    }
+    gain = sum / total;
   }
   // A gain that can't be told from none would only widen every interval, since it can't go below zero.
   return gain > 0 && gain * gain * weights > 1 ? { gain, relativeUnc: 1 / (gain * Math.sqrt(weights)) } : none;
+}
+
+/** Degrees of freedom of the chi-squared distribution that a line's sum of squares follows, by its first two moments. */
+function freedomOf(line: LineScatter, gain: number): number {
+  const mean = line.readFree + gain * line.signal;
+  return (2 * mean * mean) / Math.max(varianceOf(line, gain), 1e-300);
+}
+
+/** Quantile of chi-squared over its mean at z normal deviations (E. B. Wilson, M. M. Hilferty, PNAS 17 (1931) 684). */
+function chiSquareShare(freedom: number, z: number): number {
+  const v = 2 / (9 * freedom);
+  const root = Math.max(0, 1 - v + z * Math.sqrt(v));
+  return root * root * root;
 }
 
 /** Kendall's correlation of gain and height, and the Theil-Sen line of gain against height at height zero. */
 function trendWithHeight(
   lines: readonly LineScatter[],
   gains: readonly number[],
-): { correlation: number; atHeightZero: number } {
+): { isMisfit: boolean; atHeightZero: number } {
   const heights = lines.map((line) => line.squareSignal / line.signal);
   const slopes: number[] = [];
   let concordance = 0;
@@ -84,10 +107,13 @@ function trendWithHeight(
       concordance += Math.sign(slope);
     }
   }
-  if (lines.length < fewestForRank || slopes.length === 0) return { correlation: 0, atHeightZero: 0 };
+  if (slopes.length === 0) return { isMisfit: false, atHeightZero: 0 };
+  const n = lines.length;
+  const correlation = concordance / slopes.length;
+  const byChance = Math.sqrt((2 * (2 * n + 5)) / (9 * n * (n - 1)));
   const slope = median(slopes);
   return {
-    correlation: concordance / slopes.length,
+    isMisfit: correlation > misfitCorrelation && correlation > misfitSigmas * byChance,
     atHeightZero: median(gains.map((gain, k) => gain - slope * heights[k]!)),
   };
 }
@@ -135,7 +161,8 @@ export function scatterOf(
     moments[1] += free * free * s;
     moments[2] += free * free * s * s;
   }
-  return { excess: excess - Math.max(0, readFree), signal: signalFree, squareSignal, readVariance, moments };
+  readFree = Math.max(0, readFree);
+  return { excess: excess - readFree, readFree, signal: signalFree, squareSignal, readVariance, moments };
 }
 
 /** v'Rv, R the correlation by lag. */
