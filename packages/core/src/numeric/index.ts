@@ -6,3 +6,4 @@ export * from "./chebyshev.ts";
 export * from "./levenberg-marquardt.ts";
 export * from "./faddeeva.ts";
 export * from "./multivariate-normal.ts";
+export * from "./straight-line.ts";
