@@ -6,7 +6,7 @@
  */
 import { textToBytes } from "../capture/decode.ts";
 import { refuse } from "../capture/refusal.ts";
-import { identifyLines, type IdentifiedLines } from "../identify/identify-lines.ts";
+import { identifyLines, type IdentifiedLines, type IdentifyInput } from "../identify/identify-lines.ts";
 import { builtInLineList } from "../linelist/built-in.ts";
 import { smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
 import { coreVersion } from "../version.ts";
@@ -22,6 +22,7 @@ import { notIncludedIn } from "./line-budget.ts";
 import { measureLines } from "./measure-lines.ts";
 import { errorCurveOf, judgeSegments } from "./segments.ts";
 import { toleranceInNm, toVacuumWavelengths, toWavenumbers, turnedLike, wavenumberProblem } from "./wavenumber-axis.ts";
+import { identifyWindows } from "./window-names.ts";
 import type {
   AnalysedCheck,
   Analysis,
@@ -121,15 +122,17 @@ function analyseCombined(
   const lineList = resources.lineList ?? builtInLineList;
   const problem = settingsProblem(combined.spectrum, setup, lineList);
   if (problem !== null) return refused(refuse("bad-settings", problem), files, setup, combined.spectrum);
-  const { spectrum, found, repeatability, backlash } = measureLines(combined, setup);
+  const { spectrum, found, repeatability, backlash, stretches } = measureLines(combined, setup);
   const axis = indicatingAxisOf(spectrum, setup);
   const n = spectrum.positions.length;
   const firstPosition = spectrum.positions[0]!;
   const lastPosition = spectrum.positions[n - 1]!;
+  const identify = (input: IdentifyInput): IdentifiedLines =>
+    stretches === null ? identifyLines(input) : identifyWindows(input, stretches, axis);
   const identified: IdentifiedLines =
     found.lines.length === 0 || found.medianFwhm === null
       ? nothingFound()
-      : identifyLines({
+      : identify({
           lines: found.lines,
           firstPosition,
           lastPosition,

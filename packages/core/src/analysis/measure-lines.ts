@@ -13,6 +13,7 @@ import { median } from "../spectrum/median.ts";
 import type { CaptureGroup, CombinedCaptures } from "./combine-captures.ts";
 import { repeatabilityFrom, repeatabilityOf } from "./repeatability.ts";
 import type { LineRepeatability } from "./line-budget.ts";
+import { longestAlone, type Stretch } from "./window-names.ts";
 import type { AnalysisSetup, FittedLine, Spectrum } from "./types.ts";
 
 export interface MeasuredLines {
@@ -22,6 +23,8 @@ export interface MeasuredLines {
   repeatability: (LineRepeatability | null)[];
   /** Weighted mean over the lines, axis unit; null where nothing was scanned in both directions. */
   backlash: { value: number; unc: number } | null;
+  /** First and last position of each window; null for captures of the whole range. */
+  stretches: Stretch[] | null;
 }
 
 type Repeats = Omit<CaptureGroup, "names">;
@@ -49,10 +52,12 @@ function optionsOf(setup: AnalysisSetup, group: Repeats | null): FindLinesOption
 /** Captures of one exposure on one axis, in one direction or both. */
 function measureGroup(group: Repeats, setup: AnalysisSetup): MeasuredLines {
   const { spectrum, repeats } = group;
+  const n = spectrum.positions.length;
+  const stretches: Stretch[] | null = n > longestAlone ? null : [[spectrum.positions[0]!, spectrum.positions[n - 1]!]];
   const isDown = repeats.map((one) => one.wasDescending);
   if (!isDown.includes(true) || !isDown.includes(false)) {
     const found = findLines(spectrum, optionsOf(setup, group));
-    return { spectrum, found, repeatability: repeatabilityOf(group, found, setup), backlash: null };
+    return { spectrum, found, repeatability: repeatabilityOf(group, found, setup), backlash: null, stretches };
   }
   const each = repeats.map((repeat, k) => ({ found: findLines(repeat, optionsOf(setup, group)), isDown: isDown[k]! }));
   const merged = mergeScans(each);
@@ -61,6 +66,7 @@ function measureGroup(group: Repeats, setup: AnalysisSetup): MeasuredLines {
     found: merged.found,
     repeatability: merged.repeatability,
     backlash: meanBacklash(merged.found.lines),
+    stretches,
   };
 }
 
@@ -245,13 +251,18 @@ function measureExposures(
     found,
     repeatability: kept.map(({ repeatability }) => repeatability),
     backlash: meanBacklash(found.lines),
+    stretches: longest.stretches,
   };
 }
 
 /** Unsaturated before saturated, then the one whose position is better known. */
 function isBetter(a: FittedLine, b: FittedLine): boolean {
   const bad = (line: FittedLine): number =>
-    line.flags.includes("saturated") ? 2 : line.flags.includes("poor-fit") || line.flags.includes("spike") ? 1 : 0;
+    line.flags.includes("saturated")
+      ? 2
+      : line.flags.some((flag) => flag === "poor-fit" || flag === "spike" || flag === "edge")
+        ? 1
+        : 0;
   return bad(a) !== bad(b)
     ? bad(a) < bad(b)
     : bad(a) > 0
@@ -353,7 +364,11 @@ function measureWindows(windows: readonly CaptureGroup[], setup: AnalysisSetup):
     }
     if (sample === null || merged.found.lines.length > 0) sample = merged.found;
   }
-  const order = lines.map((_, k) => k).sort((a, b) => lines[a]!.position - lines[b]!.position);
+  // Stretches that touch may both show a line, one of them only in part.
+  const order = lines
+    .map((_, k) => k)
+    .filter((k) => lines.every((other, m) => m === k || !isTwin(lines[k]!, other) || isBetter(lines[k]!, other)))
+    .sort((a, b) => lines[a]!.position - lines[b]!.position);
   const widths = lines.filter(({ flags }) => !flags.includes("spike")).map(({ fwhm }) => fwhm);
   const found: FoundLines = {
     ...sample!,
@@ -372,7 +387,12 @@ function measureWindows(windows: readonly CaptureGroup[], setup: AnalysisSetup):
     found,
     repeatability: order.map((k) => repeatability[k]!),
     backlash: meanBacklash(lines),
+    stretches: stretches.map((stretch) => ends(stretch[0]!.spectrum)),
   };
+}
+
+function isTwin(a: FittedLine, b: FittedLine): boolean {
+  return Math.abs(a.position - b.position) < sameLineWidths * Math.max(a.fwhm, b.fwhm);
 }
 
 function shiftedWindow(window: FittedWindow, shift: number): FittedWindow {

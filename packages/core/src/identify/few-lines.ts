@@ -75,10 +75,11 @@ export function nameFewLines(input: FewLinesInput): FewNames | null {
   // The second must fall into another window, and within `alike` of the first one's displacement.
   const chanceProbability =
     Math.min(1, windows) * Math.min(1, (windows * (published.length - 1) * alike) / (published.length * reach));
-  return { names: lines.map((line) => nameOf(taken.get(line)?.reference)), chanceProbability };
+  return { names: lines.map((line) => nameOfReference(taken.get(line)?.reference)), chanceProbability };
 }
 
-function nameOf(reference: ReferenceLine | undefined): LineName | null {
+/** Name of a plain line that was recognised by its place; null for none. */
+export function nameOfReference(reference: ReferenceLine | undefined): LineName | null {
   if (reference === undefined) return null;
   return {
     ...lineWavelengthNm(reference),
