@@ -3,6 +3,7 @@
  *
  * published       (n - 1) as printed; held to 1e-9 in n. The formulas themselves are good to some 1e-8.
  * published pair  the same line printed in vacuum and in air; held to one unit of the last printed digit of the coarser value
+ * computed        the formulas worked out apart from this code (arithmetic check); held to 1e-10 in n
  * measured        refractivity of ambient air measured by Birch and Downs; held to 2e-8
  */
 import { readFileSync } from "node:fs";
@@ -19,7 +20,7 @@ import {
 
 interface Row {
   formula: "ciddor-1996" | "birch-downs-1994" | "peck-reeder-1972" | "edlen-1966";
-  kind: "published" | "published pair" | "measured";
+  kind: "published" | "published pair" | "measured" | "computed";
   [column: string]: string;
 }
 
@@ -52,9 +53,9 @@ function indexOf(row: Row): number {
 }
 
 /**
- * Two pairs of the list of He, Ne, Ar lines print their air value to 1e-5 nm, its other ten to 1e-4 nm. With Edlén's formula these two
- * miss the vacuum value beside them by 2.2 and 2.7 units of 1e-5 nm (0.022 and 0.027 pm), the others by up to 0.6 units of 1e-4: the list
- * was not converted to the fifth decimal. The two are held to the list's own digit, 1e-4 nm.
+ * Two pairs of the list of He, Ne, Ar lines print their air value to 1e-5 nm, its other ten to 1e-4 nm. No vacuum value that rounds to
+ * the printed one gives those two printed air values by Edlén's formula, nor by any other here (proved below): they were not made by a
+ * formula to the fifth decimal. The two are held to the list's common digit, 1e-4 nm.
  */
 const heldToTheListsDigit = ["594.48342", "633.44279"];
 const unitOfLastDigit = (printed: string): number => 1 / 10 ** (printed.split(".")[1]?.length ?? 0);
@@ -67,7 +68,9 @@ const named = (row: Row, i: number): [string, Row] => [
 const isSuspect = (row: Row): boolean => row["note"]!.startsWith("suspect");
 
 describe("refractive index", () => {
-  test("the table has what this file says: 49 published, 9 measured, one suspect row", () => {
+  test("the table has what this file says: 49 published, 43 pairs, 9 measured, 27 computed, one suspect row", () => {
+    expect(rows.filter((row) => row.kind === "published pair").length).toBe(43);
+    expect(rows.filter((row) => row.kind === "computed").length).toBe(27);
     expect(rows.filter((row) => row.kind === "published").length).toBe(49);
     expect(rows.filter((row) => row.kind === "measured").length).toBe(9);
     expect(rows.filter(isSuspect).length).toBe(1);
@@ -95,6 +98,32 @@ describe("wavelengths printed in vacuum and in air", () => {
     const unit = heldToTheListsDigit.includes(air) ? 1e-4 : Math.max(unitOfLastDigit(vacuum), unitOfLastDigit(air));
     expect(Math.abs(vacuumToAirNm(Number(vacuum), formula) - Number(air))).toBeLessThanOrEqual(unit * 1.000001);
     expect(Math.abs(airToVacuumNm(Number(air), formula) - Number(vacuum))).toBeLessThanOrEqual(unit * 1.000001);
+  });
+});
+
+test.each(rows.filter((row) => heldToTheListsDigit.includes(row["wavelengthAirNm"]!)).map(named))(
+  "pair that no formula gives to its last digit: %s",
+  (_, row) => {
+    const [vacuum, air] = [Number(row["wavelengthVacuumNm"]), Number(row["wavelengthAirNm"])];
+    const half = 5e-6;
+    // The largest range of air values that vacuum values printed so can have, and of those that are printed so: they do not meet.
+    for (const formula of [
+      "edlen-1966",
+      "peck-reeder-1972",
+      { temperatureC: 15, pressurePa: 101325, relativeHumidity: 0 },
+    ] as const) {
+      const [low, high] = [vacuumToAirNm(vacuum - half, formula), vacuumToAirNm(vacuum + half, formula)];
+      expect(high < air - half || low > air + half).toBe(true);
+    }
+    // What the index would have to be: off by 3e-8 and more, ten times the spread of the formulas.
+    expect(Math.abs(vacuum / air - airIndex(vacuum, "edlen-1966"))).toBeGreaterThan(3e-8);
+    expect(Math.abs(airIndex(vacuum, "peck-reeder-1972") - airIndex(vacuum, "edlen-1966"))).toBeLessThan(3e-9);
+  },
+);
+
+describe("arithmetic checks: the formulas worked out apart from this code, to the last digit (1e-10 in n)", () => {
+  test.each(rows.filter((row) => row.kind === "computed").map(named))("%s", (_, row) => {
+    expect(Math.abs((indexOf(row) - 1) * 1e8 - Number(row["indexMinusOneE8"]))).toBeLessThan(0.0051);
   });
 });
 

@@ -1,5 +1,12 @@
 import { describe, expect, test } from "vitest";
-import { airIndex, airToVacuumNm, pressureFromAltitudePa, saturationVapourPressurePa, vacuumToAirNm } from "./air.ts";
+import {
+  airIndex,
+  airIndexWithUnc,
+  airToVacuumNm,
+  pressureFromAltitudePa,
+  saturationVapourPressurePa,
+  vacuumToAirNm,
+} from "./air.ts";
 
 describe("air", () => {
   test("Hg 546.2268 nm in vacuum is 546.0750 nm in standard air (NIST ASD)", () => {
@@ -18,6 +25,33 @@ describe("air", () => {
   });
   test("sea level has the standard pressure", () => {
     expect(pressureFromAltitudePa(0).pressurePa).toBe(101325);
+  });
+  test("slopes at 20 °C, 101 325 Pa, 50 %: about -0.93e-6 per °C, 2.7e-9 per Pa, -8.5e-9 per 1 % (arithmetic check, from memory)", () => {
+    const room = { temperatureC: 20, pressurePa: 101325, relativeHumidity: 0.5 };
+    const { index, indexUnc, sensitivities } = airIndexWithUnc(633, room, {
+      temperatureUncC: 1,
+      pressureUncPa: 1000,
+      humidityUnc: 0.1,
+    });
+    expect(index).toBe(airIndex(633, room));
+    expect(Math.abs(sensitivities.perC / -0.93e-6 - 1)).toBeLessThan(0.05);
+    expect(Math.abs(sensitivities.perPa / 2.68e-9 - 1)).toBeLessThan(0.02);
+    expect(Math.abs(sensitivities.perHumidity / -8.5e-7 - 1)).toBeLessThan(0.05);
+    expect(indexUnc).toBeCloseTo(
+      Math.hypot(sensitivities.perC, 1000 * sensitivities.perPa, 0.1 * sensitivities.perHumidity),
+      15,
+    );
+    // The edges of the humidity are no edges of the slope.
+    for (const relativeHumidity of [0, 1])
+      expect(
+        airIndexWithUnc(633, { ...room, relativeHumidity }, { temperatureUncC: 0, pressureUncPa: 0, humidityUnc: 0.1 })
+          .indexUnc,
+      ).toBeCloseTo(0.85e-7, 8);
+  });
+  test("an altitude known to 100 m adds 100 m x 12.0 Pa/m = 1 201 Pa to the weather's 1 000 Pa at sea level", () => {
+    // rho g = 1.225 kg/m³ x 9.80665 m/s² = 12.013 Pa/m
+    expect(pressureFromAltitudePa(0, 100).pressureUncPa).toBeCloseTo(Math.hypot(1000, 1201.3), 0);
+    expect(() => pressureFromAltitudePa(0, -1)).toThrow(RangeError);
   });
   test("refuses what no room has", () => {
     expect(() => airIndex(546, { temperatureC: 20, pressurePa: 1013.25, relativeHumidity: 0.5 })).not.toThrow();

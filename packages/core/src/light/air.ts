@@ -149,17 +149,76 @@ export function airToVacuumNm(airNm: number, air: Air = "peck-reeder-1972"): num
   return vacuumNm;
 }
 
+/** A room's air as far as it is known: standard uncertainties, 0 where exact. */
+export interface AirUncertainty {
+  temperatureUncC: number;
+  pressureUncPa: number;
+  humidityUnc: number;
+  co2UncPpm?: number;
+}
+
+export interface AirIndexWithUnc {
+  index: number;
+  indexUnc: number;
+  /** dn per °C, Pa, unit of relative humidity, and ppm of CO2. */
+  sensitivities: { perC: number; perPa: number; perHumidity: number; perPpm: number };
+}
+
+/**
+ * Index of a room's air with its standard uncertainty (JCGM 100, 5.1.2): temperature, pressure, humidity and CO2 each by the slope of
+ * Ciddor's index there. The formula's own uncertainty, some 1e-8, is not in it.
+ *
+ * @throws {RangeError} as `airIndex`; a negative uncertainty
+ */
+export function airIndexWithUnc(vacuumNm: number, air: AirConditions, unc: AirUncertainty): AirIndexWithUnc {
+  const { temperatureUncC, pressureUncPa, humidityUnc, co2UncPpm = 0 } = unc;
+  if (!(temperatureUncC >= 0 && pressureUncPa >= 0 && humidityUnc >= 0 && co2UncPpm >= 0))
+    throw new RangeError("An uncertainty cannot be negative");
+  const index = airIndex(vacuumNm, air);
+  // Half-steps to both sides; the share of vapour, not the humidity, is moved, so that 0 and 1 are no edges.
+  const share = vapourShare(air);
+  const slope = (low: [AirConditions, number], high: [AirConditions, number], step: number): number =>
+    (ciddorIndex(vacuumNm, ...high) - ciddorIndex(vacuumNm, ...low)) / step;
+  const { temperatureC, pressurePa } = air;
+  const co2Ppm = air.co2Ppm ?? DEFAULT_CO2_PPM;
+  const moved = (change: Partial<AirConditions>): [AirConditions, number] => {
+    const there = { ...air, ...change };
+    return [there, vapourShare(there)];
+  };
+  const perC = slope(moved({ temperatureC: temperatureC - 0.05 }), moved({ temperatureC: temperatureC + 0.05 }), 0.1);
+  const perPa = slope(moved({ pressurePa: pressurePa - 5 }), moved({ pressurePa: pressurePa + 5 }), 10);
+  const saturated = vapourShare({ ...air, relativeHumidity: 1 });
+  const perHumidity = slope([air, share], [air, share + 0.01 * saturated], 0.01);
+  const perPpm = slope(moved({ co2Ppm: co2Ppm - 5 }), moved({ co2Ppm: co2Ppm + 5 }), 10);
+  const parts = [perC * temperatureUncC, perPa * pressureUncPa, perHumidity * humidityUnc, perPpm * co2UncPpm];
+  let variance = 0;
+  for (const part of parts) variance += part * part;
+  return { index, indexUnc: Math.sqrt(variance), sensitivities: { perC, perPa, perHumidity, perPpm } };
+}
+
+/** Weather about the standard atmosphere, standard uncertainty, Pa (common practice, no source). */
+const WEATHER_UNC_PA = 1000;
+
 /**
  * Pressure where none was measured: standard atmosphere (ISO 2533:1975, troposphere) at an altitude.
  *
- * @param altitudeM  -500 to 11 000 m above sea level
- * @returns pressure, and its standard uncertainty of 10 hPa for the weather (common practice, no source)
- * @throws {RangeError} an altitude outside that range
+ * @param altitudeM     -500 to 11 000 m above sea level
+ * @param altitudeUncM  standard uncertainty of the altitude; default 0
+ * @returns pressure, and its standard uncertainty: 10 hPa for the weather (common practice, no source), and what the altitude leaves open
+ * @throws {RangeError} an altitude outside that range, a negative uncertainty
  */
-export function pressureFromAltitudePa(altitudeM: number): { pressurePa: number; pressureUncPa: number } {
+export function pressureFromAltitudePa(
+  altitudeM: number,
+  altitudeUncM = 0,
+): { pressurePa: number; pressureUncPa: number } {
   if (!(altitudeM >= -500 && altitudeM <= 11000))
     throw new RangeError(`Altitude must lie within -500 and 11 000 m; got ${altitudeM}`);
+  if (!(altitudeUncM >= 0)) throw new RangeError("An uncertainty cannot be negative");
   // p = 101325 (1 - L h / T0)^(g / (R L)), L = 6.5 K/km, T0 = 288.15 K, g = 9.80665 m/s², R = 287.05287 J/(kg K)
   const exponent = 9.80665 / (287.05287 * 0.0065);
-  return { pressurePa: 101325 * pow(1 - (0.0065 * altitudeM) / 288.15, exponent), pressureUncPa: 1000 };
+  const ratio = 1 - (0.0065 * altitudeM) / 288.15;
+  const pressurePa = 101325 * pow(ratio, exponent);
+  // dp/dh = -p g / (R T)
+  const fromAltitude = ((pressurePa * 9.80665) / (287.05287 * 288.15 * ratio)) * altitudeUncM;
+  return { pressurePa, pressureUncPa: Math.sqrt(WEATHER_UNC_PA * WEATHER_UNC_PA + fromAltitude * fromAltitude) };
 }

@@ -3,11 +3,13 @@ import {
   frequencyTHz,
   photonEnergyEv,
   ramanShift,
+  scatteredWavelength,
   scatteredWavelengthNm,
   wavelengthFromEnergyNm,
   wavelengthFromFrequencyNm,
   wavelengthFromWavenumberNm,
   wavenumberPerCm,
+  withUncertainty,
 } from "./quantities.ts";
 
 describe("light in vacuum", () => {
@@ -37,6 +39,21 @@ describe("light in vacuum", () => {
       Math.sqrt(16 + (1e7 / 520 / 520 / 10) ** 2),
       10,
     );
+  });
+  test("uncertainties: 500.00(5) nm is 20 000(2) cm-1 and 2.47968(25) eV: the same 1e-4 of each", () => {
+    const wavelength = { value: 500, unc: 0.05 };
+    expect(withUncertainty(wavenumberPerCm, wavelength)).toEqual({ value: 20000, unc: 2 });
+    expect(withUncertainty(frequencyTHz, wavelength).unc).toBeCloseTo(0.0599584916, 9);
+    expect(withUncertainty(photonEnergyEv, wavelength).unc).toBeCloseTo(2.479684e-4, 9);
+    const back = withUncertainty(wavelengthFromWavenumberNm, { value: 20000, unc: 2 });
+    expect(back.value).toBeCloseTo(500, 12);
+    expect(back.unc).toBeCloseTo(0.05, 12);
+  });
+  test("where a shift is seen: 769.231 cm-1 from 500.0(1) nm is 520 nm; (520/500)² x 0.1 = 0.10816 nm, 520²/1e7 x 1 cm-1 = 0.02704 nm", () => {
+    const seen = scatteredWavelength({ vacuumNm: 500, vacuumUncNm: 0.1 }, 1e7 / 500 - 1e7 / 520, 1);
+    expect(seen.value).toBeCloseTo(520, 9);
+    expect(seen.unc).toBeCloseTo(Math.hypot(0.10816, 0.02704), 9);
+    expect(() => scatteredWavelength({ vacuumNm: 500, vacuumUncNm: -1 }, 100, 0)).toThrow(RangeError);
   });
   test("refuses what is no wavelength", () => {
     expect(() => wavenumberPerCm(0)).toThrow(RangeError);

@@ -43,6 +43,25 @@ export function wavelengthFromEnergyNm(ev: number): number {
   return ENERGY_EV_NM / positive(ev, "A photon energy");
 }
 
+/** A quantity with its standard uncertainty, both in the unit that the function names. */
+export interface Quantity {
+  value: number;
+  unc: number;
+}
+
+/**
+ * Wavenumber, frequency or photon energy of a wavelength, or the wavelength of one of these: all are inversely proportional, so the
+ * relative uncertainty stays the same (JCGM 100, 5.1.6).
+ *
+ * @param convert  one of the functions above
+ * @throws {RangeError} not above 0, a negative uncertainty
+ */
+export function withUncertainty(convert: (value: number) => number, of: Quantity): Quantity {
+  if (!(of.unc >= 0)) throw new RangeError("An uncertainty cannot be negative");
+  const value = convert(of.value);
+  return { value, unc: (value * of.unc) / of.value };
+}
+
 /** A laser line as used for Raman shifts. */
 export interface LaserLine {
   vacuumNm: number;
@@ -85,4 +104,18 @@ export function scatteredWavelengthNm(laserVacuumNm: number, shiftPerCm: number)
   if (!(shiftPerCm < laser))
     throw new RangeError(`A shift must be smaller than the laser's ${laser} cm-1; got ${shiftPerCm}`);
   return 1e7 / (laser - shiftPerCm);
+}
+
+/**
+ * The same with its standard uncertainty, nm: d lambda / d laser = (lambda / laser)², d lambda / d shift = lambda² / 1e7 nm per cm-1.
+ *
+ * @throws {RangeError} shift at or beyond the laser's wavenumber, a negative uncertainty
+ */
+export function scatteredWavelength(laser: LaserLine, shiftPerCm: number, shiftUncPerCm: number): Quantity {
+  if (!(laser.vacuumUncNm >= 0 && shiftUncPerCm >= 0)) throw new RangeError("An uncertainty cannot be negative");
+  const value = scatteredWavelengthNm(laser.vacuumNm, shiftPerCm);
+  const ratio = value / laser.vacuumNm;
+  const fromLaser = ratio * ratio * laser.vacuumUncNm;
+  const fromShift = ((value * value) / 1e7) * shiftUncPerCm;
+  return { value, unc: Math.sqrt(fromLaser * fromLaser + fromShift * fromShift) };
 }
