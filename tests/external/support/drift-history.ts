@@ -170,3 +170,17 @@ export function simulateHistory(
     rateNmPerYear: kind === "drift" ? yearly * checkSdNm : kind === "scale" ? yearly * scaleCheckSd : 0,
   };
 }
+
+/** A simulated history as the core takes it. */
+export function toDriftChecks(history: SimulatedHistory) {
+  return history.checks.map(({ day, temperatureC, source, lines }) => ({
+    day,
+    temperatureC,
+    source,
+    lines: lines.map(({ wavelengthNm, measuredNm, uncNm }) => ({
+      wavelengthNm,
+      errorNm: measuredNm - wavelengthNm,
+      ownUncNm: uncNm,
+    })),
+  }));
+}

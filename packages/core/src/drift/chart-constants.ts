@@ -26,6 +26,8 @@ export interface ChartConstants {
 
 /** Mean range of two normal values in units of their standard deviation, 2/sqrt(pi). */
 export const MOVING_RANGE_D2 = 1.1283791670955126;
+/** D4 of two values, 1 + 3 sqrt(pi/2 - 1). */
+export const MOVING_RANGE_D4 = 3.2665319192886013;
 
 const step = 1 / 32;
 const reach = 9;

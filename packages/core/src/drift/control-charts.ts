@@ -11,7 +11,7 @@
  * Limits that know how few checks there are, unequal uncertainties and unequal spacing: default-rules.ts. Any unit.
  */
 import { pow } from "../numeric/elementary.ts";
-import { chartConstants, MOVING_RANGE_D2 } from "./chart-constants.ts";
+import { MOVING_RANGE_D2, MOVING_RANGE_D4 } from "./chart-constants.ts";
 
 export interface IndividualsChart {
   centre: number;
@@ -44,7 +44,7 @@ export function individualsChart(values: readonly number[], d2 = MOVING_RANGE_D2
   const sd = meanMovingRange / d2;
   const lower = centre - 3 * sd;
   const upper = centre + 3 * sd;
-  const movingRangeUpper = chartConstants(2).D4 * meanMovingRange;
+  const movingRangeUpper = MOVING_RANGE_D4 * meanMovingRange;
   return {
     centre,
     lower,
