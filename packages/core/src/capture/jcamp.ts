@@ -3,26 +3,21 @@
  *
  * Read are one-dimensional optical spectra: XYDATA in the form (X++(Y..Y)), plain or packed (PAC, SQZ, DIF, DUP), and XYPOINTS or XYDATA
  * in the form (XY..XY). X of sample i is FIRSTX + i (LASTX - FIRSTX) / (NPOINTS - 1), as the standard means it; the X that begins each
- * line is a check. Packed tables are unpacked by `jcampconverter`; it gets whole numbers only, because it reads an exponent as a packed
- * digit and sums decimals with powers whose last digit the engine decides. Numbers written out are read by the capture's own scanner.
+ * line is a check. Packed tables go through `jcamp-packed.ts`; numbers written out are read by the capture's own scanner.
  * A file whose points are not as many as it says is refused: its positions could not be trusted.
  */
-import { convert } from "jcampconverter";
 import type { ReadCapture, ReadOptions, Refusal } from "../analysis/types.ts";
 import { chooseColumns, type ColumnChoice } from "./choose-columns.ts";
 import type { TextEncoding } from "./decode.ts";
 import { finishCapture } from "./finish-capture.ts";
 import { readJcampBlocks, type JcampBlock, type JcampTable } from "./jcamp-blocks.ts";
-import { isBlankLine, type LineIndex } from "./line-index.ts";
+import { isPackedSign, lastDigitOf, notANumber, unpack, withoutComment, type Ordinates } from "./jcamp-packed.ts";
+import type { LineIndex } from "./line-index.ts";
 import { refuse } from "./refusal.ts";
 import { scanNumber } from "./scan-row.ts";
 
 /** Longest line of a data table: the standard allows 80 characters. */
 const mostLineBytes = 4096;
-/** Most points that packed counts (DUP) may unfold to. */
-const mostPoints = 4_000_000;
-/** Longest run of digits in a packed table: 15 are exact. */
-const mostDigits = 15;
 const sampledPoints = 400;
 /** A line's X may differ from the expected one by this share of a step (it is often rounded), or by its own last digit. */
 const xCheckShare = 0.6;
@@ -58,18 +53,17 @@ export function readJcamp(file: JcampFile): ReadCapture {
 
   const decoded = table.isPairs ? readPairs(file, block, table) : readOrdinates(file, block, table);
   if ("outcome" in decoded) return decoded;
-  const { axis, counts, damaged, lineOf } = decoded;
+  const { axis, counts, damaged, missing, lineOf } = decoded;
   const columns = [`X (${block.xUnits === "" ? "no unit" : block.xUnits})`, block.yUnits === "" ? "Y" : block.yUnits];
   const chosen = chooseAxis(columns, axis, counts, block, options);
   if ("problem" in chosen) return refuse("unsupported-content", chosen.problem, table.line);
   remarks.push(...chosen.remarks);
   if (damaged.length > 0) {
+    const named = damaged.map(({ line }) => `line ${line}`).join(", ");
     remarks.push(
-      `Check values of the packed table do not agree: ${damaged.map(({ line }) => `line ${line}`).join(", ")}.`,
+      `Check values of the packed table do not agree (${named}); the points of these lines and of the lines before them were left out.`,
     );
   }
-  let missing = 0;
-  for (let i = 0; i < counts.length; i += 1) if (counts[i] !== counts[i]) missing += 1;
   return finishCapture({
     name: file.name,
     axis,
@@ -185,6 +179,8 @@ interface DecodedTable {
   axis: Float64Array;
   counts: Float64Array;
   damaged: { line: number; reason: string }[];
+  /** Ordinates that the file leaves open (`?`). */
+  missing: number;
   lineOf: (row: number) => number;
 }
 
@@ -208,28 +204,15 @@ function forEachToken(bytes: Uint8Array, from: number, to: number, take: (from: 
   }
 }
 
-/** End of a line without its comment. */
-function withoutComment(bytes: Uint8Array, from: number, to: number): number {
-  for (let i = from; i + 1 < to; i += 1) if (bytes[i] === 36 && bytes[i + 1] === 36) return i;
-  return to;
-}
-
 function isUnknown(bytes: Uint8Array, from: number, to: number): boolean {
   return to === from + 1 && bytes[from] === 63;
-}
-
-function notANumber(line: number): Refusal {
-  return refuse(
-    "damaged-data",
-    `Line ${line + 1} of the data table holds something that is no number. Export the file again.`,
-    line + 1,
-  );
 }
 
 function readPairs({ bytes, lines }: JcampFile, block: JcampBlock, table: JcampTable): DecodedTable | Refusal {
   const axis: number[] = [];
   const counts: number[] = [];
   const lineNumbers: number[] = [];
+  let missing = 0;
   for (let line = table.firstLine; line < table.endLine; line += 1) {
     const from = lines.starts[line]!;
     const to = withoutComment(bytes, from, lines.ends[line]!);
@@ -241,6 +224,7 @@ function readPairs({ bytes, lines }: JcampFile, block: JcampBlock, table: JcampT
       if (isX) axis.push(value * block.xFactor);
       else {
         counts.push(value * block.yFactor);
+        if (value !== value) missing += 1;
         lineNumbers.push(line + 1);
       }
       isX = !isX;
@@ -255,6 +239,7 @@ function readPairs({ bytes, lines }: JcampFile, block: JcampBlock, table: JcampT
     axis: Float64Array.from(axis),
     counts: Float64Array.from(counts),
     damaged: [],
+    missing,
     lineOf: (row) => lineNumbers[row] ?? table.line,
   };
 }
@@ -281,10 +266,10 @@ function readOrdinates(file: JcampFile, block: JcampBlock, table: JcampTable): D
         line + 1,
       );
     }
-    for (let i = from; i < to && !isPacked; i += 1) isPacked = isPackedSign(bytes, i, to);
+    for (let i = from; i < to && !isPacked; i += 1) isPacked = isPackedSign(bytes, i);
     if (isPacked) break;
   }
-  const read = isPacked ? unpack(file, table) : readWrittenOut(file, table);
+  const read = isPacked ? unpack(bytes, lines, table) : readWrittenOut(file, table);
   if ("outcome" in read) return read;
   const { ordinates, lineNumbers, firstX, damaged } = read;
   const n = ordinates.length;
@@ -310,28 +295,8 @@ function readOrdinates(file: JcampFile, block: JcampBlock, table: JcampTable): D
     );
   }
   const counts = Float64Array.from(ordinates, (value) => value * block.yFactor);
-  return { axis, counts, damaged, lineOf: (row) => lineNumbers[row] ?? table.line };
-}
-
-/** A letter or sign of the packed forms; an exponent's E is none. */
-function isPackedSign(bytes: Uint8Array, i: number, to: number): boolean {
-  const code = bytes[i]!;
-  const isLetter = (code >= 64 && code <= 90) || (code >= 97 && code <= 115) || code === 37;
-  if (!isLetter) return false;
-  if ((code | 32) !== 101) return true;
-  const before = bytes[i - 1] ?? 0;
-  const after = i + 1 < to ? bytes[i + 1]! : 0;
-  return !((before === 46 || (before >= 48 && before <= 57)) && (after === 43 || after === 45));
-}
-
-interface Ordinates {
-  ordinates: ArrayLike<number> & Iterable<number>;
-  /** 1-based line of each ordinate; empty where it is not known. */
-  lineNumbers: number[];
-  firstX: number;
-  /** Where a line's X is known to belong to an ordinate. */
-  starts: { line: number; row: number; x: number; lastDigit: number }[];
-  damaged: { line: number; reason: string }[];
+  const missing = isPacked ? 0 : counts.reduce((sum, value) => sum + (value !== value ? 1 : 0), 0);
+  return { axis, counts, damaged, missing, lineOf: (row) => lineNumbers[row] ?? table.line };
 }
 
 function readWrittenOut({ bytes, lines }: JcampFile, table: JcampTable): Ordinates | Refusal {
@@ -359,18 +324,6 @@ function readWrittenOut({ bytes, lines }: JcampFile, table: JcampTable): Ordinat
   return { ordinates, lineNumbers, firstX: starts[0]?.x ?? NaN, starts, damaged: [] };
 }
 
-/** Worth of a number's last written digit. */
-function lastDigitOf(bytes: Uint8Array, from: number, to: number): number {
-  let digit = 1;
-  let seenPoint = false;
-  for (let i = from; i < to; i += 1) {
-    if (bytes[i] === 46) seenPoint = true;
-    else if ((bytes[i]! | 32) === 101) return Number.POSITIVE_INFINITY;
-    else if (seenPoint) digit /= 10;
-  }
-  return digit;
-}
-
 function firstLineOff(
   { starts }: Ordinates,
   axis: Float64Array,
@@ -384,105 +337,4 @@ function firstLineOff(
     if (!(Math.abs(x * xFactor - expected) <= allowed)) return { line, x: x * xFactor, expected };
   }
   return null;
-}
-
-function unpack({ bytes, lines }: JcampFile, table: JcampTable): Ordinates | Refusal {
-  let text = "##TITLE=\n##JCAMP-DX=4.24\n##DATA TYPE=\n##FIRSTX=0\n##LASTX=1\n##NPOINTS=2\n##XYDATA=(X++(Y..Y))\n";
-  const fileLines: number[] = [];
-  let firstX = NaN;
-  let unfolded = 0;
-  for (let line = table.firstLine; line < table.endLine; line += 1) {
-    const from = lines.starts[line]!;
-    const to = withoutComment(bytes, from, lines.ends[line]!);
-    if (isBlankLine(bytes, from, to)) continue;
-    const checked = checkPackedLine(bytes, from, to, line);
-    if ("outcome" in checked) return checked;
-    unfolded += checked.unfolded;
-    if (unfolded > mostPoints) {
-      return refuse(
-        "damaged-data",
-        `The packed table unfolds to more than ${mostPoints} points at line ${line + 1}.`,
-        line + 1,
-      );
-    }
-    if (fileLines.length === 0) firstX = scanNumber(bytes, checked.xFrom, checked.xTo, ".", "none");
-    fileLines.push(line + 1);
-    // The line's own X is only a check and may hold decimals: a whole number stands for it.
-    text += `0${checked.rest}\n`;
-  }
-  const damaged: { line: number; reason: string }[] = [];
-  const hear = (message: unknown): void => {
-    const match = /^Data line (\d+): After a duplicate/.exec(String(message));
-    const line = match === null ? undefined : fileLines[Number(match[1])];
-    if (line !== undefined && damaged.length < 20) {
-      damaged.push({ line, reason: "its check value does not repeat the last value of the line before" });
-    }
-  };
-  const quiet = (): void => undefined;
-  const logger = { trace: hear, debug: quiet, info: quiet, warn: quiet, error: quiet, fatal: quiet };
-  const { flatten } = convert(text, { logger: logger as never });
-  const ordinates = flatten[0]?.spectra[0]?.data["y"];
-  if (ordinates === undefined || ordinates.length === 0) {
-    return refuse("no-numbers", "The data table of this JCAMP-DX file holds no point.", table.line);
-  }
-  return { ordinates, lineNumbers: [], firstX, starts: [], damaged };
-}
-
-/**
- * A line of a packed table, checked so that unpacking is bounded and exact.
- *
- * @returns bounds of its X, the rest of its text, and at most how many points it unfolds to
- */
-function checkPackedLine(
-  bytes: Uint8Array,
-  from: number,
-  to: number,
-  line: number,
-): { xFrom: number; xTo: number; rest: string; unfolded: number } | Refusal {
-  let i = from;
-  while (i < to && (bytes[i] === 32 || bytes[i] === 9)) i += 1;
-  const xFrom = i;
-  while (i < to && isNumberByte(bytes[i]!)) {
-    if (i > xFrom && (bytes[i] === 43 || bytes[i] === 45)) break;
-    i += 1;
-  }
-  const xTo = i;
-  if (xTo === xFrom || xTo - xFrom > 2 * mostDigits) return notANumber(line);
-  let rest = "";
-  let digits = 0;
-  let unfolded = 0;
-  let times = -1;
-  for (; i < to; i += 1) {
-    const code = bytes[i]!;
-    const isDigit = code >= 48 && code <= 57;
-    if (isDigit) {
-      digits += 1;
-      if (digits > mostDigits) return notANumber(line);
-      if (times >= 0) times = times * 10 + (code - 48);
-    } else {
-      if (times > 0) unfolded += times;
-      times = -1;
-      digits = 0;
-      if (code === 46) {
-        return refuse(
-          "damaged-data",
-          `Line ${line + 1} holds a decimal point within packed numbers, which are whole.`,
-          line + 1,
-        );
-      }
-      const isLetter = (code >= 64 && code <= 90) || (code >= 97 && code <= 115) || code === 37;
-      const isSign = code === 43 || code === 45 || code === 44 || code === 32 || code === 9;
-      if (!isLetter && !isSign) return notANumber(line);
-      if (isLetter) unfolded += 1;
-      if (code >= 83 && code <= 90) times = code - 82;
-      else if (code === 115) times = 9;
-    }
-    rest += String.fromCharCode(code);
-  }
-  if (times > 0) unfolded += times;
-  return { xFrom, xTo, rest, unfolded };
-}
-
-function isNumberByte(code: number): boolean {
-  return (code >= 48 && code <= 57) || code === 46 || code === 43 || code === 45;
 }

@@ -116,15 +116,18 @@ function headingCells(
       if (areHeadings(texts, columns === 1 && !marked)) return texts;
     }
   }
-  const words = splitWords(sliceText(bytes, from, to, encoding));
-  return words.length === columns && areHeadings(words, columns === 1) ? words : null;
+  const text = sliceText(bytes, from, Math.min(to, from + mostLineBytes), encoding).trim();
+  for (const words of [text.split(/[ \t]{2,}/), splitWords(text)]) {
+    if (words.length === columns && areHeadings(words, columns === 1)) return words;
+  }
+  return null;
 }
 
 /** Words parted by blanks, a bracketed unit kept with its word: `Wavelength (nm) Intensity (counts)`. */
 function splitWords(text: string): string[] {
   const cells: string[] = [];
   let open = false;
-  for (const word of text.slice(0, mostLineBytes).split(/[ \t]+/)) {
+  for (const word of text.split(/[ \t]+/)) {
     if (word === "") continue;
     if (cells.length > 0 && (open || /^[([]/.test(word))) cells[cells.length - 1] += ` ${word}`;
     else cells.push(word);

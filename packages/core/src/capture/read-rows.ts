@@ -246,7 +246,7 @@ function isKeyValue(text: string): boolean {
   return /^[^:=]{1,80}[:=]/.test(text);
 }
 
-/** The headings again, a comment, a `key: value`, or words in every column. */
+/** The headings again, a `key: value`, or words in every column. */
 function looksLikeHeader(
   bytes: Uint8Array,
   encoding: TextEncoding,
@@ -258,7 +258,7 @@ function looksLikeHeader(
   const text = textOf(bytes, encoding, lines, line);
   if (text === headingText) return true;
   if (!/\p{L}/u.test(text)) return false;
-  if (/^[#%[]/.test(text) || isKeyValue(text)) return true;
+  if (isKeyValue(text)) return true;
   const row = makeRowReader();
   const cells = splitRow(bytes, lines.starts[line]!, lines.ends[line]!, block, row);
   if (cells !== block.columns || cells === 1) return false;

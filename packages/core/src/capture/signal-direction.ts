@@ -35,9 +35,9 @@ export function pointsDown(counts: Float64Array): boolean {
   const level = sorted[smooth.length >> 1]!;
   const down = level - bottom;
   if (down < leastRatio * (top - level)) return false;
-  const quarter = sorted[smooth.length >> 2]!;
-  const threeQuarters = sorted[(3 * smooth.length) >> 2]!;
-  if (down < leastDepth * ((threeQuarters - quarter) / 1.349)) return false;
+  // Lines that point down leave the upper half of the samples alone: its quartile is 0.674 standard deviations of the noise above the median.
+  const quartile = sorted[(3 * smooth.length) >> 2]!;
+  if (down < (leastDepth * (quartile - level)) / 0.674) return false;
   return deepPartsLieWithin(smooth, level - down / 2);
 }
 
