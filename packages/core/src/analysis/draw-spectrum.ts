@@ -23,7 +23,6 @@ export function drawSpectrum(
   const toX = (position: number): number =>
     axis !== null ? axis.indicatedNm(position) : newAxis !== null ? axisNm(newAxis, position) : position;
   const inNm = axis !== null || newAxis !== null;
-  const thinned = thin(spectrum.counts);
   const fits: SpectrumDrawing["fits"] = [];
   const residuals: SpectrumDrawing["residuals"] = [];
   found.lines.forEach((line, index) => {
@@ -35,30 +34,42 @@ export function drawSpectrum(
     for (let k = 0; k < window.samples.length; k += 1) {
       const sample = window.samples[k]!;
       const position = spectrum.positions[sample]!;
-      const distance = Math.abs(position - line.position);
-      // Samples of a shared window belong to the nearest of its lines.
-      if (neighbours.some((other) => Math.abs(position - other.position) < distance)) continue;
+      if (neighbours.length > 0 && isNearerToAnother(position, line.position, neighbours)) continue;
       const x = toX(position);
+      const fitted = window.fittedCounts[k]!;
       fit.x.push(x);
-      fit.counts.push(window.fittedCounts[k]!);
+      fit.counts.push(fitted);
       fit.baseline.push(window.baselineCounts[k]!);
-      residuals.push({
-        x,
-        ratio: (spectrum.counts[sample]! - window.fittedCounts[k]!) / window.countsUnc[k]!,
-        line: index,
-      });
+      residuals.push({ x, ratio: (spectrum.counts[sample]! - fitted) / window.countsUnc[k]!, line: index });
     }
   });
+  const thinned = thin(spectrum.counts);
+  const x = new Array<number>(thinned.length);
+  const counts = new Array<number>(thinned.length);
+  const baseline = new Array<number>(thinned.length);
+  for (let k = 0; k < thinned.length; k += 1) {
+    const sample = thinned[k]!;
+    x[k] = toX(spectrum.positions[sample]!);
+    counts[k] = spectrum.counts[sample]!;
+    baseline[k] = found.baseline[sample]!;
+  }
   return {
-    x: thinned.map((i) => toX(spectrum.positions[i]!)),
-    counts: thinned.map((i) => spectrum.counts[i]!),
-    baseline: thinned.map((i) => found.baseline[i]!),
+    x,
+    counts,
+    baseline,
     axisLabel: inNm ? "Wavelength" : spectrum.axisKind === "step" ? "Drive step" : "Pixel",
     axisUnit: inNm ? "nm" : spectrum.axisUnit,
     ceilingCounts: found.ceilingCounts,
     fits,
     residuals,
   };
+}
+
+/** Samples of a shared window belong to the nearest of its lines. */
+function isNearerToAnother(position: number, centre: number, others: DrawnLines["lines"]): boolean {
+  const distance = Math.abs(position - centre);
+  for (const other of others) if (Math.abs(position - other.position) < distance) return true;
+  return false;
 }
 
 /** Indices of the samples to draw, ascending; gaps are left out. */

@@ -50,7 +50,7 @@ function blendWavelengths(name: LineName): number[] {
 
 /** A line that was found and not named: what is filled in later is null. */
 function unnamedResult(line: FittedLine, axis: IndicatingAxis | null): LineResult {
-  return {
+  const result: LineResult = {
     position: line.position,
     positionUnc: line.positionUnc,
     fwhm: line.fwhm,
@@ -61,11 +61,6 @@ function unnamedResult(line: FittedLine, axis: IndicatingAxis | null): LineResul
     reducedChiSquare: line.reducedChiSquare,
     degreesOfFreedom: line.degreesOfFreedom,
     flags: line.flags.slice(),
-    ...(line.shape === undefined ? {} : { shape: line.shape }),
-    ...(line.shapeParameters === undefined ? {} : { shapeParameters: line.shapeParameters }),
-    ...(line.covariance === undefined ? {} : { covariance: line.covariance }),
-    ...(line.takenFrom === undefined ? {} : { takenFrom: line.takenFrom }),
-    ...(line.backlash === undefined ? {} : { backlash: line.backlash }),
     wavelengthNm: null,
     medium: "air",
     element: null,
@@ -97,6 +92,13 @@ function unnamedResult(line: FittedLine, axis: IndicatingAxis | null): LineResul
     usedInAxis: false,
     residualNm: null,
   };
+  // One by one: spreading them into the literal makes a slow object of every line.
+  if (line.shape !== undefined) result.shape = line.shape;
+  if (line.shapeParameters !== undefined) result.shapeParameters = line.shapeParameters;
+  if (line.covariance !== undefined) result.covariance = line.covariance;
+  if (line.takenFrom !== undefined) result.takenFrom = line.takenFrom;
+  if (line.backlash !== undefined) result.backlash = line.backlash;
+  return result;
 }
 
 /** Judge one line. */

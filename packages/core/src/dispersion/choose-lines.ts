@@ -4,7 +4,7 @@
  */
 import { studentQuantile } from "../numeric/distributions.ts";
 import type { DispersionPoint } from "./fit-dispersion.ts";
-import type { ScatterFit } from "./scatter-fit.ts";
+import { comparedScatter, type ScatterFit } from "./scatter-fit.ts";
 
 /** Chance that any good line at all is rejected. */
 const rejectionLevel = 0.01;
@@ -41,7 +41,7 @@ export function setVagueAside(
 ): Map<number, string> {
   const vague = new Map<number, string>();
   if (points.length <= fewest) return vague;
-  fit.solve(used, degree);
+  fit.solve(used, degree, comparedScatter);
   const unc = agreedUncNm(points, fit);
   const usualUnc = medianOf(Array.from(unc));
   const brightness = points.map((point) => point.signalToNoise ?? Number.POSITIVE_INFINITY);
@@ -87,7 +87,7 @@ const medianOf = (values: number[]): number => values.sort((a, b) => a - b)[(val
 export function rejectOutliers(fit: ScatterFit, used: boolean[], degree: number, fwhm: number, nmPerPx: number): void {
   const most = Math.floor(rejectableShare * fit.pointCount);
   for (let n = 0; ; n++) {
-    fit.solve(used, degree);
+    fit.solve(used, degree, comparedScatter);
     fit.fillLeverages();
     const freedom = fit.degreesOfFreedom;
     if (n === most || freedom < 3) return;

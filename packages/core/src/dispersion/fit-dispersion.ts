@@ -24,7 +24,7 @@ import { coverageFactorFor } from "../uncertainty/budget.ts";
 import { isMonotonic } from "./axis.ts";
 import { rejectOutliers, setVagueAside } from "./choose-lines.ts";
 import { describeAxis } from "./describe-axis.ts";
-import { ScatterFit } from "./scatter-fit.ts";
+import { reportedScatter, ScatterFit } from "./scatter-fit.ts";
 
 /** Highest degree a grating instrument's axis is given (common practice, no source). */
 export const highestDegree = 5;
@@ -156,7 +156,7 @@ function stateUncertainties(
   ownUncNm: Float64Array,
   degree: number,
 ): number {
-  fit.solve(ownUncNm, degree, true);
+  fit.solve(ownUncNm, degree, null);
   const coefficients = fit.coefficients.slice(0, degree + 1);
   const derivative = differentiateChebyshev(coefficients);
   const perUnit = 2 / (fit.last - fit.first);
@@ -234,10 +234,10 @@ function finish(
 
 /** Solves with the stated uncertainties, and with the scatter beyond them only where it is more than chance. */
 function solveSparingly(fit: ScatterFit, used: Uint8Array, degree: number): Float64Array {
-  fit.solve(used, degree, true);
+  fit.solve(used, degree, null);
   const freedom = fit.degreesOfFreedom;
   if (freedom > 0 && fit.statedChiSquare > freedom && chiSquareUpperTail(fit.statedChiSquare, freedom) < scatterLevel) {
-    fit.solve(used, degree);
+    fit.solve(used, degree, reportedScatter);
   }
   return fit.coefficients.slice(0, degree + 1);
 }

@@ -4,14 +4,16 @@
  * Model       y_i = sum over j of c_j T_j(t_i) + e_i, e_i of variance u_i² + tau²; t runs from -1 to 1 over all points' positions
  * Solution    Householder reflections on the weighted Chebyshev columns (G. H. Golub, Numer. Math. 7 (1965) 206); no normal equations
  * tau²        the value at which chi-squared equals its degrees of freedom, 0 where it is below them already (R. C. Paule,
- *             J. Mandel, J. Res. NBS 87 (1982) 377; from memory). Newton's step on a function that falls and is convex
+ *             J. Mandel, J. Res. NBS 87 (1982) 377; from memory). Newton's step on 1/chi-squared, which is straight where all own
+ *             uncertainties are the same and concave else: it comes from below in two or three steps
  * Built for   many fits through subsets of the same few dozen points: every buffer is made once, for the largest fit
  */
 import { chebyshevArgument, fillChebyshevBasis } from "../numeric/chebyshev.ts";
 
 const mostNewtonSteps = 30;
-/** How closely the reduced chi-squared is brought to 1. */
-const scatterTolerance = 1e-4;
+/** Tolerances of the reduced chi-squared: for an axis that is reported, and for telling lines and degrees apart. */
+export const reportedScatter = 1e-4;
+export const comparedScatter = 0.01;
 
 export class ScatterFit {
   /** Positions between which t runs from -1 to 1. */
@@ -85,9 +87,9 @@ export class ScatterFit {
   /**
    * Fit the points marked as used; more of them than coefficients.
    *
-   * @param isScatterFree  true: the stated uncertainties are taken as they are, tau = 0
+   * @param tolerance  how closely the reduced chi-squared is brought to 1; null: the stated uncertainties are taken as they are, tau = 0
    */
-  solve(used: ArrayLike<boolean | number>, degree: number, isScatterFree = false): void {
+  solve(used: ArrayLike<boolean | number>, degree: number, tolerance: number | null): void {
     let n = 0;
     for (let i = 0; i < this.pointCount; i++) {
       if (!used[i]) continue;
@@ -107,18 +109,18 @@ export class ScatterFit {
       const ratio = (residuals[k] as number) / (unc[k] as number);
       this.statedChiSquare += ratio * ratio;
     }
-    if (isScatterFree || freedom <= 0) return;
+    if (tolerance === null || freedom <= 0) return;
     for (let step = 0; step < mostNewtonSteps; step++) {
-      let surplus = -freedom;
+      let chiSquare = 0;
       let slope = 0;
       for (let k = 0; k < n; k++) {
         const weight = 1 / ((unc[k] as number) * (unc[k] as number));
         const part = weight * (residuals[k] as number) * (residuals[k] as number);
-        surplus += part;
+        chiSquare += part;
         slope += part * weight;
       }
-      if (surplus <= freedom * scatterTolerance) break;
-      this.excessSquare += surplus / slope;
+      if (chiSquare <= freedom * (1 + tolerance)) break;
+      this.excessSquare += ((chiSquare / freedom - 1) * chiSquare) / slope;
       for (let k = 0; k < n; k++) {
         const own = this.own[this.rows[k] as number] as number;
         unc[k] = Math.sqrt(own * own + this.excessSquare);

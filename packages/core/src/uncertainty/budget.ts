@@ -40,7 +40,15 @@ export function combineContributions(contributions: readonly Contribution[]): Co
   const coverageFactor = coverageFactorFor(effective);
   const uncNm = Math.sqrt(variance);
   const budget = kept
-    .map((entry) => ({ ...entry, shareOfVariance: variance > 0 ? (entry.uncNm * entry.uncNm) / variance : 0 }))
+    .map((entry): BudgetEntry => ({
+      contribution: entry.contribution,
+      uncNm: entry.uncNm,
+      degreesOfFreedom: entry.degreesOfFreedom,
+      sensitivity: entry.sensitivity,
+      shareOfVariance: (entry.uncNm * entry.uncNm) / variance,
+      assumed: entry.assumed,
+      note: entry.note,
+    }))
     .sort((a, b) => b.shareOfVariance - a.shareOfVariance);
   return { uncNm, expandedUncNm: coverageFactor * uncNm, coverageFactor, effectiveDegreesOfFreedom: effective, budget };
 }
