@@ -11,9 +11,11 @@ import {
   ordinateNamed,
   ordinateOf,
   ratioOf,
+  turnOrdinate,
   type Ordinate,
   type OrdinateKind,
 } from "../bands/ordinate.ts";
+import { toVacuumWavelengths } from "./wavenumber-axis.ts";
 import { meanOf, readCaptures, sameAxis, type ReadFile } from "./read-captures.ts";
 import type { AnalysisSetup, CaptureInput, FileFacts, ReadOptions, Refusal, Spectrum } from "./types.ts";
 
@@ -140,6 +142,16 @@ export function absorptionOf(spectrum: Spectrum): AbsorptionCaptures | Refused {
   const ordinate = ordinateOf(spectrum.counts, kind);
   const remarks = [`The numbers look like ${namesOf[kind]}, and were taken so.`];
   return { outcome: "read", spectrum, ordinate, repeats: [ordinate], files: [], remarks };
+}
+
+/** Captures on an axis of wavenumbers as vacuum wavelengths, which run the other way. */
+export function toVacuumAbsorption(captures: AbsorptionCaptures): AbsorptionCaptures {
+  return {
+    ...captures,
+    spectrum: toVacuumWavelengths(captures.spectrum, null),
+    ordinate: turnOrdinate(captures.ordinate),
+    repeats: captures.repeats.map(turnOrdinate),
+  };
 }
 
 const namesOf: Record<OrdinateKind, string> = {

@@ -9,7 +9,7 @@
 import { findTops, type Top } from "../bands/find-bands.ts";
 import { matchCertificate, type BandMatch } from "../bands/match-certificate.ts";
 import { measureBands, type BandProblem, type MeasuredBand } from "../bands/measure-bands.ts";
-import type { Ordinate } from "../bands/ordinate.ts";
+import { turnOrdinate, type Ordinate } from "../bands/ordinate.ts";
 import type { IdentifiedLines, LineName } from "../identify/identify-lines.ts";
 import { smoothedAbove, type FittedWindow, type FoundLines } from "../spectrum/find-lines.ts";
 import { median } from "../spectrum/median.ts";
@@ -61,7 +61,7 @@ export function analyseBands(captures: AbsorptionCaptures, setup: AnalysisSetup,
   const certificate = setup.bandCertificate!;
   const axis = indicatingAxisOf(spectrum, setup)!;
   const view = ascendingView(spectrum, axis);
-  const turned = turn(ordinate, view);
+  const turned = view.isTurned ? turnOrdinate(ordinate) : ordinate;
   const bandwidthNm = setup.spectralBandwidthNm ?? null;
   const { tops, noise } = findTops(view.wavelengthsNm, turned.values, bandwidthNm);
   const n = view.wavelengthsNm.length;
@@ -215,17 +215,6 @@ function ascendingView(spectrum: Spectrum, axis: IndicatingAxis): AscendingView 
   };
 }
 
-function turn(ordinate: Ordinate, view: AscendingView): Ordinate {
-  if (!view.isTurned) return ordinate;
-  const { kind, values, transmittance, relativeUnc } = ordinate;
-  return {
-    kind,
-    values: values.slice().reverse(),
-    transmittance: transmittance.slice().reverse(),
-    relativeUnc: relativeUnc === null ? null : relativeUnc.slice().reverse(),
-  };
-}
-
 /** Units of the recorded ordinate per unit of `Ordinate.values`. */
 function scaleOf(ordinate: Ordinate): number {
   return ordinate.kind === "percent-transmittance" ? 100 : 1;
@@ -251,7 +240,7 @@ function repeatedPositions(
 ): number[][] {
   if (captures.repeats.length < 2) return wanted.map(() => []);
   const each = captures.repeats.map(
-    (one) => measureBands(view.wavelengthsNm, turn(one, view), wanted, tops, bandwidthNm).bands,
+    (one) => measureBands(view.wavelengthsNm, view.isTurned ? turnOrdinate(one) : one, wanted, tops, bandwidthNm).bands,
   );
   return wanted.map((_, k) =>
     each.flatMap((bands) => {

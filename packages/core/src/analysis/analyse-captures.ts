@@ -10,7 +10,7 @@ import { identifyLines, type IdentifiedLines, type IdentifyInput } from "../iden
 import { builtInLineList } from "../linelist/built-in.ts";
 import { smoothedAbove, type FoundLines } from "../spectrum/find-lines.ts";
 import { coreVersion } from "../version.ts";
-import { absorptionOf, combineAbsorption } from "./absorption-captures.ts";
+import { absorptionOf, combineAbsorption, toVacuumAbsorption } from "./absorption-captures.ts";
 import { analyseBands, bandSettingsProblem } from "./analyse-bands.ts";
 import { combineCaptures, mapSpectra, type CombinedCaptures } from "./combine-captures.ts";
 import { drawSpectrum } from "./draw-spectrum.ts";
@@ -92,9 +92,20 @@ function analyseAbsorption(
   resources: AnalysisResources,
 ): AnalysedCheck {
   if (combined.outcome === "refused") return refused(combined.refusal, combined.files, setup, null);
-  const problem = bandSettingsProblem(combined.spectrum, setup);
-  if (problem !== null) return refused(refuse("bad-settings", problem), combined.files, setup, combined.spectrum);
-  return analyseBands(combined, setup, resources.withDrawing !== false);
+  const refuseWith = (problem: string): AnalysedCheck =>
+    refused(refuse("bad-settings", problem), combined.files, setup, combined.spectrum);
+  const withDrawing = resources.withDrawing !== false;
+  if (combined.spectrum.axisKind !== "wavenumber") {
+    const problem = bandSettingsProblem(combined.spectrum, setup);
+    return problem === null ? analyseBands(combined, setup, withDrawing) : refuseWith(problem);
+  }
+  const inVacuum = toVacuumAbsorption(combined);
+  const asked: AnalysisSetup = { ...setup, axisMeaning: "vacuum" };
+  const problem = wavenumberProblem(combined.spectrum, null) ?? bandSettingsProblem(inVacuum.spectrum, asked);
+  if (problem !== null) return refuseWith(problem);
+  const check = analyseBands(inVacuum, asked, withDrawing);
+  check.analysis.setup = setup;
+  return toWavenumbers(check, null);
 }
 
 /** Wavenumbers are analysed in vacuum wavelengths and come back as wavenumbers. */

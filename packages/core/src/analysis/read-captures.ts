@@ -20,7 +20,8 @@ export function readCaptures(captures: readonly CaptureInput[], reading: ReadOpt
       const reason = captures.length > 1 ? `${input.name}: ${result.reason}` : result.reason;
       return { outcome: "refused", refusal: { ...result, reason }, files: read.map(({ facts }) => facts) };
     }
-    read.push({ input, spectrum: result.spectrum, facts: { ...result.facts, sha256: input.sha256 } });
+    const direction = result.facts.last < result.facts.first ? "down" : "up";
+    read.push({ input, spectrum: result.spectrum, facts: { ...result.facts, sha256: input.sha256, direction } });
   }
   return { outcome: "read", read };
 }

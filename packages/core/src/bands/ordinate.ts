@@ -68,6 +68,16 @@ export function ordinateOf(counts: Float64Array, kind: OrdinateKind): Ordinate {
   };
 }
 
+/** The same spectrum read from its other end. */
+export function turnOrdinate({ kind, values, transmittance, relativeUnc }: Ordinate): Ordinate {
+  return {
+    kind,
+    values: values.slice().reverse(),
+    transmittance: transmittance.slice().reverse(),
+    relativeUnc: relativeUnc === null ? null : relativeUnc.slice().reverse(),
+  };
+}
+
 /** One beam: its counts, averaged over its captures. */
 export interface Beam {
   counts: Float64Array;
