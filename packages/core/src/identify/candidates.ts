@@ -7,19 +7,33 @@
  */
 import { log } from "../numeric/elementary.ts";
 import type { IdentifyInput } from "./identify-lines.ts";
+import { mend } from "./mend.ts";
 import { type Naming, nameLines } from "./name-lines.ts";
 import { buildProblem, type Problem, usualCubic } from "./problem.ts";
 import { type ReferenceTable, referenceTable } from "./reference-table.ts";
 import { longestNm, leastSpanNm, mostSpanNm, scalesOf, shortestNm } from "./scale-tables.ts";
-import { correctedNm, type Evidence, evidenceFor, type Odds, oddsFor, strongCount } from "./score.ts";
+import { correctedNm, type Evidence, evidenceFor, lineEvidence, type Odds, oddsFor, strongCount } from "./score.ts";
 import { BestLampAxes, type LampAxis, searchTriple, triplesOf } from "./search-alone.ts";
 import { refine, searchAxes } from "./search.ts";
 
 /** Axes looked at closely. */
 const polished = 5;
+/** An axis so much less likely than the best (ln) can't overtake it, nor be its rival. */
+const outOfSight = 25;
 const agreementShare = 0.3;
+/** Of those, so many are mended first. */
+const mendedAxes = 3;
+/** Share of the lines that a sound axis explains. */
+const soundShare = 0.88;
 /** Triples of lines tried, round by round, with the lamp alone. */
-const rounds = [2, 3, 4, 6] as const;
+const rounds = [
+  { level: 0, from: 0, to: 2 },
+  { level: 0, from: 2, to: 6 },
+  { level: 1, from: 0, to: 5 },
+  { level: 1, from: 5, to: 12 },
+  { level: 2, from: 0, to: 8 },
+  { level: 2, from: 8, to: 20 },
+] as const;
 /** An answer beyond doubt ends the rounds. */
 const decisiveEvidence = 15;
 const decisiveLead = 8;
@@ -36,6 +50,8 @@ export interface Candidate extends Question {
   naming: Naming;
   evidence: Evidence;
   namedCount: number;
+  /** ln of how much better than by accident each line is explained; NaN for lines that may not name themselves. */
+  support: Float64Array;
   /** Wavelength of every line on this axis, nm. */
   places: Float64Array;
 }
@@ -76,12 +92,8 @@ export function candidatesAlone(input: IdentifyInput, elements: readonly string[
   const known = new Set<LampAxis>();
   const hypotheses: Hypothesis[] = [];
   let candidates: Candidate[] = [];
-  let next = 0;
-  for (const size of rounds) {
-    if (next >= triples.length) break;
-    for (const end = Math.min(triples.length, next + size); next < end; next++) {
-      searchTriple(problem, scales, triples[next] as (typeof triples)[number], best);
-    }
+  for (const { level, from, to } of rounds) {
+    for (const triple of triples.slice(from, to)) searchTriple(problem, scales, triple, level, best);
     for (const axis of best.axes) {
       if (known.has(axis)) continue;
       known.add(axis);
@@ -111,7 +123,12 @@ function hypothesisFrom(input: IdentifyInput, elements: readonly string[], axis:
   const correction = refine(problem, table, odds, start);
   if (correction === null) return null;
   const evidence = evidenceFor(problem, table, odds, correction);
-  return { ...question, correction, evidence, places: placesOf(problem, correction) };
+  return {
+    ...question,
+    correction,
+    evidence,
+    places: placesOf(problem, correction),
+  };
 }
 
 function placesOf(problem: Problem, correction: Float64Array): Float64Array {
@@ -125,19 +142,41 @@ function polish(hypotheses: readonly Hypothesis[]): Candidate[] {
   const found: Candidate[] = [];
   for (const hypothesis of hypotheses) {
     if (found.length === polished) break;
+    const lead = found.length === 0 ? 0 : (found[0] as Candidate).evidence.value - hypothesis.evidence.value;
+    if (lead > outOfSight) break;
     const { problem, table, odds } = hypothesis;
     // Many starts end on one axis: naming its lines once is enough.
     if (found.some((one) => isSame(one.places, hypothesis.places, agreementShare * problem.fwhmNm))) continue;
-    const naming = nameLines(problem, table, hypothesis.correction);
+    const mended = found.length < mendedAxes && !isSound(hypothesis) ? mend(hypothesis, hypothesis) : hypothesis;
+    const naming = nameLines(problem, table, mended.correction);
     if (naming === null) continue;
     const { correction } = naming.fit;
     const evidence = evidenceFor(problem, table, odds, correction);
     let namedCount = 0;
     for (const reference of naming.reference) if (reference >= 0) namedCount += 1;
     const places = placesOf(problem, correction);
-    found.push({ problem, table, odds, correction, naming, evidence, namedCount, places });
+    const support = lineEvidence(problem, table, odds, correction, evidence.standardDeviationNm);
+    found.push({
+      problem,
+      table,
+      odds,
+      correction,
+      naming,
+      evidence,
+      namedCount,
+      support,
+      places,
+    });
   }
   return found.sort((a, b) => b.evidence.value - a.evidence.value);
+}
+
+/** Whether an axis explains nearly every line: nothing to mend. */
+function isSound({ problem, table, odds, correction, evidence }: Hypothesis): boolean {
+  const support = lineEvidence(problem, table, odds, correction, evidence.standardDeviationNm);
+  let sound = 0;
+  for (const i of problem.byHeight) if ((support[i] as number) > 0) sound += 1;
+  return sound >= soundShare * problem.byHeight.length && evidence.value > 0;
 }
 
 function isSame(a: Float64Array, b: Float64Array, toleranceNm: number): boolean {
@@ -159,11 +198,15 @@ function isDecided(candidates: readonly Candidate[]): boolean {
 }
 
 /** Strong lines, and how many of them lie on a published line. */
-export function strongShare({ problem, naming }: Candidate): { explained: number; strong: number } {
+export function strongShare({ problem, naming, support }: Candidate): {
+  explained: number;
+  strong: number;
+} {
   const strong = strongCount(problem);
   let explained = 0;
   for (let rank = 0; rank < strong; rank++) {
-    explained += naming.explained[problem.byHeight[rank] as number] as number;
+    const i = problem.byHeight[rank] as number;
+    if (naming.explained[i] === 1 || (support[i] as number) > 0) explained += 1;
   }
   return { explained, strong };
 }

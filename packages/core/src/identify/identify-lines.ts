@@ -30,7 +30,7 @@ import type { Naming } from "./name-lines.ts";
 import { findOtherGases, findOtherLamp, nameOfElement, type OtherGas } from "./other-lamps.ts";
 import type { Problem } from "./problem.ts";
 import type { ReferenceTable } from "./reference-table.ts";
-import { correctedNm, endNm, lineEvidence } from "./score.ts";
+import { correctedNm, endNm } from "./score.ts";
 import { findSecondOrder } from "./second-order.ts";
 
 /** Largest chance probability of an identification. */
@@ -223,7 +223,10 @@ function accept(
       naming.reference[i] = -1;
       naming.components[i] = [];
     }
-    warnings.push({ code: gas.element === "Hg" ? "mercury-light" : "second-gas", text: gas.text });
+    warnings.push({
+      code: gas.element === "Hg" ? "mercury-light" : "second-gas",
+      text: gas.text,
+    });
   }
   const names: (LineName | null)[] = input.lines.map((_, i) => nameOf(problem, table, naming, i));
   for (const { line, reference } of findSecondOrder(input, problem, table, naming)) {
@@ -260,7 +263,11 @@ function refuse(input: IdentifyInput, chance: number, margin: number, sentence: 
       input.mode.kind === "none" ? candidatesAlone(asked, elements) : candidatesOf(ask(asked, elements, false))
     )[0];
     if (best === undefined || best.evidence.chanceProbability > largestChance) return null;
-    return { evidence: best.evidence.value, lines: best.problem.byHeight.length, ...strongShare(best) };
+    return {
+      evidence: best.evidence.value,
+      lines: best.problem.byHeight.length,
+      ...strongShare(best),
+    };
   });
   return {
     ...unidentified(input, other ?? `${sentence} Check the lamp, the range and the exposure.`),
@@ -320,9 +327,7 @@ function dropDisputed(best: Candidate, other: Candidate): void {
  * There the lines around say so: taken together they are explained no better than by accident.
  */
 function dropUnsupported(best: Candidate): void {
-  const { problem, table, odds } = best;
-  const width = best.evidence.standardDeviationNm;
-  const evidence = lineEvidence(problem, table, odds, best.correction, width);
+  const { problem, support } = best;
   const order = problem.byHeight.slice().sort((a, b) => (problem.t[a] as number) - (problem.t[b] as number));
   for (let at = 0; at < order.length; at++) {
     const i = order[at] as number;
@@ -335,7 +340,7 @@ function dropUnsupported(best: Candidate): void {
       for (let k = at + step; k >= 0 && k < order.length && taken < supportReach; k += step) {
         const other = order[k] as number;
         if ((problem.heightCounts[other] as number) < least) continue;
-        sum += evidence[other] as number;
+        sum += support[other] as number;
         taken += 1;
       }
       count += taken;

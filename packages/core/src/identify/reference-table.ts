@@ -49,8 +49,11 @@ export interface ReferenceTable {
   strength: Float64Array;
   /** Published intensity on one scale a spectrum, not cut at 1: for comparing neighbours. */
   brightness: Float64Array;
-  /** Number of each line's spectrum. */
+  /** Number of each line's spectrum, and of its element. */
   spectrum: Int32Array;
+  element: Int32Array;
+  /** Elements of the lamp. */
+  elements: number;
   /** 1 for lines of ions. */
   ion: Uint8Array;
   lines: readonly ReferenceLine[];
@@ -93,7 +96,10 @@ function makeLampTable(list: LineList, elements: readonly string[], meaning: Axi
       // Two measurements of one line: the one with the smaller stated uncertainty, the stronger intensity of the two.
       const better = uncertaintyOf(line) < uncertaintyOf(before.line) ? line : before.line;
       const intensity = line.relativeIntensity ?? before.line.relativeIntensity;
-      before.line = { ...better, relativeIntensity: better.relativeIntensity ?? intensity };
+      before.line = {
+        ...better,
+        relativeIntensity: better.relativeIntensity ?? intensity,
+      };
       before.nm = wavelengthOnAxis(before.line, meaning);
       continue;
     }
@@ -141,6 +147,8 @@ export function referenceTable(
     strength: new Float64Array(count),
     brightness: new Float64Array(count),
     spectrum: lamp.spectrum.subarray(first, first + count),
+    element: lamp.element.subarray(first, first + count),
+    elements: lamp.elements,
     ion: lamp.ion.subarray(first, first + count),
     lines: lamp.lines.slice(first, first + count),
     expected: new Uint8Array(count),

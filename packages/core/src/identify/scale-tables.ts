@@ -16,9 +16,10 @@ export const leastSpanNm = 36;
 export const mostSpanNm = 1150;
 const scales = 10;
 const halfOctave = Math.sqrt(2);
-/** Lines of one element, and in all for each element, that an anchor may be in any window of one span. */
-const poolPerElement = 13;
-const ionsInPool = 5;
+/** Strongest lines of each element, and of its ions, that an anchor may be in any window of one span: few at first, then more. */
+const poolPerElement = [13, 28, 70] as const;
+const ionsInPool = [5, 9, 14] as const;
+export const poolLevels = poolPerElement.length;
 
 /** Half width of the kernel, share of the span: what third order and the width of a line leave open. */
 export const kernelShare = 0.0027;
@@ -28,8 +29,8 @@ export interface Scale {
   /** Spans from this one to sqrt 2 times as much. */
   fromSpanNm: number;
   toSpanNm: number;
-  /** Lines an anchor may be, ascending, nm. */
-  pool: Float64Array;
+  /** Lines an anchor may be, ascending, nm; for each level. */
+  pools: Float64Array[];
   cellsPerNm: number;
   /** Sum of the odds of the lines near, times the kernel, for each cell from `shortestNm` on. */
   strong: Float64Array;
@@ -66,7 +67,7 @@ function makeScale(lamp: LampTable, fromSpanNm: number): Scale {
   const scale: Scale = {
     fromSpanNm,
     toSpanNm,
-    pool: new Float64Array(0),
+    pools: [],
     cellsPerNm,
     strong: new Float64Array(cells),
     weak: new Float64Array(cells),
@@ -84,10 +85,12 @@ function makeScale(lamp: LampTable, fromSpanNm: number): Scale {
     while (windowLast < last && (lamp.nm[windowLast] as number) <= nm + middleSpan / 2) windowLast += 1;
     strength[j] = strengthIn(lamp, thirdStrongest(lamp, windowFirst, windowLast), j);
   }
-  const pool: number[] = [];
+  const pools = poolPerElement.map((): number[] => []);
   for (let j = first; j < last; j++) {
     const nm = lamp.nm[j] as number;
-    if (isInPool(lamp, strength, j, first, last, middleSpan / 2)) pool.push(nm);
+    const stronger = strongerNear(lamp, strength, j, first, last, middleSpan / 2);
+    const most = lamp.ion[j] === 1 ? ionsInPool : poolPerElement;
+    for (let level = 0; level < poolLevels; level++) if (stronger < (most[level] as number)) pools[level]?.push(nm);
     const strong = oddsOf(strength[j] as number, coarsePowers.strong);
     const weak = oddsOf(strength[j] as number, coarsePowers.weak);
     const low = Math.max(0, Math.ceil((nm - halfWidth - shortestNm) * cellsPerNm));
@@ -106,28 +109,27 @@ function makeScale(lamp: LampTable, fromSpanNm: number): Scale {
     scale.strongBelow[bin] = (scale.strongBelow[bin] as number) + (scale.strongBelow[bin - 1] as number);
     scale.weakBelow[bin] = (scale.weakBelow[bin] as number) + (scale.weakBelow[bin - 1] as number);
   }
-  scale.pool = Float64Array.from(pool);
+  scale.pools = pools.map((pool) => Float64Array.from(pool));
   return scale;
 }
 
-/** Whether a line is among the strongest of its element within half a span either way. */
-function isInPool(
+/** Lines of the same element, ions apart, that are stronger within half a span either way. */
+function strongerNear(
   lamp: LampTable,
   strength: Float64Array,
   j: number,
   first: number,
   last: number,
   half: number,
-): boolean {
+): number {
   const nm = lamp.nm[j] as number;
   const own = strength[j] as number;
-  const most = lamp.ion[j] === 1 ? ionsInPool : poolPerElement;
   // Equal strengths (several reach the cap) are told apart by intensity.
   const intensity = lamp.intensity[j] as number;
   let stronger = 0;
   for (let k = j - 1; k >= first && (lamp.nm[k] as number) >= nm - half; k--) stronger += isStronger(k);
   for (let k = j + 1; k < last && (lamp.nm[k] as number) <= nm + half; k++) stronger += isStronger(k);
-  return stronger < most;
+  return stronger;
 
   function isStronger(k: number): number {
     if (lamp.element[k] !== lamp.element[j] || lamp.ion[k] !== lamp.ion[j]) return 0;

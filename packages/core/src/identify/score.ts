@@ -11,6 +11,7 @@
  * Chance   null model: the found lines lie independently and evenly over the window, whatever lamp it was. Under it each
  *          g has mean 1 and so has their product averaged over all axes: it reaches e^S or more with a probability of at
  *          most e^-S (Markov). An upper bound, not an estimate
+ * Mixtures a lamp of several elements may show all alike or one of them brightly (warming up, worn): the mean over these as well
  * Misses   prominent lines of the lamp that should be in the window and were not found lower the score a little: lamps,
  *          fibres and detectors hide lines, so that is weak evidence
  */
@@ -19,27 +20,33 @@ import { addPrior, bendPenalty, factorise, priorSd } from "./correction.ts";
 import { orderCount, type Problem } from "./problem.ts";
 import { lowerBound, oddsOf, type ReferenceTable } from "./reference-table.ts";
 
+const terms = orderCount;
 /** Share of found lines that are no listed line of the lamp: impurities, room light, weak unlisted lines. */
 export const strayShare = 0.12;
 /** Strong found lines lean more on published intensities than weak ones. */
 const strongPower = 0.7;
 const weakPower = 0.3;
 export const coarsePowers = { strong: strongPower, weak: weakPower } as const;
-const missCost = 0.5;
+const missCost = 0.25;
 const prominent = 0.3;
 /** Standard deviations tried, shares of the FWHM. */
-const widthShares = [0.05, 0.12, 0.28] as const;
+const widthShares = [0.02, 0.05, 0.12, 0.28] as const;
 
 export interface Odds {
   /** pi_j for strong and for weak found lines, each summing to 1. */
   strong: Float64Array;
   weak: Float64Array;
+  /** Sums of pi_j for each element. */
+  strongOf: Float64Array;
+  weakOf: Float64Array;
   windowNm: number;
 }
 
 export function oddsFor(table: ReferenceTable, windowNm: number): Odds {
   const strong = new Float64Array(table.nm.length);
   const weak = new Float64Array(table.nm.length);
+  const strongOf = new Float64Array(table.elements);
+  const weakOf = new Float64Array(table.elements);
   let strongSum = 0;
   let weakSum = 0;
   for (let j = 0; j < strong.length; j++) {
@@ -50,8 +57,11 @@ export function oddsFor(table: ReferenceTable, windowNm: number): Odds {
   for (let j = 0; j < strong.length; j++) {
     strong[j] = (strong[j] as number) / strongSum;
     weak[j] = (weak[j] as number) / weakSum;
+    const e = table.element[j] as number;
+    strongOf[e] = (strongOf[e] as number) + (strong[j] as number);
+    weakOf[e] = (weakOf[e] as number) + (weak[j] as number);
   }
-  return { strong, weak, windowNm };
+  return { strong, weak, strongOf, weakOf, windowNm };
 }
 
 /** Found lines that count as strong: the upper 60 %, at most fourteen. */
@@ -100,7 +110,7 @@ export function coarseTable(
 
 /** Wavelength of line i with a correction, nm. */
 export function correctedNm(problem: Problem, correction: Float64Array, i: number): number {
-  const k = i * orderCount;
+  const k = i * terms;
   return (
     (problem.baseNm[i] as number) +
     (correction[0] as number) * (problem.basis[k] as number) +
@@ -124,39 +134,68 @@ export interface Evidence {
   chanceProbability: number;
   /** The width that explains the lines best. */
   standardDeviationNm: number;
+  /** Number of the element that alone is bright, -1 where they share. */
+  brightElement: number;
 }
 
 const widths = widthShares.length;
 const root2Pi = Math.sqrt(2 * PI);
-const hessian = Array.from({ length: widths }, () => new Float64Array(orderCount * orderCount));
-const product = new Float64Array(widths);
-const scoreAt = new Float64Array(widths);
+const hessian = Array.from({ length: widths }, () => new Float64Array(terms * terms));
 const sdAt = new Float64Array(widths);
-const sumAt = new Float64Array(widths);
+/** Strength of the other elements where one alone is bright. */
+const dimShare = 0.05;
 /** Lines whose g are multiplied before a logarithm is taken. */
 const linesPerLog = 24;
 
-/** Evidence for one axis: mean over the widths tried. */
+/** Working space for a lamp of so many elements: `mixtures` is all alike, then each alone bright. */
+interface Space {
+  mixtures: number;
+  /** For each width and element: sum of pi N. */
+  sums: Float64Array;
+  /** For each mixture and width. */
+  product: Float64Array;
+  score: Float64Array;
+  misses: Float64Array;
+}
+const spaces: Space[] = [];
+
+function spaceFor(elements: number): Space {
+  let space = spaces[elements];
+  if (space === undefined) {
+    const mixtures = elements > 1 ? elements + 1 : 1;
+    space = {
+      mixtures,
+      sums: new Float64Array(widths * elements),
+      product: new Float64Array(mixtures * widths),
+      score: new Float64Array(mixtures * widths),
+      misses: new Float64Array(elements),
+    };
+    spaces[elements] = space;
+  }
+  return space;
+}
+
+/** Evidence for one axis: mean over the widths and the mixtures of elements tried. */
 export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds, correction: Float64Array): Evidence {
   const strong = strongCount(problem);
   const { byHeight, basis, bounds, fwhmNm } = problem;
-  const { nm } = table;
+  const { nm, elements } = table;
+  const { mixtures, sums, product, score, misses } = spaceFor(elements);
   const scale = ((1 - strayShare) * odds.windowNm) / root2Pi;
-  for (let w = 0; w < widths; w++) {
-    (hessian[w] as Float64Array).fill(0);
-    scoreAt[w] = 0;
-  }
+  for (const one of hessian) one.fill(0);
+  score.fill(0);
   product.fill(1);
   for (let rank = 0; rank < byHeight.length; rank++) {
     const i = byHeight[rank] as number;
     const pi = rank < strong ? odds.strong : odds.weak;
+    const shares = rank < strong ? odds.strongOf : odds.weakOf;
     const own = problem.lineUncNm[i] as number;
     const at = correctedNm(problem, correction, i);
     for (let w = 0; w < widths; w++) {
       const width = (widthShares[w] as number) * fwhmNm;
       sdAt[w] = Math.sqrt(width * width + own * own);
-      sumAt[w] = 0;
     }
+    sums.fill(0);
     const reach = 4 * (sdAt[widths - 1] as number);
     for (let j = lowerBound(nm, at - reach); j < nm.length; j++) {
       const d = (nm[j] as number) - at;
@@ -164,54 +203,72 @@ export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds,
       for (let w = widths - 1; w >= 0; w--) {
         const u = d / (sdAt[w] as number);
         if (u > 4 || u < -4) break;
-        sumAt[w] = (sumAt[w] as number) + (pi[j] as number) * exp(-0.5 * u * u);
+        const k = w * elements + (table.element[j] as number);
+        sums[k] = (sums[k] as number) + (pi[j] as number) * exp(-0.5 * u * u);
       }
     }
-    const k = i * orderCount;
+    const k = i * terms;
     for (let w = 0; w < widths; w++) {
       const sd = sdAt[w] as number;
-      const g = strayShare + (scale * (sumAt[w] as number)) / sd;
+      let all = 0;
+      for (let e = 0; e < elements; e++) all += sums[w * elements + e] as number;
+      const g = strayShare + (scale * all) / sd;
       product[w] = (product[w] as number) * g;
+      for (let m = 1; m < mixtures; m++) {
+        // One element bright, the others dim beside it.
+        const sum = dimShare * all + (1 - dimShare) * (sums[w * elements + m - 1] as number);
+        const norm = dimShare + (1 - dimShare) * (shares[m - 1] as number);
+        product[m * widths + w] = (product[m * widths + w] as number) * (strayShare + (scale * sum) / (sd * norm));
+      }
       const weight = (1 - strayShare / g) / (sd * sd);
       if (weight === 0) continue;
       const h = hessian[w] as Float64Array;
-      for (let r = 0; r < orderCount; r++) {
+      for (let r = 0; r < terms; r++) {
         const br = weight * (basis[k + r] as number);
-        for (let c = 0; c <= r; c++)
-          h[r * orderCount + c] = (h[r * orderCount + c] as number) + br * (basis[k + c] as number);
+        for (let c = 0; c <= r; c++) h[r * terms + c] = (h[r * terms + c] as number) + br * (basis[k + c] as number);
       }
     }
     if (rank % linesPerLog === linesPerLog - 1 || rank === byHeight.length - 1) {
-      for (let w = 0; w < widths; w++) scoreAt[w] = (scoreAt[w] as number) + log(product[w] as number);
+      for (let k = 0; k < product.length; k++) score[k] = (score[k] as number) + log(product[k] as number);
       product.fill(1);
     }
   }
+  missedCosts(problem, table, correction, misses);
+  let allMisses = 0;
+  for (let e = 0; e < elements; e++) allMisses += misses[e] as number;
   const shared =
-    bendPenalty(correction, bounds) -
-    missedCost(problem, table, correction) +
-    problem.logDensity +
-    log((2 * PI) / (priorSd(bounds, 2) * priorSd(bounds, 3)));
+    bendPenalty(correction, bounds) + problem.logDensity + log((2 * PI) / (priorSd(bounds, 2) * priorSd(bounds, 3)));
   let best = Number.NEGATIVE_INFINITY;
   let bestWidth = 0;
+  let bestMixture = 0;
   for (let w = 0; w < widths; w++) {
     const h = hessian[w] as Float64Array;
     addPrior(h, bounds);
-    let value = (scoreAt[w] as number) + shared;
+    let volume = Number.NEGATIVE_INFINITY;
     if (factorise(h)) {
       let diagonal = 1;
-      for (let r = 0; r < orderCount; r++) diagonal *= h[r * orderCount + r] as number;
-      value -= log(diagonal);
-    } else value = Number.NEGATIVE_INFINITY;
-    scoreAt[w] = value;
-    if (value > best) {
+      for (let r = 0; r < terms; r++) diagonal *= h[r * terms + r] as number;
+      volume = -log(diagonal);
+    }
+    for (let m = 0; m < mixtures; m++) {
+      const missed = m === 0 ? allMisses : dimShare * allMisses + (1 - dimShare) * (misses[m - 1] as number);
+      const value = (score[m * widths + w] as number) + shared + volume - missed;
+      score[m * widths + w] = value;
+      if (value <= best) continue;
       best = value;
       bestWidth = (widthShares[w] as number) * fwhmNm;
+      bestMixture = m;
     }
   }
   let sum = 0;
-  for (let w = 0; w < widths; w++) sum += exp((scoreAt[w] as number) - best);
-  const value = best + log(sum / widths);
-  return { value, chanceProbability: Math.min(1, exp(-value)), standardDeviationNm: bestWidth };
+  for (let k = 0; k < score.length; k++) sum += exp((score[k] as number) - best);
+  const value = best + log(sum / score.length);
+  return {
+    value,
+    chanceProbability: Math.min(1, exp(-value)),
+    standardDeviationNm: bestWidth,
+    brightElement: bestMixture - 1,
+  };
 }
 
 /** ln g of every line, at one width; NaN for lines that may not name themselves. */
@@ -253,8 +310,8 @@ function lineOdds(
   return strayShare + ((1 - strayShare) * windowNm * sum) / (sd * Math.sqrt(2 * PI));
 }
 
-/** What the prominent lines cost that should be in the capture and were not found. */
-function missedCost(problem: Problem, table: ReferenceTable, correction: Float64Array): number {
+/** What the prominent lines of each element cost that should be in the capture and were not found. */
+function missedCosts(problem: Problem, table: ReferenceTable, correction: Float64Array, costs: Float64Array): void {
   const a = endNm(problem, correction, -1);
   const b = endNm(problem, correction, 1);
   const low = Math.min(a, b) + problem.fwhmNm;
@@ -262,7 +319,7 @@ function missedCost(problem: Problem, table: ReferenceTable, correction: Float64
   const within = 0.8 * problem.fwhmNm;
   const { byPlace } = problem;
   const { count } = problem;
-  let cost = 0;
+  costs.fill(0);
   // Published lines ascend, and so do the found ones along the capture, one way or the other.
   let at = a <= b ? 0 : count - 1;
   const step = a <= b ? 1 : -1;
@@ -273,7 +330,8 @@ function missedCost(problem: Problem, table: ReferenceTable, correction: Float64
     if (strength < prominent) continue;
     while (at >= 0 && at < count && correctedNm(problem, correction, byPlace[at] as number) <= nm - within) at += step;
     const found = at >= 0 && at < count && correctedNm(problem, correction, byPlace[at] as number) < nm + within;
-    if (!found) cost += missCost * strength;
+    if (found) continue;
+    const e = table.element[j] as number;
+    costs[e] = (costs[e] as number) + missCost * strength;
   }
-  return cost;
 }

@@ -14,8 +14,9 @@ import { lowerBound } from "./reference-table.ts";
 import { leastSpanNm, longestNm, mostSpanNm, shortestNm, type Scale } from "./scale-tables.ts";
 import { strayShare, strongCount } from "./score.ts";
 
-const linesVoting = 12;
+const linesVoting = 20;
 const keptAxes = 40;
+const mostTriples = 24;
 const anchorLines = 9;
 /** Largest |q| of q (t - ta)(tb - t), over the slope: 5.5 % of the span. */
 const mostBend = 0.11;
@@ -24,7 +25,8 @@ const cubicOffsets = [-0.0011, 0.0011] as const;
 const oneCubicFrom = 0.003;
 /** A line that is no published line counts for this much at the most. */
 const missBelow = 0.3;
-/** Share of the voting lines that may be strays. */
+/** Of the first n voting lines so many may be strays: a start, and a share of them. */
+const firstStrays = 2;
 const strayVotes = 0.42;
 
 /** An axis over t = -1..1 in Chebyshev terms, nm, and what the voters say of it. */
@@ -49,25 +51,37 @@ export function triplesOf(problem: Problem): Triple[] {
         const apart = (t[high] as number) - (t[low] as number);
         const inner = Math.min((t[middle] as number) - (t[low] as number), (t[high] as number) - (t[middle] as number));
         if (inner < 0.02 || apart < 0.1) continue;
-        ranked.push({ triple: [low, middle, high], rank: (a + b + c + 6) / (apart * Math.sqrt(inner / apart)) });
+        ranked.push({
+          triple: [low, middle, high],
+          rank: (a + b + c + 6) / (apart * Math.sqrt(inner / apart)),
+        });
       }
     }
   }
-  ranked.sort((x, y) => x.rank - y.rank);
   const uses = new Int32Array(problem.count);
   const chosen: Triple[] = [];
-  for (let round = 1; round <= 3; round++) {
-    for (const { triple } of ranked) {
-      if (chosen.includes(triple) || triple.some((i) => (uses[i] as number) >= 2 * round)) continue;
-      for (const i of triple) uses[i] = (uses[i] as number) + 1;
-      chosen.push(triple);
+  const costOf = ({ triple, rank }: { triple: Triple; rank: number }): number =>
+    rank * (1 + triple.reduce((sum, i) => sum + (uses[i] as number), 0));
+  while (ranked.length > 0 && chosen.length < mostTriples) {
+    let next = 0;
+    for (let k = 1; k < ranked.length; k++) {
+      if (costOf(ranked[k] as (typeof ranked)[number]) < costOf(ranked[next] as (typeof ranked)[number])) next = k;
     }
+    const [{ triple }] = ranked.splice(next, 1) as [(typeof ranked)[number]];
+    for (const i of triple) uses[i] = (uses[i] as number) + 1;
+    chosen.push(triple);
   }
   return chosen;
 }
 
 /** Looks for axes through one triple; good ones are offered to `best`. */
-export function searchTriple(problem: Problem, scales: readonly Scale[], triple: Triple, best: BestLampAxes): void {
+export function searchTriple(
+  problem: Problem,
+  scales: readonly Scale[],
+  triple: Triple,
+  level: number,
+  best: BestLampAxes,
+): void {
   const { t, byHeight } = problem;
   const [ta, tb, tc] = triple.map((i) => t[i] as number) as [number, number, number];
   const voters = byHeight.filter((i) => !triple.includes(i)).slice(0, linesVoting - 3);
@@ -75,7 +89,6 @@ export function searchTriple(problem: Problem, scales: readonly Scale[], triple:
   const count = order.length;
   const strong = strongCount(problem);
   const isStrong = Uint8Array.from(order, (i) => (byHeight.indexOf(i) < strong ? 1 : 0));
-  const mostMisses = Math.floor(strayVotes * count);
   const wa = new Float64Array(count + 2);
   const wb = new Float64Array(count + 2);
   const wc = new Float64Array(count + 2);
@@ -100,7 +113,8 @@ export function searchTriple(problem: Problem, scales: readonly Scale[], triple:
       wc[k] = lc + chord;
     }
     for (const scale of scales) {
-      const { pool, cellsPerNm } = scale;
+      const { cellsPerNm } = scale;
+      const pool = scale.pools[level] as Float64Array;
       const leastApart = (scale.fromSpanNm * apart) / 2;
       const mostApart = (scale.toSpanNm * apart) / 2;
       const size = pool.length;
@@ -143,9 +157,9 @@ export function searchTriple(problem: Problem, scales: readonly Scale[], triple:
                     ? strongFactor * (scale.strong[cell] as number)
                     : weakFactor * (scale.weak[cell] as number));
                 score *= g;
-                if (g < missBelow && (misses += 1) > mostMisses) break;
+                if (g < missBelow && (misses += 1) > firstStrays + strayVotes * k) break;
               }
-              if (misses > mostMisses || !(score > best.threshold)) continue;
+              if (misses > strayVotes * count || !(score > best.threshold)) continue;
               best.offer(score, axisThrough(ta, a, tb, b, tc, c, cubic));
             }
           }

@@ -14,6 +14,7 @@ import { orderCount, type Problem } from "./problem.ts";
 import { lowerBound, type ReferenceTable } from "./reference-table.ts";
 import { coarseTable, correctedNm, evidenceFor, type Evidence, type Odds, strongCount } from "./score.ts";
 
+const terms = orderCount;
 const anchorPool = 12;
 const anchorPairs = 5;
 const linesVoting = 13;
@@ -43,7 +44,10 @@ export function searchAxes(problem: Problem, table: ReferenceTable, odds: Odds):
     const correction = refine(problem, table, odds, start);
     if (correction === null) continue;
     if (found.some((other) => sameAxis(problem, other.correction, correction, 0.05 * problem.fwhmNm))) continue;
-    found.push({ correction, evidence: evidenceFor(problem, table, odds, correction) });
+    found.push({
+      correction,
+      evidence: evidenceFor(problem, table, odds, correction),
+    });
   }
   return found.sort((a, b) => b.evidence.value - a.evidence.value);
 }
@@ -81,7 +85,11 @@ function anchorsOf(problem: Problem): Anchors[] {
       const apart = Math.abs((t[i] as number) - (t[j] as number)) / (high - low);
       if (apart < 0.3 || (b >= pool && apart < 0.7)) continue;
       const left = (t[i] as number) < (t[j] as number) ? i : j;
-      pairs.push({ left, right: left === i ? j : i, rank: (a + b + 4) / apart });
+      pairs.push({
+        left,
+        right: left === i ? j : i,
+        rank: (a + b + 4) / apart,
+      });
     }
     if (pairs.length > 60) break;
   }
@@ -183,7 +191,7 @@ function coarseSearch(problem: Problem, table: ReferenceTable, odds: Odds): Floa
   return best.list();
 }
 
-const thirdOrder = (problem: Problem, i: number): number => problem.basis[i * orderCount + 3] as number;
+const thirdOrder = (problem: Problem, i: number): number => problem.basis[i * terms + 3] as number;
 
 /** The best few axes seen, none within a half width of a better one. */
 class BestAxes {
@@ -253,16 +261,22 @@ class BestAxes {
 /** Reach of each refining step, in coarse half widths for the first and in FWHM after. */
 const reaches = [0.9, 0.6, 0.4, 0.3] as const;
 
-const normal = new Float64Array(orderCount * orderCount);
-const right = new Float64Array(orderCount);
+const normal = new Float64Array(terms * terms);
+const right = new Float64Array(terms);
 
-/** Refine one axis; null where it leaves the bounds or holds fewer than three lines. */
-export function refine(problem: Problem, table: ReferenceTable, odds: Odds, start: Float64Array): Float64Array | null {
+/** Refine one axis, from a first step on; null where it leaves the bounds or holds fewer than three lines. */
+export function refine(
+  problem: Problem,
+  table: ReferenceTable,
+  odds: Odds,
+  start: Float64Array,
+  firstStep = 0,
+): Float64Array | null {
   const correction = Float64Array.from(start);
   const strong = strongCount(problem);
   const { bounds, fwhmNm } = problem;
   const first = coarseHalfWidth(problem);
-  for (let step = 0; step <= reaches.length; step++) {
+  for (let step = firstStep; step <= reaches.length; step++) {
     const reach = step === 0 ? first : (reaches[step - 1] as number) * fwhmNm;
     const spread = 0.35 * reach;
     normal.fill(0);
@@ -288,13 +302,12 @@ export function refine(problem: Problem, table: ReferenceTable, odds: Odds, star
       const target = nm + pull / weight - (problem.baseNm[i] as number);
       const own = problem.lineUncNm[i] as number;
       const w = 1 / (spread * spread + own * own);
-      const k = i * orderCount;
-      for (let r = 0; r < orderCount; r++) {
+      const k = i * terms;
+      for (let r = 0; r < terms; r++) {
         const br = problem.basis[k + r] as number;
         right[r] = (right[r] as number) + w * br * target;
         for (let c = 0; c <= r; c++) {
-          normal[r * orderCount + c] =
-            (normal[r * orderCount + c] as number) + w * br * (problem.basis[k + c] as number);
+          normal[r * terms + c] = (normal[r * terms + c] as number) + w * br * (problem.basis[k + c] as number);
         }
       }
     }
