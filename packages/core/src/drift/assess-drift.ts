@@ -243,7 +243,7 @@ function kindNow(series: DriftSeries, model: ChosenModel, alert: boolean): Drift
   const last = series.count - 1;
   const place = placeOf([...form.mid, ...form.scale], "odd");
   if (place !== last) return form.kind;
-  const { residualSdNm, effects } = fitForm(series, form, "mid", model.sourceLevels);
+  const { residualSdNm, effects } = fitForm(series, form, "mid", model);
   const jump = form.mid.length === 0 ? 0 : Math.abs(effects[form.mid.length - 1]!);
   return jump > grossJump * residualSdNm ? "mislabelled" : "step";
 }
@@ -262,7 +262,7 @@ function effectsOf(series: DriftSeries, model: ChosenModel, evidence: OddEvidenc
     const of = (which: "mid" | "scale"): [number, number] => {
       const at = form[which].findIndex((term) => term.effect === effect);
       if (at < 0) return [0, 0];
-      const fit = fitForm(series, form, which, model.sourceLevels);
+      const fit = fitForm(series, form, which, model);
       const n = fit.levels.length + fit.effects.length;
       const j = fit.levels.length + at;
       return [fit.effects[at]!, Math.sqrt(fit.covariance[j * n + j]!)];
@@ -310,7 +310,7 @@ function effectsOf(series: DriftSeries, model: ChosenModel, evidence: OddEvidenc
 function fittingDate(series: DriftSeries, model: ChosenModel, place: number, jumpNm: number): string | null {
   const at = model.form.mid.findIndex((term) => term.effect === "trend");
   if (at < 0) return null;
-  const slope = fitForm(series, model.form, "mid", model.sourceLevels).effects[at]!;
+  const slope = fitForm(series, model.form, "mid", model).effects[at]!;
   const day = series.days[place]! + (jumpNm / slope) * DAYS_PER_YEAR;
   return day >= series.days[0]! && day <= series.days[series.count - 1]! ? isoDateOfDay(day) : null;
 }
@@ -325,7 +325,7 @@ function trendOf(series: DriftSeries, model: ChosenModel): Trend {
     const slopes = ["trend", "onset"];
     let terms = model.form[which].filter((term) => term.effect !== "curvature");
     if (!terms.some((term) => slopes.includes(term.effect))) terms = [...terms, { effect: "trend" }];
-    const fit = fitForm(series, { ...model.form, [which]: terms }, which, model.sourceLevels);
+    const fit = fitForm(series, { ...model.form, [which]: terms }, which, model);
     const at = terms.findIndex((term) => slopes.includes(term.effect));
     const n = fit.levels.length + fit.effects.length;
     const j = fit.levels.length + at;

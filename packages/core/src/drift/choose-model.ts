@@ -24,9 +24,15 @@ export interface DriftForm {
   /** What moves the error at mid-range, and the scale error. */
   mid: readonly DriftTerm[];
   scale: readonly DriftTerm[];
-  /** ln of (prior probability × Bayes factor). */
+  /** ln of the prior probability, with what speaks for an odd check beside its place in the series. */
+  logPrior: number;
+  /** ln of the Bayes factor of each series. */
+  logFactor: Record<Which, number>;
+  /** ln of (prior probability × Bayes factors), as far as the checks are independent. */
   logEvidence: number;
 }
+
+export type Which = "mid" | "scale";
 
 export interface ChosenModel {
   kind: DriftKind;
@@ -38,6 +44,8 @@ export interface ChosenModel {
   forms: DriftForm[];
   /** Whether each source has a level of its own. */
   sourceLevels: boolean;
+  /** Share of the checks' information that is independent: 1, or (1 - r)/(1 + r) where neighbours' residuals correlate by r. */
+  independence: Record<Which, number>;
 }
 
 /** Prior probabilities: half for a stable instrument; a mislabelled check is rare and gross. Judgement, no source. */
@@ -47,7 +55,7 @@ const kindPrior: Record<DriftKind, number> = {
   scale: 0.1,
   step: 0.1,
   temperature: 0.1,
-  mislabelled: 0.02,
+  mislabelled: 0.01,
 };
 
 /** A form that explains by two causes at once is taken to be this much rarer than by one. */
@@ -131,9 +139,26 @@ const leastBesideStep = 2;
 export function chooseModel(series: DriftSeries, oddEvidence: ArrayLike<number>): ChosenModel {
   const { bases, sourceLevels } = basesOf(series);
   const search = new Search(series, bases);
-  const forms: DriftForm[] = [{ kind: "stable", mid: [], scale: [], logEvidence: log(kindPrior.stable) }];
+  const forms = [formOf("stable", [], [], log(kindPrior.stable), 0, 0)];
   for (const family of families) forms.push(...formsOf(family, search, sourceLevels, oddEvidence));
   forms.sort((a, b) => b.logEvidence - a.logEvidence);
+  const independence = {
+    mid: independenceOf(series, forms[0]!, "mid", sourceLevels),
+    scale: independenceOf(series, forms[0]!, "scale", sourceLevels),
+  };
+  if (independence.mid < 1 || independence.scale < 1) {
+    for (const form of forms) {
+      const { logPrior, logFactor } = form;
+      // One odd check stands out of its neighbours all the more when they follow one another.
+      if (
+        form.mid.length + form.scale.length > 0 &&
+        [...form.mid, ...form.scale].every((term) => term.effect === "odd")
+      )
+        continue;
+      form.logEvidence = logPrior + independence.mid * logFactor.mid + independence.scale * logFactor.scale;
+    }
+    forms.sort((a, b) => b.logEvidence - a.logEvidence);
+  }
   const total = logSumExp(forms.map((form) => form.logEvidence));
   const probabilities = driftKinds.map((kind) =>
     exp(logSumExp(forms.filter((form) => form.kind === kind).map((form) => form.logEvidence)) - total),
@@ -143,7 +168,44 @@ export function chooseModel(series: DriftSeries, oddEvidence: ArrayLike<number>)
     if (probability > probabilities[best]!) best = i;
   });
   const kind = driftKinds[best]!;
-  return { kind, probabilities, form: forms.find((form) => form.kind === kind)!, forms, sourceLevels };
+  return { kind, probabilities, form: forms.find((form) => form.kind === kind)!, forms, sourceLevels, independence };
+}
+
+function formOf(
+  kind: DriftKind,
+  mid: readonly DriftTerm[],
+  scale: readonly DriftTerm[],
+  logPrior: number,
+  midFactor: number,
+  scaleFactor: number,
+): DriftForm {
+  const logFactor = { mid: midFactor, scale: scaleFactor };
+  return { kind, mid, scale, logPrior, logFactor, logEvidence: logPrior + midFactor + scaleFactor };
+}
+
+/**
+ * Checks whose residuals follow their neighbours' tell less than as many independent ones: with the correlation r of neighbours
+ * (first-order autoregression) their sum is worth (1 - r)/(1 + r) of them. r is taken from the residuals of the most
+ * probable form, counted only beyond two standard errors of chance, and its bias of about -1/n is given back.
+ */
+function independenceOf(series: DriftSeries, form: DriftForm, which: Which, sourceLevels: boolean): number {
+  const { residualsNm } = fitForm(series, form, which, { sourceLevels, independence: { mid: 1, scale: 1 } });
+  let squares = 0;
+  let products = 0;
+  let count = 0;
+  let before = NaN;
+  for (const residual of residualsNm) {
+    if (residual !== residual) continue;
+    squares += residual * residual;
+    if (before === before) products += before * residual;
+    before = residual;
+    count += 1;
+  }
+  if (count < 8 || !(squares > 0)) return 1;
+  const r = products / squares;
+  if (r <= 2 / Math.sqrt(count)) return 1;
+  const corrected = Math.min(0.9, r + 1 / count);
+  return (1 - corrected) / (1 + corrected);
 }
 
 /** Designs and gains that families share, each made once. */
@@ -157,7 +219,7 @@ class Search {
     readonly bases: Bases,
   ) {}
 
-  design(which: "mid" | "scale", effects: readonly PlacelessEffect[]): WeightedDesign | null {
+  design(which: Which, effects: readonly PlacelessEffect[]): WeightedDesign | null {
     const key = `${which} ${effects.join(" ")}`;
     let design = this.designs.get(key);
     if (design !== undefined) return design;
@@ -168,7 +230,7 @@ class Search {
   }
 
   /** What each place's column takes off the sum of squares, in the order of `placesOf`; NaN where it says nothing new. */
-  gainsOf(which: "mid" | "scale", effects: readonly PlacelessEffect[], effect: PlacedEffect): Float64Array {
+  gainsOf(which: Which, effects: readonly PlacelessEffect[], effect: PlacedEffect): Float64Array {
     const key = `${which} ${effects.join(" ")} ${effect}`;
     let gains = this.gains.get(key);
     if (gains !== undefined) return gains;
@@ -198,8 +260,9 @@ function formsOf(family: Family, search: Search, sourceLevels: boolean, oddEvide
   const prior = log(family.share * kindPrior[family.kind === "by-size" ? "drift" : family.kind]);
   const { placed } = family;
   if (placed === undefined) {
-    const logEvidence = prior + factor(bases.mid, mid, 0) + factor(bases.scale, scale, 0);
-    return [named(family, { kind: "drift", mid: midTerms, scale: scaleTerms, logEvidence }, series, sourceLevels)];
+    const midFactor = factor(bases.mid, mid, 0);
+    const form = formOf("drift", midTerms, scaleTerms, prior, midFactor, factor(bases.scale, scale, 0));
+    return [named(family, form, series, sourceLevels)];
   }
   const places = placesOf(placed.effect, series.count);
   const midGains = placed.mid ? search.gainsOf("mid", family.mid, placed.effect) : null;
@@ -211,17 +274,16 @@ function formsOf(family: Family, search: Search, sourceLevels: boolean, oddEvide
     if (midGain !== midGain || scaleGain !== scaleGain) return;
     const term: DriftTerm = { effect: placed.effect, place };
     const odd = placed.effect === "odd" ? oddEvidence[place]! : 0;
-    forms.push({
-      kind: family.kind === "by-size" ? "drift" : family.kind,
-      mid: placed.mid ? [...midTerms, term] : midTerms,
-      scale: placed.scale ? [...scaleTerms, term] : scaleTerms,
-      logEvidence:
-        prior -
-        log(places.length) +
-        odd +
-        factor(bases.mid, mid, midGain, placed.mid ? 1 : 0) +
+    forms.push(
+      formOf(
+        family.kind === "by-size" ? "drift" : family.kind,
+        placed.mid ? [...midTerms, term] : midTerms,
+        placed.scale ? [...scaleTerms, term] : scaleTerms,
+        prior - log(places.length) + odd,
+        factor(bases.mid, mid, midGain, placed.mid ? 1 : 0),
         factor(bases.scale, scale, scaleGain, placed.scale ? 1 : 0),
-    });
+      ),
+    );
   });
   if (family.kind !== "by-size" || forms.length === 0) return forms;
   // Which term is larger is asked once, at the best place.
@@ -253,7 +315,7 @@ function named(family: Family, form: DriftForm, series: DriftSeries, sourceLevel
   let kind: DriftKind = "drift";
   let largest = 0;
   for (const which of ["mid", "scale"] as const) {
-    const fit = fitForm(series, form, which, sourceLevels);
+    const fit = fitForm(series, form, which, { sourceLevels, independence: { mid: 1, scale: 1 } });
     form[which].forEach((term, j) => {
       const column = columnOf(term, series);
       let low = Infinity;
@@ -278,7 +340,7 @@ export interface FormFit {
   effects: Float64Array;
   /** Level of each run, then each source but the first less the first. */
   levels: Float64Array;
-  /** Of levels, then effects, row-major; scaled by the residuals. Infinity on the diagonal where nothing is known. */
+  /** Of levels, then effects, row-major; scaled by the residuals, and by what they follow one another. Infinity on the diagonal where nothing is known. */
   covariance: Float64Array;
   degreesOfFreedom: number;
   /** Standard deviation of one check of typical weight about the fit, nm. */
@@ -293,8 +355,8 @@ export interface FormFit {
 export function fitForm(
   series: DriftSeries,
   form: { mid: readonly DriftTerm[]; scale: readonly DriftTerm[] },
-  which: "mid" | "scale",
-  sourceLevels: boolean,
+  which: Which,
+  { sourceLevels, independence }: Pick<ChosenModel, "sourceLevels" | "independence">,
 ): FormFit {
   const values = which === "mid" ? series.midErrorNm : series.scaleErrorNm;
   const uncs = weightingUncs(values, which === "mid" ? series.midUncNm : series.scaleUncNm);
@@ -337,7 +399,7 @@ export function fitForm(
   return {
     effects: fit.coefficients.slice(levels.length),
     levels: fit.coefficients.slice(0, levels.length),
-    covariance: fit.covariance.map((value) => value * varianceFactor),
+    covariance: fit.covariance.map((value) => (value * varianceFactor) / independence[which]),
     degreesOfFreedom: fit.degreesOfFreedom,
     residualSdNm: Math.sqrt(varianceFactor / (weightSum / m)),
     residualsNm,

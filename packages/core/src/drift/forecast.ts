@@ -65,8 +65,8 @@ export function continuationOf(series: DriftSeries, model: ChosenModel, kind: Dr
   const spreadK = temperatureSpreadK(series);
   const members = kept.map(({ form, weight }) => {
     const fits = {
-      mid: fitForm(series, form, "mid", model.sourceLevels),
-      scale: fitForm(series, form, "scale", model.sourceLevels),
+      mid: fitForm(series, form, "mid", model),
+      scale: fitForm(series, form, "scale", model),
     };
     const scatter = (which: "mid" | "scale", measured: number): number => {
       const { residualSdNm, effects } = fits[which];

@@ -5,10 +5,11 @@
  * Scatter   F test of a check's chi-squared about its own straight line against that of all other checks together; what counts is the
  *           probability times the number of checks (Bonferroni). Lines misnamed by one, or of another lamp, do this.
  * Source    a source is known by the set of wavelengths that most of its checks hold. A check under its label that holds
- *           another source's set, or whose readings lie on another source's lines and not on its own, is taken as good as certain.
+ *           another source's set (or, where the history knows no such source, the published lines of an element and none of its own), or
+ *           whose readings lie on another source's lines and not on its own, is taken as good as certain.
  */
-import { log } from "../numeric/elementary.ts";
-import { regularizedBeta } from "../numeric/elementary.ts";
+import { builtInLineList, elementsOf, lineWavelengthNm } from "../linelist/built-in.ts";
+import { log, regularizedBeta } from "../numeric/elementary.ts";
 import { median } from "../spectrum/median.ts";
 import type { DriftLine } from "./drift-point.ts";
 import type { DriftCheck, DriftSeries } from "./history.ts";
@@ -95,7 +96,25 @@ function otherSourceOf(check: DriftCheck, own: number, sources: string[], sets: 
     if (held < 0.34 && ofOther > 0.8) return sources[other]!;
     if (readsAs(check.lines, sets[own]!, sets[other]!)) return sources[other]!;
   }
-  return null;
+  // A source that the history does not know otherwise: all lines are strange to the label, and one element has them.
+  return held === 0 ? elementOf(check.lines.map((line) => line.wavelengthNm)) : null;
+}
+
+/** Element whose published lines four in five of the wavelengths are, to 0.02 nm; null for none, or fewer than three wavelengths. */
+function elementOf(wavelengths: readonly number[]): string | null {
+  if (wavelengths.length < 3) return null;
+  let best: string | null = null;
+  let most = 0.8;
+  for (const element of elementsOf(builtInLineList)) {
+    const lines = builtInLineList.lines
+      .filter((line) => line.element === element)
+      .map((line) => lineWavelengthNm(line).wavelengthNm);
+    const share = shareOnLines(wavelengths, lines, 0.02);
+    if (share < most || (share === most && best !== null)) continue;
+    most = share;
+    best = element;
+  }
+  return best;
 }
 
 /** Readings that lie ten times nearer to another source's lines than to those they are listed under, which are a nanometre off or more. */
