@@ -194,9 +194,9 @@ function shareBelow({ valueNm, uncNm, degreesOfFreedom }: Prediction, x: number)
   return studentCdf((x - valueNm) / uncNm, degreesOfFreedom);
 }
 
-/** Smallest x between low and high where `reached` holds, `reached` rising; 60 halvings. */
+/** Smallest x between low and high where `reached` holds, `reached` rising; 40 halvings. */
 function bisect(low: number, high: number, reached: (x: number) => boolean): number {
-  for (let i = 0; i < 60; i++) {
+  for (let i = 0; i < 40; i++) {
     const middle = low + 0.5 * (high - low);
     if (reached(middle)) high = middle;
     else low = middle;
@@ -292,8 +292,8 @@ export function crossingOf(
   // A step outwards in time that grows: fine where the checks lie, coarse where the answer is "decades".
   const days: number[] = [];
   const span = Math.max(last - first, 30);
-  for (let i = 0; i < 40; i++) days.push(first + (span * i) / 40);
-  for (let ahead = 0; last + ahead <= end; ahead += Math.max(span / 40, ahead * 0.06)) days.push(last + ahead);
+  for (let i = 0; i < 20; i++) days.push(first + ((last - first) * i) / 20);
+  for (let ahead = 0; last + ahead <= end; ahead += Math.max(span / 20, ahead * 0.1)) days.push(last + ahead);
   const values = days.map(out);
   const reach = (p: number): number | null => {
     const at = values.findIndex((value) => value >= p);
