@@ -19,9 +19,14 @@ const LEAST_STEP = 0.05;
 const MOST_WIDTH_RATIO = 2;
 const MOST_SHIFT = 0.7;
 
-/** Five-point Gauss-Legendre over a pixel. */
-const NODES = [-0.453089922969332, -0.2692346550528416, 0, 0.2692346550528416, 0.453089922969332];
-const WEIGHTS = [0.1184634425280945, 0.2393143352496832, 0.2844444444444444, 0.2393143352496832, 0.1184634425280945];
+/** Gauss-Legendre over a pixel: five nodes for a narrow line, three where the line is three pixels wide or more. */
+const FIVE_NODES = [-0.453089922969332, -0.2692346550528416, 0, 0.2692346550528416, 0.453089922969332];
+const FIVE_WEIGHTS = [
+  0.1184634425280945, 0.2393143352496832, 0.2844444444444444, 0.2393143352496832, 0.1184634425280945,
+];
+const THREE_NODES = [-0.3872983346207417, 0, 0.3872983346207417];
+const THREE_WEIGHTS = [0.2777777777777778, 0.4444444444444444, 0.2777777777777778];
+const BROAD_PIXELS = 3;
 
 export type SearchOutcome = "converged" | "iterations" | "singular";
 
@@ -344,12 +349,18 @@ export class LineSolver {
     const centre = p[at]!;
     const inverse = 1 / p[at + 1]!;
     const values = this.lower;
+    const isBroad = p[at + 1]! >= BROAD_PIXELS * this.profile.widthPerFwhm;
+    const nodes = isBroad ? THREE_NODES : FIVE_NODES;
+    const weights = isBroad ? THREE_WEIGHTS : FIVE_WEIGHTS;
     for (let i = 0; i < m; i++) {
-      let [g, slope, moment, perShape] = [0, 0, 0, 0];
-      for (let k = 0; k < NODES.length; k++) {
-        const u = (positions[i]! + NODES[k]! - centre) * inverse;
+      let g = 0;
+      let slope = 0;
+      let moment = 0;
+      let perShape = 0;
+      for (let k = 0; k < nodes.length; k++) {
+        const u = (positions[i]! + nodes[k]! - centre) * inverse;
         this.profile.point(u, values);
-        const weight = WEIGHTS[k]!;
+        const weight = weights[k]!;
         g += weight * values[0]!;
         slope += weight * values[1]!;
         moment += weight * u * values[1]!;

@@ -22,6 +22,8 @@ export interface Baseline {
   lagOneCorrelation: number;
   /** Correlation by lag, first entry lag one, as far as it can be told from none; empty for white noise. */
   autocorrelation: Float64Array;
+  /** By how much the noise about a baseline that follows alike noise is too low, 1 where it is white: already in `noiseCounts`. */
+  followed: number;
   /** 1 where the sample is quiet: no line, no gap. */
   quiet: Uint8Array;
 }
@@ -43,6 +45,14 @@ const settledShare = 0.05;
 const flank = 3;
 /** The spread below the baseline is taken from at most so many samples. */
 const mostForSpread = 1024;
+
+/** With fewer samples than this share below the baseline, the spread is taken from the upper quantile of all samples: that of a normal deviate. */
+const leastBelow = 0.15;
+const floorQuantile = 0.75;
+const floorQuantileSd = 0.6745;
+const upperQuantile = 0.8413;
+/** Of normal noise the deviation is 0.71 of this quantile; where it is less than this share of it, half of the counts are cut off. */
+const leastOfUpper = 0.45;
 
 let scratch = new Float64Array(0);
 
@@ -81,18 +91,26 @@ export function estimateBaseline(counts: Float64Array): Baseline {
     }
   }
   interpolate(centres, fillGaps(knots), baseline);
-  const noise = blockNoise(counts, baseline, quiet, edges, Math.max(sd, leastNoise));
+  const raw = blockNoise(counts, baseline, quiet, edges, Math.max(sd, leastNoise));
   const noiseCounts = new Float64Array(n);
-  interpolate(centres, noise, noiseCounts);
-  for (let i = 0; i < n; i += 1) if (noiseCounts[i]! < leastNoise) noiseCounts[i] = leastNoise;
+  let noise = shrinkToCommon(raw, edges[1]!, 1);
+  spreadNoise(centres, noise, leastNoise, noiseCounts);
   const alike = estimateAutocorrelation(counts, baseline, quiet, noiseCounts, block);
-  if (alike.noiseFactor !== 1) for (let i = 0; i < n; i += 1) noiseCounts[i] = noiseCounts[i]! * alike.noiseFactor;
+  if (alike.byLag.length > 0) {
+    // Alike samples tell less of the noise of a block, so the blocks differ more by chance.
+    let squares = 1;
+    for (const value of alike.byLag) squares += 2 * value * value;
+    noise = shrinkToCommon(raw, edges[1]!, squares);
+    spreadNoise(centres, noise, leastNoise, noiseCounts);
+    for (let i = 0; i < n; i += 1) noiseCounts[i] = noiseCounts[i]! * alike.noiseFactor;
+  }
   return {
     baseline,
     noiseCounts,
     medianNoiseCounts: Math.max(alike.noiseFactor * medianInPlace(noise, blocks), leastNoise),
     lagOneCorrelation: alike.lagOne,
     autocorrelation: alike.byLag,
+    followed: alike.noiseFactor,
     quiet,
   };
 }
@@ -167,17 +185,24 @@ function interpolate(centres: Float64Array, knots: Float64Array, out: Float64Arr
   for (; i < n; i += 1) out[i] = knots[last]!;
 }
 
-/** Spread of what lies below the baseline: lines do not reach there. */
+/** Spread of what lies below the baseline: lines do not reach there. Where next to nothing does, the counts were cut off at a floor. */
 function lowerSpread(counts: Float64Array, baseline: Float64Array): number {
   const values = scratch;
   const n = counts.length;
   const stride = Math.max(1, Math.floor(n / mostForSpread));
+  let [below, seen] = [0, 0];
+  for (let i = 0; i < n; i += stride) {
+    const residual = counts[i]! - baseline[i]!;
+    if (residual < 0) values[below++] = -residual;
+    if (residual === residual) seen += 1;
+  }
+  if (below >= leastBelow * seen) return below === 0 ? 0 : madToSd * medianInPlace(values, below);
   let m = 0;
   for (let i = 0; i < n; i += stride) {
     const residual = counts[i]! - baseline[i]!;
-    if (residual < 0) values[m++] = -residual;
+    if (residual === residual) values[m++] = residual;
   }
-  return m === 0 ? 0 : madToSd * medianInPlace(values, m);
+  return Math.max(0, selectInPlace(values, m, Math.floor(floorQuantile * m)) / floorQuantileSd);
 }
 
 /** Quiet = within the limit of the baseline, and no neighbour on either side far above it. */
@@ -213,7 +238,10 @@ function blockNoise(
     for (let i = edges[b]!; i < edges[b + 1]!; i += 1)
       if (quiet[i] === 1) values[m++] = Math.abs(counts[i]! - baseline[i]!);
     if (m < 8) continue;
-    raw[b] = (1 + knotShare / m) * madToSd * medianInPlace(values, m);
+    const high = selectInPlace(values, m, Math.floor(upperQuantile * m));
+    const deviation = (1 + knotShare / m) * madToSd * medianInPlace(values, m);
+    // Counts cut off at a floor, or of few photons: half of them are equal, and the upper part of the spread tells the noise.
+    raw[b] = deviation > leastOfUpper * high ? deviation : high;
     known += 1;
   }
   const filled = known > 0 ? fillGaps(raw) : raw.fill(fallback);
@@ -225,18 +253,24 @@ function blockNoise(
     three[2] = filled[b + 1]!;
     smooth[b] = medianInPlace(three, 3);
   }
-  return shrinkToCommon(smooth, medianInPlace(filled, blocks), edges[1]!);
+  return smooth;
+}
+
+function spreadNoise(centres: Float64Array, noise: Float64Array, least: number, out: Float64Array): void {
+  interpolate(centres, noise, out);
+  for (let i = 0; i < out.length; i += 1) if (out[i]! < least) out[i] = least;
 }
 
 /**
  * Blocks that differ no more than chance makes them are given the common noise; the more they differ, the more each keeps its own
  * (empirical Bayes). Left as they are, the lowest tenth of the blocks would raise false lines many times over.
  */
-function shrinkToCommon(noise: Float64Array, common: number, samplesPerBlock: number): Float64Array {
-  if (!(common > 0)) return noise;
+function shrinkToCommon(noise: Float64Array, samplesPerBlock: number, redundancy: number): Float64Array {
+  const common = medianInPlace(noise.slice(), noise.length);
+  if (!(common > 0)) return noise.slice();
   let spread = 0;
   for (const value of noise) spread += ((value / common - 1) * (value / common - 1)) / noise.length;
-  const byChance = medianOfThreeVariance / samplesPerBlock;
+  const byChance = (redundancy * medianOfThreeVariance) / samplesPerBlock;
   const kept = spread > 0 ? Math.max(0, 1 - byChance / spread) : 0;
   return noise.map((value) => common + kept * (value - common));
 }

@@ -9,13 +9,15 @@
  *                noise is correlated, the first term over the sum of its correlations. BIC and not AICc, because a needless parameter costs
  *                accuracy in every line, and hundreds of samples make a needed one plain
  * Parameter      fitted to each strong line by itself, then their mean with a scatter between lines (R. DerSimonian, N. Laird, Control. Clin.
- *                Trials 7 (1986) 177). A line's fit is given what the other lines say, never its own word twice, as a value with an uncertainty
+ *                Trials 7 (1986) 177). A symmetric shape's is held at it: the centre does not depend on it. To a skewed shape's line it is given
+ *                as what the other lines say, never its own word twice: a value with an uncertainty, which the position's then holds
  */
 import type { CaptureLineShape, LineShapeChoice, LineShapeName } from "../analysis/types.ts";
 import { log } from "../numeric/elementary.ts";
 import { fitLines, type FittedWindowOfLines } from "../lineshape/fit-line.ts";
 import type { KnownParameter } from "../lineshape/line-solver.ts";
 import { profileOf, type Profile } from "../lineshape/profile.ts";
+import { TabulatedProfile } from "../lineshape/tabulated.ts";
 import { startsOf, windowOf, type Group, type GroupWindow, type Prepared } from "./line-groups.ts";
 import { median } from "./median.ts";
 import { orthonormalise } from "./photon-gain.ts";
@@ -24,6 +26,8 @@ import { orthonormalise } from "./photon-gain.ts";
 export interface ShapeInUse {
   name: LineShapeName;
   profile: Profile;
+  /** Parameter of a symmetric shape: held for all lines, since the centre does not depend on it; null: not held. */
+  held: KnownParameter | null;
   /** What the other strong lines say of the parameter, for a line whose top is at this sample; null: nothing, it is free. */
   knownFor(top: number): KnownParameter | null;
   report: CaptureLineShape;
@@ -228,10 +232,14 @@ function shapeOf(
   };
   const known = new Map<number, KnownParameter | null>();
   const pooled = learned?.pooled ?? null;
+  const isHeld = profile.hasParameter && name !== "exponentially-modified-gaussian";
+  const held = isHeld ? (pooled ?? unseen) : null;
   return {
     name,
-    profile,
+    profile: held !== null && !profile.hasClosedIntegral ? new TabulatedProfile(profile, held.value) : profile,
+    held: held === null ? null : { value: held.value, unc: Math.sqrt(held.unc * held.unc + (pooled?.scatter ?? 0) * (pooled?.scatter ?? 0)) },
     knownFor: (top) => {
+      if (held !== null) return { value: held.value, unc: 0 };
       if (!known.has(top)) known.set(top, knownFor(top));
       return known.get(top)!;
     },

@@ -8,7 +8,7 @@
  */
 import { normalQuantile } from "../numeric/distributions.ts";
 import type { Baseline } from "./baseline.ts";
-import { median, medianInPlace } from "./median.ts";
+import { median, medianInPlace, selectInPlace } from "./median.ts";
 
 export interface Candidate {
   /** Sample index of the top. */
@@ -140,14 +140,20 @@ function smooth(values: Float64Array, box: number, out: Float64Array): void {
   }
 }
 
-/** Noise of a smoothed residual over that of the samples, correlation of the samples included: measured on the quiet samples. */
+/**
+ * Noise of a smoothed residual over that of the samples, correlation of the samples included: measured on the quiet samples that lie above
+ * the baseline, by their median and by their 98th percentile, whichever is more (noise of few photons has a longer tail upwards); more by as much as the
+ * baseline followed the noise.
+ */
 function noiseFactor(values: Float64Array, base: Baseline, ratios: Float64Array): number {
   const { quiet, noiseCounts } = base;
   let m = 0;
   for (let i = 0; i < values.length; i += 1) {
-    if (quiet[i] === 1) ratios[m++] = Math.abs(values[i]!) / noiseCounts[i]!;
+    if (quiet[i] === 1 && values[i]! > 0) ratios[m++] = values[i]! / noiseCounts[i]!;
   }
-  return m < 20 ? 1 : Math.max(1.4826 * medianInPlace(ratios, m), 1e-3);
+  if (m < 20) return 1;
+  const high = selectInPlace(ratios, m, Math.floor(0.98 * m));
+  return base.followed * Math.max(1.4826 * medianInPlace(ratios, m), high / 2.326, 1e-3);
 }
 
 /** Tops above the threshold, one for each hill that a deep enough valley parts from its neighbours; ascending. */

@@ -162,7 +162,7 @@ function resultOf(
       flags,
       shape: shape.name,
       ...freedomOf(prepared, window, fit, k, gain),
-      ...(fit.shapeParameter === null ? {} : { shapeParameters: { [parameterName(shape.name)]: fit.shapeParameter } }),
+      ...shapeParametersOf(shape, fit),
       covariance: line.covariance,
     };
   });
@@ -170,6 +170,11 @@ function resultOf(
   for (let k = 0; k < positions.length; k += 1)
     baselineCounts[k] = fit.baseline[0] + fit.baseline[1] * (positions[k]! - fit.windowCentre);
   return { lines, window: { first, last, samples, fittedCounts: fit.fittedCounts, baselineCounts, countsUnc: unc } };
+}
+
+function shapeParametersOf(shape: ShapeInUse, fit: FittedWindowOfLines): Pick<FittedLine, "shapeParameters"> {
+  const parameter = shape.held ?? fit.shapeParameter;
+  return parameter === null ? {} : { shapeParameters: { [parameterName(shape.name)]: parameter } };
 }
 
 /** How well the noise is known that a line's uncertainty comes from: as well as the gain, as far as its photons make it. */

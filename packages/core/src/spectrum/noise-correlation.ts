@@ -36,6 +36,7 @@ export function estimateAutocorrelation(
   const n = counts.length;
   if (ratios.length < n) ratios = new Float64Array(n);
   let squares = 0;
+  let total = 0;
   let count = 0;
   for (let i = 0; i < n; i += 1) {
     const ratio = quiet[i] === 1 ? (counts[i]! - baseline[i]!) / noise[i]! : 0;
@@ -43,11 +44,15 @@ export function estimateAutocorrelation(
     ratios[i] = isNear ? ratio : 0;
     if (quiet[i] !== 1 || !isNear) continue;
     squares += ratio * ratio;
+    total += ratio;
     count += 1;
   }
   const none = { byLag: new Float64Array(0), lagOne: 0, noiseFactor: 1 };
   if (count < fewestPairs || squares === 0) return none;
-  const variance = squares / count;
+  // Cut off at a floor, the residuals have a mean of their own.
+  const mean = total / count;
+  const variance = squares / count - mean * mean;
+  if (!(variance > 0)) return none;
   const found: number[] = [];
   let last = 0;
   for (let lag = 1; lag <= mostLags && lag < n / 4 && lag <= last + 3; lag += 1) {
@@ -59,7 +64,7 @@ export function estimateAutocorrelation(
       pairs += quiet[i]! & quiet[i - lag]!;
     }
     if (pairs < fewestPairs) break;
-    const value = Math.max(-0.99, Math.min(0.99, products / pairs / variance));
+    const value = Math.max(-0.99, Math.min(0.99, (products / pairs - mean * mean) / variance));
     found.push(value);
     if (Math.abs(value) > tellingSigmas / Math.sqrt(pairs)) last = lag;
   }

@@ -22,7 +22,10 @@ export interface LineScatter {
   signal: number;
   /** Sum of (1 - leverage) x signal², counts². */
   squareSignal: number;
-  /** Mean read noise², counts², and the sums of (1 - leverage)² x 1, signal, signal²: for the scatter of `excess`. */
+  /**
+   * Mean read noise², counts², and what gives the variance of `excess`: sums of (1 - leverage)² x 1, signal, signal² (of correlated noise the
+   * traces that these stand for).
+   */
   readVariance: number;
   moments: readonly [number, number, number];
 }
@@ -157,12 +160,47 @@ export function scatterOf(
     const free = Math.max(0, 1 - leverages[i]!);
     const s = signals[i]!;
     squareSignal += free * s * s;
+    if (autocorrelation.length > 0) continue;
     moments[0] += free * free;
     moments[1] += free * free * s;
     moments[2] += free * free * s * s;
   }
+  if (autocorrelation.length > 0) {
+    const read = unc.map((value) => value / Math.sqrt(readVariance));
+    const byRead = leftOver(columns, read, autocorrelation);
+    const bySignal = leftOver(columns, root, autocorrelation);
+    moments[0] = traceOfProduct(byRead, byRead, m);
+    moments[1] = traceOfProduct(byRead, bySignal, m);
+    moments[2] = traceOfProduct(bySignal, bySignal, m);
+  }
   readFree = Math.max(0, readFree);
   return { excess: excess - readFree, readFree, signal: signalFree, squareSignal, readVariance, moments };
+}
+
+/** (1 - QQ') V, V the covariance of noise with these deviations and the correlation by lag: row-major m x m. */
+function leftOver(basis: Float64Array[], deviations: Float64Array, autocorrelation: Float64Array): Float64Array {
+  const m = deviations.length;
+  const v = new Float64Array(m * m);
+  for (let i = 0; i < m; i += 1) {
+    for (let j = Math.max(0, i - autocorrelation.length); j <= Math.min(m - 1, i + autocorrelation.length); j += 1) {
+      const correlation = i === j ? 1 : autocorrelation[Math.abs(i - j) - 1]!;
+      v[i * m + j] = correlation * deviations[i]! * deviations[j]!;
+    }
+  }
+  for (const q of basis) {
+    for (let j = 0; j < m; j += 1) {
+      let dot = 0;
+      for (let i = 0; i < m; i += 1) dot += q[i]! * v[i * m + j]!;
+      for (let i = 0; i < m; i += 1) v[i * m + j] = v[i * m + j]! - q[i]! * dot;
+    }
+  }
+  return v;
+}
+
+function traceOfProduct(a: Float64Array, b: Float64Array, m: number): number {
+  let sum = 0;
+  for (let i = 0; i < m; i += 1) for (let j = 0; j < m; j += 1) sum += a[i * m + j]! * b[j * m + i]!;
+  return sum;
 }
 
 /** v'Rv, R the correlation by lag. */
