@@ -9,7 +9,7 @@ export type DecodedBytes =
   { kind: "text"; bytes: Uint8Array; encoding: TextEncoding } | { kind: "binary"; looksLike: string | null };
 
 /** How far into a file its nature is judged by; beyond it only NUL bytes count. */
-const judgedBytes = 65536;
+const judgedBytes = 8192;
 /** Share of control characters above which a file is no text. Common practice, no source. */
 const controlShareLimit = 0.02;
 
@@ -61,11 +61,11 @@ export function decodeBytes(bytes: Uint8Array): DecodedBytes {
 
 /** Valid UTF-8, else Latin-1; "nul" when a NUL byte stands anywhere. */
 function natureOf(bytes: Uint8Array): "utf-8" | "latin-1" | "nul" {
+  if (bytes.includes(0)) return "nul";
   let valid = true;
   let pending = 0;
-  for (let i = 0; i < bytes.length; i += 1) {
+  for (let i = firstBeyondAscii(bytes); i < bytes.length; i += 1) {
     const byte = bytes[i]!;
-    if (byte === 0) return "nul";
     if (pending > 0) {
       if ((byte & 0xc0) === 0x80) {
         pending -= 1;
@@ -81,6 +81,18 @@ function natureOf(bytes: Uint8Array): "utf-8" | "latin-1" | "nul" {
     else valid = false;
   }
   return valid && pending === 0 ? "utf-8" : "latin-1";
+}
+
+/** Index of a byte at most three before the first above 0x7f; the length when there is none. Four at a time: most files are plain ASCII. */
+function firstBeyondAscii(bytes: Uint8Array): number {
+  const aligned = (4 - (bytes.byteOffset & 3)) & 3;
+  const head = Math.min(aligned, bytes.length);
+  for (let i = 0; i < head; i += 1) if (bytes[i]! >= 0x80) return i;
+  const words = new Int32Array(bytes.buffer, bytes.byteOffset + head, (bytes.length - head) >> 2);
+  for (let w = 0; w < words.length; w += 1) if ((words[w]! & 0x80808080) !== 0) return head + 4 * w;
+  const tail = head + 4 * words.length;
+  for (let i = tail; i < bytes.length; i += 1) if (bytes[i]! >= 0x80) return i;
+  return bytes.length;
 }
 
 function decodeUtf16(bytes: Uint8Array, start: number, encoding: "utf-16le" | "utf-16be"): DecodedBytes {
