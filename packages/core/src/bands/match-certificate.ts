@@ -41,13 +41,18 @@ const leastShare = 0.5;
 /** A top this much weaker than the strongest about is no rival for a lone band. */
 const rivalShare = 0.5;
 
-/** @param fromNm,toNm  range in which a band can be measured */
+/**
+ * @param fromNm,toNm  range in which a band can be measured
+ * @param reachScale   1 for absorption bands; lines that are narrower and better placed are looked for within this share of the shifts and
+ *                     reaches above
+ */
 export function matchCertificate(
   certified: readonly CertifiedBand[],
   tops: readonly Top[],
   fromNm: number,
   toNm: number,
   material: string,
+  reachScale = 1,
 ): BandMatch {
   const inRange = certified.filter((band) => band.wavelengthNm >= fromNm && band.wavelengthNm <= toNm);
   const unmatched = (reason: string, chance: number): BandMatch => ({
@@ -62,14 +67,15 @@ export function matchCertificate(
     return unmatched("None of the certificate's bands lies in the range of the capture.", 1);
   }
   if (tops.length === 0) return unmatched("No band stands out of the noise. Is the standard in the beam?", 1);
-  if (inRange.length <= fewBands) return matchFew(inRange, tops, unmatched);
+  if (inRange.length <= fewBands) return matchFew(inRange, tops, fewShiftNm * reachScale, unmatched);
 
-  const { shiftNm, margin } = bestShift(inRange, tops);
-  const matches = fitMatches(inRange, tops, shiftNm);
+  const { shiftNm, margin } = bestShift(inRange, tops, reachScale);
+  const matches = fitMatches(inRange, tops, shiftNm, reachScale);
+  const reach = reachNm * reachScale;
   const count = matches.filter(({ top }) => top !== null).length;
   let covered = 0;
-  for (const top of tops) if (top.wavelengthNm >= fromNm && top.wavelengthNm <= toNm) covered += 2 * reachNm;
-  const share = Math.min(0.9, covered / Math.max(toNm - fromNm, 2 * reachNm));
+  for (const top of tops) if (top.wavelengthNm >= fromNm && top.wavelengthNm <= toNm) covered += 2 * reach;
+  const share = Math.min(0.9, covered / Math.max(toNm - fromNm, 2 * reach));
   const tries = (2 * mostShiftNm) / reachNm;
   // One band is spent on the shift itself.
   const chance = Math.min(1, tries * binomialUpperTail(count - 1, inRange.length - 1, share));
@@ -94,20 +100,21 @@ export function matchCertificate(
 function matchFew(
   bands: readonly CertifiedBand[],
   tops: readonly Top[],
+  within: number,
   unmatched: (reason: string, chance: number) => BandMatch,
 ): BandMatch {
   const matches = bands.map((band) => {
-    const near = tops.filter((top) => Math.abs(top.wavelengthNm - band.wavelengthNm) <= 2 * fewShiftNm);
+    const near = tops.filter((top) => Math.abs(top.wavelengthNm - band.wavelengthNm) <= 2 * within);
     const strongest = near.reduce<Top | null>((a, b) => (a === null || b.prominence > a.prominence ? b : a), null);
     const isAlone =
       strongest !== null &&
-      Math.abs(strongest.wavelengthNm - band.wavelengthNm) <= fewShiftNm &&
+      Math.abs(strongest.wavelengthNm - band.wavelengthNm) <= within &&
       near.every((top) => top === strongest || top.prominence < rivalShare * strongest.prominence);
     return { band, top: isAlone ? strongest : null, expectedNm: band.wavelengthNm };
   });
   if (matches.some(({ top }) => top === null)) {
     return unmatched(
-      `With ${bands.length === 1 ? "one band" : "two bands"} in range each must be the one strong maximum within ${fewShiftNm} nm of its place; it is not so. Record a wider range.`,
+      `With ${bands.length === 1 ? "one band" : "two bands"} in range each must be the one strong maximum within ${Number(within.toPrecision(2))} nm of its place; it is not so. Record a wider range.`,
       1,
     );
   }
@@ -116,21 +123,26 @@ function matchFew(
 }
 
 /** Shift (spectrum - certificate) that most bands agree with; ties go to the stronger tops, then to the smaller shift. */
-function bestShift(bands: readonly CertifiedBand[], tops: readonly Top[]): { shiftNm: number; margin: number } {
+function bestShift(
+  bands: readonly CertifiedBand[],
+  tops: readonly Top[],
+  reachScale: number,
+): { shiftNm: number; margin: number } {
+  const reach = reachNm * reachScale;
   const trials: { shiftNm: number; count: number; score: number }[] = [];
   let strongest = 0;
   for (const top of tops) strongest = Math.max(strongest, top.prominence);
   for (const { wavelengthNm } of bands) {
     for (const top of tops) {
       const shiftNm = top.wavelengthNm - wavelengthNm;
-      if (Math.abs(shiftNm) > mostShiftNm) continue;
+      if (Math.abs(shiftNm) > mostShiftNm * reachScale) continue;
       let count = 0;
-      let score = -0.05 * Math.abs(shiftNm);
+      let score = (-0.05 * Math.abs(shiftNm)) / reachScale;
       for (const band of bands) {
-        const near = nearest(tops, band.wavelengthNm + shiftNm, reachNm);
+        const near = nearest(tops, band.wavelengthNm + shiftNm, reach);
         if (near === null) continue;
         count += 1;
-        const off = Math.abs(near.wavelengthNm - band.wavelengthNm - shiftNm) / reachNm;
+        const off = Math.abs(near.wavelengthNm - band.wavelengthNm - shiftNm) / reach;
         score += 1 - 0.5 * off * off + 0.3 * Math.sqrt(near.prominence / strongest);
       }
       trials.push({ shiftNm, count, score });
@@ -140,7 +152,7 @@ function bestShift(bands: readonly CertifiedBand[], tops: readonly Top[]): { shi
   for (const trial of trials) if (trial.score > best.score) best = trial;
   let second = 0;
   for (const trial of trials) {
-    if (Math.abs(trial.shiftNm - best.shiftNm) > 2 * reachNm) second = Math.max(second, trial.count);
+    if (Math.abs(trial.shiftNm - best.shiftNm) > 2 * reach) second = Math.max(second, trial.count);
   }
   return { shiftNm: best.shiftNm, margin: best.count - second };
 }
@@ -155,8 +167,14 @@ function nearest(tops: readonly Top[], wavelengthNm: number, within: number): To
 }
 
 /** Straight line of shift against wavelength through the matches; a band keeps its top where that lies about the line. */
-function fitMatches(bands: readonly CertifiedBand[], tops: readonly Top[], shiftNm: number): BandMatch["bands"] {
-  const first = bands.map((band) => nearest(tops, band.wavelengthNm + shiftNm, reachNm));
+function fitMatches(
+  bands: readonly CertifiedBand[],
+  tops: readonly Top[],
+  shiftNm: number,
+  reachScale: number,
+): BandMatch["bands"] {
+  const reach = reachNm * reachScale;
+  const first = bands.map((band) => nearest(tops, band.wavelengthNm + shiftNm, reach));
   const known = bands.flatMap((band, k) =>
     first[k] === null ? [] : [{ x: band.wavelengthNm, y: first[k]!.wavelengthNm - band.wavelengthNm }],
   );
@@ -168,7 +186,7 @@ function fitMatches(bands: readonly CertifiedBand[], tops: readonly Top[], shift
     for (const { x } of known) middle += x / known.length;
     // A median first: one wrong match must not turn the line.
     const typical = median(known.map(({ y }) => y));
-    const near = known.filter(({ y }) => Math.abs(y - typical) <= reachNm);
+    const near = known.filter(({ y }) => Math.abs(y - typical) <= reach);
     offset = typical;
     if (near.length >= 4) {
       const design = new Float64Array(near.length * 2);
@@ -191,7 +209,7 @@ function fitMatches(bands: readonly CertifiedBand[], tops: readonly Top[], shift
   const taken = new Set<Top>();
   return bands.map((band) => {
     const expectedNm = band.wavelengthNm + offset + slope * (band.wavelengthNm - middle);
-    const within = Math.max(leastReachNm, 4 * spread, band.expandedUncNm);
+    const within = Math.max(leastReachNm * reachScale, 4 * spread, band.expandedUncNm);
     const top = nearest(tops, expectedNm, within);
     if (top === null || taken.has(top)) return { band, top: null, expectedNm };
     taken.add(top);

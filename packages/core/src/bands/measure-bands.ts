@@ -48,7 +48,7 @@ const windowBandwidths = 1.5;
 const windowSteps = 4.5;
 const mostGroups = 44;
 /** Shortest scale over the spectral bandwidth. */
-const scaleOfBandwidth = 0.45;
+const scaleOfBandwidth = 0.6;
 const powers: Record<Ordinate["kind"], readonly number[]> = {
   absorbance: [0, -0.5, -1],
   transmittance: [0, 0.5],
@@ -56,7 +56,7 @@ const powers: Record<Ordinate["kind"], readonly number[]> = {
 };
 const smoothings = [1, 2, 3, 5, 7, 10, 15, 21, 31];
 /** Bands that decide over the kind of noise. */
-const judges = 5;
+const judges = 6;
 /** Log-likelihood by which one more constant has to win (Akaike). */
 const leastGain = 1;
 /** Absorbance and transmittance beyond which no light is left to tell by. */
@@ -113,8 +113,8 @@ export function measureBands(
         power = other;
       }
     }
-    // Only noise alike over less than a bandwidth can be told from the bands themselves.
-    const longest = (bandwidthNm ?? 8 * step) / step;
+    // Noise that is alike over much more than a bandwidth can no longer be told from the bands themselves.
+    const longest = (1.5 * (bandwidthNm ?? 8 * step)) / step;
     let least = best + leastGain;
     for (const other of smoothings) {
       if (other === 1 || other > longest) continue;
