@@ -155,6 +155,7 @@ function polish(hypotheses: readonly Hypothesis[]): Candidate[] {
     let namedCount = 0;
     for (const reference of naming.reference) if (reference >= 0) namedCount += 1;
     const places = placesOf(problem, correction);
+    if (found.some((one) => isSame(one.places, places, agreementShare * problem.fwhmNm))) continue;
     const support = lineEvidence(problem, table, odds, correction, evidence.standardDeviationNm);
     found.push({
       problem,

@@ -14,6 +14,8 @@ import { refine } from "./search.ts";
 const moves = [0.8, 1.8, 3.2, 5] as const;
 const mostRounds = 4;
 const betterBy = 0.1;
+/** An axis that was right gains a little where a stray comes to lie on some line; one that was wrong in part gains more (ln). */
+const leastGain = 3;
 
 /** Corrections that move one place by 1 nm and hold the other two, in T0..T2. */
 const bumps: readonly (readonly [number, number, number])[] = [
@@ -53,5 +55,5 @@ export function mend({ problem, table, odds }: Question, start: Mended): Mended 
     }
     if (best === from) break;
   }
-  return best;
+  return best.evidence.value >= start.evidence.value + leastGain ? best : start;
 }
