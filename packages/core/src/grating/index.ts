@@ -4,3 +4,6 @@ export * from "./array-spectrometer.ts";
 export * from "./fit-array-spectrometer.ts";
 export * from "./scanning-monochromator.ts";
 export * from "./range-from-optics.ts";
+export * from "./modes.ts";
+export * from "./diagnosis.ts";
+export * from "./fringes.ts";

@@ -7,3 +7,4 @@ export * from "./levenberg-marquardt.ts";
 export * from "./faddeeva.ts";
 export * from "./multivariate-normal.ts";
 export * from "./straight-line.ts";
+export * from "./whitener.ts";
