@@ -3,7 +3,7 @@
  *
  * Kind      chosen by evidence (choose-model.ts) from all checks
  * Signals   found by going through the history as it grew: after each check, only with what was known then, an alerting rule that
- *           newly breaks (default-rules.ts) or evidence of 99 % against a stable instrument gives a signal; each kind is told once. The
+ *           newly breaks (default-rules.ts) or evidence of 95 % against a stable instrument gives a signal; each kind is told once. The
  *           kind of a signal is the most probable one then, which later checks may correct: a jump that goes back is first a step, then a mislabelled check.
  * Units     nm, years of 365.2425 days, K. Civil dates. `…Unc…` are standard uncertainties.
  * Limits    fewer than 6 checks are not judged. One history is one instrument and configuration, with one definition of position.
@@ -23,7 +23,7 @@ import { explain } from "./explain.ts";
 /** Fewer checks are not judged. */
 export const leastJudged = 6;
 /** Probability of being stable below which evidence alone gives a signal. */
-const stableBelow = 0.01;
+const stableBelow = 0.05;
 
 export interface DriftSettings {
   tolerance: ToleranceSegment[];
@@ -196,8 +196,6 @@ export function signalsOf(history: readonly DriftCheck[]): DriftSignal[] {
   const signals: DriftSignal[] = [];
   const told = new Set<DriftKind>();
   let open: WatchedQuantity[] = [];
-  /** Since which check the same kind has been the most probable without a break. */
-  let since = { kind: "stable" as DriftKind, index: 0 };
   for (let count = leastJudged; count <= ordered.length; count++) {
     const known = ordered.slice(0, count);
     const series = seriesOf(known)!;
@@ -207,7 +205,6 @@ export function signalsOf(history: readonly DriftCheck[]): DriftSignal[] {
     open = broken;
     const model = chooseModel(series, oddEvidenceOf(series, known).logFactor);
     const kind = kindNow(series, model, opened !== undefined);
-    if (kind !== since.kind) since = { kind, index };
     if (kind === "stable" || told.has(kind)) continue;
     const byEvidence = model.probabilities[0]! < stableBelow;
     if (!byEvidence && opened === undefined) continue;
@@ -218,16 +215,6 @@ export function signalsOf(history: readonly DriftCheck[]): DriftSignal[] {
       kind,
       by: byEvidence ? "evidence" : opened!,
     });
-  }
-  // What the whole history shows with less evidence than a signal needs is told where it began to be the most probable.
-  if (since.kind !== "stable" && !told.has(since.kind)) {
-    signals.push({
-      index: since.index,
-      date: isoDateOfDay(ordered[since.index]!.day),
-      kind: since.kind,
-      by: "evidence",
-    });
-    signals.sort((a, b) => a.index - b.index);
   }
   return signals;
 }

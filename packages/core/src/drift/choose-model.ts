@@ -48,13 +48,13 @@ export interface ChosenModel {
   independence: Record<Which, number>;
 }
 
-/** Prior probabilities: half for a stable instrument; a mislabelled check is rare and gross. Judgement, no source. */
+/** Prior probabilities: most instruments are stable; a mislabelled check is rare and gross. Judgement, no source. */
 const kindPrior: Record<DriftKind, number> = {
-  stable: 0.5,
-  drift: 0.1,
-  scale: 0.1,
-  step: 0.1,
-  temperature: 0.1,
+  stable: 0.64,
+  drift: 0.09,
+  scale: 0.09,
+  step: 0.09,
+  temperature: 0.08,
   mislabelled: 0.01,
 };
 

@@ -44,9 +44,14 @@ export function explain(assessment: DriftAssessment, series: DriftSeries, model:
           : odd!.fitsDate !== null
             ? ` It would fit the trend on ${odd!.fitsDate}.`
             : "";
+      const last = odd!.index === series.count - 1;
+      const place =
+        odd!.index === 0 || last
+          ? `does not fit those ${last ? "before" : "after"} it (one check more ${last ? "after" : "before"} it would tell a step)`
+          : "fits neither those before it nor those after it";
       return (
-        `The check of ${odd!.date} fits neither those before it nor those after it: it lies ${sized(odd!.midNm, odd!.midUncNm)} off at ` +
-        `mid-range.${fits} Look whether it belongs to another source, date or instrument.${against}`
+        `The check of ${odd!.date} ${place}: it lies ${sized(odd!.midNm, odd!.midUncNm)} off at mid-range.${fits} Look whether it ` +
+        `belongs to another source, date or instrument.${against}`
       );
     }
   }
