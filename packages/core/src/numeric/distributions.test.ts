@@ -2,7 +2,11 @@ import { describe, expect, test } from "vitest";
 import {
   binomialUpperTail,
   chiSquareCdf,
+  chiSquareQuantile,
   chiSquareUpperTail,
+  fCdf,
+  fQuantile,
+  fUpperTail,
   normalCdf,
   normalQuantile,
   poissonUpperTail,
@@ -54,5 +58,43 @@ describe("distributions", () => {
     expect(binomialUpperTail(2, 3, 0.5)).toBeCloseTo(0.5, 14);
     expect(poissonUpperTail(1, 2)).toBeCloseTo(0.8646647167633873, 14);
     expect([binomialUpperTail(0, 3, 0.5), binomialUpperTail(4, 3, 0.5), poissonUpperTail(0, 1)]).toEqual([1, 0, 1]);
+  });
+  // Exact values computed with mpmath 1.3.0 at 40 digits.
+  test.each([
+    [0.05, 4, 0.71072302139732413],
+    [0.95, 4, 9.4877290367811546],
+    [0.999, 10, 29.588298445074416],
+    [1e-6, 3, 0.00024181048720124282],
+    [0.5, 1, 0.45493642311957275],
+    [0.025, 0.7, 3.808256451953091e-5],
+    [0.975, 63.2, 87.064593530902436],
+    [1e-12, 0.3, 1.2599925262770267e-80],
+    [0.9999, 500, 626.24271005607844],
+    [0.01, 2000, 1855.816319593285],
+  ])("chi-squared quantile of %d with %d degrees of freedom is %d", (p, dof, exact) => {
+    expect(Math.abs(chiSquareQuantile(p, dof) / exact - 1)).toBeLessThan(2e-12);
+  });
+  test.each([
+    [0.95, 3, 10, 3.7082648190468431],
+    [0.05, 3, 10, 0.11382359425864678],
+    [0.99, 1, 7.5, 11.706133210809958],
+    [1e-6, 2, 30, 1.0000005333337007e-6],
+    [0.5, 5, 5, 1.0],
+    [0.999, 40, 3, 124.95896949958344],
+    [0.975, 0.8, 120, 5.6950480397480167],
+    [0.9, 200, 300, 1.1778548651189069],
+  ])("F quantile of %d with %d and %d degrees of freedom is %d", (p, top, bottom, exact) => {
+    expect(Math.abs(fQuantile(p, top, bottom) / exact - 1)).toBeLessThan(2e-12);
+    expect(Math.abs(fCdf(exact, top, bottom) / p - 1)).toBeLessThan(1e-12);
+    expect(Math.abs(fUpperTail(exact, top, bottom) / (1 - p) - 1)).toBeLessThan(1e-12);
+  });
+  test("F with one degree of freedom above is Student squared; ends and what is no probability", () => {
+    expect(fQuantile(0.95, 1, 12)).toBeCloseTo(studentQuantile(0.975, 12) ** 2, 10);
+    expect([chiSquareQuantile(0, 3), chiSquareQuantile(1, 3), chiSquareQuantile(2, 3), fQuantile(0.5, -1, 2)]).toEqual([
+      0,
+      Infinity,
+      NaN,
+      NaN,
+    ]);
   });
 });
