@@ -25,6 +25,9 @@ const unitOfKind: Record<AxisKind, AxisUnit> = {
   step: "step",
 };
 
+/** What an axis may count that is read nowhere here. */
+const foreignAxis = /\b[TGMk]?Hz\b|\bfrequency\b|\b[mk]eV\b|\bm\/z\b|\btime\b|\bppm\b/i;
+
 function isStrictlyMonotonic(values: readonly number[]): boolean {
   let direction = 0;
   for (let i = 1; i < values.length; i += 1) {
@@ -103,6 +106,11 @@ export function chooseColumns(
   if (intensityColumn === axisColumn) return { problem: "Axis and intensity can't be the same column." };
 
   const heading = axisColumn === null ? "" : headings[axisColumn]!;
+  if (foreignAxis.test(heading) && options.axisKind === undefined && options.axisUnit === undefined) {
+    return {
+      problem: `The axis counts "${heading}"; wavelengths, wavenumbers, energies in eV, pixels and drive steps are read. Say what it counts, if it is one of them.`,
+    };
+  }
   const values = axisColumn === null ? [] : numbers[axisColumn]!;
   const { kind, unit } = axisMeaning(heading, values, axisColumn, metadata, options, remarks);
   return { axisColumn, intensityColumn, axisKind: kind, axisUnit: unit, remarks };

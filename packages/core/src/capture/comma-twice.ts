@@ -4,7 +4,10 @@
  * Every way to make columns of one or two pieces is held against all rows. A way fits when whole parts begin with no needless zero, the
  * pieces that would be decimals are written as decimals are (equally many in every row, or never ending in a needless zero), and a first
  * column results that is an axis: strictly rising or falling in steps of about one size. The number of headings decides where there are some.
+ *
+ * Where the parting commas have a blank behind them (`400,5, 1234,5`) and the others none, that tells them apart.
  */
+import type { LineIndex } from "./line-index.ts";
 import { scanNumber } from "./scan-row.ts";
 
 /** More pieces than this are not tried: a plain table of numbers. */
@@ -112,4 +115,52 @@ function isEvenAxis(values: Float64Array): boolean {
   let even = 0;
   for (const step of steps) if (step <= evenFactor * middle && evenFactor * step >= middle) even += 1;
   return even >= evenShare * (n - 1);
+}
+
+const looked = 60;
+const mostPlainShare = 0.1;
+
+/**
+ * Text in which commas with a blank behind part the columns and commas between digits are decimal signs: the same bytes with a semicolon for
+ * each parting comma of its data lines, so that every offset stays. Null where the text is not so.
+ */
+export function partByCommaAndBlank(bytes: Uint8Array, lines: LineIndex): Uint8Array | null {
+  const from = Math.max(0, (lines.count >> 1) - looked);
+  let parted = 0;
+  let both = 0;
+  let seen = 0;
+  for (let line = from; line < lines.count && seen < looked; line += 1) {
+    if (lines.ends[line] === lines.starts[line]) continue;
+    seen += 1;
+    const commas = commasOf(bytes, lines.starts[line]!, lines.ends[line]!);
+    if (commas === null || commas.parting === 0) continue;
+    parted += 1;
+    if (commas.within > 0) both += 1;
+  }
+  if (both === 0 || parted < (1 - mostPlainShare) * seen) return null;
+  const copy = bytes.slice();
+  for (let line = 0; line < lines.count; line += 1) {
+    const to = lines.ends[line]!;
+    if (commasOf(bytes, lines.starts[line]!, to) === null) continue;
+    for (let i = lines.starts[line]!; i + 1 < to; i += 1) if (bytes[i] === 44 && bytes[i + 1] === 32) copy[i] = 59;
+  }
+  return copy;
+}
+
+/** Commas of a line of numbers: with a blank behind, and between two digits; null for a line that holds anything else. */
+function commasOf(bytes: Uint8Array, from: number, to: number): { parting: number; within: number } | null {
+  let parting = 0;
+  let within = 0;
+  let digits = 0;
+  for (let i = from; i < to; i += 1) {
+    const byte = bytes[i]!;
+    if (byte >= 48 && byte <= 57) digits += 1;
+    else if (byte === 44) {
+      const next = i + 1 < to ? bytes[i + 1]! : 0;
+      if (next === 32) parting += 1;
+      else if (digits > 0 && next >= 48 && next <= 57) within += 1;
+      else return null;
+    } else if (byte !== 32 && byte !== 43 && byte !== 45 && (byte | 32) !== 101) return null;
+  }
+  return digits === 0 ? null : { parting, within };
 }

@@ -32,7 +32,12 @@ export function readMetadataLine(text: string, delimiter: Delimiter = "\t"): { k
     }
   }
   if (at < 0) at = bare.slice(0, mostKeyLetters).indexOf("  ");
-  if (at <= 0) return null;
+  if (at < 0) {
+    // Words and one number with its unit: `Integration time 100 ms`.
+    const match = /^(\p{L}[\p{L} _()/-]{0,60}) ([-+]?\d[\d.,]{0,20}(?: ?[^\d\s]{1,10})?)$/u.exec(bare.slice(0, 100));
+    return match === null ? null : { key: match[1]!.trim(), value: match[2]! };
+  }
+  if (at === 0) return null;
   const key = stripQuotes(bare.slice(0, at));
   if (key === "" || !/\p{L}/u.test(key)) return null;
   const value = stripQuotes(bare.slice(at + 1).replace(/^[\s:=,;"']+/, ""));

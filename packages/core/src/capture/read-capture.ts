@@ -4,7 +4,7 @@
  */
 import type { PossibleReading, ReadCapture, ReadOptions, Refusal } from "../analysis/types.ts";
 import { chooseColumns, columnName } from "./choose-columns.ts";
-import { fittingJoins, mostPieces, type PieceTable } from "./comma-twice.ts";
+import { fittingJoins, mostPieces, partByCommaAndBlank, type PieceTable } from "./comma-twice.ts";
 import { offeredReadings, settleDecimalSign, type SignReading } from "./decimal-sign.ts";
 import { decodeBytes, textToBytes, type TextEncoding } from "./decode.ts";
 import { findDataBlock, type DataBlock } from "./find-data-block.ts";
@@ -43,16 +43,29 @@ export function readCapture(source: Uint8Array | string, name: string, options: 
   if (allBlank(bytes, lines))
     return refuse("empty-file", "The file holds nothing but blank lines. Export the spectrum again.");
   if (isJcamp(bytes)) return readJcamp({ bytes, encoding, lines, name, options });
-  const block = findDataBlock(bytes, lines, options);
+  // `400,5, 1234,5`: with its blank the comma parts the columns, without it is the decimal sign.
+  const mayBeCommas = options.delimiter === undefined || options.delimiter === ",";
+  const parted = mayBeCommas && options.cellsPerColumn === undefined ? partByCommaAndBlank(bytes, lines) : null;
+  const block = findDataBlock(parted ?? bytes, lines, parted === null ? options : { ...options, delimiter: ";" });
   if (block === null) return refuseWithoutNumbers(bytes, lines);
-  const file: TextFile = { bytes, encoding, lines, name, options };
+  const file: TextFile = { bytes: parted ?? bytes, original: bytes, encoding, lines, name, options };
   const read = readTable(file, block);
   if ("outcome" in read) return read;
-  return finishTable(file, read);
+  const tables = findTables(read.rows);
+  const table = chooseTable(tables, read.rows, options, read.remarks);
+  if ("outcome" in table) return table;
+  if (table.from === 0) return finishTable(file, read, table, tables.length);
+  // A later table has headings of its own, which may say another thing of its columns.
+  const later = readWithBlock(file, { ...block, firstLine: read.rows.lineNumbers[table.from]! - 1 });
+  if ("outcome" in later) return later;
+  later.remarks.push(...read.remarks);
+  return finishTable(file, later, findTables(later.rows)[0]!, tables.length);
 }
 
 interface TextFile {
+  /** As it is read: delimiters may have been made plain. */
   bytes: Uint8Array;
+  original: Uint8Array;
   encoding: TextEncoding;
   lines: LineIndex;
   name: string;
@@ -100,7 +113,7 @@ function readTable(file: TextFile, found: DataBlock): ReadTable | Refusal {
   const first = readWithBlock(file, found);
   if ("outcome" in first) return first;
   const { rows } = first;
-  if (rows.unreadCount <= mostUnreadShare * rows.counts.length) return first;
+  if (rows.unreadCount <= mostUnreadShare * rows.counts.length || file.bytes !== file.original) return first;
   const again = findDataBlock(file.bytes, file.lines, file.options, true);
   if (again === null) return first;
   const second = readWithBlock(file, again);
@@ -286,13 +299,10 @@ function sampleColumns(bytes: Uint8Array, lines: LineIndex, block: DataBlock, mo
   return sample;
 }
 
-function finishTable(file: TextFile, read: ReadTable): ReadCapture {
+function finishTable(file: TextFile, read: ReadTable, table: TableSpan, tableCount: number): ReadCapture {
   const { bytes, encoding, lines, name, options } = file;
   const { block, chosen, rows, header } = read;
   const remarks = [...read.remarks, ...chosen.remarks];
-  const tables = findTables(rows);
-  const table = chooseTable(tables, rows, options, remarks);
-  if ("outcome" in table) return table;
   const other = sortUnread(bytes, encoding, lines, block, rows, table, header.headingLine);
   for (const line of other.metadataLines) {
     if (isMetadataFull(header.metadata)) break;
@@ -322,7 +332,7 @@ function finishTable(file: TextFile, read: ReadTable): ReadCapture {
       `${other.damagedCount} line${one ? "" : "s"} could not be read and ${one ? "was" : "were"} left out: ${named.join(", ")}${more}.`,
     );
   }
-  const missing = tables.length === 1 ? rows.missing : countMissing(counts);
+  const missing = table.to === rows.counts.length ? rows.missing : countMissing(counts);
   return finishCapture({
     name,
     axis,
@@ -334,13 +344,13 @@ function finishTable(file: TextFile, read: ReadTable): ReadCapture {
     lineOf: (row) => rows.lineNumbers[table.from + row]!,
     facts: {
       missing,
-      delimiter: block.delimiter,
+      delimiter: bytes === file.original ? block.delimiter : ",",
       decimal: block.decimal,
       encoding,
       headerLines: block.firstLine,
       columns: header.headings.map((_, column) => columnName(header.headings, column)),
       damagedLines: other.damaged,
-      ...(tables.length > 1 ? { tables: tables.length } : {}),
+      ...(tableCount > 1 ? { tables: tableCount } : {}),
     },
   });
 }
