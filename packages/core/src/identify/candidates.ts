@@ -10,7 +10,7 @@ import type { IdentifyInput } from "./identify-lines.ts";
 import { mend } from "./mend.ts";
 import { type Naming, nameLines } from "./name-lines.ts";
 import { buildProblem, type Problem, usualCubic } from "./problem.ts";
-import { type ReferenceTable, referenceTable } from "./reference-table.ts";
+import { type ReferenceTable, referenceTable, roomLightOn } from "./reference-table.ts";
 import { longestNm, leastSpanNm, mostSpanNm, scalesOf, shortestNm } from "./scale-tables.ts";
 import { correctedNm, type Evidence, evidenceFor, lineEvidence, type Odds, oddsFor, strongCount } from "./score.ts";
 import { BestLampAxes, type LampAxis, searchTriple, triplesOf } from "./search-alone.ts";
@@ -69,7 +69,7 @@ export function ask(input: IdentifyInput, elements: readonly string[], wide: boo
   const low = Math.min(problem.baseFirstNm, problem.baseLastNm) - reach;
   const high = Math.max(problem.baseFirstNm, problem.baseLastNm) + reach;
   const table = referenceTable(input.lineList, elements, input.expectedLinesNm, low, high, problem.meaning);
-  return { problem, table, odds: oddsFor(table, high - low) };
+  return { problem, table, odds: oddsFor(table, high - low, roomLightOn(input.lineList, elements, problem.meaning)) };
 }
 
 /** Candidates of one question, best first. */

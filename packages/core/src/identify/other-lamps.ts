@@ -9,7 +9,7 @@ import { elementsOf } from "../linelist/built-in.ts";
 import { log } from "../numeric/elementary.ts";
 import type { Naming } from "./name-lines.ts";
 import type { Problem } from "./problem.ts";
-import { lowerBound, referenceTable, type ReferenceTable } from "./reference-table.ts";
+import { lowerBound, referenceTable, type ReferenceTable, roomLightOn } from "./reference-table.ts";
 import { correctedNm, strongCount } from "./score.ts";
 
 const names: Record<string, string> = {
@@ -97,10 +97,15 @@ export function findOtherGases(input: Asked, problem: Problem, naming: Naming): 
   const { correction } = naming.fit;
   const low = Math.min(problem.baseFirstNm, problem.baseLastNm) - problem.bounds.endNm;
   const high = Math.max(problem.baseFirstNm, problem.baseLastNm) + problem.bounds.endNm;
-  for (const element of otherElements(input.lineList, input.elements)) {
+  const room = roomLightOn(input.lineList, input.elements, problem.meaning);
+  const asked = otherElements(input.lineList, input.elements).map((element) => ({ element, isRoom: false }));
+  // Of room light only its few lines in the visible are seen: asked about apart from mercury in the lamp.
+  if (room.length > 0) asked.push({ element: "Hg", isRoom: true });
+  for (const { element, isRoom } of asked) {
     const table = referenceTable(input.lineList, [element], [], low, high, problem.meaning);
+    const counts = (j: number): boolean => (isRoom ? room.includes(table.nm[j] as number) : isProminent(table, j));
     const strongest: number[] = [];
-    for (let j = 0; j < table.nm.length; j++) if (isProminent(table, j)) strongest.push(j);
+    for (let j = 0; j < table.nm.length; j++) if (counts(j)) strongest.push(j);
     if (strongest.length < 2) continue;
     const width = nearShare * problem.fwhmNm;
     const gain = log(problem.spanNm / (strongest.length * 2 * width));
@@ -112,7 +117,7 @@ export function findOtherGases(input: Asked, problem: Problem, naming: Naming): 
         j < table.nm.length && (table.nm[j] as number) <= nm + width;
         j++
       ) {
-        if (!isProminent(table, j)) continue;
+        if (!counts(j)) continue;
         lines.push(i);
         break;
       }
@@ -132,7 +137,7 @@ export function findOtherGases(input: Asked, problem: Problem, naming: Naming): 
         j < table.nm.length && (table.nm[j] as number) <= nm + reach;
         j++
       ) {
-        if (isProminent(table, j)) disputed.push(i);
+        if (counts(j)) disputed.push(i);
       }
     }
     const places = lines.map((i) => correctedNm(problem, correction, i).toFixed(1)).sort();

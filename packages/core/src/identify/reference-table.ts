@@ -173,6 +173,21 @@ export function referenceTable(
   return table;
 }
 
+/** What fluorescent room light shows of mercury, air nm. */
+const roomLight = [404.6565, 435.8335, 546.075, 576.961, 579.067] as const;
+
+/** Mercury's lines of room light on the axis' medium, nm; none for a lamp that holds mercury itself. */
+export function roomLightOn(list: LineList, elements: readonly string[], meaning: AxisMeaning): readonly number[] {
+  if (elements.some((element) => element.startsWith("Hg"))) return [];
+  const mercury = lampTable(list, ["Hg"], meaning);
+  const found: number[] = [];
+  mercury.lines.forEach((line, j) => {
+    const air = line.wavelengthAirNm ?? 0;
+    if (roomLight.some((nm) => Math.abs(nm - air) < expectedWithinNm)) found.push(mercury.nm[j] as number);
+  });
+  return found;
+}
+
 /** Whether a line belongs to an ion rather than to the neutral atom. */
 export const isIon = (line: ReferenceLine): boolean => !line.spectrum.endsWith(" I") && line.spectrum.includes(" ");
 const uncertaintyOf = (line: ReferenceLine): number => line.uncertaintyNm ?? Number.POSITIVE_INFINITY;

@@ -23,6 +23,8 @@ import { lowerBound, oddsOf, type ReferenceTable } from "./reference-table.ts";
 const terms = orderCount;
 /** Share of found lines that are no listed line of the lamp: impurities, room light, weak unlisted lines. */
 export const strayShare = 0.12;
+/** Of these, lines of room light. */
+const roomShare = 0.03;
 /** Strong found lines lean more on published intensities than weak ones. */
 const strongPower = 0.7;
 const weakPower = 0.3;
@@ -40,9 +42,11 @@ export interface Odds {
   strongOf: Float64Array;
   weakOf: Float64Array;
   windowNm: number;
+  /** Mercury's lines of room light, nm, where the lamp itself holds none. */
+  roomNm: readonly number[];
 }
 
-export function oddsFor(table: ReferenceTable, windowNm: number): Odds {
+export function oddsFor(table: ReferenceTable, windowNm: number, roomNm: readonly number[] = []): Odds {
   const strong = new Float64Array(table.nm.length);
   const weak = new Float64Array(table.nm.length);
   const strongOf = new Float64Array(table.elements);
@@ -61,7 +65,7 @@ export function oddsFor(table: ReferenceTable, windowNm: number): Odds {
     strongOf[e] = (strongOf[e] as number) + (strong[j] as number);
     weakOf[e] = (weakOf[e] as number) + (weak[j] as number);
   }
-  return { strong, weak, strongOf, weakOf, windowNm };
+  return { strong, weak, strongOf, weakOf, windowNm, roomNm };
 }
 
 /** Found lines that count as strong: the upper 60 %, at most fourteen. */
@@ -138,6 +142,17 @@ export interface Evidence {
   brightElement: number;
 }
 
+/** What a stray has for it: anything anywhere, or one of the lines of room light. */
+function strayOdds({ roomNm, windowNm }: Odds, at: number, sd: number): number {
+  if (roomNm.length === 0) return strayShare;
+  let sum = 0;
+  for (let k = 0; k < roomNm.length; k++) {
+    const u = (at - (roomNm[k] as number)) / sd;
+    if (u < 4 && u > -4) sum += exp(-0.5 * u * u);
+  }
+  return strayShare - roomShare + (sum === 0 ? 0 : (roomShare * windowNm * sum) / (roomNm.length * sd * root2Pi));
+}
+
 const widths = widthShares.length;
 const root2Pi = Math.sqrt(2 * PI);
 const hessian = Array.from({ length: widths }, () => new Float64Array(terms * terms));
@@ -212,15 +227,16 @@ export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds,
       const sd = sdAt[w] as number;
       let all = 0;
       for (let e = 0; e < elements; e++) all += sums[w * elements + e] as number;
-      const g = strayShare + (scale * all) / sd;
+      const stray = strayOdds(odds, at, sd);
+      const g = stray + (scale * all) / sd;
       product[w] = (product[w] as number) * g;
       for (let m = 1; m < mixtures; m++) {
         // One element bright, the others dim beside it.
         const sum = dimShare * all + (1 - dimShare) * (sums[w * elements + m - 1] as number);
         const norm = dimShare + (1 - dimShare) * (shares[m - 1] as number);
-        product[m * widths + w] = (product[m * widths + w] as number) * (strayShare + (scale * sum) / (sd * norm));
+        product[m * widths + w] = (product[m * widths + w] as number) * (stray + (scale * sum) / (sd * norm));
       }
-      const weight = (1 - strayShare / g) / (sd * sd);
+      const weight = (1 - stray / g) / (sd * sd);
       if (weight === 0) continue;
       const h = hessian[w] as Float64Array;
       for (let r = 0; r < terms; r++) {
