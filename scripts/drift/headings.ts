@@ -102,19 +102,23 @@ export function plainHeading(heading: string): string {
     .replaceAll(/[^a-z0-9]/g, "");
 }
 
-const unitPattern =
-  /[([{]\s*([^()[\]{}]*?)\s*[)\]}]|(?:\s*[,/]\s*|\s+in\s+|[\s_])(nm|å|angstrom|pm|µm|μm|um|°c|°f|degc|degf|k)\s*$/i;
+const bracket = /[([{]\s*([^()[\]{}]*?)\s*[)\]}]/g;
+const trailingUnit = /(?:\s*[,/]\s*|\s+in\s+|[\s_])(nm|å|angstrom|pm|µm|μm|um|°c|°f|degc|degf|k)\s*$/i;
+/** "U (k=2)": tells an expanded uncertainty. */
+const coverage = /^k\s*=\s*2([.,]0*)?$/i;
 
 function withoutUnit(heading: string): string {
-  return heading.replace(unitPattern, (whole, bracketed: string | undefined) =>
-    // "U (k=2)" keeps its k: it tells an expanded uncertainty.
-    bracketed !== undefined && /k\s*=\s*2/i.test(bracketed) ? "k2" : "",
-  );
+  return heading
+    .replaceAll(bracket, (_, inside: string) => (coverage.test(inside) ? "k2" : ""))
+    .trimEnd()
+    .replace(trailingUnit, "");
 }
 
 function unitOf(heading: string): string {
-  const match = unitPattern.exec(heading);
-  return (match?.[1] ?? match?.[2] ?? "").toLowerCase();
+  const inBrackets = [...heading.matchAll(bracket)]
+    .map((match) => match[1]!)
+    .filter((inside) => !coverage.test(inside));
+  return (inBrackets[0] ?? trailingUnit.exec(heading)?.[1] ?? "").toLowerCase();
 }
 
 /** The field of a heading, or null. A capital U alone is an expanded uncertainty, a small one a standard uncertainty. */
