@@ -266,6 +266,37 @@ describe("corrections", () => {
   });
 });
 
+describe("damage", () => {
+  const rows = (broken: (i: number) => boolean): string =>
+    `Wavelength (nm);Counts\n${rowsOf((i) => (broken(i) ? `${400 + i}` : `${400 + i};${i}`), 60)}`;
+
+  it("is named and left out where it is little, and refused with its first line where it is much", () => {
+    expect(
+      readCapture(
+        rows((i) => i % 20 === 3),
+        "some",
+      ),
+    ).toMatchObject({
+      outcome: "read",
+      facts: { rows: 57, damagedLines: [{ line: 5 }, { line: 25 }, { line: 45 }] },
+    });
+    expect(
+      readCapture(
+        rows((i) => i % 3 === 2),
+        "much",
+      ),
+    ).toMatchObject({ outcome: "refused", code: "damaged-data", line: 4 });
+  });
+
+  it("does not pass for numbers: a row with one too many is left out", () => {
+    const text = `nm,counts\n${rowsOf((i) => (i === 9 ? "409,1,234" : `${400 + i},${100 + i}`))}`;
+    expect(readCapture(text, "torn")).toMatchObject({
+      outcome: "read",
+      facts: { rows: 23, damagedLines: [{ line: 11 }] },
+    });
+  });
+});
+
 describe("hostile files", () => {
   const valid = [
     `Wavelength (nm);Counts\r\n${rowsOf((i) => `${400 + i},25;${1000 + ((i * 7919) % 97)},5`)}\r\n`,

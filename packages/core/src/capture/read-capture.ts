@@ -19,6 +19,8 @@ import { isMissingCell, makeRowReader, scanNumber, splitCells, splitRow } from "
 const sampledRows = 400;
 /** Share of unread lines above which the layout is decided anew, from every line. */
 const mostUnreadShare = 0.05;
+/** Damaged lines per good one above which a file is refused: it was understood wrongly, or it is no capture. */
+const mostDamagedShare = 0.3;
 
 /**
  * Read one capture.
@@ -323,6 +325,18 @@ function finishTable(file: TextFile, read: ReadTable, table: TableSpan, tableCou
       );
     }
     remarks.push("The file holds one column of numbers; they were read as intensities, one a pixel, counted from 0.");
+  }
+  if (other.damagedCount > mostDamagedShare * counts.length) {
+    const { line, reason } = other.damaged[0]!;
+    const commas =
+      block.delimiter === ","
+        ? " Is the comma also the decimal sign? Export with decimal points, or with semicolons."
+        : "";
+    return refuse(
+      "damaged-data",
+      `${other.damagedCount} lines could not be read beside ${counts.length} that could; the first, line ${line}, ${reason}. So much was not left out.${commas}`,
+      line,
+    );
   }
   if (other.damagedCount > 0) {
     const named = other.damaged.slice(0, 5).map(({ line, reason }) => `line ${line} ${reason}`);
