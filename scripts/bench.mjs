@@ -1,6 +1,7 @@
 /**
  * `npm run bench`: times of the two commands, cold (a fresh clone, an empty home folder) and warm, as rows for
- * docs/figures.md. `npm run bench -- start` measures npm start alone, `-- test` npm test alone, `-- analyse` the measuring core.
+ * docs/figures.md. `npm run bench -- start` measures npm start alone, `-- test` npm test alone, `-- analyse` the measuring core beside
+ * general-purpose packages that do the same job.
  */
 import { spawn } from "node:child_process";
 import { once } from "node:events";
@@ -20,7 +21,7 @@ await runCommand(async () => {
     fs.rmSync(scratch, { recursive: true, force: true });
     await ensureInstall();
     const { ensureCommand } = await import("./build.mjs");
-    const { main } = await import(pathToFileURL(await ensureCommand("scripts/bench-analyse")).href);
+    const { main } = await import(pathToFileURL(await ensureCommand("scripts/bench-analyse", ["tests/validation"])).href);
     return main();
   }
   const clone = path.join(scratch, "wavekeep");

@@ -77,10 +77,11 @@ export async function ensureBuild(say = () => {}) {
  * A command-line program written in TypeScript on the core, bundled when it or the core changed.
  *
  * @param {string} folder relative to the project; its main.ts is the entry
+ * @param {string[]} also other folders that it is made of
  * @returns {Promise<string>} the bundle
  */
-export async function ensureCommand(folder) {
-  const files = [...sourceFiles("packages/core"), ...sourceFiles(folder), "pnpm-lock.yaml"];
+export async function ensureCommand(folder, also = []) {
+  const files = [...["packages/core", folder, ...also].flatMap(sourceFiles), "pnpm-lock.yaml"];
   const bundles = path.join(projectDir, folder, "dist");
   const bundle = path.join(bundles, `${fingerprintOf(files)}.mjs`);
   if (!fs.existsSync(bundle)) {

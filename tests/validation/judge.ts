@@ -38,6 +38,8 @@ export interface Judged {
   axisTried: number;
   /** Squared departure over the Cramér-Rao bound of single lines (white noise, Gaussian), above 20:1. */
   overBound: number[];
+  /** Departure of each single line's position from the truth, samples. */
+  centreOff: number[];
   elapsedMs: number;
 }
 
@@ -102,6 +104,7 @@ export function compare(analysis: Analysis, sim: Simulated, mode: ModeName): Jud
     axisHeld: 0,
     axisTried: 0,
     overBound: [],
+    centreOff: [],
     elapsedMs: 0,
   };
   const used = named.filter((line) => line.usedInAxis && !wrongAt.has(line.position)).map((line) => line.position);
@@ -141,6 +144,7 @@ export function compare(analysis: Analysis, sim: Simulated, mode: ModeName): Jud
     if (truth === null || truth.crowding > 0.003 || truth.isSaturated) continue;
     judged.linesTried += 1;
     const off = line.position - truth.position;
+    judged.centreOff.push(off / perSample);
     if (mode === "earlier-axis" && line.errorNm !== null && line.errorExpandedUncNm !== null) {
       const trueError = sim.earlierAt(truth.position) - truth.trueNm;
       if (Math.abs(line.errorNm - trueError) <= line.errorExpandedUncNm) judged.linesHeld += 1;
