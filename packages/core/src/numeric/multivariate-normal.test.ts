@@ -38,7 +38,7 @@ describe("closed forms", () => {
     const exact = 0.25 + asin(r) / (2 * PI);
     const result = normalRectangleProbability([3, 5], [4, 2 * r, 2 * r, 1], filled(2, -Infinity), [3, 5], {
       tolerance: 2e-6,
-      maxPoints: 200000,
+      maxPoints: 50000,
     });
     expect(Math.abs(result.probability - exact)).toBeLessThan(4e-6);
   });
