@@ -10,7 +10,6 @@
  *             log1p 0.75, log10 0.50, pow 1.00, hypot 0.63 ulp; exp and pow below 2^-1022 to one unit of 2^-1074.
  *             elementary.test.ts holds them to 1 ulp, pow to 1.5, on fixtures/elementary-reference.json
  */
-import { low, multiplyDouble, twoProduct, twoSum } from "./double-double.ts";
 import { EXP2_STEP_HI, EXP2_STEP_LO } from "./elementary-tables.ts";
 
 /** ln 2 / 32 in two parts; the first has 32 significant bits, so that k times it is exact for |k| < 2^21. */
@@ -23,6 +22,8 @@ const LN2_LO = 1.9082149292705877e-10;
 const INVERSE_LN10_HI = 0.4342944819032518;
 const INVERSE_LN10_LO = 1.098319650216765e-17;
 const SQRT_HALF = 0.7071067811865476;
+/** 2^27 + 1: splits a double into two halves of at most 26 bits. */
+const SPLITTER = 134217729;
 
 /** 2^e for e = -1074 … 1023, made by exact halving and doubling. */
 const LOWEST_EXPONENT = -1074;
@@ -159,6 +160,34 @@ export function log1p(x: number): number {
   const lost = x > 1 ? 1 - (sum - x) : x - (sum - 1);
   const fraction = splitFraction(sum);
   return logOfSum(splitExponent, fraction - 1, lost / sum);
+}
+
+/** Low part of the last double-double result; the high part is returned. */
+let low = 0;
+
+function twoSum(a: number, b: number): number {
+  const s = a + b;
+  const bb = s - a;
+  low = a - (s - bb) + (b - bb);
+  return s;
+}
+
+function twoProduct(a: number, b: number): number {
+  const p = a * b;
+  const aa = SPLITTER * a;
+  const aHigh = aa - (aa - a);
+  const aLow = a - aHigh;
+  const bb = SPLITTER * b;
+  const bHigh = bb - (bb - b);
+  const bLow = b - bHigh;
+  low = aLow * bLow - (p - aHigh * bHigh - aLow * bHigh - aHigh * bLow);
+  return p;
+}
+
+/** (aHigh + aLow) * (bHigh + bLow). */
+function multiplyDouble(aHigh: number, aLow: number, bHigh: number, bLow: number): number {
+  const p = twoProduct(aHigh, bHigh);
+  return twoSum(p, low + (aHigh * bLow + aLow * bHigh));
 }
 
 /** log(x) as high + low to about 2^-68 of max(1, |log x|), for positive finite x. */
