@@ -76,6 +76,22 @@ describe("what follows", () => {
       6,
     );
   });
+  test("limits: slit 100 µm 0.240563 nm as above, two pixels 2 x 0.038694 = 0.077388 nm, 50 mm lit 500 / 60 000 = 0.008333 nm", () => {
+    const limits = grating.bandwidthLimits({
+      ...state,
+      focalLengthMm: 300,
+      slitUm: 100,
+      pixelPitchUm: 14,
+      litWidthMm: 50,
+    });
+    expect(limits.slitNm).toBeCloseTo(0.240563, 6);
+    expect(limits.pixelNm).toBeCloseTo(0.077388, 6);
+    expect(limits.diffractionNm).toBeCloseTo(0.008333, 6);
+    expect(limits.largest).toBe("slit");
+    expect(
+      grating.bandwidthLimits({ ...state, focalLengthMm: 300, slitUm: 20, pixelPitchUm: 14, litWidthMm: null }),
+    ).toMatchObject({ largest: "pixel", diffractionNm: null });
+  });
   test("where 600 nm falls in order 1, 300 nm falls in order 2 and 200 nm in order 3", () => {
     expect(grating.overlappingOrders(600, 1, 190, 1100)).toEqual([
       { order: 2, wavelengthNm: 300 },

@@ -195,6 +195,43 @@ export function slitLimitedBandwidthNm(
   return (Math.abs(reciprocalDispersionNmPerMm(state)) * Math.max(imageUm, state.exitUm)) / 1000;
 }
 
+/** What limits the bandwidth of an array spectrometer, nm FWHM each, at one wavelength. */
+export interface BandwidthLimits {
+  /** Image of the entrance slit. */
+  slitNm: number;
+  /** Two pixels: narrower lines are not sampled well enough to be told apart. */
+  pixelNm: number;
+  /** Wavelength over the resolving power of the grooves that are lit; null where their width is not known. */
+  diffractionNm: number | null;
+  largest: "slit" | "pixel" | "diffraction";
+}
+
+/**
+ * Slit-, pixel- and diffraction-limited bandwidth. The line's own shape is none of them: imaging errors come on top.
+ *
+ * @param state.litWidthMm  width of the grating that is lit, or null
+ * @throws {RangeError} as the functions for each
+ */
+export function bandwidthLimits(
+  state: GratingState & {
+    focalLengthMm: number;
+    slitUm: number;
+    pixelPitchUm: number;
+    litWidthMm: number | null;
+    magnification?: number;
+  },
+): BandwidthLimits {
+  const slitNm = slitLimitedBandwidthNm({ ...state, exitUm: 0 });
+  const pixelNm = 2 * Math.abs(dispersionNmPerPx(state));
+  const diffractionNm =
+    state.litWidthMm === null
+      ? null
+      : state.wavelengthNm / resolvingPower(state.order, state.grooveDensityPerMm, state.litWidthMm);
+  let largest: BandwidthLimits["largest"] = slitNm >= pixelNm ? "slit" : "pixel";
+  if (diffractionNm !== null && diffractionNm > Math.max(slitNm, pixelNm)) largest = "diffraction";
+  return { slitNm, pixelNm, diffractionNm, largest };
+}
+
 /** Wavelengths of other orders that fall where `wavelengthNm` of `order` falls: m lambda = m' lambda', within [firstNm, lastNm]. */
 export function overlappingOrders(
   wavelengthNm: number,
