@@ -23,8 +23,8 @@
  *          scale only; the FWHM that is handed on is found on the curve); small tail or box: Edgeworth's series (DLMF 18.5)
  */
 import type { LineShapeName } from "../analysis/types.ts";
-import { atan, pow } from "../numeric/elementary.ts";
-import { voigtFunction, voigtWithGradient } from "../numeric/faddeeva.ts";
+import { atan, erfcx, pow } from "../numeric/elementary.ts";
+import { voigtWithGradient } from "../numeric/faddeeva.ts";
 import { FWHM_PER_STD, gaussian, gaussianIntegral, SQRT_TWO_PI } from "./gaussian.ts";
 
 /** What a shape leaves behind: at an edge G, g and dG/ds; at a point g, dg/du and dg/ds. */
@@ -193,8 +193,8 @@ class ExponentiallyModified implements Profile {
   /** exp(k²/2 - kz) Phi(z - k) with k = std / tail, without overflow. */
   private tailPart(z: number, k: number): number {
     const y = (k - z) * SQRT_HALF;
-    if (y >= 0) return DENSITY * gaussian(z) * SQRT_HALF_PI * voigtFunction(0, y);
-    return gaussianOfSum(k, z) - DENSITY * gaussian(z) * SQRT_HALF_PI * voigtFunction(0, -y);
+    if (y >= 0) return DENSITY * gaussian(z) * SQRT_HALF_PI * erfcx(y);
+    return gaussianOfSum(k, z) - DENSITY * gaussian(z) * SQRT_HALF_PI * erfcx(-y);
   }
   edge(at: number, out: Float64Array): void {
     if (this.isSmall()) {

@@ -86,7 +86,8 @@ export function estimateBaseline(counts: Float64Array): Baseline {
     for (let b = 0; b < blocks; b += 1) {
       const least = Math.max(3, leastQuietShare * (edges[b + 1]! - edges[b]!));
       const knot = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.5, least);
-      if (!(Math.abs(knot - knots[b]!) <= settledShare * sd) && (knot === knot || knots[b] === knots[b])) isSettled = false;
+      if (!(Math.abs(knot - knots[b]!) <= settledShare * sd) && (knot === knot || knots[b] === knots[b]))
+        isSettled = false;
       knots[b] = knot;
     }
   }

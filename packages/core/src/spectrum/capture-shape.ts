@@ -2,8 +2,7 @@
  * The line shape of a capture: which one, and what its strong lines say of its parameter.
  *
  * Strong lines   single, unsaturated, 30 noise deviations high or more, at most twelve
- * Is a Gaussian  enough: the residuals of the strong lines' fits are projected on the third and fourth Hermite functions, less what the fit
- *                could follow (score test; C. R. Rao, Proc. Camb. Phil. Soc. 44 (1948) 50); both sums within 3 standard deviations: it is
+ * Is a Gaussian  enough: `shape-scores.ts`; nothing else is tried where it is
  * Which          else the least BIC over the strong lines (G. Schwarz, Ann. Statist. 6 (1978) 461), the noise's scale free for every line:
  *                sum of m ln(chi² / m) + k ln M, k = shape parameters of the whole capture, m and M samples of a line and of all; where the
  *                noise is correlated, the first term over the sum of its correlations. BIC and not AICc, because a needless parameter costs
@@ -20,7 +19,6 @@ import { profileOf, type Profile } from "../lineshape/profile.ts";
 import { TabulatedProfile } from "../lineshape/tabulated.ts";
 import { startsOf, windowOf, type Group, type GroupWindow, type Prepared } from "./line-groups.ts";
 import { median } from "./median.ts";
-import { orthonormalise } from "./photon-gain.ts";
 
 /** A shape to fit a capture's lines with. */
 export interface ShapeInUse {
@@ -43,8 +41,7 @@ const mostStrong = 12;
 /** Narrower or broader than the typical line by this factor: no line to learn from. */
 const likeTypical = 1.7;
 const fewestSamplesOver = 4;
-const scoreSigmas = 3;
-const fewestForScore = 2;
+const fewestToTell = 2;
 /** Share of a parameter's range that stands in for its uncertainty where no line shows it. */
 const unseenShare = 0.25;
 
@@ -83,7 +80,6 @@ export function fitStrong(
   { group, window }: StrongLine,
   profile: Profile,
   known: KnownParameter | null,
-  withDerivatives = false,
 ): FittedWindowOfLines | null {
   const fit = fitLines(
     {
@@ -94,67 +90,16 @@ export function fitStrong(
       noiseCorrelation: 0,
     },
     startsOf(prepared, group),
-    { shape: profile, shapeParameter: known, withDerivatives },
+    { shape: profile, shapeParameter: known },
   );
   return fit.outcome === "fitted" ? fit : null;
 }
 
 /** Sum of the correlations at all lags: by how much fewer samples tell than there are. */
-function redundancyOf(prepared: Prepared): number {
+export function redundancyOf(prepared: Prepared): number {
   let sum = 1;
   for (const value of prepared.autocorrelation) sum += 2 * value;
   return Math.max(1, sum);
-}
-
-/** True where the strong lines show nothing that a Gaussian does not. */
-export function isGaussianEnough(prepared: Prepared, strong: readonly StrongLine[]): boolean {
-  const redundancy = redundancyOf(prepared);
-  const sums = [0, 0];
-  const variances = [0, 0];
-  let count = 0;
-  for (const line of strong) {
-    const fit = fitStrong(prepared, line, profileOf("gaussian"), null, true);
-    if (fit === null) continue;
-    count += 1;
-    const { positions, values, unc } = line.window;
-    const m = positions.length;
-    const columns = fit.derivatives!;
-    for (const column of columns) for (let i = 0; i < m; i += 1) column[i] = column[i]! / unc[i]!;
-    orthonormalise(columns);
-    const { centre, fwhm } = fit.lines[0]!;
-    const scatter = Math.max(1, fit.reducedChiSquare) * redundancy;
-    for (const order of [0, 1]) {
-      const wave = new Float64Array(m);
-      for (let i = 0; i < m; i += 1) {
-        const u = ((positions[i]! - centre) / fwhm) * 2.3548200450309493;
-        const hermite = order === 0 ? u * (u * u - 3) : u * u * (u * u - 6) + 3;
-        // Columns 2 of the fit is the curve per area, whatever its width.
-        wave[i] = hermite * Math.max(0, fit.fittedCounts[i]! - baselineAt(fit, positions[i]!)) / unc[i]!;
-      }
-      for (const column of columns) {
-        let dot = 0;
-        for (let i = 0; i < m; i += 1) dot += column[i]! * wave[i]!;
-        for (let i = 0; i < m; i += 1) wave[i] = wave[i]! - dot * column[i]!;
-      }
-      let square = 0;
-      let product = 0;
-      for (let i = 0; i < m; i += 1) {
-        square += wave[i]! * wave[i]!;
-        product += (wave[i]! * (values[i]! - fit.fittedCounts[i]!)) / unc[i]!;
-      }
-      if (!(square > 0)) continue;
-      // Each line's word in units of its own scatter, so that one odd line does not speak for all.
-      const weight = Math.min(1, strongSigmas / Math.sqrt(square));
-      sums[order]! += (weight * product) / Math.sqrt(scatter);
-      variances[order]! += weight * weight * square;
-    }
-  }
-  if (count < fewestForScore) return true;
-  return sums.every((sum, order) => sum * sum <= scoreSigmas * scoreSigmas * variances[order]!);
-}
-
-function baselineAt(fit: FittedWindowOfLines, position: number): number {
-  return fit.baseline[0] + fit.baseline[1] * (position - fit.windowCentre);
 }
 
 interface Pooled {
@@ -237,7 +182,10 @@ function shapeOf(
   return {
     name,
     profile: held !== null && !profile.hasClosedIntegral ? new TabulatedProfile(profile, held.value) : profile,
-    held: held === null ? null : { value: held.value, unc: Math.sqrt(held.unc * held.unc + (pooled?.scatter ?? 0) * (pooled?.scatter ?? 0)) },
+    held:
+      held === null
+        ? null
+        : { value: held.value, unc: Math.sqrt(held.unc * held.unc + (pooled?.scatter ?? 0) * (pooled?.scatter ?? 0)) },
     knownFor: (top) => {
       if (held !== null) return { value: held.value, unc: 0 };
       if (!known.has(top)) known.set(top, knownFor(top));
@@ -267,7 +215,7 @@ const words: Record<LineShapeName, string> = {
 export function gaussianShape(chosenBy: CaptureLineShape["chosenBy"], lines: number): ShapeInUse {
   const note =
     chosenBy === "evidence"
-      ? lines < fewestForScore
+      ? lines < fewestToTell
         ? "Too few strong single lines to tell their shape: a Gaussian is taken."
         : `${lines} strong lines show nothing that a Gaussian does not.`
       : "The lines are fitted with a Gaussian.";

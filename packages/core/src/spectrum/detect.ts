@@ -47,7 +47,12 @@ const mostForWidth = 40;
 
 let room = new Float64Array(0);
 /** Memory for the residual and three running means of it, kept between captures. */
-function takeRoom(n: number): { residual: Float64Array; first: Float64Array; second: Float64Array; third: Float64Array } {
+function takeRoom(n: number): {
+  residual: Float64Array;
+  first: Float64Array;
+  second: Float64Array;
+  third: Float64Array;
+} {
   if (room.length < 4 * n) room = new Float64Array(4 * n);
   return {
     residual: room.subarray(0, n),
@@ -102,7 +107,8 @@ export function detectLines(
     while (right < tops.length && tops[right]! - top <= width / 2) right += 1;
     const sharpest = sharpestNear(residual, top, reach);
     const sharp = describe(residual, residual, sharpest, saturated, tops[left] ?? 0, tops[right] ?? n - 1);
-    const isSpike = sharp.height > strongSigmas * base.noiseCounts[sharp.top]! && sharp.width < spikeShare * typicalWidth;
+    const isSpike =
+      sharp.height > strongSigmas * base.noiseCounts[sharp.top]! && sharp.width < spikeShare * typicalWidth;
     candidates.push(isSpike ? { ...sharp, spike: true } : one);
   }
   candidates.sort((a, b) => a.centre - b.centre);

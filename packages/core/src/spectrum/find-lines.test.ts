@@ -164,7 +164,14 @@ describe("estimatePhotonGain", () => {
     const signal = 3 * height;
     const squareSignal = 2 * height * height;
     const moments = [12, 2.5 * height, 1.5 * height * height] as const;
-    return { excess: gain * signal + misfit * squareSignal, readFree: 1200, signal, squareSignal, readVariance: 100, moments };
+    return {
+      excess: gain * signal + misfit * squareSignal,
+      readFree: 1200,
+      signal,
+      squareSignal,
+      readVariance: 100,
+      moments,
+    };
   };
   const heights = [300, 600, 1200, 2500, 5000, 10000, 20000, 40000];
 

@@ -16,14 +16,7 @@ import type {
   Spectrum,
 } from "../analysis/types.ts";
 import { estimateBaseline } from "./baseline.ts";
-import {
-  gaussianShape,
-  givenShape,
-  isGaussianEnough,
-  shapeByEvidence,
-  strongLines,
-  type ShapeInUse,
-} from "./capture-shape.ts";
+import { gaussianShape, givenShape, shapeByEvidence, strongLines, type ShapeInUse } from "./capture-shape.ts";
 import { detectLines, type Candidate } from "./detect.ts";
 import { estimateGain, fitGroup, spikeLine, type FittedWindow, type FitSettings } from "./fit-groups.ts";
 import { groupCandidates, type Prepared } from "./line-groups.ts";
@@ -141,12 +134,12 @@ function fitCandidates(
   const groupsFor = (name: LineShapeName) => groupCandidates(candidates, n, typicalWidth, name);
   let groups = groupsFor("gaussian");
   let shape: ShapeInUse = gaussianShape(options.lineShape === undefined ? "default" : "setup", 0);
-  let gain = estimateGain(prepared, groups, shape);
+  let { gain, isMisfit } = estimateGain(prepared, groups, shape);
   if (choice !== "gaussian") {
-    shape = chooseShape(prepared, groupsFor, gain.gain, choice);
+    shape = chooseShape(prepared, groupsFor, gain.gain, isMisfit, choice);
     if (shape.name !== "gaussian") {
       groups = groupsFor(shape.name);
-      gain = estimateGain(prepared, groups, shape);
+      ({ gain, isMisfit } = estimateGain(prepared, groups, shape));
     }
   }
   const settings: FitSettings = { shape, gain, positionDefinition: options.positionDefinition ?? "fitted" };
@@ -169,13 +162,15 @@ function chooseShape(
   prepared: Prepared,
   groupsFor: (name: LineShapeName) => ReturnType<typeof groupCandidates>,
   gain: number,
+  isMisfit: boolean,
   choice: Exclude<LineShapeChoice, "gaussian">,
 ): ShapeInUse {
   // The wings are where shapes differ: the windows are as wide as the widest of them needs.
   const strong = strongLines(prepared, groupsFor("voigt"), gain);
   if (choice === "automatic") {
-    const isEnough = strong.length < 2 || isGaussianEnough(prepared, strong);
-    return isEnough ? gaussianShape("evidence", strong.length) : shapeByEvidence(prepared, strong);
+    return strong.length < 2 || !isMisfit
+      ? gaussianShape("evidence", strong.length)
+      : shapeByEvidence(prepared, strong);
   }
   if (choice === "empirical") return gaussianShape("setup", strong.length);
   return givenShape(prepared, strong, choice);

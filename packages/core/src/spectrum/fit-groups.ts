@@ -6,12 +6,28 @@
  * Position      as the setup defines it (`position-definition.ts`)
  */
 import type { FittedLine, LineFlag, PositionDefinition } from "../analysis/types.ts";
-import { fitLines, isBeyondChance, type FittedShape, type FittedWindowOfLines, type LineStart } from "../lineshape/fit-line.ts";
-import { parameterName, type ShapeInUse } from "./capture-shape.ts";
+import {
+  fitLines,
+  isBeyondChance,
+  type FittedShape,
+  type FittedWindowOfLines,
+  type LineStart,
+} from "../lineshape/fit-line.ts";
+import { parameterName, redundancyOf, type ShapeInUse } from "./capture-shape.ts";
 import type { Candidate } from "./detect.ts";
-import { axisAt, splitGroup, startsOf, weigh, windowOf, type Group, type GroupWindow, type Prepared } from "./line-groups.ts";
+import {
+  axisAt,
+  splitGroup,
+  startsOf,
+  weigh,
+  windowOf,
+  type Group,
+  type GroupWindow,
+  type Prepared,
+} from "./line-groups.ts";
 import { estimatePhotonGain, scatterOf, type LineScatter, type PhotonGain } from "./photon-gain.ts";
 import { positionBy } from "./position-definition.ts";
+import { addScores, noScores, showsMisfit } from "./shape-scores.ts";
 
 /** The fitted curve of one line's window, for drawing. */
 export interface FittedWindow {
@@ -50,13 +66,19 @@ const unfittedUncShare = 0.25;
 const negligibleFreedom = 200;
 const noCorrelation = new Float64Array(0);
 
-/** Counts per electron, from first fits of single lines of all heights; their curves stay with the groups. */
-export function estimateGain(prepared: Prepared, groups: readonly Group[], shape: ShapeInUse): PhotonGain {
+/** Counts per electron, and whether the shape fails, from first fits of single lines of all heights; their curves stay with the groups. */
+export function estimateGain(
+  prepared: Prepared,
+  groups: readonly Group[],
+  shape: ShapeInUse,
+): { gain: PhotonGain; isMisfit: boolean } {
   const single = groups
     .filter(({ members }) => members.length === 1 && !members[0]!.saturated)
     .filter(({ members }) => members[0]!.height > gainSigmas * prepared.readNoise[members[0]!.top]!)
     .sort((a, b) => b.members[0]!.height - a.members[0]!.height);
   const scatters: LineScatter[] = [];
+  const scores = noScores();
+  const redundancy = redundancyOf(prepared);
   const step = Math.max(1, single.length / mostForGain);
   for (let at = 0; at < single.length; at += step) {
     const group = single[Math.floor(at)]!;
@@ -67,9 +89,13 @@ export function estimateGain(prepared: Prepared, groups: readonly Group[], shape
     if (fit === null) continue;
     keepCurve(group, fit, window);
     const residuals = window.values.map((value, k) => value - fit.fittedCounts[k]!);
-    scatters.push(scatterOf(fit.derivatives!, residuals, group.signal!, window.unc, prepared.autocorrelation));
+    const columns = fit.derivatives!;
+    scatters.push(scatterOf(columns, residuals, group.signal!, window.unc, prepared.autocorrelation));
+    addScores(scores, fit, window, columns, group.signal!, redundancy);
   }
-  return estimatePhotonGain(scatters);
+  const isMisfit = showsMisfit(scores);
+  // With a wrong shape the bright samples must decide, not the wings: even weights, and the scatter about the fit grows the uncertainty.
+  return { gain: isMisfit ? { gain: 0, relativeUnc: 0 } : estimatePhotonGain(scatters), isMisfit };
 }
 
 function fitWindow(
@@ -114,7 +140,15 @@ export function fitGroup(prepared: Prepared, group: Group, settings: FitSettings
   const { gain, shape } = settings;
   const window = windowOf(prepared, group, gain.gain);
   const candidateStarts = startsOf(prepared, group);
-  let fit = fitWindow(prepared, group, window, candidateStarts, shape, group.signal === undefined && gain.gain > 0, false);
+  let fit = fitWindow(
+    prepared,
+    group,
+    window,
+    candidateStarts,
+    shape,
+    group.signal === undefined && gain.gain > 0,
+    false,
+  );
   if (fit !== null && gain.gain > 0 && group.signal === undefined) {
     keepCurve(group, fit, window);
     weigh(prepared, group, gain.gain, window.samples, window.unc);

@@ -7,7 +7,7 @@
  * Seen    the sum of squared residuals of an evenly weighted fit is on average the trace of (1 - H) V, H the projection on the fit's
  *         columns, V the covariance of the noise (its correlation by lag included): a narrow line's few bright samples are followed by
  *         the fit and show little of their noise
- * Solved  median over the lines, because a line with an unresolved companion has an excess of any size; where the gain rises with the height
+ * Solved  lower quartile over the lines, because a line with an unresolved companion has an excess of any size; where the gain rises with the height
  *         (M. G. Kendall, Biometrika 30, 81, 1938) the straight line's value at height zero (P. K. Sen, JASA 63, 1379, 1968); then
  *         the weighted mean of the lines that agree with it, by the quantiles of chi-squared
  */
@@ -40,24 +40,28 @@ export interface PhotonGain {
 /** Lines whose scatter lies outside what chi-squared gives to all but one in a thousand do not enter the mean. */
 const agreeingSigmas = 3.3;
 const trimRounds = 4;
-/** Photon noise is taken from the lines that agree when at least this share does; else the median speaks, which is on the safe side. */
+/** Photon noise is taken from the lines that agree when at least this share does; else the quartile speaks. */
 const leastAgreeing = 1 / 3;
 /** Kendall's rank correlation of gain and height above which the shape, not the photons, makes the scatter, and its significance. */
 const misfitCorrelation = 0.5;
-const misfitSigmas = 2.5;
+const misfitSigmas = 2;
+const quartileSigmas = -0.6745;
 
 export function estimatePhotonGain(lines: readonly LineScatter[]): PhotonGain {
   const none = { gain: 0, relativeUnc: 0 };
   const seen = lines.filter((line) => line.signal > 0);
   if (seen.length === 0) return none;
+  // Companions and misfit only add to the scatter: the lower quartile is nearer the photons than the median is. The quantile of chi-squared that
+  // it stands for lies below its mean, the more the fewer degrees of freedom a line has.
   const rough = Math.max(0, median(seen.map((line) => line.excess / line.signal)));
-  // The median of chi-squared lies below its mean, the more the fewer degrees of freedom a line has.
-  const gains = seen.map((line) => {
-    const middle = chiSquareShare(freedomOf(line, rough), 0);
-    return ((line.excess + line.readFree) / middle - line.readFree) / line.signal;
-  });
-  const { isMisfit, atHeightZero } = trendWithHeight(seen, gains);
-  let gain = isMisfit ? atHeightZero : median(gains);
+  const gainAt = (line: LineScatter, z: number): number =>
+    ((line.excess + line.readFree) / chiSquareShare(freedomOf(line, rough), z) - line.readFree) / line.signal;
+  const trend = trendWithHeight(
+    seen,
+    seen.map((line) => gainAt(line, 0)),
+  );
+  let gain = trend.isMisfit ? trend.atHeightZero
+      : lowerQuartile(seen.map((line) => gainAt(line, quartileSigmas)));
   let weights = 0;
   for (let round = 0; round < trimRounds && gain > 0; round += 1) {
     let [sum, total, agreeing] = [0, 0, 0];
@@ -78,6 +82,14 @@ export function estimatePhotonGain(lines: readonly LineScatter[]): PhotonGain {
   }
   // A gain that can't be told from none would only widen every interval, since it can't go below zero.
   return gain > 0 && gain * gain * weights > 1 ? { gain, relativeUnc: 1 / (gain * Math.sqrt(weights)) } : none;
+}
+
+function lowerQuartile(values: number[]): number {
+  const sorted = values.slice().sort((a, b) => a - b);
+  const at = 0.25 * (sorted.length - 1);
+  const below = Math.floor(at);
+  const above = Math.min(sorted.length - 1, below + 1);
+  return sorted[below]! + (at - below) * (sorted[above]! - sorted[below]!);
 }
 
 /** Degrees of freedom of the chi-squared distribution that a line's sum of squares follows, by its first two moments. */
