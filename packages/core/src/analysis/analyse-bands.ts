@@ -74,7 +74,7 @@ export function analyseBands(captures: AbsorptionCaptures, setup: AnalysisSetup,
     view.wavelengthsNm[n - 1]! - inside,
     certificate.material,
   );
-  const wanted = topsToMeasure(match, tops);
+  const wanted = match.bands.flatMap(({ top }) => (top === null ? [] : [top])).sort((a, b) => a.index - b.index);
   const measured = measureBands(view.wavelengthsNm, turned, wanted, tops, bandwidthNm);
   const repeats = repeatedPositions(captures, view, wanted, tops, bandwidthNm);
   const isGood = (band: MeasuredBand | BandProblem): band is MeasuredBand => typeof band !== "string";
@@ -103,10 +103,8 @@ export function analyseBands(captures: AbsorptionCaptures, setup: AnalysisSetup,
     found.windows.push(window);
   };
   const entries = [
-    ...match.bands.map((entry) => ({ ...entry, certified: entry.band as typeof entry.band | null })),
-    ...wanted
-      .filter((top) => match.bands.every((entry) => entry.top !== top))
-      .map((top) => ({ certified: null, top: top as Top | null, expectedNm: top.wavelengthNm })),
+    ...match.bands.map(({ band, top, expectedNm }) => ({ certified: band, top, expectedNm })),
+    ...unnamedTops(wanted, tops).map((top) => ({ certified: null, top, expectedNm: top.wavelengthNm })),
   ].sort((a, b) => a.expectedNm - b.expectedNm);
   for (const { certified, top, expectedNm } of entries) {
     if (match.outcome !== "identified" && top === null) continue;
@@ -123,6 +121,7 @@ export function analyseBands(captures: AbsorptionCaptures, setup: AnalysisSetup,
       extra: mismatch === null ? [] : [mismatch],
     };
     const judged = judgeLine(input, name === null || problem === null ? axis : null, setup);
+    if (name === null) judged.result.reason = "Not named: read off at its highest sample, not measured.";
     if (name !== null && problem !== null) refuseLine(judged, problem);
     const unlike = bandwidthProblem(certificate, bandwidthNm);
     if (name !== null && problem === null && unlike !== null) refuseLine(judged, unlike);
@@ -220,14 +219,12 @@ function scaleOf(ordinate: Ordinate): number {
   return ordinate.kind === "percent-transmittance" ? 100 : 1;
 }
 
-/** The certificate's tops first; others only the strongest. */
-function topsToMeasure(match: BandMatch, tops: readonly Top[]): Top[] {
-  const named = new Set(match.bands.flatMap(({ top }) => (top === null ? [] : [top])));
-  const others = tops
-    .filter((top) => !named.has(top))
+/** Tops that the certificate does not know, the strongest only: they are told, not measured. */
+function unnamedTops(wanted: readonly Top[], tops: readonly Top[]): Top[] {
+  return tops
+    .filter((top) => !wanted.includes(top))
     .sort((a, b) => b.prominence - a.prominence)
     .slice(0, mostUnnamed);
-  return [...named, ...others].sort((a, b) => a.index - b.index);
 }
 
 /** Wavelength of each top in each repeat. */

@@ -20,6 +20,7 @@ import { driftPointOfLines, jointProbabilityOf, sharedUncOf, verdictsOf } from "
 import { judgeLine, type JudgedLineResult } from "./judge-lines.ts";
 import { notIncludedIn } from "./line-budget.ts";
 import { measureLines } from "./measure-lines.ts";
+import { identifyRamanShifts, ramanCertificateProblem } from "./raman-names.ts";
 import { errorCurveOf, judgeSegments } from "./segments.ts";
 import { toleranceInNm, toVacuumWavelengths, toWavenumbers, turnedLike, wavenumberProblem } from "./wavenumber-axis.ts";
 import { identifyWindows } from "./window-names.ts";
@@ -112,11 +113,16 @@ function analyseAbsorption(
 function analyseOnAxis(combined: CombinedCaptures, setup: AnalysisSetup, resources: AnalysisResources): AnalysedCheck {
   if (combined.spectrum.axisKind !== "wavenumber") return analyseCombined(combined, setup, resources);
   const laser = setup.laser ?? null;
-  const problem = wavenumberProblem(combined.spectrum, laser);
+  const certificate = setup.ramanCertificate ?? null;
+  const problem =
+    wavenumberProblem(combined.spectrum, laser) ??
+    (certificate === null ? null : ramanCertificateProblem(certificate, laser));
   if (problem !== null) return refused(refuse("bad-settings", problem), combined.files, setup, combined.spectrum);
   const inVacuum = mapSpectra(
     combined,
-    (spectrum) => toVacuumWavelengths(spectrum, laser),
+    // Shifts of a material count from the same laser as the axis does, whatever its wavelength.
+    (spectrum) =>
+      toVacuumWavelengths(spectrum, laser === null || certificate === null ? laser : { ...laser, uncNm: 0 }),
     (mask) => turnedLike(mask, laser),
   );
   const check = analyseCombined(inVacuum, { ...setup, axisMeaning: "vacuum" }, resources);
@@ -138,8 +144,13 @@ function analyseCombined(
   const n = spectrum.positions.length;
   const firstPosition = spectrum.positions[0]!;
   const lastPosition = spectrum.positions[n - 1]!;
+  const certificate = spectrum.ramanLaser === undefined ? null : (setup.ramanCertificate ?? null);
   const identify = (input: IdentifyInput): IdentifiedLines =>
-    stretches === null ? identifyLines(input) : identifyWindows(input, stretches, axis);
+    certificate !== null
+      ? identifyRamanShifts(input.lines, firstPosition, lastPosition, certificate, spectrum.ramanLaser!)
+      : stretches === null
+        ? identifyLines(input)
+        : identifyWindows(input, stretches, axis);
   const identified: IdentifiedLines =
     found.lines.length === 0 || found.medianFwhm === null
       ? nothingFound()

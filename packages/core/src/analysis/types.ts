@@ -260,6 +260,12 @@ export interface BandCertificate {
   bands: { wavelengthNm: number; expandedUncNm: number; coverageFactor: number }[];
 }
 
+/** Certified Raman shifts of a material. */
+export interface RamanCertificate {
+  material: string;
+  shifts: { shiftPerCm: number; expandedUncPerCm: number; coverageFactor: number }[];
+}
+
 /** The line that a wavenumber axis of Raman shifts counts from. */
 export interface LaserLine {
   wavelengthVacuumNm: number;
@@ -338,9 +344,12 @@ export interface AnalysisSetup {
   toleranceUnit?: "nm" | "cm-1";
   /** A wavenumber axis counts Raman shifts from this line; null or absent: absolute wavenumbers in vacuum. */
   laser?: LaserLine | null;
+  /** Raman axis: the lines are those of a material, with these shifts. Null or absent: a lamp's. */
+  ramanCertificate?: RamanCertificate | null;
   /**
-   * How an earlier pixel axis becomes the new one: `fit` all coefficients anew (default), or only its offset, or offset and scale,
-   * curvature and its covariance kept from the earlier axis.
+   * How an earlier axis becomes the new one: `fit` all coefficients anew, or only its offset, or offset and scale, curvature and its
+   * covariance kept from the earlier axis. Absent: the earlier axis and a correction whose degree (0 to 5) predicts left-out lines best;
+   * with a given `degree` anew.
    */
   axisUpdate?: "fit" | "offset" | "offset-and-scale";
   /** Family of a new pixel axis: a polynomial (default), or the geometry of the spectrometer, for which `optics` must be known. */
