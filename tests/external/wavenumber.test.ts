@@ -2,6 +2,7 @@
  * Wavenumber axes and Raman shifts: the same light on two axes gives the same answer; errors and tolerances in cm-1; the laser's uncertainty
  * in every error. Spectra are invented, the lines are those of the built-in list.
  */
+import { readFileSync } from "node:fs";
 import { describe, expect, it } from "vitest";
 import {
   analyseCapture,
@@ -14,6 +15,10 @@ import {
   type Spectrum,
 } from "../../packages/core/src/index.ts";
 import { scanCounts } from "./support/scan-generator.ts";
+
+const acceptance = JSON.parse(readFileSync(new URL("../fixtures/bands/acceptance.json", import.meta.url), "utf8")) as {
+  raman: { shifts: number[][] }[];
+};
 
 const strong = linesOf(builtInLineList, ["Ne"])
   .filter((line) => (line.relativeIntensity ?? 0) > 0 && line.wavelengthVacuumNm > 575 && line.wavelengthVacuumNm < 720)
@@ -145,5 +150,74 @@ describe("one light on two axes", () => {
     expect(a.lines.map((line) => [line.wavelengthNm, line.errorNm, line.errorExpandedUncNm])).toEqual(
       b.lines.map((line) => [line.wavelengthNm, line.errorNm, line.errorExpandedUncNm]),
     );
+  });
+});
+
+describe("Raman shifts of certified materials", () => {
+  const laser = { wavelengthVacuumNm: 532.1, uncNm: 0.02 };
+  const shifts = (name: string): { shiftPerCm: number; expandedUncPerCm: number; coverageFactor: number }[] =>
+    name === "silicon"
+      ? readFileSync(new URL("../fixtures/bands/raman-shifts.csv", import.meta.url), "utf8")
+          .split("\n")
+          .filter((row) => row.startsWith("silicon (non-doped"))
+          .map((row) => row.split(","))
+          .map((cells) => ({
+            shiftPerCm: Number(cells[1]),
+            expandedUncPerCm: Number(cells[2]),
+            coverageFactor: Number(cells[3]),
+          }))
+      : acceptance.raman[0]!.shifts.map(([shiftPerCm]) => ({
+          shiftPerCm: shiftPerCm!,
+          expandedUncPerCm: 0.5,
+          coverageFactor: 2,
+        }));
+  const spectrum = (places: number[], error: number, first: number, last: number): Spectrum => {
+    const positions = rising(first, last, 1);
+    const lines = places.map((place, k) => ({ position: place + error, height: 3000 + 900 * k }));
+    return {
+      axisKind: "wavenumber",
+      axisUnit: "cm-1",
+      wasDescending: false,
+      positions: Float64Array.from(positions),
+      counts: Float64Array.from(scanCounts({ positions, lines, fwhm: 7 }, 5)),
+      fullScaleCounts: null,
+      scansSummed: 1,
+    };
+  };
+  const analyse = (capture: Spectrum, name: string, tolerance: number) =>
+    analyseCapture(
+      capture,
+      setupOf({
+        elements: [],
+        laser,
+        ramanCertificate: { material: name, shifts: shifts(name) },
+        toleranceUnit: "cm-1",
+        decisionRule: { kind: "simple" },
+        tolerance: [{ fromNm: 200, toNm: 2000, toleranceNm: tolerance }],
+      }),
+    ).analysis;
+
+  it("silicon, 520.45 cm-1 with U = 0.28 cm-1 (Itoh and Shirono 2020, abstract read): one line, judged in cm-1, the laser no part of U", () => {
+    const analysis = analyse(spectrum([520.45], 0.7, 300, 800), "silicon", 1);
+    expect(analysis.outcome).toBe("identified");
+    const line = analysis.lines.find((one) => one.species === "silicon")!;
+    expect(Math.abs(errorPerCm(line, laser)! - 0.7)).toBeLessThan(0.15);
+    expect(line.budget.some(({ contribution }) => contribution === "laser")).toBe(false);
+    expect(expandedUncPerCm(line, laser)!).toBeGreaterThan(0.28 - 1e-6);
+    expect(analysis.verdict!.verdict).toBe("pass");
+    expect(analyse(spectrum([520.45], 1.3, 300, 800), "silicon", 1).verdict!.verdict).toBe("fail");
+  });
+
+  it("arithmetic check, from memory: cyclohexane's shifts and tolerances of the European Pharmacopoeia 2.2.48", () => {
+    const places = shifts("cyclohexane").map(({ shiftPerCm }) => shiftPerCm);
+    const at = (error: number) => analyse(spectrum(places, error, 600, 3100), "cyclohexane", 1);
+    expect(at(0.6).verdict!.verdict).toBe("pass");
+    expect(at(1.3).verdict!.verdict).toBe("fail");
+    expect(at(0.6).lines.filter((line) => line.species === "cyclohexane").length).toBe(places.length);
+  });
+
+  it("another material is refused", () => {
+    const other = [640, 980, 1120, 1390, 1610, 2700];
+    expect(analyse(spectrum(other, 0, 600, 3100), "cyclohexane", 1).outcome).toBe("unidentified");
   });
 });
