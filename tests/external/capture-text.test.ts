@@ -143,6 +143,16 @@ describe("the scanner", () => {
     expect(Array.from(spectrum.counts)).toEqual(spectrum.wasDescending ? counts.reverse() : counts);
   });
 
+  it("takes every recorded capture the right way up, and finds each of them turned over", () => {
+    for (const file of [...realFiles, ...mercury].map(fileOf)) {
+      const { spectrum, facts } = read(file);
+      expect(facts.inverted).toBeUndefined();
+      const rows = Array.from(spectrum.counts, (count, i) => `${i},${-count}`);
+      const turned = readCapture(`Pixel,Signal\n${rows.join("\n")}\n`, "turned");
+      expect(turned).toMatchObject({ outcome: "read", facts: { inverted: true } });
+    }
+  });
+
   it.skipIf(mercury.length < mercuryCaptures.length)(
     "reads the two mercury captures too (they lie beside the project and are absent here otherwise)",
     () => {

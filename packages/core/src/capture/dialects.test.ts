@@ -249,6 +249,8 @@ describe("corrections", () => {
     if (guessed.outcome === "read") expect(guessed.spectrum.counts[12]).toBe(500);
     const kept = read(down, { inverted: false });
     if (kept.outcome === "read") expect(kept.spectrum.counts[12]).toBe(-500);
+    const window = `nm,PMT (uA)\n${rowsOf((i) => `${546 + i / 50},${(-0.02 - 4 * Math.exp(-0.5 * ((i - 14) / 4) ** 2)).toFixed(4)}`, 30)}`;
+    expect(readCapture(window, "a line fills its window")).toMatchObject({ facts: { inverted: true } });
     const dead = `Pixel,Signal\n${rowsOf((i) => `${i},${i === 30 ? 0 : 1000 + (i % 5) + (Math.abs(i - 15) < 3 ? 60 : 0)}`, 60)}`;
     expect(readCapture(dead, "one dead pixel")).not.toHaveProperty("facts.inverted");
   });

@@ -18,14 +18,16 @@ const mostPoints = 4_000_000;
 /** Longest run of digits in a packed table: 15 are exact. */
 const mostDigits = 15;
 const mostDamaged = 20;
+/** A line's X may differ from the expected one by this share of a step (it is often rounded), or by its own last digit. */
+export const xCheckSteps = 0.6;
 
 export interface Ordinates {
   ordinates: number[];
   /** 1-based line of each ordinate. */
   lineNumbers: number[];
   firstX: number;
-  /** X at the beginning of each line, and the ordinate that it belongs to. */
-  starts: { line: number; row: number; x: number; lastDigit: number }[];
+  /** X at the beginning of each line, the ordinate that it belongs to, and by how many steps it may differ. */
+  starts: { line: number; row: number; x: number; lastDigit: number; steps: number }[];
   damaged: { line: number; reason: string }[];
 }
 
@@ -84,7 +86,9 @@ export function unpack(bytes: Uint8Array, lines: LineIndex, table: JcampTable): 
     // After a difference a line begins with the last value once more.
     const row = lineNumbers.length - (endsInDifference ? 1 : 0);
     const x = scanNumber(bytes, packed.xFrom, packed.xTo, ".", "none");
-    starts.push({ line: line + 1, row, x, lastDigit: lastDigitOf(bytes, packed.xFrom, packed.xTo) });
+    // Some programs write the X of the first new point there, others that of the repeated one.
+    const steps = xCheckSteps + (endsInDifference ? 1 : 0);
+    starts.push({ line: line + 1, row, x, lastDigit: lastDigitOf(bytes, packed.xFrom, packed.xTo), steps });
     for (let i = endsInDifference ? 1 : 0; i < packed.values; i += 1) lineNumbers.push(line + 1);
     endsInDifference = packed.endsInDifference;
     // The line's own X is only a check and may hold decimals: a whole number stands for it.

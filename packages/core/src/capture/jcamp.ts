@@ -11,7 +11,15 @@ import { chooseColumns, type ColumnChoice } from "./choose-columns.ts";
 import type { TextEncoding } from "./decode.ts";
 import { finishCapture } from "./finish-capture.ts";
 import { readJcampBlocks, type JcampBlock, type JcampTable } from "./jcamp-blocks.ts";
-import { isPackedSign, lastDigitOf, notANumber, unpack, withoutComment, type Ordinates } from "./jcamp-packed.ts";
+import {
+  isPackedSign,
+  lastDigitOf,
+  notANumber,
+  unpack,
+  withoutComment,
+  xCheckSteps,
+  type Ordinates,
+} from "./jcamp-packed.ts";
 import type { LineIndex } from "./line-index.ts";
 import { refuse } from "./refusal.ts";
 import { scanNumber } from "./scan-row.ts";
@@ -19,9 +27,6 @@ import { scanNumber } from "./scan-row.ts";
 /** Longest line of a data table: the standard allows 80 characters. */
 const mostLineBytes = 4096;
 const sampledPoints = 400;
-/** A line's X may differ from the expected one by this share of a step (it is often rounded), or by its own last digit. */
-const xCheckShare = 0.6;
-
 export function isJcamp(bytes: Uint8Array): boolean {
   let at = 0;
   while (at < bytes.length && at < 200 && bytes[at]! <= 32) at += 1;
@@ -312,7 +317,13 @@ function readWrittenOut({ bytes, lines }: JcampFile, table: JcampTable): Ordinat
       const value = scanNumber(bytes, start, end, ".", "none");
       if (value !== value && (isX || !isUnknown(bytes, start, end))) wrong = true;
       if (isX)
-        starts.push({ line: line + 1, row: ordinates.length, x: value, lastDigit: lastDigitOf(bytes, start, end) });
+        starts.push({
+          line: line + 1,
+          row: ordinates.length,
+          x: value,
+          lastDigit: lastDigitOf(bytes, start, end),
+          steps: xCheckSteps,
+        });
       else {
         ordinates.push(value);
         lineNumbers.push(line + 1);
@@ -330,10 +341,10 @@ function firstLineOff(
   step: number,
   xFactor: number,
 ): { line: number; x: number; expected: number } | null {
-  for (const { line, row, x, lastDigit } of starts) {
+  for (const { line, row, x, lastDigit, steps } of starts) {
     if (row >= axis.length) continue;
     const expected = axis[row]!;
-    const allowed = Math.max(xCheckShare * Math.abs(step), lastDigit * Math.abs(xFactor));
+    const allowed = Math.max(steps * Math.abs(step), lastDigit * Math.abs(xFactor));
     if (!(Math.abs(x * xFactor - expected) <= allowed)) return { line, x: x * xFactor, expected };
   }
   return null;

@@ -3,12 +3,15 @@
  *
  * Judged on the median of three neighbours, so that single dead or hot samples say nothing. Lines point down when the signal falls below
  * its median at least four times as far as it rises above it, and the deep parts are narrow and lie within the capture: a dark end or a
- * cut-off filter is no line.
+ * cut-off filter is no line. Where no sample is above 0, deeper than high is enough.
  */
 
 /** Down over up, and share of all samples that may lie below half depth. Common practice, no source. */
 const leastRatio = 4;
 const mostDeepShare = 0.2;
+/** The same where no sample is above 0: a current that flows the other way, also in a short window that its line fills. */
+const leastRatioBelowZero = 1;
+const mostDeepShareBelowZero = 0.6;
 /** Fall over the spread of the quiet samples: below it there are no lines at all. */
 const leastDepth = 12;
 
@@ -30,11 +33,14 @@ export function pointsDown(counts: Float64Array): boolean {
   const half = (top + bottom) / 2;
   let low = 0;
   for (const value of smooth) if (value < half) low += 1;
-  if (low > mostDeepShare * smooth.length || low === 0) return false;
+  const isBelowZero = top <= 0;
+  const deepShare = isBelowZero ? mostDeepShareBelowZero : mostDeepShare;
+  if (low > deepShare * smooth.length || low === 0) return false;
   const sorted = Float64Array.from(smooth).sort();
   const level = sorted[smooth.length >> 1]!;
   const down = level - bottom;
-  if (down < leastRatio * (top - level)) return false;
+  if (down < (isBelowZero ? leastRatioBelowZero : leastRatio) * (top - level)) return false;
+  if (isBelowZero) return deepPartsLieWithin(smooth, half);
   // Lines that point down leave the upper half of the samples alone: its quartile is 0.674 standard deviations of the noise above the median.
   const quartile = sorted[(3 * smooth.length) >> 2]!;
   if (down < (leastDepth * (quartile - level)) / 0.674) return false;
