@@ -16,7 +16,7 @@ import type { IdentifiedLines } from "../identify/identify-lines.ts";
 import type { FoundLines } from "../spectrum/find-lines.ts";
 import type { JudgedLineResult } from "./judge-lines.ts";
 import { referenceMedium } from "./reference-medium.ts";
-import type { Analysis, AnalysisSetup, AxisMeaning, Dispersion, Spectrum } from "./types.ts";
+import type { Analysis, AnalysisSetup, AxisMeaning, Dispersion, PixelAxis, Spectrum } from "./types.ts";
 
 /** A rejected line is called an outlier when it lies this many of its own standard uncertainties off; else it was merely not sure enough. */
 const outlierSigmas = 2.5;
@@ -89,6 +89,7 @@ function fitPoints(
     lastPosition: spectrum.positions[spectrum.positions.length - 1]!,
     meaning: meaningOf(setup),
     fwhm: found.medianFwhm ?? 1,
+    earlier: setup.axisUpdate === "fit" ? null : earlierAxisOf(spectrum, setup),
   };
   const { mode, axisUpdate, optics } = setup;
   const kind = axisUpdate ?? "fit";
@@ -118,6 +119,21 @@ function fitPoints(
   if (isAsked) return grating;
   polynomial.dispersion.families = grating.dispersion.families!;
   return polynomial;
+}
+
+/** The axis that a new one starts from: an earlier one of these pixels, or the file's own wavelengths as they are. */
+function earlierAxisOf({ axisKind, positions }: Spectrum, { mode }: AnalysisSetup): PixelAxis | null {
+  if (mode.kind !== "earlier-axis") return null;
+  if (mode.axis !== "own") return mode.axis;
+  if (axisKind !== "wavelength") return null;
+  return {
+    coefficients: [0, 1],
+    firstPx: positions[0]!,
+    lastPx: positions[positions.length - 1]!,
+    chebyshevCovariance: null,
+    degreesOfFreedom: null,
+    meaning: "standard-air",
+  };
 }
 
 function meaningOf({ mode, axisMeaning }: AnalysisSetup): AxisMeaning {

@@ -1,6 +1,6 @@
 /**
  * Which named lines an axis is fitted to: the vague and the faint are set aside before anything is chosen, and lines that the others
- * contradict are taken out one at a time (S. Weisberg, Applied Linear Regression: studentised deleted residual).
+ * contradict are taken out (S. Weisberg, Applied Linear Regression: studentised deleted residual).
  */
 import { studentQuantile } from "../numeric/distributions.ts";
 import type { DispersionPoint } from "./fit-dispersion.ts";
@@ -8,9 +8,13 @@ import { comparedScatter, type ScatterFit } from "./scatter-fit.ts";
 
 /** Chance that any good line at all is rejected. */
 const rejectionLevel = 0.01;
-const rejectableShare = 0.2;
-/** Share of the FWHM within which no line is called an outlier, however well the others agree. */
-const unremarkableShare = 0.02;
+const rejectableShare = 0.33;
+/** The best of the lines by which the others are judged, the least degrees of freedom they have, rounds until they are found. */
+const bestShare = 0.67;
+const freedomOfBest = 3;
+const concentrations = 3;
+/** Variance of a standard normal deviate within the central 67 of 100: 1 - 2 z phi(z)/0.67, z = 0.974. */
+const trimmedVariance = 0.278;
 /** A line this many times less sure than the median one (a ninth of its weight) is left out from the start. */
 const vagueFactor = 3;
 /** A line fainter than this share of the median one is left out where at least this many surer lines remain. */
@@ -79,23 +83,77 @@ function agreedUncNm(points: readonly DispersionPoint[], fit: ScatterFit): Float
 const medianOf = (values: number[]): number => values.sort((a, b) => a - b)[(values.length - 1) >> 1] as number;
 
 /**
- * Takes out, one at a time, lines that the others contradict: at most a fifth of all, none where fewer than three degrees of
- * freedom remain, none within a fiftieth of the width.
+ * Takes out lines that the others contradict: first those far from what the best two thirds agree on, all at once, then one at a
+ * time; at most a third of all, none where fewer than three degrees of freedom remain, none within a fiftieth of the width.
  *
  * @returns leaves the fit without them in `fit`, leverages included, and `used` without them
  */
-export function rejectOutliers(fit: ScatterFit, used: boolean[], degree: number, fwhm: number, nmPerPx: number): void {
+export function rejectOutliers(
+  fit: ScatterFit,
+  ownUncNm: Float64Array,
+  used: boolean[],
+  degree: number,
+  unremarkableNm: number,
+): void {
   const most = Math.floor(rejectableShare * fit.pointCount);
-  for (let n = 0; ; n++) {
+  for (let n = rejectFarOff(fit, ownUncNm, used, degree, most, unremarkableNm); ; n++) {
     fit.solve(used, degree, comparedScatter);
     fit.fillLeverages();
-    const freedom = fit.degreesOfFreedom;
-    if (n === most || freedom < 3) return;
+    if (n >= most || fit.degreesOfFreedom < 3) return;
     const worst = mostRemarkable(fit);
-    if (worst < 0) return;
-    if (Math.abs(fit.leftOut(worst)) < unremarkableShare * fwhm * nmPerPx) return;
+    if (worst < 0 || Math.abs(fit.leftOut(worst)) < unremarkableNm) return;
     used[fit.rows[worst] as number] = false;
   }
+}
+
+/**
+ * Several bad lines hide each other: together they pass for scatter that all lines share. So the scatter is taken from the best of
+ * them (least trimmed squares, P. J. Rousseeuw, J. Am. Stat. Assoc. 79 (1984) 871, by concentration from the plain fit), and what is
+ * far off that goes.
+ *
+ * @returns how many were taken out
+ */
+function rejectFarOff(
+  fit: ScatterFit,
+  ownUncNm: Float64Array,
+  used: boolean[],
+  degree: number,
+  most: number,
+  unremarkableNm: number,
+): number {
+  const order: number[] = [];
+  used.forEach((isUsed, i) => {
+    if (isUsed) order.push(i);
+  });
+  const kept = Math.max(Math.ceil(bestShare * order.length), degree + 1 + freedomOfBest);
+  if (kept >= order.length) return 0;
+  const ratios = new Float64Array(used.length);
+  const rank = (): void => {
+    for (const i of order) {
+      const own = ownUncNm[i] as number;
+      ratios[i] = Math.abs(fit.residualOf(i)) / Math.sqrt(own * own + fit.excessSquare);
+    }
+    order.sort((a, b) => (ratios[a] as number) - (ratios[b] as number) || a - b);
+  };
+  fit.solve(used, degree, comparedScatter);
+  const best = new Uint8Array(used.length);
+  for (let round = 0; round < concentrations; round++) {
+    rank();
+    best.fill(0);
+    for (let k = 0; k < kept; k++) best[order[k] as number] = 1;
+    fit.solve(best, degree, comparedScatter, trimmedVariance);
+  }
+  rank();
+  const limit = studentQuantile(1 - rejectionLevel / (2 * order.length), fit.degreesOfFreedom);
+  let count = 0;
+  for (let k = order.length - 1; k >= kept && count < most; k--) {
+    const i = order[k] as number;
+    if ((ratios[i] as number) < limit) break;
+    if (Math.abs(fit.residualOf(i)) < unremarkableNm) continue;
+    used[i] = false;
+    count += 1;
+  }
+  return count;
 }
 
 /** Row whose studentised deleted residual is larger than chance allows over all lines, the largest of them; else -1. */

@@ -181,3 +181,65 @@ describe("refusals", () => {
     });
   });
 });
+
+describe("a correction of an earlier axis", () => {
+  const earlier = {
+    coefficients: [342, 0.376, -1.9e-5, -2.2e-9],
+    firstPx: 0,
+    lastPx: 2047,
+    chebyshevCovariance: null,
+    degreesOfFreedom: null,
+    meaning: "standard-air" as const,
+  };
+
+  test("four lines keep the curvature that they could not tell", () => {
+    const points = pointsOf([300, 800, 1300, 1800], 0.01, 0.01, 9);
+    const { dispersion } = fitted(points, { earlier });
+    expect(dispersion.degree).toBe(3);
+    for (let px = 0; px <= 2047; px += 100) {
+      expect(Math.abs(axisNm(dispersion.axis, px) - truth(px)) / slope(px)).toBeLessThan(0.06);
+    }
+    const anew = fitted(points);
+    expect(Math.abs(axisNm(anew.dispersion.axis, 1050) - truth(1050)) / slope(1050)).toBeGreaterThan(1);
+  });
+
+  test("many lines overrule a curvature that is wrong, and intervals hold either way", () => {
+    let held = 0;
+    const runs = 1500;
+    for (let run = 0; run < runs; run++) {
+      const bent = run % 2 === 0 ? earlier : { ...earlier, coefficients: [342, 0.379, -2.05e-5, -2.2e-9] };
+      const { dispersion } = fitted(pointsOf(spread(16), 0.05, 0.05, 70_000 + run), { earlier: bent });
+      const px = 60 + ((run * 41) % 1900);
+      if (Math.abs(axisNm(dispersion.axis, px) - truth(px)) <= 2 * (axisUncNm(dispersion.axis, px) as number))
+        held += 1;
+    }
+    expect(held / runs).toBeGreaterThan(0.93);
+    expect(held / runs).toBeLessThan(0.98);
+  });
+
+  test("its covariance above the correction's degree stays in the new one", () => {
+    const covariance = new Array<number>(16).fill(0);
+    covariance[10] = 0.04; // T_2: 0.2 nm
+    const points = pointsOf([300, 800, 1300, 1800], 0.01, 0.01, 9);
+    const { dispersion } = fitted(points, { earlier: { ...earlier, chebyshevCovariance: covariance } });
+    expect(axisUncNm(dispersion.axis, 1050) as number).toBeGreaterThan(0.05);
+  });
+});
+
+describe("several bad lines", () => {
+  test("five of twenty off by a pixel in either direction are found, and the others keep their sharpness", () => {
+    const points = pointsOf(spread(20), 0.01, 0.01, 11);
+    for (const [k, off] of [
+      [2, 1],
+      [3, 0.8],
+      [9, -1.1],
+      [14, 0.9],
+      [17, -0.7],
+    ] as const) {
+      (points[k] as DispersionPoint).position += off;
+    }
+    const { dispersion } = fitted(points);
+    expect(dispersion.rejected.map((one) => one.line)).toEqual([2, 3, 9, 14, 17]);
+    expect(dispersion.rmsPx).toBeLessThan(0.02);
+  });
+});

@@ -88,8 +88,9 @@ export class ScatterFit {
    * Fit the points marked as used; more of them than coefficients.
    *
    * @param tolerance  how closely the reduced chi-squared is brought to 1; null: the stated uncertainties are taken as they are, tau = 0
+   * @param target     what the reduced chi-squared is brought to instead, where the points are the best of more
    */
-  solve(used: ArrayLike<boolean | number>, degree: number, tolerance: number | null): void {
+  solve(used: ArrayLike<boolean | number>, degree: number, tolerance: number | null, target = 1): void {
     let n = 0;
     for (let i = 0; i < this.pointCount; i++) {
       if (!used[i]) continue;
@@ -119,8 +120,9 @@ export class ScatterFit {
         chiSquare += part;
         slope += part * weight;
       }
-      if (chiSquare <= freedom * (1 + tolerance)) break;
-      this.excessSquare += ((chiSquare / freedom - 1) * chiSquare) / slope;
+      const wanted = freedom * target;
+      if (chiSquare <= wanted * (1 + tolerance)) break;
+      this.excessSquare += ((chiSquare / wanted - 1) * chiSquare) / slope;
       for (let k = 0; k < n; k++) {
         const own = this.own[this.rows[k] as number] as number;
         unc[k] = Math.sqrt(own * own + this.excessSquare);
@@ -173,6 +175,15 @@ export class ScatterFit {
       }
     }
     return result;
+  }
+
+  /** y - fitted of any point, used or not, by the last solution. */
+  residualOf(point: number): number {
+    let fitted = 0;
+    for (let j = 0; j < this.columns; j++) {
+      fitted += (this.basis[point * this.width + j] as number) * (this.coefficients[j] as number);
+    }
+    return (this.values[point] as number) - fitted;
   }
 
   /** Residual of row k against a fit that did not know it: r/(1 - leverage). */
