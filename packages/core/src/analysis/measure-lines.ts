@@ -11,6 +11,7 @@
 import { findLines, type FindLinesOptions, type FittedWindow, type FoundLines } from "../spectrum/find-lines.ts";
 import { median } from "../spectrum/median.ts";
 import type { CaptureGroup, CombinedCaptures } from "./combine-captures.ts";
+import { findInWindow } from "./find-in-window.ts";
 import { repeatabilityFrom, repeatabilityOf } from "./repeatability.ts";
 import type { LineRepeatability } from "./line-budget.ts";
 import { longestAlone, type Stretch } from "./window-names.ts";
@@ -56,7 +57,7 @@ function measureGroup(group: Repeats, setup: AnalysisSetup): MeasuredLines {
   const stretches: Stretch[] | null = n > longestAlone ? null : [[spectrum.positions[0]!, spectrum.positions[n - 1]!]];
   const isDown = repeats.map((one) => one.wasDescending);
   if (!isDown.includes(true) || !isDown.includes(false)) {
-    const found = findLines(spectrum, optionsOf(setup, group));
+    const found = (n > longestAlone ? findLines : findInWindow)(spectrum, optionsOf(setup, group));
     return { spectrum, found, repeatability: repeatabilityOf(group, found, setup), backlash: null, stretches };
   }
   const each = repeats.map((repeat, k) => ({ found: findLines(repeat, optionsOf(setup, group)), isDown: isDown[k]! }));
@@ -330,7 +331,7 @@ function measureWindows(windows: readonly CaptureGroup[], setup: AnalysisSetup):
   let sample: FoundLines | null = null;
   for (const stretch of stretches) {
     const each = stretch.map(({ spectrum }) => ({
-      found: findLines(spectrum, optionsOf(setup, null)),
+      found: findInWindow(spectrum, optionsOf(setup, null)),
       isDown: spectrum.wasDescending,
     }));
     const names = stretch.flatMap((one) => one.names);
