@@ -173,7 +173,7 @@ function resultOf(
   const { shape, gain } = settings;
   const { positions, unc, samples } = window;
   const { first, last } = group;
-  const misfit = Math.sqrt(Math.max(0, fit.reducedChiSquare - 1)) * rootMeanSquare(unc);
+  const misfit = misfitOf(window, fit);
   const lines = fit.lines.map((line, k): FittedLine => {
     const noise = prepared.readNoise[group.members[k]!.top]!;
     const flags = flagsOf(prepared, group, k, starts);
@@ -237,10 +237,17 @@ function isSane(line: FittedShape, start: LineStart): boolean {
   );
 }
 
-function rootMeanSquare(values: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < values.length; i += 1) sum += values[i]! * values[i]!;
-  return Math.sqrt(sum / Math.max(1, values.length));
+/** Root mean square of what the fit leaves over beyond the noise, counts. */
+function misfitOf({ values, unc }: GroupWindow, fit: FittedWindowOfLines): number {
+  let left = 0;
+  let noise = 0;
+  for (let k = 0; k < values.length; k += 1) {
+    const residual = values[k]! - fit.fittedCounts[k]!;
+    left += residual * residual;
+    noise += unc[k]! * unc[k]!;
+  }
+  const free = Math.max(1, values.length - 3 * fit.lines.length - 2);
+  return Math.sqrt(Math.max(0, left / free - noise / values.length));
 }
 
 function flagsOf(prepared: Prepared, group: Group, k: number, starts: readonly LineStart[]): LineFlag[] {
