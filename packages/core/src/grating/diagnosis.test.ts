@@ -1,5 +1,6 @@
 /**
  * Diagnosis against changes made by the models themselves: the geometry before and after, not its derivatives, plus noise.
+ * Rates over instruments and strengths: tests/external/diagnosis.test.ts.
  */
 import { describe, expect, test } from "vitest";
 import { createRandom } from "../testing/random.ts";
@@ -64,20 +65,6 @@ describe("single causes on an array spectrometer", () => {
     // Changes are finite: the second order of a step this large is some per mille.
     expect(Math.abs(first.modes[0]!.amplitude / amplitude - 1)).toBeLessThan(0.02);
   });
-  test.each(causes)(
-    "%s is in the group that is named, in 95 % of 120 changes with lines good to 10 pm",
-    (id, change) => {
-      const random = createRandom(11);
-      const errors = errorsNm(geometry, { ...geometry, ...change });
-      let named = 0;
-      for (let run = 0; run < 120; run++) {
-        const diagnosis = diagnoseChange(changes(errors, 0.01, random.normal), modes);
-        if (diagnosis.causes[0]?.modes.some((mode) => mode.id === id)) named++;
-      }
-      // 95 % by construction of the groups; 120 runs know it to 2 %.
-      expect(named).toBeGreaterThanOrEqual(120 * (0.95 - 2.5 * 0.02));
-    },
-  );
   test("a shifted detector and a turned grating look alike to ordinary lines, and the sentence says so", () => {
     const random = createRandom(3);
     const errors = errorsNm(geometry, { ...geometry, axisPx: 1024.2 });
@@ -123,33 +110,32 @@ describe("sine drive", () => {
 });
 
 describe("noise and what the geometry does not do", () => {
-  test("pure noise is explained in 5 % of 600 changes (known to 0.9 %), independent or with a shared part", () => {
-    for (const shared of [0, 0.01]) {
-      const random = createRandom(17);
-      const own = 0.01;
-      const n = linesNm.length;
-      const covarianceNm2 = Float64Array.from(
-        { length: n * n },
-        (_, i) => shared * shared + (i % (n + 1) === 0 ? own * own : 0),
-      );
-      let found = 0;
-      for (let run = 0; run < 600; run++) {
-        const together = shared * random.normal();
-        const noise = changes(
-          linesNm.map(() => together),
-          own,
-          random.normal,
-        );
-        if (diagnoseChange(noise, modes, { covarianceNm2 }).outcome !== "none") found++;
-      }
-      expect(found / 600).toBeGreaterThan(0.05 - 2.5 * 0.009);
-      expect(found / 600).toBeLessThan(0.05 + 2.5 * 0.009);
-    }
-  });
-  test("where lines scatter by three times what they state, the scatter is the noise: no more is found than 9 % of 400 changes", () => {
-    const random = createRandom(19);
+  test("noise with a part that all lines share is explained in 5 % of 400 changes (known to 1.1 %)", () => {
+    const shared = 0.01;
+    const random = createRandom(17);
+    const own = 0.01;
+    const n = linesNm.length;
+    const covarianceNm2 = Float64Array.from(
+      { length: n * n },
+      (_, i) => shared * shared + (i % (n + 1) === 0 ? own * own : 0),
+    );
     let found = 0;
     for (let run = 0; run < 400; run++) {
+      const together = shared * random.normal();
+      const noise = changes(
+        linesNm.map(() => together),
+        own,
+        random.normal,
+      );
+      if (diagnoseChange(noise, modes, { covarianceNm2 }).outcome !== "none") found++;
+    }
+    expect(found / 400).toBeGreaterThan(0.05 - 2.5 * 0.011);
+    expect(found / 400).toBeLessThan(0.05 + 2.5 * 0.011);
+  });
+  test("where lines scatter by three times what they state, the scatter is the noise: no more is found than 10 % of 200 changes", () => {
+    const random = createRandom(19);
+    let found = 0;
+    for (let run = 0; run < 200; run++) {
       const noise = changes(
         linesNm.map(() => 0),
         0.01,
@@ -157,7 +143,7 @@ describe("noise and what the geometry does not do", () => {
       );
       if (diagnoseChange(noise, modes).outcome !== "none") found++;
     }
-    expect(found / 400).toBeLessThan(0.09);
+    expect(found / 200).toBeLessThan(0.1);
   });
   test("one line far off is nothing the geometry does", () => {
     const errors = linesNm.map((_, i) => (i === 6 ? 0.5 : 0));

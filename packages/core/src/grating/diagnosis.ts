@@ -276,8 +276,8 @@ function chanceOfLargest(
     zeros.map(() => -z),
     zeros.map(() => z),
     {
-      tolerance: 5e-4,
-      maxPoints: 6000,
+      tolerance: 2e-3,
+      maxPoints: 1500,
     },
   );
   return Math.min(1, Math.max(single, 1 - within.probability));
