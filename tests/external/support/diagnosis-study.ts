@@ -123,12 +123,12 @@ const INSTRUMENTS = [
   driveInstrument(MERCURY_ARGON),
 ];
 
-/** Every instrument with noise alone and with each cause, `strength` uncertainties large at the line that shows it most. */
+/** Every instrument with noise alone (five times as many runs) and with each cause, `strength` uncertainties large at the line that shows it most. */
 export function diagnosisStudy(runs: number, seed: number, strengths: readonly number[] = [8, 100]): StudyRow[] {
   const rows: StudyRow[] = [];
   const random = createRandom(seed);
   for (const { name, linesNm, modes, causes } of INSTRUMENTS) {
-    const study = (cause: string, errorsNm: readonly number[], uncNm: number, strength: number): void => {
+    const study = (cause: string, errorsNm: readonly number[], uncNm: number, strength: number, runs: number): void => {
       let counted = 0;
       let sizes = 0;
       let groups = 0;
@@ -162,9 +162,11 @@ export function diagnosisStudy(runs: number, seed: number, strengths: readonly n
       linesNm.map(() => 0),
       0.01,
       0,
+      5 * runs,
     );
     for (const { id, errorsNm } of causes)
-      for (const strength of strengths) study(id, errorsNm, Math.max(...errorsNm.map(Math.abs)) / strength, strength);
+      for (const strength of strengths)
+        study(id, errorsNm, Math.max(...errorsNm.map(Math.abs)) / strength, strength, runs);
   }
   return rows;
 }
