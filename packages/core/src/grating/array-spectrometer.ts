@@ -46,7 +46,7 @@ export type ArrayParameter = (typeof ARRAY_PARAMETERS)[number];
 const DEGREE = PI / 180;
 
 /** @throws {RangeError} what no spectrometer has */
-export function checkArrayGeometry(geometry: ArrayGeometry): void {
+function checkArrayGeometry(geometry: ArrayGeometry): void {
   for (const [name, value] of Object.entries(geometry))
     if (!Number.isFinite(value)) throw new RangeError(`${name} must be a finite number; got ${value}`);
   if (geometry.order === 0 || !Number.isInteger(geometry.order))

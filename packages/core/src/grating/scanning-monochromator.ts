@@ -36,7 +36,7 @@ export type SineDriveParameter = (typeof SINE_DRIVE_PARAMETERS)[number];
 const DEGREE = PI / 180;
 
 /** @throws {RangeError} what no monochromator has */
-export function checkSineDrive(drive: SineDrive): void {
+function checkSineDrive(drive: SineDrive): void {
   for (const [name, value] of Object.entries(drive))
     if (!Number.isFinite(value)) throw new RangeError(`${name} must be a finite number; got ${value}`);
   if (drive.order === 0 || !Number.isInteger(drive.order))
