@@ -99,14 +99,14 @@ export function chooseColumns(
   let axisColumn: number | null;
   if (options.axisColumn !== undefined) axisColumn = options.axisColumn;
   else if (columns === 1) axisColumn = null;
-  else axisColumn = guessAxis({ meanings, numbers, wanted, kind: options.axisKind ?? null, remarks });
+  else axisColumn = guessAxis({ meanings, numbers, wanted, kind: kindAsked(options), remarks });
 
   const intensityColumn = wanted ?? guessIntensity(meanings, numbers, axisColumn, headings, remarks);
   if (intensityColumn < 0) return { problem: "The file has no column of intensities." };
   if (intensityColumn === axisColumn) return { problem: "Axis and intensity can't be the same column." };
 
   const heading = axisColumn === null ? "" : headings[axisColumn]!;
-  if (foreignAxis.test(heading) && options.axisKind === undefined && options.axisUnit === undefined) {
+  if (foreignAxis.test(heading) && unitIn(heading) === null && kindAsked(options) === null) {
     return {
       problem: `The axis counts "${heading}"; wavelengths, wavenumbers, energies in eV, pixels and drive steps are read. Say what it counts, if it is one of them.`,
     };
@@ -259,6 +259,11 @@ function unitFromMetadata(metadata: Record<string, string>): { kind: AxisKind; u
 
 const axisKeys =
   /(?:\bx|axis|abscissa|wave ?length).{0,40}unit|unit.{0,40}(?:\bx\b|axis|abscissa|wave ?length)|^x[ -]?(?:axis|label)?$|^axis|^abscissa|^units?$/i;
+
+/** The kind of axis that a correction asks for, or null. */
+function kindAsked({ axisKind, axisUnit }: ReadOptions): AxisKind | null {
+  return axisKind ?? (axisUnit === undefined ? null : kindOfUnit(axisUnit));
+}
 
 function kindOfUnit(unit: AxisUnit): AxisKind {
   if (unit === "px") return "pixel";

@@ -242,6 +242,15 @@ describe("corrections", () => {
     expect(read(two, { intensityName: "Channel" })).toMatchObject({ outcome: "refused", code: "no-such-column" });
   });
 
+  it("take the axis of the kind that is asked for", () => {
+    const text = `Pixel,Wavelength (nm),Counts\n${rowsOf((i) => `${100 + i},${400 + i / 2},${i % 5}`)}`;
+    expect(read(text, {})).toMatchObject({ facts: { axisColumn: 1, axisUnit: "nm" } });
+    expect(read(text, { axisUnit: "px" })).toMatchObject({ facts: { axisColumn: 0, axisUnit: "px", first: 100 } });
+    const frequency = (unit: string): string => `Frequency (${unit}),Counts\n${rowsOf((i) => `${20000 + i},${i % 5}`)}`;
+    expect(read(frequency("cm-1"), {})).toMatchObject({ outcome: "read", facts: { axis: "wavenumber" } });
+    expect(read(frequency("THz"), {})).toMatchObject({ outcome: "refused", code: "no-such-column" });
+  });
+
   it("turn a signal over or leave it", () => {
     const down = `Pixel,Signal\n${rowsOf((i) => `${i},${i === 11 || i === 12 || i === 13 ? -500 : -(i % 3)}`, 40)}`;
     const guessed = readCapture(down, "down");
