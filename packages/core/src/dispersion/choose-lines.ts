@@ -12,7 +12,7 @@ const rejectableShare = 0.33;
 /** The best of the lines by which the others are judged, the least degrees of freedom they have, rounds until they are found. */
 const bestShare = 0.67;
 const freedomOfBest = 3;
-const concentrations = 3;
+const concentrations = 2;
 /** Variance of a standard normal deviate within the central 67 of 100: 1 - 2 z phi(z)/0.67, z = 0.974. */
 const trimmedVariance = 0.278;
 /** A line this many times less sure than the median one (a ninth of its weight) is left out from the start. */
@@ -121,10 +121,10 @@ function rejectFarOff(
   most: number,
   unremarkableNm: number,
 ): number {
-  const order: number[] = [];
-  used.forEach((isUsed, i) => {
-    if (isUsed) order.push(i);
-  });
+  fit.solve(used, degree, comparedScatter);
+  // Nothing can hide where the stated uncertainties explain everything.
+  if (fit.excessSquare === 0) return 0;
+  const order = Array.from(fit.rows.subarray(0, fit.rowCount));
   const kept = Math.max(Math.ceil(bestShare * order.length), degree + 1 + freedomOfBest);
   if (kept >= order.length) return 0;
   const ratios = new Float64Array(used.length);
@@ -135,7 +135,6 @@ function rejectFarOff(
     }
     order.sort((a, b) => (ratios[a] as number) - (ratios[b] as number) || a - b);
   };
-  fit.solve(used, degree, comparedScatter);
   const best = new Uint8Array(used.length);
   for (let round = 0; round < concentrations; round++) {
     rank();
