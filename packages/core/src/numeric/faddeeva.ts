@@ -114,8 +114,11 @@ function quadrant(x: number, y: number): void {
   real = y * sumRe;
   imaginary = x * sumIm;
   // Residue of the pole: 2 exp(-z²) / (1 ± q), q = exp(-2 pi i z / h), |q| >= 1; written with 1/q, which never overflows.
+  // None above pi / h, where the sum alone is exact.
+  if (y > x && y * STEP >= 0.5 * TWO_PI) return;
+  // Where it is below rounding of K (at least y / (180 sqrt(pi)) here), its seven elementary functions are saved.
+  if (y > 1e-3 && square - 2 * y * y + POLE_RATE * y > 48) return;
   const decay = exp(-POLE_RATE * y);
-  if (decay === 0 || (y > x && y * STEP >= 0.5 * TWO_PI)) return;
   const sign = isMidpoint ? 1 : -1;
   const angle = POLE_RATE * x;
   const c = cos(angle);
