@@ -22,4 +22,18 @@ export { photonEnergyEv } from "./light/quantities.ts";
 export { builtInLineList, elementsOf, isFromMemory, lineWavelengthNm, linesOf } from "./linelist/built-in.ts";
 export { judgeError, toleranceAt } from "./uncertainty/conformity.ts";
 export { roundResult, type RoundedResult } from "./uncertainty/rounding.ts";
+export {
+  applyAxis,
+  naturalSteps,
+  type AppliedAxis,
+  type ApplyRefusal,
+  type EvenSteps,
+} from "./dispersion/apply-axis.ts";
+export { updateAxis, type UpdatedDispersion } from "./dispersion/update-axis.ts";
+export { globalRisks, type GlobalRisks, type RiskSettings } from "./uncertainty/global-risk.ts";
+export {
+  setupReproducibilityOf,
+  type HistoryPoint,
+  type SetupReproducibility,
+} from "./uncertainty/setup-reproducibility.ts";
 export { coreVersion } from "./version.ts";
