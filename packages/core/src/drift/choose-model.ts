@@ -186,7 +186,8 @@ function formOf(
 /**
  * Checks whose residuals follow their neighbours' tell less than as many independent ones: with the correlation r of neighbours
  * (first-order autoregression) their sum is worth (1 - r)/(1 + r) of them. r is taken from the residuals of the most
- * probable form, counted only beyond two standard errors of chance, and its bias of about -1/n is given back.
+ * probable form where it is positive; what a fitted line takes from it, about (2 + 4 r)/n, is given back (F. H. C. Marriott, J. A. Pope,
+ * Biometrika 41 (1954) 390, for a mean; a trend takes about twice that), and it is shrunk as far as chance could have made it.
  */
 function independenceOf(series: DriftSeries, form: DriftForm, which: Which, sourceLevels: boolean): number {
   const { residualsNm } = fitForm(series, form, which, { sourceLevels, independence: { mid: 1, scale: 1 } });
@@ -203,9 +204,11 @@ function independenceOf(series: DriftSeries, form: DriftForm, which: Which, sour
   }
   if (count < 8 || !(squares > 0)) return 1;
   const r = products / squares;
-  if (r <= 2 / Math.sqrt(count)) return 1;
-  const corrected = Math.min(0.9, r + 1 / count);
-  return (1 - corrected) / (1 + corrected);
+  if (r <= 0) return 1;
+  const corrected = r + (2 + 4 * r) / count;
+  const signal = count * corrected * corrected;
+  const shrunk = Math.min(0.9, corrected * (signal / (1 + signal)));
+  return (1 - shrunk) / (1 + shrunk);
 }
 
 /** Designs and gains that families share, each made once. */
