@@ -1,7 +1,7 @@
 /**
  * The place of each band of an absorption spectrum, all bands of one recording together.
  *
- * Window    about 0.9 of the band's width to each side, never less than 1.5 spectral bandwidths or 4.5 steps: a stretch over which the curve
+ * Window    about 0.7 of the band's width to each side, never less than 1.5 spectral bandwidths or 4.5 steps: a stretch over which the curve
  *           is of one kind. More than 44 samples are averaged in neighbouring groups first
  * Noise     its size, its course with the light (the same everywhere, or growing as the light gets less) and over how many samples the
  *           instrument smoothed are taken as the likelihood of the bands' samples has it; a course that is known (from counts) is kept
@@ -42,7 +42,7 @@ export interface MeasuredBands {
   noise: number;
 }
 
-const windowWidths = 0.9;
+const windowWidths = 0.7;
 const widestWindowNm = 8;
 const windowBandwidths = 1.5;
 const windowSteps = 4.5;
@@ -157,7 +157,7 @@ function windowOf(
   let last = top.index;
   while (first > 0 && wavelengthsNm[first - 1]! >= top.wavelengthNm - half) first -= 1;
   while (last + 1 < n && wavelengthsNm[last + 1]! <= top.wavelengthNm + half) last += 1;
-  const least = Math.min(half, Math.max(2.5 * step, 0.5 * top.widthNm));
+  const least = Math.min(half - step, Math.max(2.5 * step, 0.5 * top.widthNm));
   if (top.wavelengthNm - wavelengthsNm[first]! < least || wavelengthsNm[last]! - top.wavelengthNm < least)
     return "edge";
   let count = 0;

@@ -2,7 +2,7 @@
  * Highest point of a smooth curve that was recorded with noise: where a band lies, with an uncertainty that holds.
  *
  * Model     y = straight line + a smooth function + noise. The function is a stationary Gaussian process with the rational quadratic
- *           covariance s² (1 + d² / (6 l²))^-3, a mixture of scales about l: no shape of band is assumed, symmetric or not, only that
+ *           covariance s² (1 + d² / (4 l²))^-2, a mixture of scales about l: no shape of band is assumed, symmetric or not, only that
  *           nothing changes faster than over l. The noise is v N, N given up to its size (relative uncertainties, and the
  *           correlation of neighbours where the instrument smoothed)
  * Scales    l and v / s² from the samples by restricted likelihood (the straight line integrated out); l never below what the spectral
@@ -197,12 +197,12 @@ export class CurveProcess {
     const { m, kernel } = this;
     const { positions } = this.window;
     const scale = exp(logScale);
-    const factor = 1 / (6 * scale * scale);
+    const factor = 1 / (4 * scale * scale);
     for (let i = 0; i < m; i += 1) {
       for (let j = 0; j <= i; j += 1) {
         const distance = positions[i]! - positions[j]!;
         const r = 1 / (1 + factor * distance * distance);
-        kernel[i * m + j] = r * r * r;
+        kernel[i * m + j] = r * r;
       }
     }
   }
@@ -355,12 +355,12 @@ export class CurveProcess {
     for (let i = 0; i < m; i += 1) {
       const d = x - positions[i]!;
       const u = d * inverse;
-      const r = 1 / (1 + (d * u) / 6);
-      const k = alpha[i]! * r * r * r;
+      const r = 1 / (1 + 0.25 * d * u);
+      const k = alpha[i]! * r * r;
       value += k;
       first -= u * r * k;
-      second += ((4 / 3) * u * u * r - inverse) * r * k;
-      third += u * r * r * k * (4 * inverse - (20 / 9) * u * u * r);
+      second += (1.5 * u * u * r - inverse) * r * k;
+      third += u * r * r * k * (4.5 * inverse - 3 * u * u * r);
     }
     return { value, first, second, third };
   }
@@ -417,8 +417,8 @@ export class CurveProcess {
     let two = 1 / half;
     for (let i = 0; i < m; i += 1) {
       const d = x - positions[i]!;
-      const r = 1 / (1 + (d * d * inverse) / 6);
-      let sum = -d * inverse * r * r * r * r;
+      const r = 1 / (1 + 0.25 * d * d * inverse);
+      let sum = -d * inverse * r * r * r;
       for (let k = 0; k < i; k += 1) sum -= factor[i * m + k]! * column[k]!;
       column[i] = sum / factor[i * m + i]!;
       square += column[i]! * column[i]!;
