@@ -142,8 +142,6 @@ export function fitDispersion(
     rejectOutliers(fit, ownUncNm, kept, degree, unremarkableNm);
     if (options.degree === null && degree > lowest && fit.degreesOfFreedom < sparePoints) break;
     choices.push(choiceOf(fit, degree, kept));
-    // When two degrees running leave no scatter to explain, a third can only follow the noise.
-    if (choices.slice(-2).every((one) => one.excessSquare === 0) && choices.length > 1) break;
   }
   const chosen = bestOf(choices, ownUncNm, usable);
   return finish(points, ownUncNm, chosen.used, vague, chosen.degree, earlier, options);
