@@ -29,7 +29,7 @@ export function exposureOf({ input, facts, spectrum }: ReadFile): number | null 
 }
 
 /** Exposure time of one scan, ms, from header lines; null where none says it, or none says a unit. */
-export function exposureInMetadata(metadata: Record<string, string>): number | null {
+function exposureInMetadata(metadata: Record<string, string>): number | null {
   for (const [key, value] of Object.entries(metadata)) {
     if (!timeKeys.test(key)) continue;
     const number = /[-+]?\d+(?:[.,]\d+)?(?:e[-+]?\d+)?/i.exec(value);
