@@ -47,7 +47,8 @@ function modesOf(capture: RealCapture): IdentificationMode[] {
     firstNm: Math.round(evaluate(coefficients, first)),
     lastNm: Math.round(evaluate(coefficients, last)),
   };
-  if (spectrum.axisKind === "wavelength") return [{ kind: "earlier-axis", axis: "own" }, range];
+  const none: IdentificationMode = { kind: "none" };
+  if (spectrum.axisKind === "wavelength") return [{ kind: "earlier-axis", axis: "own" }, range, none];
   const axis = {
     coefficients,
     firstPx: first,
@@ -56,7 +57,7 @@ function modesOf(capture: RealCapture): IdentificationMode[] {
     degreesOfFreedom: null,
     meaning: "standard-air" as const,
   };
-  return [{ kind: "earlier-axis", axis }, range];
+  return [{ kind: "earlier-axis", axis }, range, none];
 }
 
 function analyse(capture: RealCapture, mode: IdentificationMode): Analysis {
@@ -105,10 +106,13 @@ describe.each(captures)("$name", ({ name, elements }) => {
     ? " (not tested: the capture has no licence to be carried here and lies not beside the project)"
     : "";
 
-  it.skipIf(absent)(`is named and fitted as by hand, from an earlier axis and from a range${title}`, () => {
-    const capture = loadCapture(name, elements);
-    for (const mode of modesOf(capture)) holdToTruth(capture, analyse(capture, mode));
-  });
+  it.skipIf(absent)(
+    `is named and fitted as by hand, from an earlier axis, from a range and from the lamp's elements alone${title}`,
+    () => {
+      const capture = loadCapture(name, elements);
+      for (const mode of modesOf(capture)) holdToTruth(capture, analyse(capture, mode));
+    },
+  );
 
   it.skipIf(absent)(`is not taken for another lamp${title}`, () => {
     const capture = loadCapture(name, elements);

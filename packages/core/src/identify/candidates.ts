@@ -14,7 +14,7 @@ import { type ReferenceTable, referenceTable, roomLightOn } from "./reference-ta
 import { longestNm, leastSpanNm, mostSpanNm, scalesOf, shortestNm } from "./scale-tables.ts";
 import { correctedNm, type Evidence, evidenceFor, lineEvidence, type Odds, oddsFor, strongCount } from "./score.ts";
 import { BestLampAxes, type LampAxis, searchTriple, triplesOf } from "./search-alone.ts";
-import { refine, searchAxes } from "./search.ts";
+import { isSound, refine, searchAxes } from "./search.ts";
 
 /** Axes looked at closely. */
 const polished = 5;
@@ -23,8 +23,6 @@ const outOfSight = 25;
 const agreementShare = 0.3;
 /** Of those, so many are mended first. */
 const mendedAxes = 3;
-/** Share of the lines that a sound axis explains. */
-const soundShare = 0.88;
 /** Triples of lines tried, round by round, with the lamp alone. */
 const rounds = [
   { level: 0, from: 0, to: 2 },
@@ -34,6 +32,8 @@ const rounds = [
   { level: 2, from: 0, to: 8 },
   { level: 2, from: 8, to: 20 },
 ] as const;
+/** Rounds for lamps that were not said: what they may be is only a hint. */
+const briefRounds = 1;
 /** An answer beyond doubt ends the rounds. */
 const decisiveEvidence = 15;
 const decisiveLead = 8;
@@ -83,8 +83,12 @@ export function candidatesOf(question: Question): Candidate[] {
   return polish(hypotheses);
 }
 
-/** Candidates with nothing known but the elements, best first. */
-export function candidatesAlone(input: IdentifyInput, elements: readonly string[]): Candidate[] {
+/** Candidates with nothing known but the elements, best first; `brief`: a first look only. */
+export function candidatesAlone(
+  input: IdentifyInput,
+  elements: readonly string[],
+  effort: "thorough" | "brief" = "thorough",
+): Candidate[] {
   const problem = buildProblem(input);
   const scales = scalesOf(input.lineList, elements, problem.meaning);
   const triples = triplesOf(problem);
@@ -92,7 +96,7 @@ export function candidatesAlone(input: IdentifyInput, elements: readonly string[
   const known = new Set<LampAxis>();
   const hypotheses: Hypothesis[] = [];
   let candidates: Candidate[] = [];
-  for (const { level, from, to } of rounds) {
+  for (const { level, from, to } of effort === "brief" ? rounds.slice(0, briefRounds) : rounds) {
     for (const triple of triples.slice(from, to)) searchTriple(problem, scales, triple, level, best);
     for (const axis of best.axes) {
       if (known.has(axis)) continue;
@@ -147,7 +151,10 @@ function polish(hypotheses: readonly Hypothesis[]): Candidate[] {
     const { problem, table, odds } = hypothesis;
     // Many starts end on one axis: naming its lines once is enough.
     if (found.some((one) => isSame(one.places, hypothesis.places, agreementShare * problem.fwhmNm))) continue;
-    const mended = found.length < mendedAxes && !isSound(hypothesis) ? mend(hypothesis, hypothesis) : hypothesis;
+    const mended =
+      found.length < mendedAxes && !isSound(problem, table, odds, hypothesis)
+        ? mend(hypothesis, hypothesis)
+        : hypothesis;
     const naming = nameLines(problem, table, mended.correction);
     if (naming === null) continue;
     const { correction } = naming.fit;
@@ -170,14 +177,6 @@ function polish(hypotheses: readonly Hypothesis[]): Candidate[] {
     });
   }
   return found.sort((a, b) => b.evidence.value - a.evidence.value);
-}
-
-/** Whether an axis explains nearly every line: nothing to mend. */
-function isSound({ problem, table, odds, correction, evidence }: Hypothesis): boolean {
-  const support = lineEvidence(problem, table, odds, correction, evidence.standardDeviationNm);
-  let sound = 0;
-  for (const i of problem.byHeight) if ((support[i] as number) > 0) sound += 1;
-  return sound >= soundShare * problem.byHeight.length && evidence.value > 0;
 }
 
 function isSame(a: Float64Array, b: Float64Array, toleranceNm: number): boolean {

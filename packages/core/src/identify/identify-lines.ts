@@ -3,13 +3,14 @@
  *
  * Modes      earlier axis (an earlier calibration, or the file's own axis): 4 FWHM in offset, 1 % in scale; asked again with
  *            7 % of the span at either end when that finds nothing. Range: first and last wavelength each good to 5 % of the
- *            span; their order says whether the wavelength rises or falls with the pixel
+ *            span; their order says whether the wavelength rises or falls with the pixel. None: the lamp's elements alone; the
+ *            wavelength may rise or fall, and a file's own wavelength axis is taken as no more than an order of its samples
  * Answers    identified, ambiguous (two axes explain the lines about as well: both are told), unidentified (with what speaks
  *            against it: too few lines, chance, another lamp). A wrong name is worse than none
  * Confidence chanceProbability bounds the probability that lines scattered evenly over the window agree as well with any
  *            axis allowed (null model and bound: `score`); margin is the natural logarithm by which the best axis beats the
- *            best one that names lines differently. Identified asks for at most 0.05 (a
- *            generous bound: of 300 captures with lines placed at random none fell below it) and a margin of 4
+ *            best one that names lines differently. Identified asks for at most 0.05 (a generous bound: of 500 captures with
+ *            lines placed at random none fell below it) and a margin of 4
  */
 import type {
   AxisKind,
@@ -44,6 +45,7 @@ const leastNamed = 3;
 /** In a crowd of lines a good axis gains by nearly every one of them; an axis that is right in part gains less. */
 const crowdedFrom = 30;
 const leastEvidencePerLine = 0.45;
+const borneOutShare = 0.75;
 /** Lines on either side that must together be explained better than by accident, and by how much each (ln). */
 const supportReach = 4;
 const leastSupport = 0.3;
@@ -188,7 +190,7 @@ function answer(input: IdentifyInput, candidates: readonly Candidate[]): Identif
     );
   }
   const usable = problem.byHeight.length;
-  if (usable >= crowdedFrom && best.evidence.value < leastEvidencePerLine * usable) {
+  if (usable >= crowdedFrom && best.evidence.value < leastEvidencePerLine * usable && !isBorneOut(best)) {
     const sentence = `${usable} lines so close together would fit ${lampOf(input.elements)} nearly as well on many an axis.`;
     return refuse(input, chance, margin, sentence);
   }
@@ -260,7 +262,7 @@ function refuse(input: IdentifyInput, chance: number, margin: number, sentence: 
   const other = findOtherLamp(input, (elements) => {
     const asked = { ...input, expectedLinesNm: [] };
     const best = (
-      input.mode.kind === "none" ? candidatesAlone(asked, elements) : candidatesOf(ask(asked, elements, false))
+      input.mode.kind === "none" ? candidatesAlone(asked, elements, "brief") : candidatesOf(ask(asked, elements, false))
     )[0];
     if (best === undefined || best.evidence.chanceProbability > largestChance) return null;
     return {
@@ -309,6 +311,15 @@ function byFewLines(input: IdentifyInput): IdentifiedLines | null {
     margin,
     note: noteOf(few.chanceProbability, margin),
   };
+}
+
+/** Whether three quarters of the lines, and of the strong ones, are each explained better than by accident. */
+function isBorneOut(best: Candidate): boolean {
+  const { byHeight } = best.problem;
+  let all = 0;
+  for (const i of byHeight) if ((best.support[i] as number) > 0) all += 1;
+  const { explained, strong } = strongShare(best);
+  return all >= borneOutShare * byHeight.length && explained >= borneOutShare * strong;
 }
 
 /** Lines on which two nearly equal axes disagree stay without a name. */

@@ -12,7 +12,7 @@
 import { addPrior, factorise, solveFactorised } from "./correction.ts";
 import { orderCount, type Problem } from "./problem.ts";
 import { lowerBound, type ReferenceTable } from "./reference-table.ts";
-import { coarseTable, correctedNm, evidenceFor, type Evidence, type Odds, strongCount } from "./score.ts";
+import { coarseTable, correctedNm, evidenceFor, type Evidence, lineEvidence, type Odds, strongCount } from "./score.ts";
 
 const terms = orderCount;
 const anchorPool = 12;
@@ -21,6 +21,11 @@ const linesVoting = 13;
 const kept = 24;
 const anchorReferences = 14;
 const cubicShare = 0.35;
+/** Starts looked at where the best of them leaves nothing to explain. */
+const startsForCertain = 7;
+/** A sound axis: evidence (ln), and share of the lines that it explains. */
+const soundEvidence = 8;
+const soundShare = 0.88;
 
 export interface Hypothesis {
   /** a0..a3, nm. */
@@ -40,16 +45,32 @@ export function searchAxes(problem: Problem, table: ReferenceTable, odds: Odds):
   if (problem.byHeight.length < 3 || table.nm.length === 0) return [];
   const coarse = coarseSearch(problem, table, odds);
   const found: Hypothesis[] = [];
-  for (const start of coarse) {
+  let leader: Hypothesis | null = null;
+  for (const [at, start] of coarse.entries()) {
+    // A leader that explains nearly every line is not overtaken from far down the list.
+    if (at >= startsForCertain && leader !== null && isSound(problem, table, odds, leader)) break;
     const correction = refine(problem, table, odds, start);
     if (correction === null) continue;
     if (found.some((other) => sameAxis(problem, other.correction, correction, 0.05 * problem.fwhmNm))) continue;
-    found.push({
-      correction,
-      evidence: evidenceFor(problem, table, odds, correction),
-    });
+    const hypothesis = { correction, evidence: evidenceFor(problem, table, odds, correction) };
+    found.push(hypothesis);
+    if (leader === null || hypothesis.evidence.value > leader.evidence.value) leader = hypothesis;
   }
   return found.sort((a, b) => b.evidence.value - a.evidence.value);
+}
+
+/** Whether an axis explains nearly every line, and not by accident. */
+export function isSound(
+  problem: Problem,
+  table: ReferenceTable,
+  odds: Odds,
+  { correction, evidence }: Hypothesis,
+): boolean {
+  if (evidence.value < soundEvidence) return false;
+  const support = lineEvidence(problem, table, odds, correction, evidence.standardDeviationNm);
+  let sound = 0;
+  for (const i of problem.byHeight) if ((support[i] as number) > 0) sound += 1;
+  return sound >= soundShare * problem.byHeight.length;
 }
 
 /** Whether two axes agree within a tolerance at every found line. */
