@@ -57,7 +57,8 @@ const phases = 8;
 const noiseCounts = 10;
 const background = 120;
 const slope = 0.4;
-const gaussian = (x: number, std: number): number => Math.exp((-0.5 * x * x) / (std * std)) / (std * Math.sqrt(2 * Math.PI));
+const gaussian = (x: number, std: number): number =>
+  Math.exp((-0.5 * x * x) / (std * std)) / (std * Math.sqrt(2 * Math.PI));
 
 /** Density of unit area about the centre (first moment), for a scale that is the FWHM or near it. */
 function densityAt(shape: StudiedShape, x: number, width: number, s: number): number {
@@ -75,7 +76,12 @@ function densityAt(shape: StudiedShape, x: number, width: number, s: number): nu
     const half = (s * width) / 2;
     const core = (1 - s) * std;
     const reach = 7;
-    return 2 * reach * core * mean(80, (t) => gaussian((2 * t - 1) * reach * core, core) * lorentzian(x - (2 * t - 1) * reach * core, half));
+    return (
+      2 *
+      reach *
+      core *
+      mean(80, (t) => gaussian((2 * t - 1) * reach * core, core) * lorentzian(x - (2 * t - 1) * reach * core, half))
+    );
   }
   const tail = s * std;
   return 30 * tail * mean(160, (t) => (Math.exp(-30 * t) / tail) * gaussian(x + tail - 30 * t * tail, std));
@@ -108,7 +114,9 @@ function makePhase(one: LineFitCase, phase: number): Phase {
   const s = parameterOf[shape];
   const middle = (samples - 1) / 2;
   const centre = middle + (phase + 0.5) / phases - 0.5;
-  const area = (signalToNoise * noiseCounts) / Math.max(...[-0.3, -0.2, -0.1, 0].map((x) => densityAt(shape, x * fwhmPx, fwhmPx, s)));
+  const area =
+    (signalToNoise * noiseCounts) /
+    Math.max(...[-0.3, -0.2, -0.1, 0].map((x) => densityAt(shape, x * fwhmPx, fwhmPx, s)));
   const at = (i: number, c: number, w: number, p: number): number => area * densityOverPixel(shape, i - c, w, p);
   const n = isFreeShape(shape) ? 6 : 5;
   const design = new Float64Array(samples * n);
@@ -177,7 +185,9 @@ function runCase(one: LineFitCase, fits: number, seed: number): LineFitRow {
       fwhm: fwhmPx * random.between(0.75, 1.3),
       peakHeightCounts: signalToNoise * noiseCounts * random.between(0.8, 1.2),
     };
-    const fit = fitLines({ positions, counts, countsUnc, pixelIntegrated: true, noiseCorrelation: 0 }, [start], { shape });
+    const fit = fitLines({ positions, counts, countsUnc, pixelIntegrated: true, noiseCorrelation: 0 }, [start], {
+      shape,
+    });
     if (fit.outcome === "refused") {
       refused += 1;
       continue;

@@ -255,7 +255,8 @@ export class LineSolver {
     if (shapeColumn >= 0) columns.fill(0, shapeColumn * stride, shapeColumn * stride + m);
     for (let k = 0; k < this.lineCount; k++) {
       const at = PER_LINE * k;
-      if (!pixelIntegrated) this.addPoints(p, at);
+      // A learned shape holds the pixel already.
+      if (!pixelIntegrated || this.profile.name === "empirical") this.addPoints(p, at);
       else if (this.profile.name === "gaussian") this.addGaussianPixels(p, at);
       else if (this.profile.hasClosedIntegral) this.addPixels(p, at);
       else this.addQuadraturePixels(p, at);

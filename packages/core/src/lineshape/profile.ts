@@ -14,7 +14,7 @@
  *  -modified    of the whole shape    skewness; negative for a tail to lower x
  * box           standard deviation    fourth power of the box's standard deviation   0 to 0.98     closed (erf)
  *               of the whole shape    over it: the flatness
- * empirical     as learned            none                                                         closed (quintic table)
+ * empirical     FWHM                  none                                                         held by what is learned
  *
  * The parameters of the tail and the box are powers because the curve depends on exactly that power where the tail or the box is small:
  * the derivative stays finite and the uncertainty honest there.

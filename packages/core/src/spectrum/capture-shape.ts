@@ -28,6 +28,8 @@ export interface ShapeInUse {
   held: KnownParameter | null;
   /** What the other strong lines say of the parameter, for a line whose top is at this sample; null: nothing, it is free. */
   knownFor(top: number): KnownParameter | null;
+  /** What the shape's own uncertainty adds to a position's, in FWHM; absent = nothing. */
+  positionShare?: number;
   report: CaptureLineShape;
 }
 
@@ -255,7 +257,7 @@ function criterion(
   return { perLine, samples };
 }
 
-/** The shape with the least BIC over the strong lines; a line that some shape does not fit at all is left out for all. */
+/** The shape with the least BIC over the strong lines; a line that no shape fits is left out. */
 export function shapeByEvidence(prepared: Prepared, strong: readonly StrongLine[]): ShapeInUse {
   const redundancy = redundancyOf(prepared);
   const tried = candidates.map((name) => {
@@ -263,7 +265,7 @@ export function shapeByEvidence(prepared: Prepared, strong: readonly StrongLine[
     const learned = profile.hasParameter ? learn(prepared, strong, profile) : null;
     return { name, profile, learned, ...criterion(prepared, strong, profile, learned?.pooled ?? null) };
   });
-  const usable = strong.map((_, k) => tried.every(({ perLine }) => perLine[k]! < Infinity));
+  const usable = strong.map((_, k) => tried.some(({ perLine }) => perLine[k]! < Infinity));
   let best = tried[0]!;
   let least = Infinity;
   for (const one of tried) {
@@ -275,7 +277,11 @@ export function shapeByEvidence(prepared: Prepared, strong: readonly StrongLine[
     best = one;
     least = sum;
   }
-  if (best.name === "gaussian") return gaussianShape("evidence", strong.length);
+  if (best.name === "gaussian") {
+    const shape = gaussianShape("evidence", strong.length);
+    const note = `${strong.length} strong lines are no Gaussian, and no other shape that was tried describes them better.`;
+    return { ...shape, report: { ...shape.report, note } };
+  }
   const note = `Of the shapes tried on ${strong.length} strong lines, ${words[best.name]} describes them best (least BIC).`;
   const shape = shapeOf(best.name, best.profile, best.learned, "evidence", note);
   return { ...shape, report: { ...shape.report, lines: strong.length } };

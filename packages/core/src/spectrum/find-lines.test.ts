@@ -109,6 +109,65 @@ describe("findLines", () => {
     expect(found.notes.join(" ")).toContain("smoothed");
   });
 
+  it("chooses the shape by evidence, and keeps the Gaussian where it is one", () => {
+    const shapeOf = (changes: Partial<SimulatedInstrument>): string =>
+      findLines(spectrumOf(simulate(8, changes).counts), { lineShape: "automatic" }).lineShape!.name;
+    expect(shapeOf({})).toBe("gaussian");
+    expect(shapeOf({ shape: { kind: "skewed", tailShare: 1 } })).toBe("exponentially-modified-gaussian");
+    expect(shapeOf({ shape: { kind: "box", blurShare: 0.15 }, fwhm: { value: 8, unit: "px" } })).toBe("box");
+  });
+
+  it("gives the first moment of a skewed line, and its uncertainty", () => {
+    const sim = simulate(9, { shape: { kind: "skewed", tailShare: 1 } });
+    const found = findLines(spectrumOf(sim.counts), { lineShape: "automatic" });
+    for (const line of found.lines.filter(({ flags }) => flags.length === 0)) {
+      const truth = sim.truth.find((one) => Math.abs(one.position - line.position) < 1)!;
+      expect(Math.abs(line.position - truth.position)).toBeLessThan(4 * line.positionUnc);
+      expect(line.shapeParameters!["tail"]!.value).toBeGreaterThan(0.1);
+    }
+  });
+
+  it("says so where too few strong lines show a shape to learn", () => {
+    const { counts } = simulate(10);
+    const found = findLines(spectrumOf(counts.slice(0, 300)), { lineShape: "empirical" });
+    expect(found.lineShape!.name).toBe("gaussian");
+    expect(found.lineShape!.note).toContain("too few");
+  });
+
+  it("reads a maximum as an instrument does, with an uncertainty that holds the centre", () => {
+    const sim = simulate(11);
+    for (const positionDefinition of ["highest-sample", "three-point-parabola"] as const) {
+      const { lines } = findLines(spectrumOf(sim.counts), { positionDefinition });
+      for (const line of lines.filter(({ flags }) => flags.length === 0)) {
+        const truth = sim.truth.find((one) => Math.abs(one.position - line.position) < 1)!;
+        expect(Math.abs(line.position - truth.position)).toBeLessThan(3 * line.positionUnc);
+        if (positionDefinition === "highest-sample") expect(line.position).toBe(Math.round(line.position));
+      }
+    }
+  });
+
+  it("keeps to the stated rate on noise that is smoothed, cut off at a floor or in whole counts (0.3 a capture, 60 captures each)", () => {
+    const random = createRandom(12);
+    const mean = (values: Float64Array): Float64Array =>
+      values.map(
+        (_, i) => (values[Math.max(0, i - 1)]! + values[i]! + values[Math.min(values.length - 1, i + 1)]!) / 3,
+      );
+    const kinds: ((values: Float64Array) => Float64Array)[] = [
+      mean,
+      (values) => values.map((value) => Math.max(0, value)),
+      (values) => values.map((value) => Math.round(value / 8)),
+    ];
+    for (const kind of kinds) {
+      let found = 0;
+      for (let k = 0; k < 60; k += 1) {
+        const noise = Float64Array.from({ length: 2048 }, () => 12 * random.normal());
+        found += findLines(spectrumOf(kind(noise)), { falseLinesPerCapture: 0.3 }).lines.length;
+      }
+      // 18 expected; more than 45 would be twice and a half the rate and six deviations off.
+      expect(found).toBeLessThanOrEqual(45);
+    }
+  });
+
   it("fits neighbours together and marks them", () => {
     const sim = simulate(6, { fwhm: { value: 5.5, unit: "px" } });
     const { lines } = findLines(spectrumOf(sim.counts));

@@ -20,6 +20,7 @@ import { gaussianShape, givenShape, shapeByEvidence, strongLines, type ShapeInUs
 import { detectLines, type Candidate } from "./detect.ts";
 import { estimateGain, fitGroup, spikeLine, type FittedWindow, type FitSettings } from "./fit-groups.ts";
 import { groupCandidates, type Prepared } from "./line-groups.ts";
+import { learnShape } from "./learned-shape.ts";
 import { median } from "./median.ts";
 import { findSaturation } from "./saturation.ts";
 
@@ -134,12 +135,13 @@ function fitCandidates(
   const groupsFor = (name: LineShapeName) => groupCandidates(candidates, n, typicalWidth, name);
   let groups = groupsFor("gaussian");
   let shape: ShapeInUse = gaussianShape(options.lineShape === undefined ? "default" : "setup", 0);
-  let { gain, isMisfit } = estimateGain(prepared, groups, shape);
+  const firstFits = estimateGain(prepared, groups, shape);
+  let gain = firstFits.gain;
   if (choice !== "gaussian") {
-    shape = chooseShape(prepared, groupsFor, gain.gain, isMisfit, choice);
+    shape = chooseShape(prepared, groupsFor, gain.gain, firstFits.isMisfit, choice);
     if (shape.name !== "gaussian") {
       groups = groupsFor(shape.name);
-      ({ gain, isMisfit } = estimateGain(prepared, groups, shape));
+      gain = estimateGain(prepared, groups, shape).gain;
     }
   }
   const settings: FitSettings = { shape, gain, positionDefinition: options.positionDefinition ?? "fitted" };
@@ -172,7 +174,13 @@ function chooseShape(
       ? gaussianShape("evidence", strong.length)
       : shapeByEvidence(prepared, strong);
   }
-  if (choice === "empirical") return gaussianShape("setup", strong.length);
+  if (choice === "empirical") {
+    const start = isMisfit ? shapeByEvidence(prepared, strong) : gaussianShape("setup", strong.length);
+    const learned = learnShape(prepared, strong, start);
+    if (learned !== null) return learned;
+    const note = `Only ${strong.length} strong single lines: too few to learn a shape from. ${start.report.note}`;
+    return { ...start, report: { ...start.report, note } };
+  }
   return givenShape(prepared, strong, choice);
 }
 

@@ -182,7 +182,7 @@ function resultOf(
     const read = positionBy(settings.positionDefinition, prepared, window, fit, k);
     return {
       position: read?.position ?? line.centre,
-      positionUnc: read?.positionUnc ?? line.centreUnc,
+      positionUnc: read?.positionUnc ?? withShape(line.centreUnc, (shape.positionShare ?? 0) * line.fwhm),
       fwhm: line.fwhm,
       fwhmUnc: line.fwhmUnc,
       areaCounts: line.areaCounts,
@@ -204,6 +204,10 @@ function resultOf(
   for (let k = 0; k < positions.length; k += 1)
     baselineCounts[k] = fit.baseline[0] + fit.baseline[1] * (positions[k]! - fit.windowCentre);
   return { lines, window: { first, last, samples, fittedCounts: fit.fittedCounts, baselineCounts, countsUnc: unc } };
+}
+
+function withShape(fitUnc: number, shapeUnc: number): number {
+  return shapeUnc === 0 ? fitUnc : Math.sqrt(fitUnc * fitUnc + shapeUnc * shapeUnc);
 }
 
 function shapeParametersOf(shape: ShapeInUse, fit: FittedWindowOfLines): Pick<FittedLine, "shapeParameters"> {

@@ -60,8 +60,7 @@ export function estimatePhotonGain(lines: readonly LineScatter[]): PhotonGain {
     seen,
     seen.map((line) => gainAt(line, 0)),
   );
-  let gain = trend.isMisfit ? trend.atHeightZero
-      : lowerQuartile(seen.map((line) => gainAt(line, quartileSigmas)));
+  let gain = trend.isMisfit ? trend.atHeightZero : lowerQuartile(seen.map((line) => gainAt(line, quartileSigmas)));
   let weights = 0;
   for (let round = 0; round < trimRounds && gain > 0; round += 1) {
     let [sum, total, agreeing] = [0, 0, 0];
@@ -229,7 +228,7 @@ function correlatedSquare(v: Float64Array, autocorrelation: Float64Array): numbe
 }
 
 /** An orthonormal basis of what the columns span, in their place, by modified Gram-Schmidt; a column that adds nothing becomes 0. */
-export function orthonormalise(columns: Float64Array[]): void {
+function orthonormalise(columns: Float64Array[]): void {
   columns.forEach((column, k) => {
     const m = column.length;
     const before = norm(column);
