@@ -24,18 +24,18 @@ describe("light in vacuum", () => {
     expect(wavelengthFromFrequencyNm(frequencyTHz(546.2268))).toBeCloseTo(546.2268, 12);
     expect(wavelengthFromEnergyNm(photonEnergyEv(546.2268))).toBeCloseTo(546.2268, 12);
     expect(
-      scatteredWavelengthNm(532.1, ramanShift({ vacuumNm: 532.1, vacuumUncNm: 0 }, 562.7, 0).shiftPerCm),
+      scatteredWavelengthNm(532.1, ramanShift({ wavelengthVacuumNm: 532.1, uncNm: 0 }, 562.7, 0).shiftPerCm),
     ).toBeCloseTo(562.7, 11);
   });
   test("Raman shift from 500 to 520 nm: 20000 - 19230.769 = 769.231 cm-1; a laser 0.1 nm wrong moves it by 4 cm-1", () => {
-    const shift = ramanShift({ vacuumNm: 500, vacuumUncNm: 0.1 }, 520, 0);
+    const shift = ramanShift({ wavelengthVacuumNm: 500, uncNm: 0.1 }, 520, 0);
     expect(shift.shiftPerCm).toBeCloseTo(769.230769, 6);
     // d(1e7/l)/dl = 1e7 / 500² = 40 cm-1 per nm
     expect(shift.laserSensitivity).toBeCloseTo(-40, 12);
     expect(shift.shiftUncPerCm).toBeCloseTo(4, 12);
   });
   test("uncertainties of laser and line add in quadrature: 40 x 0.1 and (1e7 / 520²) x 0.1", () => {
-    expect(ramanShift({ vacuumNm: 500, vacuumUncNm: 0.1 }, 520, 0.1).shiftUncPerCm).toBeCloseTo(
+    expect(ramanShift({ wavelengthVacuumNm: 500, uncNm: 0.1 }, 520, 0.1).shiftUncPerCm).toBeCloseTo(
       Math.sqrt(16 + (1e7 / 520 / 520 / 10) ** 2),
       10,
     );
@@ -50,10 +50,10 @@ describe("light in vacuum", () => {
     expect(back.unc).toBeCloseTo(0.05, 12);
   });
   test("where a shift is seen: 769.231 cm-1 from 500.0(1) nm is 520 nm; (520/500)² x 0.1 = 0.10816 nm, 520²/1e7 x 1 cm-1 = 0.02704 nm", () => {
-    const seen = scatteredWavelength({ vacuumNm: 500, vacuumUncNm: 0.1 }, 1e7 / 500 - 1e7 / 520, 1);
+    const seen = scatteredWavelength({ wavelengthVacuumNm: 500, uncNm: 0.1 }, 1e7 / 500 - 1e7 / 520, 1);
     expect(seen.value).toBeCloseTo(520, 9);
     expect(seen.unc).toBeCloseTo(Math.hypot(0.10816, 0.02704), 9);
-    expect(() => scatteredWavelength({ vacuumNm: 500, vacuumUncNm: -1 }, 100, 0)).toThrow(RangeError);
+    expect(() => scatteredWavelength({ wavelengthVacuumNm: 500, uncNm: -1 }, 100, 0)).toThrow(RangeError);
   });
   test("refuses what is no wavelength", () => {
     expect(() => wavenumberPerCm(0)).toThrow(RangeError);

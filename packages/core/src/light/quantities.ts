@@ -3,6 +3,7 @@
  *
  * Constants are exact in the SI of 2019: c = 299 792 458 m/s, h = 6.626 070 15e-34 J s, e = 1.602 176 634e-19 C.
  */
+import type { LaserLine } from "../analysis/types.ts";
 
 const LIGHT_NM_THZ = 299792.458;
 /** h c / e in eV nm. */
@@ -62,13 +63,6 @@ export function withUncertainty(convert: (value: number) => number, of: Quantity
   return { value, unc: (value * of.unc) / of.value };
 }
 
-/** A laser line as used for Raman shifts. */
-export interface LaserLine {
-  vacuumNm: number;
-  /** Standard uncertainty, nm. */
-  vacuumUncNm: number;
-}
-
 export interface RamanShift {
   /** cm-1; positive on the Stokes side (longer wavelength). */
   shiftPerCm: number;
@@ -85,13 +79,13 @@ export interface RamanShift {
  * @throws {RangeError} a wavelength not above 0, or a negative uncertainty
  */
 export function ramanShift(laser: LaserLine, scatteredVacuumNm: number, scatteredUncNm: number): RamanShift {
-  if (!(laser.vacuumUncNm >= 0 && scatteredUncNm >= 0)) throw new RangeError("An uncertainty cannot be negative");
-  const laserSensitivity = -wavenumberPerCm(laser.vacuumNm) / laser.vacuumNm;
+  if (!(laser.uncNm >= 0 && scatteredUncNm >= 0)) throw new RangeError("An uncertainty cannot be negative");
+  const laserSensitivity = -wavenumberPerCm(laser.wavelengthVacuumNm) / laser.wavelengthVacuumNm;
   const scatteredSensitivity = wavenumberPerCm(scatteredVacuumNm) / scatteredVacuumNm;
-  const fromLaser = laserSensitivity * laser.vacuumUncNm;
+  const fromLaser = laserSensitivity * laser.uncNm;
   const fromScattered = scatteredSensitivity * scatteredUncNm;
   return {
-    shiftPerCm: wavenumberPerCm(laser.vacuumNm) - wavenumberPerCm(scatteredVacuumNm),
+    shiftPerCm: wavenumberPerCm(laser.wavelengthVacuumNm) - wavenumberPerCm(scatteredVacuumNm),
     shiftUncPerCm: Math.sqrt(fromLaser * fromLaser + fromScattered * fromScattered),
     laserSensitivity,
     scatteredSensitivity,
@@ -112,10 +106,10 @@ export function scatteredWavelengthNm(laserVacuumNm: number, shiftPerCm: number)
  * @throws {RangeError} shift at or beyond the laser's wavenumber, a negative uncertainty
  */
 export function scatteredWavelength(laser: LaserLine, shiftPerCm: number, shiftUncPerCm: number): Quantity {
-  if (!(laser.vacuumUncNm >= 0 && shiftUncPerCm >= 0)) throw new RangeError("An uncertainty cannot be negative");
-  const value = scatteredWavelengthNm(laser.vacuumNm, shiftPerCm);
-  const ratio = value / laser.vacuumNm;
-  const fromLaser = ratio * ratio * laser.vacuumUncNm;
+  if (!(laser.uncNm >= 0 && shiftUncPerCm >= 0)) throw new RangeError("An uncertainty cannot be negative");
+  const value = scatteredWavelengthNm(laser.wavelengthVacuumNm, shiftPerCm);
+  const ratio = value / laser.wavelengthVacuumNm;
+  const fromLaser = ratio * ratio * laser.uncNm;
   const fromShift = ((value * value) / 1e7) * shiftUncPerCm;
   return { value, unc: Math.sqrt(fromLaser * fromLaser + fromShift * fromShift) };
 }
