@@ -8,7 +8,7 @@
  * Alike     autocorrelation of the quiet residuals by lag (`noise-correlation.ts`)
  * Source    common practice; the factor 1.4826 makes the deviation a standard deviation for normal noise
  */
-import { medianInPlace, selectInPlace } from "./median.ts";
+import { median, medianInPlace, selectInPlace } from "./median.ts";
 import { estimateAutocorrelation } from "./noise-correlation.ts";
 
 export interface Baseline {
@@ -32,6 +32,8 @@ const blocksWanted = 32;
 const shortestBlock = 32;
 const rounds = 5;
 const clipSigmas = 3;
+/** The first knots are low, the more the steeper the background is. */
+const firstClipSigmas = 6;
 const leastQuietShare = 0.2;
 /** Relative variance of the median of three such deviations, times the samples of one: 1.36 (normal noise) x 0.45. */
 const medianOfThreeVariance = 0.61;
@@ -46,13 +48,18 @@ const flank = 3;
 /** The spread below the baseline is taken from at most so many samples. */
 const mostForSpread = 1024;
 
-/** With fewer samples than this share below the baseline, the spread is taken from the upper quantile of all samples: that of a normal deviate. */
-const leastBelow = 0.15;
+/** With more samples than this share at the least count, the upper quantile of all tells the spread: that of a normal deviate. */
+const leastAtFloor = 0.15;
 const floorQuantile = 0.75;
 const floorQuantileSd = 0.6745;
 const upperQuantile = 0.8413;
 /** Of normal noise the deviation is 0.71 of this quantile; where it is less than this share of it, half of the counts are cut off. */
 const leastOfUpper = 0.45;
+/** Mean of the lower half of |z| (normal), 4 (phi(0) - phi(0.6745)), times sqrt(3/2) for the two neighbours' own noise. */
+const lowerHalfOfSteps = 0.3976;
+const fewestSteps = 6;
+/** With fewer samples below the baseline their spread is that of the steps. */
+const fewestBelow = 8;
 
 let scratch = new Float64Array(0);
 
@@ -71,28 +78,41 @@ export function estimateBaseline(counts: Float64Array): Baseline {
   const centres = Float64Array.from({ length: blocks }, (_, b) => (edges[b]! + edges[b + 1]! - 1) / 2);
   const knots = new Float64Array(blocks);
   const baseline = new Float64Array(n);
+  const limits = new Float64Array(n);
   const quiet = new Uint8Array(n);
   const leastNoise = leastNoiseOf(counts, quiet);
 
   // Lines only add light: the lower third of each block is nearer the baseline than its median.
   for (let b = 0; b < blocks; b += 1) knots[b] = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.3, 1);
+  const local = stepSpread(counts, edges, leastNoise);
   let sd = 0;
   let isSettled = false;
   for (let round = 0; round < rounds && !isSettled; round += 1) {
     interpolate(centres, fillGaps(knots), baseline);
-    sd = Math.max(lowerSpread(counts, baseline), leastNoise);
-    maskLines(counts, baseline, clipSigmas * sd, quiet);
+    interpolate(centres, local, limits);
+    sd = lowerSpread(counts, baseline, limits);
+    const clip = round === 0 ? firstClipSigmas : clipSigmas;
+    for (let i = 0; i < n; i += 1) limits[i] = clip * Math.max(sd * limits[i]!, leastNoise);
+    maskLines(counts, baseline, limits, quiet);
     isSettled = true;
+    let known = 0;
+    const before = knots.slice();
     for (let b = 0; b < blocks; b += 1) {
       const least = Math.max(3, leastQuietShare * (edges[b + 1]! - edges[b]!));
       const knot = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.5, least);
-      if (!(Math.abs(knot - knots[b]!) <= settledShare * sd) && (knot === knot || knots[b] === knots[b]))
+      if (!(Math.abs(knot - knots[b]!) <= settledShare * sd * local[b]!) && (knot === knot || knots[b] === knots[b]))
         isSettled = false;
       knots[b] = knot;
+      if (knot === knot) known += 1;
+    }
+    if (known === 0) {
+      // Lines everywhere: what was found before is nearer than nothing.
+      knots.set(before);
+      isSettled = true;
     }
   }
   interpolate(centres, fillGaps(knots), baseline);
-  const raw = blockNoise(counts, baseline, quiet, edges, Math.max(sd, leastNoise));
+  const raw = blockNoise(counts, baseline, quiet, edges, Math.max(sd * median(local), leastNoise));
   const noiseCounts = new Float64Array(n);
   let noise = shrinkToCommon(raw, edges[1]!, 1);
   spreadNoise(centres, noise, leastNoise, noiseCounts);
@@ -186,32 +206,77 @@ function interpolate(centres: Float64Array, knots: Float64Array, out: Float64Arr
   for (; i < n; i += 1) out[i] = knots[last]!;
 }
 
-/** Spread of what lies below the baseline: lines do not reach there. Where next to nothing does, the counts were cut off at a floor. */
-function lowerSpread(counts: Float64Array, baseline: Float64Array): number {
+/**
+ * Per block, spread of what a sample differs by from the mean of its neighbours, of white noise its deviation: needs no baseline, so that a
+ * broad hump with more noise than the rest is seen as such. Mean of the lower half, median of three blocks: lines' samples are in the upper.
+ */
+function stepSpread(counts: Float64Array, edges: Int32Array, least: number): Float64Array {
+  const blocks = edges.length - 1;
+  const values = scratch;
+  const raw = new Float64Array(blocks).fill(NaN);
+  for (let b = 0; b < blocks; b += 1) {
+    let m = 0;
+    for (let i = Math.max(1, edges[b]!); i < edges[b + 1]! && i + 1 < counts.length; i += 1) {
+      const step = Math.abs(counts[i]! - (counts[i - 1]! + counts[i + 1]!) / 2);
+      if (step === step) values[m++] = step;
+    }
+    if (m < fewestSteps) continue;
+    const half = m >> 1;
+    selectInPlace(values, m, half);
+    let sum = 0;
+    for (let k = 0; k < half; k += 1) sum += values[k]!;
+    raw[b] = Math.max(least, sum / half / lowerHalfOfSteps);
+  }
+  const filled = fillGaps(raw);
+  for (let b = 0; b < blocks; b += 1) if (!(filled[b]! > 0)) filled[b] = least;
+  return medianOfThree(filled);
+}
+
+function medianOfThree(values: Float64Array): Float64Array {
+  const smooth = values.slice();
+  const three = new Float64Array(3);
+  for (let b = 1; b + 1 < values.length; b += 1) {
+    three[0] = values[b - 1]!;
+    three[1] = values[b]!;
+    three[2] = values[b + 1]!;
+    smooth[b] = medianInPlace(three, 3);
+  }
+  return smooth;
+}
+
+/**
+ * Spread of what lies below the baseline, over the local measure of it: lines do not reach there. Where many samples have the least count of
+ * the capture, the counts were cut off at a floor, and the upper part tells it.
+ */
+function lowerSpread(counts: Float64Array, baseline: Float64Array, local: Float64Array): number {
   const values = scratch;
   const n = counts.length;
   const stride = Math.max(1, Math.floor(n / mostForSpread));
-  let [below, seen] = [0, 0];
+  let [below, atFloor, seen] = [0, 0, 0];
+  let floor = Number.POSITIVE_INFINITY;
+  for (let i = 0; i < n; i += stride) if (counts[i]! < floor) floor = counts[i]!;
   for (let i = 0; i < n; i += stride) {
-    const residual = counts[i]! - baseline[i]!;
+    const residual = (counts[i]! - baseline[i]!) / local[i]!;
     if (residual < 0) values[below++] = -residual;
+    if (counts[i] === floor) atFloor += 1;
     if (residual === residual) seen += 1;
   }
-  if (below >= leastBelow * seen) return below === 0 ? 0 : madToSd * medianInPlace(values, below);
+  if (atFloor < leastAtFloor * seen) return below < fewestBelow ? 1 : madToSd * medianInPlace(values, below);
   let m = 0;
   for (let i = 0; i < n; i += stride) {
-    const residual = counts[i]! - baseline[i]!;
+    const residual = (counts[i]! - baseline[i]!) / local[i]!;
     if (residual === residual) values[m++] = residual;
   }
   return Math.max(0, selectInPlace(values, m, Math.floor(floorQuantile * m)) / floorQuantileSd);
 }
 
-/** Quiet = within the limit of the baseline, and no neighbour on either side far above it. */
-function maskLines(counts: Float64Array, baseline: Float64Array, limit: number, quiet: Uint8Array): void {
+/** Quiet = within its limit of the baseline, and no neighbour on either side far above it. */
+function maskLines(counts: Float64Array, baseline: Float64Array, limits: Float64Array, quiet: Uint8Array): void {
   const n = counts.length;
   let reach = 0;
   for (let i = 0; i < n; i += 1) {
     const residual = counts[i]! - baseline[i]!;
+    const limit = limits[i]!;
     if (residual > limit) {
       quiet[i] = 0;
       if (reach < flank) for (let k = Math.max(0, i - flank); k < i; k += 1) quiet[k] = 0;
@@ -246,15 +311,7 @@ function blockNoise(
     known += 1;
   }
   const filled = known > 0 ? fillGaps(raw) : raw.fill(fallback);
-  const smooth = filled.slice();
-  const three = new Float64Array(3);
-  for (let b = 1; b + 1 < blocks; b += 1) {
-    three[0] = filled[b - 1]!;
-    three[1] = filled[b]!;
-    three[2] = filled[b + 1]!;
-    smooth[b] = medianInPlace(three, 3);
-  }
-  return smooth;
+  return medianOfThree(filled);
 }
 
 function spreadNoise(centres: Float64Array, noise: Float64Array, least: number, out: Float64Array): void {

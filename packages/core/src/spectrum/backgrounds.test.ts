@@ -1,0 +1,98 @@
+/** False lines and lost lines on backgrounds that are not level: humps, phosphor bands, steps, slopes, and lamps with lines everywhere. */
+import { describe, expect, it } from "vitest";
+import { exp } from "../numeric/elementary.ts";
+import { createRandom } from "../testing/index.ts";
+import { estimateBaseline } from "./baseline.ts";
+import { findLines } from "./find-lines.ts";
+
+interface Scene {
+  samples?: number;
+  /** Counts, by share of the capture. */
+  background: (share: number) => number;
+  countsPerElectron: number;
+  lines: number;
+  fwhm?: number;
+}
+
+const readNoise = 8;
+const captures = 20;
+const rate = 0.3;
+
+const hill = (x: number, centre: number, fwhm: number): number =>
+  exp((-2.772588722 * (x - centre) * (x - centre)) / (fwhm * fwhm));
+const hump = (x: number): number => 1200 + 2000 * hill(x, 0.5, 0.35);
+
+/** Lines one to each even part of the capture, heights from 15 to 900 deviations of the noise about them. */
+function record(scene: Scene, seed: number): { counts: Float64Array; centres: number[] } {
+  const { samples: n = 2048, fwhm = 4, background, countsPerElectron: gain } = scene;
+  const random = createRandom(seed);
+  const light = Float64Array.from({ length: n }, (_, i) => background(i / n));
+  const centres: number[] = [];
+  for (let k = 0; k < scene.lines; k += 1) {
+    const centre = (n * (k + 0.2 + 0.6 * random.uniform())) / scene.lines;
+    const deviations = 15 * exp(4.094 * random.uniform());
+    if (centre < 3 * fwhm || centre > n - 3 * fwhm) continue;
+    centres.push(centre);
+    const height = deviations * Math.sqrt(readNoise * readNoise + gain * background(centre / n));
+    for (let i = Math.max(0, Math.floor(centre - 5 * fwhm)); i < Math.min(n, centre + 5 * fwhm); i += 1)
+      light[i] = light[i]! + height * hill(i, centre, fwhm);
+  }
+  const counts = light.map((value) => gain * random.poisson(value / gain) + readNoise * random.normal());
+  return { counts, centres };
+}
+
+function tally(scene: Scene): { falseLines: number; lost: number; wanted: number } {
+  const fwhm = scene.fwhm ?? 4;
+  let [falseLines, lost, wanted] = [0, 0, 0];
+  for (let seed = 1; seed <= captures; seed += 1) {
+    const { counts, centres } = record(scene, seed);
+    const positions = counts.map((_, i) => i);
+    const found = findLines(
+      {
+        axisKind: "pixel",
+        axisUnit: "px",
+        wasDescending: false,
+        positions,
+        counts,
+        fullScaleCounts: null,
+        scansSummed: 1,
+      },
+      { falseLinesPerCapture: rate },
+    ).lines;
+    const isNear = (a: number, b: number): boolean => Math.abs(a - b) < 0.75 * fwhm;
+    falseLines += found.filter((line) => !centres.some((centre) => isNear(centre, line.position))).length;
+    lost += centres.filter((centre) => !found.some((line) => isNear(centre, line.position))).length;
+    wanted += centres.length;
+  }
+  return { falseLines, lost, wanted };
+}
+
+describe("findLines on backgrounds", () => {
+  // 20 captures at 0.3 false lines each: 6 expected; more than 15 has a chance of 5e-4.
+  const mostFalse = 15;
+
+  it.each<[string, Scene, number]>([
+    ["a hump with five times the noise of the rest", { background: hump, countsPerElectron: 2, lines: 0 }, 0],
+    ["lines on that hump", { background: hump, countsPerElectron: 2, lines: 25 }, 0.01],
+    [
+      "a slope of fluorescence",
+      { background: (x) => 500 + 30000 * exp(-x / 0.3), countsPerElectron: 1, lines: 20 },
+      0.01,
+    ],
+    ["a step", { background: (x) => (x < 0.45 ? 800 : 2400), countsPerElectron: 1, lines: 20 }, 0.03],
+    ["220 lines in 4096 samples", { background: () => 800, countsPerElectron: 1, lines: 220, samples: 4096 }, 0.01],
+    ["the same on a hump", { background: hump, countsPerElectron: 2, lines: 220, samples: 4096 }, 0.01],
+    ["lines with hardly a quiet sample between", { background: () => 800, countsPerElectron: 1, lines: 150 }, 0.03],
+    ["lines as broad as half a block", { background: () => 800, countsPerElectron: 1, lines: 8, fwhm: 40 }, 0.02],
+  ])("%s: the stated rate of false lines, and no more lost than stated", (_, scene, mostLostShare) => {
+    const { falseLines, lost, wanted } = tally(scene);
+    expect(falseLines).toBeLessThanOrEqual(mostFalse);
+    expect(lost).toBeLessThanOrEqual(mostLostShare * wanted);
+  });
+
+  it("follows a steep hump within its noise", () => {
+    const { counts } = record({ background: hump, countsPerElectron: 2, lines: 12 }, 99);
+    const { baseline } = estimateBaseline(counts);
+    for (let i = 0; i < 2048; i += 1) expect(Math.abs(baseline[i]! - hump(i / 2048))).toBeLessThan(60);
+  });
+});
