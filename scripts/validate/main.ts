@@ -12,10 +12,14 @@ import path from "node:path";
 import { parseArgs } from "node:util";
 import { coreVersion } from "@wavekeep/core";
 import { identification, timesOf } from "./identification.ts";
-import { bands, drift, intervals, lineFits, strd } from "./stages.ts";
+import { ownSimulator } from "./own-simulator.ts";
+import { bands, diagnosis, drift, intervals, lineFits, strd } from "./stages.ts";
 import type { Section, Study } from "./study.ts";
 
-const studies = [identification, strd, lineFits, intervals, bands, drift] as unknown as Study<unknown, unknown>[];
+const studies = [identification, ownSimulator, strd, lineFits, intervals, bands, drift, diagnosis] as unknown as Study<
+  unknown,
+  unknown
+>[];
 const docs = path.resolve(import.meta.dirname, "../../docs");
 const runMark = "## This run\n";
 
@@ -48,8 +52,8 @@ async function inProcess(task: Task): Promise<void> {
 }
 
 async function runAll(tasks: Task[]): Promise<void> {
-  // The longest studies first; two processes take what comes next.
-  const waiting = [...tasks];
+  // The drift study is one long piece: it begins first. Two processes take what comes next.
+  const waiting = [...tasks].sort((a, b) => Number(b.study.name === "drift") - Number(a.study.name === "drift"));
   const worker = async (): Promise<void> => {
     for (let task = waiting.shift(); task !== undefined; task = waiting.shift()) await inProcess(task);
   };
