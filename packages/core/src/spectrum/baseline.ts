@@ -32,7 +32,8 @@ const blocksWanted = 32;
 const shortestBlock = 32;
 const rounds = 5;
 const clipSigmas = 3;
-/** The first knots are low, the more the steeper the background is. */
+const startShare = 0.3;
+/** The first knots are low. */
 const firstClipSigmas = 6;
 const leastQuietShare = 0.2;
 /** Relative variance of the median of three such deviations, times the samples of one: 1.36 (normal noise) x 0.45. */
@@ -82,14 +83,19 @@ export function estimateBaseline(counts: Float64Array): Baseline {
   const quiet = new Uint8Array(n);
   const leastNoise = leastNoiseOf(counts, quiet);
 
-  // Lines only add light: the lower third of each block is nearer the baseline than its median.
-  for (let b = 0; b < blocks; b += 1) knots[b] = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.3, 1);
   const local = stepSpread(counts, edges, leastNoise);
+  // Lines only add light: the lower third of each block is nearer the baseline than its median. Once more about straight lines between
+  // those, so that a slope does not make it low.
+  for (let pass = 0; pass < 2; pass += 1) {
+    for (let b = 0; b < blocks; b += 1)
+      knots[b] = knotOf(counts, baseline, quiet, edges[b]!, edges[b + 1]!, startShare, 1);
+    interpolate(centres, fillGaps(knots), baseline, local);
+  }
   let sd = 0;
   let isSettled = false;
   for (let round = 0; round < rounds && !isSettled; round += 1) {
-    interpolate(centres, fillGaps(knots), baseline);
-    interpolate(centres, local, limits);
+    interpolate(centres, fillGaps(knots), baseline, local);
+    interpolate(centres, local, limits, null);
     sd = lowerSpread(counts, baseline, limits);
     const clip = round === 0 ? firstClipSigmas : clipSigmas;
     for (let i = 0; i < n; i += 1) limits[i] = clip * Math.max(sd * limits[i]!, leastNoise);
@@ -99,7 +105,7 @@ export function estimateBaseline(counts: Float64Array): Baseline {
     const before = knots.slice();
     for (let b = 0; b < blocks; b += 1) {
       const least = Math.max(3, leastQuietShare * (edges[b + 1]! - edges[b]!));
-      const knot = quantileOf(counts, quiet, edges[b]!, edges[b + 1]!, 0.5, least);
+      const knot = knotOf(counts, baseline, quiet, edges[b]!, edges[b + 1]!, 0.5, least);
       if (!(Math.abs(knot - knots[b]!) <= settledShare * sd * local[b]!) && (knot === knot || knots[b] === knots[b]))
         isSettled = false;
       knots[b] = knot;
@@ -111,7 +117,7 @@ export function estimateBaseline(counts: Float64Array): Baseline {
       isSettled = true;
     }
   }
-  interpolate(centres, fillGaps(knots), baseline);
+  interpolate(centres, fillGaps(knots), baseline, local);
   const raw = blockNoise(counts, baseline, quiet, edges, Math.max(sd * median(local), leastNoise));
   const noiseCounts = new Float64Array(n);
   let noise = shrinkToCommon(raw, edges[1]!, 1);
@@ -158,8 +164,13 @@ function leastNoiseOf(counts: Float64Array, quiet: Uint8Array): number {
   return Math.max(1e-6 * (high - low), byStep);
 }
 
-function quantileOf(
+/**
+ * A block's knot: the mean baseline of the block plus a quantile of its quiet samples over it, so that a slope with one half of the block masked
+ * does not shift it; NaN where fewer than `least` are quiet.
+ */
+function knotOf(
   counts: Float64Array,
+  baseline: Float64Array,
   quiet: Uint8Array,
   from: number,
   to: number,
@@ -168,9 +179,13 @@ function quantileOf(
 ): number {
   const values = scratch;
   let m = 0;
-  for (let i = from; i < to; i += 1) if (quiet[i] === 1) values[m++] = counts[i]!;
+  let mean = 0;
+  for (let i = from; i < to; i += 1) {
+    mean += baseline[i]! / (to - from);
+    if (quiet[i] === 1) values[m++] = counts[i]! - baseline[i]!;
+  }
   if (m < least) return NaN;
-  return share === 0.5 ? medianInPlace(values, m) : selectInPlace(values, m, Math.floor(share * (m - 1)));
+  return mean + (share === 0.5 ? medianInPlace(values, m) : selectInPlace(values, m, Math.floor(share * (m - 1))));
 }
 
 /** Knots that are NaN become straight lines between their neighbours; all NaN becomes 0. */
@@ -190,20 +205,33 @@ function fillGaps(knots: Float64Array): Float64Array {
   return filled;
 }
 
-/** Straight lines between the knots, level beyond the outermost. */
-function interpolate(centres: Float64Array, knots: Float64Array, out: Float64Array): void {
+/**
+ * Straight lines between the knots; beyond the outermost level, or, where the two outermost differ by more than `levelWithin` of theirs, on the
+ * line through them.
+ */
+function interpolate(
+  centres: Float64Array,
+  knots: Float64Array,
+  out: Float64Array,
+  levelWithin: Float64Array | null,
+): void {
   const n = out.length;
   const last = centres.length - 1;
+  const slopeOf = (b: number): number => (knots[b + 1]! - knots[b]!) / (centres[b + 1]! - centres[b]!);
+  const endSlope = (b: number, end: number): number =>
+    levelWithin !== null && last > 0 && Math.abs(knots[b + 1]! - knots[b]!) > levelWithin[end]! ? slopeOf(b) : 0;
   let i = 0;
-  for (; i < n && (last === 0 || i <= centres[0]!); i += 1) out[i] = knots[0]!;
+  const before = endSlope(0, 0);
+  for (; i < n && (last === 0 || i <= centres[0]!); i += 1) out[i] = knots[0]! + (i - centres[0]!) * before;
   for (let b = 0; b < last; b += 1) {
     const from = centres[b]!;
     const start = knots[b]!;
-    const slope = (knots[b + 1]! - start) / (centres[b + 1]! - from);
+    const slope = slopeOf(b);
     const end = Math.min(n, Math.floor(centres[b + 1]!) + 1);
     for (; i < end; i += 1) out[i] = start + (i - from) * slope;
   }
-  for (; i < n; i += 1) out[i] = knots[last]!;
+  const after = endSlope(last - 1, last);
+  for (; i < n; i += 1) out[i] = knots[last]! + (i - centres[last]!) * after;
 }
 
 /**
@@ -315,7 +343,7 @@ function blockNoise(
 }
 
 function spreadNoise(centres: Float64Array, noise: Float64Array, least: number, out: Float64Array): void {
-  interpolate(centres, noise, out);
+  interpolate(centres, noise, out, null);
   for (let i = 0; i < out.length; i += 1) if (out[i]! < least) out[i] = least;
 }
 
