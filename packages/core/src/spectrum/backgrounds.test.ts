@@ -1,6 +1,7 @@
 /** False lines and lost lines on backgrounds that are not level: humps, phosphor bands, steps, slopes, and lamps with lines everywhere. */
 import { describe, expect, it } from "vitest";
 import { exp } from "../numeric/elementary.ts";
+import type { Spectrum } from "../analysis/types.ts";
 import { createRandom } from "../testing/index.ts";
 import { estimateBaseline } from "./baseline.ts";
 import { findLines } from "./find-lines.ts";
@@ -46,19 +47,7 @@ function tally(scene: Scene): { falseLines: number; lost: number; wanted: number
   let [falseLines, lost, wanted] = [0, 0, 0];
   for (let seed = 1; seed <= captures; seed += 1) {
     const { counts, centres } = record(scene, seed);
-    const positions = counts.map((_, i) => i);
-    const found = findLines(
-      {
-        axisKind: "pixel",
-        axisUnit: "px",
-        wasDescending: false,
-        positions,
-        counts,
-        fullScaleCounts: null,
-        scansSummed: 1,
-      },
-      { falseLinesPerCapture: rate },
-    ).lines;
+    const found = findLines(spectrumOf(counts), { falseLinesPerCapture: rate }).lines;
     const isNear = (a: number, b: number): boolean => Math.abs(a - b) < 0.75 * fwhm;
     falseLines += found.filter((line) => !centres.some((centre) => isNear(centre, line.position))).length;
     lost += centres.filter((centre) => !found.some((line) => isNear(centre, line.position))).length;
@@ -66,6 +55,16 @@ function tally(scene: Scene): { falseLines: number; lost: number; wanted: number
   }
   return { falseLines, lost, wanted };
 }
+
+const spectrumOf = (counts: Float64Array): Spectrum => ({
+  axisKind: "pixel",
+  axisUnit: "px",
+  wasDescending: false,
+  positions: counts.map((_, i) => i),
+  counts,
+  fullScaleCounts: null,
+  scansSummed: 1,
+});
 
 describe("findLines on backgrounds", () => {
   // 20 captures at 0.3 false lines each: 6 expected; more than 15 has a chance of 5e-4.
@@ -94,5 +93,67 @@ describe("findLines on backgrounds", () => {
     const { counts } = record({ background: hump, countsPerElectron: 2, lines: 12 }, 99);
     const { baseline } = estimateBaseline(counts);
     for (let i = 0; i < 2048; i += 1) expect(Math.abs(baseline[i]! - hump(i / 2048))).toBeLessThan(60);
+  });
+});
+
+describe("findLines in short windows", () => {
+  it.each([20, 24, 27, 32, 40])("finds the one line of %i samples, where it is, and nothing else", (samples) => {
+    let [found, held, others] = [0, 0, 0];
+    for (let seed = 1; seed <= 40; seed += 1) {
+      const random = createRandom(seed);
+      const centre = samples * (0.35 + 0.3 * random.uniform());
+      const counts = Float64Array.from(
+        { length: samples },
+        (_, i) => random.poisson(200 + 6000 * hill(i, centre, 5)) + 4 * random.normal(),
+      );
+      const { lines } = findLines(spectrumOf(counts));
+      const line = lines.find(({ position }) => Math.abs(position - centre) < 2);
+      others += lines.length - (line === undefined ? 0 : 1);
+      if (line === undefined) continue;
+      found += 1;
+      if (Math.abs(line.position - centre) < 3 * line.positionUnc) held += 1;
+    }
+    expect(found).toBe(40);
+    expect(held).toBeGreaterThanOrEqual(36);
+    expect(others).toBeLessThanOrEqual(2);
+  });
+});
+
+describe("findLines at the limits", () => {
+  it("marks every line near an end of the capture, and places none outside it", () => {
+    for (let k = -8; k <= 12; k += 1) {
+      const centre = k / 2;
+      const random = createRandom(100 + k);
+      const counts = Float64Array.from(
+        { length: 512 },
+        (_, i) =>
+          random.poisson(500 + 8000 * (hill(i, centre, 6) + hill(i, 511 - centre, 6) + hill(i, 200, 6))) +
+          8 * random.normal(),
+      );
+      for (const line of findLines(spectrumOf(counts)).lines) {
+        expect(line.position).toBeGreaterThanOrEqual(0);
+        expect(line.position).toBeLessThanOrEqual(511);
+        if (Math.abs(line.position - 200) > 2) expect(line.flags).toContain("edge");
+      }
+    }
+  });
+
+  it("never throws whatever the size of the counts, and gives the same lines or says why none", () => {
+    const random = createRandom(4);
+    const shape = Float64Array.from({ length: 512 }, (_, i) => 900 + 5000 * hill(i, 200, 4) + 12 * random.normal());
+    for (let power = -324; power <= 308; power += 4) {
+      const scale = Number(`1e${power}`);
+      for (const sign of [1, -1]) {
+        const { lines, notes } = findLines(spectrumOf(shape.map((value) => Math.max(-1e308, sign * scale * value))));
+        for (const line of lines)
+          expect(Number.isFinite(line.position) && Number.isFinite(line.positionUnc) && line.positionUnc > 0).toBe(
+            true,
+          );
+        if (sign === 1 && Math.abs(power) < 60) {
+          expect(lines.map(({ position }) => Math.round(position))).toEqual([200]);
+        } else if (sign === 1 && Math.abs(power) > 80 && power > -322)
+          expect(notes[0]).toContain("record them in a unit");
+      }
+    }
   });
 });

@@ -63,8 +63,19 @@ export interface FoundLines {
 /** Lag-one correlation above which a capture is said to be smoothed. */
 export const smoothedAbove = 0.2;
 
-/** Find and fit the lines of a spectrum. Never throws; a spectrum without lines gives none. */
+/** Largest count, and smallest difference of the largest and the least, whose fourth powers are still numbers. */
+const mostCounts = 1e70;
+const leastSpanCounts = 1e-70;
+/** A line nearer than this many widths to an end of the capture has no whole flank on that side. */
+const cutWidths = 0.5;
+
+/** Find and fit the lines of a spectrum. Never throws; a spectrum without lines, or one whose counts can't be squared, gives none. */
 export function findLines(spectrum: Spectrum, options: FindLinesOptions = {}): FoundLines {
+  const refusal = refusalOf(spectrum.counts);
+  if (refusal !== null) {
+    const none = findLines({ ...spectrum, counts: new Float64Array(spectrum.counts.length) }, options);
+    return { ...none, notes: [refusal] };
+  }
   const n = spectrum.counts.length;
   const base = estimateBaseline(spectrum.counts);
   const leastFlat = median(base.baseline) + 30 * base.medianNoiseCounts;
@@ -110,6 +121,7 @@ export function findLines(spectrum: Spectrum, options: FindLinesOptions = {}): F
   );
   const medianFwhm = widths.length > 0 ? median(widths) : null;
   markAgainstWidth(kept, medianFwhm, smoothed);
+  markCut(kept, spectrum.positions);
   return {
     lines: kept,
     windows,
@@ -123,6 +135,22 @@ export function findLines(spectrum: Spectrum, options: FindLinesOptions = {}): F
     medianFwhm,
     notes: notesOf(kept, base.lagOneCorrelation),
   };
+}
+
+/** Squares of counts must be numbers, and not 0: null where they are, else a sentence. */
+function refusalOf(counts: Float64Array): string | null {
+  let low = Number.POSITIVE_INFINITY;
+  let high = Number.NEGATIVE_INFINITY;
+  for (let i = 0; i < counts.length; i += 1) {
+    if (counts[i]! < low) low = counts[i]!;
+    if (counts[i]! > high) high = counts[i]!;
+  }
+  const isLarge = high > mostCounts || low < -mostCounts;
+  if (!isLarge && !(high > low && high - low < leastSpanCounts)) return null;
+  return (
+    `The counts are too ${isLarge ? "large" : "small"} to be reckoned with (from ${low.toExponential(1)} to ${high.toExponential(1)}), so no ` +
+    `line was looked for: record them in a unit in which they lie between ${leastSpanCounts.toExponential(0)} and ${mostCounts.toExponential(0)}.`
+  );
 }
 
 function fitCandidates(
@@ -220,6 +248,17 @@ function markAgainstWidth(lines: FittedLine[], medianFwhm: number | null, smooth
     if (smoothed && !line.flags.includes("spike")) line.flags.push("smoothed");
     if (medianFwhm === null || line.flags.includes("spike") || line.flags.includes("poor-fit")) continue;
     if (line.fwhm + 2 * line.fwhmUnc < 0.5 * medianFwhm) line.flags.push("spike");
+  }
+}
+
+/** A fit may move a line's top to the end of the capture, or beyond it: there its place is only where the samples end. */
+function markCut(lines: FittedLine[], positions: Float64Array): void {
+  const first = positions[0] ?? 0;
+  const last = positions[positions.length - 1] ?? 0;
+  for (const line of lines) {
+    const inside = Math.min(line.position - first, last - line.position);
+    if (inside < cutWidths * line.fwhm && !line.flags.some((flag) => flag === "edge" || flag === "spike"))
+      line.flags.push("edge");
   }
 }
 
