@@ -20,6 +20,7 @@ export function defaultSetup(given: Partial<AnalysisSetup> = {}): AnalysisSetup 
     useSaturated: false,
     degree: null,
     falseLinesPerCapture: 0.01,
+    lineShape: "automatic",
     ...given,
   };
 }

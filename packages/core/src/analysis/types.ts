@@ -336,7 +336,7 @@ export interface AnalysisSetup {
   /** Absorption: the standard's certificate, and the instrument's spectral bandwidth, nm. */
   bandCertificate?: BandCertificate | null;
   spectralBandwidthNm?: number | null;
-  /** Default `gaussian`. */
+  /** Absent = `gaussian`; the default setup says `automatic`. */
   lineShape?: LineShapeChoice;
   /** Default `fitted`. */
   positionDefinition?: PositionDefinition;

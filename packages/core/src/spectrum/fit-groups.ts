@@ -13,7 +13,7 @@ import {
   type FittedWindowOfLines,
   type LineStart,
 } from "../lineshape/fit-line.ts";
-import { parameterName, redundancyOf, type ShapeInUse } from "./capture-shape.ts";
+import { misfitOf, parameterName, redundancyOf, type ShapeInUse } from "./capture-shape.ts";
 import type { Candidate } from "./detect.ts";
 import {
   axisAt,
@@ -239,19 +239,6 @@ function isSane(line: FittedShape, start: LineStart): boolean {
     line.fwhm < 5 * start.fwhm &&
     line.peakHeightCounts > 0
   );
-}
-
-/** Root mean square of what the fit leaves over beyond the noise, counts. */
-function misfitOf({ values, unc }: GroupWindow, fit: FittedWindowOfLines): number {
-  let left = 0;
-  let noise = 0;
-  for (let k = 0; k < values.length; k += 1) {
-    const residual = values[k]! - fit.fittedCounts[k]!;
-    left += residual * residual;
-    noise += unc[k]! * unc[k]!;
-  }
-  const free = Math.max(1, values.length - 3 * fit.lines.length - 2);
-  return Math.sqrt(Math.max(0, left / free - noise / values.length));
 }
 
 function flagsOf(prepared: Prepared, group: Group, k: number, starts: readonly LineStart[]): LineFlag[] {
