@@ -119,6 +119,28 @@ describe("findLines in short windows", () => {
   });
 });
 
+describe("findLines on axes that are even in energy", () => {
+  it.each(["as wide in wavelength", "as wide in samples"])("takes no line for a spike: %s", (kind) => {
+    const n = 2048;
+    // 3.5 eV down to 1.2 eV, even in energy: 354 nm to 1033 nm, and 0.114 nm to 0.97 nm a sample.
+    const positions = Float64Array.from({ length: n }, (_, i) => 1239.841984 / (3.5 - (2.3 * i) / (n - 1)));
+    const random = createRandom(8);
+    const counts = new Float64Array(n);
+    for (let i = 0; i < n; i += 1) {
+      counts[i] = 900 + 12 * random.normal();
+      for (let nm = 375; nm < 1000; nm += 50) {
+        const at = (3.5 - 1239.841984 / nm) * ((n - 1) / 2.3);
+        counts[i] = counts[i]! + 5000 * (kind === "as wide in samples" ? hill(i, at, 5) : hill(positions[i]!, nm, 2.6));
+      }
+    }
+    counts[700] = 9000;
+    const { lines } = findLines({ ...spectrumOf(counts), axisKind: "wavelength", axisUnit: "nm", positions });
+    const spikes = lines.filter((line) => line.flags.includes("spike"));
+    expect(lines).toHaveLength(14);
+    expect(spikes.map(({ position }) => Math.round(position))).toEqual([Math.round(positions[700]!)]);
+  });
+});
+
 describe("findLines at the limits", () => {
   it("marks every line near an end of the capture, and places none outside it", () => {
     for (let k = -8; k <= 12; k += 1) {

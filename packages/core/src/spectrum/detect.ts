@@ -66,21 +66,30 @@ function takeRoom(n: number): {
  * @param counts    counts with gaps already filled by the baseline
  * @param saturated 1 where a sample is at the ceiling
  * @param falseLinesPerCapture  expected number of false lines in the whole capture
+ * @param scale     wavelength per sample over its median (`local-scale.ts`); null: even
  */
 export function detectLines(
   counts: Float64Array,
   base: Baseline,
   saturated: Uint8Array,
   falseLinesPerCapture: number,
+  scale: Float64Array | null = null,
 ): Detection {
   const n = counts.length;
   const { residual, first, second, third } = takeRoom(n);
   for (let i = 0; i < n; i += 1) residual[i] = counts[i]! - base.baseline[i]!;
   smooth(residual, 3, first);
-  const typicalWidth = findTypicalWidth(residual, first, base, saturated);
+  const typical = findTypicalWidth(residual, first, base, saturated, scale);
+  const typicalWidth = typical?.samples ?? null;
+  const scaledWidth = typical?.scaled ?? null;
+  /** Narrowest that the instrument's lines are known to be at a sample. */
+  const narrowestAt = (i: number): number =>
+    scale === null || scaledWidth === null || typicalWidth === null
+      ? (typicalWidth ?? 3)
+      : Math.min(typicalWidth, scaledWidth / scale[i]!);
   const threshold = normalQuantile(1 - Math.min(0.4, falseLinesPerCapture / (2 * n)));
   const width = typicalWidth ?? 3;
-  const candidates = width >= narrowestWithSpikes ? takeLoneSamples(residual, base, saturated) : [];
+  const candidates = takeLoneSamples(residual, base, saturated, (i) => narrowestAt(i) >= narrowestWithSpikes);
 
   const narrowBox = oddAtLeastOne(width / 2);
   const narrow = narrowBox === 1 ? residual : first;
@@ -97,7 +106,7 @@ export function detectLines(
     const top = tops[k]!;
     const one = describe(narrow, residual, top, saturated, tops[k - 1] ?? 0, tops[k + 1] ?? n - 1);
     if (typicalWidth !== null && one.width > bandShare * typicalWidth && !one.saturated) continue;
-    if (typicalWidth === null || typicalWidth < narrowestToJudge || one.saturated) {
+    if (typicalWidth === null || narrowestAt(top) < narrowestToJudge || one.saturated) {
       candidates.push(one);
       continue;
     }
@@ -108,7 +117,7 @@ export function detectLines(
     const sharpest = sharpestNear(residual, top, reach);
     const sharp = describe(residual, residual, sharpest, saturated, tops[left] ?? 0, tops[right] ?? n - 1);
     const isSpike =
-      sharp.height > strongSigmas * base.noiseCounts[sharp.top]! && sharp.width < spikeShare * typicalWidth;
+      sharp.height > strongSigmas * base.noiseCounts[sharp.top]! && sharp.width < spikeShare * narrowestAt(sharp.top);
     candidates.push(isSpike ? { ...sharp, spike: true } : one);
   }
   candidates.sort((a, b) => a.centre - b.centre);
@@ -234,13 +243,19 @@ function sharpestNear(residual: Float64Array, top: number, reach: number): numbe
  * Single samples that stand out of both neighbours by more than half of their own height: hot pixels, also on the flank of a line. They
  * are taken out of the residual, so that what is left of a line is seen as it is.
  */
-function takeLoneSamples(residual: Float64Array, base: Baseline, saturated: Uint8Array): Candidate[] {
+function takeLoneSamples(
+  residual: Float64Array,
+  base: Baseline,
+  saturated: Uint8Array,
+  isWideEnough: (sample: number) => boolean,
+): Candidate[] {
   const spikes: Candidate[] = [];
   for (let i = 1; i + 1 < residual.length; i += 1) {
     const height = residual[i]!;
     if (height < strongSigmas * base.noiseCounts[i]!) continue;
     const out = height - Math.max(residual[i - 1]!, residual[i + 1]!);
-    if (saturated[i] === 1 || out < strongSigmas * base.noiseCounts[i]! || out < 0.5 * height) continue;
+    if (saturated[i] === 1 || !isWideEnough(i) || out < strongSigmas * base.noiseCounts[i]! || out < 0.5 * height)
+      continue;
     spikes.push({ top: i, centre: i, width: 1, height, spike: true, saturated: false });
     residual[i] = (residual[i - 1]! + residual[i + 1]!) / 2;
   }
@@ -284,13 +299,14 @@ function describe(
   };
 }
 
-/** Median width of the strong tops; tops of one or two samples count only when nothing broader is there. */
+/** Median width of the strong tops, in samples and in wavelength; tops of one or two samples count only when nothing broader is there. */
 function findTypicalWidth(
   residual: Float64Array,
   smoothed: Float64Array,
   base: Baseline,
   saturated: Uint8Array,
-): number | null {
+  scale: Float64Array | null,
+): { samples: number; scaled: number } | null {
   const n = residual.length;
   const { noiseCounts } = base;
   const tops: number[] = [];
@@ -300,18 +316,22 @@ function findTypicalWidth(
   }
   // The strongest in their surroundings, so that ripple on a flat top does not count as many narrow lines.
   tops.sort((a, b) => smoothed[b]! - smoothed[a]!);
-  const widths: number[] = [];
+  const widths: { samples: number; scaled: number }[] = [];
   const taken: { left: number; right: number }[] = [];
   for (const top of tops) {
     if (taken.some((one) => top >= one.left && top <= one.right)) continue;
     const one = describe(residual, residual, sharpestNear(residual, top, 1), saturated, 0, n - 1);
     taken.push({ left: one.centre - 1.5 * one.width, right: one.centre + 1.5 * one.width });
-    if (!one.saturated) widths.push(one.width);
+    if (!one.saturated) widths.push({ samples: one.width, scaled: one.width * (scale?.[top] ?? 1) });
     if (widths.length >= mostForWidth) break;
   }
   if (widths.length === 0) return null;
-  const broad = widths.filter((width) => width >= narrowestToJudge);
-  return median(broad.length >= Math.max(2, widths.length / 4) ? broad : widths);
+  const broad = widths.filter(({ samples }) => samples >= narrowestToJudge);
+  const telling = broad.length >= Math.max(2, widths.length / 4) ? broad : widths;
+  return {
+    samples: median(telling.map(({ samples }) => samples)),
+    scaled: median(telling.map(({ scaled }) => scaled)),
+  };
 }
 
 /** The two smoothings may find one spike twice. */

@@ -19,8 +19,9 @@ import { estimateBaseline } from "./baseline.ts";
 import { gaussianShape, givenShape, shapeByEvidence, strongLines, type ShapeInUse } from "./capture-shape.ts";
 import { detectLines, type Candidate } from "./detect.ts";
 import { estimateGain, fitGroup, spikeLine, type FittedWindow, type FitSettings } from "./fit-groups.ts";
-import { groupCandidates, type Prepared } from "./line-groups.ts";
+import { axisAt, groupCandidates, type Prepared } from "./line-groups.ts";
 import { learnShape } from "./learned-shape.ts";
+import { wavelengthScale } from "./local-scale.ts";
 import { median } from "./median.ts";
 import { findSaturation } from "./saturation.ts";
 
@@ -91,7 +92,9 @@ export function findLines(spectrum: Spectrum, options: FindLinesOptions = {}): F
       excluded[i] = 1;
     }
   }
-  const { candidates, typicalWidth } = detectLines(counts, base, saturation.mask, options.falseLinesPerCapture ?? 0.01);
+  const scale = wavelengthScale(spectrum);
+  const rate = options.falseLinesPerCapture ?? 0.01;
+  const { candidates, typicalWidth } = detectLines(counts, base, saturation.mask, rate, scale);
   const smoothed = base.lagOneCorrelation > smoothedAbove;
   excludeFullAndSpikes(excluded, saturation.mask, candidates, smoothed ? 1 : 0);
 
@@ -116,11 +119,9 @@ export function findLines(spectrum: Spectrum, options: FindLinesOptions = {}): F
   const good = kept.filter(
     (line) => !line.flags.some((flag) => flag === "spike" || flag === "saturated" || flag === "poor-fit"),
   );
-  const widths = (good.length > 0 ? good : kept.filter((line) => !line.flags.includes("spike"))).map(
-    (line) => line.fwhm,
-  );
-  const medianFwhm = widths.length > 0 ? median(widths) : null;
-  markAgainstWidth(kept, medianFwhm, smoothed);
+  const others = good.length > 0 ? good : kept.filter((line) => !line.flags.includes("spike"));
+  const medianFwhm = others.length > 0 ? median(others.map((line) => line.fwhm)) : null;
+  markAgainstWidth(kept, others, spectrum.positions, scale, smoothed);
   markCut(kept, spectrum.positions);
   return {
     lines: kept,
@@ -243,11 +244,24 @@ function dropMergedTwins(lines: FittedLine[]): FittedLine[] {
   });
 }
 
-function markAgainstWidth(lines: FittedLine[], medianFwhm: number | null, smoothed: boolean): void {
+/** Lines that are narrower than the others, of uneven samples both in samples and in wavelength, are none of the instrument's. */
+function markAgainstWidth(
+  lines: FittedLine[],
+  others: readonly FittedLine[],
+  positions: Float64Array,
+  scale: Float64Array | null,
+  smoothed: boolean,
+): void {
+  const middleOf = (line: FittedLine): number => (line.windowFirst + line.windowLast) >> 1;
+  const perSample = (line: FittedLine): number => 1 / axisAt(positions, middleOf(line)).step;
+  const measures: ((line: FittedLine) => number)[] =
+    scale === null ? [() => 1] : [perSample, (line) => perSample(line) * scale[middleOf(line)]!];
+  const typical = measures.map((factor) => median(others.map((line) => line.fwhm * factor(line))));
   for (const line of lines) {
     if (smoothed && !line.flags.includes("spike")) line.flags.push("smoothed");
-    if (medianFwhm === null || line.flags.includes("spike") || line.flags.includes("poor-fit")) continue;
-    if (line.fwhm + 2 * line.fwhmUnc < 0.5 * medianFwhm) line.flags.push("spike");
+    if (line.flags.includes("spike") || line.flags.includes("poor-fit")) continue;
+    const widest = line.fwhm + 2 * line.fwhmUnc;
+    if (measures.every((factor, k) => widest * factor(line) < 0.5 * typical[k]!)) line.flags.push("spike");
   }
 }
 
