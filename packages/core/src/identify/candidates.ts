@@ -25,7 +25,8 @@ const agreementShare = 0.3;
 const mendedAxes = 3;
 /** Triples of lines tried, round by round, with the lamp alone. */
 const rounds = [
-  { level: 0, from: 0, to: 2 },
+  { level: 0, from: 0, to: 1 },
+  { level: 0, from: 1, to: 2 },
   { level: 0, from: 2, to: 6 },
   { level: 1, from: 0, to: 5 },
   { level: 1, from: 5, to: 12 },
@@ -33,7 +34,12 @@ const rounds = [
   { level: 2, from: 8, to: 20 },
 ] as const;
 /** Rounds for lamps that were not said: what they may be is only a hint. */
-const briefRounds = 1;
+const briefRounds = 2;
+/** Work after which no further triple is begun (places looked up; some 5 ns each), so that a question without an answer ends. */
+const mostWork = 6e7;
+const mostBriefWork = 1e7;
+/** Axes looked at closely where the best of them leaves nothing to explain. */
+const axesForCertain = 8;
 /** An answer beyond doubt ends the rounds. */
 const decisiveEvidence = 15;
 const decisiveLead = 8;
@@ -95,17 +101,27 @@ export function candidatesAlone(
   const best = new BestLampAxes();
   const known = new Set<LampAxis>();
   const hypotheses: Hypothesis[] = [];
+  const looked: Looked = new Map();
   let candidates: Candidate[] = [];
-  for (const { level, from, to } of effort === "brief" ? rounds.slice(0, briefRounds) : rounds) {
-    for (const triple of triples.slice(from, to)) searchTriple(problem, scales, triple, level, best);
-    for (const axis of best.axes) {
+  const isBrief = effort === "brief";
+  const affordable = isBrief ? mostBriefWork : mostWork;
+  for (const { level, from, to } of isBrief ? rounds.slice(0, briefRounds) : rounds) {
+    if (best.work >= affordable) break;
+    for (const triple of triples.slice(from, to)) {
+      if (best.work < affordable) searchTriple(problem, scales, triple, level, best);
+    }
+    let leader: Hypothesis | null = null;
+    for (const [at, axis] of best.axes.entries()) {
+      if (at >= axesForCertain && leader !== null && isSound(leader.problem, leader.table, leader.odds, leader)) break;
       if (known.has(axis)) continue;
       known.add(axis);
       const hypothesis = hypothesisFrom(input, elements, axis);
-      if (hypothesis !== null) hypotheses.push(hypothesis);
+      if (hypothesis === null) continue;
+      hypotheses.push(hypothesis);
+      if (leader === null || hypothesis.evidence.value > leader.evidence.value) leader = hypothesis;
     }
     hypotheses.sort((a, b) => b.evidence.value - a.evidence.value);
-    candidates = polish(hypotheses);
+    candidates = polish(hypotheses, looked);
     if (isDecided(candidates)) break;
   }
   return candidates;
@@ -141,42 +157,43 @@ function placesOf(problem: Problem, correction: Float64Array): Float64Array {
   return places;
 }
 
+/** Axes looked at closely before, mended or as they were: the same answer again costs nothing. */
+type Looked = Map<Hypothesis, { asIs?: Candidate | null; mended?: Candidate | null }>;
+
 /** Names for the best few hypotheses (sorted, best first). */
-function polish(hypotheses: readonly Hypothesis[]): Candidate[] {
+function polish(hypotheses: readonly Hypothesis[], looked: Looked = new Map()): Candidate[] {
   const found: Candidate[] = [];
   for (const hypothesis of hypotheses) {
     if (found.length === polished) break;
     const lead = found.length === 0 ? 0 : (found[0] as Candidate).evidence.value - hypothesis.evidence.value;
     if (lead > outOfSight) break;
-    const { problem, table, odds } = hypothesis;
+    const apart = agreementShare * hypothesis.problem.fwhmNm;
     // Many starts end on one axis: naming its lines once is enough.
-    if (found.some((one) => isSame(one.places, hypothesis.places, agreementShare * problem.fwhmNm))) continue;
-    const mended =
-      found.length < mendedAxes && !isSound(problem, table, odds, hypothesis)
-        ? mend(hypothesis, hypothesis)
-        : hypothesis;
-    const naming = nameLines(problem, table, mended.correction);
-    if (naming === null) continue;
-    const { correction } = naming.fit;
-    const evidence = evidenceFor(problem, table, odds, correction);
-    let namedCount = 0;
-    for (const reference of naming.reference) if (reference >= 0) namedCount += 1;
-    const places = placesOf(problem, correction);
-    if (found.some((one) => isSame(one.places, places, agreementShare * problem.fwhmNm))) continue;
-    const support = lineEvidence(problem, table, odds, correction, evidence.standardDeviationNm);
-    found.push({
-      problem,
-      table,
-      odds,
-      correction,
-      naming,
-      evidence,
-      namedCount,
-      support,
-      places,
-    });
+    if (found.some((one) => isSame(one.places, hypothesis.places, apart))) continue;
+    const kind = found.length < mendedAxes ? "mended" : "asIs";
+    const before = looked.get(hypothesis) ?? {};
+    looked.set(hypothesis, before);
+    const candidate = before[kind] ?? (before[kind] === null ? null : lookAt(hypothesis, kind === "mended"));
+    before[kind] = candidate;
+    if (candidate === null || found.some((one) => isSame(one.places, candidate.places, apart))) continue;
+    found.push(candidate);
   }
   return found.sort((a, b) => b.evidence.value - a.evidence.value);
+}
+
+/** Names for one axis, mended first where it is not sound; null where too few lines hold it. */
+function lookAt(hypothesis: Hypothesis, mayMend: boolean): Candidate | null {
+  const { problem, table, odds } = hypothesis;
+  const start = mayMend && !isSound(problem, table, odds, hypothesis) ? mend(hypothesis, hypothesis) : hypothesis;
+  const naming = nameLines(problem, table, start.correction);
+  if (naming === null) return null;
+  const { correction } = naming.fit;
+  const evidence = evidenceFor(problem, table, odds, correction);
+  let namedCount = 0;
+  for (const reference of naming.reference) if (reference >= 0) namedCount += 1;
+  const places = placesOf(problem, correction);
+  const support = lineEvidence(problem, table, odds, correction, evidence.standardDeviationNm);
+  return { problem, table, odds, correction, naming, evidence, namedCount, support, places };
 }
 
 function isSame(a: Float64Array, b: Float64Array, toleranceNm: number): boolean {

@@ -79,6 +79,8 @@ export function nameFewLines(input: FewLinesInput): FewNames | null {
 }
 
 /** Name of a plain line that was recognised by its place; null for none. */
+export function nameOfReference(reference: ReferenceLine): LineName;
+export function nameOfReference(reference: ReferenceLine | undefined): LineName | null;
 export function nameOfReference(reference: ReferenceLine | undefined): LineName | null {
   if (reference === undefined) return null;
   return {

@@ -9,8 +9,8 @@
  *            against it: too few lines, chance, another lamp). A wrong name is worse than none
  * Confidence chanceProbability bounds the probability that lines scattered evenly over the window agree as well with any
  *            axis allowed (null model and bound: `score`); margin is the natural logarithm by which the best axis beats the
- *            best one that names lines differently. Identified asks for at most 0.05 (a generous bound: of 500 captures with
- *            lines placed at random none fell below it) and a margin of 4
+ *            best one that names lines differently. Identified asks for at most 0.05 and a margin of 4; the tests ask 150 captures with
+ *            lines placed at random about a range: no more than 7 may fall below that chance, and none may be identified
  */
 import type {
   AxisKind,
@@ -22,9 +22,9 @@ import type {
   PixelAxis,
   ReferenceLine,
 } from "../analysis/types.ts";
-import { assumedReferenceUncNm, lineWavelengthNm } from "../linelist/built-in.ts";
+import { lineWavelengthNm } from "../linelist/built-in.ts";
 import { log } from "../numeric/elementary.ts";
-import { nameFewLines } from "./few-lines.ts";
+import { nameFewLines, nameOfReference } from "./few-lines.ts";
 import { namedAxis } from "./named-axis.ts";
 import { agreeAt, agreement, ask, type Candidate, candidatesAlone, candidatesOf, strongShare } from "./candidates.ts";
 import type { Naming } from "./name-lines.ts";
@@ -232,7 +232,7 @@ function accept(
   }
   const names: (LineName | null)[] = input.lines.map((_, i) => nameOf(problem, table, naming, i));
   for (const { line, reference } of findSecondOrder(input, problem, table, naming)) {
-    names[line] = { ...plainName(reference), order: 2 };
+    names[line] = { ...nameOfReference(reference), order: 2 };
   }
   const open = names.filter(
     (name) => name !== null && input.toleranceNm !== null && name.blendUncNm > 0.2 * input.toleranceNm,
@@ -386,26 +386,11 @@ function noteOf(chance: number, margin: number): string {
   );
 }
 
-function plainName(line: ReferenceLine): LineName {
-  return {
-    ...lineWavelengthNm(line),
-    element: line.element,
-    species: line.spectrum,
-    order: 1,
-    blendOf: [],
-    blendUncNm: 0,
-    referenceUncNm: line.uncertaintyNm ?? assumedReferenceUncNm,
-    referenceUncAssumed: line.uncertaintyNm === null,
-    referenceSource: line.source,
-    relativeIntensity: line.relativeIntensity,
-  };
-}
-
 function nameOf(problem: Problem, table: ReferenceTable, naming: Naming, i: number): LineName | null {
   const reference = naming.reference[i] as number;
   if (reference < 0) return null;
   const line = table.lines[reference] as ReferenceLine;
-  const name = plainName(line);
+  const name = nameOfReference(line);
   const components = naming.components[i] as number[];
   if (components.length < 2) return { ...name, blendUncNm: naming.blendUncNm[i] as number };
   const parts = components.map((j) => table.lines[j] as ReferenceLine);

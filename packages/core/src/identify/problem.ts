@@ -39,7 +39,7 @@ export interface Problem {
   lineUncNm: Float64Array;
   heightCounts: Float64Array;
   signalToNoise: Float64Array;
-  /** Lines that may name themselves: spikes and lines at the edge may not. */
+  /** Lines that may name themselves: spikes and lines cut off by the edge may not. */
   usable: Uint8Array;
   saturated: Uint8Array;
   /** Lines much wider than the median: unresolved blends. */
@@ -77,6 +77,8 @@ export interface ProblemInput {
 
 /** Share of the FWHM added to the position's uncertainty where the top of a line is cut off (seen: up to 0.13 FWHM). */
 const saturatedShare = 0.1;
+/** Of a line nearer to the edge than this share of its width, the top need not be inside. */
+const cutShare = 0.5;
 const poorFitShare = 0.06;
 const broadFactor = 1.3;
 const broadShare = 0.12;
@@ -171,7 +173,10 @@ export function buildProblem(input: ProblemInput, wide = false): Problem {
     problem.heightCounts[i] = line.peakHeightCounts;
     problem.signalToNoise[i] = line.signalToNoise;
     problem.saturated[i] = isSaturated ? 1 : 0;
-    problem.usable[i] = line.flags.includes("spike") ? 0 : 1;
+    // A line whose top may lie outside is no line of a known place.
+    const inside = Math.min(line.position - firstPosition, lastPosition - line.position);
+    const isCut = line.flags.includes("edge") && inside < cutShare * line.fwhm;
+    problem.usable[i] = line.flags.includes("spike") || isCut ? 0 : 1;
   }
   for (let i = 0; i < count; i++) {
     problem.byPlace.push(i);

@@ -28,6 +28,8 @@ const missBelow = 0.3;
 /** Of the first n voting lines so many may be strays: a start, and a share of them. */
 const firstStrays = 2;
 const strayVotes = 0.42;
+/** What a pair of outer lines costs beside its votes, in places looked up. */
+const pairWork = 6;
 
 /** An axis over t = -1..1 in Chebyshev terms, nm, and what the voters say of it. */
 export interface LampAxis {
@@ -123,6 +125,7 @@ export function searchTriple(
         for (let second = lowerBound(pool, low + leastApart); second < size; second++) {
           const high = pool[second] as number;
           if (high - low >= mostApart) break;
+          best.work += pairWork;
           for (let direction = 0; direction < 2; direction++) {
             const a = direction === 0 ? low : high;
             const c = direction === 0 ? high : low;
@@ -145,6 +148,7 @@ export function searchTriple(
               const weakSum = (scale.weakBelow[above] as number) - (scale.weakBelow[below] as number);
               const strongFactor = ((1 - strayShare) * span) / strongSum;
               const weakFactor = ((1 - strayShare) * span) / weakSum;
+              best.work += count;
               // Spans are believed equal in their logarithm, places equal: the narrower, the more places there are.
               let score = span;
               let misses = 0;
@@ -188,6 +192,8 @@ function axisThrough(ta: number, a: number, tb: number, b: number, tc: number, c
 /** The best few axes, none close to a better one. */
 export class BestLampAxes {
   threshold = 0;
+  /** Places looked up so far: what the search has cost. */
+  work = 0;
   readonly axes: LampAxis[] = [];
 
   offer(score: number, terms: Float64Array): void {
