@@ -36,8 +36,8 @@ const rounds = [
 /** Rounds for lamps that were not said: what they may be is only a hint. */
 const briefRounds = 2;
 /** Work after which no further triple is begun (places looked up; some 5 ns each), so that a question without an answer ends. */
-const mostWork = 6e7;
-const mostBriefWork = 1e7;
+const mostWork = 4e7;
+const mostBriefWork = 3e6;
 /** Axes looked at closely where the best of them leaves nothing to explain. */
 const axesForCertain = 8;
 /** An answer beyond doubt ends the rounds. */

@@ -85,6 +85,9 @@ export function searchTriple(
   best: BestLampAxes,
 ): void {
   const { t, byHeight } = problem;
+  // Where modules are not bundled, each look at an imported constant is a call: taken out of the loops.
+  const [lowestNm, highestNm, narrowestNm, widestNm] = [shortestNm, longestNm, leastSpanNm, mostSpanNm];
+  const stray = strayShare;
   const [ta, tb, tc] = triple.map((i) => t[i] as number) as [number, number, number];
   const voters = byHeight.filter((i) => !triple.includes(i)).slice(0, linesVoting - 3);
   const order = [...triple, ...voters];
@@ -139,24 +142,24 @@ export function searchTriple(
               const end = (wa[count + 1] as number) * a + (wb[count + 1] as number) * b + (wc[count + 1] as number) * c;
               const from = start < end ? start : end;
               const to = start < end ? end : start;
-              if (from < shortestNm || to > longestNm) continue;
+              if (from < lowestNm || to > highestNm) continue;
               const span = to - from;
-              if (span < leastSpanNm || span > mostSpanNm) continue;
-              const below = (from - shortestNm) | 0;
-              const above = ((to - shortestNm) | 0) + 1;
+              if (span < narrowestNm || span > widestNm) continue;
+              const below = (from - lowestNm) | 0;
+              const above = ((to - lowestNm) | 0) + 1;
               const strongSum = (scale.strongBelow[above] as number) - (scale.strongBelow[below] as number);
               const weakSum = (scale.weakBelow[above] as number) - (scale.weakBelow[below] as number);
-              const strongFactor = ((1 - strayShare) * span) / strongSum;
-              const weakFactor = ((1 - strayShare) * span) / weakSum;
+              const strongFactor = ((1 - stray) * span) / strongSum;
+              const weakFactor = ((1 - stray) * span) / weakSum;
               best.work += count;
               // Spans are believed equal in their logarithm, places equal: the narrower, the more places there are.
               let score = span;
               let misses = 0;
               for (let k = 0; k < count; k++) {
                 const place = (wa[k] as number) * a + (wb[k] as number) * b + (wc[k] as number) * c;
-                const cell = Math.round((place - shortestNm) * cellsPerNm);
+                const cell = Math.round((place - lowestNm) * cellsPerNm);
                 const g =
-                  strayShare +
+                  stray +
                   (isStrong[k] === 1
                     ? strongFactor * (scale.strong[cell] as number)
                     : weakFactor * (scale.weak[cell] as number));
