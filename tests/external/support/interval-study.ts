@@ -81,7 +81,8 @@ export function runIntervalStudy({ runs, seed, stage }: IntervalStudyOptions): I
     intervals,
     held,
     share,
-    shareUnc: Math.sqrt((share * (1 - share)) / intervals),
+    // Never below that of one count in three: nothing of few is not nothing of all.
+    shareUnc: Math.sqrt(Math.max(share * (1 - share), 1 / (3 * intervals)) / intervals),
     ...demandedOf(stage),
     note: `${used} ${stage.startsWith("line") || stage === "axis-captures" ? "captures" : "fits"}, seeds from ${seed}`,
   };
