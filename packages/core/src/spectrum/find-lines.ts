@@ -16,6 +16,7 @@ import type {
   Spectrum,
 } from "../analysis/types.ts";
 import { estimateBaseline } from "./baseline.ts";
+import { fitBlend, typicalFit } from "./blends.ts";
 import { gaussianShape, givenShape, shapeByEvidence, strongLines, type ShapeInUse } from "./capture-shape.ts";
 import { detectLines, type Candidate } from "./detect.ts";
 import { estimateGain, fitGroup, spikeLine, type FittedWindow, type FitSettings } from "./fit-groups.ts";
@@ -176,8 +177,11 @@ function fitCandidates(
   const settings: FitSettings = { shape, gain, positionDefinition: options.positionDefinition ?? "fitted" };
   const lines: FittedLine[] = [];
   const windows: (FittedWindow | null)[] = [];
-  for (const group of groups) {
-    for (const fitted of fitGroup(prepared, group, settings)) {
+  const each = groups.map((group) => ({ group, parts: fitGroup(prepared, group, settings) }));
+  const typical = typicalFit(each.flatMap(({ parts }) => parts));
+  for (const { group, parts } of each) {
+    const two = typical !== null && parts.length === 1 ? fitBlend(prepared, group, parts[0]!, typical, settings) : null;
+    for (const fitted of two === null ? parts : [two]) {
       if (fitted.lines.length === 0) continue;
       for (const line of fitted.lines) {
         line.group = windows.length;

@@ -98,7 +98,8 @@ export function estimateGain(
   return { gain: isMisfit ? { gain: 0, relativeUnc: 0 } : estimatePhotonGain(scatters), isMisfit };
 }
 
-function fitWindow(
+/** One window's lines under a shape; null where the fit is refused or strays from its starts. */
+export function fitWindow(
   prepared: Prepared,
   group: Group,
   window: GroupWindow,
@@ -162,7 +163,8 @@ export function fitGroup(prepared: Prepared, group: Group, settings: FitSettings
   return [resultOf(prepared, group, window, fit, candidateStarts, settings)];
 }
 
-function resultOf(
+/** The lines of a fit with their flags, and its curve. */
+export function resultOf(
   prepared: Prepared,
   group: Group,
   window: GroupWindow,
