@@ -44,6 +44,9 @@ const wingWidths = 5;
 /** With narrower lines a single high sample may be a line's top. */
 const narrowestWithSpikes = 2.5;
 const mostForWidth = 40;
+/** Normal quantiles of the median and the 98th percentile of what lies above the mean. */
+const middleZ = 0.6745;
+const highZ = 2.326;
 
 let room = new Float64Array(0);
 /** Memory for the residual and three running means of it, kept between captures. */
@@ -94,11 +97,11 @@ export function detectLines(
   const narrowBox = oddAtLeastOne(width / 2);
   const narrow = narrowBox === 1 ? residual : first;
   smooth(residual, narrowBox, narrow);
-  const tops = findTops(narrow, noiseFactor(narrow, base, third), threshold, residual, base, narrowBox >> 1);
+  const tops = findTops(narrow, noiseOf(narrow, base, third, threshold), residual, base, narrowBox >> 1);
   const broadBox = oddAtLeastOne(0.8 * width);
   smooth(residual, broadBox, third);
   smooth(third, broadBox, second);
-  const weak = findTops(second, noiseFactor(second, base, third), threshold, residual, base, broadBox);
+  const weak = findTops(second, noiseOf(second, base, third, threshold), residual, base, broadBox);
   addBetween(tops, weak, 1.2 * width);
 
   const reach = 1 + Math.round(width / 2);
@@ -155,34 +158,48 @@ function smooth(values: Float64Array, box: number, out: Float64Array): void {
   }
 }
 
+/** Of a smoothed residual, in terms of the samples' noise. */
+interface SmoothedNoise {
+  deviation: number;
+  /** What is surpassed with the probability of the normal quantile asked for. */
+  limit: number;
+}
+
 /**
  * Noise of a smoothed residual over that of the samples, correlation of the samples included: measured on the quiet samples that lie above
  * the baseline, by their median and by their 98th percentile, whichever is more (noise of few photons has a longer tail upwards); more by as much as the
- * baseline followed the noise.
+ * baseline followed the noise. The two tell the skewness, and that what is surpassed so many times (E. A. Cornish, R. A. Fisher, Rev. Inst. Int.
+ * Stat. 5 (1938) 307, to first order: z + skewness (z² - 1) / 6).
  */
-function noiseFactor(values: Float64Array, base: Baseline, ratios: Float64Array): number {
+function noiseOf(values: Float64Array, base: Baseline, ratios: Float64Array, z: number): SmoothedNoise {
   const { quiet, noiseCounts } = base;
   let m = 0;
   for (let i = 0; i < values.length; i += 1) {
     if (quiet[i] === 1 && values[i]! > 0) ratios[m++] = values[i]! / noiseCounts[i]!;
   }
-  if (m < 20) return 1;
+  if (m < 20) return { deviation: 1, limit: z };
   const high = selectInPlace(ratios, m, Math.floor(0.98 * m));
-  return base.followed * Math.max(1.4826 * medianInPlace(ratios, m), high / 2.326, 1e-3);
+  const middle = medianInPlace(ratios, m);
+  const deviation = base.followed * Math.max(middle / middleZ, high / highZ, 1e-3);
+  // Both quantiles to the same order: their ratio gives the skewness, limited to what the order is good for.
+  const ratio = (high * middleZ) / (middle * highZ);
+  const shift = (at: number): number => (at * at - 1) / 6;
+  const skewness =
+    ratio > 1 ? Math.min(1, (ratio - 1) / (shift(highZ) / highZ - (ratio * shift(middleZ)) / middleZ)) : 0;
+  const scaled = (base.followed * high * (z + skewness * shift(z))) / (highZ + skewness * shift(highZ));
+  return { deviation, limit: Math.max(z * deviation, scaled) };
 }
 
 /** Tops above the threshold, one for each hill that a deep enough valley parts from its neighbours; ascending. */
 function findTops(
   values: Float64Array,
-  factor: number,
-  threshold: number,
+  noise: SmoothedNoise,
   residual: Float64Array,
   base: Baseline,
   ends: number,
 ): number[] {
   const n = values.length;
   const { noiseCounts } = base;
-  const high = threshold * factor;
   const tops: number[] = [];
   let top = -1;
   let valley = -1;
@@ -194,7 +211,7 @@ function findTops(
   for (let i = 0; i < n; i += 1) {
     const value = values[i]!;
     if (top >= 0 && (valley < 0 || value < values[valley]!)) valley = i;
-    if (value < high * noiseCounts[i]! || (i > 0 && value <= values[i - 1]!)) continue;
+    if (value < noise.limit * noiseCounts[i]! || (i > 0 && value <= values[i - 1]!)) continue;
     let end = i;
     while (end + 1 < n && values[end + 1] === value) end += 1;
     if (end + 1 < n && values[end + 1]! > value) continue;
@@ -208,7 +225,7 @@ function findTops(
     const isDeep =
       valley >= 0 &&
       valley < at &&
-      lower - values[valley]! > Math.max(valleySigmas * factor * noiseCounts[valley]!, valleyShare * lower);
+      lower - values[valley]! > Math.max(valleySigmas * noise.deviation * noiseCounts[valley]!, valleyShare * lower);
     if (isDeep) take(top);
     if (isDeep || value > values[top]!) {
       top = at;
