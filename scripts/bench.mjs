@@ -21,7 +21,9 @@ await runCommand(async () => {
     fs.rmSync(scratch, { recursive: true, force: true });
     await ensureInstall();
     const { ensureCommand } = await import("./build.mjs");
-    const { main } = await import(pathToFileURL(await ensureCommand("scripts/bench-analyse", ["tests/validation"])).href);
+    const { main } = await import(
+      pathToFileURL(await ensureCommand("scripts/bench-analyse", ["tests/validation"])).href
+    );
     return main();
   }
   const clone = path.join(scratch, "wavekeep");

@@ -37,7 +37,10 @@ describe("JCGM 106:2012 (from memory: arithmetic checks)", () => {
   });
 
   it("speed by radar: action from 107 km/h for 99.9 % certainty", () => {
-    const { limit_kmh, relativeStandardUncertainty, requiredProbability } = radar!.inputs as unknown as Record<string, number>;
+    const { limit_kmh, relativeStandardUncertainty, requiredProbability } = radar!.inputs as unknown as Record<
+      string,
+      number
+    >;
     const speed = limit_kmh! / (1 - normalQuantile(requiredProbability!) * relativeStandardUncertainty!);
     expect(Math.round(speed)).toBe(107);
     expect(Math.abs(speed - (radar!.computed as { actionSpeed_kmh: number }).actionSpeed_kmh)).toBeLessThan(1e-3);
@@ -56,7 +59,10 @@ describe("JCGM 106:2012 (from memory: arithmetic checks)", () => {
   });
 
   it("resistors: global risks with no, a 1 u and a 2 u guard band", () => {
-    const { processMean_ohm, processSd_ohm, TL_ohm, TU_ohm, u_m_ohm } = resistors!.inputs as unknown as Record<string, number>;
+    const { processMean_ohm, processSd_ohm, TL_ohm, TU_ohm, u_m_ohm } = resistors!.inputs as unknown as Record<
+      string,
+      number
+    >;
     const computed = resistors!.computed as unknown as Record<string, { consumerRisk: number; producerRisk: number }>;
     (["simpleAcceptance", "guardBand_1u", "guardBand_2u"] as const).forEach((rule, k) => {
       const risks = globalRisks({

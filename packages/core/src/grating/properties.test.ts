@@ -31,7 +31,9 @@ test("a Raman shift returns the wavelength it was taken from", () => {
   fc.assert(
     fc.property(real(250, 1100), real(-300, 4000), (laser, shift) => {
       const seen = scatteredWavelengthNm(laser, shift);
-      expect(Math.abs(ramanShift({ wavelengthVacuumNm: laser, uncNm: 0 }, seen, 0).shiftPerCm - shift)).toBeLessThan(1e-7);
+      expect(Math.abs(ramanShift({ wavelengthVacuumNm: laser, uncNm: 0 }, seen, 0).shiftPerCm - shift)).toBeLessThan(
+        1e-7,
+      );
     }),
     runs,
   );
