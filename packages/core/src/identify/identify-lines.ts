@@ -33,6 +33,7 @@ import type { Problem } from "./problem.ts";
 import type { ReferenceTable } from "./reference-table.ts";
 import { correctedNm, endNm } from "./score.ts";
 import { findSecondOrder } from "./second-order.ts";
+import { warmingLampText } from "./warming-lamp.ts";
 
 /** Largest chance probability of an identification. */
 export const largestChance = 0.05;
@@ -244,11 +245,14 @@ function accept(
       text: `Lines closer than the instrument resolves, open by more than a fifth of the tolerance: ${list} nm. They are not judged.`,
     });
   }
+  const axis = namedAxis(problem, input.lines, naming);
+  const warming = warmingLampText(input.elements, input.lines, names, axis, input.firstPosition, input.lastPosition);
+  if (warming !== null) warnings.push({ code: "warming-lamp", text: warming });
   return {
     outcome: "identified",
     reason: null,
     names,
-    axis: namedAxis(problem, input.lines, naming),
+    axis,
     chanceProbability: chance,
     margin,
     note: noteOf(chance, margin),

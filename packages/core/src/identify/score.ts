@@ -138,8 +138,6 @@ export interface Evidence {
   chanceProbability: number;
   /** The width that explains the lines best. */
   standardDeviationNm: number;
-  /** Number of the element that alone is bright, -1 where they share. */
-  brightElement: number;
 }
 
 /** What a stray has for it: anything anywhere, or one of the lines of room light. */
@@ -256,7 +254,6 @@ export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds,
     bendPenalty(correction, bounds) + problem.logDensity + log((2 * PI) / (priorSd(bounds, 2) * priorSd(bounds, 3)));
   let best = Number.NEGATIVE_INFINITY;
   let bestWidth = 0;
-  let bestMixture = 0;
   for (let w = 0; w < widths; w++) {
     const h = hessian[w] as Float64Array;
     addPrior(h, bounds);
@@ -273,7 +270,6 @@ export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds,
       if (value <= best) continue;
       best = value;
       bestWidth = (widthShares[w] as number) * fwhmNm;
-      bestMixture = m;
     }
   }
   let sum = 0;
@@ -283,7 +279,6 @@ export function evidenceFor(problem: Problem, table: ReferenceTable, odds: Odds,
     value,
     chanceProbability: Math.min(1, exp(-value)),
     standardDeviationNm: bestWidth,
-    brightElement: bestMixture - 1,
   };
 }
 
