@@ -60,9 +60,25 @@ async function runAll(tasks: Task[]): Promise<void> {
   await Promise.all(Array.from({ length: Math.min(2, os.availableParallelism()) }, worker));
 }
 
+/** Of parts that differ in their seed and size alone, the first ones: a shorter run of the same study. At least one of each stays. */
+function firstOf(parts: readonly unknown[], share: number): unknown[] {
+  const kindOf = (part: unknown): string =>
+    JSON.stringify(part, (key, value: unknown) => (key === "seed" || key === "captures" ? undefined : value));
+  const total = new Map<string, number>();
+  for (const part of parts) total.set(kindOf(part), (total.get(kindOf(part)) ?? 0) + 1);
+  const taken = new Map<string, number>();
+  return parts.filter((part) => {
+    const kind = kindOf(part);
+    const count = (taken.get(kind) ?? 0) + 1;
+    taken.set(kind, count);
+    return count <= Math.ceil(share * total.get(kind)!);
+  });
+}
+
 function reportOf(
   tasks: Task[],
   chosen: Study<unknown, unknown>[],
+  partShare: number,
 ): { body: string; drawings: Record<string, string> } {
   const sections: Section[] = chosen.map((study) =>
     study.write(tasks.filter((task) => task.study === study).map(({ part, result }) => ({ part, result }))),
@@ -72,7 +88,7 @@ function reportOf(
 
 Written by \`npm run validate\`; every figure comes from seeded simulation with known truth, or from published values named beside it. A value after ± is the figure's own standard
 uncertainty, from the number of runs. Drawings show two of them on each side; a diamond lies outside what is asked for.
-
+${partShare === 1 ? "" : `\nA shorter run (\`--share ${partShare}\`): the first of each study's parts; the tables say how many captures that are.\n`}
 ## What falls short
 
 ${short.length === 0 ? "Nothing: every figure below is within what is asked for." : short.map((one) => `- ${one}`).join("\n")}
@@ -86,7 +102,12 @@ ${sections.map((section) => section.markdown).join("\n")}`;
 
 async function main(): Promise<number> {
   const { values } = parseArgs({
-    options: { quick: { type: "boolean", default: false }, only: { type: "string" }, part: { type: "string" } },
+    options: {
+      quick: { type: "boolean", default: false },
+      only: { type: "string" },
+      share: { type: "string", default: "1" },
+      part: { type: "string" },
+    },
   });
   if (values.part !== undefined) {
     const [name, part] = JSON.parse(values.part) as [string, unknown];
@@ -98,12 +119,22 @@ async function main(): Promise<number> {
     process.stderr.write(`No study is called so. There are: ${studies.map((study) => study.name).join(", ")}.\n`);
     return 2;
   }
+  const partShare = Number(values.share);
+  if (!(partShare > 0 && partShare <= 1)) {
+    process.stderr.write(`--share is a number above 0, at most 1; got "${values.share}".\n`);
+    return 2;
+  }
   const begun = performance.now();
   const tasks = chosen.flatMap((study) =>
-    study.parts({ isQuick: values.quick }).map((part): Task => ({ study, part, result: null, seconds: 0 })),
+    firstOf(study.parts({ isQuick: values.quick }), partShare).map((part): Task => ({
+      study,
+      part,
+      result: null,
+      seconds: 0,
+    })),
   );
   await runAll(tasks);
-  const { body, drawings } = reportOf(tasks, chosen);
+  const { body, drawings } = reportOf(tasks, chosen, partShare);
   const times = `${runMark}
 Core ${coreVersion}, ${new Date().toISOString().slice(0, 10)}, Node ${process.versions.node}, ${((performance.now() - begun) / 60_000).toFixed(1)} minutes on ${os.availableParallelism()} cores (${os.cpus()[0]?.model ?? "unknown"}).
 ${values.only === undefined || identification.name.includes(values.only) ? `Median of a whole analysis, mix main, all sizes, warm: ${timesOf().join(", ")}. (\`npm run bench -- analyse\` measures times.)\n` : ""}`;
