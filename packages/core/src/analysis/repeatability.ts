@@ -8,6 +8,7 @@
  */
 import { chiSquareUpperTail } from "../numeric/distributions.ts";
 import { findLines, type FoundLines } from "../spectrum/find-lines.ts";
+import { median } from "../spectrum/median.ts";
 import type { CaptureGroup } from "./combine-captures.ts";
 import type { LineRepeatability } from "./line-budget.ts";
 import type { AnalysisSetup } from "./types.ts";
@@ -15,6 +16,8 @@ import type { AnalysisSetup } from "./types.ts";
 /** A repeat's line is the same one when it lies within this share of the width. */
 const sameLineWidths = 0.5;
 const chanceLevel = 0.01;
+/** A line whose variance is so many times what the others show moves by itself. */
+const oddFactor = 9;
 
 /** Scatter of one line over repeats. */
 export interface RepeatedLine {
@@ -71,12 +74,16 @@ export function repeatabilityFrom(lines: readonly RepeatedLine[]): (LineRepeatab
     // Variance of the mean over repeats, and what the fit says of it.
     return { n, meanVariance: squares / (n - 1) / n, fitVariance: fitUnc * fitUnc };
   });
+  // A line that one repeat resolves and another does not says nothing of the instrument's movement, which all lines share.
+  const known = each.filter((one) => one !== null);
+  const typical = known.length === 0 ? 0 : Math.max(0, median(known.map((one) => one.meanVariance - one.fitVariance)));
   let chiSquare = 0;
   let freedom = 0;
   let beyondSum = 0;
   let most = 0;
   for (const one of each) {
     if (one === null || one.fitVariance === 0) continue;
+    if (one.meanVariance > oddFactor * (one.fitVariance + typical)) continue;
     chiSquare += ((one.n - 1) * one.meanVariance) / one.fitVariance;
     freedom += one.n - 1;
     beyondSum += (one.n - 1) * (one.meanVariance - one.fitVariance);
