@@ -261,7 +261,10 @@ function isBetter(a: FittedLine, b: FittedLine): boolean {
   const bad = (line: FittedLine): number =>
     line.flags.includes("saturated")
       ? 2
-      : line.flags.some((flag) => flag === "poor-fit" || flag === "spike" || flag === "edge")
+      : // A blend that only the longer exposure resolves is no worse there.
+        line.flags.some(
+            (flag) => (flag === "poor-fit" && !line.flags.includes("blend")) || flag === "spike" || flag === "edge",
+          )
         ? 1
         : 0;
   return bad(a) !== bad(b)

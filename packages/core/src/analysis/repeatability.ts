@@ -51,6 +51,8 @@ export function repeatabilityOf(
       for (const lines of each) {
         let nearest: number | null = null;
         for (const other of lines) {
+          // A repeat that does not resolve what the sum resolves, or the reverse, measures another top.
+          if (other.flags.includes("blend") !== line.flags.includes("blend")) continue;
           const distance = Math.abs(other.position - line.position);
           if (distance > sameLineWidths * line.fwhm) continue;
           if (nearest === null || distance < Math.abs(nearest - line.position)) nearest = other.position;
