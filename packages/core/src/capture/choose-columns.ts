@@ -221,7 +221,7 @@ function axisMeaning(
     return { kind: options.axisKind, unit: unitOfKind[options.axisKind] };
   }
   if (axisColumn === null) return { kind: "pixel", unit: "px" };
-  const said = readHeading(heading);
+  const said = readHeading(heading ?? "");
   if (said.unit !== null && (options.axisKind === undefined || said.kind === options.axisKind)) {
     return { kind: said.kind!, unit: said.unit };
   }
