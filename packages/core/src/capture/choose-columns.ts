@@ -101,6 +101,12 @@ export function chooseColumns(
   else if (columns === 1) axisColumn = null;
   else axisColumn = guessAxis({ meanings, numbers, wanted, kind: kindAsked(options), remarks });
 
+  if (axisColumn !== null && axisColumn < 0) {
+    return {
+      problem: `No column but number ${(wanted ?? 0) + 1} holds numbers, so none can be the axis; without an axis the samples are counted.`,
+    };
+  }
+
   const intensityColumn = wanted ?? guessIntensity(meanings, numbers, axisColumn, headings, remarks);
   if (intensityColumn < 0) return { problem: "The file has no column of intensities." };
   if (intensityColumn === axisColumn) return { problem: "Axis and intensity can't be the same column." };
@@ -175,13 +181,14 @@ function guessIntensity(
   return best;
 }
 
+/** @returns -1 where no column but the intensities holds numbers */
 function guessAxis(input: {
   meanings: readonly HeadingMeaning[];
   numbers: readonly number[][];
   wanted: number | null;
   kind: AxisKind | null;
   remarks: string[];
-}): number | null {
+}): number {
   const { meanings, numbers, wanted, remarks } = input;
   const free = (column: number): boolean => column !== wanted && numbers[column]!.length > 0;
   const byName = (wants: (meaning: HeadingMeaning) => boolean): number =>
@@ -221,7 +228,7 @@ function axisMeaning(
     return { kind: options.axisKind, unit: unitOfKind[options.axisKind] };
   }
   if (axisColumn === null) return { kind: "pixel", unit: "px" };
-  const said = readHeading(heading ?? "");
+  const said = readHeading(heading);
   if (said.unit !== null && (options.axisKind === undefined || said.kind === options.axisKind)) {
     return { kind: said.kind!, unit: said.unit };
   }

@@ -242,6 +242,15 @@ describe("corrections", () => {
     expect(read(two, { intensityName: "Channel" })).toMatchObject({ outcome: "refused", code: "no-such-column" });
   });
 
+  it("no axis is left beside the intensities asked for: refused, and read where the samples are to be counted", () => {
+    const lone = Array.from({ length: 40 }, (_, i) => `NaN\t${100 + ((i * 37) % 11)}`).join("\n");
+    expect(read(lone, { intensityColumn: 1 })).toMatchObject({ outcome: "refused", code: "no-such-column" });
+    expect(read(lone, { intensityColumn: 1, axisColumn: null })).toMatchObject({
+      outcome: "read",
+      facts: { axis: "pixel", rows: 40 },
+    });
+  });
+
   it("take the axis of the kind that is asked for", () => {
     const text = `Pixel,Wavelength (nm),Counts\n${rowsOf((i) => `${100 + i},${400 + i / 2},${i % 5}`)}`;
     expect(read(text, {})).toMatchObject({ facts: { axisColumn: 1, axisUnit: "nm" } });
