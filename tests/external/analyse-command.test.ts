@@ -2,11 +2,12 @@
 import fs from "node:fs";
 import os from "node:os";
 import path from "node:path";
-import { afterAll, beforeAll, describe, expect, it, vi } from "vitest";
+import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { main } from "../../scripts/analyse/main.ts";
 import { analyseFile } from "../../scripts/analyse/analyse-file.ts";
 import { readOptions } from "../../scripts/analyse/options.ts";
 import { airToVacuumNm } from "../../packages/core/src/light/air.ts";
+import { runCommand } from "./support/run-command.ts";
 import { bestPolynomial, fileOf, loadCapture } from "./support/real-capture.ts";
 
 let folder: string;
@@ -24,18 +25,7 @@ beforeAll(() => {
 });
 afterAll(() => fs.rmSync(folder, { recursive: true, force: true }));
 
-function run(...argv: string[]): { code: number; out: string; err: string } {
-  let out = "";
-  let err = "";
-  const stdout = vi.spyOn(process.stdout, "write").mockImplementation((chunk) => (out += String(chunk)) !== "");
-  const stderr = vi.spyOn(process.stderr, "write").mockImplementation((chunk) => (err += String(chunk)) !== "");
-  try {
-    return { code: main(argv), out, err };
-  } finally {
-    stdout.mockRestore();
-    stderr.mockRestore();
-  }
-}
+const run = (...argv: string[]) => runCommand(main, argv);
 
 describe("npm run -s analyse", () => {
   it("prints one JSON document a file, one a line, and exits 1 when one of them was refused", () => {

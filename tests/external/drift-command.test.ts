@@ -2,12 +2,13 @@
 import fs from "node:fs";
 import os from "node:os";
 import path from "node:path";
-import { describe, expect, it, vi } from "vitest";
+import { describe, expect, it } from "vitest";
 import { isoDateOfDay } from "../../packages/core/src/index.ts";
 import { judgeFile } from "../../scripts/drift/judge-file.ts";
 import { main } from "../../scripts/drift/main.ts";
 import { readOptions } from "../../scripts/drift/options.ts";
 import { readResults } from "../../scripts/drift/read-results.ts";
+import { runCommand } from "./support/run-command.ts";
 import { createDraws, simulateHistory, trueKinds, type SimulatedHistory } from "./support/drift-history.ts";
 
 const encode = (text: string): Uint8Array => new TextEncoder().encode(text);
@@ -73,18 +74,7 @@ describe("the document", () => {
     const folder = fs.mkdtempSync(path.join(os.tmpdir(), "wavekeep-drift-"));
     const file = path.join(folder, "results.csv");
     fs.writeFileSync(file, tableOf(simulateHistory("step", createDraws(9203))));
-    const run = (...argv: string[]): { code: number; out: string; err: string } => {
-      let out = "";
-      let err = "";
-      const stdout = vi.spyOn(process.stdout, "write").mockImplementation((chunk) => (out += String(chunk)) !== "");
-      const stderr = vi.spyOn(process.stderr, "write").mockImplementation((chunk) => (err += String(chunk)) !== "");
-      try {
-        return { code: main(argv), out, err };
-      } finally {
-        stdout.mockRestore();
-        stderr.mockRestore();
-      }
-    };
+    const run = (...argv: string[]) => runCommand(main, argv);
     const json = run(file, "--tolerance", "0.5", "--json");
     expect(json.code).toBe(0);
     expect(JSON.parse(json.out)).toMatchObject({ outcome: "judged", kind: "step" });

@@ -4,14 +4,10 @@
  *
  * "Arithmetic check, from memory": the printed figure was not seen in the document itself; it is still reproduced from the data.
  */
-import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
 import * as numeric from "../../packages/core/src/numeric/index.ts";
+import published from "../fixtures/straight-lines/published.json" with { type: "json" };
 import { readStrd } from "./support/strd-table.ts";
-
-const published = JSON.parse(
-  readFileSync(new URL("../fixtures/straight-lines/published.json", import.meta.url), "utf8"),
-) as Record<string, any>; // eslint-disable-line @typescript-eslint/no-explicit-any
 
 /** Agrees with a figure as printed: within half a unit of its last digit (and a hair for ties). */
 function expectPrinted(value: number, printed: number): void {
@@ -51,14 +47,14 @@ describe("JCGM 100:2008 (GUM) H.3, calibration of a thermometer", () => {
   });
   test("fitted values of table H.6", () => {
     entry.t_degC.forEach((t: number, i: number) =>
-      expectPrinted(numeric.lineForward(line, t - entry.t0_degC).value, entry.computed.fitted[i]),
+      expectPrinted(numeric.lineForward(line, t - entry.t0_degC).value, entry.computed.fitted[i]!),
     );
   });
 });
 
 describe("ISO/TS 28037:2010", () => {
   test.each([0, 1])("clause 6.3, known weights, example %d: line, chi-squared, inverse", (i) => {
-    const example = published["straightLineKnownWeights"].examples[i];
+    const example = published["straightLineKnownWeights"].examples[i]!;
     const line = numeric.lineKnownWeights(example.x, example.y, example.u_y);
     const { a, b, u_a, u_b, cov_ab, chi2 } = example.published;
     expectPrinted(line.intercept, a);
@@ -123,7 +119,7 @@ test("EURACHEM/CITAC CG 4 (2012) A5: concentration from the mean of two absorban
   expectPrinted(line.slope, entry.published.B1);
   expectPrinted(line.slopeUnc, entry.published.u_B1);
   expectPrinted(line.residualSd!, entry.published.S);
-  const mean = (entry.readings[0] + entry.readings[1]) / 2;
+  const mean = (entry.readings[0]! + entry.readings[1]!) / 2;
   const inverse = solved(numeric.lineInverse(line, mean, line.residualSd! / Math.sqrt(2)));
   expectPrinted(inverse.value, entry.published.c0);
   expectPrinted(inverse.unc, entry.published.u_c0);
@@ -138,8 +134,8 @@ describe("NIST/SEMATECH e-Handbook", () => {
     // in pressure, and half a unit of the printed fitted value, and of the pressure, 0.0005 each. Seen: 0.0023 and 0.0022.
     entry.temperature.forEach((t: number, i: number) => {
       const { value } = numeric.lineForward(line, t);
-      expect(Math.abs(value - entry.fitted[i])).toBeLessThan(0.0005 * 3.93015 + 0.0005);
-      expect(Math.abs(entry.pressure[i] - value - entry.residuals[i])).toBeLessThan(0.0005 * 3.93015 + 0.001);
+      expect(Math.abs(value - entry.fitted[i]!)).toBeLessThan(0.0005 * 3.93015 + 0.0005);
+      expect(Math.abs(entry.pressure[i]! - value - entry.residuals[i]!)).toBeLessThan(0.0005 * 3.93015 + 0.001);
     });
     // 7.74899 is truncated in print: 7.748997.
     expect(Math.abs(line.intercept - entry.published.intercept)).toBeLessThan(1e-5);
@@ -154,8 +150,8 @@ describe("NIST/SEMATECH e-Handbook", () => {
       expectComputed(single, prediction.u_single, 1e-7);
       const k = numeric.studentQuantile(0.975, line.degreesOfFreedom);
       expectPrinted(k, prediction.k);
-      expectPrinted(mean.value - k * single, prediction.singleInterval95[0]);
-      expectPrinted(mean.value + k * mean.unc, prediction.meanInterval95[1]);
+      expectPrinted(mean.value - k * single, prediction.singleInterval95[0]!);
+      expectPrinted(mean.value + k * mean.unc, prediction.meanInterval95[1]!);
     }
   });
   test("4.6.1, load cell: load for a deflection of 1.239722 and its 95 % interval as printed (arithmetic check, from memory)", () => {
@@ -170,8 +166,8 @@ describe("NIST/SEMATECH e-Handbook", () => {
     expectPrinted(inverse.value, entry.published.load);
     expectComputed(inverse.unc, entry.computed.u, 1e-7);
     const half = numeric.studentQuantile(0.975, fit.degreesOfFreedom) * inverse.unc;
-    expect(Math.abs(inverse.value - half - entry.published.interval95[0])).toBeLessThan(1);
-    expect(Math.abs(inverse.value + half - entry.published.interval95[1])).toBeLessThan(1);
+    expect(Math.abs(inverse.value - half - entry.published.interval95[0]!)).toBeLessThan(1);
+    expect(Math.abs(inverse.value + half - entry.published.interval95[1]!)).toBeLessThan(1);
     const straight = numeric.lineUnknownScale(loads, y);
     expectComputed(straight.residualSd!, entry.straightLineForComparison.residualStandardDeviation, 1e-7);
     expectComputed(straight.slope, entry.straightLineForComparison.slope, 1e-9);

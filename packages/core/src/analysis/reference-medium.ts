@@ -6,7 +6,7 @@ import { airToVacuumNm, vacuumToAirNm } from "../light/air.ts";
 import { roomAir, roomAirUncNm, type RoomAir } from "./room-air.ts";
 import type { AxisMeaning, Medium, RoomConditions } from "./types.ts";
 
-export const vacuumBelowNm = 200;
+const vacuumBelowNm = 200;
 
 export interface ReferenceMedium {
   meaning: AxisMeaning;

@@ -51,7 +51,7 @@ const mostMaskedColumns = 30;
 const fewestWordRows = 8;
 
 /** Number of cells when every cell that should be is a number or stands for none, and at least one is a number; else 0. */
-export function countNumericCells(
+function countNumericCells(
   bytes: Uint8Array,
   from: number,
   to: number,

@@ -9,7 +9,7 @@ import { refuse } from "./refusal.ts";
 import { pointsDown, turnOver } from "./signal-direction.ts";
 
 /** Fewer samples than this hold no line with a baseline beside it. */
-export const fewestRows = 8;
+const fewestRows = 8;
 /** Counts above a ceiling from the metadata by more than this share show that the ceiling means something else. */
 const mostAboveCeiling = 0.01;
 

@@ -8,7 +8,7 @@ import { isBlankLine, type LineIndex } from "./line-index.ts";
 import { isMissingCell, makeRowReader, scanNumber, splitCells, splitRow } from "./scan-row.ts";
 
 /** Most damaged lines that are named. */
-export const mostDamagedLines = 20;
+const mostDamagedLines = 20;
 /** Most lines without numbers that are kept for a closer look. */
 const mostUnread = 5000;
 

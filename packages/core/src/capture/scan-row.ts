@@ -38,7 +38,7 @@ const powersOfTen = [
 ] as const;
 
 /** Most columns that are looked at; a line with more is read up to here. */
-export const mostColumns = 256;
+const mostColumns = 256;
 
 /**
  * Split one line into trimmed cells (quotes taken off).

@@ -99,7 +99,7 @@ function outsideRatio(axis: PixelAxis, point: DispersionPoint, residualNm: numbe
 }
 
 /** Power coefficients with the fewest digits that keep the wavelength to a thousandth of a pixel over the capture. */
-export function writtenCoefficients(axis: PixelAxis, firstPosition: number, lastPosition: number): number[] {
+function writtenCoefficients(axis: PixelAxis, firstPosition: number, lastPosition: number): number[] {
   const { coefficients } = axis;
   let slope = Number.POSITIVE_INFINITY;
   for (let k = 0; k < sampleCount; k++) {

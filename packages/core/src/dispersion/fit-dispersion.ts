@@ -30,7 +30,7 @@ import { describeAxis } from "./describe-axis.ts";
 import { reportedScatter, ScatterFit } from "./scatter-fit.ts";
 
 /** Highest degree a grating instrument's axis is given (common practice, no source). */
-export const highestDegree = 5;
+const highestDegree = 5;
 /** Lines there must be beyond the number of coefficients. */
 export const sparePoints = 2;
 /** A simpler axis is taken when its leave-one-out RMS is within this factor of the best. */

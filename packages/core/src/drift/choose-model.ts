@@ -443,7 +443,7 @@ export function columnOf(term: DriftTerm, series: DriftSeries): Float64Array {
 }
 
 /** Mean of the recorded temperatures, °C; NaN for none. */
-export function meanTemperatureC(series: DriftSeries): number {
+function meanTemperatureC(series: DriftSeries): number {
   let sum = 0;
   let known = 0;
   for (const value of series.temperatureC) {
@@ -455,7 +455,7 @@ export function meanTemperatureC(series: DriftSeries): number {
 }
 
 /** Indicator columns of the levels: one a run, and one a source (but the first) where sources differ. */
-export function levelColumns(series: DriftSeries, sourceLevels: boolean): Float64Array[] {
+function levelColumns(series: DriftSeries, sourceLevels: boolean): Float64Array[] {
   const columns: Float64Array[] = [];
   const runs = series.run[series.count - 1]! + 1;
   for (let run = 0; run < runs; run++) columns.push(Float64Array.from(series.run, (one) => (one === run ? 1 : 0)));

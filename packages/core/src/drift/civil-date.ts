@@ -18,7 +18,7 @@ function isLeapYear(year: number): boolean {
 }
 
 /** Days of a month (1 to 12). */
-export function daysInMonth(year: number, month: number): number {
+function daysInMonth(year: number, month: number): number {
   if (month === 2) return isLeapYear(year) ? 29 : 28;
   return month === 4 || month === 6 || month === 9 || month === 11 ? 30 : 31;
 }

@@ -16,8 +16,8 @@ import { pow } from "../numeric/elementary.ts";
 import { median } from "../spectrum/median.ts";
 import { weightingUncs, type DriftSeries } from "./history.ts";
 
-export const leastForLimits = 8;
-export const settledLimits = 20;
+const leastForLimits = 8;
+const settledLimits = 20;
 const ewmaLambda = 0.2;
 const ewmaWidth = 2.962;
 const scaleWidth = 3;

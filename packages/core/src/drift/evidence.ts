@@ -65,9 +65,7 @@ export class WeightedDesign {
 
   /** Accounts for every column that can be told from the others. */
   withAll(columns: readonly ArrayLike<number>[]): WeightedDesign {
-    let design: WeightedDesign = this; // eslint-disable-line @typescript-eslint/no-this-alias
-    for (const column of columns) design = design.with(column) ?? design;
-    return design;
+    return columns.reduce<WeightedDesign>((design, column) => design.with(column) ?? design, this);
   }
 
   /** By how much the residual sum of squares would fall; null where the column says nothing new. */

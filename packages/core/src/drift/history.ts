@@ -101,27 +101,6 @@ export function seriesOf(history: readonly DriftCheck[]): DriftSeries | null {
   return series;
 }
 
-/** Points of the first `count` checks alone: what was known then. */
-export function firstChecks(series: DriftSeries, count: number): DriftSeries {
-  return {
-    ...series,
-    count,
-    order: series.order.subarray(0, count),
-    days: series.days.subarray(0, count),
-    years: series.years.subarray(0, count),
-    midErrorNm: series.midErrorNm.subarray(0, count),
-    midUncNm: series.midUncNm.subarray(0, count),
-    scaleErrorNm: series.scaleErrorNm.subarray(0, count),
-    scaleUncNm: series.scaleUncNm.subarray(0, count),
-    covarianceNm2: series.covarianceNm2.subarray(0, count),
-    chiSquare: series.chiSquare.subarray(0, count),
-    chiSquareDof: series.chiSquareDof.subarray(0, count),
-    temperatureC: series.temperatureC.subarray(0, count),
-    run: series.run.subarray(0, count),
-    source: series.source.subarray(0, count),
-  };
-}
-
 function sourceIndex(sources: string[], label: string | null): number {
   if (label === null || label === "") return -1;
   const known = sources.indexOf(label);
@@ -184,7 +163,7 @@ function placeCheck(series: DriftSeries, i: number, check: DriftCheck): void {
  * Standard deviation from check to check that neither a trend nor a single step or outlier can pretend: from the median of successive
  * differences (median |N(0, 2 s²)| = 0.9539 s).
  */
-export function scatterBetweenChecks(values: ArrayLike<number>): number {
+function scatterBetweenChecks(values: ArrayLike<number>): number {
   if (values.length < 2) return 0;
   const differences = new Float64Array(values.length - 1);
   for (let i = 0; i < differences.length; i++) differences[i] = Math.abs(values[i + 1]! - values[i]!);

@@ -14,7 +14,7 @@ import { assumedReferenceUncNm, linesOf, lineWavelengthNm } from "../linelist/bu
 import type { LineName } from "./identify-lines.ts";
 
 /** Lines that this rule names: one alone could be anything. */
-export const fewLines = 2;
+const fewLines = 2;
 /** How far from its published line a line may be read, in line widths. Common practice, no source. */
 const reach = 2;
 /** How much two displacements may differ, in line widths. Common practice, no source. */

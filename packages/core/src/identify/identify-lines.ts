@@ -36,9 +36,9 @@ import { findSecondOrder } from "./second-order.ts";
 import { warmingLampText } from "./warming-lamp.ts";
 
 /** Largest chance probability of an identification. */
-export const largestChance = 0.05;
+const largestChance = 0.05;
 /** Least margin over an axis that names the lines differently (natural logarithm of the ratio of likelihoods). */
-export const leastMargin = 4;
+const leastMargin = 4;
 const leastStrongShare = 0.6;
 /** With a second gas seen between them, the lamp's own lines may be fewer. */
 const leastOwnShare = 0.4;

@@ -89,7 +89,7 @@ const floorShare = 0.01;
 export const usualCubic = -0.0013;
 
 /** Believed wavelength at a position, before any correction, nm. */
-export function baseNmAt(input: ProblemInput, position: number): number {
+function baseNmAt(input: ProblemInput, position: number): number {
   const { mode } = input;
   if (mode.kind === "range") {
     const share = (position - input.firstPosition) / (input.lastPosition - input.firstPosition);

@@ -19,10 +19,10 @@ const halfOctave = Math.sqrt(2);
 /** Strongest lines of each element, and of its ions, that an anchor may be in any window of one span: few at first, then more. */
 const poolPerElement = [13, 28, 70] as const;
 const ionsInPool = [5, 9, 14] as const;
-export const poolLevels = poolPerElement.length;
+const poolLevels = poolPerElement.length;
 
 /** Half width of the kernel, share of the span: what third order and the width of a line leave open. */
-export const kernelShare = 0.0027;
+const kernelShare = 0.0027;
 const cellsPerHalfWidth = 4;
 
 export interface Scale {

@@ -56,15 +56,24 @@ function normalIntegral(z: number): number {
   return 0.5 + DENSITY * gaussianIntegral(z);
 }
 
-class Gaussian implements Profile {
-  readonly name = "gaussian";
+/** What shapes with nothing but a width have in common. */
+export abstract class WithoutParameter implements Profile {
+  abstract readonly name: LineShapeName;
   readonly hasParameter = false;
   readonly least = 0;
   readonly most = 0;
   readonly usual = 0;
+  abstract readonly hasClosedIntegral: boolean;
+  abstract readonly widthPerFwhm: number;
+  setParameter(): void {}
+  abstract edge(u: number, out: Float64Array): void;
+  abstract point(u: number, out: Float64Array): void;
+}
+
+class Gaussian extends WithoutParameter {
+  readonly name = "gaussian";
   readonly hasClosedIntegral = true;
   readonly widthPerFwhm = 1 / FWHM_PER_STD;
-  setParameter(): void {}
   edge(u: number, out: Float64Array): void {
     out[0] = DENSITY * gaussianIntegral(u);
     out[1] = DENSITY * gaussian(u);
@@ -76,15 +85,10 @@ class Gaussian implements Profile {
   }
 }
 
-class Lorentzian implements Profile {
+class Lorentzian extends WithoutParameter {
   readonly name = "lorentzian";
-  readonly hasParameter = false;
-  readonly least = 0;
-  readonly most = 0;
-  readonly usual = 0;
   readonly hasClosedIntegral = true;
   readonly widthPerFwhm = 0.5;
-  setParameter(): void {}
   edge(u: number, out: Float64Array): void {
     out[0] = INVERSE_PI * atan(u);
     out[1] = INVERSE_PI / (1 + u * u);

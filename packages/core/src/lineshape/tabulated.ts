@@ -5,18 +5,14 @@
  * that cubic's own (an even quarter's error: below 1e-6 of the top for a Voigt shape whose Gaussian part is a tenth of it or more). Beyond
  * the last node the density falls with the square of the distance, as a Lorentzian's wing does.
  */
-import type { Profile } from "./profile.ts";
+import { WithoutParameter, type Profile } from "./profile.ts";
 
 const STEPS_PER_WIDTH = 24;
 const FARTHEST = 20;
 const NODES = FARTHEST * STEPS_PER_WIDTH + 1;
 
-export class TabulatedProfile implements Profile {
+export class TabulatedProfile extends WithoutParameter {
   readonly name: Profile["name"];
-  readonly hasParameter = false;
-  readonly least = 0;
-  readonly most = 0;
-  readonly usual = 0;
   readonly hasClosedIntegral = true;
   readonly widthPerFwhm: number;
   private readonly integrals = new Float64Array(NODES);
@@ -24,6 +20,7 @@ export class TabulatedProfile implements Profile {
   private readonly slopes = new Float64Array(NODES);
 
   constructor(profile: Profile, parameter: number) {
+    super();
     this.name = profile.name;
     this.widthPerFwhm = profile.widthPerFwhm;
     profile.setParameter(parameter);
@@ -40,8 +37,6 @@ export class TabulatedProfile implements Profile {
       this.integrals[j] = this.integrals[j - 1]! + h * (mean + h * bend);
     }
   }
-
-  setParameter(): void {}
 
   edge(u: number, out: Float64Array): void {
     const a = Math.abs(u);

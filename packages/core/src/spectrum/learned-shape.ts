@@ -12,7 +12,7 @@
  * Limits   one shape for the whole capture, in units of the FWHM; 2.2 FWHM to either side of the centre, nothing beyond; four strong lines
  *          or more
  */
-import type { Profile } from "../lineshape/profile.ts";
+import { WithoutParameter, type Profile } from "../lineshape/profile.ts";
 import { solveLeastSquares } from "../numeric/linear-least-squares.ts";
 import { fitStrong, type ShapeInUse, type StrongLine } from "./capture-shape.ts";
 import type { Prepared } from "./line-groups.ts";
@@ -42,18 +42,15 @@ function basisSlope(t: number): number {
   return t < 0 ? -slope : slope;
 }
 
-class LearnedProfile implements Profile {
+class LearnedProfile extends WithoutParameter {
   readonly name = "empirical";
-  readonly hasParameter = false;
-  readonly least = 0;
-  readonly most = 0;
-  readonly usual = 0;
   readonly hasClosedIntegral = false;
   readonly widthPerFwhm = 1;
   private shift = 0;
   private scale = 1;
 
   constructor(private readonly coefficients: Float64Array) {
+    super();
     let [area, moment] = [0, 0];
     const out = new Float64Array(3);
     const step = spacing / 8;
@@ -65,7 +62,6 @@ class LearnedProfile implements Profile {
     this.scale = 1 / area;
     this.shift = moment / area;
   }
-  setParameter(): void {}
   edge(): void {
     throw new RangeError("The learned shape holds the pixel already");
   }

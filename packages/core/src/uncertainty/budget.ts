@@ -6,7 +6,7 @@ import type { BudgetEntry } from "../analysis/types.ts";
 import { studentQuantile } from "../numeric/distributions.ts";
 
 /** Coverage probability of every expanded uncertainty: exactly that of two standard deviations of a normal distribution, 95.45 %. */
-export const coverageProbability = 0.954499736103642;
+const coverageProbability = 0.954499736103642;
 
 /** A contribution before shares are known; `uncNm` is already multiplied by its sensitivity. */
 export type Contribution = Omit<BudgetEntry, "shareOfVariance">;

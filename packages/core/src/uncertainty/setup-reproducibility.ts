@@ -21,7 +21,7 @@ export interface SetupReproducibility {
 }
 
 /** The configuration's own scatter counts from this many checks on. */
-export const fewestChecks = 8;
+const fewestChecks = 8;
 
 /**
  * @param points  in order of time
